@@ -1,0 +1,1 @@
+"""The full-screen terminal dashboard; it reads the history and nothing else."""

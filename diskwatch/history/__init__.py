@@ -1,0 +1,1 @@
+"""The history: one SQLite file, one writer, any number of readers."""

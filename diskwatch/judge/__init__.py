@@ -1,0 +1,1 @@
+"""From findings to a deed: pure rules in explicit tables."""

@@ -1,0 +1,1 @@
+"""The only readers of this computer: its drives, its kernel's counters, its mounts."""

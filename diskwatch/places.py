@@ -1,0 +1,49 @@
+"""Every path that the program uses of its own accord."""
+
+import os
+from pathlib import Path
+
+SYSTEM_STATE = Path("/var/lib/diskwatch")
+SYSTEM_SETTINGS = Path("/etc/diskwatch/settings.toml")
+SYSTEM_RUN = Path("/run/diskwatch")
+HISTORY = "history.db"
+WATCH_LOCK = "watch.lock"
+
+
+def _xdg(variable: str, fallback: str) -> Path:
+    """An XDG base directory; a relative path there is invalid and ignored, as the specification says."""
+    named = os.environ.get(variable, "")
+    return Path(named) if named.startswith("/") else Path.home() / fallback
+
+
+def user_state() -> Path:
+    """This user's own state folder."""
+    return _xdg("XDG_STATE_HOME", ".local/state") / "diskwatch"
+
+
+def state_folder(named: str | None) -> Path:
+    """Where the history lies: the folder named, else the system's where it can be read, else this user's."""
+    if named is not None:
+        return Path(named)
+    if (SYSTEM_STATE / HISTORY).exists() and os.access(SYSTEM_STATE, os.R_OK | os.X_OK):
+        return SYSTEM_STATE
+    if os.geteuid() == 0:
+        return SYSTEM_STATE
+    return user_state()
+
+
+def settings_file(named: str | None) -> Path | None:
+    """The settings file: the one named, else this user's, else the system's, else None."""
+    if named is not None:
+        return Path(named)
+    for candidate in (_xdg("XDG_CONFIG_HOME", ".config") / "diskwatch" / "settings.toml", SYSTEM_SETTINGS):
+        if candidate.is_file():
+            return candidate
+    return None
+
+
+def live_folders(state: Path) -> tuple[Path, ...]:
+    """Where figures of the last seconds may be shared, best first: memory, so that no drive is written to."""
+    runtime = os.environ.get("XDG_RUNTIME_DIR", "")
+    own = (Path(runtime) / "diskwatch",) if runtime.startswith("/") else ()
+    return (SYSTEM_RUN, *own, state)

@@ -1,0 +1,53 @@
+"""The nouns of the house: frozen records that every room may speak of.
+
+Times are UTC, whole seconds since 1970. "Not known" is None, never zero. Units stand in the name of the field
+or in its line of the docstring.
+"""
+
+from diskwatch.records.bays import Bays, DriveLine, LastPass, SignalNow
+from diskwatch.records.daybook import Entry
+from diskwatch.records.drive import Drive, Identity, Kind, Mount, Place
+from diskwatch.records.io import IoCounts, IoSpan
+from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingKind
+from diskwatch.records.reading import (
+    Attribute,
+    Failing,
+    Outcome,
+    Pass,
+    Reading,
+    SelfTest,
+    SignalKind,
+    Value,
+)
+from diskwatch.records.round import DriveRound, KnownDrive, Round
+
+__all__ = [
+    "Attribute",
+    "Bays",
+    "Call",
+    "CallWord",
+    "Cause",
+    "Drive",
+    "DriveLine",
+    "DriveRound",
+    "Entry",
+    "Failing",
+    "Finding",
+    "FindingKind",
+    "Identity",
+    "IoCounts",
+    "IoSpan",
+    "Kind",
+    "KnownDrive",
+    "LastPass",
+    "Mount",
+    "Outcome",
+    "Pass",
+    "Place",
+    "Reading",
+    "Round",
+    "SelfTest",
+    "SignalKind",
+    "SignalNow",
+    "Value",
+]

@@ -1,0 +1,43 @@
+"""What the kernel counts about a drive's traffic."""
+
+from dataclasses import dataclass
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class IoCounts:
+    """Totals since the device appeared, or their differences over a span.
+
+    Attributes:
+        reads: read requests completed (failed ones count too).
+        writes: write requests completed.
+        read_bytes: bytes read.
+        write_bytes: bytes written.
+        read_ms: time that reads took, summed over requests, milliseconds.
+        write_ms: the same of writes.
+        busy_ms: time in which at least one request was under way, milliseconds.
+    """
+
+    reads: int
+    writes: int
+    read_bytes: int
+    write_bytes: int
+    read_ms: int
+    write_ms: int
+    busy_ms: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class IoSpan:
+    """A drive's traffic over one span of time.
+
+    Attributes:
+        drive: the drive's number in the history.
+        at: end of the span, UTC seconds since 1970.
+        seconds: how long the span was by a clock that only moves forward.
+        counts: differences over the span, none negative.
+    """
+
+    drive: int
+    at: int
+    seconds: float
+    counts: IoCounts

@@ -1,0 +1,62 @@
+"""What one round of the watch wants stored, all of it or nothing."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from diskwatch.records.daybook import Entry
+from diskwatch.records.drive import Drive, Place
+from diskwatch.records.judgement import Call, Finding
+from diskwatch.records.reading import Pass
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class KnownDrive:
+    """A drive that the history knows.
+
+    Attributes:
+        number: its number in the history, never reused.
+        drive: the drive as it last described itself.
+        place: where it was last seen.
+        first_seen: when it was first seen, UTC seconds since 1970.
+    """
+
+    number: int
+    drive: Drive
+    place: Place
+    first_seen: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DriveRound:
+    """One drive's part of a round.
+
+    Attributes:
+        known: the drive and its place, as now known.
+        pass_: how asking it went.
+        state: the analyser's state after this pass, as text; None where the pass did not move it.
+        findings: everything that stands now; what stood before and is not here has ended.
+        evidence: M in days a signal, for signals that a ledger follows.
+        call: the call that stands now; None until the drive has been read.
+    """
+
+    known: KnownDrive
+    pass_: Pass
+    state: str | None
+    findings: tuple[Finding, ...] = ()
+    evidence: Mapping[str, float] = field(default_factory=dict)
+    call: Call | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Round:
+    """One round of the watch, or a part of one where a slow drive came later.
+
+    Attributes:
+        at: when it was judged, UTC seconds since 1970.
+        drives: one a drive asked.
+        entries: what happened, for the day book.
+    """
+
+    at: int
+    drives: tuple[DriveRound, ...]
+    entries: tuple[Entry, ...] = ()

@@ -1,0 +1,1 @@
+"""The watch: the schedule, the rounds, the life cycle."""
