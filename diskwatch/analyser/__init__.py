@@ -1,0 +1,11 @@
+"""The one state machine from readings to findings and a call.
+
+``advance(state, pass) -> step`` knows no clock, file or process: live readings, replay of recorded ones and
+rehearsal of a failure run the very same code.
+"""
+
+from diskwatch.analyser.advance import Step, advance
+from diskwatch.analyser.explain import Explanation, explain
+from diskwatch.analyser.state import DriveState, dump, load, start
+
+__all__ = ["DriveState", "Explanation", "Step", "advance", "dump", "explain", "load", "start"]

@@ -1,0 +1,75 @@
+"""All that the analyser remembers of one drive: plain values that survive a restart exactly."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+import msgspec
+
+from diskwatch.errors import HistoryTooNew
+from diskwatch.records import Call, Finding, Outcome
+from diskwatch.trends.episodes import Stream
+from diskwatch.trends.spots import Spots
+
+PARAMETERS = 1
+"""Version of the norms, thresholds and recursions that a state was built with."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DriveState:
+    """One drive's past, condensed.
+
+    Attributes:
+        parameters: version of the norms and recursions that it was built with.
+        first_at: when the drive was first read, UTC seconds since 1970; None until then.
+        last_at: when it was last asked, or None.
+        outcome: how the pass before ended, or None.
+        slept: True once it was found asleep, so that it is said once.
+        unread: passes in a row that should have brought a reading and did not.
+        hours: powered hours at the last reading, or None.
+        firsts: counters as first read.
+        latest: counters as last read with a usable value.
+        streams: ledgers by stream.
+        spots: damage for the odds rule.
+        standing: findings that stand, by name.
+        call: the call that stands, or None.
+    """
+
+    parameters: int = PARAMETERS
+    first_at: int | None = None
+    last_at: int | None = None
+    outcome: Outcome | None = None
+    slept: bool = False
+    unread: int = 0
+    hours: int | None = None
+    firsts: Mapping[str, int] = field(default_factory=dict)
+    latest: Mapping[str, int] = field(default_factory=dict)
+    streams: Mapping[str, Stream] = field(default_factory=dict)
+    spots: Spots = field(default_factory=Spots)
+    standing: Mapping[str, Finding] = field(default_factory=dict)
+    call: Call | None = None
+
+
+def start() -> DriveState:
+    """The state of a drive that has never been asked."""
+    return DriveState()
+
+
+def dump(state: DriveState) -> str:
+    """A state as JSON text; floats are written so that they come back to the same bits."""
+    return msgspec.json.encode(state).decode()
+
+
+def load(text: str) -> DriveState:
+    """A state from JSON text.
+
+    Raises:
+        HistoryTooNew: it was built by a newer version.
+        ValueError: it is no such text.
+    """
+    state = msgspec.json.decode(text, type=DriveState)
+    if state.parameters > PARAMETERS:
+        raise HistoryTooNew(
+            f"the analyser's state has version {state.parameters}, this program knows {PARAMETERS}",
+            hint="use the newer program that wrote it",
+        )
+    return state

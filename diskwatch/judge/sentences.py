@@ -1,0 +1,262 @@
+"""Every sentence that a judgement is told in, in one place: raw facts first, then what they mean.
+
+For a person who has never heard of SMART, with the trade's term in brackets where a help desk needs it. No
+sentence says or implies that a drive is safe; a test reads them all.
+"""
+
+from collections.abc import Mapping
+
+from diskwatch.records import Attribute, SelfTest
+from diskwatch.trends.norms import YEAR, Norm
+from diskwatch.units import plain, say_count, say_days
+
+_NAMES: Mapping[str, str] = {
+    "reallocated-sectors": "sectors replaced by spare ones (reallocated)",
+    "pending-sectors": "sectors that could not be read and wait (pending)",
+    "offline-uncorrectable": "sectors that its own scan could not read (offline uncorrectable)",
+    "reported-uncorrectable": "reads that it gave up (reported uncorrectable)",
+    "grown-defects": "defects grown since manufacture (grown defects)",
+    "uncorrected-reads": "reads that it gave up (uncorrected)",
+    "uncorrected-writes": "writes that it gave up (uncorrected)",
+    "media-errors": "times that stored data could not be recovered (media errors)",
+    "crc-errors": "transfers damaged on the cable or connector (interface CRC errors)",
+    "link-resets": "times that the link to it was reset",
+    "command-timeouts": "commands that it did not answer in time (command timeouts)",
+    "kernel-io-errors": "requests that the kernel saw fail",
+    "unsafe-power-offs": "times that power went away without notice (unsafe power-offs)",
+    "end-to-end-errors": "blocks damaged inside the drive's own electronics (end-to-end errors)",
+    "spin-retries": "times that it needed another try to start turning (spin retries)",
+    "non-medium-errors": "errors that were not the medium's (non-medium)",
+}
+
+_STREAMS: Mapping[str, str] = {
+    "media": "New bad spots turned up",
+    "flash-media": "Stored data could not be recovered",
+    "link": "Transfers were damaged on the way between drive and computer",
+    "timeouts": "Commands went unanswered",
+    "power": "Power went away without notice",
+    "kernel-errors": "Requests failed",
+}
+
+
+def signal_name(signal: str) -> str:
+    """A signal for a person: what is counted, and the trade's term."""
+    return _NAMES.get(signal, signal.replace("-", " "))
+
+
+def rose(signal: str, old: int, new: int) -> str:
+    """A counter rose."""
+    return f"{_upper(signal_name(signal))} rose from {say_count(old)} to {say_count(new)}."
+
+
+def fell(signal: str, old: int, new: int) -> str:
+    """A counter fell although such a counter cannot."""
+    return (
+        f"{_upper(signal_name(signal))} fell from {say_count(old)} to {say_count(new)}, which such a counter "
+        f"cannot do; it is followed from the new value on and nothing is concluded from the fall."
+    )
+
+
+def first_defect(signal: str, first: int, now: int) -> str:
+    """A defect counter rose for the first time since the drive has been watched."""
+    return (
+        f"{_upper(signal_name(signal))} rose from {say_count(first)} to {say_count(now)} since it has been "
+        f"watched: a fresh defect; back up what matters and see whether more follow."
+    )
+
+
+def drift(norm: Norm, *, episodes: int, days: float, evidence: float) -> str:
+    """A ledger alarm."""
+    return (
+        f"{_STREAMS[norm.stream]} on {_times(episodes)} in {say_days(max(days, 1))} of powered time; "
+        f"the norm is {_rate(norm.per_year)}. "
+        f"A drive within the norm would show this at most {once_in(evidence)} of watching."
+    )
+
+
+def once_in(evidence: float) -> str:
+    """Evidence in days, said as "once in N years", rounded down to two digits."""
+    years = evidence / YEAR
+    if years < 1:
+        return "once in less than a year"
+    scale = 10 ** max(0, len(str(int(years))) - 2)
+    rounded = int(years) // scale * scale
+    return f"once in {say_count(rounded)} {'year' if rounded == 1 else 'years'}"
+
+
+def damage(*, fresh: int, pending: int, replaced: int, score: float, limit: float, days: int) -> str:
+    """The odds rule called."""
+    return (
+        f"{_spots(fresh)} appeared within {days} days; {say_count(pending)} {_waits(pending)} to be read or "
+        f"replaced and {say_count(replaced)} {'was' if replaced == 1 else 'were'} replaced so far "
+        f"(damage measure {score:g}, the limit is {limit:g})."
+    )
+
+
+def self_assessment_failed(bits: str) -> str:
+    """The drive's own verdict is that it is failing."""
+    return f"The drive itself reports that it is failing (self-assessment: failed{bits})."
+
+
+def critical_warning(names: str) -> str:
+    """What an NVMe drive warns of, in brackets behind the verdict."""
+    return f"; it warns of {names}"
+
+
+def failing_attribute(attribute: Attribute) -> str:
+    """An attribute's normalised value has fallen to its threshold."""
+    return (
+        f"Attribute {attribute.number} ({plain(attribute.name)}) has fallen to {attribute.value}, its limit is "
+        f"{attribute.threshold} (raw value {plain(attribute.raw)})."
+    )
+
+
+def spare_below(spare: int, threshold: int) -> str:
+    """The reserve of spare blocks is below the drive's own limit."""
+    return f"Only {spare} % of its spare blocks are left; the drive's own limit is {threshold} %."
+
+
+def worn(used: int, spare: int | None, *, falling: bool) -> str:
+    """A solid-state drive is past its rated endurance."""
+    rest = f"; {spare} % of its spare blocks are left" if spare is not None else ""
+    fall = " and falling" if falling and spare is not None else ""
+    return f"{used} % of the endurance that its maker rated is used up{rest}{fall}."
+
+
+def unreadable_in_self_test(test: SelfTest) -> str:
+    """The drive's own test met a sector that it could not read."""
+    where = f" at block {say_count(test.lba)}" if test.lba is not None else ""
+    when = f", at {say_count(test.hours)} powered hours" if test.hours is not None else ""
+    return f"The drive's own test ({plain(test.name)}) met a sector that could not be read{where}{when}."
+
+
+def self_test_failed(test: SelfTest) -> str:
+    """The drive's own test failed otherwise."""
+    when = f" at {say_count(test.hours)} powered hours" if test.hours is not None else ""
+    return f"The drive's own test ({plain(test.name)}) ended{when} with: {plain(test.result)}."
+
+
+def hot(celsius: int, limit: int) -> str:
+    """The drive is at or above its own temperature limit."""
+    return f"It is at {celsius} °C; its own limit is {limit} °C: see to its cooling."
+
+
+def warns_of_heat() -> str:
+    """An NVMe drive's only warning is its temperature."""
+    return "The drive warns that its temperature is outside its own limits: see to its cooling."
+
+
+def unreadable(times: int, explanation: str) -> str:
+    """Passes in a row brought nothing."""
+    return f"It could not be read {times} times in a row: {explanation}"
+
+
+def no_smart() -> str:
+    """A virtual disk: there is nothing to read."""
+    return "A virtual disk has no readings of its own (no SMART): it is watched by its traffic alone."
+
+
+def first_reading(old: Mapping[str, int]) -> str:
+    """Read for the first time: levels, no trend yet."""
+    if not old:
+        return "Read for the first time: its counters are a starting level, not a trend."
+    return f"It came with old defects: {_list(old)}. That is a level, not a trend; a rise will speak."
+
+
+def quiet(old: Mapping[str, int], days: float) -> str:
+    """Nothing asks for a deed."""
+    watched = f"in {say_days(days)} of watching" if days >= 1 else "since it was first read"
+    if not old:
+        return f"No error counter has gone beyond its norm {watched}."
+    return f"It came with old defects: {_list(old)}. Nothing has gone beyond its norm {watched}."
+
+
+def call_changed(before: str | None, after: str, reason: str) -> str:
+    """The call changed."""
+    return f"Call is now {after}{f', it was {before}' if before else ''}: {reason}"
+
+
+def needs_reading() -> str:
+    """What a drive without a call lacks."""
+    return "It has not been read yet; the first reading gives a call."
+
+
+def virtual_stays() -> str:
+    """A virtual disk without readings."""
+    return "Nothing that is read from it can change this call: it has no readings of its own."
+
+
+def stands() -> str:
+    """A call that rests on a lasting finding."""
+    return "The call does not fall by itself: a while without new trouble is no proof that the trouble is over."
+
+
+def passes() -> str:
+    """A call that rests on the present moment only."""
+    return "The call ends with what it tells of."
+
+
+def first_defect_would() -> str:
+    """What makes keep a look at once."""
+    return "A first fresh sector that cannot be read makes it look at once."
+
+
+def one_more_would(stream: str, now: float, after: float, alarm: float, absorbed: float) -> str:
+    """What one more episode would do to a ledger."""
+    reached = "which makes it look" if after >= alarm else f"look comes from {once_in(alarm)} on"
+    return (
+        f"{_STREAMS[stream]}: evidence stands at {once_in(now)}; another occasion, more than {absorbed:g} powered "
+        f"days after the last, would bring it to {once_in(after)} ({reached})."
+    )
+
+
+def unread_would(limit: int) -> str:
+    """What failing passes do."""
+    return f"{limit} passes in a row without a reading make it look."
+
+
+def damage_would(call: str, limit: float, days: int) -> str:
+    """What the odds rule needs."""
+    return (
+        f"A damage measure of {limit:g} within {days} days (fresh, pending and replaced spots) makes it {call}."
+    )
+
+
+def verdict_would() -> str:
+    """What makes any call a retire."""
+    return "A failed self-assessment, spare blocks below their limit or read-only media make it retire."
+
+
+def budget(days: float) -> str:
+    """The bound on false alarms, with what it rests on."""
+    return (
+        f"A drive within its norms raises a drift alarm at most once in {days / YEAR:g} years of "
+        f"watching. That is proved, under the episode assumption, for twice the thresholds in use; for these "
+        f"it was computed."
+    )
+
+
+def _list(values: Mapping[str, int]) -> str:
+    return ", ".join(f"{say_count(count)} {signal_name(signal)}" for signal, count in values.items())
+
+
+def _upper(text: str) -> str:
+    return text[:1].upper() + text[1:]
+
+
+def _times(count: int) -> str:
+    return "1 occasion" if count == 1 else f"{say_count(count)} separate occasions"
+
+
+def _rate(per_year: float) -> str:
+    if per_year < 1:
+        return f"one in {1 / per_year:g} years"
+    return "one a year" if per_year == 1 else f"{per_year:g} a year"
+
+
+def _spots(count: int) -> str:
+    return "1 fresh bad spot" if count == 1 else f"{say_count(count)} fresh bad spots"
+
+
+def _waits(count: int) -> str:
+    return "waits" if count == 1 else "wait"
