@@ -1,0 +1,199 @@
+"""The one door through which this program runs another one, and gets its answer in bounded time.
+
+A drive that is dying can hold whoever asks it for minutes, in a state in which not even SIGKILL is obeyed. So
+nothing here waits without a limit: a child that does not die is left behind, counted, and reaped when the
+kernel lets go of it.
+"""
+
+import contextlib
+import errno
+import os
+import selectors
+import signal
+import subprocess
+import threading
+import time
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from enum import Enum, auto
+from typing import IO
+
+MOST_OUTPUT = 4 * 1024 * 1024
+"""Bytes of output after which a child is cut off: a full answer of smartctl is some 100 kB."""
+
+_GRACE = 1.0
+"""Seconds that a killed child gets to disappear before it is left behind."""
+
+_SBIN = "/usr/local/sbin:/usr/sbin:/sbin"
+
+
+class Ending(Enum):
+    """How running a command ended."""
+
+    ENDED = auto()
+    MISSING = auto()
+    NOT_EXECUTABLE = auto()
+    NOT_STARTED = auto()
+    TIMED_OUT = auto()
+    TOO_MUCH = auto()
+    STOPPED = auto()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Answer:
+    """What a command left behind.
+
+    Attributes:
+        ending: how it ended.
+        status: its exit status, negative for a signal; None unless it ended by itself.
+        out: standard output; what came before the end where it was cut off.
+        err: standard error likewise.
+        trouble: the system's own words where it could not be started, else empty.
+    """
+
+    ending: Ending
+    status: int | None = None
+    out: bytes = b""
+    err: bytes = b""
+    trouble: str = ""
+
+
+class Door:
+    """Runs commands; any number at a time, from any thread."""
+
+    def __init__(self, *, limit: int = MOST_OUTPUT, grace: float = _GRACE) -> None:
+        """Build a door.
+
+        Args:
+            limit: most bytes of output that a child may write.
+            grace: seconds that a killed child gets to disappear.
+        """
+        self._limit = limit
+        self._grace = grace
+        self._lock = threading.Lock()
+        self._running: set[subprocess.Popen[bytes]] = set()
+        self._left_behind: list[subprocess.Popen[bytes]] = []
+        self._stopped = False
+
+    @property
+    def abandoned(self) -> int:
+        """How many children were killed but are still held by the kernel."""
+        with self._lock:
+            self._left_behind = [child for child in self._left_behind if child.poll() is None]
+            return len(self._left_behind)
+
+    def run(self, argv: Sequence[str], *, timeout: float) -> Answer:
+        """Run a command without a shell, in the C locale, with nothing on its standard input.
+
+        Args:
+            argv: the command, a path or a name on PATH, and its arguments.
+            timeout: seconds after which it is killed with all that it started.
+
+        Returns:
+            What became of it; this never raises for the command's sake and returns within the time-out, the
+            grace and a little.
+        """
+        _ = self.abandoned  # takes up those whom the kernel has let go of since
+        deadline = time.monotonic() + timeout
+        with self._lock:
+            if self._stopped:
+                return Answer(ending=Ending.STOPPED)
+            try:
+                child = subprocess.Popen(
+                    list(argv),
+                    stdin=subprocess.DEVNULL,
+                    stdout=subprocess.PIPE,
+                    stderr=subprocess.PIPE,
+                    env=_environment(os.environ),
+                    start_new_session=True,  # its own group, so that it can be killed with its children
+                )
+            except (OSError, ValueError) as error:
+                return _not_started(error)
+            self._running.add(child)
+        try:
+            return self._hear(child, deadline)
+        finally:
+            with self._lock:
+                self._running.discard(child)
+
+    def stop(self) -> None:
+        """Kill all that runs, at once; whatever is asked later is answered as stopped without running."""
+        with self._lock:
+            self._stopped = True
+            for child in self._running:
+                if child.poll() is None:
+                    _kill(child)
+
+    def _hear(self, child: subprocess.Popen[bytes], deadline: float) -> Answer:
+        """Take up a child's output and its end, and see to it that there is one."""
+        pipes = [pipe for pipe in (child.stdout, child.stderr) if pipe is not None]
+        out, err = heard = (bytearray(), bytearray())
+        ending = _listen(pipes, heard, deadline, self._limit)
+        status: int | None = None
+        if ending is Ending.ENDED:
+            try:
+                status = child.wait(max(0.0, deadline - time.monotonic()))
+            except subprocess.TimeoutExpired:
+                ending = Ending.TIMED_OUT
+        if ending is not Ending.ENDED:
+            self._put_down(child)
+        for pipe in pipes:
+            pipe.close()
+        if self._stopped and (status is None or status < 0):
+            ending, status = Ending.STOPPED, None
+        return Answer(ending=ending, status=status, out=bytes(out), err=bytes(err))
+
+    def _put_down(self, child: subprocess.Popen[bytes]) -> None:
+        """Kill a child and all that it started; leave it behind where even that does not end it."""
+        _kill(child)
+        try:
+            child.wait(self._grace)
+        except subprocess.TimeoutExpired:
+            with self._lock:
+                self._left_behind.append(child)
+
+
+def _listen(pipes: Sequence[IO[bytes]], heard: Sequence[bytearray], deadline: float, limit: int) -> Ending:
+    """Read pipes to their ends, or until the time is over or too much was said."""
+    with selectors.DefaultSelector() as selector:
+        for pipe, into in zip(pipes, heard, strict=True):
+            selector.register(pipe, selectors.EVENT_READ, into)
+        while selector.get_map():
+            ready = selector.select(max(0.0, deadline - time.monotonic()))
+            if not ready and time.monotonic() >= deadline:
+                return Ending.TIMED_OUT
+            for key, _events in ready:
+                piece = os.read(key.fd, 65_536)
+                if piece:
+                    key.data.extend(piece)
+                else:
+                    selector.unregister(key.fileobj)
+            if sum(map(len, heard)) > limit:
+                return Ending.TOO_MUCH
+    return Ending.ENDED
+
+
+def _kill(child: subprocess.Popen[bytes]) -> None:
+    # A child may be gone already, or have become another user's.
+    with contextlib.suppress(ProcessLookupError, PermissionError):
+        os.killpg(child.pid, signal.SIGKILL)
+
+
+def _environment(outer: Mapping[str, str]) -> dict[str, str]:
+    """The caller's environment, in the C locale and with the folders of system commands on PATH.
+
+    An ordinary user's PATH lacks them on some systems, though the commands there can be run.
+    """
+    path = outer.get("PATH", "/usr/local/bin:/usr/bin:/bin")
+    return {**outer, "LC_ALL": "C", "PATH": f"{path}:{_SBIN}"}
+
+
+def _not_started(error: OSError | ValueError) -> Answer:
+    trouble = (error.strerror or str(error)) if isinstance(error, OSError) else str(error)
+    if isinstance(error, (FileNotFoundError, NotADirectoryError)):
+        return Answer(ending=Ending.MISSING, trouble=trouble)
+    if isinstance(error, (PermissionError, IsADirectoryError)) or (
+        isinstance(error, OSError) and error.errno == errno.ENOEXEC
+    ):
+        return Answer(ending=Ending.NOT_EXECUTABLE, trouble=trouble)
+    return Answer(ending=Ending.NOT_STARTED, trouble=trouble)

@@ -1,0 +1,55 @@
+from diskwatch.machine.document import (
+    dig,
+    document_of,
+    flag_at,
+    messages,
+    number_at,
+    plain_lines,
+    rows_at,
+    text_at,
+)
+
+
+def test_only_a_json_object_is_a_document():
+    assert document_of('{"a": 1}') == {"a": 1}
+    for output in (
+        "",
+        "smartctl 7.3",
+        "[1]",
+        '{"a": 1',
+        '{"a":' * 100_000,
+        "{} trailing",
+        '{"a": ' + "9" * 5_000 + "}",
+    ):
+        assert document_of(output) is None
+
+
+def test_a_number_of_128_bits_stays_exact():
+    document = document_of(f'{{"log": {{"data": {2**128 - 1}}}}}')
+    assert number_at(document, "log", "data") == 2**128 - 1
+
+
+def test_the_exact_text_beside_a_large_number_is_taken():
+    assert number_at({"data": 3.4e38, "data_s": str(2**128 - 1)}, "data") == 2**128 - 1
+    assert number_at({"data": 7, "data_s": "not a number"}, "data") == 7
+
+
+def test_what_is_missing_or_of_another_sort_is_none():
+    document = {"a": {"b": True, "c": 1.5, "d": "x", "e": [1, {"f": 2}]}}
+    assert number_at(document, "a", "b") is None
+    assert number_at(document, "a", "c") is None
+    assert number_at(document, "a", "d", "deeper") is None
+    assert text_at(document, "a", "b") is None
+    assert flag_at(document, "a", "d") is None
+    assert rows_at(document, "a", "e") == ({"f": 2},)
+    assert rows_at(document, "a", "d") == ()
+    assert dig(document, "none", "none") is None
+
+
+def test_the_plain_text_and_the_complaints_are_found():
+    document = {
+        "smartctl": {"output": ["one", 2, "three"], "messages": [{"string": "bad"}, {"severity": "x"}, 3]}
+    }
+    assert plain_lines(document) == ("one", "three")
+    assert messages(document) == ("bad",)
+    assert plain_lines({}) == ()
