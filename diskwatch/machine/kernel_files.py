@@ -45,3 +45,11 @@ def names_in(folder: Path) -> tuple[str, ...]:
         return tuple(sorted(entry.name for entry in folder.iterdir()))
     except OSError:
         return ()
+
+
+def whole_of(path: Path) -> str | None:
+    """A long file of /proc as text; these come in pieces, unlike sysfs attributes. None where unreadable."""
+    try:
+        return path.read_bytes().decode("utf-8", "surrogateescape")  # names of folders are bytes to the kernel
+    except OSError:
+        return None
