@@ -1,0 +1,148 @@
+"""One drive as a band of lines: what to do, why, and what it is doing now. Pure.
+
+A drive that wants something takes three lines; a quiet one folds to what it is and what it does, two lines,
+and one where the screen is wide. All lines of a band begin with the bar of its weight
+(`diskwatch.dashboard.weight`).
+"""
+
+from rich.cells import cell_len
+from rich.text import Text
+
+from diskwatch.dashboard.ages import ago
+from diskwatch.dashboard.cells import column, cut, ends, fit
+from diskwatch.dashboard.rates import traffic
+from diskwatch.dashboard.weight import WORD_WIDTH, weight_of
+from diskwatch.dashboard.words import device, holdings, kind, name, reason
+from diskwatch.records import CallWord, DriveLine, Outcome
+from diskwatch.units import plain, say_bytes
+
+NARROW = 60
+"""Below this many columns only the name, the size and the device stand in the first line."""
+WIDE = 120
+"""From here on kind, cause, amounts in use and the model beside a label are shown too; later also the bay."""
+ONE_LINE = 160
+"""From here on a quiet drive needs one line only."""
+INDENT = 3
+"""Columns before the text of the second and later lines: bar, mark of choice, a blank."""
+
+_BAYS = 140
+_TRAFFIC_WIDTH = 72
+_ENDED = {
+    Outcome.READ: "read",
+    Outcome.NO_SMART: "no SMART",
+    Outcome.ASLEEP: "asleep",
+    Outcome.REFUSED: "refused",
+    Outcome.NO_TOOL: "no smartctl",
+    Outcome.TIMED_OUT: "no answer",
+    Outcome.ABSENT: "absent",
+    Outcome.GARBLED: "garbled",
+}
+_PEACEFUL = frozenset({Outcome.READ, Outcome.ASLEEP, Outcome.NO_SMART})
+
+
+def band(
+    line: DriveLine, now: int, width: int, *, chosen: bool = False, ascii_only: bool = False
+) -> tuple[Text, ...]:
+    """The band of one drive.
+
+    Args:
+        line: the drive.
+        now: the current time, UTC seconds since 1970.
+        width: columns that every line must keep within.
+        chosen: whether the reader stands on it.
+        ascii_only: whether the terminal's letters end at ASCII.
+
+    Returns:
+        One to three lines, none wider than ``width``, free of control characters.
+    """
+    mark = "..." if ascii_only else "…"
+    bar = edge(line, ascii_only=ascii_only)
+    if is_quiet(line) and width >= ONE_LINE:
+        beside = width - _TRAFFIC_WIDTH - 2
+        first = _title(line, width, beside, chosen=chosen, bar=bar, mark=mark)
+        first.append("  ")
+        return (fit(first.append_text(_doing(line, now, _TRAFFIC_WIDTH, mark)), width),)
+    title = _title(line, width, width, chosen=chosen, bar=bar, mark=mark)
+    inner = max(width - INDENT, 0)
+    body = [_doing(line, now, inner, mark)]
+    if not is_quiet(line):
+        body.insert(0, _why(line, inner, mark))
+    indent = Text.assemble(bar, " " * (INDENT - 1))
+    return (title, *(fit(Text.assemble(indent, part), width) for part in body))
+
+
+def is_quiet(line: DriveLine) -> bool:
+    """Whether a drive wants nothing: keep, or without SMART, and the last pass met no obstacle."""
+    if line.last_pass is None or line.last_pass.outcome not in _PEACEFUL:
+        return False
+    if line.call is None:
+        return line.last_pass.outcome is Outcome.NO_SMART
+    return line.call.word is CallWord.KEEP
+
+
+def edge(line: DriveLine, *, ascii_only: bool) -> Text:
+    """The one block that every line of the band begins with."""
+    weight = weight_of(line)
+    return Text(weight.bar_ascii if ascii_only else weight.bar, style=weight.colour)
+
+
+def _title(line: DriveLine, screen: int, width: int, *, chosen: bool, bar: Text, mark: str) -> Text:
+    """The first line, ``width`` columns of a ``screen``; columns stand alike in all bands of one screen."""
+    weight = weight_of(line)
+    word = weight.word if len(weight.word) == WORD_WIDTH else f" {weight.word}".ljust(WORD_WIDTH)
+    start = Text.assemble(bar, (">" if chosen else " ", "bold"), (word, weight.style), " ")
+    capacity = line.drive.capacity_bytes
+    size = "size ?" if capacity is None else say_bytes(capacity)
+    style = "bold underline" if chosen else "bold"
+    where = device(line)
+    if width < NARROW:
+        right = cut(f"{size} {where}", max(width // 2 - 4, 0), mark)
+        room = width - start.cell_len - cell_len(right) - 1
+        return ends(Text.assemble(start, (cut(name(line), room, mark), style)), Text(right), width)
+    roomy = screen >= WIDE
+    named = 36 if roomy else width * 3 // 10
+    left = Text.assemble(start, (cut(name(line, roomy=roomy), named, mark), style))
+    left.append(" " * max(start.cell_len + named + 2 - left.cell_len, 2))
+    right = f"{size:>7}  {column(where, max(8, min(cell_len(where), 22)), mark)}"
+    if roomy and width == screen:
+        right = f"{kind(line):<9}{right}"
+        if screen >= _BAYS:
+            bay = "" if line.place.bay is None else f"in {plain(line.place.bay)}"
+            right = f"{right}  {column(bay, 32, mark)}"
+    left.append(holdings(line, width - left.cell_len - cell_len(right) - 2, roomy=roomy))
+    return ends(left, Text(right), width)
+
+
+def _why(line: DriveLine, width: int, mark: str) -> Text:
+    call = line.call
+    if width < WIDE - INDENT or call is None or call.cause is None:
+        return Text(cut(reason(line), width, mark))
+    cause = f"cause: {call.cause}"
+    if call.cause_probability is not None:
+        cause += f", {call.cause_probability * 100:.0f} % likely"
+    if call.cause_second is not None:
+        cause += f", else {call.cause_second}"
+    return ends(Text(cut(reason(line), width - len(cause) - 2, mark)), Text(cause), width)
+
+
+def _doing(line: DriveLine, now: int, width: int, mark: str) -> Text:
+    """Traffic at the left, which gives way; margin and last pass at the right, the margin only when narrow."""
+    margin = "" if line.call is None or line.call.word is CallWord.KEEP else "margin unknown  "
+    passed, passed_short = _passed(line, now, short=False), _passed(line, now, short=True)
+    rights = (margin + passed, margin + passed_short) if width >= NARROW else (passed, passed_short)
+    lefts = traffic(line.traffic)
+    for left in lefts:
+        for right in rights:
+            if len(left) + len(right) + 2 <= width:
+                return ends(Text(left), Text(right), width)
+    right = cut(rights[-1], width, mark)
+    return ends(Text(cut(lefts[-1], width - len(right) - 2, mark)), Text(right), width)
+
+
+def _passed(line: DriveLine, now: int, *, short: bool) -> str:
+    """How the last pass ended, and when."""
+    if line.last_pass is None:
+        return "not asked yet"
+    if line.last_pass.outcome is Outcome.NO_SMART and is_quiet(line):
+        return "watched by its traffic alone"
+    return f"{_ENDED[line.last_pass.outcome]} {ago(line.last_pass.at, now, short=short)}"

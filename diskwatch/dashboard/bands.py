@@ -1,0 +1,148 @@
+"""The list of bands: one widget a drive, one of them chosen, any of them unfolded."""
+
+from rich.text import Text
+from textual import events
+from textual.containers import VerticalScroll
+
+from diskwatch.dashboard.band import band
+from diskwatch.dashboard.lines import Lines
+from diskwatch.dashboard.unfold import unfolded
+from diskwatch.records import DriveLine
+
+
+class Band(Lines):
+    """One drive's band."""
+
+    DEFAULT_CSS = """
+    Band.chosen { background: $boost; }
+    """
+
+    def __init__(self, place: int) -> None:
+        """Make the band that stands at a place in the list, counted from 0."""
+        super().__init__(_nothing)
+        self.place = place
+
+    def on_click(self, event: events.Click) -> None:
+        """Go to this drive; unfold it where the reader stands on it already."""
+        event.stop()
+        if isinstance(self.parent, Bands):
+            self.parent.pick(self.place)
+
+
+class Bands(VerticalScroll, can_focus=False):
+    """All bands. It scrolls so that the chosen one is seen; drives are remembered by number, not by place."""
+
+    DEFAULT_CSS = """
+    Bands { height: 1fr; scrollbar-size-vertical: 1; scrollbar-gutter: stable; }
+    Bands.roomy { padding-top: 1; }
+    Bands.roomy Band { margin-bottom: 1; }
+    """
+
+    def __init__(self, *, ascii_only: bool) -> None:
+        """Make an empty list."""
+        super().__init__()
+        self._ascii_only = ascii_only
+        self._drives: tuple[DriveLine, ...] = ()
+        self._now = 0
+        self._chosen: int | None = None
+        self._place = 0
+        self._open: set[int] = set()
+
+    @property
+    def chosen(self) -> DriveLine | None:
+        """The drive that the reader stands on; None where there is none."""
+        return self._drives[self._place] if self._drives else None
+
+    def show(self, drives: tuple[DriveLine, ...], now: int) -> None:
+        """Show these drives in this order.
+
+        The reader stays on the same drive wherever it moves in the order; where it has gone, on the same place.
+        """
+        self._drives, self._now = drives, now
+        numbers = [line.number for line in drives]
+        if self._chosen in numbers:
+            self._place = numbers.index(self._chosen)
+        self._place = max(min(self._place, len(drives) - 1), 0)
+        self._chosen = numbers[self._place] if numbers else None
+        bands = list(self.query_children(Band))
+        for surplus in bands[len(drives) :]:
+            surplus.remove()
+        fresh = [Band(place) for place in range(len(bands), len(drives))]
+        for widget in [*bands[: len(drives)], *fresh]:
+            self._fill(widget)
+        if fresh:
+            self.mount_all(fresh)
+        self._spread()
+
+    def move(self, by: int) -> None:
+        """Go ``by`` drives down, or up where negative."""
+        self._go(self._place + by)
+
+    def page(self, by: int) -> None:
+        """Go by as many drives as the screen shows whole, at least one."""
+        shown = sum(self.region.contains_region(widget.region) for widget in self.query_children(Band))
+        self._go(self._place + by * max(shown, 1))
+
+    def first(self) -> None:
+        """Go to the first drive."""
+        self._go(0)
+
+    def last(self) -> None:
+        """Go to the last drive."""
+        self._go(len(self._drives) - 1)
+
+    def unfold(self) -> None:
+        """Unfold the chosen drive, or fold it again."""
+        if self._chosen is None:
+            return
+        self._open ^= {self._chosen}
+        self.show(self._drives, self._now)
+        self.call_after_refresh(self._reveal)
+
+    def pick(self, place: int) -> None:
+        """Go to the drive at a place; unfold it where the reader stands there already."""
+        if place == self._place:
+            self.unfold()
+        else:
+            self._go(place)
+
+    def on_resize(self, _event: events.Resize) -> None:
+        """Keep the chosen drive in sight, and blank lines only where there is room for all."""
+        self._spread()
+        self.call_after_refresh(self._reveal)
+
+    def _go(self, place: int) -> None:
+        if not self._drives:
+            return
+        self._place = max(min(place, len(self._drives) - 1), 0)
+        self._chosen = self._drives[self._place].number
+        self.show(self._drives, self._now)
+        self._reveal()
+
+    def _fill(self, widget: Band) -> None:
+        line = self._drives[widget.place]
+        chosen = widget.place == self._place
+        widget.set_class(chosen, "chosen")
+        widget.show(lambda width: self._lines(line, width, chosen=chosen))
+
+    def _lines(self, line: DriveLine, width: int, *, chosen: bool) -> tuple[Text, ...]:
+        lines = band(line, self._now, width, chosen=chosen, ascii_only=self._ascii_only)
+        if line.number in self._open:
+            lines += unfolded(line, self._now, width, ascii_only=self._ascii_only)
+        return lines
+
+    def _spread(self) -> None:
+        width = self.scrollable_content_region.width
+        if width <= 0:
+            return
+        rows = sum(len(self._lines(line, width, chosen=False)) for line in self._drives)
+        self.set_class(rows + len(self._drives) <= self.outer_size.height, "roomy")
+
+    def _reveal(self) -> None:
+        for widget in self.query_children(Band):
+            if widget.place == self._place:
+                self.scroll_to_widget(widget, animate=False)
+
+
+def _nothing(_width: int) -> tuple[Text, ...]:
+    return ()

@@ -1,0 +1,54 @@
+"""How grave a call looks: its word, the density of the bar before it, its weight, and colour on top of those.
+
+Nothing is told by colour alone. Colours are of the palette that people with any colour vision can tell apart:
+Okabe and Ito (2008), "Color Universal Design"; their values are given here from memory.
+"""
+
+from dataclasses import dataclass
+
+from diskwatch.records import CallWord, DriveLine, Outcome
+
+WORD_WIDTH = 8
+"""Columns of the call's word: the longest with a blank on either side, so that reverse has edges."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Weight:
+    """How one call looks.
+
+    Attributes:
+        word: what stands where the call stands.
+        bar: one block character; denser means graver.
+        bar_ascii: its stand-in where blocks cannot be shown.
+        colour: colour of the bar, or an empty text for the terminal's own.
+        style: weight of the word.
+    """
+
+    word: str
+    bar: str
+    bar_ascii: str
+    colour: str
+    style: str
+
+
+_CALLS = {
+    CallWord.KEEP: Weight(word="keep", bar="░", bar_ascii=":", colour="", style=""),
+    CallWord.LOOK: Weight(word="look", bar="▒", bar_ascii="+", colour="#56b4e9", style="bold"),
+    CallWord.COPY: Weight(word="copy", bar="▓", bar_ascii="%", colour="#e69f00", style="bold underline"),
+    CallWord.RETIRE: Weight(word="retire", bar="█", bar_ascii="#", colour="#d55e00", style="bold reverse"),
+}
+_UNREAD = Weight(word="unread", bar="▒", bar_ascii="+", colour="#56b4e9", style="bold")
+_NO_SMART = Weight(word="no SMART", bar="░", bar_ascii=":", colour="", style="")
+
+
+def weight_of(line: DriveLine) -> Weight:
+    """How a drive weighs.
+
+    A drive that was not read yet weighs as much as a look, because nothing is known of it. One that has no
+    SMART has no call and never will: it weighs as little as a keep.
+    """
+    if line.call is not None:
+        return _CALLS[line.call.word]
+    if line.last_pass is not None and line.last_pass.outcome is Outcome.NO_SMART:
+        return _NO_SMART
+    return _UNREAD
