@@ -30,10 +30,11 @@ def bay_of(sys_root: Path, parts: Sequence[str]) -> str | None:
         ``usb 1-4``, ``pci-0000:00:17.0-ata-3``, ``pci-0000:01:00.0 nvme``, ``pci-0000:02:00.0-sas-bay-5``,
         ``virtio1`` and the like; None where the path shows no port.
     """
+    host = next((index for index, part in enumerate(parts) if _HOST.fullmatch(part)), None)
     for index in range(len(parts) - 1, -1, -1):
         part = parts[index]
         if _BARE.fullmatch(part):
-            return part
+            return part if host is None else f"{part}-scsi-{_lun(parts)}"
         if _USB_PORT.fullmatch(part) and any(re.fullmatch(r"usb\d+", above) for above in parts[:index]):
             return f"usb {part}"
         if part == "nvme":
@@ -42,9 +43,8 @@ def bay_of(sys_root: Path, parts: Sequence[str]) -> str | None:
             return _sas(sys_root, parts, index)
         if _ATA.fullmatch(part):
             return _ata(sys_root, parts, index)
-        if _HOST.fullmatch(part):
-            return f"{_controller(parts[:index])}-scsi-{_lun(parts)}"
-    return None
+    # Every SCSI disk has a host, so it says the least and comes last.
+    return f"{_controller(parts[:host])}-scsi-{_lun(parts)}" if host is not None else None
 
 
 def _ata(sys_root: Path, parts: Sequence[str], index: int) -> str:
