@@ -1,0 +1,181 @@
+"""Figures of the last seconds, handed from the watch to whoever looks, through memory and not through a disk.
+
+The file lies in the first of `diskwatch.places.live_folders` that can be written. The last of them is the state
+folder, on a real disk: there it is written at most once a minute.
+
+    {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 20480, 28672, 3, 9, 11]]}
+
+A span is ``drive, at, seconds, reads, writes, read_bytes, write_bytes, read_ms, write_ms, busy_ms``.
+"""
+
+import contextlib
+import hashlib
+import json
+import os
+import stat
+from collections.abc import Sequence
+from pathlib import Path
+from typing import Any
+
+from diskwatch import places
+from diskwatch.records import IoCounts, IoSpan
+
+FRESH_S = 60
+"""Figures older than this are nobody's present any more, seconds."""
+
+DISK_EVERY_S = 60
+"""Least time between two writes where the file lies on a real disk, seconds."""
+
+_LARGEST_FILE = 1 << 20
+
+
+def live_name(state: Path) -> str:
+    """The file's name: one a state folder, so that two watches on one machine never mix."""
+    return f"live-{hashlib.sha256(os.fsencode(state.resolve())).hexdigest()[:16]}.json"
+
+
+class LiveWriter:
+    """Shares the figures of one watch; removes them on close.
+
+    That they cannot be shared harms nothing but the view of the moment, so it is no error.
+
+    Args:
+        folder: the state folder of the watch.
+    """
+
+    def __init__(self, folder: Path) -> None:
+        self._state = folder
+        self._name = live_name(folder)
+        self._path: Path | None = None
+        self._written_at: int | None = None
+
+    def write(self, spans: Sequence[IoSpan], at: int) -> bool:
+        """Share the last span of every drive.
+
+        Args:
+            spans: one a drive.
+            at: now, UTC seconds since 1970.
+
+        Returns:
+            Whether these figures were shared; False also where it is too early for a real disk.
+        """
+        if self._path is not None and self._path.parent == self._state and not self._due(at):
+            return False
+        text = json.dumps({"at": at, "spans": [_row(span) for span in spans]}, separators=(",", ":"))
+        for folder in places.live_folders(self._state):
+            path = folder / self._name
+            try:
+                _ready(folder)
+                _replace(path, text.encode("ascii"))
+            except OSError:
+                continue
+            self._path, self._written_at = path, at
+            return True
+        return False
+
+    def _due(self, at: int) -> bool:
+        return self._written_at is None or not 0 <= at - self._written_at < DISK_EVERY_S
+
+    def close(self) -> None:
+        """Take the figures away."""
+        if self._path is not None:
+            with contextlib.suppress(OSError):
+                self._path.unlink()
+            self._path = None
+
+
+def read_live(folder: Path, now: int) -> tuple[IoSpan, ...]:
+    """The figures that the watch of a state folder shares now.
+
+    Only a file of the history's owner, or of root, that nobody else may write is believed.
+
+    Args:
+        folder: the state folder.
+        now: UTC seconds since 1970.
+
+    Returns:
+        One span a drive; nothing where nobody shares any, or not within the last `FRESH_S` seconds.
+    """
+    try:
+        owner = (folder / places.HISTORY).stat().st_uid
+    except OSError:
+        return ()
+    for candidate in places.live_folders(folder):
+        # On a real disk it is written rarely, and so it holds good until the next time it is due.
+        patience = FRESH_S + (DISK_EVERY_S if candidate == folder else 0)
+        found = _believed(candidate / live_name(folder), frozenset({owner, 0}))
+        if found is not None and abs(now - found[0]) <= patience:
+            return found[1]
+    return ()
+
+
+def _row(span: IoSpan) -> list[int | float]:
+    counts = span.counts
+    return [
+        span.drive,
+        span.at,
+        span.seconds,
+        counts.reads,
+        counts.writes,
+        counts.read_bytes,
+        counts.write_bytes,
+        counts.read_ms,
+        counts.write_ms,
+        counts.busy_ms,
+    ]
+
+
+def _ready(folder: Path) -> None:
+    with contextlib.suppress(FileExistsError):
+        folder.mkdir(mode=0o755)
+        folder.chmod(0o755)  # whatever the umask: other users may look
+
+
+def _replace(path: Path, content: bytes) -> None:
+    """Put a file in place whole, so that no reader ever meets a half."""
+    making = path.with_name(f".{path.name}.{os.getpid()}")
+    making.unlink(missing_ok=True)
+    descriptor = os.open(making, os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_NOFOLLOW | os.O_CLOEXEC, 0o644)
+    try:
+        with os.fdopen(descriptor, "wb") as file:
+            os.fchmod(descriptor, 0o644)
+            file.write(content)
+        making.replace(path)
+    except OSError:
+        making.unlink(missing_ok=True)
+        raise
+
+
+def _believed(path: Path, owners: frozenset[int]) -> tuple[int, tuple[IoSpan, ...]] | None:
+    try:
+        descriptor = os.open(path, os.O_RDONLY | os.O_NOFOLLOW | os.O_NONBLOCK | os.O_CLOEXEC)
+    except OSError:
+        return None
+    with os.fdopen(descriptor, "rb") as file:
+        about = os.fstat(descriptor)
+        if not stat.S_ISREG(about.st_mode) or about.st_uid not in owners or about.st_mode & 0o022:
+            return None
+        try:
+            found = json.loads(file.read(_LARGEST_FILE))
+            return int(found["at"]), tuple(_span(row) for row in found["spans"])
+        except (OSError, ValueError, KeyError, TypeError):
+            return None
+
+
+def _span(row: list[Any]) -> IoSpan:
+    drive, at, seconds, *counts = row
+    reads, writes, read_bytes, write_bytes, read_ms, write_ms, busy_ms = map(int, counts)
+    return IoSpan(
+        drive=int(drive),
+        at=int(at),
+        seconds=float(seconds),
+        counts=IoCounts(
+            reads=reads,
+            writes=writes,
+            read_bytes=read_bytes,
+            write_bytes=write_bytes,
+            read_ms=read_ms,
+            write_ms=write_ms,
+            busy_ms=busy_ms,
+        ),
+    )

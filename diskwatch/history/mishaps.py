@@ -1,0 +1,75 @@
+"""What SQLite and the system report, turned into one clear sentence that names the file."""
+
+import errno
+import sqlite3
+from pathlib import Path
+
+from diskwatch.errors import HistoryError
+from diskwatch.units import plain
+
+_WORDS: dict[int, tuple[str, str | None]] = {
+    sqlite3.SQLITE_FULL: (
+        "cannot be written: the disk that holds it is full",
+        "free some space; what was stored before is kept",
+    ),
+    sqlite3.SQLITE_READONLY: (
+        "cannot be written: it or its folder is read-only for this user",
+        "run as the user that owns it, or name another folder with --state",
+    ),
+    sqlite3.SQLITE_BUSY: ("is locked by another process", "try again when that process has ended"),
+    sqlite3.SQLITE_LOCKED: ("is locked by another process", "try again when that process has ended"),
+    sqlite3.SQLITE_CORRUPT: (
+        "is damaged",
+        "keep it, move it aside, and start again or bring back a copy",
+    ),
+    sqlite3.SQLITE_NOTADB: (
+        "is not a history of diskwatch: it is no SQLite database, or its beginning is damaged",
+        "keep it, move it aside, and start again or bring back a copy",
+    ),
+    sqlite3.SQLITE_CANTOPEN: (
+        "cannot be opened: it, its folder or a file beside it does not let this user in",
+        "run as the user that owns it, or name another folder with --state",
+    ),
+    sqlite3.SQLITE_PERM: ("cannot be opened: this user has no right to", "run as the user that owns it"),
+    sqlite3.SQLITE_IOERR: (
+        "cannot be used: the disk that holds it reports an error or has no space left",
+        "look at that disk first",
+    ),
+}
+_ERRNO_CODES = {
+    errno.ENOSPC: sqlite3.SQLITE_FULL,
+    errno.EDQUOT: sqlite3.SQLITE_FULL,
+    errno.EROFS: sqlite3.SQLITE_READONLY,
+    errno.EACCES: sqlite3.SQLITE_CANTOPEN,
+    errno.EPERM: sqlite3.SQLITE_CANTOPEN,
+    errno.EIO: sqlite3.SQLITE_IOERR,
+}
+
+
+def primary(error: sqlite3.Error) -> int | None:
+    """SQLite's primary result code of an error; None where Python's own layer raised it."""
+    code = getattr(error, "sqlite_errorcode", None)
+    return None if code is None else int(code) & 0xFF
+
+
+def told(error: sqlite3.Error | OSError, path: Path | None) -> HistoryError:
+    """An error of SQLite or the system as one of ours.
+
+    Args:
+        error: what was raised.
+        path: the file or folder that was being used; None for a history in memory.
+    """
+    name = "the history in memory" if path is None else plain(str(path))
+    code = _ERRNO_CODES.get(error.errno or 0) if isinstance(error, OSError) else primary(error)
+    if code in _WORDS:
+        what, hint = _WORDS[code]
+        return HistoryError(f"{name} {what}", hint=hint)
+    detail = error.strerror if isinstance(error, OSError) else str(error)
+    return HistoryError(f"{name} cannot be used: {plain(str(detail))}")
+
+
+def unreadable(path: Path | None) -> HistoryError:
+    """The error for a history whose file is sound but whose contents make no sense."""
+    name = "the history in memory" if path is None else plain(str(path))
+    what, hint = _WORDS[sqlite3.SQLITE_CORRUPT]
+    return HistoryError(f"{name} {what}: it holds a value that cannot be right", hint=hint)

@@ -1,0 +1,188 @@
+"""Opening a history to read it, so that nothing of it is created or changed.
+
+A history in WAL mode is read in one of two ways. While a write-ahead log lies beside it, SQLite must be let see
+that log: an ordinary connection with ``mode=ro``. Without one nobody is writing, and an ordinary user, or a
+read-only disk, could not even create the index that SQLite wants beside the log: then ``immutable=1`` reads the
+file alone. That is right only as long as the file stays as it is, so whoever reads this way asks `Opened.holds`
+before and after.
+"""
+
+import sqlite3
+from collections.abc import Iterator
+from contextlib import contextmanager
+from dataclasses import dataclass
+from pathlib import Path
+
+from diskwatch.errors import HistoryError, NothingToWorkOn
+from diskwatch.history import versions
+from diskwatch.history.mishaps import primary, told
+from diskwatch.units import plain
+
+BUSY_MS = 5_000
+"""How long a lock is waited for, milliseconds."""
+
+_NO_WAY_IN = frozenset({sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_READONLY})
+
+
+@dataclass(frozen=True, slots=True)
+class _Mark:
+    """What tells whether a file was written or replaced: device, inode, time of change and size; its logs."""
+
+    file: tuple[int, int]
+    changed: tuple[int, int]
+    log: int | None
+    journal: int | None
+
+
+def _size(path: Path) -> int | None:
+    try:
+        return path.stat().st_size
+    except FileNotFoundError:
+        return None
+
+
+def _mark(path: Path) -> _Mark:
+    # The logs are looked at first: one that appears in between is then met by the next look, never missed.
+    log = _size(path.with_name(path.name + "-wal"))
+    journal = _size(path.with_name(path.name + "-journal"))
+    about = path.stat()
+    return _Mark(
+        file=(about.st_dev, about.st_ino),
+        changed=(about.st_mtime_ns, about.st_size),
+        log=log,
+        journal=journal,
+    )
+
+
+class Opened:
+    """A history open for reading; good for any thread, one at a time.
+
+    Attributes:
+        connection: the connection; it cannot write.
+        frozen: True where it reads the file alone, without any log.
+    """
+
+    def __init__(self, path: Path, connection: sqlite3.Connection, mark: _Mark, *, frozen: bool) -> None:
+        self.connection = connection
+        self.frozen = frozen
+        self._path = path
+        self._mark = mark
+
+    def holds(self) -> bool:
+        """Whether what this connection gives is still what the file says."""
+        try:
+            now = _mark(self._path)
+        except OSError:
+            return False
+        return now == self._mark if self.frozen else now.file == self._mark.file
+
+    def close(self) -> None:
+        """Let go of the file."""
+        self.connection.close()
+
+
+def open_to_read(path: Path) -> Opened:
+    """Open a history to read.
+
+    Raises:
+        NothingToWorkOn: there is none yet, or nothing in it.
+        HistoryTooNew: a newer version wrote it.
+        HistoryError: it cannot be read.
+    """
+    try:
+        mark = _mark(path)
+    except FileNotFoundError:
+        raise _nothing_yet(path) from None
+    except OSError as error:
+        raise told(error, path) from error
+    if mark.changed[1] == 0 and not mark.log:
+        raise _nothing_yet(path)
+    opened = _connected(path, mark)
+    try:
+        _refuse_unreadable(opened, path)
+    except BaseException:
+        opened.close()
+        raise
+    return opened
+
+
+def _refuse_unreadable(opened: Opened, path: Path) -> None:
+    with _told(path):
+        found = versions.age(opened.connection, path)
+    if found is versions.Age.EMPTY:
+        raise _nothing_yet(path)
+    if found is versions.Age.OLDER:
+        raise HistoryError(
+            f"{plain(str(path))} was written by an older version of diskwatch",
+            hint="the watch brings it up to date when it starts, or run 'diskwatch watch --once'",
+        )
+
+
+def refuse_foreign(path: Path) -> None:
+    """Refuse a file that is not ours to write, before anything touches it.
+
+    Raises:
+        HistoryTooNew: a newer version wrote it.
+        HistoryError: it is no history of diskwatch, or damaged, or cannot be read.
+    """
+    try:
+        mark = _mark(path)
+    except FileNotFoundError:
+        return
+    except OSError as error:
+        raise told(error, path) from error
+    if mark.changed[1] == 0:
+        return  # a start that was cut short before its first step: nothing stands in it
+    opened = _connected(path, mark)
+    try:
+        with _told(path):
+            versions.age(opened.connection, path)
+    finally:
+        opened.close()
+
+
+def _nothing_yet(path: Path) -> NothingToWorkOn:
+    return NothingToWorkOn(
+        f"nothing has been recorded in {plain(str(path.parent))} yet",
+        hint="start the watch, or run 'diskwatch watch --once' to read the drives once",
+    )
+
+
+def _connected(path: Path, mark: _Mark) -> Opened:
+    if mark.log is None and mark.journal is None:
+        return _connect(path, mark, frozen=True)
+    try:
+        return _connect(path, mark, frozen=False)
+    except HistoryError as error:
+        cause = error.__cause__
+        # An empty log hides nothing; a log with something in it must never be passed over in silence.
+        if (
+            not mark.log
+            and not mark.journal
+            and isinstance(cause, sqlite3.Error)
+            and primary(cause) in _NO_WAY_IN
+        ):
+            return _connect(path, mark, frozen=True)
+        raise
+
+
+def _connect(path: Path, mark: _Mark, *, frozen: bool) -> Opened:
+    uri = path.resolve().as_uri() + ("?immutable=1" if frozen else "?mode=ro")
+    with _told(path):
+        connection = sqlite3.connect(
+            uri, uri=True, isolation_level=None, check_same_thread=False, timeout=BUSY_MS / 1000
+        )
+        try:
+            connection.execute("SELECT count(*) FROM sqlite_master").fetchone()
+        except BaseException:
+            connection.close()
+            raise
+    return Opened(path, connection, mark, frozen=frozen)
+
+
+@contextmanager
+def _told(path: Path) -> Iterator[None]:
+    try:
+        yield
+    except sqlite3.Error as error:
+        raise told(error, path) from error

@@ -1,0 +1,97 @@
+"""What is rewritten at nearly every pass, made small: an analyser's state, and a reading beside its values.
+
+Packed it costs a third of the bytes, and the bytes that the watch writes are counted.
+"""
+
+import json
+import zlib
+from typing import Any
+
+from diskwatch.records import Attribute, Failing, Reading, SelfTest
+
+
+def packed(words: str) -> bytes:
+    """Text made small for a column that is rewritten often."""
+    return zlib.compress(words.encode("utf-8", "surrogatepass"), 6)
+
+
+def unpacked(kept: bytes) -> str:
+    """The text that ``packed`` was given.
+
+    Raises:
+        ValueError: these bytes are not what it wrote.
+    """
+    try:
+        return zlib.decompress(kept).decode("utf-8", "surrogatepass")
+    except zlib.error as error:
+        raise ValueError(f"packed text is damaged: {error}") from error
+
+
+def reading_packed(reading: Reading) -> bytes:
+    """All of a reading but its values, which stand in the series."""
+    attributes = [
+        [
+            one.number,
+            one.name,
+            one.value,
+            one.worst,
+            one.threshold,
+            one.prefail,
+            one.raw,
+            None if one.failing is None else one.failing.value,
+        ]
+        for one in reading.attributes
+    ]
+    tests = [
+        [one.name, one.result, one.extended, one.passed, one.unreadable, one.hours, one.lba]
+        for one in reading.self_tests
+    ]
+    limits = [reading.warning_celsius, reading.critical_celsius]
+    whole = {"attributes": attributes, "self_tests": tests, "limits": limits}
+    return packed(json.dumps(whole, separators=(",", ":")))
+
+
+def reading(kept: bytes) -> Reading:
+    """A reading without its values, from what `reading_packed` gave.
+
+    Raises:
+        ValueError: these bytes are not what it wrote.
+    """
+    try:
+        found: dict[str, Any] = json.loads(unpacked(kept))
+        warning, critical = found["limits"]
+    except (KeyError, TypeError) as error:
+        raise ValueError(f"no reading: {error}") from error
+    return Reading(
+        attributes=tuple(_attribute(row) for row in found["attributes"]),
+        self_tests=tuple(_self_test(row) for row in found["self_tests"]),
+        warning_celsius=warning,
+        critical_celsius=critical,
+    )
+
+
+def _attribute(row: list[Any]) -> Attribute:
+    number, name, value, worst, threshold, prefail, raw, failing = row
+    return Attribute(
+        number=number,
+        name=name,
+        value=value,
+        worst=worst,
+        threshold=threshold,
+        prefail=prefail,
+        raw=raw,
+        failing=None if failing is None else Failing(failing),
+    )
+
+
+def _self_test(row: list[Any]) -> SelfTest:
+    name, result, extended, passed, unreadable, hours, lba = row
+    return SelfTest(
+        name=name,
+        result=result,
+        extended=extended,
+        passed=passed,
+        unreadable=unreadable,
+        hours=hours,
+        lba=lba,
+    )

@@ -1,0 +1,129 @@
+"""What can be asked of a history's past, each question answered from an index.
+
+Every function raises sqlite3.Error where the history cannot be read and ValueError where it holds what cannot
+be right.
+"""
+
+import json
+import sqlite3
+from collections.abc import Collection
+
+from diskwatch.history import packing, rows
+from diskwatch.records import Entry, IoSpan, Pass, Reading
+from diskwatch.units import day_number
+
+_EVER = -(2**63)
+
+_DAY_BOOK = (
+    "SELECT at, drive, kind, text, data FROM day_book WHERE at >= :since"
+    " AND (:kinds IS NULL OR kind IN (SELECT value FROM json_each(:kinds)))"
+    " ORDER BY at DESC, number DESC LIMIT :limit"
+)
+_DAY_BOOK_OF_DRIVE = (
+    "SELECT at, drive, kind, text, data FROM day_book WHERE drive = :drive AND at >= :since"
+    " AND (:kinds IS NULL OR kind IN (SELECT value FROM json_each(:kinds)))"
+    " ORDER BY at DESC, number DESC LIMIT :limit"
+)
+_PASSES = (
+    "SELECT at, outcome, exit_bits, took_ms, text FROM pass"
+    " LEFT JOIN sentence ON sentence.number = pass.explanation"
+    " WHERE drive = ? AND at >= ? ORDER BY at DESC LIMIT ?"
+)
+_SERIES = "SELECT number FROM series WHERE drive = ? AND signal = ? AND current"
+_SERIES_EVER = "SELECT number FROM series WHERE drive = ? AND signal = ? ORDER BY number"
+_HELD = (
+    "SELECT max(at) FROM (SELECT max(at) AS at FROM value WHERE series = :series AND at <= :since"
+    " UNION ALL SELECT max(at) FROM fresh WHERE series = :series AND at <= :since)"
+)
+_VALUES = (
+    "SELECT at, value FROM value WHERE series = :series AND at >= :since"
+    " UNION SELECT at, value FROM fresh WHERE at >= :since AND series = :series ORDER BY at"
+)
+_EVIDENCE = (
+    "SELECT day, evidence FROM evidence WHERE series = :series AND day >= :day"
+    " UNION SELECT day, evidence FROM latest WHERE series = :series AND day >= :day AND evidence IS NOT NULL"
+)
+_TRAFFIC = (
+    "SELECT drive, at + 60, span_ms, reads, writes, read_bytes, write_bytes, read_ms, write_ms, busy_ms"
+    " FROM io_minute WHERE at >= ? AND at < ? AND drive = ? ORDER BY at"
+)
+
+
+def day_book(
+    connection: sqlite3.Connection,
+    since: int | None,
+    drive: int | None,
+    kinds: Collection[str] | None,
+    limit: int | None,
+) -> tuple[Entry, ...]:
+    """What happened, oldest first; with a limit the newest so many."""
+    found = connection.execute(
+        _DAY_BOOK if drive is None else _DAY_BOOK_OF_DRIVE,
+        {
+            "since": _from(since),
+            "drive": drive,
+            "kinds": None if kinds is None else json.dumps(sorted(kinds)),
+            "limit": _up_to(limit),
+        },
+    ).fetchall()
+    return tuple(rows.entry(row) for row in reversed(found))
+
+
+def passes(
+    connection: sqlite3.Connection, drive: int, since: int | None, limit: int | None
+) -> tuple[Pass, ...]:
+    """How asking a drive went, oldest first; with a limit the newest so many."""
+    found = connection.execute(_PASSES, (drive, _from(since), _up_to(limit))).fetchall()
+    return tuple(rows.past_pass(row) for row in reversed(found))
+
+
+def series(
+    connection: sqlite3.Connection, drive: int, signal: str, since: int | None
+) -> tuple[tuple[int, int | str | None], ...]:
+    """A signal's changes, oldest first, beginning with the value that held at ``since``."""
+    number = connection.execute(_SERIES, (drive, rows.text(signal))).fetchone()
+    if number is None:
+        return ()
+    first = _from(since)
+    (held,) = connection.execute(_HELD, {"series": number[0], "since": first}).fetchone()
+    found = connection.execute(
+        _VALUES, {"series": number[0], "since": first if held is None else held}
+    ).fetchall()
+    return tuple((at, rows.value(kept)) for at, kept in found)
+
+
+def evidence(
+    connection: sqlite3.Connection, drive: int, signal: str, since: int | None
+) -> tuple[tuple[int, float], ...]:
+    """A ledger's evidence by day, oldest first; the ledger goes on where a signal's unit became another."""
+    days: dict[int, float] = {}
+    for (number,) in connection.execute(_SERIES_EVER, (drive, rows.text(signal))).fetchall():
+        first = _EVER if since is None else day_number(since)
+        days.update(connection.execute(_EVIDENCE, {"series": number, "day": first}))
+    return tuple(sorted(days.items()))
+
+
+def traffic(connection: sqlite3.Connection, drive: int, since: int, until: int) -> tuple[IoSpan, ...]:
+    """A drive's minutes, oldest first."""
+    found = connection.execute(_TRAFFIC, (since // 60 * 60, until, drive)).fetchall()
+    return tuple(rows.span(row) for row in found)
+
+
+def last_reading(connection: sqlite3.Connection, drive: int) -> Reading | None:
+    """What was last read beside the values."""
+    found = connection.execute("SELECT packed FROM last_reading WHERE drive = ?", (drive,)).fetchone()
+    return None if found is None else packing.reading(found[0])
+
+
+def state(connection: sqlite3.Connection, drive: int) -> str | None:
+    """The analyser's state."""
+    found = connection.execute("SELECT packed FROM analyser_state WHERE drive = ?", (drive,)).fetchone()
+    return None if found is None else packing.unpacked(found[0])
+
+
+def _from(since: int | None) -> int:
+    return _EVER if since is None else since
+
+
+def _up_to(limit: int | None) -> int:
+    return -1 if limit is None else limit

@@ -1,0 +1,220 @@
+"""The tables of the history, as numbered steps that only ever go forward.
+
+What shaped them: ten years of six drives must stay small, few bytes may be written a day, and every question
+must be answered quickly.
+
+* A page of 4 KiB is the least that SQLite writes, so what a round writes lies close together: values of today
+  stand in ``fresh`` in order of time, and the first round of a new day files them into ``value`` in order of
+  series, where a long range of one series reads at once. Evidence goes the same way, from ``latest`` into
+  ``evidence``.
+* Values are stored on change and every pass is stored, so "no change" is knowledge.
+* ``latest`` holds what every signal is now; no question about now walks through the past.
+* Explanations of passes repeat for months: each stands once in ``sentence``.
+* Whole numbers of up to 63 bits are INTEGER. NVMe counters have 128 bits; what is larger is kept as its decimal
+  digits in a BLOB, which tells it from a word by its type alone. Hence the columns of type ANY.
+* Times are UTC seconds since 1970, days count from 1970-01-01.
+"""
+
+from diskwatch.history.library import Database, Migrations
+from diskwatch.history.versions import MIGRATION_SET, MIGRATIONS
+
+steps = Migrations(MIGRATION_SET)
+
+_BASE = (
+    """
+    CREATE TABLE sentence (
+        number INTEGER PRIMARY KEY,
+        text TEXT NOT NULL UNIQUE
+    ) STRICT
+    """,
+    # AUTOINCREMENT: the number of a drive that was taken out must never come to mean another one.
+    """
+    CREATE TABLE drive (
+        number INTEGER PRIMARY KEY AUTOINCREMENT,
+        wwn TEXT,
+        model TEXT,
+        serial TEXT,
+        path TEXT NOT NULL,
+        kind TEXT NOT NULL,
+        firmware TEXT,
+        capacity_bytes ANY,
+        rotation_rpm ANY,
+        device TEXT NOT NULL,
+        bay TEXT,
+        lives_here TEXT NOT NULL,
+        first_seen INTEGER NOT NULL,
+        passed_at INTEGER,
+        outcome TEXT,
+        explanation INTEGER REFERENCES sentence
+    ) STRICT
+    """,
+    """
+    CREATE TABLE owner_fact (
+        drive INTEGER NOT NULL REFERENCES drive,
+        fact TEXT NOT NULL,
+        value TEXT NOT NULL,
+        at INTEGER NOT NULL,
+        PRIMARY KEY (drive, fact)
+    ) STRICT, WITHOUT ROWID
+    """,
+    """
+    CREATE TABLE plugged (
+        drive INTEGER NOT NULL REFERENCES drive,
+        since INTEGER NOT NULL,
+        device TEXT NOT NULL,
+        bay TEXT,
+        PRIMARY KEY (drive, since)
+    ) STRICT, WITHOUT ROWID
+    """,
+    """
+    CREATE TABLE pass (
+        drive INTEGER NOT NULL REFERENCES drive,
+        at INTEGER NOT NULL,
+        outcome TEXT NOT NULL,
+        exit_bits INTEGER,
+        took_ms INTEGER NOT NULL,
+        explanation INTEGER REFERENCES sentence,
+        PRIMARY KEY (drive, at)
+    ) STRICT, WITHOUT ROWID
+    """,
+    # A signal whose unit changes (its packing became known) starts a new series; the old one is not current.
+    """
+    CREATE TABLE series (
+        number INTEGER PRIMARY KEY,
+        drive INTEGER NOT NULL REFERENCES drive,
+        signal TEXT NOT NULL,
+        unit TEXT,
+        kind TEXT,
+        source TEXT,
+        current INTEGER NOT NULL DEFAULT 1
+    ) STRICT
+    """,
+    "CREATE UNIQUE INDEX series_current ON series (drive, signal) WHERE current",
+    """
+    CREATE TABLE latest (
+        series INTEGER PRIMARY KEY REFERENCES series,
+        since INTEGER,
+        value ANY,
+        reason TEXT,
+        day INTEGER,
+        evidence REAL
+    ) STRICT
+    """,
+    """
+    CREATE TABLE fresh (
+        at INTEGER NOT NULL,
+        series INTEGER NOT NULL REFERENCES series,
+        value ANY,
+        reason TEXT,
+        PRIMARY KEY (at, series)
+    ) STRICT, WITHOUT ROWID
+    """,
+    """
+    CREATE TABLE value (
+        series INTEGER NOT NULL REFERENCES series,
+        at INTEGER NOT NULL,
+        value ANY,
+        reason TEXT,
+        PRIMARY KEY (series, at)
+    ) STRICT, WITHOUT ROWID
+    """,
+    """
+    CREATE TABLE evidence (
+        series INTEGER NOT NULL REFERENCES series,
+        day INTEGER NOT NULL,
+        evidence REAL NOT NULL,
+        PRIMARY KEY (series, day)
+    ) STRICT, WITHOUT ROWID
+    """,
+    """
+    CREATE TABLE io_minute (
+        at INTEGER NOT NULL,
+        drive INTEGER NOT NULL REFERENCES drive,
+        span_ms INTEGER NOT NULL,
+        reads INTEGER NOT NULL,
+        writes INTEGER NOT NULL,
+        read_bytes INTEGER NOT NULL,
+        write_bytes INTEGER NOT NULL,
+        read_ms INTEGER NOT NULL,
+        write_ms INTEGER NOT NULL,
+        busy_ms INTEGER NOT NULL,
+        PRIMARY KEY (at, drive)
+    ) STRICT, WITHOUT ROWID
+    """,
+    """
+    CREATE TABLE day_book (
+        number INTEGER PRIMARY KEY,
+        at INTEGER NOT NULL,
+        drive INTEGER REFERENCES drive,
+        kind TEXT NOT NULL,
+        text TEXT NOT NULL,
+        data TEXT NOT NULL
+    ) STRICT
+    """,
+    "CREATE INDEX day_book_at ON day_book (at)",
+    "CREATE INDEX day_book_drive ON day_book (drive, at)",
+    """
+    CREATE TABLE finding (
+        number INTEGER PRIMARY KEY,
+        drive INTEGER NOT NULL REFERENCES drive,
+        name TEXT NOT NULL,
+        kind TEXT NOT NULL,
+        signals TEXT NOT NULL,
+        since INTEGER NOT NULL,
+        calls TEXT,
+        cause TEXT,
+        evidence REAL,
+        sentence TEXT NOT NULL,
+        data TEXT NOT NULL,
+        closed INTEGER
+    ) STRICT
+    """,
+    "CREATE UNIQUE INDEX finding_standing ON finding (drive, name) WHERE closed IS NULL",
+    # Calls are in order of a number, not of time: a clock that was set back must not bring an old call back.
+    """
+    CREATE TABLE call (
+        number INTEGER PRIMARY KEY,
+        drive INTEGER NOT NULL REFERENCES drive,
+        at INTEGER NOT NULL,
+        word TEXT NOT NULL,
+        cause TEXT,
+        cause_probability REAL,
+        cause_second TEXT,
+        reason TEXT NOT NULL,
+        rule TEXT NOT NULL,
+        evidence REAL
+    ) STRICT
+    """,
+    "CREATE INDEX call_drive ON call (drive)",
+    # Both are rewritten at nearly every pass: packed, they cost a third of the bytes.
+    """
+    CREATE TABLE analyser_state (
+        drive INTEGER PRIMARY KEY REFERENCES drive,
+        at INTEGER NOT NULL,
+        packed BLOB NOT NULL
+    ) STRICT
+    """,
+    """
+    CREATE TABLE last_reading (
+        drive INTEGER PRIMARY KEY REFERENCES drive,
+        at INTEGER NOT NULL,
+        packed BLOB NOT NULL
+    ) STRICT
+    """,
+)
+
+
+@steps(name=MIGRATIONS[0])
+def _base(db: Database) -> None:
+    for statement in _BASE:
+        db.conn.execute(statement)
+    db.conn.execute("PRAGMA user_version = 1")
+
+
+def bring_up_to_date(db: Database) -> None:
+    """Apply the steps that a history lacks, each wholly or not at all.
+
+    Raises:
+        sqlite3.Error: a step failed; the history is as it was before that step.
+    """
+    steps.apply(db)

@@ -1,0 +1,225 @@
+"""The one writer of a history."""
+
+import os
+import sqlite3
+import threading
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager, suppress
+from pathlib import Path
+from typing import Self
+
+from diskwatch.history import packing, rows
+from diskwatch.history.bays import standing_calls
+from diskwatch.history.library import Database
+from diskwatch.history.lock import WatchLock
+from diskwatch.history.mishaps import told, unreadable
+from diskwatch.history.opening import BUSY_MS, refuse_foreign
+from diskwatch.history.round import write_entries, write_place, write_round
+from diskwatch.history.schema import bring_up_to_date
+from diskwatch.places import HISTORY
+from diskwatch.records import Call, Drive, Entry, IoSpan, KnownDrive, Place, Round
+
+_LOG_BYTES = 4 << 20
+"""What a write-ahead log that once grew is cut back to, bytes."""
+
+
+class History:
+    """A history open for writing, safe to use from any thread; `close` it, or use it in ``with``.
+
+    Every method that writes does so wholly or not at all, and raises `HistoryError` where it could not.
+    """
+
+    def __init__(self, db: Database, path: Path | None, lock: WatchLock | None) -> None:
+        self._db = db
+        self._path = path
+        self._lock = lock
+        self._turn = threading.RLock()
+
+    @classmethod
+    def open(cls, folder: Path) -> "History":
+        """Open the history in a folder for writing, making both where they do not exist.
+
+        Raises:
+            HistoryHeld: another process is writing it.
+            HistoryTooNew: a newer version wrote it; it is left untouched.
+            HistoryError: it cannot be written, is damaged or is something else.
+        """
+        path = folder / HISTORY
+        # Twice: first so that nothing is laid beside a file that is not ours, then when nobody else can write.
+        refuse_foreign(path)
+        _make_folder(folder)
+        lock = WatchLock.take(folder)
+        try:
+            refuse_foreign(path)
+            _make_file(path)
+            return cls(_opened(path), path, lock)
+        except BaseException:
+            lock.release()
+            raise
+
+    @classmethod
+    def in_memory(cls) -> "History":
+        """A history that ends with this object, for where none can be written."""
+        return cls(_prepared(sqlite3.connect(":memory:", check_same_thread=False), None), None, None)
+
+    def __enter__(self) -> Self:
+        return self
+
+    def __exit__(self, *_: object) -> None:
+        self.close()
+
+    def close(self) -> None:
+        """Let go of the history; everything recorded is in it already. Closing again does nothing."""
+        with self._turn:
+            try:
+                # A reader that is open now keeps SQLite from folding the log in by itself when this closes.
+                with suppress(sqlite3.Error):
+                    self._db.conn.execute("PRAGMA wal_checkpoint(TRUNCATE)")
+                self._db.close()
+            except sqlite3.Error as error:
+                raise told(error, self._path) from error
+            finally:
+                if self._lock is not None:
+                    self._lock.release()
+
+    def known(self) -> tuple[KnownDrive, ...]:
+        """All drives that were ever seen, in the order of their numbers."""
+        with self._using() as connection:
+            found = connection.execute(
+                "SELECT number, wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
+                " device, bay, lives_here, first_seen FROM drive ORDER BY number"
+            ).fetchall()
+            return tuple(rows.known_drive(row) for row in found)
+
+    def admit(self, drive: Drive, place: Place, at: int) -> KnownDrive:
+        """Take up a drive that was never seen before; it gets a number that no other drive ever had.
+
+        Args:
+            drive: who it is.
+            place: where it is.
+            at: when it was first seen, UTC seconds since 1970.
+        """
+        with self._writing() as connection:
+            (number,) = connection.execute(
+                "INSERT INTO drive (wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
+                " device, bay, lives_here, first_seen) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)"
+                " RETURNING number",
+                (*rows.drive_row(drive, place), at),
+            ).fetchone()
+            write_place(connection, number, place, at)
+        return KnownDrive(number=number, drive=drive, place=place, first_seen=at)
+
+    def states(self) -> dict[int, str]:
+        """The analyser's state of each drive as last recorded, by the drive's number."""
+        with self._using() as connection:
+            found = connection.execute("SELECT drive, packed FROM analyser_state").fetchall()
+            return {drive: packing.unpacked(packed) for drive, packed in found}
+
+    def calls(self) -> dict[int, Call]:
+        """The call that stands for each drive, by the drive's number."""
+        with self._using() as connection:
+            return standing_calls(connection)
+
+    def record(self, round_: Round) -> None:
+        """Store a round of the watch, all of it or nothing; when this returns it has reached the disk.
+
+        Raises:
+            HistoryError: it could not be stored; nothing of it was.
+        """
+        with self._writing() as connection:
+            write_round(connection, round_)
+
+    def note(self, *entries: Entry) -> None:
+        """Add to the day book outside of a round."""
+        with self._writing() as connection:
+            write_entries(connection, entries)
+
+    def add_traffic(self, spans: Sequence[IoSpan]) -> None:
+        """Add spans of traffic to the minutes that they lie in.
+
+        A span belongs wholly to the minute of its middle; how much time a minute's counts cover is kept beside
+        them, so that rates stay right also where spans are longer than a minute.
+        """
+        sums: dict[tuple[int, int], list[int]] = {}
+        for span in spans:
+            row = rows.minute_row(span)
+            so_far = sums.setdefault(row[:2], [0] * (len(row) - 2))
+            for place, amount in enumerate(row[2:]):
+                so_far[place] += amount
+        with self._writing() as connection:
+            connection.executemany(
+                "INSERT INTO io_minute (at, drive, span_ms, reads, writes, read_bytes, write_bytes, read_ms,"
+                " write_ms, busy_ms) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?)"
+                " ON CONFLICT (at, drive) DO UPDATE SET"
+                " span_ms = span_ms + excluded.span_ms, reads = reads + excluded.reads,"
+                " writes = writes + excluded.writes, read_bytes = read_bytes + excluded.read_bytes,"
+                " write_bytes = write_bytes + excluded.write_bytes, read_ms = read_ms + excluded.read_ms,"
+                " write_ms = write_ms + excluded.write_ms, busy_ms = busy_ms + excluded.busy_ms",
+                [(*key, *amounts) for key, amounts in sorted(sums.items())],
+            )
+
+    @contextmanager
+    def _using(self) -> Iterator[sqlite3.Connection]:
+        with self._turn:
+            try:
+                yield self._db.conn
+            except sqlite3.Error as error:
+                raise told(error, self._path) from error
+            except ValueError as error:
+                raise unreadable(self._path) from error
+
+    @contextmanager
+    def _writing(self) -> Iterator[sqlite3.Connection]:
+        with self._turn:
+            try:
+                with self._db.atomic():
+                    yield self._db.conn
+            except sqlite3.Error as error:
+                raise told(error, self._path) from error
+
+
+def _make_folder(folder: Path) -> None:
+    try:
+        if not folder.is_dir():
+            folder.mkdir(parents=True)
+            folder.chmod(0o755)  # whatever the umask: ordinary users may read
+    except OSError as error:
+        raise told(error, folder) from error
+
+
+def _make_file(path: Path) -> None:
+    try:
+        descriptor = os.open(path, os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_CLOEXEC, 0o644)
+    except FileExistsError:
+        return
+    except OSError as error:
+        raise told(error, path) from error
+    # SQLite gives the files that it lays beside the history the same rights.
+    os.fchmod(descriptor, 0o644)
+    os.close(descriptor)
+
+
+def _opened(path: Path) -> Database:
+    try:
+        connection = sqlite3.connect(path, check_same_thread=False, timeout=BUSY_MS / 1000)
+    except sqlite3.Error as error:
+        raise told(error, path) from error
+    return _prepared(connection, path)
+
+
+def _prepared(connection: sqlite3.Connection, path: Path | None) -> Database:
+    try:
+        db = Database(connection, execute_plugins=False)
+        # FULL: a reading that was reported as stored must outlive a power cut.
+        connection.execute("PRAGMA synchronous = FULL")
+        connection.execute("PRAGMA foreign_keys = ON")
+        connection.execute("PRAGMA journal_mode = WAL")
+        connection.execute(f"PRAGMA journal_size_limit = {_LOG_BYTES}")
+        bring_up_to_date(db)
+    except sqlite3.Error as error:
+        connection.close()
+        raise told(error, path) from error
+    except BaseException:
+        connection.close()
+        raise
+    return db
