@@ -16,10 +16,11 @@ from diskwatch.dashboard.ages import clock
 from diskwatch.dashboard.bands import Bands
 from diskwatch.dashboard.cells import cut, wrap
 from diskwatch.dashboard.feed import Feed, Snapshot
-from diskwatch.dashboard.head import instead_of_bands, notes, top_line, troubles
+from diskwatch.dashboard.head import instead_of_bands, notes, tells_trouble, top_line, troubles
 from diskwatch.dashboard.help import Help
 from diskwatch.dashboard.keys import DEEDS, MOVES, keys_line
 from diskwatch.dashboard.lines import Lines
+from diskwatch.dashboard.weight import Face
 from diskwatch.records import Bays
 from diskwatch.units import plain
 
@@ -103,7 +104,7 @@ class Dashboard(App[None]):
         self._clock = now
         self._watching = plain(watching)
         self._every = every
-        self._ascii_only = ascii_only
+        self._face = Face(ascii_only=ascii_only, colours=not self.no_color)
         self._asked_at: int | None = None
         self._reply_due = False
         self._reply: str | None = None
@@ -119,7 +120,7 @@ class Dashboard(App[None]):
         yield Lines(self._top, id="top")
         yield Lines(self._notes, id="notes")
         yield Lines(self._blank, id="blank")
-        yield Bands(ascii_only=self._ascii_only)
+        yield Bands(self._face)
         yield Lines(self._keys, id="keys")
 
     def on_mount(self) -> None:
@@ -177,7 +178,7 @@ class Dashboard(App[None]):
 
     def action_help(self) -> None:
         """Open the help page."""
-        self.push_screen(Help(self._watching, self._troubles(), ascii_only=self._ascii_only))
+        self.push_screen(Help(self._watching, self._troubles(), self._face))
 
     @property
     def _bands(self) -> Bands:
@@ -219,7 +220,9 @@ class Dashboard(App[None]):
         return (top_line(self.snapshot, self._watching, self._clock(), width, self._every),)
 
     def _notes(self, width: int) -> tuple[Text, ...]:
-        return notes(self._troubles(), width, most=max(self.size.height // _ROWS_A_NOTE, 1))
+        if self.snapshot is not None and tells_trouble(self.snapshot):
+            return ()
+        return notes(self._troubles(), width, self._face, most=max(self.size.height // _ROWS_A_NOTE, 1))
 
     def _blank(self, width: int) -> tuple[Text, ...]:
         told = instead_of_bands(self.snapshot)
@@ -229,5 +232,5 @@ class Dashboard(App[None]):
 
     def _keys(self, width: int) -> tuple[Text, ...]:
         if self._reply is not None and self._clock() < self._reply_until:
-            return (Text(cut(self._reply, width, "...")),)
-        return (keys_line(width, ascii_only=self._ascii_only),)
+            return (Text(cut(self._reply, width, self._face.mark)),)
+        return (keys_line(width, self._face),)

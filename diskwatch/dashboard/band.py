@@ -11,21 +11,22 @@ from rich.text import Text
 from diskwatch.dashboard.ages import ago
 from diskwatch.dashboard.cells import column, cut, ends, fit
 from diskwatch.dashboard.rates import traffic
-from diskwatch.dashboard.weight import WORD_WIDTH, weight_of
-from diskwatch.dashboard.words import device, holdings, kind, name, reason
+from diskwatch.dashboard.weight import WORD_WIDTH, Face, weight_of
+from diskwatch.dashboard.words import cause, device, holdings, kind, name, reason
 from diskwatch.records import CallWord, DriveLine, Outcome
 from diskwatch.units import plain, say_bytes
 
+# A screen of 120 columns leaves 119 beside the scroll bar.
 NARROW = 60
 """Below this many columns only the name, the size and the device stand in the first line."""
-WIDE = 120
+WIDE = 118
 """From here on kind, cause, amounts in use and the model beside a label are shown too; later also the bay."""
-ONE_LINE = 160
+ONE_LINE = 158
 """From here on a quiet drive needs one line only."""
 INDENT = 3
 """Columns before the text of the second and later lines: bar, mark of choice, a blank."""
 
-_BAYS = 140
+_BAYS = 138
 _TRAFFIC_WIDTH = 72
 _ENDED = {
     Outcome.READ: "read",
@@ -40,23 +41,21 @@ _ENDED = {
 _PEACEFUL = frozenset({Outcome.READ, Outcome.ASLEEP, Outcome.NO_SMART})
 
 
-def band(
-    line: DriveLine, now: int, width: int, *, chosen: bool = False, ascii_only: bool = False
-) -> tuple[Text, ...]:
+def band(line: DriveLine, now: int, width: int, face: Face, *, chosen: bool = False) -> tuple[Text, ...]:
     """The band of one drive.
 
     Args:
         line: the drive.
         now: the current time, UTC seconds since 1970.
         width: columns that every line must keep within.
+        face: what the terminal can show.
         chosen: whether the reader stands on it.
-        ascii_only: whether the terminal's letters end at ASCII.
 
     Returns:
         One to three lines, none wider than ``width``, free of control characters.
     """
-    mark = "..." if ascii_only else "…"
-    bar = edge(line, ascii_only=ascii_only)
+    mark = face.mark
+    bar = edge(line, face)
     if is_quiet(line) and width >= ONE_LINE:
         beside = width - _TRAFFIC_WIDTH - 2
         first = _title(line, width, beside, chosen=chosen, bar=bar, mark=mark)
@@ -80,17 +79,20 @@ def is_quiet(line: DriveLine) -> bool:
     return line.call.word is CallWord.KEEP
 
 
-def edge(line: DriveLine, *, ascii_only: bool) -> Text:
+def edge(line: DriveLine, face: Face) -> Text:
     """The one block that every line of the band begins with."""
     weight = weight_of(line)
-    return Text(weight.bar_ascii if ascii_only else weight.bar, style=weight.colour)
+    bar = weight.bar_ascii if face.ascii_only else weight.bar
+    return Text(bar, style=weight.colour if face.colours else "")
 
 
 def _title(line: DriveLine, screen: int, width: int, *, chosen: bool, bar: Text, mark: str) -> Text:
     """The first line, ``width`` columns of a ``screen``; columns stand alike in all bands of one screen."""
     weight = weight_of(line)
-    word = weight.word if len(weight.word) == WORD_WIDTH else f" {weight.word}".ljust(WORD_WIDTH)
-    start = Text.assemble(bar, (">" if chosen else " ", "bold"), (word, weight.style), " ")
+    # Reverse needs a blank on either side as its edge; an underline there would look like a word cut off.
+    edges = (" ", weight.style) if "reverse" in weight.style else " "
+    start = Text.assemble(bar, (">" if chosen else " ", "bold"), edges, (weight.word, weight.style), edges)
+    start.append(" " * (WORD_WIDTH + 2 - start.cell_len))
     capacity = line.drive.capacity_bytes
     size = "size ?" if capacity is None else say_bytes(capacity)
     style = "bold underline" if chosen else "bold"
@@ -100,10 +102,10 @@ def _title(line: DriveLine, screen: int, width: int, *, chosen: bool, bar: Text,
         room = width - start.cell_len - cell_len(right) - 1
         return ends(Text.assemble(start, (cut(name(line), room, mark), style)), Text(right), width)
     roomy = screen >= WIDE
-    named = 36 if roomy else width * 3 // 10
+    named = 36 if roomy else width * 28 // 100
     left = Text.assemble(start, (cut(name(line, roomy=roomy), named, mark), style))
     left.append(" " * max(start.cell_len + named + 2 - left.cell_len, 2))
-    right = f"{size:>7}  {column(where, max(8, min(cell_len(where), 22)), mark)}"
+    right = f"{size:>6}  {column(where, max(8, min(cell_len(where), 22)), mark)}"
     if roomy and width == screen:
         right = f"{kind(line):<9}{right}"
         if screen >= _BAYS:
@@ -114,15 +116,12 @@ def _title(line: DriveLine, screen: int, width: int, *, chosen: bool, bar: Text,
 
 
 def _why(line: DriveLine, width: int, mark: str) -> Text:
-    call = line.call
-    if width < WIDE - INDENT or call is None or call.cause is None:
-        return Text(cut(reason(line), width, mark))
-    cause = f"cause: {call.cause}"
-    if call.cause_probability is not None:
-        cause += f", {call.cause_probability * 100:.0f} % likely"
-    if call.cause_second is not None:
-        cause += f", else {call.cause_second}"
-    return ends(Text(cut(reason(line), width - len(cause) - 2, mark)), Text(cause), width)
+    """The reason, which goes first; the cause beside it, as much of it as the reason leaves room for."""
+    told = reason(line)
+    for beside in (cause(line), cause(line).partition(",")[0]):
+        if beside and cell_len(told) + len(beside) + 2 <= width:
+            return ends(Text(told), Text(beside), width)
+    return Text(cut(told, width, mark))
 
 
 def _doing(line: DriveLine, now: int, width: int, mark: str) -> Text:

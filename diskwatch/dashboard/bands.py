@@ -6,7 +6,9 @@ from textual.containers import VerticalScroll
 
 from diskwatch.dashboard.band import band
 from diskwatch.dashboard.lines import Lines
+from diskwatch.dashboard.scroll import with_plain_thumb
 from diskwatch.dashboard.unfold import unfolded
+from diskwatch.dashboard.weight import Face
 from diskwatch.records import DriveLine
 
 
@@ -38,10 +40,10 @@ class Bands(VerticalScroll, can_focus=False):
     Bands.roomy Band { margin-bottom: 1; }
     """
 
-    def __init__(self, *, ascii_only: bool) -> None:
+    def __init__(self, face: Face) -> None:
         """Make an empty list."""
         super().__init__()
-        self._ascii_only = ascii_only
+        self._face = face
         self._drives: tuple[DriveLine, ...] = ()
         self._now = 0
         self._chosen: int | None = None
@@ -106,6 +108,10 @@ class Bands(VerticalScroll, can_focus=False):
         else:
             self._go(place)
 
+    def on_mount(self) -> None:
+        """Draw the thumb of the scroll bar without part blocks."""
+        with_plain_thumb(self)
+
     def on_resize(self, _event: events.Resize) -> None:
         """Keep the chosen drive in sight, and blank lines only where there is room for all."""
         self._spread()
@@ -126,9 +132,9 @@ class Bands(VerticalScroll, can_focus=False):
         widget.show(lambda width: self._lines(line, width, chosen=chosen))
 
     def _lines(self, line: DriveLine, width: int, *, chosen: bool) -> tuple[Text, ...]:
-        lines = band(line, self._now, width, chosen=chosen, ascii_only=self._ascii_only)
+        lines = band(line, self._now, width, self._face, chosen=chosen)
         if line.number in self._open:
-            lines += unfolded(line, self._now, width, ascii_only=self._ascii_only)
+            lines += unfolded(line, self._now, width, self._face)
         return lines
 
     def _spread(self) -> None:

@@ -53,14 +53,12 @@ def fit(line: Text, width: int) -> Text:
     return line
 
 
-def wrap(text: str, width: int, lines: int | None = None, mark: str = "…") -> list[str]:
+def wrap(text: str, width: int) -> list[str]:
     """Text in lines no wider than ``width``, broken between words, and within a word that is too long.
 
     Args:
         text: harmless text.
         width: columns, at least 2, so that a wide letter has room.
-        lines: the most lines wanted, or None for all.
-        mark: what ends the last line where text is left over.
     """
     broken: list[str] = []
     line = ""
@@ -79,8 +77,6 @@ def wrap(text: str, width: int, lines: int | None = None, mark: str = "…") -> 
         line = rest
     if line:
         broken.append(line)
-    if lines is not None and len(broken) > lines:
-        return [*broken[: lines - 1], cut(" ".join(broken[lines - 1 :]), width, mark)]
     return broken
 
 

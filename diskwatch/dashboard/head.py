@@ -5,6 +5,7 @@ from rich.text import Text
 from diskwatch.dashboard.ages import ago, clock
 from diskwatch.dashboard.cells import cut, ends, fit
 from diskwatch.dashboard.feed import Snapshot
+from diskwatch.dashboard.weight import Face
 from diskwatch.records import Bays
 from diskwatch.units import plain, say_span
 
@@ -39,16 +40,17 @@ def top_line(snapshot: Snapshot | None, watching: str, now: int, width: int, eve
     """
     bays = snapshot.bays if snapshot is not None else None
     if bays is None:
-        watcher, passes = Text(plain(watching)), [Text("no pass known yet")]
+        watcher = brief = Text(plain(watching))
+        passes = [Text("no pass known yet")]
     else:
-        watcher = Text(f"watched by process {bays.watcher}")
+        watcher, brief = Text(f"watched by process {bays.watcher}"), Text(f"watched by {bays.watcher}")
         if bays.watcher is None:
-            watcher = Text(" NOBODY IS WATCHING ", style=_LOUD)
+            watcher, brief = Text(" NOBODY IS WATCHING ", style=_LOUD), Text("NOBODY IS WATCHING", style=_LOUD)
         passes = _passes(bays, now, every)
     product, hour = Text(PRODUCT, style="bold"), Text(clock(now))
     choices: list[tuple[list[Text], list[Text]]] = []
     for told in passes:
-        choices += [([product, hour], [told, watcher]), ([product], [told, watcher]), ([told], [watcher])]
+        choices += [([product, hour], [told, watcher]), ([product], [told, watcher]), ([told], [brief])]
     left, right = choices[-1]
     for left, right in choices:
         if _joined([*left, *right]).cell_len <= width:
@@ -56,19 +58,20 @@ def top_line(snapshot: Snapshot | None, watching: str, now: int, width: int, eve
     return ends(_joined(left), _joined(right), width)
 
 
-def notes(told: tuple[str, ...], width: int, *, most: int) -> tuple[Text, ...]:
+def notes(told: tuple[str, ...], width: int, face: Face, *, most: int) -> tuple[Text, ...]:
     """Troubles as lines under the first one.
 
     Args:
         told: the troubles, gravest first (`troubles`).
         width: columns that each line must keep within.
+        face: what the terminal can show.
         most: the most lines that there is room for, at least 1; the last one counts what is left over.
     """
     if len(told) > most:
         left = len(told) - most + 1
         told = (*told[: most - 1], f"{left} {'more ' if most > 1 else ''}troubles: press ? to read them.")
     return tuple(
-        fit(Text.assemble(("! ", "bold"), (cut(text, width - 2, "…"), "bold")), width) for text in told
+        fit(Text.assemble(("! ", "bold"), (cut(text, width - 2, face.mark), "bold")), width) for text in told
     )
 
 
@@ -119,6 +122,11 @@ def instead_of_bands(snapshot: Snapshot | None) -> str | None:
         f"No drive has been read yet, because process {bays.watcher} has not ended its first pass. "
         "Wait a minute; if nothing comes, run diskwatch watch --once to see what it says."
     )
+
+
+def tells_trouble(snapshot: Snapshot) -> bool:
+    """Whether `instead_of_bands` tells the troubles already, so that no notes are needed above it."""
+    return snapshot.bays is None or (not snapshot.bays.drives and snapshot.error is None)
 
 
 def _passes(bays: Bays, now: int, every: int) -> list[Text]:

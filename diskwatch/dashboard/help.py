@@ -11,6 +11,8 @@ from textual.screen import Screen
 from diskwatch.dashboard.cells import fit, wrap
 from diskwatch.dashboard.keys import DEEDS, MOVES
 from diskwatch.dashboard.lines import Lines
+from diskwatch.dashboard.scroll import with_plain_thumb
+from diskwatch.dashboard.weight import Face
 
 _CALLS = (
     ("keep", "Go on using it. Keep a backup all the same."),
@@ -36,16 +38,14 @@ _FIGURES = (
 )
 
 
-def help_lines(
-    watching: str, troubles: tuple[str, ...], width: int, *, ascii_only: bool = False
-) -> tuple[Text, ...]:
+def help_lines(watching: str, troubles: tuple[str, ...], width: int, face: Face) -> tuple[Text, ...]:
     """The page as lines.
 
     Args:
         watching: how the screen was opened, one harmless sentence.
         troubles: what is wrong with the watch now, harmless sentences.
         width: columns that every line must keep within.
-        ascii_only: whether the terminal's letters end at ASCII.
+        face: what the terminal can show.
     """
     lines: list[Text] = []
     if troubles:
@@ -53,7 +53,7 @@ def help_lines(
     lines += _part("What to do with a drive", _CALLS, width)
     lines += _part("When a drive fails", [("-", text) for text in _CAUTIONS], width)
     lines += _part("What stands in a band", _FIGURES, width)
-    faces = [((key.face_ascii if ascii_only else key.face), key.help) for key in (*MOVES, *DEEDS)]
+    faces = [((key.face_ascii if face.ascii_only else key.face), key.help) for key in (*MOVES, *DEEDS)]
     lines += _part("Keys", faces, width)
     lines += _part(
         "This screen", [("-", f"It was opened like this: {watching}. It reads the history only.")], width
@@ -92,16 +92,17 @@ class Help(Screen[None]):
     Help VerticalScroll { height: 1fr; scrollbar-size-vertical: 1; scrollbar-gutter: stable; }
     """
 
-    def __init__(self, watching: str, troubles: tuple[str, ...], *, ascii_only: bool) -> None:
+    def __init__(self, watching: str, troubles: tuple[str, ...], face: Face) -> None:
         """Take what the page tells of this very screen."""
         super().__init__()
         self._watching = watching
         self._troubles = troubles
-        self._ascii_only = ascii_only
+        self._face = face
 
     def compose(self) -> ComposeResult:
         """The text, and the keys that lead back."""
-        with VerticalScroll(can_focus=False):
+        with VerticalScroll(can_focus=False) as scroll:
+            with_plain_thumb(scroll)
             yield Lines(self._page, id="page")
         yield Lines(_way_back, id="keys")
 
@@ -119,11 +120,13 @@ class Help(Screen[None]):
         moves[where](animate=False)
 
     def _page(self, width: int) -> tuple[Text, ...]:
-        return help_lines(self._watching, self._troubles, width, ascii_only=self._ascii_only)
+        return help_lines(self._watching, self._troubles, width, self._face)
 
 
 def _way_back(width: int) -> tuple[Text, ...]:
-    line = Text.assemble(
-        ("? Esc", "bold"), " back  ", ("Up Down PgUp PgDn Home End", "bold"), " read  ", ("q", "bold"), " quit"
-    )
+    back, read, leave = ("? Esc", " back"), ("Up Down PgUp PgDn Home End", " read"), ("q", " quit")
+    for keys in ((back, read, leave), (back, leave)):
+        line = Text("  ").join(Text.assemble((key, "bold"), does) for key, does in keys)
+        if line.cell_len <= width:
+            break
     return (fit(line, width),)

@@ -6,6 +6,7 @@ from rich.style import Style
 from rich.text import Text
 
 from diskwatch.dashboard.cells import fit
+from diskwatch.dashboard.weight import Face
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -69,12 +70,12 @@ DEEDS = (
 )
 
 
-def keys_line(width: int, *, ascii_only: bool = False) -> Text:
+def keys_line(width: int, face: Face) -> Text:
     """The last line of the screen: every key where it fits, else those that lead to the others.
 
     A deed can be clicked as well.
     """
-    moves = " ".join(key.face_ascii if ascii_only else key.face for key in MOVES)
+    moves = " ".join(key.face_ascii if face.ascii_only else key.face for key in MOVES)
     for told, deeds in (
         (f"{moves} {MOVES[-1].does}", DEEDS),
         (moves, DEEDS),

@@ -3,40 +3,45 @@
 from rich.text import Text
 
 from diskwatch.dashboard.ages import ago, exact, since
-from diskwatch.dashboard.band import INDENT, edge
+from diskwatch.dashboard.band import INDENT, band, edge
 from diskwatch.dashboard.cells import fit, wrap
-from diskwatch.dashboard.words import kind, reason
+from diskwatch.dashboard.weight import Face
+from diskwatch.dashboard.words import cause, kind, reason
 from diskwatch.records import DriveLine, Mount
 from diskwatch.units import plain, say_bytes, say_days
 
 _LEAST_ROOM = 10
 
 
-def unfolded(line: DriveLine, now: int, width: int, *, ascii_only: bool = False) -> tuple[Text, ...]:
+def unfolded(line: DriveLine, now: int, width: int, face: Face) -> tuple[Text, ...]:
     """The lines below the band of one drive.
 
     Args:
         line: the drive.
         now: the current time, UTC seconds since 1970.
         width: columns that every line must keep within.
-        ascii_only: whether the terminal's letters end at ASCII.
+        face: what the terminal can show.
 
     Returns:
         Lines no wider than ``width``, free of control characters; long sentences go on in the next line.
     """
     room = max(width - INDENT - 2, _LEAST_ROOM)
-    indent = Text.assemble(edge(line, ascii_only=ascii_only), " " * (INDENT - 1))
+    indent = Text.assemble(edge(line, face), " " * (INDENT - 1))
     lines: list[Text] = []
-    for paragraph in _paragraphs(line, now):
+    above = band(line, now, width, face)
+    for paragraph in _paragraphs(line, now, above):
         for number, part in enumerate(wrap(paragraph, room)):
             lines.append(fit(Text.assemble(indent, "" if number == 0 else "  ", part), width))
     return tuple(lines)
 
 
-def _paragraphs(line: DriveLine, now: int) -> list[str]:
-    told = [f"Why: {reason(line)}"]
+def _paragraphs(line: DriveLine, now: int, above: tuple[Text, ...]) -> list[str]:
+    why = reason(line)
+    told = [] if any(why in row.plain for row in above) else [f"Why: {why}"]
     if line.call is not None:
         told.append(f"Called {line.call.word} {since(line.call.at, now)} by the rule {plain(line.call.rule)}.")
+        if line.call.cause is not None:
+            told.append(f"{cause(line).capitalize()}.")
     lead = line.call.reason if line.call is not None else None
     for finding in line.findings:
         evidence = (

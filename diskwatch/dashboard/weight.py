@@ -8,8 +8,27 @@ from dataclasses import dataclass
 
 from diskwatch.records import CallWord, DriveLine, Outcome
 
-WORD_WIDTH = 8
+WORD_WIDTH = 10
 """Columns of the call's word: the longest with a blank on either side, so that reverse has edges."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Face:
+    """What the terminal can show.
+
+    Attributes:
+        ascii_only: whether its letters end at ASCII.
+        colours: whether colours are wanted. Without them a colour would come out as some grey, and the grey of
+            a grave call may be fainter than that of a mild one.
+    """
+
+    ascii_only: bool = False
+    colours: bool = True
+
+    @property
+    def mark(self) -> str:
+        """What stands where something was cut off."""
+        return "..." if self.ascii_only else "…"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -64,6 +64,19 @@ def _mount(mount: Mount) -> str:
     return f"{point} ({say_bytes(mount.used_bytes)} used)"
 
 
+def cause(line: DriveLine) -> str:
+    """What best explains the findings, with its probability and the runner-up; empty where no cause is named."""
+    call = line.call
+    if call is None or call.cause is None:
+        return ""
+    told = f"cause: {call.cause}"
+    if call.cause_probability is not None:
+        told += f", {call.cause_probability * 100:.0f} % likely"
+    if call.cause_second is not None:
+        told += f", else {call.cause_second}"
+    return told
+
+
 def reason(line: DriveLine) -> str:
     """The leading reason in one sentence; for a drive that was not read, why it was not."""
     last = line.last_pass
