@@ -1,0 +1,124 @@
+"""One answer of smartctl understood: the drive, its reading, and whether it has SMART at all."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from enum import Enum, auto
+
+from diskwatch.machine import ata, logs
+from diskwatch.machine.document import Document, flag_at
+from diskwatch.machine.held import Family, device_of
+from diskwatch.machine.selftests import newest_result, self_tests
+from diskwatch.machine.text import Sheet
+from diskwatch.machine.told import drive_of, family_of, is_flash
+from diskwatch.records import Drive, Reading, SignalKind, Value
+
+
+class Support(Enum):
+    """What a drive says of its own SMART."""
+
+    ON = auto()
+    OFF = auto()
+    NONE = auto()
+    UNSAID = auto()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Understood:
+    """What an answer says.
+
+    Attributes:
+        drive: the drive as it describes itself, or None.
+        reading: what it states of its state; may hold nothing.
+        support: what it says of its SMART.
+    """
+
+    drive: Drive | None
+    reading: Reading
+    support: Support
+
+    @property
+    def says_something(self) -> bool:
+        """Whether at least one signal has a value."""
+        return any(value.value is not None for value in self.reading.values)
+
+
+def understood(lines: Sequence[str], document: Document | None, *, type_: str | None, path: str) -> Understood:
+    """Understand one answer.
+
+    Args:
+        lines: the plain text of ``smartctl --all``.
+        document: its JSON document, or None; where it states something, that holds.
+        type_: the device type that was asked with, or None.
+        path: where the drive answered, for its identity.
+    """
+    sheet = Sheet.of(lines)
+    family = family_of(document, sheet, type_)
+    device = device_of(sheet.lines, family)
+    drive = drive_of(family, document, sheet, path)
+    tests = self_tests(family, document, device, sheet)
+    rows = ata.attributes(document, device, sheet) if family is Family.ATA else ()
+    warning: int | None = None
+    critical: int | None = None
+    if family is Family.ATA:
+        values = ata.values(rows, document, sheet, flash=is_flash(drive))
+        warning, critical = ata.limits(document)
+    elif family is Family.NVME:
+        values = logs.nvme_values(document, sheet)
+        warning, critical = logs.nvme_limits(document, sheet)
+    else:
+        values = logs.scsi_values(document, device, sheet)
+        critical = logs.trip_celsius(document, sheet)
+    newest = newest_result(tests)
+    words = (*_assessment(document, sheet), *([_word("self-test", newest, "self-test log")] if newest else []))
+    return Understood(
+        drive=drive,
+        reading=Reading(
+            values=(*values, *words),
+            attributes=rows,
+            self_tests=tests,
+            warning_celsius=warning,
+            critical_celsius=critical,
+        ),
+        support=_support(document, sheet),
+    )
+
+
+def _word(signal: str, word: str | None, source: str, reason: str | None = None) -> Value:
+    return Value(signal=signal, value=word, unit="word", kind=SignalKind.WORD, source=source, reason=reason)
+
+
+_FAILED = ("fail", "impending", "threshold exceeded")
+
+
+def _assessment(document: Document | None, sheet: Sheet) -> tuple[Value, ...]:
+    """What the drive's own firmware thinks of it.
+
+    Only words that are known to say so make it passed or failed: pySMART calls all but one word failed, also
+    the "UNKNOWN!" that stands for no answer.
+    """
+    source = "SMART status"
+    passed = flag_at(document, "smart_status", "passed")
+    if passed is not None:
+        return (_word("self-assessment", "passed" if passed else "failed", source),)
+    printed = sheet.get("SMART overall-health self-assessment test result", "SMART Health Status")
+    if printed is None:
+        return ()
+    lower = printed.lower()
+    if lower in {"passed", "ok"}:
+        return (_word("self-assessment", "passed", source),)
+    if any(word in lower for word in _FAILED):
+        return (_word("self-assessment", "failed", source),)
+    return (_word("self-assessment", None, source, "the drive gives no answer that is known"),)
+
+
+def _support(document: Document | None, sheet: Sheet) -> Support:
+    said = " ".join(sheet.all("SMART support is")).lower()
+    available = flag_at(document, "smart_support", "available")
+    enabled = flag_at(document, "smart_support", "enabled")
+    if available is False or "unavailable" in said or sheet.holds("does not support SMART"):
+        return Support.NONE
+    if enabled is False or "disabled" in said or sheet.holds("supports SMART and is Disabled"):
+        return Support.OFF
+    if enabled or "enabled" in said or sheet.holds("supports SMART and is Enabled"):
+        return Support.ON
+    return Support.UNSAID
