@@ -205,8 +205,8 @@ def one_more_would(stream: str, now: float, after: float, alarm: float, absorbed
     """What one more episode would do to a ledger."""
     reached = "which makes it look" if after >= alarm else f"look comes from {once_in(alarm)} on"
     return (
-        f"{_STREAMS[stream]}: evidence stands at {once_in(now)}; another occasion, more than {absorbed:g} powered "
-        f"days after the last, would bring it to {once_in(after)} ({reached})."
+        f"{_STREAMS[stream]}: evidence stands at {once_in(now)}; another occasion, more than {absorbed:g} "
+        f"powered days after the last, would bring it to {once_in(after)} ({reached})."
     )
 
 
@@ -218,7 +218,8 @@ def unread_would(limit: int) -> str:
 def damage_would(call: str, limit: float, days: int) -> str:
     """What the odds rule needs."""
     return (
-        f"A damage measure of {limit:g} within {days} days (fresh, pending and replaced spots) makes it {call}."
+        f"A damage measure of {limit:g} (spots of the last {days} days, pending and replaced ones together) "
+        f"makes it {call}."
     )
 
 

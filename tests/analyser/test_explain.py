@@ -1,0 +1,38 @@
+import pytest
+
+from diskwatch import analyser
+from diskwatch.records import Outcome
+from tests.samples import DAY, NOON, VIRTUAL, missed, read
+
+
+def test_the_chain_names_counters_evidence_thresholds_and_what_one_more_would_do():
+    state = analyser.advance(analyser.start(), read(NOON, pending_sectors=4, crc_errors=1)).state
+    step = analyser.advance(state, read(NOON + DAY, pending_sectors=4, crc_errors=2))
+    why = analyser.explain(step.state)
+    assert [(one.signal, one.first, one.latest) for one in why.counters] == [
+        ("crc-errors", 1, 2),
+        ("pending-sectors", 4, 4),
+    ]
+    link = next(one for one in why.evidence if one.stream == "link")
+    assert link.alarms_at == pytest.approx(18262.5)
+    assert link.guaranteed_at == pytest.approx(36525)
+    assert link.episodes == 1
+    assert link.after_one_more > link.days
+    assert why.would_change
+
+
+def test_a_drive_that_was_never_read_only_needs_a_reading():
+    why = analyser.explain(analyser.start())
+    assert why.call is None
+    assert len(why.would_change) == 1
+
+
+def test_nothing_read_from_a_virtual_disk_can_change_its_call():
+    step = analyser.advance(analyser.start(), missed(NOON, Outcome.NO_SMART, VIRTUAL))
+    assert len(analyser.explain(step.state).would_change) == 1
+
+
+def test_a_standing_copy_says_that_it_does_not_fall_by_itself():
+    state = analyser.advance(analyser.start(), read(NOON, reallocated_sectors=0, pending_sectors=0)).state
+    step = analyser.advance(state, read(NOON + DAY, reallocated_sectors=0, pending_sectors=9))
+    assert "does not fall by itself" in analyser.explain(step.state).would_change[0]

@@ -1,0 +1,67 @@
+import inspect
+import re
+from pathlib import Path
+
+import pytest
+
+from diskwatch.judge import sentences
+from diskwatch.trends.norms import NORMS, STREAM_OF
+from tests.samples import attribute
+
+
+@pytest.mark.parametrize(
+    ("days", "said"),
+    [
+        (27_000, "once in 73 years"),
+        (365.25 * 3.9, "once in 3 years"),
+        (365.25, "once in 1 year"),
+        (364, "once in less than a year"),
+        (365.25 * 1239, "once in 1,200 years"),
+    ],
+)
+def test_evidence_is_said_in_years_rounded_down_to_two_digits(days, said):
+    """27,000 days are 73.92 years: worked example of the method."""
+    assert sentences.once_in(days) == said
+
+
+def test_a_drift_tells_the_facts_first_and_then_the_bound():
+    media = STREAM_OF["pending-sectors"]
+    told = sentences.drift(media, episodes=3, days=40, evidence=27_000)
+    assert told == (
+        "New bad spots turned up on 3 separate occasions in 40 days of powered time; "
+        "the norm is one in 2 years. "
+        "A drive within the norm would show this at most once in 73 years of watching."
+    )
+
+
+def test_every_stream_and_each_of_its_counters_has_words():
+    for norm in NORMS:
+        assert sentences.drift(norm, episodes=1, days=1, evidence=1)
+        for signal in norm.signals:
+            assert sentences.signal_name(signal) != signal.replace("-", " ")
+
+
+def test_no_sentence_says_or_implies_that_a_drive_is_safe():
+    """Reads every text of the room, not only those that tests happen to make."""
+    text = Path(inspect.getfile(sentences)).read_text(encoding="utf-8")
+    said = " ".join(re.findall(r'"([^"]*)"', re.sub(r'""".*?"""', "", text, flags=re.DOTALL)))
+    words = set(re.findall(r"[a-z]+", said.casefold().replace("unsafe power-offs", "")))
+    assert {"drive", "sectors"} <= words, "the texts were not found"
+    assert not words & {
+        "safe",
+        "safely",
+        "healthy",
+        "health",
+        "fine",
+        "good",
+        "guarantee",
+        "reliable",
+        "ok",
+        "sound",
+    }
+
+
+def test_text_from_a_drive_stays_inert():
+    hostile = attribute(5)
+    object.__setattr__(hostile, "raw", "\x1b[31m1")
+    assert "\x1b" not in sentences.failing_attribute(hostile)
