@@ -1,0 +1,100 @@
+import pytest
+
+from diskwatch.history.bays import drive_lines
+from diskwatch.records import CallWord, FindingKind, LastPass, Outcome, SignalNow
+from tests.history.examples import (
+    DAY,
+    NOON,
+    a_call,
+    a_drive,
+    a_finding,
+    a_part,
+    a_pass,
+    a_place,
+    a_round,
+    a_value,
+)
+
+
+@pytest.fixture
+def lines(history):
+    return lambda: drive_lines(history._db.conn)
+
+
+def _admit(history, name, device):
+    return history.admit(a_drive(name, device), a_place(device), NOON)
+
+
+def test_a_drive_not_asked_yet_has_neither_pass_nor_call(history, lines):
+    known = _admit(history, "INV-1", "/dev/sda")
+    (line,) = lines()
+    assert (line.number, line.drive, line.place, line.first_seen) == (1, known.drive, known.place, NOON)
+    assert (line.last_pass, line.call, line.label) == (None, None, None)
+    assert (line.findings, line.signals, line.traffic) == ((), (), None)
+
+
+def test_signals_stand_by_name_with_since_when_and_evidence(history, lines):
+    known = _admit(history, "INV-1", "/dev/sda")
+    read = a_pass(NOON, a_value(value=8), a_value("crc-errors", None, "events", reason="Not printed."))
+    history.record(a_round(a_part(known, read, evidence={"pending-sectors": 4000.0})))
+    later = a_pass(NOON + DAY, a_value(value=8))
+    history.record(a_round(a_part(known, later), at=NOON + DAY))
+    (line,) = lines()
+    assert line.signals == (
+        SignalNow(name="crc-errors", value=None, unit="events", since=NOON, evidence=None),
+        SignalNow(name="pending-sectors", value=8, unit="sectors", since=NOON, evidence=4000.0),
+    )
+    assert line.last_pass == LastPass(at=NOON + DAY, outcome=Outcome.READ, explanation=None)
+
+
+def test_a_ledger_without_values_is_no_signal(history, lines):
+    known = _admit(history, "INV-1", "/dev/sda")
+    history.record(a_round(a_part(known, a_pass(NOON), evidence={"read-latency": 3.0})))
+    assert lines()[0].signals == ()
+
+
+def test_a_pass_that_brought_nothing_says_why(history, lines):
+    known = _admit(history, "INV-1", "/dev/sda")
+    slow = a_pass(NOON, outcome=Outcome.TIMED_OUT, explanation="It did not answer within 60 seconds.")
+    history.record(a_round(a_part(known, slow)))
+    assert lines()[0].last_pass == LastPass(
+        at=NOON, outcome=Outcome.TIMED_OUT, explanation="It did not answer within 60 seconds."
+    )
+
+
+def test_worst_call_comes_first_and_a_drive_not_read_counts_as_look(history, lines):
+    words = {"a": CallWord.KEEP, "b": None, "c": CallWord.COPY, "d": CallWord.RETIRE, "e": CallWord.LOOK}
+    parts = []
+    for name, word in words.items():
+        known = _admit(history, name, f"/dev/sd{name}")
+        parts.append(a_part(known, call=None if word is None else a_call(word)))
+    history.record(a_round(*parts))
+    assert "".join(line.drive.identity.serial for line in lines()) == "dcbea"
+
+
+def test_drives_of_one_call_stand_by_label_or_device(history, lines):
+    for name, device in [("one", "/dev/sdb"), ("two", "/dev/sdc"), ("three", "/dev/sda")]:
+        _admit(history, name, device)
+    history._db["owner_fact"].insert({"drive": 2, "fact": "label", "value": "/a first", "at": NOON})
+    assert [line.drive.identity.serial for line in lines()] == ["two", "three", "one"]
+    assert lines()[0].label == "/a first"
+
+
+def test_the_leading_finding_has_the_worst_call_then_no_need_of_evidence_then_the_most(history, lines):
+    known = _admit(history, "INV-1", "/dev/sda")
+    standing = (
+        a_finding("level", kind=FindingKind.LEVEL, calls=None, evidence=None),
+        a_finding("weak", evidence=400.0),
+        a_finding("strong", evidence=9000.0),
+        a_finding("fact", kind=FindingKind.FACT, evidence=None),
+        a_finding("odds", kind=FindingKind.RULE, calls=CallWord.COPY, evidence=None),
+    )
+    history.record(a_round(a_part(known, findings=standing)))
+    assert [one.name for one in lines()[0].findings] == ["odds", "fact", "strong", "weak", "level"]
+
+
+def test_what_has_ended_does_not_stand(history, lines):
+    known = _admit(history, "INV-1", "/dev/sda")
+    history.record(a_round(a_part(known, findings=(a_finding("old"),))))
+    history.record(a_round(a_part(known, findings=(a_finding("new"),)), at=NOON + 1))
+    assert [one.name for one in lines()[0].findings] == ["new"]

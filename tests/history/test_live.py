@@ -1,0 +1,157 @@
+import json
+import os
+
+import pytest
+
+from diskwatch import places
+from diskwatch.history.live import DISK_EVERY_S, FRESH_S, LiveWriter, live_name, read_live
+from tests.history.examples import NOON, a_span
+
+SPANS = (a_span(1, reads=5), a_span(2, seconds=9.5))
+
+
+@pytest.fixture
+def state(tmp_path):
+    folder = tmp_path / "state"
+    folder.mkdir()
+    (folder / places.HISTORY).touch()
+    return folder
+
+
+@pytest.fixture
+def memory():
+    return places.SYSTEM_RUN
+
+
+@pytest.fixture
+def only_disk(monkeypatch):
+    monkeypatch.setattr(places, "live_folders", lambda state: (state,))
+
+
+def test_what_is_shared_can_be_read_and_is_taken_away_on_close(state, memory):
+    writer = LiveWriter(state)
+    assert writer.write(SPANS, NOON)
+    assert [path.name for path in memory.iterdir()] == [live_name(state)]
+    assert read_live(state, NOON) == SPANS
+    writer.close()
+    assert list(memory.iterdir()) == []
+    assert read_live(state, NOON) == ()
+    writer.close()
+
+
+def test_nothing_shared_reads_as_nothing(state):
+    assert read_live(state, NOON) == ()
+    assert read_live(state / "nowhere", NOON) == ()
+
+
+def test_each_look_replaces_the_last(state):
+    writer = LiveWriter(state)
+    writer.write(SPANS, NOON)
+    writer.write(SPANS[:1], NOON + 10)
+    assert read_live(state, NOON + 10) == SPANS[:1]
+
+
+def test_old_figures_and_those_of_a_clock_far_ahead_are_not_believed(state):
+    LiveWriter(state).write(SPANS, NOON)
+    assert read_live(state, NOON + FRESH_S) == SPANS
+    assert read_live(state, NOON + FRESH_S + 1) == ()
+    assert read_live(state, NOON - FRESH_S - 1) == ()
+
+
+def test_two_state_folders_do_not_mix(state, tmp_path):
+    other = tmp_path / "other"
+    other.mkdir()
+    (other / places.HISTORY).touch()
+    LiveWriter(state).write(SPANS, NOON)
+    assert read_live(other, NOON) == ()
+
+
+def test_a_folder_has_one_name_however_it_is_written(state, tmp_path):
+    (tmp_path / "link").symlink_to(state)
+    assert live_name(tmp_path / "link") == live_name(state) == live_name(state / ".." / "state")
+
+
+def test_everybody_may_read_it_whatever_the_umask(state, memory):
+    before = os.umask(0o077)
+    try:
+        LiveWriter(state).write(SPANS, NOON)
+    finally:
+        os.umask(before)
+    assert memory.stat().st_mode & 0o777 == 0o755
+    assert (memory / live_name(state)).stat().st_mode & 0o777 == 0o644
+
+
+def test_a_real_disk_is_written_at_most_once_a_minute(state, only_disk):
+    writer = LiveWriter(state)
+    assert writer.write(SPANS, NOON)
+    assert not writer.write(SPANS[:1], NOON + DISK_EVERY_S - 1)
+    assert read_live(state, NOON + DISK_EVERY_S + FRESH_S) == SPANS
+    assert writer.write(SPANS[:1], NOON + DISK_EVERY_S)
+    assert read_live(state, NOON + DISK_EVERY_S) == SPANS[:1]
+
+
+def test_a_clock_set_back_does_not_silence_a_real_disk(state, only_disk):
+    writer = LiveWriter(state)
+    writer.write(SPANS, NOON)
+    assert writer.write(SPANS, NOON - 3600)
+
+
+def test_where_memory_cannot_be_used_the_next_place_is(state, monkeypatch):
+    monkeypatch.setattr(places, "SYSTEM_RUN", state / places.HISTORY / "no folder")
+    assert LiveWriter(state).write(SPANS, NOON)
+    assert (state / live_name(state)).is_file()
+    assert read_live(state, NOON) == SPANS
+
+
+def test_figures_that_cannot_be_shared_anywhere_are_no_error(state, monkeypatch):
+    monkeypatch.setattr(places, "live_folders", lambda _: (state / places.HISTORY / "no folder",))
+    writer = LiveWriter(state)
+    assert not writer.write(SPANS, NOON)
+    writer.close()
+
+
+@pytest.mark.parametrize(
+    "content",
+    [
+        "",
+        "{",
+        "[]",
+        '{"at": 1796126400}',
+        '{"at": 1796126400, "spans": [[1, 2]]}',
+        '{"at": 1796126400, "spans": 7}',
+        '{"at": "noon", "spans": []}',
+        "\udcff",
+    ],
+)
+def test_a_file_that_makes_no_sense_reads_as_nothing(state, memory, content):
+    memory.mkdir()
+    (memory / live_name(state)).write_text(content, errors="surrogateescape")
+    assert read_live(state, NOON) == ()
+
+
+def test_a_link_or_a_pipe_in_its_place_is_not_followed(state, memory, tmp_path):
+    memory.mkdir()
+    path = memory / live_name(state)
+    elsewhere = tmp_path / "elsewhere"
+    elsewhere.write_text(json.dumps({"at": NOON, "spans": []}))
+    path.symlink_to(elsewhere)
+    assert read_live(state, NOON) == ()
+    path.unlink()
+    os.mkfifo(path)
+    assert read_live(state, NOON) == ()
+
+
+def test_a_file_that_others_may_write_is_not_believed(state, memory):
+    LiveWriter(state).write(SPANS, NOON)
+    (memory / live_name(state)).chmod(0o666)
+    assert read_live(state, NOON) == ()
+
+
+@pytest.mark.skipif(os.geteuid() != 0, reason="only root can give files to other users")
+def test_a_file_of_another_user_is_not_believed_but_roots_is(state, memory):
+    LiveWriter(state).write(SPANS, NOON)
+    os.chown(memory / live_name(state), 65534, 65534)
+    assert read_live(state, NOON) == ()
+    os.chown(memory / live_name(state), 0, 0)
+    os.chown(state / places.HISTORY, 65534, 65534)
+    assert read_live(state, NOON) == SPANS

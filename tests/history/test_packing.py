@@ -1,0 +1,29 @@
+import pytest
+from hypothesis import given, strategies as st
+
+from diskwatch.history import packing
+from tests.history import examples
+
+
+@given(st.text(st.characters()))
+def test_packed_text_comes_back_as_it_was(text):
+    assert packing.unpacked(packing.packed(text)) == text
+
+
+@given(examples.readings_beside_values)
+def test_a_reading_comes_back_as_it_was_but_for_its_values(reading):
+    assert packing.reading(packing.reading_packed(reading)) == reading
+
+
+@pytest.mark.parametrize(
+    "kept",
+    [b"", b"no packed text", packing.packed("x")[:-2], packing.packed("{}"), packing.packed("[1]"), packing.packed("{")],
+)
+def test_bytes_that_nobody_packed_are_refused(kept):
+    with pytest.raises(ValueError, match="."):
+        packing.reading(kept)
+
+
+def test_packing_saves_more_than_half_of_a_text_that_repeats():
+    text = '{"signal":"pending-sectors","ledger":[0.5,1,0]}' * 30
+    assert len(packing.packed(text)) < len(text) / 2
