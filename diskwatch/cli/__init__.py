@@ -1,6 +1,107 @@
-"""The command line: parse, call, print; the only place that joins all rooms."""
+"""The command line: parse, call, print; the only place that joins all rooms.
+
+Data go to standard output, talk and errors to standard error, one line an error. A command's module is imported
+only when it is asked for, so that a quick question stays quick.
+"""
+
+import argparse
+import contextlib
+import difflib
+import importlib
+import os
+import sys
+from collections.abc import Sequence
+from typing import NoReturn
+
+from diskwatch import __version__
+from diskwatch.errors import DiskwatchError, UsageError
+from diskwatch.units import plain
+
+COMMANDS = {
+    "watch": "watch the drives in the foreground; with --once one full pass, then end",
+    "bays": "the drives, where they are, what to do with each, and why",
+    "why": "the chain from a drive's readings to its call, and what would change it",
+    "daybook": "what happened to the drives, in order",
+    "preflight": "what is missing on this machine for a full watch, each with its cure",
+}
+"""Every command with what it does; its module in this room bears its name."""
+
+_ALONE = "dashboard"
+"""The module of the bare command."""
 
 
-def main() -> int:
-    """Run the command line; returns the exit code."""
-    return 2
+def main(argv: Sequence[str] | None = None) -> int:
+    """Run the command line.
+
+    Args:
+        argv: the words behind the program's name; None for those it was started with.
+
+    Returns:
+        The exit code: 0 done, 2 wrong usage or settings, 3 nothing to work on, 4 could not read or write;
+        what else a command may return it says itself.
+    """
+    words = list(sys.argv[1:] if argv is None else argv)
+    try:
+        name, words = _chosen(words)
+        module = importlib.import_module(f"diskwatch.cli.{name}")
+        parser = _parser(name, module.__doc__ or "")
+        module.options(parser)
+        return int(module.run(parser.parse_args(words)))
+    except DiskwatchError as error:
+        _complain(str(error))
+        return error.exit_code
+    except KeyboardInterrupt:
+        return 130
+    except BrokenPipeError:
+        # Whoever read our output has gone; say nothing, and keep the interpreter from trying once more.
+        with contextlib.suppress(OSError):
+            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return 0
+
+
+def _chosen(words: list[str]) -> tuple[str, list[str]]:
+    """The command's module and the words that are left for it."""
+    if not words or words[0].startswith("-"):
+        return _ALONE, words
+    name = words[0]
+    if name in COMMANDS:
+        return name, words[1:]
+    near = difflib.get_close_matches(name, COMMANDS, n=1)
+    hint = f"did you mean {near[0]}?" if near else f"known are: {', '.join(COMMANDS)}"
+    raise UsageError(f"there is no command {name!r}", hint=hint)
+
+
+class _Parser(argparse.ArgumentParser):
+    """Says what is wrong in one line, as every other error is said."""
+
+    def error(self, message: str) -> NoReturn:
+        raise UsageError(message, hint=f"see '{self.prog} --help'")
+
+
+def _parser(name: str, about: str) -> argparse.ArgumentParser:
+    alone = name == _ALONE
+    parser = _Parser(
+        prog="diskwatch" if alone else f"diskwatch {name}",
+        description=about.strip(),
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+        epilog=_listed() if alone else None,
+        allow_abbrev=False,
+    )
+    parser.add_argument(
+        "--state",
+        metavar="DIR",
+        help="folder of the history (default: the system's, else your own state folder)",
+    )
+    parser.add_argument("--settings", metavar="FILE", help="settings file (TOML)")
+    if alone:
+        parser.add_argument("--version", action="version", version=f"diskwatch {__version__}")
+    return parser
+
+
+def _listed() -> str:
+    lines = [f"  {name:<11} {about}" for name, about in COMMANDS.items()]
+    return "\n".join(["commands (each has its own --help):", *lines])
+
+
+def _complain(text: str) -> None:
+    print(f"diskwatch: {plain(text)}", file=sys.stderr)

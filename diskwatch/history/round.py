@@ -92,16 +92,23 @@ def _sentence(connection: sqlite3.Connection, words: str | None) -> int | None:
 def _write_drive(
     connection: sqlite3.Connection, known: KnownDrive, pass_: Pass, explanation: int | None
 ) -> None:
+    # A drive that this very round met for the first time is taken up with it, or not at all.
     connection.execute(
-        "UPDATE drive SET wwn = ?, model = ?, serial = ?, path = ?, kind = ?, firmware = ?, capacity_bytes = ?,"
-        " rotation_rpm = ?, device = ?, bay = ?, lives_here = ?, passed_at = ?, outcome = ?, explanation = ?"
-        " WHERE number = ?",
+        "INSERT INTO drive (wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm, device, bay,"
+        " lives_here, passed_at, outcome, explanation, number, first_seen)"
+        " VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?) ON CONFLICT (number) DO UPDATE SET"
+        " wwn = excluded.wwn, model = excluded.model, serial = excluded.serial, path = excluded.path,"
+        " kind = excluded.kind, firmware = excluded.firmware, capacity_bytes = excluded.capacity_bytes,"
+        " rotation_rpm = excluded.rotation_rpm, device = excluded.device, bay = excluded.bay,"
+        " lives_here = excluded.lives_here, passed_at = excluded.passed_at, outcome = excluded.outcome,"
+        " explanation = excluded.explanation",
         (
             *rows.drive_row(known.drive, known.place),
             pass_.at,
             pass_.outcome.value,
             explanation,
             known.number,
+            known.first_seen,
         ),
     )
 

@@ -70,6 +70,11 @@ class DriveLine:
     signals: tuple[SignalNow, ...] = ()
     traffic: IoSpan | None = None
 
+    @property
+    def name(self) -> str:
+        """What a person calls it: the owner's label, else its model, else its device."""
+        return self.label or self.drive.identity.model or self.place.device
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Bays:

@@ -1,0 +1,141 @@
+"""The JSON answers of the commands: names and shapes that scripts rely on; only ever added to."""
+
+from typing import TYPE_CHECKING
+
+from diskwatch.records import Bays, DriveLine, Entry, Finding, SignalNow
+from diskwatch.units import rfc3339
+
+if TYPE_CHECKING:  # the analyser takes as long to load as all that ``bays`` needs together
+    from diskwatch.analyser import Explanation
+
+
+def _at(at: int | None) -> str | None:
+    return None if at is None else rfc3339(at)
+
+
+def bays_answer(bays: Bays) -> dict[str, object]:
+    """What ``bays --json`` prints."""
+    return {
+        "schema": "diskwatch/bays/1",
+        "at": rfc3339(bays.at),
+        "watched": bays.watcher is not None,
+        "trouble": list(bays.trouble),
+        "drives": [drive_answer(line) for line in bays.drives],
+    }
+
+
+def drive_answer(line: DriveLine) -> dict[str, object]:
+    """One drive of ``bays --json``."""
+    drive, call, last = line.drive, line.call, line.last_pass
+    return {
+        "serial": drive.identity.serial,
+        "model": drive.identity.model,
+        "wwn": drive.identity.wwn,
+        "firmware": drive.firmware,
+        "device": line.place.device,
+        "bay": line.place.bay,
+        "label": line.label,
+        "kind": drive.kind.value,
+        "capacity_bytes": drive.capacity_bytes,
+        "rotation_rpm": drive.rotation_rpm,
+        "lives_here": [mount.point for mount in line.place.lives_here],
+        "first_seen": rfc3339(line.first_seen),
+        "last_pass": None
+        if last is None
+        else {"at": rfc3339(last.at), "outcome": last.outcome.value, "explanation": last.explanation},
+        "call": call.word.value if call else None,
+        "call_since": _at(call.at if call else None),
+        "cause": call.cause.value if call and call.cause else None,
+        "cause_probability": call.cause_probability if call else None,
+        "cause_second": call.cause_second.value if call and call.cause_second else None,
+        "reason": call.reason if call else None,
+        "margin_days": None,
+        "odds": None,
+        "signals": {signal.name: _signal(signal) for signal in line.signals},
+    }
+
+
+def _signal(signal: SignalNow) -> dict[str, object]:
+    return {
+        "value": signal.value,
+        "unit": signal.unit,
+        "since": rfc3339(signal.since),
+        "evidence": signal.evidence,
+    }
+
+
+def daybook_answer(entries: tuple[Entry, ...], names: dict[int, str | None]) -> dict[str, object]:
+    """What ``daybook --json`` prints.
+
+    Args:
+        entries: oldest first.
+        names: what each drive is called there, by its number in the history.
+    """
+    return {
+        "schema": "diskwatch/daybook/1",
+        "entries": [
+            {
+                "at": rfc3339(entry.at),
+                "drive": None if entry.drive is None else names.get(entry.drive),
+                "kind": entry.kind,
+                "text": entry.text,
+                "data": dict(entry.data),
+            }
+            for entry in entries
+        ],
+    }
+
+
+def why_answer(line: DriveLine, why: "Explanation") -> dict[str, object]:
+    """What ``why --json`` prints: the drive as in ``bays``, and the chain behind its call."""
+    damage = why.damage
+    return {
+        "schema": "diskwatch/why/1",
+        "drive": drive_answer(line),
+        "rule": why.call.rule if why.call else None,
+        "rules_version": why.rules_version,
+        "first_read": _at(why.first_read),
+        "readings": [{"signal": one.signal, "first": one.first, "latest": one.latest} for one in why.counters],
+        "evidence": [
+            {
+                "stream": one.stream,
+                "signals": list(one.signals),
+                "days": one.days,
+                "alarms_at": one.alarms_at,
+                "guaranteed_at": one.guaranteed_at,
+                "norm_per_year": one.norm_per_year,
+                "share": one.share,
+                "episodes": one.episodes,
+                "powered_days": one.powered_days,
+                "after_one_more": one.after_one_more,
+            }
+            for one in why.evidence
+        ],
+        "damage": None
+        if damage is None
+        else {
+            "fresh": damage.fresh,
+            "pending": damage.pending,
+            "replaced": damage.replaced,
+            "measure": damage.measure,
+            "copy_at": damage.copy_at,
+            "retire_at": damage.retire_at,
+            "window_days": damage.window_days,
+        },
+        "findings": [_finding(one) for one in why.findings],
+        "would_change": list(why.would_change),
+    }
+
+
+def _finding(finding: Finding) -> dict[str, object]:
+    return {
+        "name": finding.name,
+        "kind": finding.kind.value,
+        "signals": list(finding.signals),
+        "since": rfc3339(finding.since),
+        "calls": finding.calls.value if finding.calls else None,
+        "cause": finding.cause.value if finding.cause else None,
+        "evidence": finding.evidence,
+        "sentence": finding.sentence,
+        "data": dict(finding.data),
+    }

@@ -1,0 +1,65 @@
+"""What the commands share: where things are, which machine this is, how answers are written."""
+
+import argparse
+import json
+import sys
+import time
+from collections.abc import Mapping, Sequence
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from diskwatch import places
+from diskwatch.units import plain
+
+if TYPE_CHECKING:
+    from diskwatch.settings import Settings
+
+_EXACT = 2**53
+
+
+def now() -> int:
+    """The present, UTC seconds since 1970."""
+    return int(time.time())
+
+
+def state_folder(args: argparse.Namespace) -> Path:
+    """Where the history lies."""
+    return places.state_folder(args.state)
+
+
+def settings(args: argparse.Namespace) -> "Settings":
+    """The owner's settings; says on standard error what is set without effect.
+
+    Raises:
+        SettingsError: a file was named, or found, and is wrong.
+    """
+    from diskwatch import settings as settings_room  # noqa: PLC0415 - commands that only read load in half the time
+
+    path = places.settings_file(args.settings)
+    found = settings_room.load(path)
+    for name in settings_room.without_effect(found):
+        talk(f"{path}: [{name}] is set, but nothing acts on it in this version")
+    return found
+
+
+def talk(text: str) -> None:
+    """One line to the person at the terminal, beside the data."""
+    print(plain(text), file=sys.stderr)
+
+
+def print_json(answer: Mapping[str, object]) -> None:
+    """One JSON object to standard output; integers that JSON readers cannot hold exactly become strings."""
+    json.dump(_exact(answer), sys.stdout, indent=2, ensure_ascii=False, allow_nan=False)
+    sys.stdout.write("\n")
+
+
+def _exact(thing: object) -> object:
+    if isinstance(thing, bool):
+        return thing
+    if isinstance(thing, int):
+        return thing if -_EXACT <= thing <= _EXACT else str(thing)
+    if isinstance(thing, Mapping):
+        return {key: _exact(value) for key, value in thing.items()}
+    if isinstance(thing, Sequence) and not isinstance(thing, str):
+        return [_exact(value) for value in thing]
+    return thing

@@ -1,0 +1,107 @@
+"""Watches the drives of a few workstations and says what to do, and by when, before files are lost.
+
+Without a command it opens the dashboard over this machine's drives. Where nobody watches and the history can be
+written it also watches, for as long as the dashboard is open; else it says that nobody is watching.
+"""
+
+import argparse
+import contextlib
+import os
+import subprocess
+import sys
+from collections.abc import Iterator
+from pathlib import Path
+
+from diskwatch.cli import bays as bays_command
+from diskwatch.cli.common import now, settings, state_folder, talk
+from diskwatch.errors import NothingToWorkOn
+from diskwatch.history.lock import watcher
+from diskwatch.history.reader import Past
+from diskwatch.records import Bays
+
+_PATIENCE = 10.0
+"""Seconds that the watching child gets to store everything and end."""
+
+
+def options(parser: argparse.ArgumentParser) -> None:
+    """No options of its own."""
+
+
+def run(args: argparse.Namespace) -> int:
+    """Open the dashboard; 0 when it was closed. Without a full terminal the drives are listed instead."""
+    owner = settings(args)
+    folder = state_folder(args)
+    if not sys.stdout.isatty() or not sys.stdin.isatty() or os.environ.get("TERM", "dumb") == "dumb":
+        talk("diskwatch: this is no full-screen terminal; 'diskwatch bays' shows the same as text")
+        args.json = args.code = False
+        return bays_command.run(args)
+    # Textual takes a quarter of a second to load: the child reads the drives meanwhile.
+    with _watching(folder, args) as told:
+        from diskwatch.dashboard.app import Dashboard  # noqa: PLC0415
+
+        with contextlib.ExitStack() as stack:
+            Dashboard(
+                _Source(folder, stack),
+                now,
+                watching=told,
+                every=int(owner.smart.every),
+                ascii_only=not _speaks_more_than_ascii(),
+            ).run()
+    return 0
+
+
+class _Source:
+    """The history, opened once it is there and kept open between two looks."""
+
+    def __init__(self, folder: Path, stack: contextlib.ExitStack) -> None:
+        self._folder = folder
+        self._stack = stack
+        self._past: Past | None = None
+
+    def __call__(self, at: int) -> Bays:
+        if self._past is None:
+            try:
+                self._past = self._stack.enter_context(Past.open(self._folder))
+            except NothingToWorkOn:
+                # Nothing has been stored yet, which is no error while somebody is about to.
+                return Bays(at=at, watcher=watcher(self._folder), drives=())
+        return self._past.bays(at)
+
+
+@contextlib.contextmanager
+def _watching(folder: Path, args: argparse.Namespace) -> Iterator[str]:
+    """Watch through a child where nobody does; gives the sentence that says who watches."""
+    holder = watcher(folder)
+    if holder is not None:
+        yield f"the watch of process {holder}"
+        return
+    if not _may_write(folder):
+        yield f"nobody is watching, and the history in {folder} cannot be written by you"
+        return
+    command = [sys.executable, "-m", "diskwatch", "watch", "--tied", "--state", str(folder)]
+    if args.settings is not None:
+        command += ["--settings", args.settings]
+    with subprocess.Popen(
+        command, stdin=subprocess.PIPE, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL
+    ) as child:
+        try:
+            yield "watching from here, as long as this stays open"
+        finally:
+            if child.stdin is not None:
+                child.stdin.close()
+            try:
+                child.wait(_PATIENCE)
+            except subprocess.TimeoutExpired:
+                child.kill()
+
+
+def _may_write(folder: Path) -> bool:
+    """Whether the history can be written, or made where there is none yet."""
+    place = folder
+    while not place.exists():
+        place = place.parent
+    return os.access(place, os.W_OK | os.X_OK)
+
+
+def _speaks_more_than_ascii() -> bool:
+    return (sys.stdout.encoding or "").casefold().replace("-", "") in {"utf8", "utf16", "utf32"}

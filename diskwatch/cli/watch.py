@@ -1,0 +1,74 @@
+"""Watch the drives in the foreground, until it is ended; with --once one full pass of all drives, then end."""
+
+import argparse
+import os
+import sys
+import threading
+
+from diskwatch.cli.common import settings, state_folder, talk
+from diskwatch.errors import NothingToWorkOn
+from diskwatch.machine.real import RealMachine
+from diskwatch.records import DriveRound
+from diskwatch.service.watch import Watch, now
+from diskwatch.settings import Settings
+from diskwatch.units import plain
+
+
+def options(parser: argparse.ArgumentParser) -> None:
+    """Options of this command."""
+    parser.add_argument("--once", action="store_true", help="one full pass of all drives, then end")
+    # For the dashboard, which watches through a child of its own: the child ends when its standard input does,
+    # so that it never outlives whoever started it, however that ended.
+    parser.add_argument("--tied", action="store_true", help=argparse.SUPPRESS)
+
+
+def run(args: argparse.Namespace) -> int:
+    """Watch; 0 when all was recorded, 3 without any drive, 4 when the history could not be written."""
+    owner = settings(args)
+    watch = Watch(machine(owner), owner, state_folder(args), told=None if args.tied else _say)
+    if watch.trouble:
+        talk(f"diskwatch: {watch.trouble}; watching goes on without it")
+    if args.once:
+        rounds = watch.once()
+        if watch.trouble:
+            talk(f"diskwatch: not stored: {watch.trouble}")
+            return 4
+        if not rounds:
+            raise NothingToWorkOn("this machine shows no drive at all", hint="see 'diskwatch preflight'")
+        return 0
+    if args.tied:
+        threading.Thread(target=_end_with_parent, args=(watch,), daemon=True).start()
+    watch.run()
+    if watch.trouble:
+        talk(f"diskwatch: not stored: {watch.trouble}")
+        return 4
+    return 0
+
+
+def machine(owner: Settings) -> RealMachine:
+    """This machine, as the owner wants it watched."""
+    return RealMachine(
+        command=owner.smart.command,
+        timeout=float(owner.smart.timeout),
+        only=owner.watch.only,
+        ignore=owner.watch.ignore,
+        now=now,
+    )
+
+
+def _end_with_parent(watch: Watch) -> None:
+    while os.read(sys.stdin.fileno(), 4096):
+        pass
+    watch.end()
+
+
+def _say(part: tuple[DriveRound, ...]) -> None:
+    """A line a drive: the call, or how the pass ended, and why."""
+    for one in part:
+        call = one.call
+        word = call.word.value if call is not None else "-"
+        told = call.reason if call is not None else ""
+        if one.pass_.explanation and one.pass_.explanation not in told:
+            told = f"{one.pass_.outcome.value}: {one.pass_.explanation} {told}".rstrip()
+        who = one.known.drive.identity.model or one.known.place.device
+        print(plain(f"{word:<6}  {who} ({one.known.place.device}): {told}"), flush=True)

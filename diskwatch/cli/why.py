@@ -1,0 +1,101 @@
+"""The chain from a drive's readings to its call, and what would change it."""
+
+import argparse
+import sys
+import textwrap
+from collections.abc import Iterator
+from datetime import datetime
+
+from diskwatch import analyser
+from diskwatch.cli.answers import why_answer
+from diskwatch.cli.common import now, print_json, settings, state_folder
+from diskwatch.history.reader import Past
+from diskwatch.judge import sentences
+from diskwatch.records import DriveLine
+from diskwatch.units import plain, say_count, say_days
+
+_WIDTH = 78
+
+
+def options(parser: argparse.ArgumentParser) -> None:
+    """Options of this command."""
+    parser.add_argument(
+        "drive", metavar="DRIVE", help="serial, WWN, device, label, or an unambiguous part of one"
+    )
+    parser.add_argument("--json", action="store_true", help="one JSON object")
+
+
+def run(args: argparse.Namespace) -> int:
+    """Explain a drive; 0, 2 where no drive is meant, 3 where there is no history."""
+    if args.settings is not None:
+        settings(args)
+    with Past.open(state_folder(args)) as past:
+        number = past.find(args.drive).number
+        line = next(one for one in past.bays(now()).drives if one.number == number)
+        kept = past.state(number)
+    state = analyser.start() if kept is None else analyser.load(kept)
+    why = analyser.explain(state)
+    if args.json:
+        print_json(why_answer(line, why))
+    else:
+        sys.stdout.write("\n".join(plain(one) for one in _told(line, why)) + "\n")
+    return 0
+
+
+def _told(line: DriveLine, why: analyser.Explanation) -> Iterator[str]:
+    drive = line.drive
+    who, serial = drive.identity.model or "a drive", drive.identity.serial or "not known"
+    yield f"{who}, serial {serial}, {line.place.device}"
+    if line.call is None:
+        yield "Call: none yet."
+    else:
+        yield f"Call: {line.call.word.value}, since {_when(line.call.at)}, by the rule {line.call.rule}"
+        yield from _wrapped(line.call.reason)
+    yield from _part("What stands", (f"{one.sentence} (since {_when(one.since)})" for one in why.findings))
+    yield from _part("Counters followed (first read, now)", _counters(why))
+    yield from _part("Evidence: how rarely a drive within the norm would come to this", _evidence(why))
+    if why.damage is not None:
+        damage = why.damage
+        parts = (
+            f"{say_count(damage.fresh)} fresh spots in {damage.window_days} days, "
+            f"{_known(damage.pending)} sectors pending, {_known(damage.replaced)} replaced"
+        )
+        limits = f"copy from {damage.copy_at:g}, retire from {damage.retire_at:g}"
+        yield from _part("Damage measure", (f"{damage.measure:g}: {parts} ({limits})",))
+    yield from _part("What would change the call", why.would_change)
+
+
+def _counters(why: analyser.Explanation) -> Iterator[str]:
+    for one in why.counters:
+        yield f"{sentences.signal_name(one.signal)}: {say_count(one.first)}, {say_count(one.latest)}"
+
+
+def _evidence(why: analyser.Explanation) -> Iterator[str]:
+    for one in why.evidence:
+        yield (
+            f"{one.stream}: {sentences.once_in(one.days)} after {say_days(one.powered_days)} powered; "
+            f"{one.episodes} occasions, the norm is {one.norm_per_year:g} a year; "
+            f"alarms at {sentences.once_in(one.alarms_at)}"
+        )
+
+
+def _known(count: int | None) -> str:
+    return "an unknown number of" if count is None else say_count(count)
+
+
+def _part(title: str, lines: Iterator[str] | tuple[str, ...]) -> Iterator[str]:
+    first = True
+    for one in lines:
+        if first:
+            yield ""
+            yield f"{title}:"
+            first = False
+        yield from _wrapped(one)
+
+
+def _wrapped(text: str) -> list[str]:
+    return textwrap.wrap(plain(text), _WIDTH, initial_indent="  ", subsequent_indent="    ")
+
+
+def _when(at: int) -> str:
+    return datetime.fromtimestamp(at).astimezone().strftime("%Y-%m-%d %H:%M")

@@ -1,0 +1,133 @@
+"""Between the watch and its history: what is judged is kept, and where it cannot be, watching goes on.
+
+A full disk, a read-only mount or a vanished folder must not silence a warning. What could not be written waits
+here, bounded, and is written when the trouble is over; what the trouble is can be asked at any time.
+"""
+
+from collections import deque
+from collections.abc import Callable, Sequence
+from pathlib import Path
+
+from diskwatch.errors import DiskwatchError, HistoryError, HistoryHeld, HistoryTooNew, NothingToWorkOn
+from diskwatch.history.reader import Past
+from diskwatch.history.writer import History
+from diskwatch.records import Drive, DriveLine, Entry, IoSpan, KnownDrive, Place, Round
+
+MOST_WAITING = 2_000
+"""Writes that wait at most; half-hourly rounds of a whole month fit."""
+
+
+class Keeper:
+    """Keeps rounds, traffic and entries; never raises for want of a place to keep them.
+
+    One thread at a time may use it; the service gives it a lock of its own.
+    """
+
+    def __init__(self, folder: Path) -> None:
+        """Open the history, or go on without it.
+
+        Raises:
+            HistoryTooNew: the file was written by a newer version and must be left alone.
+            HistoryHeld: another process writes it.
+        """
+        self._folder = folder
+        self._history: History | None = None
+        self._waiting: deque[Callable[[History], None]] = deque(maxlen=MOST_WAITING)
+        self._trouble: str | None = None
+        self._known: dict[int, KnownDrive] = {}
+        self._states: dict[int, str] = {}
+        try:
+            self._take_up(History.open(folder))
+        except (HistoryTooNew, HistoryHeld):
+            raise
+        except HistoryError as error:
+            self._trouble = str(error)
+            self._remember_what_can_be_read()
+
+    def _take_up(self, history: History) -> None:
+        self._history = history
+        self._known = {one.number: one for one in history.known()} | self._known
+        self._states = dict(history.states()) | self._states
+
+    def _remember_what_can_be_read(self) -> None:
+        """A history that cannot be written may still be read: its past is what a judgement rests on."""
+        try:
+            with Past.open(self._folder) as past:
+                self._known = {line.number: _known(line) for line in past.bays(0).drives}
+                self._states = {number: text for number in self._known if (text := past.state(number))}
+        except (NothingToWorkOn, HistoryError):
+            return
+
+    @property
+    def trouble(self) -> str | None:
+        """What keeps the history from being written, one sentence; None where nothing does."""
+        return self._trouble
+
+    @property
+    def waiting(self) -> int:
+        """Writes that wait for the trouble to end."""
+        return len(self._waiting)
+
+    @property
+    def known(self) -> tuple[KnownDrive, ...]:
+        """All drives that are known."""
+        return tuple(self._known.values())
+
+    def state(self, number: int) -> str | None:
+        """A drive's analyser state as last kept, or None."""
+        return self._states.get(number)
+
+    def admit(self, drive: Drive, place: Place, at: int) -> KnownDrive:
+        """Take in a drive that was never seen before; its number is never another's."""
+        known = KnownDrive(number=max(self._known, default=0) + 1, drive=drive, place=place, first_seen=at)
+        self._known[known.number] = known
+        return known
+
+    def record(self, finished: Round) -> None:
+        """Keep a round: all of it or, while the history cannot be written, later."""
+        for one in finished.drives:
+            self._known[one.known.number] = one.known
+            if one.state is not None:
+                self._states[one.known.number] = one.state
+        self._write(lambda history: history.record(finished))
+
+    def add_traffic(self, spans: Sequence[IoSpan]) -> None:
+        """Keep traffic."""
+        if spans:
+            self._write(lambda history: history.add_traffic(spans))
+
+    def note(self, *entries: Entry) -> None:
+        """Keep day-book entries that belong to no round."""
+        if entries:
+            self._write(lambda history: history.note(*entries))
+
+    def try_again(self) -> None:
+        """Write what waits, if it can be written now."""
+        if self._waiting or self._history is None:
+            self._flush()
+
+    def close(self) -> None:
+        """Write what waits, if it can be written now, and let go of the file."""
+        self.try_again()
+        if self._history is not None:
+            self._history.close()
+            self._history = None
+
+    def _write(self, deed: Callable[[History], None]) -> None:
+        self._waiting.append(deed)
+        self._flush()
+
+    def _flush(self) -> None:
+        try:
+            if self._history is None:
+                self._take_up(History.open(self._folder))
+            while self._history is not None and self._waiting:
+                self._waiting[0](self._history)
+                self._waiting.popleft()
+            self._trouble = None
+        except DiskwatchError as error:
+            self._trouble = str(error)
+
+
+def _known(line: DriveLine) -> KnownDrive:
+    return KnownDrive(number=line.number, drive=line.drive, place=line.place, first_seen=line.first_seen)

@@ -1,0 +1,262 @@
+"""One round: list the drives, ask each, recognise it, judge it, keep it.
+
+Each drive is asked in a thread of its own, so that one that hangs delays no other; what came in is kept while
+the slow ones are still waited for.
+"""
+
+import queue
+import threading
+from collections.abc import Callable, Iterator
+from contextlib import AbstractContextManager, nullcontext
+from dataclasses import dataclass, replace
+
+from diskwatch import analyser
+from diskwatch.machine import choice, identity
+from diskwatch.machine.protocol import Found, Machine
+from diskwatch.records import Drive, DriveRound, Entry, Identity, KnownDrive, Outcome, Pass, Round
+from diskwatch.service.keeper import Keeper
+from diskwatch.units import plain, say_bytes
+
+PATIENCE = 3.0
+"""Seconds after which what has come in is kept, and the drives that are still silent are waited for apart."""
+
+AWAY_LIMIT = analyser.UNREAD_LIMIT
+"""Rounds in which a drive that is no longer there is still recorded as absent; then its absence is known."""
+
+Told = Callable[[tuple[DriveRound, ...]], None]
+Wanted = Callable[[Identity, tuple[str, ...]], bool]
+
+
+def _all_wanted(_who: Identity, _devices: tuple[str, ...]) -> bool:
+    return True
+
+
+@dataclass(frozen=True, slots=True)
+class _Answer:
+    found: Found
+    pass_: Pass
+
+
+class Rounds:
+    """Runs rounds; remembers between them what each drive came to."""
+
+    def __init__(
+        self, machine: Machine, keeper: Keeper, now: Callable[[], int], *, wanted: Wanted = _all_wanted
+    ) -> None:
+        """Begin.
+
+        Args:
+            machine: whose drives.
+            keeper: where rounds are kept.
+            now: UTC seconds since 1970.
+            wanted: whether a drive that has told who it is, and goes by these devices, is to be watched.
+        """
+        self._machine = machine
+        self._keeper = keeper
+        self._now = now
+        self._wanted = wanted
+        self._states: dict[int, analyser.DriveState] = {}
+        self._here: dict[str, int] = {}
+        self._away: dict[int, int] = {}
+        self._troubles: tuple[str, ...] = ()
+        self.blocks: dict[int, tuple[str, ...]] = {}
+        """Kernel names of the block devices of each drive of the last round, by the drive's number."""
+
+    def run(
+        self, *, told: Told | None = None, lock: AbstractContextManager[object] | None = None
+    ) -> tuple[DriveRound, ...]:
+        """One full round.
+
+        Args:
+            told: called with each part of the round as soon as it has been kept.
+            lock: held while the keeper is used, where others use it too; None where nobody does.
+
+        Returns:
+            One a drive, in the order in which they answered; empty where the machine has no drive at all.
+        """
+        survey = self._machine.survey()
+        entries = self._new_troubles(survey.troubles)
+        answers: queue.Queue[_Answer] = queue.Queue()
+        for found in survey.found:
+            self._start(found, answers)
+        waiting = len(survey.found)
+        taken: set[int] = set()
+        done: list[DriveRound] = []
+        while True:
+            batch = tuple(_batch(answers, waiting))
+            waiting -= len(batch)
+            with lock or nullcontext():
+                part, more = self._judged(batch, taken)
+                if waiting == 0 and not survey.troubles:
+                    away, gone = self._gone(taken)
+                    part, more = part + away, more + gone
+                if part or entries or more:
+                    self._keeper.record(Round(at=self._now(), drives=part, entries=(*entries, *more)))
+            entries = ()
+            done += part
+            if told is not None and part:
+                told(part)
+            if waiting == 0:
+                return tuple(done)
+
+    def _start(self, found: Found, answers: "queue.Queue[_Answer]") -> None:
+        """Ask a drive in a thread of its own; the machine bounds how long that takes."""
+
+        def ask() -> None:
+            answers.put(_Answer(found, self._machine.ask(found)))
+
+        threading.Thread(target=ask, name=f"asks {plain(_key(found))}", daemon=True).start()
+
+    def _new_troubles(self, troubles: tuple[str, ...]) -> tuple[Entry, ...]:
+        """Troubles of the machine as a whole, said when they begin and when they are over."""
+        at = self._now()
+        begun = [
+            Entry(at=at, drive=None, kind="trouble", text=one) for one in troubles if one not in self._troubles
+        ]
+        over = [
+            Entry(at=at, drive=None, kind="trouble", text=f"Over: {one}")
+            for one in self._troubles
+            if one not in troubles
+        ]
+        self._troubles = troubles
+        return (*begun, *over)
+
+    def _judged(
+        self, batch: tuple[_Answer, ...], taken: set[int]
+    ) -> tuple[tuple[DriveRound, ...], tuple[Entry, ...]]:
+        drives: list[DriveRound] = []
+        entries: list[Entry] = []
+        for answer in batch:
+            told = answer.pass_.drive or answer.found.drive
+            if not self._wanted(told.identity, choice.devices_of(answer.found)):
+                continue
+            known, more = self._recognised(answer, taken)
+            taken.add(known.number)
+            self._here[_key(answer.found)] = known.number
+            self.blocks[known.number] = answer.found.blocks
+            self._away.pop(known.number, None)
+            drive, happened = self._judge(known, replace(answer.pass_, drive=known.drive))
+            drives.append(drive)
+            entries += [*more, *happened]
+        return tuple(drives), tuple(entries)
+
+    def _judge(self, known: KnownDrive, pass_: Pass) -> tuple[DriveRound, list[Entry]]:
+        number = known.number
+        step = analyser.advance(self._state(number), pass_)
+        self._states[number] = step.state
+        drive = DriveRound(
+            known=known,
+            pass_=pass_,
+            state=analyser.dump(step.state),
+            findings=step.findings,
+            evidence=step.evidence,
+            call=step.call,
+        )
+        return drive, [replace(entry, drive=number) for entry in step.happened]
+
+    def _state(self, number: int) -> analyser.DriveState:
+        if number not in self._states:
+            kept = self._keeper.state(number)
+            self._states[number] = analyser.start() if kept is None else analyser.load(kept)
+        return self._states[number]
+
+    def _recognised(self, answer: _Answer, taken: set[int]) -> tuple[KnownDrive, list[Entry]]:
+        """Which drive answered: one that is known, moved or not, or a new one."""
+        found, told = answer.found, answer.pass_.drive or answer.found.drive
+        at = answer.pass_.at
+        free = [one for one in self._keeper.known if one.number not in taken]
+        here = self._known_here(found, free)
+        known = identity.recognise(told.identity, free, here=here)
+        if known is None:
+            admitted = self._keeper.admit(told, found.place, at)
+            return admitted, [Entry(at=at, drive=admitted.number, kind="first-seen", text=_greeting(admitted))]
+        now = replace(known, drive=_fuller(known.drive, told), place=found.place)
+        moved = (
+            known.place.bay is not None and found.place.bay is not None and known.place.bay != found.place.bay
+        )
+        if not moved:
+            return now, []
+        where = f"from {plain(known.place.bay or '')} to {plain(found.place.bay or '')}"
+        text = f"Moved {where}; its history moves with it."
+        data = {"from": known.place.bay, "to": found.place.bay}
+        return now, [Entry(at=at, drive=now.number, kind="moved", text=text, data=data)]
+
+    def _known_here(self, found: Found, free: list[KnownDrive]) -> KnownDrive | None:
+        """The drive that answered from the same place before, for one that does not say who it is."""
+        number = self._here.get(_key(found))
+        for one in free:
+            if one.number == number or (number is None and one.place.device == found.place.device):
+                return one
+        return None
+
+    def _gone(self, taken: set[int]) -> tuple[tuple[DriveRound, ...], tuple[Entry, ...]]:
+        """Drives that were there and are no longer: said, and followed for a few rounds."""
+        drives: list[DriveRound] = []
+        entries: list[Entry] = []
+        for known in self._keeper.known:
+            number = known.number
+            if not self._wanted(known.drive.identity, (known.place.device,)):
+                continue
+            times = self._away.get(number, 0)
+            seen_now = number in taken
+            seen_before = number in self._here.values() or self._state(number).outcome not in {
+                None,
+                Outcome.ABSENT,
+            }
+            if seen_now or not seen_before or times >= AWAY_LIMIT:
+                continue
+            self._away[number] = times + 1
+            self.blocks.pop(number, None)
+            pass_ = Pass(
+                at=self._now(),
+                outcome=Outcome.ABSENT,
+                explanation=f"It is no longer where it was ({plain(known.place.device)}).",
+                drive=known.drive,
+            )
+            drive, happened = self._judge(known, pass_)
+            drives.append(drive)
+            entries += happened
+        return tuple(drives), tuple(entries)
+
+
+def _batch(answers: "queue.Queue[_Answer]", waiting: int) -> Iterator[_Answer]:
+    """What comes in, until all is in or nobody has answered for a while."""
+    got = 0
+    while got < waiting:
+        try:
+            # Nothing in hand: wait as long as it takes; the machine bounds every question itself.
+            answer = answers.get(timeout=PATIENCE if got else None)
+        except queue.Empty:
+            return
+        got += 1
+        yield answer
+
+
+def _key(found: Found) -> str:
+    return f"{found.address.node} {found.address.type or ''}".rstrip() if not found.blocks else found.blocks[0]
+
+
+def _fuller(known: Drive, told: Drive) -> Drive:
+    """What is known of a drive, with what it says of itself now on top; silence takes nothing away."""
+    return Drive(
+        identity=replace(
+            told.identity,
+            wwn=told.identity.wwn or known.identity.wwn,
+            model=told.identity.model or known.identity.model,
+            serial=told.identity.serial or known.identity.serial,
+        ),
+        kind=told.kind,
+        firmware=told.firmware or known.firmware,
+        capacity_bytes=told.capacity_bytes if told.capacity_bytes is not None else known.capacity_bytes,
+        rotation_rpm=told.rotation_rpm if told.rotation_rpm is not None else known.rotation_rpm,
+    )
+
+
+def _greeting(known: KnownDrive) -> str:
+    drive = known.drive
+    told = [
+        plain(drive.identity.model or "a drive without a model"),
+        f"serial {plain(drive.identity.serial)}" if drive.identity.serial else "without a serial",
+        say_bytes(drive.capacity_bytes) if drive.capacity_bytes is not None else "of unknown size",
+    ]
+    return f"First seen: {', '.join(told)}, at {plain(known.place.device)}."

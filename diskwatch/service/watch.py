@@ -1,0 +1,141 @@
+"""The watch itself: rounds and traffic on a schedule, from start to end."""
+
+import signal
+import threading
+import time
+from collections.abc import Callable
+from pathlib import Path
+
+from diskwatch.history.live import LiveWriter
+from diskwatch.machine import choice
+from diskwatch.machine.protocol import Machine
+from diskwatch.records import DriveRound, Entry, IoSpan
+from diskwatch.service.keeper import Keeper
+from diskwatch.service.rounds import Rounds
+from diskwatch.service.schedule import Schedule
+from diskwatch.service.traffic import JUMP, Traffic
+from diskwatch.settings import Settings
+from diskwatch.units import plain
+
+GUARD = 30.0
+"""Seconds between two looks of the main thread at the clocks."""
+
+Told = Callable[[tuple[DriveRound, ...]], None]
+
+
+def now() -> int:
+    """The present, UTC seconds since 1970; the one place of this room where the clock is read."""
+    return int(time.time())
+
+
+class Watch:
+    """Watches one machine's drives into one history."""
+
+    def __init__(self, machine: Machine, settings: Settings, folder: Path, *, told: Told | None = None) -> None:
+        """Open the history; see `diskwatch.service.keeper.Keeper` for what may go wrong.
+
+        Args:
+            machine: whose drives.
+            settings: the owner's.
+            folder: where the history lies.
+            told: called with each part of a round once it is kept.
+        """
+        self._machine = machine
+        self._settings = settings
+        self._told = told
+        self._lock = threading.Lock()
+        self._keeper = Keeper(folder)
+        self._live = LiveWriter(folder)
+        watch = settings.watch
+        self._rounds = Rounds(
+            machine,
+            self._keeper,
+            now,
+            wanted=lambda who, devices: choice.watched(who, devices, only=watch.only, ignore=watch.ignore),
+        )
+        self._traffic = Traffic(machine, now, time.monotonic)
+        self._gathered: list[IoSpan] = []
+        self._committed = time.monotonic()
+        self._stop = threading.Event()
+
+    @property
+    def trouble(self) -> str | None:
+        """What keeps the history from being written; None where nothing does."""
+        return self._keeper.trouble
+
+    def once(self) -> tuple[DriveRound, ...]:
+        """One full round, and then the end."""
+        try:
+            return self._rounds.run(told=self._told, lock=self._lock)
+        finally:
+            self._end()
+
+    def run(self) -> None:
+        """Watch until SIGTERM, SIGINT or `end`; everything is stored before it returns."""
+        for number in (signal.SIGTERM, signal.SIGINT):
+            signal.signal(number, lambda *_: self.end())
+        schedule = Schedule(self._mishap)
+        schedule.every("round", self._settings.smart.every, self._round, place="rounds")
+        schedule.every("traffic", self._settings.io.every, self._count)
+        self._note("watch", "Watching began.")
+        schedule.start()
+        try:
+            self._guard(schedule)
+        finally:
+            schedule.stop()
+            self._note("watch", "Watching ended.")
+            self._end()
+
+    def end(self) -> None:
+        """Let `run` come to its end; may be called from any thread or signal handler."""
+        self._stop.set()
+
+    def _guard(self, schedule: Schedule) -> None:
+        """Wait for the end, and notice when the clock is set or the machine has slept."""
+        wall, steady = time.time(), time.monotonic()
+        while not self._stop.wait(GUARD):
+            wall_now, steady_now = time.time(), time.monotonic()
+            jump = (wall_now - wall) - (steady_now - steady)
+            wall, steady = wall_now, steady_now
+            if abs(jump) > JUMP:
+                schedule.clock_moved()
+                self._note("watch", _jumped(jump))
+            with self._lock:
+                self._keeper.try_again()
+
+    def _round(self) -> None:
+        self._rounds.run(told=self._told, lock=self._lock)
+
+    def _count(self) -> None:
+        spans = self._traffic.look(dict(self._rounds.blocks))
+        if spans:
+            self._live.write(spans, now())
+            self._gathered += spans
+        if time.monotonic() - self._committed >= self._settings.history.commit:
+            self._commit_traffic()
+
+    def _commit_traffic(self) -> None:
+        self._committed = time.monotonic()
+        gathered, self._gathered = self._gathered, []
+        with self._lock:
+            self._keeper.add_traffic(gathered)
+
+    def _mishap(self, text: str) -> None:
+        self._note("trouble", plain(text))
+
+    def _note(self, kind: str, text: str) -> None:
+        with self._lock:
+            self._keeper.note(Entry(at=now(), drive=None, kind=kind, text=text))
+
+    def _end(self) -> None:
+        self._machine.stop()
+        self._commit_traffic()
+        self._live.close()
+        with self._lock:
+            self._keeper.close()
+
+
+def _jumped(seconds: float) -> str:
+    way = "forward" if seconds > 0 else "back"
+    by = f"{way} by {abs(seconds):.0f} seconds"
+    return f"The clock moved {by}, or the machine slept; all jobs were planned anew."
