@@ -64,9 +64,5 @@ def _name(line: DriveLine) -> str:
 def _told(entry: Entry, lines: dict[int, DriveLine]) -> str:
     when = datetime.fromtimestamp(entry.at).astimezone().strftime("%Y-%m-%d %H:%M")
     line = lines.get(entry.drive) if entry.drive is not None else None
-    who = (
-        f"{line.label or line.drive.identity.model or line.place.device} ({line.place.device}): "
-        if line
-        else ""
-    )
+    who = f"{line.name} ({line.place.device}): " if line else ""
     return plain(f"{when}  {entry.kind:<10}  {who}{entry.text}") + "\n"

@@ -43,9 +43,7 @@ def run(args: argparse.Namespace) -> int:
 
 
 def _told(line: DriveLine, why: analyser.Explanation) -> Iterator[str]:
-    drive = line.drive
-    who, serial = drive.identity.model or "a drive", drive.identity.serial or "not known"
-    yield f"{who}, serial {serial}, {line.place.device}"
+    yield f"{line.name}, serial {line.drive.identity.serial or 'not known'}, {line.place.device}"
     if line.call is None:
         yield "Call: none yet."
     else:

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 
 from diskwatch.judge import sentences
 from diskwatch.records import Attribute, CallWord, Cause, Failing, Finding, FindingKind, Reading
+from diskwatch.trends.norms import STREAM_OF
 
 WARNINGS = (
     (1, "spare blocks below their limit", Cause.SPARE),
@@ -77,10 +78,15 @@ def _verdict(reading: Reading, at: int) -> Iterator[Finding]:
             at,
             CallWord.RETIRE,
             meant[0][1] if meant else _blamed(reading),
-            sentences.self_assessment_failed(names),
+            sentences.self_assessment_failed(names, _counted(reading)),
             "self-assessment",
             critical_warning=warning,
         )
+
+
+def _counted(reading: Reading) -> dict[str, int]:
+    """Counters of errors that are not at zero, for the sentence."""
+    return {signal: count for signal in STREAM_OF if (count := reading.number(signal) or 0) > 0}
 
 
 def _blamed(reading: Reading) -> Cause:

@@ -93,9 +93,10 @@ def damage(*, fresh: int, pending: int, replaced: int, score: float, limit: floa
     )
 
 
-def self_assessment_failed(bits: str) -> str:
-    """The drive's own verdict is that it is failing."""
-    return f"The drive itself reports that it is failing (self-assessment: failed{bits})."
+def self_assessment_failed(bits: str, counted: Mapping[str, int]) -> str:
+    """The drive's own verdict is that it is failing, with what its error counters hold."""
+    beside = f"; it counts {_list(counted)}" if counted else ""
+    return f"The drive itself reports that it is failing (self-assessment: failed{bits}){beside}."
 
 
 def critical_warning(names: str) -> str:
