@@ -16,11 +16,6 @@ policy_mark='# laid by the set-up of diskwatch for one installation; goes away b
 
 # Debian asks this file before it starts a service of a package that is being installed.
 forbid_starts() {
-    allow_starts # what a run that was killed may have left behind
-    trap 'allow_starts' EXIT
-    trap 'allow_starts; trap - INT; kill -INT $$' INT
-    trap 'allow_starts; trap - TERM; kill -TERM $$' TERM
-    trap 'allow_starts; trap - HUP; kill -HUP $$' HUP
     if [ -e "$policy" ] || [ -L "$policy" ]; then mv -f "$policy" "$policy_kept"; fi
     printf '#!/bin/sh\n%s\nexit 101\n' "$policy_mark" >"$policy"
     chmod 755 "$policy"
@@ -30,8 +25,6 @@ allow_starts() {
     if [ -f "$policy" ] && grep -qxF "$policy_mark" "$policy"; then rm -f "$policy"; fi
     if [ -e "$policy_kept" ] || [ -L "$policy_kept" ]; then mv -f "$policy_kept" "$policy"; fi
 }
-
-starts_as_before() { allow_starts; trap - EXIT INT TERM HUP; }
 
 # Whatever the package would start at the next boot. Its owner may enable it again by hand.
 disable_what_came_with() {
@@ -44,7 +37,9 @@ disable_what_came_with() {
             if command -v systemctl >/dev/null; then
                 systemctl --quiet disable "$name" 2>/dev/null || say "$name could not be disabled; see: systemctl disable $name"
             else
+                # Without systemd the packages lay its links all the same, for the day it comes.
                 deb-systemd-helper disable "$name" >/dev/null 2>&1 || true
+                find /etc/systemd/system -type l -lname "*/$name" -exec rm -f {} +
             fi
             ;;
         /etc/init.d/*) update-rc.d "$name" disable >/dev/null 2>&1 || true ;;
@@ -87,12 +82,27 @@ install_package() {
     if installed "$1"; then return 1; fi
     fetch_lists
     say "installing $1"
+    coming=$1
+    exec 8</usr/sbin # something that every Debian has, to lock: two set-ups at once would mix their policies up
+    if command -v flock >/dev/null; then flock -w 600 8 || say 'another set-up is still at work; going on'; fi
+    allow_starts # what a run that was killed may have left behind
+    trap 'settle' EXIT
+    for signal in INT TERM HUP; do
+        # shellcheck disable=SC2064 # the name of the signal is meant as it is now
+        trap "settle; trap - $signal; kill -$signal \$\$" "$signal"
+    done
     forbid_starts
-    if apt_get install --yes --no-install-recommends "$1"; then went=0; else went=1; fi
-    starts_as_before
-    # Also after a half-done installation: what is there must not start.
-    if installed "$1"; then disable_what_came_with "$1"; fi
+    if apt_get install --yes --no-install-recommends "$coming"; then went=0; else went=1; fi
+    settle
     return "$went"
+}
+
+# Also after an installation that was broken off: what is there must not start.
+settle() {
+    if installed "$coming"; then disable_what_came_with "$coming"; fi
+    allow_starts
+    trap - EXIT INT TERM HUP
+    exec 8<&-
 }
 
 # --- a Python, and an environment of our own --------------------------------------------------------------
@@ -159,6 +169,7 @@ fill() {
 }
 
 pip_install() {
-    "$venv/bin/python" -m pip install --quiet --disable-pip-version-check --retries 2 "$@" >"$venv/pip.log" 2>&1 ||
+    # By the environment, since pip starts others of its kind.
+    PIP_RETRIES=2 PIP_DISABLE_PIP_VERSION_CHECK=1 "$venv/bin/python" -m pip install --quiet "$@" >"$venv/pip.log" 2>&1 ||
         give_up "pip could not install what is needed (is there a network?); its words are in $venv/pip.log"
 }
