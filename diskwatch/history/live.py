@@ -158,7 +158,7 @@ def _believed(path: Path, owners: frozenset[int]) -> tuple[int, tuple[IoSpan, ..
         try:
             found = json.loads(file.read(_LARGEST_FILE))
             return int(found["at"]), tuple(_span(row) for row in found["spans"])
-        except (OSError, ValueError, KeyError, TypeError):
+        except (OSError, ValueError, KeyError, TypeError, OverflowError):
             return None
 
 

@@ -68,6 +68,12 @@ def told(error: sqlite3.Error | OSError, path: Path | None) -> HistoryError:
     return HistoryError(f"{name} cannot be used: {plain(str(detail))}")
 
 
+def no_database(path: Path) -> HistoryError:
+    """The error for a file that is not even the beginning of a database."""
+    what, hint = _WORDS[sqlite3.SQLITE_NOTADB]
+    return HistoryError(f"{plain(str(path))} {what}", hint=hint)
+
+
 def unreadable(path: Path | None) -> HistoryError:
     """The error for a history whose file is sound but whose contents make no sense."""
     name = "the history in memory" if path is None else plain(str(path))

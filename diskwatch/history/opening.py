@@ -15,11 +15,15 @@ from pathlib import Path
 
 from diskwatch.errors import HistoryError, NothingToWorkOn
 from diskwatch.history import versions
-from diskwatch.history.mishaps import primary, told
+from diskwatch.history.mishaps import no_database, primary, told
 from diskwatch.units import plain
 
 BUSY_MS = 5_000
 """How long a lock is waited for, milliseconds."""
+
+_MAGIC = b"SQLite format 3\0"
+_SMALLEST_PAGE = 512
+"""How every database begins, and the least bytes that one has (SQLite, Database File Format, 1.3)."""
 
 _NO_WAY_IN = frozenset({sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_READONLY})
 
@@ -32,6 +36,11 @@ class _Mark:
     changed: tuple[int, int]
     log: int | None
     journal: int | None
+
+    @property
+    def empty(self) -> bool:
+        """Whether nothing was ever written; with a log beside it, an empty file is a damaged one."""
+        return self.changed[1] == 0 and not self.log
 
 
 def _size(path: Path) -> int | None:
@@ -95,7 +104,7 @@ def open_to_read(path: Path) -> Opened:
         raise _nothing_yet(path) from None
     except OSError as error:
         raise told(error, path) from error
-    if mark.changed[1] == 0 and not mark.log:
+    if mark.empty:
         raise _nothing_yet(path)
     opened = _connected(path, mark)
     try:
@@ -131,7 +140,7 @@ def refuse_foreign(path: Path) -> None:
         return
     except OSError as error:
         raise told(error, path) from error
-    if mark.changed[1] == 0:
+    if mark.empty:
         return  # a start that was cut short before its first step: nothing stands in it
     opened = _connected(path, mark)
     try:
@@ -148,7 +157,19 @@ def _nothing_yet(path: Path) -> NothingToWorkOn:
     )
 
 
+def _refuse_no_database(path: Path) -> None:
+    """SQLite takes a file of less than its smallest page for an empty database, and would write over it."""
+    try:
+        with path.open("rb") as file:
+            begin = file.read(_SMALLEST_PAGE)
+    except OSError as error:
+        raise told(error, path) from error
+    if len(begin) < _SMALLEST_PAGE or not begin.startswith(_MAGIC):
+        raise no_database(path)
+
+
 def _connected(path: Path, mark: _Mark) -> Opened:
+    _refuse_no_database(path)
     if mark.log is None and mark.journal is None:
         return _connect(path, mark, frozen=True)
     try:

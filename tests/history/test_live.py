@@ -120,6 +120,7 @@ def test_figures_that_cannot_be_shared_anywhere_are_no_error(state, monkeypatch)
         '{"at": 1796126400, "spans": [[1, 2]]}',
         '{"at": 1796126400, "spans": 7}',
         '{"at": "noon", "spans": []}',
+        '{"at": 1e999, "spans": []}',
         "\udcff",
     ],
 )

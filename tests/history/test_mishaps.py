@@ -5,7 +5,7 @@ from pathlib import Path
 
 import pytest
 
-from diskwatch.history.mishaps import primary, told, unreadable
+from diskwatch.history.mishaps import no_database, primary, told, unreadable
 
 PATH = Path("/invented/history.db")
 
@@ -70,3 +70,4 @@ def test_a_history_in_memory_is_called_so():
 def test_a_path_cannot_write_to_the_terminal():
     assert "\x1b" not in str(told(_raised(sqlite3.SQLITE_FULL), Path("/in\x1b[2Jvented")))
     assert "\x1b" not in str(unreadable(Path("/in\x1b[2Jvented")))
+    assert "\x1b" not in str(no_database(Path("/in\x1b[2Jvented")))

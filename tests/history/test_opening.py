@@ -1,0 +1,168 @@
+import hashlib
+import sqlite3
+from contextlib import closing
+
+import pytest
+
+from diskwatch.errors import HistoryError, HistoryTooNew, NothingToWorkOn
+from diskwatch.history import versions
+from diskwatch.history.opening import open_to_read, refuse_foreign
+from diskwatch.history.writer import History
+from diskwatch.places import HISTORY
+from tests.history.examples import NOON, a_drive, a_place
+
+
+@pytest.fixture
+def path(folder):
+    """A history that its writer has closed."""
+    with History.open(folder) as history:
+        history.admit(a_drive(), a_place(), NOON)
+    return folder / HISTORY
+
+
+def _all_of(folder):
+    return {
+        file.name: (hashlib.sha256(file.read_bytes()).hexdigest(), file.stat().st_mtime_ns)
+        for file in folder.iterdir()
+    }
+
+
+def _drives(opened):
+    return opened.connection.execute("SELECT count(*) FROM drive").fetchone()[0]
+
+
+def test_a_history_that_nobody_writes_is_read_as_it_lies_and_nothing_is_laid_beside_it(path):
+    before = _all_of(path.parent)
+    with closing(open_to_read(path)) as opened:
+        assert opened.frozen
+        assert _drives(opened) == 1
+        assert opened.holds()
+        assert _all_of(path.parent) == before
+    assert _all_of(path.parent) == before
+
+
+def test_a_history_that_is_being_written_is_read_with_its_log(path):
+    with History.open(path.parent) as history:
+        history.admit(a_drive("INVENTED-2"), a_place("/dev/sdb"), NOON)
+        with closing(open_to_read(path)) as opened:
+            assert not opened.frozen
+            assert _drives(opened) == 2
+            history.admit(a_drive("INVENTED-3"), a_place("/dev/sdc"), NOON)
+            assert _drives(opened) == 3
+            assert opened.holds()
+
+
+def test_what_was_read_as_it_lay_does_not_hold_once_somebody_writes(path):
+    with closing(open_to_read(path)) as opened:
+        with History.open(path.parent):
+            assert not opened.holds()
+        path.unlink()
+        assert not opened.holds()
+
+
+def test_a_connection_for_reading_cannot_write(path):
+    with closing(open_to_read(path)) as opened, pytest.raises(sqlite3.OperationalError, match="readonly"):
+        opened.connection.execute("DELETE FROM drive")
+
+
+@pytest.mark.parametrize("name", ["a ? b", "a # b", "a % b", "a%20b", "ä\n"])
+def test_a_folder_may_have_any_name(tmp_path, name):
+    with History.open(tmp_path / name):
+        pass
+    open_to_read(tmp_path / name / HISTORY).close()
+
+
+def test_no_history_yet_says_how_to_start(tmp_path):
+    with pytest.raises(NothingToWorkOn, match="watch --once"):
+        open_to_read(tmp_path / HISTORY)
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_an_empty_file_is_no_history_yet(tmp_path):
+    (tmp_path / HISTORY).touch()
+    with pytest.raises(NothingToWorkOn):
+        open_to_read(tmp_path / HISTORY)
+    refuse_foreign(tmp_path / HISTORY)
+
+
+def test_a_history_whose_first_step_was_cut_short_is_no_history_yet(tmp_path):
+    with closing(sqlite3.connect(tmp_path / HISTORY)) as connection:
+        connection.execute("CREATE TABLE _sqlite_migrations (id INTEGER, migration_set TEXT, name TEXT)")
+    with pytest.raises(NothingToWorkOn):
+        open_to_read(tmp_path / HISTORY)
+
+
+@pytest.mark.parametrize("opener", [open_to_read, refuse_foreign, lambda path: History.open(path.parent)])
+@pytest.mark.parametrize(
+    "statement",
+    [
+        "PRAGMA user_version = 99",
+        "INSERT INTO _sqlite_migrations (migration_set, name, applied_at) VALUES ('diskwatch', '9999_x', '')",
+    ],
+)
+def test_a_newer_history_is_refused_and_left_untouched(path, opener, statement):
+    with closing(sqlite3.connect(path)) as connection:
+        connection.execute(statement)
+        connection.commit()
+    before = _all_of(path.parent)
+    with pytest.raises(HistoryTooNew):
+        opener(path)
+    assert _all_of(path.parent) == before
+
+
+def test_an_older_history_cannot_be_read_until_the_watch_has_brought_it_up_to_date(path, monkeypatch):
+    monkeypatch.setattr(versions, "MIGRATIONS", (*versions.MIGRATIONS, "9999_invented"))
+    with pytest.raises(HistoryError, match="older version"):
+        open_to_read(path)
+    refuse_foreign(path)
+
+
+@pytest.mark.parametrize("opener", [open_to_read, refuse_foreign, lambda path: History.open(path.parent)])
+@pytest.mark.parametrize("content", [b"no database at all" * 100, b"SQLite format 3\0" + b"\xff" * 4096, b"SQLite format 3\0", b"x"])
+def test_a_file_that_is_no_history_is_refused_by_name_and_left_untouched(tmp_path, opener, content):
+    path = tmp_path / HISTORY
+    path.write_bytes(content)
+    before = _all_of(tmp_path)
+    with pytest.raises(HistoryError, match=r"history\.db is") as caught:
+        opener(path)
+    assert caught.value.hint
+    assert _all_of(tmp_path) == before
+
+
+@pytest.mark.parametrize("opener", [open_to_read, refuse_foreign, lambda path: History.open(path.parent)])
+@pytest.mark.parametrize("kept", [600, 4096, 5000, -4096])
+def test_a_history_that_was_cut_short_is_called_damaged_and_left_untouched(path, opener, kept):
+    path.write_bytes(path.read_bytes()[:kept])
+    before = _all_of(path.parent)
+    with pytest.raises(HistoryError, match=r"history\.db is damaged"):
+        opener(path)
+    assert _all_of(path.parent) == before
+
+
+@pytest.mark.parametrize("opener", [open_to_read, refuse_foreign, lambda path: History.open(path.parent)])
+def test_an_empty_file_with_a_log_beside_it_is_not_taken_for_a_new_history(path, opener):
+    path.write_bytes(b"")
+    path.with_name(HISTORY + "-wal").write_bytes(b"\x37" * 5000)
+    before = _all_of(path.parent)
+    with pytest.raises(HistoryError, match=r"history\.db is"):
+        opener(path)
+    assert _all_of(path.parent) == before
+
+
+def test_a_damaged_log_does_not_hide_what_was_folded_in_before(path):
+    log = path.with_name(HISTORY + "-wal")
+    log.write_bytes(b"\xff" * 5000)
+    with closing(open_to_read(path)) as opened:
+        assert _drives(opened) == 1
+
+
+def test_an_empty_log_that_was_left_behind_hides_nothing(path):
+    path.with_name(HISTORY + "-wal").touch()
+    with closing(open_to_read(path)) as opened:
+        assert _drives(opened) == 1
+
+
+def test_a_folder_in_its_place_is_told(tmp_path):
+    (tmp_path / HISTORY).mkdir()
+    with pytest.raises(HistoryError, match=r"history\.db"):
+        open_to_read(tmp_path / HISTORY)

@@ -1,0 +1,176 @@
+import re
+
+import pytest
+
+from diskwatch.history import bays, questions
+from diskwatch.history.round import file_past_days
+from diskwatch.records import Entry, Outcome, Pass
+from tests.history.examples import (
+    DAY,
+    NOON,
+    a_drive,
+    a_part,
+    a_pass,
+    a_place,
+    a_round,
+    a_span,
+    a_value,
+    full_round,
+)
+
+LARGE = ("value", "fresh", "pass", "io_minute", "evidence", "day_book")
+
+
+@pytest.fixture
+def connection(history):
+    return history._db.conn
+
+
+@pytest.fixture
+def known(history):
+    return history.admit(a_drive(), a_place(), NOON)
+
+
+def _read(history, known, at, *values, **part):
+    history.record(a_round(a_part(known, a_pass(at, *values), **part), at=at))
+
+
+@pytest.fixture
+def grown(history, known, connection):
+    """A history large enough that whether an index serves a question can be seen."""
+    for number in range(60):
+        history.record(full_round(known, NOON + number * DAY // 4, number))
+        history.add_traffic([a_span(at=NOON + number * 60)])
+    file_past_days(connection, NOON // DAY + 12)
+    connection.execute("ANALYZE")
+    return connection
+
+
+@pytest.mark.parametrize(
+    "ask",
+    [
+        lambda connection: questions.day_book(connection, None, None, None, None),
+        lambda connection: questions.day_book(connection, NOON, 1, ["rise"], 5),
+        lambda connection: questions.passes(connection, 1, None, None),
+        lambda connection: questions.passes(connection, 1, NOON, 5),
+        lambda connection: questions.series(connection, 1, "pending-sectors", None),
+        lambda connection: questions.series(connection, 1, "pending-sectors", NOON + DAY),
+        lambda connection: questions.evidence(connection, 1, "pending-sectors", None),
+        lambda connection: questions.traffic(connection, 1, NOON, NOON + DAY),
+        lambda connection: questions.last_reading(connection, 1),
+        lambda connection: questions.state(connection, 1),
+        bays.drive_lines,
+    ],
+)
+def test_no_question_walks_through_a_whole_large_table_or_sorts_one(grown, ask):
+    asked = []
+    grown.set_trace_callback(asked.append)
+    answer = ask(grown)
+    grown.set_trace_callback(None)
+    assert answer, "a question without an answer proves nothing"
+    assert asked
+    for sql in asked:
+        plan = [row[3] for row in grown.execute(f"EXPLAIN QUERY PLAN {sql}")]
+        scans = [step for step in plan if re.search(rf"SCAN ({'|'.join(LARGE)})\b", step)]
+        assert not scans, (sql, plan)
+
+
+def test_the_day_book_reads_oldest_first_and_a_limit_keeps_the_newest(history, known, connection):
+    written = [
+        Entry(at=NOON + 2, drive=None, kind="watch", text="c"),
+        Entry(at=NOON, drive=known.number, kind="rise", text="a"),
+        Entry(at=NOON, drive=known.number, kind="call", text="b", data={"from": None, "to": "look"}),
+    ]
+    history.note(*written)
+
+    def texts(since=None, drive=None, kinds=None, limit=None):
+        found = questions.day_book(connection, since, drive, kinds, limit)
+        return "".join(entry.text for entry in found)
+
+    assert texts() == "abc"
+    assert texts(since=NOON + 1) == "c"
+    assert texts(drive=known.number) == "ab"
+    assert texts(drive=99) == ""
+    assert texts(kinds={"call", "watch"}) == "bc"
+    assert texts(kinds=()) == ""
+    assert texts(limit=2) == "bc"
+    assert texts(limit=0) == ""
+    assert questions.day_book(connection, None, None, ["call"], None) == (written[2],)
+
+
+def test_passes_read_oldest_first_and_say_how_each_ended(history, known, connection):
+    _read(history, known, NOON)
+    asleep = a_pass(NOON + 60, outcome=Outcome.ASLEEP, explanation="It sleeps.")
+    history.record(a_round(a_part(known, asleep), at=NOON + 60))
+    _read(history, known, NOON + 120)
+    found = questions.passes(connection, known.number, None, None)
+    assert [one.at - NOON for one in found] == [0, 60, 120]
+    assert found[1] == Pass(
+        at=NOON + 60, outcome=Outcome.ASLEEP, explanation="It sleeps.", exit_bits=0, took_ms=12
+    )
+    assert questions.passes(connection, known.number, None, 2) == found[1:]
+    assert questions.passes(connection, known.number, NOON + 60, None) == found[1:]
+    assert questions.passes(connection, 99, None, None) == ()
+
+
+def test_a_series_joins_what_was_filed_with_what_is_fresh(history, known, connection):
+    for step, value in enumerate([1, 1, 2, None, "odd", 2**100]):
+        reason = "Not printed." if value is None else None
+        _read(history, known, NOON + step * DAY // 2, a_value(value=value, reason=reason))
+    whole = tuple((NOON + step * DAY // 2, value) for step, value in [(0, 1), (2, 2), (3, None), (4, "odd"), (5, 2**100)])
+    assert questions.series(connection, known.number, "pending-sectors", None) == whole
+
+
+def test_a_series_from_a_time_begins_with_the_value_that_held_then(history, known, connection):
+    for step in range(4):
+        _read(history, known, NOON + step * DAY, a_value(value=step))
+    signal = (known.number, "pending-sectors")
+    assert questions.series(connection, *signal, NOON + 2 * DAY)[0] == (NOON + 2 * DAY, 2)
+    assert questions.series(connection, *signal, NOON + 2 * DAY - 1)[0] == (NOON + DAY, 1)
+    assert questions.series(connection, *signal, NOON + 9 * DAY) == ((NOON + 3 * DAY, 3),)
+    assert questions.series(connection, *signal, NOON - 1)[0] == (NOON, 0)
+    assert questions.series(connection, known.number, "no-such-signal", None) == ()
+
+
+def test_a_series_speaks_of_the_current_unit_only(history, known, connection):
+    _read(history, known, NOON, a_value(value=2**40, unit="opaque"))
+    _read(history, known, NOON + 1, a_value(value=7, unit="sectors"))
+    assert questions.series(connection, known.number, "pending-sectors", None) == ((NOON + 1, 7),)
+
+
+def test_evidence_reads_by_day_with_today_and_through_a_change_of_unit(history, known, connection):
+    for day, unit in enumerate(["opaque", "opaque", "sectors", "sectors"]):
+        at = NOON + day * DAY
+        _read(history, known, at, a_value(unit=unit), evidence={"pending-sectors": float(day)})
+    today = NOON // DAY
+    whole = tuple((today + day, float(day)) for day in range(4))
+    assert questions.evidence(connection, known.number, "pending-sectors", None) == whole
+    assert questions.evidence(connection, known.number, "pending-sectors", NOON + 2 * DAY) == whole[2:]
+    assert questions.evidence(connection, known.number, "no-such-signal", None) == ()
+
+
+def test_traffic_reads_by_the_minute_for_one_drive(history, known, connection):
+    other = history.admit(a_drive("INVENTED-2", "/dev/sdb"), a_place("/dev/sdb"), NOON)
+    spans = [a_span(drive, NOON + ten * 10) for ten in range(1, 13) for drive in (known.number, other.number)]
+    history.add_traffic(spans[:10])
+    history.add_traffic(spans[10:])
+    found = questions.traffic(connection, known.number, NOON, NOON + 120)
+    six = dict.fromkeys(
+        ("reads", "writes", "read_bytes", "write_bytes", "read_ms", "write_ms", "busy_ms"), 6
+    )
+    assert found == tuple(a_span(known.number, NOON + end, 60.0, **six) for end in (60, 120))
+    assert questions.traffic(connection, known.number, NOON + 60, NOON + 120) == found[1:]
+    assert questions.traffic(connection, known.number, NOON, NOON + 60) == found[:1]
+
+
+def test_what_was_last_read_beside_the_values_is_there_whole(history, known, connection):
+    assert questions.last_reading(connection, known.number) is None
+    assert questions.state(connection, known.number) is None
+    round_ = full_round(known, number=5)
+    history.record(round_)
+    reading = round_.drives[0].pass_.reading
+    assert reading is not None
+    found = questions.last_reading(connection, known.number)
+    assert found is not None
+    assert found.attributes == reading.attributes
+    assert questions.state(connection, known.number) == "state 5"

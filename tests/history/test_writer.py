@@ -1,0 +1,344 @@
+import os
+import random
+import signal
+import sqlite3
+import subprocess
+import sys
+import threading
+import time
+from contextlib import closing
+
+import pytest
+
+from diskwatch.errors import HistoryError, HistoryHeld
+from diskwatch.history import writer
+from diskwatch.history.lock import watcher
+from diskwatch.history.reader import Past
+from diskwatch.history.writer import History
+from diskwatch.places import HISTORY, WATCH_LOCK
+from diskwatch.records import Entry
+from tests.history.examples import DAY, NOON, a_call, a_drive, a_part, a_place, a_round, a_span, full_round
+
+
+def _dump(history):
+    return list(history._db.conn.iterdump())
+
+
+def _integrity(path):
+    with closing(sqlite3.connect(path)) as connection:
+        return connection.execute("PRAGMA integrity_check").fetchall()
+
+
+def test_opening_makes_folder_and_file_that_others_may_read_whatever_the_umask(folder):
+    before = os.umask(0o077)
+    try:
+        with History.open(folder) as history:
+            history.admit(a_drive(), a_place(), NOON)
+            modes = {file.name: file.stat().st_mode & 0o777 for file in folder.iterdir()}
+    finally:
+        os.umask(before)
+    assert folder.stat().st_mode & 0o777 == 0o755
+    assert modes == dict.fromkeys((HISTORY, HISTORY + "-wal", HISTORY + "-shm", WATCH_LOCK), 0o644)
+
+
+def test_a_folder_that_is_there_keeps_its_rights(folder):
+    folder.mkdir(mode=0o700)
+    History.open(folder).close()
+    assert folder.stat().st_mode & 0o777 == 0o700
+
+
+def test_what_is_recorded_outlives_a_power_cut_and_names_only_what_exists(folder):
+    with History.open(folder) as history:
+        ask = history._db.conn.execute
+        assert ask("PRAGMA journal_mode").fetchone() == ("wal",)
+        assert ask("PRAGMA synchronous").fetchone() == (2,)
+        assert ask("PRAGMA foreign_keys").fetchone() == (1,)
+        assert ask("PRAGMA busy_timeout").fetchone()[0] >= 1000
+
+
+def test_all_is_in_the_one_file_after_closing_even_with_a_reader_open(folder):
+    with History.open(folder) as history:
+        history.record(full_round(history.admit(a_drive(), a_place(), NOON)))
+        reader = Past.open(folder)
+        reader.bays(NOON)
+    log = folder / (HISTORY + "-wal")
+    assert not log.exists() or log.stat().st_size == 0
+    reader.close()
+
+
+def test_drives_come_back_with_their_numbers(folder):
+    with History.open(folder) as history:
+        first = history.admit(a_drive(), a_place(), NOON)
+        second = history.admit(a_drive("INVENTED-2"), a_place("/dev/sdb", None), NOON + 1)
+        assert [first.number, second.number] == [1, 2]
+    with History.open(folder) as history:
+        assert history.known() == (first, second)
+
+
+def test_a_number_is_never_given_twice(folder):
+    with History.open(folder) as history:
+        history.admit(a_drive(), a_place(), NOON)
+        last = history.admit(a_drive("INVENTED-2"), a_place(), NOON)
+        with history._writing() as connection:
+            connection.execute("DELETE FROM plugged WHERE drive = ?", (last.number,))
+            connection.execute("DELETE FROM drive WHERE number = ?", (last.number,))
+    with History.open(folder) as history:
+        assert history.admit(a_drive("INVENTED-3"), a_place(), NOON).number == last.number + 1
+
+
+def test_states_and_calls_come_back(folder):
+    with History.open(folder) as history:
+        known = history.admit(a_drive(), a_place(), NOON)
+        assert (history.states(), history.calls()) == ({}, {})
+        history.record(a_round(a_part(known, state='{"ledger": 1}', call=a_call())))
+    with History.open(folder) as history:
+        assert history.states() == {known.number: '{"ledger": 1}'}
+        assert history.calls() == {known.number: a_call()}
+
+
+def test_a_drive_is_known_as_it_last_described_itself(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    now = type(known)(
+        number=known.number,
+        drive=a_drive(firmware="AT02"),
+        place=a_place("/dev/sdc", "ata-4"),
+        first_seen=known.first_seen,
+    )
+    history.record(a_round(a_part(now)))
+    assert history.known() == (now,)
+
+
+def test_notes_go_into_the_day_book_together(history):
+    stranger = Entry(at=NOON, drive=99, kind="moved", text="A drive that nobody knows.")
+    with pytest.raises(HistoryError):
+        history.note(Entry(at=NOON, drive=None, kind="watch", text="The watch began."), stranger)
+    assert history._db["day_book"].count == 0
+    history.note()
+
+
+def test_traffic_adds_up_within_a_minute_however_it_is_handed_over(history):
+    history.admit(a_drive(), a_place(), NOON)
+    spans = [a_span(at=NOON + ten * 10, reads=ten) for ten in range(1, 13)]
+    history.add_traffic(spans)
+    together = history._db.execute("SELECT * FROM io_minute").fetchall()
+    history._db.execute("DELETE FROM io_minute")
+    for one in spans:
+        history.add_traffic([one])
+    history.add_traffic([])
+    assert history._db.execute("SELECT * FROM io_minute").fetchall() == together
+    assert [row[:4] for row in together] == [(NOON, 1, 60_000, 21), (NOON + 60, 1, 60_000, 57)]
+
+
+def test_closing_twice_does_nothing_and_a_closed_history_says_so(folder):
+    history = History.open(folder)
+    history.close()
+    history.close()
+    with pytest.raises(HistoryError, match="closed"):
+        history.known()
+    with pytest.raises(HistoryError, match="closed"):
+        history.note()
+
+
+def test_a_history_in_memory_does_the_same_without_any_file(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    history.record(full_round(known))
+    assert history.states() == {known.number: "state 1"}
+
+
+# Bad days
+
+
+class _Rigged(sqlite3.Connection):
+    """A connection whose statement number ``fails_at`` fails, and none after it."""
+
+    fails_at = 0
+
+    def _count(self):
+        self.fails_at -= 1
+        if self.fails_at == 0:
+            raise sqlite3.OperationalError("rigged")
+
+    def execute(self, *arguments):
+        self._count()
+        return super().execute(*arguments)
+
+    def executemany(self, *arguments):
+        self._count()
+        return super().executemany(*arguments)
+
+
+@pytest.fixture
+def rigged(tmp_path):
+    path = tmp_path / HISTORY
+    connection = sqlite3.connect(path, factory=_Rigged)
+    with History(writer._prepared(connection, path), path, None) as history:
+        yield history
+
+
+def test_whichever_statement_of_a_round_fails_all_of_it_is_stored_or_nothing(rigged):
+    known = rigged.admit(a_drive(), a_place(), NOON)
+    rigged.record(full_round(known))
+    before = _dump(rigged)
+    connection = rigged._db.conn
+    for fails_at in range(1, 500):
+        connection.fails_at = fails_at
+        try:
+            rigged.record(full_round(known, NOON + DAY, 2))
+        except HistoryError as error:
+            assert "rigged" in str(error)  # noqa: PT017  # one round of the loop must end without an error
+            connection.fails_at = 0
+            assert _dump(rigged) == before, fails_at
+        else:
+            break
+    assert 20 < fails_at < 500, "the last round went through untouched, after every statement had failed once"
+    connection.fails_at = 0
+    after = _dump(rigged)
+    assert after != before
+    with History.in_memory() as untouched:
+        untouched.admit(a_drive(), a_place(), NOON)
+        untouched.record(full_round(known))
+        untouched.record(full_round(known, NOON + DAY, 2))
+        assert [line for line in _dump(untouched) if "_sqlite_migrations" not in line] == [
+            line for line in after if "_sqlite_migrations" not in line
+        ]
+    assert connection.execute("PRAGMA integrity_check").fetchall() == [("ok",)]
+
+
+def test_whichever_statement_of_the_first_start_fails_the_next_start_succeeds(tmp_path):
+    for fails_at in range(1, 500):
+        path = tmp_path / f"{fails_at}.db"
+        connection = sqlite3.connect(path, factory=_Rigged)
+        connection.fails_at = fails_at
+        try:
+            writer._prepared(connection, path).close()
+        except HistoryError:
+            writer._opened(path).close()
+            assert _integrity(path) == [("ok",)]
+        else:
+            break
+    assert 30 < fails_at < 500
+
+
+def test_a_full_disk_is_said_and_what_was_stored_before_is_kept(folder):
+    with History.open(folder) as history:
+        known = history.admit(a_drive(), a_place(), NOON)
+        history.record(full_round(known))
+        pages = history._db.execute("PRAGMA page_count").fetchone()[0]
+        history._db.execute(f"PRAGMA max_page_count = {pages}")
+        before = _dump(history)
+        noise = random.Random(1)  # noqa: S311  # what cannot be packed must not be a secret, only large
+        large = "".join(chr(noise.randrange(0x4E00, 0x9FFF)) for _ in range(50_000))
+        with pytest.raises(HistoryError, match=r"history\.db cannot be written: the disk that holds it is full"):
+            history.record(a_round(a_part(known, state=large)))
+        assert _dump(history) == before
+        history._db.execute("PRAGMA max_page_count = 100000")
+        history.record(a_round(a_part(known, state=large)))
+        assert history.states() == {known.number: large}
+    assert _integrity(folder / HISTORY) == [("ok",)]
+
+
+def test_a_history_that_another_process_writes_is_held_and_its_number_named(folder):
+    program = (
+        "import sys; from pathlib import Path; from diskwatch.history.writer import History;"
+        "h = History.open(Path(sys.argv[1])); print('open', flush=True); sys.stdin.read(); h.close()"
+    )
+    with subprocess.Popen(
+        [sys.executable, "-c", program, str(folder)], stdin=subprocess.PIPE, stdout=subprocess.PIPE
+    ) as child:
+        assert child.stdout is not None
+        assert child.stdout.readline() == b"open\n"
+        with pytest.raises(HistoryHeld, match=f"process {child.pid}"):
+            History.open(folder)
+        assert watcher(folder) == child.pid
+        child.communicate()
+    History.open(folder).close()
+
+
+def test_a_start_that_fails_lets_go_of_the_lock(folder):
+    History.open(folder).close()
+    path = folder / HISTORY
+    good = path.read_bytes()
+    path.write_bytes(good[:4096])
+    with pytest.raises(HistoryError):
+        History.open(folder)
+    assert watcher(folder) is None
+    path.write_bytes(good)
+    History.open(folder).close()
+
+
+def test_a_folder_that_cannot_be_made_is_told_by_name(tmp_path):
+    (tmp_path / "file").touch()
+    with pytest.raises(HistoryError, match="file/state"):
+        History.open(tmp_path / "file" / "state")
+
+
+def test_threads_take_turns_and_none_undoes_anothers_work(folder):
+    troubles = []
+
+    def note(name):
+        try:
+            for step in range(30):
+                if step % 3:
+                    history.note(Entry(at=NOON, drive=None, kind="watch", text=name))
+                else:
+                    with pytest.raises(HistoryError):
+                        history.note(Entry(at=NOON, drive=99, kind="watch", text=name))
+        except BaseException as error:  # noqa: BLE001  # a thread's failure must reach the test
+            troubles.append(error)
+
+    with History.open(folder) as history:
+        threads = [threading.Thread(target=note, args=(name,)) for name in "abc"]
+        for thread in threads:
+            thread.start()
+        for thread in threads:
+            thread.join()
+        assert troubles == []
+        found = history._db.execute("SELECT text, count(*) FROM day_book GROUP BY text").fetchall()
+        assert found == [(name, 20) for name in "abc"]
+
+
+def _write_rounds_for_ever(folder, pipe):
+    """What the child does until it is killed: report each round's number once it is stored."""
+    history = History.open(folder)
+    known = (history.known() or (history.admit(a_drive(), a_place(), NOON),))[0]
+    number = history._db.execute("SELECT count(*) FROM pass").fetchone()[0]
+    while True:
+        history.record(full_round(known, NOON + number * 7200, number))
+        number += 1
+        os.write(pipe, number.to_bytes(4, "big"))
+
+
+def test_a_writer_that_is_killed_leaves_whole_rounds_and_all_that_it_reported(folder):
+    """SIGKILL at twenty moments: process death, not power loss."""
+    when = random.Random(7)  # noqa: S311  # moments, not secrets
+    for _ in range(20):
+        reader, pipe = os.pipe()
+        child = os.fork()
+        if child == 0:
+            try:
+                _write_rounds_for_ever(folder, pipe)
+            finally:
+                os._exit(1)
+        os.close(pipe)
+        reported = os.read(reader, 4)
+        time.sleep(when.uniform(0, 0.03))  # the moment must be any, so it cannot be waited for
+        os.kill(child, signal.SIGKILL)
+        assert os.waitpid(child, 0)[1] == signal.SIGKILL
+        while more := os.read(reader, 4):
+            reported = more
+        os.close(reader)
+
+        stored = int.from_bytes(reported, "big")
+        with Past.open(folder) as past:
+            passes = len(past.passes(1))
+            assert passes in {stored, stored + 1}
+            assert [entry.data["n"] for entry in past.day_book()] == list(range(passes))
+            assert past.state(1) == f"state {passes - 1}"
+            assert [value for _, value in past.series(1, "pending-sectors")] == list(range(passes))
+            assert past.evidence(1, "pending-sectors")[-1][1] == passes - 1
+            call = past.bays(NOON).drives[0].call
+            assert call is not None
+            assert call.reason == f"reason {passes - 1}"
+            assert past.bays(NOON).watcher is None
+        History.open(folder).close()
+        assert _integrity(folder / HISTORY) == [("ok",)]
