@@ -69,7 +69,10 @@ def understood(lines: Sequence[str], document: Document | None, *, type_: str | 
         values = logs.scsi_values(document, device, sheet)
         critical = logs.trip_celsius(document, sheet)
     newest = newest_result(tests)
-    words = (*_assessment(document, sheet), *([_word("self-test", newest, "self-test log")] if newest else []))
+    words = (
+        *_assessment(family, document, sheet),
+        *([_word("self-test", newest, "self-test log")] if newest else []),
+    )
     return Understood(
         drive=drive,
         reading=Reading(
@@ -90,13 +93,14 @@ def _word(signal: str, word: str | None, source: str, reason: str | None = None)
 _FAILED = ("fail", "impending", "threshold exceeded")
 
 
-def _assessment(document: Document | None, sheet: Sheet) -> tuple[Value, ...]:
+def _assessment(family: Family, document: Document | None, sheet: Sheet) -> tuple[Value, ...]:
     """What the drive's own firmware thinks of it.
 
     Only words that are known to say so make it passed or failed: pySMART calls all but one word failed, also
-    the "UNKNOWN!" that stands for no answer.
+    the "UNKNOWN!" that stands for no answer. An NVMe drive has no such verdict: smartctl prints failed wherever
+    a critical warning stands, be it for heat alone. The source tells the two apart.
     """
-    source = "SMART status"
+    source = "critical warning" if family is Family.NVME else "SMART status"
     passed = flag_at(document, "smart_status", "passed")
     if passed is not None:
         return (_word("self-assessment", "passed" if passed else "failed", source),)

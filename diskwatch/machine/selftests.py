@@ -37,7 +37,7 @@ def self_tests(family: Family, document: Document | None, device: Any, sheet: Sh
     """
     readers: tuple[Callable[[], Iterable[SelfTest]], ...] = (
         lambda: _from_document(document),
-        lambda: _from_library(family, device),
+        lambda: _from_library(device),
         lambda: _from_rows(family, sheet),
     )
     for reader in readers:
@@ -73,14 +73,14 @@ def _from_document(document: Document | None) -> Iterator[SelfTest]:
             yield _test(name, result, hours=number_at(row, "power_on_hours"), lba=number_at(row, "lba"))
 
 
-def _from_library(family: Family, device: Any) -> Iterator[SelfTest]:
+def _from_library(device: Any) -> Iterator[SelfTest]:
     for entry in getattr(device, "tests", None) or ():
         if entry.type and entry.status and entry.num != -1:  # -1 is the library's own mark of a running test
             yield _test(
                 str(entry.type),
                 str(entry.status),
                 hours=whole(str(entry.hours)),
-                lba=_lba(str(entry.LBA), family),
+                lba=_lba(str(entry.LBA)),
                 medium=str(entry.sense or "") == "0x3",
             )
 
@@ -93,7 +93,7 @@ def _from_rows(family: Family, sheet: Sheet) -> Iterator[SelfTest]:
                 found["name"],
                 found["result"],
                 hours=whole(found["hours"]),
-                lba=_lba(found["lba"], family),
+                lba=_lba(found["lba"]),
                 medium=family is Family.SCSI and found["key"] == "0x3",
             )
 
@@ -110,10 +110,10 @@ def _log_lines(sheet: Sheet) -> Iterator[str]:
             yield line.strip()
 
 
-def _lba(text: str, family: Family) -> int | None:
-    """The first failing block; SCSI prints it in hexadecimal, with or without a mark."""
-    if family is Family.SCSI:
-        return int(text, 16) if re.fullmatch(r"(0x)?[0-9a-fA-F]{1,16}", text) else None
+def _lba(text: str) -> int | None:
+    """The first failing block: decimal, or hexadecimal with its mark, as old versions print it for SCSI."""
+    if re.fullmatch(r"0x[0-9a-fA-F]{1,16}", text):
+        return int(text, 16)
     return int(text) if re.fullmatch(r"[0-9]{1,20}", text) else None
 
 
