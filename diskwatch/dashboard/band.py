@@ -107,7 +107,7 @@ def _title(line: DriveLine, screen: int, width: int, *, chosen: bool, bar: Text,
     left.append(" " * max(start.cell_len + named + 2 - left.cell_len, 2))
     right = f"{size:>6}  {column(where, max(8, min(cell_len(where), 22)), mark)}"
     if roomy and width == screen:
-        right = f"{kind(line):<9}{right}"
+        right = f"{kind(line):<10}{right}"
         if screen >= _BAYS:
             bay = "" if line.place.bay is None else f"in {plain(line.place.bay)}"
             right = f"{right}  {column(bay, 32, mark)}"

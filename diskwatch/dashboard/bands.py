@@ -36,8 +36,7 @@ class Bands(VerticalScroll, can_focus=False):
 
     DEFAULT_CSS = """
     Bands { height: 1fr; scrollbar-size-vertical: 1; scrollbar-gutter: stable; }
-    Bands.roomy { padding-top: 1; }
-    Bands.roomy Band { margin-bottom: 1; }
+    Bands.roomy Band { margin-top: 1; }
     """
 
     def __init__(self, face: Face) -> None:
@@ -142,7 +141,7 @@ class Bands(VerticalScroll, can_focus=False):
         if width <= 0:
             return
         rows = sum(len(self._lines(line, width, chosen=False)) for line in self._drives)
-        self.set_class(rows + len(self._drives) <= self.outer_size.height, "roomy")
+        self.set_class(rows + len(self._drives) <= self.size.height, "roomy")
 
     def _reveal(self) -> None:
         for widget in self.query_children(Band):

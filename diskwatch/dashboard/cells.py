@@ -27,9 +27,10 @@ def cut(text: str, width: int, mark: str) -> str:
         return set_cell_size(text, max(width, 0)).rstrip()
     head = set_cell_size(text, width - cell_len(mark)).rstrip()
     blank = head.rfind(" ")
-    if blank > 0 and cell_len(head) - cell_len(head[:blank]) <= _WORD_END_WITHIN:
-        head = head[:blank].rstrip(" ,;")
-    return head + mark
+    within_word = not text[len(head) :].startswith(" ")
+    if within_word and blank > 0 and cell_len(head) - cell_len(head[:blank]) <= _WORD_END_WITHIN:
+        head = head[:blank]
+    return head.rstrip(" ,;") + mark
 
 
 def column(text: str, width: int, mark: str) -> str:

@@ -3,6 +3,9 @@
 from diskwatch.records import IoSpan
 from diskwatch.units import say_bytes, say_count
 
+_SHORTEST = 0.001
+"""A span of less than a millisecond gives no rate, only noise."""
+
 
 def traffic(span: IoSpan | None) -> tuple[str, ...]:
     """What a drive is doing now, from the fullest wording to the shortest.
@@ -16,7 +19,7 @@ def traffic(span: IoSpan | None) -> tuple[str, ...]:
     """
     if span is None:
         return ("nobody measures its traffic", "not measured")
-    if span.seconds <= 0:
+    if span.seconds < _SHORTEST:
         return ("traffic not known yet",)
     counts = span.counts
     if counts.reads <= 0 and counts.writes <= 0:

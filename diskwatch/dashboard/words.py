@@ -65,7 +65,7 @@ def _mount(mount: Mount) -> str:
 
 
 def cause(line: DriveLine) -> str:
-    """What best explains the findings, with its probability and the runner-up; empty where no cause is named."""
+    """What best explains the findings, its probability and the runner-up; empty where no cause is named."""
     call = line.call
     if call is None or call.cause is None:
         return ""

@@ -1,0 +1,47 @@
+"""A running dashboard as text, and the ways to wait for it: the one place that knows the library's insides."""
+
+from typing import NamedTuple
+
+from textual.app import App
+from textual.pilot import Pilot
+
+
+def text_of(app: App[None]) -> str:
+    """What stands on the screen, one line a row, trailing blanks removed."""
+    # The library has no public way to read its screen as text.
+    return "\n".join(strip.text.rstrip() for strip in app.screen._compositor.render_strips())
+
+
+def rows_of(app: App[None]) -> list[str]:
+    """What stands on the screen, row by row."""
+    return text_of(app).split("\n")
+
+
+class Shade(NamedTuple):
+    """Some letters with the red, green and blue of their colour and of what is behind them."""
+
+    text: str
+    front: tuple[int, ...]
+    back: tuple[int, ...]
+
+
+def shades_of(app: App[None]) -> list[Shade]:
+    """All letters on the screen with their colours; fails where one would get the terminal's own colours."""
+    shades = []
+    for strip in app.screen._compositor.render_strips():
+        for segment in strip:
+            if not segment.text.strip():
+                continue
+            assert segment.style is not None
+            assert segment.style.color is not None
+            assert segment.style.bgcolor is not None
+            front, back = segment.style.color.get_truecolor(), segment.style.bgcolor.get_truecolor()
+            shades.append(Shade(segment.text, tuple(front), tuple(back)))
+    return shades
+
+
+async def settled(pilot: Pilot[None]) -> None:
+    """Wait until the source has answered and its answer has been drawn."""
+    await pilot.app.workers.wait_for_complete()
+    await pilot.pause()
+    await pilot.pause()
