@@ -180,13 +180,17 @@ def _volumes(rows: Sequence[Attribute], sector: int | None, *, least: int) -> It
         )
 
 
+_SECTORS = frozenset({512, 520, 524, 528, 4_096, 4_104, 4_112, 4_160, 4_224})
+"""Bytes that logical blocks have, with and without room for checks (practice)."""
+
+
 def _sector(document: Document | None, sheet: Sheet) -> int | None:
-    """Bytes in a logical block."""
+    """Bytes in a logical block, where a size is stated that blocks have."""
     told = number_at(document, "logical_block_size")
-    if told is not None:
-        return told
-    found = re.match(r"([0-9]{3,6}) bytes logical", sheet.get("Sector Size", "Sector Sizes") or "")
-    return int(found[1]) if found is not None else None
+    if told is None:
+        found = re.match(r"([0-9]{3,6}) bytes logical", sheet.get("Sector Size", "Sector Sizes") or "")
+        told = int(found[1]) if found is not None else None
+    return told if told in _SECTORS else None
 
 
 def _wear(rows: Sequence[Attribute], *, known_model: bool) -> Iterator[Value]:

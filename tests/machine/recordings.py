@@ -203,7 +203,7 @@ def numbers_in(text: str) -> set[int]:
     return runs | packed | left | {-number for number in runs}
 
 
-STEPS = (1, 512_000, 512, 520, 4_096, 2**20, 2**25, 2**30)
+STEPS = (1, 512_000, 512, 520, 524, 528, 4_096, 4_104, 4_112, 4_160, 4_224, 2**20, 2**25, 2**30)
 
 
 def is_stated(value: int, numbers: set[int]) -> bool:

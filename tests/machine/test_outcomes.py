@@ -1,0 +1,153 @@
+import pytest
+
+from diskwatch.machine.command import Answer, Ending
+from diskwatch.machine.outcomes import of_command, of_words, quoted
+from diskwatch.machine.reading import understood
+from diskwatch.records import Outcome
+from tests.machine.recordings import FIXTURES, text_of
+
+HEAD = (
+    "smartctl 7.3 2022-02-28 r5338 [x86_64-linux-6.1.0] (local build)",
+    "Copyright (C) 2002-22, its authors",
+    "",
+)
+
+
+def fixture(name: str) -> tuple[str, ...]:
+    return tuple(text_of(FIXTURES / name / "all.txt").splitlines())
+
+
+def verdict(
+    lines: tuple[str, ...], status: int, *, expects_smart: bool = True, err: str = ""
+) -> tuple[str, str]:
+    what = understood(lines, None, type_=None, path="/dev/x")
+    found = of_words((*lines, err), status, what, name="/dev/x", expects_smart=expects_smart)
+    assert (found.explanation is None) is (found.outcome is Outcome.READ)
+    return found.outcome.value, found.explanation or ""
+
+
+@pytest.mark.parametrize("status", [0, 4, 8, 32, 64, 192, 255])
+def test_a_drive_that_states_values_was_read_whatever_the_bits_say(status: int):
+    assert verdict(fixture("invented_hdd_failing"), status) == ("read", "")
+
+
+@pytest.mark.parametrize(
+    ("line", "status"),
+    [
+        ("Device is in STANDBY mode, exit(3)", 3),
+        ("Device is in STANDBY mode, exit(2)", 2),
+        ("Device is in SLEEP mode, exit(2)", 2),
+        ("Device is in STANDBY (OS) mode, exit(3)", 3),
+        ("device is NOT READY (e.g. spun down, busy)", 2),
+        ("", 3),
+    ],
+)
+def test_a_sleeping_drive_is_asleep(line: str, status: int):
+    outcome, why = verdict((*HEAD, line), status)
+    assert outcome == "asleep"
+    assert "not woken" in why
+
+
+@pytest.mark.parametrize(
+    "line",
+    [
+        "Smartctl open device: /dev/sda failed: Permission denied",
+        "Read Device Identity failed: Operation not permitted",
+    ],
+)
+def test_a_drive_that_may_not_be_opened_is_refused_and_the_cure_is_named(line: str):
+    outcome, why = verdict((*HEAD, line, ""), 2)
+    assert outcome == "refused"
+    assert "root" in why
+
+
+@pytest.mark.parametrize("line", ["No such device", "No such device or address", "No such file or directory"])
+def test_a_drive_that_is_gone_is_absent(line: str):
+    outcome, why = verdict((*HEAD, f"Smartctl open device: /dev/sda failed: {line}"), 2)
+    assert outcome == "absent"
+    assert "cable" in why
+
+
+def test_what_is_said_on_the_error_channel_counts_too():
+    assert verdict((), 2, err="cannot open: Permission denied")[0] == "refused"
+
+
+def test_a_disk_of_no_language_has_no_smart():
+    outcome, why = verdict((*HEAD, "/dev/vda: Unable to detect device type"), 1)
+    assert outcome == "no-smart"
+    assert "virtual" in why
+
+
+def test_an_unknown_usb_bridge_has_no_smart_and_what_to_try_is_named():
+    outcome, why = verdict(fixture("invented_usb_bridge_unknown"), 1)
+    assert outcome == "no-smart"
+    assert "sntjmicron" in why
+
+
+def test_a_drive_without_smart_says_who_it_is_all_the_same():
+    assert verdict(fixture("invented_virtual_no_smart"), 4)[0] == "no-smart"
+    assert verdict(fixture("megaraid_vd_0"), 0)[0] == "no-smart"
+
+
+def test_smart_that_is_switched_off_is_said_with_the_cure():
+    lines = tuple(
+        line.replace("SMART support is: Enabled", "SMART support is: Disabled")
+        for line in fixture("invented_hdd_sister")
+    )
+    outcome, why = verdict(lines, 4)
+    assert outcome == "no-smart"
+    assert "switched off" in why
+
+
+def test_a_drive_that_does_not_answer_sensibly_is_garbled_with_its_words():
+    outcome, why = verdict(fixture("invented_scsi_short_inquiry"), 2)
+    assert outcome == "garbled"
+    assert "Short INQUIRY response" in why
+
+
+def test_a_drive_that_names_itself_but_gives_no_data_is_garbled():
+    lines = fixture("invented_hdd_failing")
+    cut = lines[: lines.index("=== START OF READ SMART DATA SECTION ===")]
+    outcome, why = verdict((*cut, "Read SMART Data failed: Input/output error"), 4)
+    assert outcome == "garbled"
+    assert "could not be read" in why
+
+
+def test_silence_and_noise_are_garbled_unless_no_smart_was_to_be_expected():
+    assert verdict((), 0)[0] == "garbled"
+    assert verdict(("\x00\x1b[2J 197 Current_Pending_Sector 0x0032",), 0)[0] == "garbled"
+    assert verdict(("Read Device Identity failed: Inappropriate ioctl for device",), 2, expects_smart=False)[
+        0
+    ] == ("no-smart")
+
+
+def test_words_of_a_drive_are_made_harmless_and_cut():
+    _, why = verdict(("evil \x1b[31m words \u202e" + "x" * 1_000,), 2)
+    assert why.isprintable()
+    assert len(why) < 500
+    assert quoted("\x1b" + "y" * 500) == "\\x1b" + "y" * 196
+
+
+@pytest.mark.parametrize(
+    ("answer", "outcome", "word"),
+    [
+        (Answer(ending=Ending.MISSING), "no-tool", "install"),
+        (Answer(ending=Ending.NOT_EXECUTABLE, trouble="Permission denied"), "no-tool", "Permission denied"),
+        (Answer(ending=Ending.NOT_STARTED, trouble="Cannot allocate memory"), "garbled", "memory"),
+        (Answer(ending=Ending.TIMED_OUT), "timed-out", "no answer in 60 s"),
+        (Answer(ending=Ending.STOPPED), "timed-out", "ended"),
+        (Answer(ending=Ending.TOO_MUCH), "garbled", "without end"),
+        (Answer(ending=Ending.ENDED, status=-11), "garbled", "signal 11"),
+    ],
+)
+def test_a_command_that_gave_no_whole_answer_is_told_by_its_ending(answer: Answer, outcome: str, word: str):
+    found = of_command(answer, command="/opt/smartctl", name="/dev/x", timeout=60.0)
+    assert found is not None
+    assert found.outcome == outcome
+    assert found.explanation is not None
+    assert found.explanation.startswith("/dev/x: ")
+    assert word in found.explanation
+
+
+def test_a_command_that_ended_by_itself_leaves_the_verdict_to_its_words():
+    assert of_command(Answer(ending=Ending.ENDED, status=2), command="x", name="x", timeout=1) is None

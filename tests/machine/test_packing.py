@@ -1,0 +1,100 @@
+import pytest
+from hypothesis import given, strategies as st
+
+from diskwatch.machine import packing
+
+
+@pytest.mark.parametrize(
+    ("raw", "value"), [("0", 0), ("1265", 1_265), ("0 (2000 0)", 0), ("594 (Average 594)", 594)]
+)
+def test_a_plain_count_is_itself_whatever_stands_in_brackets(raw: str, value: int):
+    assert packing.count(raw) == (value, None)
+
+
+@pytest.mark.parametrize("raw", ["65535", "16777215", "4294967295", "281474976710655"])
+def test_a_full_counter_is_not_known(raw: str):
+    value, reason = packing.count(raw)
+    assert value is None
+    assert reason
+
+
+@pytest.mark.parametrize("raw", ["0/123", "0x51769394de98", "0 0 0", "4295032833", "12h", "", "-3", "1.5"])
+def test_a_count_that_is_packed_in_an_unknown_way_is_not_known(raw: str):
+    value, reason = packing.count(raw)
+    assert value is None
+    assert reason
+
+
+@given(st.integers(0, 65_534), st.integers(0, 65_535), st.integers(0, 65_535))
+def test_three_words_give_the_low_one_printed_apart_or_as_one_number(low: int, middle: int, high: int):
+    assert packing.low_word(f"{high} {middle} {low}") == (low, None)
+    assert packing.low_word(str((high << 32) | (middle << 16) | low)) == (low, None)
+
+
+def test_a_full_low_word_or_a_strange_one_is_not_known():
+    assert packing.low_word("0 0 65535")[0] is None
+    assert packing.low_word("1 1")[0] is None
+
+
+def test_of_a_pair_the_first_counts():
+    assert packing.first_of_pair("1204/1177") == (1_204, None)
+    assert packing.first_of_pair("1204") == (1_204, None)
+    assert packing.first_of_pair("1204/x")[0] is None
+
+
+@pytest.mark.parametrize(
+    "raw", ["33124", "33124h+17m", "33124h+17m+05s", "33124h+17m+05.250s", "33124 (143 119 0)"]
+)
+def test_hours_are_read_however_they_are_printed(raw: str):
+    assert packing.hours(raw) == (33_124, None)
+
+
+@given(st.integers(0, 1_000_000), st.integers(0, 2**24 - 1))
+def test_packed_hours_lie_in_the_low_24_bits(hours: int, above: int):
+    assert packing.hours(str((above << 24) | hours)) == (hours, None)
+
+
+def test_more_hours_than_drives_exist_are_not_believed():
+    assert packing.hours("1000001")[0] is None
+    assert packing.hours("9999999h+00m")[0] is None
+
+
+def test_a_bare_number_under_a_name_that_says_minutes_is_no_hours():
+    assert packing.stated_hours("1987440")[0] is None
+    assert packing.stated_hours("33124h+00m") == (33_124, None)
+
+
+@pytest.mark.parametrize(
+    ("raw", "value"),
+    [("41", 41), ("41 (Min/Max 20/45)", 41), ("30 (2 100 0 0 0)", 30), ("-5", -5), (str(0x2D0014_0029), 41)],
+)
+def test_the_current_temperature_is_found_among_its_extremes(raw: str, value: int):
+    assert packing.celsius(raw) == (value, None)
+
+
+@pytest.mark.parametrize("raw", ["200", "-61", "151", "41.5", "hot"])
+def test_a_temperature_that_no_drive_has_is_not_known(raw: str):
+    value, reason = packing.celsius(raw)
+    assert value is None
+    assert reason
+
+
+def test_a_volume_is_a_whole_number_that_is_not_full():
+    assert packing.volume("204918331904") == (204_918_331_904, None)
+    assert packing.volume("4294967295")[0] is None
+    assert packing.volume("12/34")[0] is None
+
+
+@given(st.text(max_size=30))
+def test_every_decoder_answers_every_text_with_a_value_or_a_reason(raw: str):
+    for decode in (
+        packing.count,
+        packing.volume,
+        packing.low_word,
+        packing.first_of_pair,
+        packing.hours,
+        packing.stated_hours,
+        packing.celsius,
+    ):
+        value, reason = decode(raw)
+        assert (value is None) is (reason is not None)

@@ -1,0 +1,259 @@
+import json
+import threading
+import time
+from pathlib import Path
+from typing import Any
+
+import pytest
+
+from diskwatch.machine.command import Answer, Door, Ending
+from diskwatch.machine.protocol import Address, Found
+from diskwatch.machine.smartctl import Scan, Smartctl
+from diskwatch.records import Drive, Identity, Kind, Outcome, Place
+from tests.machine.recordings import FIXTURES
+
+NOW = 1_800_000_000
+HDD = FIXTURES / "invented_hdd_failing" / "all.txt"
+NVME_JSON = FIXTURES / "invented_nvme_json" / "document.json"
+USAGE = "\nUse smartctl -h to get a usage summary\n\n"
+
+
+class Told(Door):
+    """A door behind which nothing runs: it hands out answers and remembers the questions."""
+
+    def __init__(self, *answers: Answer | Exception) -> None:
+        super().__init__()
+        self.answers = list(answers)
+        self.asked: list[list[str]] = []
+
+    def run(self, argv: Any, *, timeout: float) -> Answer:
+        assert timeout == 60
+        self.asked.append(list(argv))
+        answer = self.answers.pop(0) if len(self.answers) > 1 else self.answers[0]
+        if isinstance(answer, Exception):
+            raise answer
+        return answer
+
+
+def said(text: str | bytes, status: int = 0, err: str = "") -> Answer:
+    out = text if isinstance(text, bytes) else text.encode()
+    return Answer(ending=Ending.ENDED, status=status, out=out, err=err.encode())
+
+
+def asked(
+    node: str = "/dev/sdx", type_: str | None = "sat", *, serial: str | None = None, usb: bool = False
+) -> Found:
+    return Found(
+        address=Address(node=node, type=type_),
+        blocks=("sdx",),
+        place=Place(device=node),
+        drive=Drive(
+            identity=Identity(wwn=None, model=None, serial=serial, path=node),
+            kind=Kind.USB if usb else Kind.HDD,
+        ),
+    )
+
+
+def smartctl(*answers: Answer | Exception) -> tuple[Smartctl, Told]:
+    door = Told(*answers)
+    return Smartctl("smartctl", 60, lambda: NOW, door=door), door
+
+
+def test_a_pass_is_one_process_that_wakes_no_drive():
+    tool, door = smartctl(said(HDD.read_bytes(), 24))
+    found = tool.ask(asked())
+    assert door.asked == [["smartctl", "-n", "standby,3", "-d", "sat", "--json=o", "--all", "/dev/sdx"]]
+    assert (found.outcome, found.exit_bits, found.at, found.explanation) == (Outcome.READ, 24, NOW, None)
+    assert found.reading is not None
+    assert found.reading.get("reallocated-sectors") == 2_264
+    assert found.drive is not None
+    assert found.drive.identity.serial == "INVENTED-BT-0001"
+
+
+def test_without_a_type_none_is_passed_and_the_one_that_worked_is_remembered_for_this_drive():
+    tool, door = smartctl(said(NVME_JSON.read_bytes()))
+    for _ in range(2):
+        assert tool.ask(asked(type_=None, serial="A")).outcome is Outcome.READ
+    assert tool.ask(asked(type_=None, serial="B")).outcome is Outcome.READ
+    assert ["-d" in argv for argv in door.asked] == [False, True, False]
+    assert "nvme" in door.asked[1]
+
+
+def test_a_remembered_type_that_fails_is_forgotten():
+    noise = said("noise", 2)
+    tool, door = smartctl(said(NVME_JSON.read_bytes()), noise, noise)
+    for _ in range(3):
+        tool.ask(asked(type_=None))
+    assert ["-d" in argv for argv in door.asked] == [False, True, False]
+
+
+def test_what_hangs_on_usb_stays_known_as_usb():
+    tool, _ = smartctl(said(HDD.read_bytes()))
+    drive = tool.ask(asked(usb=True)).drive
+    assert drive is not None
+    assert (drive.kind, drive.identity.model) == (Kind.USB, "Borealis Tundra BT4000")
+
+
+def test_a_command_that_knows_no_json_is_asked_again_without_and_from_then_on_once():
+    refusal = said(f"=======> UNRECOGNIZED OPTION: json=o\n{USAGE}", 1)
+    tool, door = smartctl(refusal, said(HDD.read_bytes()))
+    for _ in range(2):
+        assert tool.ask(asked()).outcome is Outcome.READ
+    assert ["--json=o" in argv for argv in door.asked] == [True, False, False]
+    assert all("standby,3" in argv for argv in door.asked)
+
+
+def test_a_command_that_knows_no_standby_status_either_is_asked_a_third_time():
+    no_json = said(f"=======> UNRECOGNIZED OPTION: json=o\n{USAGE}", 1)
+    no_status = said(
+        f"=======> INVALID ARGUMENT TO -n: standby,3\n=======> VALID ARGUMENTS ARE: never{USAGE}", 1
+    )
+    tool, door = smartctl(no_json, no_status, said(HDD.read_bytes()))
+    for _ in range(2):
+        assert tool.ask(asked()).outcome is Outcome.READ
+    assert len(door.asked) == 4
+    assert door.asked[3] == ["smartctl", "-n", "standby", "-d", "sat", "--all", "/dev/sdx"]
+
+
+def test_a_standby_status_alone_that_is_not_known_costs_no_json():
+    no_status = said(f"=======> INVALID ARGUMENT TO -n: standby,3\n{USAGE}", 1)
+    tool, door = smartctl(no_status, said(NVME_JSON.read_bytes()))
+    tool.ask(asked())
+    assert door.asked[1] == ["smartctl", "-n", "standby", "-d", "sat", "--json=o", "--all", "/dev/sdx"]
+
+
+def test_a_complaint_that_never_ends_is_asked_three_times_and_teaches_nothing():
+    tool, door = smartctl(said(f"=======> UNRECOGNIZED OPTION: all\n{USAGE}", 1))
+    assert tool.ask(asked()).outcome is Outcome.GARBLED
+    assert len(door.asked) == 3
+    tool.ask(asked())
+    assert "--json=o" in door.asked[3]
+
+
+def test_a_type_that_is_not_known_is_no_reason_to_ask_for_less():
+    tool, door = smartctl(
+        said("/dev/sdx: Unknown device type 'sntnew'\n=======> VALID ARGUMENTS ARE: ata\n", 1)
+    )
+    found = tool.ask(asked(type_="sntnew"))
+    assert (len(door.asked), found.outcome) == (1, Outcome.GARBLED)
+    assert "Unknown device type 'sntnew'" in (found.explanation or "")
+
+
+def test_plain_text_in_spite_of_json_is_read_in_one_process():
+    tool, door = smartctl(said(HDD.read_bytes()))
+    assert tool.ask(asked()).outcome is Outcome.READ
+    assert len(door.asked) == 1
+
+
+def test_complaints_in_the_document_decide_as_words_do():
+    document = {
+        "smartctl": {
+            "messages": [
+                {"string": "Smartctl open device: /dev/sdx failed: Permission denied", "severity": "error"}
+            ]
+        }
+    }
+    tool, _ = smartctl(said(json.dumps(document), 2))
+    assert tool.ask(asked()).outcome is Outcome.REFUSED
+
+
+def test_a_drive_asleep_brings_neither_drive_nor_reading():
+    tool, _ = smartctl(said("smartctl 7.3\n\nDevice is in STANDBY mode, exit(3)\n", 3))
+    found = tool.ask(asked())
+    assert (found.outcome, found.drive, found.reading, found.exit_bits) == (Outcome.ASLEEP, None, None, 3)
+
+
+def test_a_drive_without_smart_states_who_it_is_and_brings_no_reading():
+    tool, _ = smartctl(said((FIXTURES / "invented_virtual_no_smart" / "all.txt").read_bytes(), 4))
+    found = tool.ask(asked())
+    assert (found.outcome, found.reading) == (Outcome.NO_SMART, None)
+    assert found.drive is not None
+    assert found.drive.kind is Kind.VIRTUAL
+
+
+def test_a_fault_of_our_own_is_a_pass_like_any_other(caplog: pytest.LogCaptureFixture):
+    tool, _ = smartctl(ZeroDivisionError("ours"))
+    found = tool.ask(asked())
+    assert (found.outcome, found.at) == (Outcome.GARBLED, NOW)
+    assert "fault of diskwatch" in (found.explanation or "")
+    assert "ours" in caplog.text
+
+
+def test_the_scan_opens_nothing_and_lists_each_device_once():
+    tool, door = smartctl(
+        said(
+            "/dev/sda -d scsi # /dev/sda, SCSI device\n"
+            "/dev/sda -d scsi # /dev/sda, SCSI device\n"
+            "/dev/bus/0 -d sat+megaraid,60 # /dev/bus/0 [megaraid_disk_60] [SAT], ATA device\n"
+            "/dev/nvme0\n"
+            "# /dev/sdz -d sat # device open failed\n"
+            "-rf -d sat # no node\n"
+            "/dev/sdb -d $(gone) # no type\n"
+            "glob(3) found no matches\n\x00\xff\n"
+        )
+    )
+    assert tool.scan() == Scan(
+        entries=(
+            Address(node="/dev/sda", type="scsi"),
+            Address(node="/dev/bus/0", type="sat+megaraid,60"),
+            Address(node="/dev/nvme0"),
+        )
+    )
+    assert door.asked == [["smartctl", "--scan"]]
+
+
+def test_a_scan_that_cannot_be_made_says_why():
+    tool, _ = smartctl(Answer(ending=Ending.MISSING))
+    found = tool.scan()
+    assert found.entries == ()
+    assert "install smartctl" in (found.trouble or "")
+
+
+def script(folder: Path, body: str) -> str:
+    path = folder / "smartctl"
+    path.write_text(f"#!/bin/sh\n{body}\n")
+    path.chmod(0o755)
+    return str(path)
+
+
+def test_a_real_command_is_asked_and_its_time_taken(tmp_path: Path):
+    tool = Smartctl(script(tmp_path, f"cat {HDD}"), 30, lambda: NOW)
+    found = tool.ask(asked())
+    assert found.outcome is Outcome.READ
+    assert 0 <= found.took_ms < 30_000
+
+
+def test_a_hanging_drive_is_given_up_in_time_and_does_not_hold_another(tmp_path: Path):
+    tool = Smartctl(X)
+    answers: dict[str, Outcome] = {}
+    nodes = ["/dev/sdslow", "/dev/sdx"]
+
+    def ask(node: str) -> None:
+        answers[node] = tool.ask(asked(node)).outcome
+
+    begun = time.monotonic()
+    threads = [threading.Thread(target=ask, args=(node,)) for node in nodes]
+    for thread in threads:
+        thread.start()
+    for thread in threads:
+        thread.join(20)
+    assert time.monotonic() - begun < 10
+    assert answers["/dev/sdslow"] is Outcome.TIMED_OUT
+    assert answers["/dev/sdx"] in {
+        Outcome.READ,
+        Outcome.TIMED_OUT,
+    }  # half a second may be short on a busy machine
+    assert tool.abandoned == 0
+
+
+def test_after_stop_nothing_is_run(tmp_path: Path):
+    trace = tmp_path / "ran"
+    tool = Smartctl(script(tmp_path, f"touch {trace}"), 30, lambda: NOW)
+    tool.stop()
+    assert tool.ask(asked()).outcome is Outcome.TIMED_OUT
+    assert not trace.exists()
+
+
+def test_a_missing_command_is_no_tool(tmp_path: Path):
+    found = Smartctl(str(tmp_path / "none"), 30, lambda: NOW).ask(asked())
+    assert (found.outcome, found.exit_bits) == (Outcome.NO_TOOL, None)

@@ -1,0 +1,167 @@
+from dataclasses import replace
+
+import pytest
+from hypothesis import given, strategies as st
+
+from diskwatch.machine.held import Family
+from diskwatch.machine.text import Sheet
+from diskwatch.machine.told import drive_of, family_of, merged, serial_of
+from diskwatch.records import Drive, Identity, Kind
+from tests.machine.recordings import FIXTURES, text_of
+
+
+def sheet(name: str, *changes: tuple[str, str]) -> Sheet:
+    text = text_of(FIXTURES / name / "all.txt")
+    for old, new in changes:
+        assert old in text
+        text = text.replace(old, new)
+    return Sheet.of(text.splitlines())
+
+
+def drive(
+    kind: Kind = Kind.HDD,
+    *,
+    wwn: str | None = None,
+    model: str | None = None,
+    serial: str | None = None,
+    rpm: int | None = None,
+) -> Drive:
+    identity = Identity(wwn=wwn, model=model, serial=serial, path="/dev/sdx")
+    return Drive(identity=identity, kind=kind, rotation_rpm=rpm)
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "",
+        "   ",
+        "XXXXXXXX",
+        "0000000",
+        "0",
+        "none",
+        "None",
+        "N/A",
+        "unknown",
+        "[No Information Found]",
+        "\x01\x02A",
+        "--",
+    ],
+)
+def test_a_serial_that_stands_for_nothing_is_none(text: str):
+    assert serial_of(text) is None
+
+
+@pytest.mark.parametrize("text", ["INVENTED-1", "PKXXXXXXXXXXGB", "00001", "  AB 12  "])
+def test_a_serial_is_kept_as_it_stands_but_for_outer_blanks(text: str):
+    assert serial_of(text) == text.strip()
+
+
+@given(st.text(max_size=30))
+def test_a_serial_never_holds_what_a_terminal_might_act_on(text: str):
+    found = serial_of(text)
+    assert found is None or found.isprintable()
+
+
+@pytest.mark.parametrize(
+    ("name", "family"),
+    [
+        ("invented_hdd_failing", Family.ATA),
+        ("invented_nvme_hot", Family.NVME),
+        ("invented_sas_megaraid_failing", Family.SCSI),
+        ("invented_virtual_no_smart", Family.ATA),
+    ],
+)
+def test_the_family_is_seen_in_the_text_without_any_type(name: str, family: Family):
+    assert family_of(None, sheet(name), None) is family
+
+
+def test_the_document_decides_on_the_family_before_the_text_and_the_type_comes_last():
+    told = {"device": {"protocol": "NVMe"}}
+    assert family_of(told, sheet("invented_hdd_failing"), "sat") is Family.NVME
+    assert family_of(None, Sheet.of([]), "sntasmedia") is Family.NVME
+    assert family_of(None, Sheet.of([]), "scsi") is Family.SCSI
+    assert family_of(None, Sheet.of([]), "sat") is Family.ATA
+
+
+def test_world_wide_names_are_written_as_linux_writes_them():
+    named = {
+        "invented_hdd_failing": (Family.ATA, "naa.5fffff0000000001"),
+        "invented_nvme_hot": (Family.NVME, "eui.fffff00000000063"),
+        "invented_sas_megaraid_failing": (Family.SCSI, "naa.5fffff0000000041"),
+    }
+    for name, (family, wwn) in named.items():
+        found = drive_of(family, None, sheet(name), "/dev/x")
+        assert found is not None
+        assert found.identity.wwn == wwn
+
+
+def test_a_world_wide_name_of_zeros_or_of_no_known_form_is_none():
+    for new in ("0 000000 000000000", "5 000000 000000000", "5 fffff0 00000001", "f fffff0 000000001"):
+        found = drive_of(Family.ATA, None, sheet("invented_hdd_failing", ("5 fffff0 000000001", new)), "/dev/x")
+        assert found is not None
+        assert found.identity.wwn is None
+
+
+def test_the_model_of_a_scsi_drive_is_vendor_and_product():
+    found = drive_of(Family.SCSI, None, sheet("invented_sas_megaraid_failing"), "/dev/x")
+    assert found is not None
+    assert (found.identity.model, found.kind, found.firmware) == ("NORDWALL NW10K600", Kind.SAS, "N003")
+
+
+def test_an_answer_that_names_no_drive_gives_none():
+    assert drive_of(Family.ATA, None, Sheet.of(["smartctl 7.3"]), "/dev/x") is None
+
+
+def test_a_volume_that_a_controller_makes_up_is_virtual():
+    found = drive_of(Family.SCSI, None, sheet("megaraid_vd_0"), "/dev/x")
+    assert found is not None
+    assert found.kind is Kind.VIRTUAL
+
+
+def test_an_additional_product_id_is_not_taken_for_the_model():
+    found = drive_of(
+        Family.ATA,
+        None,
+        sheet("invented_hdd_failing", ("Firmware Version:", "Add. Product Id:  oemlabel\nFirmware Version:")),
+        "/dev/x",
+    )
+    assert found is not None
+    assert found.identity.model == "Borealis Tundra BT4000"
+
+
+def test_what_the_drive_says_comes_first_and_the_kernel_fills_gaps():
+    kernel = replace(
+        drive(wwn="naa.5000000000000001", model="KERNEL", serial="K1"), capacity_bytes=10, firmware="k"
+    )
+    told = drive(model="TOLD", serial="T1", rpm=7_200)
+    both = merged(kernel, told)
+    assert both.identity == Identity(wwn="naa.5000000000000001", model="TOLD", serial="T1", path="/dev/sdx")
+    assert (both.capacity_bytes, both.firmware, both.rotation_rpm) == (10, "k", 7_200)
+
+
+def test_an_nvme_drive_keeps_the_name_that_the_kernel_formed():
+    kernel = drive(Kind.NVME, wwn="eui.00000000000000010000000000000002")
+    told = drive(Kind.NVME, wwn="eui.0000000000000001")
+    assert merged(kernel, told).identity.wwn == "eui.00000000000000010000000000000002"
+    assert merged(drive(Kind.NVME), told).identity.wwn == "eui.0000000000000001"
+
+
+@pytest.mark.parametrize(
+    ("kernel", "told", "rpm", "kind"),
+    [
+        (Kind.USB, Kind.SSD, None, Kind.USB),
+        (Kind.USB, Kind.HDD, 5_400, Kind.USB),
+        (Kind.USB, Kind.NVME, None, Kind.NVME),
+        (Kind.VIRTUAL, Kind.HDD, None, Kind.VIRTUAL),
+        (Kind.HDD, Kind.VIRTUAL, None, Kind.VIRTUAL),
+        (Kind.HDD, Kind.SSD, None, Kind.SSD),
+        (Kind.SSD, Kind.HDD, 7_200, Kind.HDD),
+        (Kind.SSD, Kind.HDD, None, Kind.SSD),
+        (Kind.SAS, Kind.SSD, None, Kind.SSD),
+        (Kind.HDD, Kind.SAS, 10_000, Kind.SAS),
+    ],
+)
+def test_the_kind_is_the_first_that_either_is_sure_of(kernel: Kind, told: Kind, rpm: int | None, kind: Kind):
+    both = merged(drive(kernel), drive(told, serial="T1", rpm=rpm))
+    assert both.kind is kind
+    assert both.rotation_rpm == rpm
