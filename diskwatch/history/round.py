@@ -3,6 +3,7 @@
 import sqlite3
 from collections.abc import Iterable, Mapping, Sequence
 
+from diskwatch.errors import HistoryError
 from diskwatch.history import packing, rows
 from diskwatch.records import (
     Call,
@@ -24,6 +25,7 @@ def write_round(connection: sqlite3.Connection, round_: Round) -> None:
 
     Raises:
         sqlite3.Error: it could not be written; the caller undoes the transaction.
+        HistoryError: it speaks of a drive by another one's number; likewise.
     """
     file_past_days(connection, day_number(round_.at))
     for part in round_.drives:
@@ -93,15 +95,15 @@ def _write_drive(
     connection: sqlite3.Connection, known: KnownDrive, pass_: Pass, explanation: int | None
 ) -> None:
     # A drive that this very round met for the first time is taken up with it, or not at all.
-    connection.execute(
-        "INSERT INTO drive (wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm, device, bay,"
-        " lives_here, passed_at, outcome, explanation, number, first_seen)"
+    written = connection.execute(
+        "INSERT INTO drive (wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm, device,"
+        " bay, lives_here, passed_at, outcome, explanation, number, first_seen)"
         " VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?) ON CONFLICT (number) DO UPDATE SET"
         " wwn = excluded.wwn, model = excluded.model, serial = excluded.serial, path = excluded.path,"
         " kind = excluded.kind, firmware = excluded.firmware, capacity_bytes = excluded.capacity_bytes,"
         " rotation_rpm = excluded.rotation_rpm, device = excluded.device, bay = excluded.bay,"
         " lives_here = excluded.lives_here, passed_at = excluded.passed_at, outcome = excluded.outcome,"
-        " explanation = excluded.explanation",
+        " explanation = excluded.explanation WHERE first_seen = excluded.first_seen",
         (
             *rows.drive_row(known.drive, known.place),
             pass_.at,
@@ -111,6 +113,12 @@ def _write_drive(
             known.first_seen,
         ),
     )
+    if written.rowcount != 1:
+        # A watch that could not read the history counted from one: its drives must not grow onto these.
+        raise HistoryError(
+            f"drive number {known.number} is another drive in the history",
+            hint="start the watch again, so that it knows the drives that are in it",
+        )
 
 
 def _write_pass(connection: sqlite3.Connection, number: int, pass_: Pass, explanation: int | None) -> None:

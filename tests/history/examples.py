@@ -1,5 +1,8 @@
 """Invented drives and rounds for the tests of the history."""
 
+from dataclasses import replace
+from typing import Any
+
 from hypothesis import strategies as st
 
 from diskwatch.records import (
@@ -47,9 +50,7 @@ plain_json = st.dictionaries(
 )
 
 identities = st.builds(Identity, wwn=maybe_words, model=maybe_words, serial=maybe_words, path=words)
-mounts = st.builds(
-    Mount, point=st.text(max_size=8), used_bytes=st.none() | vast, total_bytes=st.none() | vast
-)
+mounts = st.builds(Mount, point=st.text(max_size=8), used_bytes=st.none() | vast, total_bytes=st.none() | vast)
 drives = st.builds(
     Drive,
     identity=identities,
@@ -58,9 +59,7 @@ drives = st.builds(
     capacity_bytes=st.none() | vast,
     rotation_rpm=st.none() | vast,
 )
-places = st.builds(
-    Place, device=words, bay=maybe_words, lives_here=st.lists(mounts, max_size=2).map(tuple)
-)
+places = st.builds(Place, device=words, bay=maybe_words, lives_here=st.lists(mounts, max_size=2).map(tuple))
 values = st.none() | vast | words
 findings = st.builds(
     Finding,
@@ -117,88 +116,90 @@ readings_beside_values = st.builds(
 )
 
 
-def a_drive(serial="INVENTED-1", device="/dev/sda", **changes):
-    identity = Identity(
-        wwn=f"naa.5{serial.encode().hex()[-15:]}", model="Aldertree 4000", serial=serial, path=device
+def a_drive(serial: str = "INVENTED-1", device: str = "/dev/sda", **changes: Any) -> Drive:
+    drive = Drive(
+        identity=Identity(
+            wwn=f"naa.5{serial.encode().hex()[-15:]}", model="Aldertree 4000", serial=serial, path=device
+        ),
+        kind=Kind.HDD,
+        firmware="AT01",
+        capacity_bytes=4_000_787_030_016,
+        rotation_rpm=7200,
     )
-    return Drive(
-        **{
-            "identity": identity,
-            "kind": Kind.HDD,
-            "firmware": "AT01",
-            "capacity_bytes": 4_000_787_030_016,
-            "rotation_rpm": 7200,
-        }
-        | changes
-    )
+    return replace(drive, **changes)
 
 
-def a_place(device="/dev/sda", bay="ata-1"):
+def a_place(device: str = "/dev/sda", bay: str | None = "ata-1") -> Place:
     return Place(device=device, bay=bay, lives_here=(Mount(point="/home", used_bytes=5, total_bytes=9),))
 
 
-def a_value(signal="pending-sectors", value=0, unit="sectors", kind=SignalKind.COUNT, **more):
-    return Value(signal=signal, value=value, unit=unit, kind=kind, source="attribute 197", **more)
+def a_value(
+    signal: str = "pending-sectors",
+    value: int | str | None = 0,
+    unit: str = "sectors",
+    kind: SignalKind = SignalKind.COUNT,
+    reason: str | None = None,
+) -> Value:
+    return Value(signal=signal, value=value, unit=unit, kind=kind, source="attribute 197", reason=reason)
 
 
-def a_pass(at=NOON, *found, drive=None, outcome=Outcome.READ, explanation=None, **more):
-    reading = Reading(values=found, **more) if outcome is Outcome.READ else None
+def a_pass(
+    at: int = NOON,
+    *found: Value,
+    outcome: Outcome = Outcome.READ,
+    explanation: str | None = None,
+    attributes: tuple[Attribute, ...] = (),
+) -> Pass:
+    reading = Reading(values=found, attributes=attributes) if outcome is Outcome.READ else None
     return Pass(
         at=at,
         outcome=outcome,
         explanation=explanation,
-        drive=drive,
         reading=reading,
         exit_bits=0,
         took_ms=12,
     )
 
 
-def a_finding(name="drift:media", **changes):
-    return Finding(
-        **{
-            "name": name,
-            "kind": FindingKind.DRIFT,
-            "signals": ("pending-sectors",),
-            "since": NOON,
-            "calls": CallWord.LOOK,
-            "cause": Cause.MEDIA,
-            "evidence": 4000.0,
-            "sentence": "8 sectors wait to be rewritten.",
-            "data": {"sectors": 8},
-        }
-        | changes
+def a_finding(name: str = "drift:media", **changes: Any) -> Finding:
+    finding = Finding(
+        name=name,
+        kind=FindingKind.DRIFT,
+        signals=("pending-sectors",),
+        since=NOON,
+        calls=CallWord.LOOK,
+        cause=Cause.MEDIA,
+        evidence=4000.0,
+        sentence="8 sectors wait to be rewritten.",
+        data={"sectors": 8},
     )
+    return replace(finding, **changes)
 
 
-def a_call(word=CallWord.LOOK, at=NOON, **changes):
-    return Call(
-        **{
-            "word": word,
-            "at": at,
-            "cause": Cause.MEDIA,
-            "cause_probability": 0.8,
-            "cause_second": Cause.HEAD,
-            "reason": "8 sectors wait to be rewritten.",
-            "rule": "ledger",
-            "evidence": 4000.0,
-        }
-        | changes
+def a_call(word: CallWord = CallWord.LOOK, at: int = NOON, **changes: Any) -> Call:
+    call = Call(
+        word=word,
+        at=at,
+        cause=Cause.MEDIA,
+        cause_probability=0.8,
+        cause_second=Cause.HEAD,
+        reason="8 sectors wait to be rewritten.",
+        rule="ledger",
+        evidence=4000.0,
     )
+    return replace(call, **changes)
 
 
-def a_part(known, pass_=None, **changes):
-    return DriveRound(
-        **{"known": known, "pass_": a_pass(NOON, a_value()) if pass_ is None else pass_, "state": None}
-        | changes
-    )
+def a_part(known: KnownDrive, pass_: Pass | None = None, **changes: Any) -> DriveRound:
+    part = DriveRound(known=known, pass_=pass_ or a_pass(NOON, a_value()), state=None)
+    return replace(part, **changes)
 
 
-def a_round(*parts, at=NOON, entries=()):
+def a_round(*parts: DriveRound, at: int = NOON, entries: tuple[Entry, ...] = ()) -> Round:
     return Round(at=at, drives=parts, entries=entries)
 
 
-def a_span(drive=1, at=NOON, seconds=10.0, **changes):
+def a_span(drive: int = 1, at: int = NOON, seconds: float = 10.0, **changes: int) -> IoSpan:
     counted = dict.fromkeys(
         ("reads", "writes", "read_bytes", "write_bytes", "read_ms", "write_ms", "busy_ms"), 1
     )

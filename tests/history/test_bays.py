@@ -1,7 +1,8 @@
 import pytest
 
 from diskwatch.history.bays import drive_lines
-from diskwatch.records import CallWord, FindingKind, LastPass, Outcome, SignalNow
+from diskwatch.history.writer import History
+from diskwatch.records import CallWord, FindingKind, KnownDrive, LastPass, Outcome, SignalNow
 from tests.history.examples import (
     DAY,
     NOON,
@@ -21,7 +22,7 @@ def lines(history):
     return lambda: drive_lines(history._db.conn)
 
 
-def _admit(history, name, device):
+def _admit(history: History, name: str, device: str) -> KnownDrive:
     return history.admit(a_drive(name, device), a_place(device), NOON)
 
 

@@ -24,7 +24,7 @@ def memory():
 
 
 @pytest.fixture
-def only_disk(monkeypatch):
+def _only_disk(monkeypatch):
     monkeypatch.setattr(places, "live_folders", lambda state: (state,))
 
 
@@ -81,7 +81,8 @@ def test_everybody_may_read_it_whatever_the_umask(state, memory):
     assert (memory / live_name(state)).stat().st_mode & 0o777 == 0o644
 
 
-def test_a_real_disk_is_written_at_most_once_a_minute(state, only_disk):
+@pytest.mark.usefixtures("_only_disk")
+def test_a_real_disk_is_written_at_most_once_a_minute(state):
     writer = LiveWriter(state)
     assert writer.write(SPANS, NOON)
     assert not writer.write(SPANS[:1], NOON + DISK_EVERY_S - 1)
@@ -90,7 +91,8 @@ def test_a_real_disk_is_written_at_most_once_a_minute(state, only_disk):
     assert read_live(state, NOON + DISK_EVERY_S) == SPANS[:1]
 
 
-def test_a_clock_set_back_does_not_silence_a_real_disk(state, only_disk):
+@pytest.mark.usefixtures("_only_disk")
+def test_a_clock_set_back_does_not_silence_a_real_disk(state):
     writer = LiveWriter(state)
     writer.write(SPANS, NOON)
     assert writer.write(SPANS, NOON - 3600)

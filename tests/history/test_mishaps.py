@@ -10,7 +10,7 @@ from diskwatch.history.mishaps import no_database, primary, told, unreadable
 PATH = Path("/invented/history.db")
 
 
-def _raised(code):
+def _raised(code: int) -> sqlite3.OperationalError:
     error = sqlite3.OperationalError("said by SQLite")
     error.sqlite_errorcode = code
     return error

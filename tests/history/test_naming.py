@@ -9,7 +9,15 @@ from diskwatch.records import DriveLine, LastPass, Outcome
 from tests.history.examples import NOON, a_drive, a_place
 
 
-def a_line(number, serial, device, *, label=None, outcome=Outcome.READ, at=NOON):
+def a_line(
+    number: int,
+    serial: str,
+    device: str,
+    *,
+    label: str | None = None,
+    outcome: Outcome = Outcome.READ,
+    at: int = NOON,
+) -> DriveLine:
     return DriveLine(
         number=number,
         drive=a_drive(serial, device),
@@ -33,7 +41,7 @@ LINES = (
     [
         ("INV-1000", 1),
         ("inv-10001", 2),
-        (LINES[0].drive.identity.wwn.upper(), 1),
+        (str(LINES[0].drive.identity.wwn).upper(), 1),
         ("/dev/sda", 1),
         ("sdb", 2),
         ("ATTIC", 1),
@@ -112,7 +120,9 @@ def test_what_drives_call_themselves_cannot_write_to_the_terminal():
     assert "\x1b" not in str(caught.value)
 
 
-@given(st.lists(st.text(st.characters(codec="ascii", categories=["L", "N"]), min_size=1), unique_by=str.casefold))
+@given(
+    st.lists(st.text(st.characters(codec="ascii", categories=["L", "N"]), min_size=1), unique_by=str.casefold)
+)
 def test_every_drive_with_a_serial_of_its_own_is_found_by_it(serials):
     lines = tuple(a_line(n, serial, f"/dev/{n:-^60}") for n, serial in enumerate(serials))
     for number, serial in enumerate(serials):

@@ -1,12 +1,13 @@
 import hashlib
 import sqlite3
 from contextlib import closing
+from pathlib import Path
 
 import pytest
 
 from diskwatch.errors import HistoryError, HistoryTooNew, NothingToWorkOn
 from diskwatch.history import versions
-from diskwatch.history.opening import open_to_read, refuse_foreign
+from diskwatch.history.opening import Opened, open_to_read, refuse_foreign
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
 from tests.history.examples import NOON, a_drive, a_place
@@ -20,15 +21,16 @@ def path(folder):
     return folder / HISTORY
 
 
-def _all_of(folder):
+def _all_of(folder: Path) -> dict[str, tuple[str, int]]:
     return {
         file.name: (hashlib.sha256(file.read_bytes()).hexdigest(), file.stat().st_mtime_ns)
         for file in folder.iterdir()
     }
 
 
-def _drives(opened):
-    return opened.connection.execute("SELECT count(*) FROM drive").fetchone()[0]
+def _drives(opened: Opened) -> int:
+    (found,) = opened.connection.execute("SELECT count(*) FROM drive").fetchone()
+    return int(found)
 
 
 def test_a_history_that_nobody_writes_is_read_as_it_lies_and_nothing_is_laid_beside_it(path):
@@ -118,7 +120,9 @@ def test_an_older_history_cannot_be_read_until_the_watch_has_brought_it_up_to_da
 
 
 @pytest.mark.parametrize("opener", [open_to_read, refuse_foreign, lambda path: History.open(path.parent)])
-@pytest.mark.parametrize("content", [b"no database at all" * 100, b"SQLite format 3\0" + b"\xff" * 4096, b"SQLite format 3\0", b"x"])
+@pytest.mark.parametrize(
+    "content", [b"no database at all" * 100, b"SQLite format 3\0" + b"\xff" * 4096, b"SQLite format 3\0", b"x"]
+)
 def test_a_file_that_is_no_history_is_refused_by_name_and_left_untouched(tmp_path, opener, content):
     path = tmp_path / HISTORY
     path.write_bytes(content)

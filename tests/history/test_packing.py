@@ -17,10 +17,17 @@ def test_a_reading_comes_back_as_it_was_but_for_its_values(reading):
 
 @pytest.mark.parametrize(
     "kept",
-    [b"", b"no packed text", packing.packed("x")[:-2], packing.packed("{}"), packing.packed("[1]"), packing.packed("{")],
+    [
+        b"",
+        b"no packed text",
+        packing.packed("x")[:-2],
+        packing.packed("{}"),
+        packing.packed("[1]"),
+        packing.packed("{"),
+    ],
 )
 def test_bytes_that_nobody_packed_are_refused(kept):
-    with pytest.raises(ValueError, match="."):
+    with pytest.raises(ValueError, match=r"."):
         packing.reading(kept)
 
 

@@ -1,10 +1,13 @@
 import re
+from collections.abc import Collection
+from typing import Any
 
 import pytest
 
 from diskwatch.history import bays, questions
 from diskwatch.history.round import file_past_days
-from diskwatch.records import Entry, Outcome, Pass
+from diskwatch.history.writer import History
+from diskwatch.records import Entry, KnownDrive, Outcome, Pass, Value
 from tests.history.examples import (
     DAY,
     NOON,
@@ -31,7 +34,7 @@ def known(history):
     return history.admit(a_drive(), a_place(), NOON)
 
 
-def _read(history, known, at, *values, **part):
+def _read(history: History, known: KnownDrive, at: int, *values: Value, **part: Any) -> None:
     history.record(a_round(a_part(known, a_pass(at, *values), **part), at=at))
 
 
@@ -63,7 +66,7 @@ def grown(history, known, connection):
     ],
 )
 def test_no_question_walks_through_a_whole_large_table_or_sorts_one(grown, ask):
-    asked = []
+    asked: list[str] = []
     grown.set_trace_callback(asked.append)
     answer = ask(grown)
     grown.set_trace_callback(None)
@@ -83,7 +86,12 @@ def test_the_day_book_reads_oldest_first_and_a_limit_keeps_the_newest(history, k
     ]
     history.note(*written)
 
-    def texts(since=None, drive=None, kinds=None, limit=None):
+    def texts(
+        since: int | None = None,
+        drive: int | None = None,
+        kinds: Collection[str] | None = None,
+        limit: int | None = None,
+    ) -> str:
         found = questions.day_book(connection, since, drive, kinds, limit)
         return "".join(entry.text for entry in found)
 
@@ -117,7 +125,9 @@ def test_a_series_joins_what_was_filed_with_what_is_fresh(history, known, connec
     for step, value in enumerate([1, 1, 2, None, "odd", 2**100]):
         reason = "Not printed." if value is None else None
         _read(history, known, NOON + step * DAY // 2, a_value(value=value, reason=reason))
-    whole = tuple((NOON + step * DAY // 2, value) for step, value in [(0, 1), (2, 2), (3, None), (4, "odd"), (5, 2**100)])
+    whole = tuple(
+        (NOON + step * DAY // 2, value) for step, value in [(0, 1), (2, 2), (3, None), (4, "odd"), (5, 2**100)]
+    )
     assert questions.series(connection, known.number, "pending-sectors", None) == whole
 
 
@@ -155,9 +165,7 @@ def test_traffic_reads_by_the_minute_for_one_drive(history, known, connection):
     history.add_traffic(spans[:10])
     history.add_traffic(spans[10:])
     found = questions.traffic(connection, known.number, NOON, NOON + 120)
-    six = dict.fromkeys(
-        ("reads", "writes", "read_bytes", "write_bytes", "read_ms", "write_ms", "busy_ms"), 6
-    )
+    six = dict.fromkeys(("reads", "writes", "read_bytes", "write_bytes", "read_ms", "write_ms", "busy_ms"), 6)
     assert found == tuple(a_span(known.number, NOON + end, 60.0, **six) for end in (60, 120))
     assert questions.traffic(connection, known.number, NOON + 60, NOON + 120) == found[1:]
     assert questions.traffic(connection, known.number, NOON, NOON + 60) == found[:1]

@@ -1,8 +1,11 @@
+from typing import Any
+
 import pytest
 
 from diskwatch.errors import HistoryError
 from diskwatch.history.round import write_round
-from diskwatch.records import CallWord, Entry, Outcome, SignalKind
+from diskwatch.history.writer import History
+from diskwatch.records import CallWord, Entry, KnownDrive, Outcome, SignalKind, Value
 from tests.history.examples import (
     DAY,
     NOON,
@@ -27,7 +30,7 @@ def rows(history):
     return lambda sql: history._db.conn.execute(sql).fetchall()
 
 
-def _read(history, known, at, *values, **part):
+def _read(history: History, known: KnownDrive, at: int, *values: Value, **part: Any) -> None:
     history.record(a_round(a_part(known, a_pass(at, *values), **part), at=at))
 
 
@@ -105,7 +108,7 @@ def test_an_explanation_that_repeats_is_kept_once(history, known, rows):
 
 def test_moving_a_drive_is_noted_once_per_move(history, known, rows):
     for step, bay in enumerate(["ata-1", "ata-2", "ata-2", "ata-1"]):
-        moved = type(known)(
+        moved = KnownDrive(
             number=known.number, drive=known.drive, place=a_place(bay=bay), first_seen=known.first_seen
         )
         history.record(a_round(a_part(moved, a_pass(NOON + step)), at=NOON + step))
@@ -179,10 +182,21 @@ def test_entries_of_a_round_go_into_the_day_book_in_their_order(history, known, 
     assert rows("SELECT text FROM day_book ORDER BY number") == [("a",), ("b",), ("c",)]
 
 
-def test_a_round_about_a_drive_that_was_never_admitted_is_refused(history, known, rows):
-    stranger = type(known)(number=99, drive=known.drive, place=known.place, first_seen=NOON)
-    with pytest.raises(HistoryError):
-        history.record(a_round(a_part(known), a_part(stranger)))
+def test_a_drive_that_a_round_met_first_is_taken_up_with_it(history, rows):
+    met = KnownDrive(number=7, drive=a_drive(), place=a_place(), first_seen=NOON)
+    history.record(a_round(a_part(met)))
+    assert history.known() == (met,)
+    assert rows("SELECT drive, since FROM plugged") == [(7, NOON)]
+    assert history.admit(a_drive("INVENTED-2"), a_place(), NOON).number == 8
+
+
+def test_a_drive_never_grows_onto_the_history_of_another(history, known, rows):
+    stranger = KnownDrive(
+        number=known.number, drive=a_drive("INVENTED-2"), place=known.place, first_seen=NOON + 60
+    )
+    with pytest.raises(HistoryError, match=f"drive number {known.number} is another drive"):
+        history.record(a_round(a_part(stranger)))
+    assert history.known() == (known,)
     assert rows("SELECT count(*) FROM pass") == [(0,)]
 
 

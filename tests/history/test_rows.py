@@ -10,14 +10,15 @@ from tests.history import examples
 from tests.history.examples import NOON, a_span
 
 
-def stored(row):
+def stored(row: tuple[rows.Cell, ...]) -> rows.Row:
     """A row as it comes back from SQLite."""
     marks = ", ".join("?" * len(row))
     with closing(sqlite3.connect(":memory:")) as connection:
         names = ", ".join(f"c{n} ANY" for n in range(len(row)))
         connection.execute(f"CREATE TABLE kept ({names}) STRICT")
         connection.execute(f"INSERT INTO kept VALUES ({marks})", row)  # noqa: S608  # made of question marks
-        return connection.execute("SELECT * FROM kept").fetchone()
+        found: rows.Row = connection.execute("SELECT * FROM kept").fetchone()
+        return found
 
 
 @given(examples.values)
@@ -103,5 +104,5 @@ def test_passes_come_back():
     ],
 )
 def test_a_row_that_nobody_wrote_is_refused(damaged):
-    with pytest.raises(ValueError, match="."):
+    with pytest.raises(ValueError, match=r"."):
         damaged()

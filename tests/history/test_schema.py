@@ -13,7 +13,7 @@ def db():
     found.close()
 
 
-def _dump(db):
+def _dump(db: Database) -> list[str]:
     return list(db.conn.iterdump())
 
 

@@ -44,7 +44,7 @@ def test_a_step_that_we_do_not_know_means_a_newer_version(ours):
     ours.execute(
         "INSERT INTO _sqlite_migrations (migration_set, name, applied_at) VALUES ('diskwatch', '9999_x', '')"
     )
-    with pytest.raises(HistoryTooNew, match="history.db was written by a newer version"):
+    with pytest.raises(HistoryTooNew, match=r"history\.db was written by a newer version"):
         age(ours, PATH)
 
 

@@ -7,6 +7,7 @@ import sys
 import threading
 import time
 from contextlib import closing
+from pathlib import Path
 
 import pytest
 
@@ -20,11 +21,11 @@ from diskwatch.records import Entry
 from tests.history.examples import DAY, NOON, a_call, a_drive, a_part, a_place, a_round, a_span, full_round
 
 
-def _dump(history):
+def _dump(history: History) -> list[str]:
     return list(history._db.conn.iterdump())
 
 
-def _integrity(path):
+def _integrity(path: Path) -> list[tuple[str]]:
     with closing(sqlite3.connect(path)) as connection:
         return connection.execute("PRAGMA integrity_check").fetchall()
 
@@ -153,7 +154,7 @@ class _Rigged(sqlite3.Connection):
 
     fails_at = 0
 
-    def _count(self):
+    def _count(self) -> None:
         self.fails_at -= 1
         if self.fails_at == 0:
             raise sqlite3.OperationalError("rigged")
@@ -228,7 +229,9 @@ def test_a_full_disk_is_said_and_what_was_stored_before_is_kept(folder):
         before = _dump(history)
         noise = random.Random(1)  # noqa: S311  # what cannot be packed must not be a secret, only large
         large = "".join(chr(noise.randrange(0x4E00, 0x9FFF)) for _ in range(50_000))
-        with pytest.raises(HistoryError, match=r"history\.db cannot be written: the disk that holds it is full"):
+        with pytest.raises(
+            HistoryError, match=r"history\.db cannot be written: the disk that holds it is full"
+        ):
             history.record(a_round(a_part(known, state=large)))
         assert _dump(history) == before
         history._db.execute("PRAGMA max_page_count = 100000")
@@ -273,7 +276,7 @@ def test_a_folder_that_cannot_be_made_is_told_by_name(tmp_path):
 
 
 def test_threads_take_turns_and_none_undoes_anothers_work(folder):
-    troubles = []
+    troubles: list[BaseException] = []
 
     def note(name):
         try:
@@ -297,7 +300,7 @@ def test_threads_take_turns_and_none_undoes_anothers_work(folder):
         assert found == [(name, 20) for name in "abc"]
 
 
-def _write_rounds_for_ever(folder, pipe):
+def _write_rounds_for_ever(folder: Path, pipe: int) -> None:
     """What the child does until it is killed: report each round's number once it is stored."""
     history = History.open(folder)
     known = (history.known() or (history.admit(a_drive(), a_place(), NOON),))[0]
