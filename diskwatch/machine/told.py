@@ -25,17 +25,36 @@ _VIRTUAL = re.compile(
 _RANK = (Kind.VIRTUAL, Kind.NVME, Kind.USB)
 
 
+_KEYS = {
+    "ata_smart_attributes": Family.ATA,
+    "ata_version": Family.ATA,
+    "nvme_smart_health_information_log": Family.NVME,
+    "nvme_version": Family.NVME,
+    "scsi_product": Family.SCSI,
+    "scsi_error_counter_log": Family.SCSI,
+}
+_WORDS = (
+    (Family.NVME, ("NVMe Version", "NVMe Log 0x02", "Namespace 1 ")),
+    (Family.ATA, ("ATA Version is", "SMART Attributes with Thresholds", "Device Model")),
+    (Family.SCSI, ("Transport protocol", "Logical Unit id", "SMART Health Status", "Error counter log")),
+)
+
+
 def family_of(document: Document | None, sheet: Sheet, type_: str | None) -> Family:
-    """Which language the drive speaks: from the document, else from words of the text, else from the type."""
-    protocol = text_at(document, "device", "protocol")
-    if protocol is not None and protocol.upper() in Family.__members__:
-        return Family[protocol.upper()]
-    if sheet.holds("NVMe Version", "NVMe Log 0x02", "Namespace 1 "):
-        return Family.NVME
-    if sheet.holds("ATA Version is", "SMART Attributes with Thresholds", "Device Model"):
-        return Family.ATA
-    if sheet.holds("Transport protocol", "Logical Unit id", "SMART Health Status", "Error counter log"):
-        return Family.SCSI
+    """Which language the drive speaks.
+
+    What was answered shows it best: a controller is asked in one language and its drives may answer in another.
+    Only where nothing was, the protocol that smartctl names decides, and last the type that was asked with.
+    """
+    for key, family in _KEYS.items():
+        if dig(document, key) is not None:
+            return family
+    for family, words in _WORDS:
+        if sheet.holds(*words):
+            return family
+    protocol = (text_at(document, "device", "protocol") or "").upper()
+    if protocol in Family.__members__:
+        return Family[protocol]
     if type_ is not None and type_.startswith(("nvme", "snt")):
         return Family.NVME
     return Family.SCSI if type_ is not None and type_.startswith("scsi") else Family.ATA

@@ -75,9 +75,11 @@ def test_the_family_is_seen_in_the_text_without_any_type(name: str, family: Fami
     assert family_of(None, sheet(name), None) is family
 
 
-def test_the_document_decides_on_the_family_before_the_text_and_the_type_comes_last():
-    told = {"device": {"protocol": "NVMe"}}
-    assert family_of(told, sheet("invented_hdd_failing"), "sat") is Family.NVME
+def test_what_was_answered_decides_on_the_family_before_how_it_was_asked():
+    told = {"device": {"protocol": "SCSI"}}
+    assert family_of(told, sheet("invented_hdd_failing"), "megaraid,7") is Family.ATA
+    assert family_of({**told, "nvme_version": {"string": "1.4"}}, Sheet.of([]), "scsi") is Family.NVME
+    assert family_of(told, Sheet.of([]), "nvme") is Family.SCSI
     assert family_of(None, Sheet.of([]), "sntasmedia") is Family.NVME
     assert family_of(None, Sheet.of([]), "scsi") is Family.SCSI
     assert family_of(None, Sheet.of([]), "sat") is Family.ATA
