@@ -82,9 +82,15 @@ def test_a_time_that_fell_too_far_back_for_the_time_gone_by_is_a_new_start():
     new = replace(old, busy_ms=60_000)
     assert difference(look(old), look(new), elapsed=10.0) is None
     assert difference(look(old), look(new), elapsed=60.0) is not None
-    reads = replace(START, reads=100 + 10**6, read_ms=500)
-    assert difference(look(START), look(reads), elapsed=10.0) is None
-    assert difference(look(START), look(reads)) is None
+
+
+def test_requests_can_bring_together_no_more_time_than_a_full_queue_has_in_the_time_gone_by():
+    old = replace(START, read_ms=WRAP - 10**8)
+    new = replace(old, reads=100 + 10**6, read_ms=0)
+    assert difference(look(old), look(new), elapsed=10.0) is None
+    assert difference(look(old), look(new), elapsed=60.0) is not None
+    assert difference(look(old), look(new)) is not None
+    assert difference(look(START), look(replace(new, read_ms=999))) is None
 
 
 def test_namespaces_are_summed_but_are_not_busy_one_after_the_other():
@@ -102,6 +108,7 @@ def test_a_drive_has_traffic_only_where_all_of_it_was_seen_twice():
     assert found is not None
     assert (found.reads, found.busy_ms) == (200, 10)
     assert traffic(("nvme0n1", "nvme0n3"), old, new) is None
+    assert traffic(("nvme0n2",), {}, new) is None
     assert traffic((), old, new) is None
     assert traffic(("nvme0n1",), old, {"nvme0n1": look(later, "boot a, disk 9")}) is None
 

@@ -121,6 +121,12 @@ def test_drives_that_share_a_name_are_told_apart_by_serial_and_else_by_their_pla
     assert recognise(who(WWN, "C3"), [first, second]) is None
 
 
+def test_a_full_match_outweighs_one_that_leaves_the_serial_open():
+    full, open_ = known(1, who(WWN, "A1", path="/dev/sda")), known(2, who(WWN, None, path="/dev/sdb"))
+    assert recognise(who(WWN, "A1", path="/dev/sdb"), [full, open_]) == full
+    assert recognise(who(WWN, None, path="/dev/sda"), [full, open_]) == open_
+
+
 def test_a_drive_that_only_its_path_told_is_known_again_when_the_same_instance_tells_its_name():
     weak = known(1, who(model=None))
     assert recognise(who(WWN, "A1"), [weak], here=weak) == weak
