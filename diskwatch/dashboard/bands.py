@@ -71,9 +71,10 @@ class Bands(VerticalScroll, can_focus=False):
         fresh = [Band(place) for place in range(len(bands), len(drives))]
         for widget in [*bands[: len(drives)], *fresh]:
             self._fill(widget)
+        # Before the mounting, so that no frame is drawn in the other spacing.
+        self._spread()
         if fresh:
             self.mount_all(fresh)
-        self._spread()
 
     def move(self, by: int) -> None:
         """Go ``by`` drives down, or up where negative."""

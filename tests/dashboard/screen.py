@@ -40,6 +40,14 @@ def shades_of(app: App[None]) -> list[Shade]:
     return shades
 
 
+def redraw(app: App[None]) -> None:
+    """Make every line anew and lay it on the screen, as the library does when all of them changed."""
+    for widget in app.screen.query("Lines"):
+        widget.refresh()
+    app.screen._on_timer_update()
+    app.screen._compositor.render_strips()
+
+
 async def settled(pilot: Pilot[None]) -> None:
     """Wait until the source has answered and its answer has been drawn."""
     await pilot.app.workers.wait_for_complete()

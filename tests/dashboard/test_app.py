@@ -1,4 +1,6 @@
+import statistics
 import threading
+import time
 from dataclasses import replace
 
 import pytest
@@ -10,7 +12,7 @@ from diskwatch.dashboard.help import Help
 from diskwatch.errors import HistoryError
 from diskwatch.records import Bays
 from tests.dashboard.drives import ALL, COPY, KEEP, NOW, bays
-from tests.dashboard.screen import rows_of, settled, shades_of, text_of
+from tests.dashboard.screen import redraw, rows_of, settled, shades_of, text_of
 
 MANY = tuple(replace(COPY, number=number, label=f"Drive {number:02}") for number in range(1, 21))
 
@@ -319,3 +321,18 @@ async def test_a_screen_that_changes_its_size_is_laid_anew():
         await pilot.pause()
         assert rows_of(app)[0] == "last pass 12 min ago     watched by 1234"
         assert all(len(row) <= 40 for row in rows_of(app))
+
+
+@pytest.mark.bench
+async def test_a_whole_redraw_takes_less_than_a_sixtieth_of_a_second():
+    app = Stage(bays(*ALL)).dashboard()
+    async with app.run_test(size=(120, 40)) as pilot:
+        await settled(pilot)
+        taken = []
+        for _ in range(15):
+            # Processor time, so that other work on the machine does not count.
+            start = time.process_time()
+            redraw(app)
+            taken.append(time.process_time() - start)
+            await pilot.pause()
+        assert statistics.median(taken) <= 0.016
