@@ -221,6 +221,16 @@ def _percent(signal: str, share: int, row: Attribute) -> Value:
     )
 
 
+_STATED: tuple[tuple[tuple[str, ...], str, str, SignalKind], ...] = (
+    (("temperature", "current"), "temperature", "celsius", SignalKind.GAUGE),
+    (("power_on_time", "hours"), "power-on-hours", "hours", SignalKind.TIME),
+    # The last three are keys of versions after 7.3 (memory).
+    (("endurance_used", "current_percent"), "percentage-used", "percent", SignalKind.WEAR),
+    (("spare_available", "current_percent"), "available-spare", "percent", SignalKind.WEAR),
+    (("spare_available", "threshold_percent"), "spare-threshold", "percent", SignalKind.GAUGE),
+)
+"""What the document states outside the table, worked out by smartctl with what it knows of the model."""
+
 _STATISTICS = {
     "Percentage Used Endurance Indicator": ("percentage-used", "percent", SignalKind.WEAR),
     "Number of Reported Uncorrectable Errors": ("reported-uncorrectable", "errors", SignalKind.COUNT),
@@ -228,26 +238,24 @@ _STATISTICS = {
 }
 """Device Statistics (log 04h) that are standardised, and so better than any attribute."""
 
+_SANE = {"celsius": packing.sane_celsius, "hours": packing.sane_hours}
+
 
 def _exact(document: Document | None) -> Iterator[Value]:
-    """What the document states outside the table: temperature, and Device Statistics where it has them."""
-    degrees = number_at(document, "temperature", "current")
-    if degrees is not None:
-        value, reason = packing.sane_celsius(degrees)
-        yield Value(
-            signal="temperature",
-            value=value,
-            unit="celsius",
-            kind=SignalKind.GAUGE,
-            source="smartctl's temperature",
-            reason=reason,
-        )
+    """What the document states outside the table, the standardised last, so that it holds."""
+    stated = [
+        (number_at(document, *path), signal, unit, kind, "smartctl") for path, signal, unit, kind in _STATED
+    ]
     for page in rows_at(document, "ata_device_statistics", "pages"):
         for row in rows_at(page, "table"):
             meant = _STATISTICS.get(text_at(row, "name") or "")
-            number = number_at(row, "value")
-            if meant is not None and number is not None and flag_at(row, "flags", "valid") is True:
-                yield Value(signal=meant[0], value=number, unit=meant[1], kind=meant[2], source="log 04h")
+            if meant is not None and flag_at(row, "flags", "valid") is True:
+                signal, unit, kind = meant
+                stated.append((number_at(row, "value"), signal, unit, kind, "log 04h"))
+    for number, signal, unit, kind, source in stated:
+        if number is not None:
+            value, reason = _SANE[unit](number) if unit in _SANE else (number, None)
+            yield Value(signal=signal, value=value, unit=unit, kind=kind, source=source, reason=reason)
 
 
 def _error_log(document: Document | None, sheet: Sheet) -> Iterator[Value]:

@@ -159,10 +159,10 @@ def _listen(pipes: Sequence[IO[bytes]], heard: Sequence[bytearray], deadline: fl
         for pipe, into in zip(pipes, heard, strict=True):
             selector.register(pipe, selectors.EVENT_READ, into)
         while selector.get_map():
-            ready = selector.select(max(0.0, deadline - time.monotonic()))
-            if not ready and time.monotonic() >= deadline:
+            left = deadline - time.monotonic()
+            if left <= 0:
                 return Ending.TIMED_OUT
-            for key, _events in ready:
+            for key, _events in selector.select(left):
                 piece = os.read(key.fd, 65_536)
                 if piece:
                     key.data.extend(piece)

@@ -155,7 +155,7 @@ def of_words(
             return Verdict(
                 outcome=Outcome.NO_SMART, explanation=f"{name}: {why}; it is watched by its traffic only"
             )
-    if status == ASLEEP_STATUS and what.drive is None:
+    if status == ASLEEP_STATUS:
         return _asleep(name)
     return _not_understood(lines, what, name=name, expects_smart=expects_smart)
 

@@ -63,13 +63,13 @@ def hours(raw: str) -> Decoded:
     if found is None:
         return stated_hours(raw)
     # The field holds hours in its low 24 bits and finer parts above (smartctl's manual page, raw24(raw8)).
-    return _sane_hours(int(found[1]) & 0xFFFFFF)
+    return sane_hours(int(found[1]) & 0xFFFFFF)
 
 
 def stated_hours(raw: str) -> Decoded:
     """Hours only where they are printed as such: a bare number counts minutes, seconds or half minutes."""
     found = re.fullmatch(r"([0-9]{1,10})h(?:\+[0-9]{1,2}m)?(?:\+[0-9.]{1,6}s)?", raw)
-    return _sane_hours(int(found[1])) if found is not None else (None, _PACKED)
+    return sane_hours(int(found[1])) if found is not None else (None, _PACKED)
 
 
 def celsius(raw: str) -> Decoded:
@@ -88,7 +88,8 @@ def sane_celsius(number: int) -> Decoded:
     return (number, None) if COLDEST <= number <= HOTTEST else (None, _IMPOSSIBLE)
 
 
-def _sane_hours(number: int) -> Decoded:
+def sane_hours(number: int) -> Decoded:
+    """Powered hours, unless no drive can have so many."""
     return (number, None) if number <= _MOST_HOURS else (None, _IMPOSSIBLE)
 
 

@@ -21,7 +21,8 @@ _log = logging.getLogger(__name__)
 _SCANNED = re.compile(r"(?P<node>/[^\s#]+)(?:\s+-d\s+(?P<type>[^\s#]+))?\s*(?:#.*)?")
 _TYPE = re.compile(r"[A-Za-z0-9][A-Za-z0-9,+/_-]{0,60}")
 _USAGE = re.compile(
-    r"(?:unrecogni[sz]ed|unknown|invalid|illegal|bad|unexpected)\s+(?:command[- ]line\s+)?(?:option|argument)"
+    r"(?:unrecogni[sz]ed|unknown|invalid|illegal|bad|unexpected|unsupported)\s+(?:command[- ]line\s+)?"
+    r"(?:option|argument|flag|parameter|switch)"
     r"|argument required for option|usage:",
     re.IGNORECASE,
 )

@@ -61,6 +61,13 @@ def test_a_hanging_command_is_killed_in_time_with_its_children(tmp_path: Path):
     assert door.abandoned == 0
 
 
+def test_a_command_that_trickles_for_ever_is_killed_in_time(tmp_path: Path):
+    tool = script(tmp_path, "while :; do echo drop; done")
+    begun = time.monotonic()
+    assert Door(limit=10**9).run([tool], timeout=0.3).ending is Ending.TIMED_OUT
+    assert time.monotonic() - begun < 3
+
+
 def test_a_command_that_closes_its_output_and_lives_on_is_killed_in_time(tmp_path: Path):
     tool = script(tmp_path, "exec >&- 2>&-; sleep 60")
     assert Door().run([tool], timeout=0.3).ending is Ending.TIMED_OUT

@@ -260,6 +260,33 @@ def test_a_document_without_any_text_is_read_on_its_own():
     assert (reading.warning_celsius, reading.critical_celsius) == (60, 70)
 
 
+def test_a_recorded_document_without_text_is_read_exactly():
+    told = document("nvme_5_issue_46/document.json")
+    found = understood(plain_lines(told), told, type_="nvme", path="/dev/x")
+    assert found.drive is not None
+    assert found.drive.identity.wwn == "eui.001b448b45a3700d"
+    assert found.drive.capacity_bytes == 500_107_862_016
+    log = told["nvme_smart_health_information_log"]
+    assert found.reading.get("data-written") == log["data_units_written"] * 512_000
+    assert found.reading.get("unsafe-power-offs") == log["unsafe_shutdowns"]
+    assert found.reading.get("temperature") == log["temperature"]
+
+
+def test_what_newer_versions_state_of_wear_and_what_cannot_be_true_is_handled():
+    told = {
+        **ATA_DOCUMENT,
+        "ata_device_statistics": {},
+        "endurance_used": {"current_percent": 9},
+        "spare_available": {"current_percent": 80, "threshold_percent": 10},
+        "power_on_time": {"hours": 2_000_000},
+    }
+    values = {value.signal: value for value in understood((), told, type_=None, path="x").reading.values}
+    assert (values["percentage-used"].value, values["available-spare"].value) == (9, 80)
+    assert values["spare-threshold"].value == 10
+    assert values["power-on-hours"].value is None
+    assert values["power-on-hours"].reason
+
+
 def test_a_scsi_document_is_read_on_its_own():
     told = {
         "device": {"name": "/dev/sdx", "type": "scsi", "protocol": "SCSI"},
