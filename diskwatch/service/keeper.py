@@ -34,6 +34,7 @@ class Keeper:
         self._history: History | None = None
         self._waiting: deque[Callable[[History], None]] = deque(maxlen=MOST_WAITING)
         self._trouble: str | None = None
+        self._closed = False
         self._known: dict[int, KnownDrive] = {}
         self._states: dict[int, str] = {}
         try:
@@ -107,13 +108,16 @@ class Keeper:
             self._flush()
 
     def close(self) -> None:
-        """Write what waits, if it can be written now, and let go of the file."""
+        """Write what waits, if it can be written now, and let go of the file; later deeds are dropped."""
         self.try_again()
+        self._closed = True
         if self._history is not None:
             self._history.close()
             self._history = None
 
     def _write(self, deed: Callable[[History], None]) -> None:
+        if self._closed:
+            return
         self._waiting.append(deed)
         self._flush()
 

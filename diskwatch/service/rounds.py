@@ -59,6 +59,7 @@ class Rounds:
         self._here: dict[str, int] = {}
         self._away: dict[int, int] = {}
         self._troubles: tuple[str, ...] = ()
+        self._ending = threading.Event()
         self.blocks: dict[int, tuple[str, ...]] = {}
         """Kernel names of the block devices of each drive of the last round, by the drive's number."""
 
@@ -85,9 +86,13 @@ class Rounds:
         while True:
             batch = tuple(_batch(answers, waiting))
             waiting -= len(batch)
+            ending = self._ending.is_set()
+            if ending:
+                # A question that was cut short by the end of the watch says nothing of the drive.
+                batch = tuple(one for one in batch if one.pass_.outcome is not Outcome.TIMED_OUT)
             with lock or nullcontext():
                 part, more = self._judged(batch, taken)
-                if waiting == 0 and not survey.troubles:
+                if waiting == 0 and not survey.troubles and not ending:
                     away, gone = self._gone(taken)
                     part, more = part + away, more + gone
                 if part or entries or more:
@@ -98,6 +103,10 @@ class Rounds:
                 told(part)
             if waiting == 0:
                 return tuple(done)
+
+    def end(self) -> None:
+        """Bring a round under way to its end; call it before the machine is stopped."""
+        self._ending.set()
 
     def _start(self, found: Found, answers: "queue.Queue[_Answer]") -> None:
         """Ask a drive in a thread of its own; the machine bounds how long that takes."""

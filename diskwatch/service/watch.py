@@ -20,6 +20,9 @@ from diskwatch.units import plain
 GUARD = 30.0
 """Seconds between two looks of the main thread at the clocks."""
 
+HAND = 1.5
+"""Seconds that a round gets to keep what it has in hand when the watch ends."""
+
 Told = Callable[[tuple[DriveRound, ...]], None]
 
 
@@ -56,6 +59,7 @@ class Watch:
         self._traffic = Traffic(machine, now, time.monotonic)
         self._gathered: list[IoSpan] = []
         self._committed = time.monotonic()
+        self._rounding = threading.Lock()
         self._stop = threading.Event()
 
     @property
@@ -83,8 +87,7 @@ class Watch:
             self._guard(schedule)
         finally:
             schedule.stop()
-            self._note("watch", "Watching ended.")
-            self._end()
+            self._end("Watching ended.")
 
     def end(self) -> None:
         """Let `run` come to its end; may be called from any thread or signal handler."""
@@ -104,7 +107,8 @@ class Watch:
                 self._keeper.try_again()
 
     def _round(self) -> None:
-        self._rounds.run(told=self._told, lock=self._lock)
+        with self._rounding:
+            self._rounds.run(told=self._told, lock=self._lock)
 
     def _count(self) -> None:
         spans = self._traffic.look(dict(self._rounds.blocks))
@@ -127,9 +131,14 @@ class Watch:
         with self._lock:
             self._keeper.note(Entry(at=now(), drive=None, kind=kind, text=text))
 
-    def _end(self) -> None:
+    def _end(self, words: str | None = None) -> None:
+        self._rounds.end()
         self._machine.stop()
+        # What a round has in hand is kept before the history closes; more than a moment is not waited for.
+        self._rounding.acquire(timeout=HAND)
         self._commit_traffic()
+        if words is not None:
+            self._note("watch", words)
         self._live.close()
         with self._lock:
             self._keeper.close()

@@ -1,0 +1,19 @@
+from tests.cli.run import run, settings_for
+from tests.player import lay
+
+
+def test_a_machine_that_lacks_nothing_exits_0_and_stores_nothing(tmp_path):
+    command = lay(tmp_path / "player", [{"node": "/dev/inv1", "type": "sat", "folder": "invented_hdd_sister"}])
+    settings = settings_for(command, tmp_path, more='[watch]\nonly = ["/dev/inv1"]\n')
+    ended = run("preflight", "--json", "--state", tmp_path / "state", "--settings", settings)
+    assert ended.code == 0, ended.out
+    assert {"name", "lacking", "text", "cure"} == set(ended.json["checks"][0])
+    assert not (tmp_path / "state").exists()
+
+
+def test_a_usb_bridge_that_the_tool_does_not_know_is_lacking_and_has_a_cure(tmp_path):
+    drive = {"node": "/dev/inv1", "type": "", "folder": "invented_usb_bridge_unknown"}
+    settings = settings_for(lay(tmp_path / "player", [drive]), tmp_path)
+    ended = run("preflight", "--state", tmp_path / "state", "--settings", settings)
+    assert ended.code == 4
+    assert "USB adapter" in ended.out

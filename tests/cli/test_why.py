@@ -1,0 +1,39 @@
+import pytest
+
+from tests.cli.run import run, settings_for
+from tests.player import lay
+
+
+@pytest.fixture
+def state(tmp_path):
+    command = lay(tmp_path / "player", [{"node": "/dev/inv1", "type": "sat", "folder": "invented_hdd_failing"}])
+    settings = settings_for(command, tmp_path)
+    assert run("watch", "--once", "--state", tmp_path / "state", "--settings", settings).code == 0
+    return tmp_path / "state"
+
+
+def test_it_tells_the_chain_from_readings_to_the_call(state):
+    told = run("why", "inv1", "--state", state)
+    assert told.code == 0
+    for part in (
+        "Call: retire",
+        "What stands:",
+        "Counters followed",
+        "Evidence",
+        "What would change the call:",
+    ):
+        assert part in told.out
+    assert max(map(len, told.out.splitlines())) <= 80
+
+
+def test_the_json_names_rule_counters_evidence_and_damage(state):
+    answer = run("why", "inv1", "--json", "--state", state).json
+    assert answer["drive"]["call"] == "retire"
+    assert answer["rule"].startswith("fact:")
+    assert {one["stream"] for one in answer["evidence"]} >= {"media", "link"}
+    assert answer["damage"]["copy_at"] == 7
+
+
+def test_a_drive_that_nobody_knows_is_wrong_usage_and_its_error_one_line(state):
+    ended = run("why", "nobody", "--state", state)
+    assert (ended.code, ended.err.count("\n")) == (2, 1)

@@ -1,0 +1,133 @@
+import os
+import sqlite3
+import subprocess
+
+import pytest
+
+from diskwatch.errors import HistoryHeld, HistoryTooNew
+from diskwatch.history.reader import Past
+from diskwatch.records import DriveRound, Entry, Round
+from diskwatch.service.keeper import Keeper
+from tests.samples import HDD, HERE, NOON, read
+
+
+def a_round(keeper, at=NOON):
+    known = keeper.known[0] if keeper.known else keeper.admit(HDD, HERE, at)
+    part = DriveRound(known=known, pass_=read(at, pending_sectors=1), state="{}")
+    return Round(
+        at=at, drives=(part,), entries=(Entry(at=at, drive=known.number, kind="watch", text="A round."),)
+    )
+
+
+def entries(folder):
+    with Past.open(folder) as past:
+        return [entry.text for entry in past.day_book()]
+
+
+def test_a_round_is_kept_and_known_after_a_restart(tmp_path):
+    keeper = Keeper(tmp_path)
+    keeper.record(a_round(keeper))
+    keeper.close()
+    again = Keeper(tmp_path)
+    assert [known.drive for known in again.known] == [HDD]
+    assert again.state(again.known[0].number) == "{}"
+    again.close()
+
+
+def test_numbers_go_on_where_they_stopped(tmp_path):
+    keeper = Keeper(tmp_path)
+    keeper.record(a_round(keeper))
+    keeper.close()
+    again = Keeper(tmp_path)
+    assert again.admit(HDD, HERE, NOON).number == 2
+    again.close()
+
+
+def test_a_folder_that_cannot_be_made_is_a_trouble_and_not_an_end(tmp_path):
+    blocked = tmp_path / "file"
+    blocked.write_text("not a folder")
+    keeper = Keeper(blocked / "state")
+    assert keeper.trouble
+    keeper.record(a_round(keeper))
+    assert keeper.waiting == 1
+    keeper.close()
+
+
+def test_what_could_not_be_written_is_written_when_the_trouble_is_over(tmp_path):
+    blocked = tmp_path / "state"
+    blocked.write_text("in the way")
+    keeper = Keeper(blocked)
+    keeper.record(a_round(keeper))
+    keeper.record(a_round(keeper, NOON + 60))
+    blocked.unlink()
+    keeper.try_again()
+    assert (keeper.trouble, keeper.waiting) == (None, 0)
+    keeper.close()
+    assert entries(blocked) == ["A round.", "A round."]
+
+
+def test_a_disk_that_fills_up_loses_nothing_that_was_judged(tmp_path):
+    keeper = Keeper(tmp_path)
+    connection = keeper._history._db.conn
+    (pages,) = connection.execute("PRAGMA page_count").fetchone()
+    connection.execute(f"PRAGMA max_page_count = {pages}")
+    for number in range(300):
+        keeper.note(Entry(at=NOON, drive=None, kind="watch", text=f"{number} " + "x" * 400))
+    assert "full" in keeper.trouble
+    connection.execute("PRAGMA max_page_count = 1000000")
+    keeper.try_again()
+    assert keeper.trouble is None
+    keeper.close()
+    assert [text.split()[0] for text in entries(tmp_path)] == [str(number) for number in range(300)]
+
+
+def test_what_waits_is_bounded(tmp_path, monkeypatch):
+    monkeypatch.setattr("diskwatch.service.keeper.MOST_WAITING", 5)
+    blocked = tmp_path / "state"
+    blocked.write_text("in the way")
+    keeper = Keeper(blocked)
+    for number in range(9):
+        keeper.note(Entry(at=NOON, drive=None, kind="watch", text=str(number)))
+    assert keeper.waiting == 5
+    blocked.unlink()
+    keeper.try_again()
+    keeper.close()
+    assert entries(blocked) == ["4", "5", "6", "7", "8"]
+
+
+def test_a_history_of_a_newer_version_is_refused(tmp_path):
+    Keeper(tmp_path).close()
+    db = sqlite3.connect(tmp_path / "history.db")
+    db.execute("PRAGMA user_version = 999")
+    db.commit()
+    db.close()
+    with pytest.raises(HistoryTooNew):
+        Keeper(tmp_path)
+
+
+def test_a_history_that_another_process_writes_is_refused(tmp_path):
+    keeper = Keeper(tmp_path)
+    with pytest.raises(HistoryHeld):
+        Keeper(tmp_path)
+    keeper.close()
+
+
+@pytest.mark.skipif(os.geteuid() != 0, reason="needs root to mount a file system of its own")
+def test_a_read_only_folder_is_still_judged_by_its_past(tmp_path):
+    state = tmp_path / "state"
+    state.mkdir()
+    made = subprocess.run(["mount", "-t", "tmpfs", "none", str(state)], capture_output=True, check=False)
+    if made.returncode != 0:
+        pytest.skip("this machine lets nobody mount anything")
+    try:
+        keeper = Keeper(state)
+        keeper.record(a_round(keeper))
+        keeper.close()
+        subprocess.run(["mount", "-o", "remount,ro", str(state)], check=True)
+        keeper = Keeper(state)
+        assert keeper.trouble
+        assert keeper.state(1) == "{}"
+        assert [known.number for known in keeper.known] == [1]
+        keeper.close()
+    finally:
+        subprocess.run(["umount", "-l", str(state)], check=False)

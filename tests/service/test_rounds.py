@@ -1,0 +1,173 @@
+import threading
+from dataclasses import replace
+
+import pytest
+
+from diskwatch.history.reader import Past
+from diskwatch.records import CallWord, Identity, Outcome, Place
+from diskwatch.service.keeper import Keeper
+from diskwatch.service.rounds import Rounds
+from tests.samples import DAY, HDD, NOON, NVME, missed, read, with_serial
+from tests.service.machines import ScriptedMachine, found
+
+
+@pytest.fixture
+def keeper(tmp_path):
+    kept = Keeper(tmp_path)
+    yield kept
+    kept.close()
+
+
+def rounds(machine, keeper, at=NOON, **more):
+    return Rounds(machine, keeper, lambda: at, **more)
+
+
+def book(tmp_path):
+    with Past.open(tmp_path) as past:
+        return [(entry.kind, entry.drive, entry.text) for entry in past.day_book()]
+
+
+def test_a_round_asks_every_drive_once_and_keeps_what_it_brought(tmp_path, keeper):
+    machine = ScriptedMachine(found(HDD), found(NVME))
+    machine.answers = {
+        "/dev/sda": [read(NOON, pending_sectors=3)],
+        "/dev/nvme0": [read(NOON, NVME, media_errors=0)],
+    }
+    done = rounds(machine, keeper).run()
+    assert sorted(machine.asked) == ["/dev/nvme0", "/dev/sda"]
+    assert len(done) == 2
+    with Past.open(tmp_path) as past:
+        lines = {line.drive.identity.serial: line for line in past.bays(NOON).drives}
+    assert {signal.name: signal.value for signal in lines["INV0001"].signals}["pending-sectors"] == 3
+    assert lines["INV0003"].call.word is CallWord.KEEP
+
+
+def test_a_drive_that_hangs_delays_the_keeping_of_no_other(keeper, monkeypatch):
+    monkeypatch.setattr("diskwatch.service.rounds.PATIENCE", 0.05)
+    machine = ScriptedMachine(found(HDD), found(NVME))
+    machine.answers = {"/dev/sda": [missed(NOON, Outcome.TIMED_OUT)], "/dev/nvme0": [read(NOON, NVME)]}
+    machine.hold["/dev/sda"] = threading.Event()
+    parts = []
+
+    def told(part):
+        parts.append([one.known.drive.identity.serial for one in part])
+        machine.hold["/dev/sda"].set()  # it answers only once the other has been kept
+
+    rounds(machine, keeper).run(told=told)
+    assert parts == [["INV0003"], ["INV0001"]]
+
+
+def test_a_restart_between_two_rounds_changes_nothing(tmp_path):
+    first, second = read(NOON, pending_sectors=0), read(NOON + DAY, pending_sectors=16)
+
+    def lived(folder, *, restart):
+        machine = ScriptedMachine(found(HDD))
+        machine.answers = {"/dev/sda": [first, second]}
+        kept = Keeper(folder)
+        running = rounds(machine, kept)
+        running.run()
+        if restart:
+            kept.close()
+            kept = Keeper(folder)
+            running = rounds(machine, kept)
+        (done,) = running.run()
+        kept.close()
+        return done.state, done.call, done.evidence
+
+    assert lived(tmp_path / "a", restart=False) == lived(tmp_path / "b", restart=True)
+
+
+def test_a_drive_that_moved_keeps_its_history_and_the_day_book_tells(tmp_path, keeper):
+    machine = ScriptedMachine(found(HDD, bay="ata-1"))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/sdc": [read(NOON + 60)]}
+    running = rounds(machine, keeper)
+    (before,) = running.run()
+    machine.listed = [found(HDD, device="/dev/sdc", bay="ata-4")]
+    (after,) = running.run()
+    assert after.known.number == before.known.number
+    assert after.known.place == Place(device="/dev/sdc", bay="ata-4")
+    assert ("moved", before.known.number, "Moved from ata-1 to ata-4; its history moves with it.") in book(
+        tmp_path
+    )
+
+
+def test_a_new_letter_in_the_same_bay_is_no_move(tmp_path, keeper):
+    machine = ScriptedMachine(found(HDD, bay="ata-1"))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/sdb": [read(NOON + 60)]}
+    running = rounds(machine, keeper)
+    running.run()
+    machine.listed = [found(HDD, device="/dev/sdb", bay="ata-1")]
+    running.run()
+    assert "moved" not in [kind for kind, *_ in book(tmp_path)]
+
+
+def test_two_drives_that_tell_the_same_names_stay_two(keeper):
+    twin = replace(HDD, identity=replace(HDD.identity, path="/dev/sdb"))
+    machine = ScriptedMachine(found(HDD, bay="ata-1"), found(twin, bay="ata-2"))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/sdb": [read(NOON, twin)]}
+    running = rounds(machine, keeper)
+    first = {one.known.place.device: one.known.number for one in running.run()}
+    second = {one.known.place.device: one.known.number for one in running.run()}
+    assert len(set(first.values())) == 2
+    assert first == second
+
+
+def test_a_drive_that_falls_silent_is_still_the_same_drive(tmp_path, keeper):
+    bare = replace(HDD, identity=Identity(wwn=None, model=None, serial=None, path="/dev/sda"))
+    machine = ScriptedMachine(found(bare))
+    machine.answers = {"/dev/sda": [read(NOON), replace(missed(NOON, Outcome.TIMED_OUT), drive=None)]}
+    running = rounds(machine, keeper)
+    numbers = [running.run()[0].known.number for _ in range(2)]
+    again = Rounds(machine, keeper, lambda: NOON)  # as after a restart
+    numbers.append(again.run()[0].known.number)
+    assert len(set(numbers)) == 1
+    with Past.open(tmp_path) as past:
+        (line,) = past.bays(NOON).drives
+    assert line.drive.identity.serial == "INV0001"
+
+
+def test_a_drive_that_is_gone_is_followed_for_three_rounds_and_then_known_to_be_away(tmp_path, keeper):
+    machine = ScriptedMachine(found(HDD))
+    machine.answers = {"/dev/sda": [read(NOON)]}
+    running = rounds(machine, keeper)
+    running.run()
+    machine.listed = []
+    outcomes = [[one.pass_.outcome.value for one in running.run()] for _ in range(5)]
+    assert outcomes == [["absent"], ["absent"], ["absent"], [], []]
+    with Past.open(tmp_path) as past:
+        assert past.bays(NOON).drives[0].call.word is CallWord.LOOK
+
+
+def test_an_incomplete_listing_accuses_no_drive_of_being_gone(keeper):
+    machine = ScriptedMachine(found(HDD))
+    machine.answers = {"/dev/sda": [read(NOON)]}
+    running = rounds(machine, keeper)
+    running.run()
+    machine.listed, machine.troubles = [], ("smartctl was not found.",)
+    assert running.run() == ()
+
+
+def test_a_trouble_of_the_machine_is_told_when_it_begins_and_when_it_is_over(tmp_path, keeper):
+    machine = ScriptedMachine()
+    running = rounds(machine, keeper)
+    machine.troubles = ("smartctl was not found.",)
+    running.run()
+    running.run()
+    machine.troubles = ()
+    running.run()
+    assert book(tmp_path) == [
+        ("trouble", None, "smartctl was not found."),
+        ("trouble", None, "Over: smartctl was not found."),
+    ]
+
+
+def test_a_drive_that_the_owner_wants_left_alone_is_not_kept(keeper):
+    other = with_serial(HDD, "INV0099", "/dev/sdz")
+    machine = ScriptedMachine(found(HDD), found(other))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/sdz": [read(NOON, other)]}
+    done = rounds(machine, keeper, wanted=lambda who, _devices: who.serial != "INV0099").run()
+    assert [one.known.drive.identity.serial for one in done] == ["INV0001"]
+
+
+def test_a_machine_without_any_drive_gives_an_empty_round(keeper):
+    assert rounds(ScriptedMachine(), keeper).run() == ()

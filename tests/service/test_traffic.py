@@ -1,0 +1,58 @@
+from diskwatch.service.traffic import Traffic
+from tests.service.machines import ScriptedMachine, counted
+
+BLOCKS = {7: ("sda",)}
+
+
+class Clocks:
+    """A wall clock and a steady one, moved by hand."""
+
+    def __init__(self):
+        self.wall, self.steady = 1_000_000, 50.0
+
+    def move(self, seconds, *, asleep=0):
+        self.wall += seconds + asleep
+        self.steady += seconds
+
+
+def traffic(*totals):
+    machine, clocks = ScriptedMachine(), Clocks()
+    machine.totals = [{"sda": one} for one in totals]
+    return Traffic(machine, lambda: clocks.wall, lambda: clocks.steady), clocks
+
+
+def test_the_first_look_gives_nothing_and_the_second_the_difference():
+    looks, clocks = traffic(counted(100), counted(130))
+    assert looks.look(BLOCKS) == ()
+    clocks.move(10)
+    (span,) = looks.look(BLOCKS)
+    assert (span.drive, span.at, span.seconds, span.counts.reads) == (7, clocks.wall, 10.0, 30)
+
+
+def test_counters_of_another_device_under_the_same_name_are_never_subtracted():
+    looks, clocks = traffic(
+        counted(100), counted(130, instance="boot 1, disk 2"), counted(140, instance="boot 1, disk 2")
+    )
+    looks.look(BLOCKS)
+    clocks.move(10)
+    assert looks.look(BLOCKS) == ()
+    clocks.move(10)
+    assert looks.look(BLOCKS)[0].counts.reads == 10
+
+
+def test_a_span_over_a_sleep_or_a_set_clock_is_dropped():
+    looks, clocks = traffic(counted(100), counted(130), counted(140), counted(150))
+    looks.look(BLOCKS)
+    clocks.move(10, asleep=3600)
+    assert looks.look(BLOCKS) == ()
+    clocks.move(10, asleep=-7200)
+    assert looks.look(BLOCKS) == ()
+    clocks.move(10)
+    assert looks.look(BLOCKS)[0].counts.reads == 10
+
+
+def test_a_drive_without_block_devices_has_no_traffic_of_its_own():
+    looks, clocks = traffic(counted(100), counted(130))
+    looks.look({7: ()})
+    clocks.move(10)
+    assert looks.look({7: ()}) == ()
