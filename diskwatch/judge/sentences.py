@@ -10,23 +10,44 @@ from diskwatch.records import Attribute, SelfTest
 from diskwatch.trends.norms import YEAR, Norm
 from diskwatch.units import plain, say_count, say_days
 
-_NAMES: Mapping[str, str] = {
-    "reallocated-sectors": "sectors replaced by spare ones (reallocated)",
-    "pending-sectors": "sectors that could not be read and wait (pending)",
-    "offline-uncorrectable": "sectors that its own scan could not read (offline uncorrectable)",
-    "reported-uncorrectable": "reads that it gave up (reported uncorrectable)",
-    "grown-defects": "defects grown since manufacture (grown defects)",
-    "uncorrected-reads": "reads that it gave up (uncorrected)",
-    "uncorrected-writes": "writes that it gave up (uncorrected)",
-    "media-errors": "times that stored data could not be recovered (media errors)",
-    "crc-errors": "transfers damaged on the cable or connector (interface CRC errors)",
-    "link-resets": "times that the link to it was reset",
-    "command-timeouts": "commands that it did not answer in time (command timeouts)",
-    "kernel-io-errors": "requests that the kernel saw fail",
-    "unsafe-power-offs": "times that power went away without notice (unsafe power-offs)",
-    "end-to-end-errors": "blocks damaged inside the drive's own electronics (end-to-end errors)",
-    "spin-retries": "times that it needed another try to start turning (spin retries)",
-    "non-medium-errors": "errors that were not the medium's (non-medium)",
+_NAMES: Mapping[str, tuple[str, str]] = {
+    "reallocated-sectors": (
+        "sector replaced by a spare one (reallocated)",
+        "sectors replaced by spare ones (reallocated)",
+    ),
+    "pending-sectors": (
+        "sector that could not be read and waits (pending)",
+        "sectors that could not be read and wait (pending)",
+    ),
+    "offline-uncorrectable": (
+        "sector that its own scan could not read (offline uncorrectable)",
+        "sectors that its own scan could not read (offline uncorrectable)",
+    ),
+    "reported-uncorrectable": (
+        "read that it gave up (reported uncorrectable)",
+        "reads that it gave up (reported uncorrectable)",
+    ),
+    "grown-defects": ("defect grown in use (grown defects)", "defects grown in use (grown defects)"),
+    "uncorrected-reads": ("read that it gave up (uncorrected)", "reads that it gave up (uncorrected)"),
+    "uncorrected-writes": ("write that it gave up (uncorrected)", "writes that it gave up (uncorrected)"),
+    "media-errors": (
+        "time that stored data could not be recovered (media errors)",
+        "times that stored data could not be recovered (media errors)",
+    ),
+    "crc-errors": (
+        "transfer damaged on the cable or connector (interface CRC errors)",
+        "transfers damaged on the cable or connector (interface CRC errors)",
+    ),
+    "link-resets": ("reset of the link to it", "resets of the link to it"),
+    "command-timeouts": (
+        "command that it did not answer in time (command timeouts)",
+        "commands that it did not answer in time (command timeouts)",
+    ),
+    "kernel-io-errors": ("request that the kernel saw fail", "requests that the kernel saw fail"),
+    "unsafe-power-offs": (
+        "time that power went away without notice (unsafe power-offs)",
+        "times that power went away without notice (unsafe power-offs)",
+    ),
 }
 
 _STREAMS: Mapping[str, str] = {
@@ -39,9 +60,10 @@ _STREAMS: Mapping[str, str] = {
 }
 
 
-def signal_name(signal: str) -> str:
-    """A signal for a person: what is counted, and the trade's term."""
-    return _NAMES.get(signal, signal.replace("-", " "))
+def signal_name(signal: str, count: int = 2) -> str:
+    """What a counter counts, for a person, and the trade's term; in the singular for a count of 1."""
+    one, many = _NAMES.get(signal, (signal.replace("-", " "),) * 2)
+    return one if count == 1 else many
 
 
 def rose(signal: str, old: int, new: int) -> str:
@@ -239,7 +261,7 @@ def budget(days: float) -> str:
 
 
 def _list(values: Mapping[str, int]) -> str:
-    return ", ".join(f"{say_count(count)} {signal_name(signal)}" for signal, count in values.items())
+    return ", ".join(f"{say_count(count)} {signal_name(signal, count)}" for signal, count in values.items())
 
 
 def _upper(text: str) -> str:

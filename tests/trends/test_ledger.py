@@ -1,5 +1,5 @@
 from itertools import product
-from math import isclose
+from math import exp, expm1, isclose
 
 import pytest
 from hypothesis import given, strategies as st
@@ -12,7 +12,7 @@ NORMS = st.floats(min_value=0.1 / 365.25, max_value=12 / 365.25)
 
 
 def test_the_expected_evidence_of_a_drive_at_its_norm_grows_by_one_a_step():
-    """By enumeration of all 256 sequences: Bernoulli norm 0.2, suspicions 0.4 and 0.8, exactly 8 after 8 steps."""
+    """All 256 sequences enumerated: Bernoulli norm 0.2, suspicions 0.4 and 0.8, exactly 8 after 8 steps."""
     expected = 0.0
     for sequence in product((False, True), repeat=8):
         state, chance = ledger.empty(2), 1.0
@@ -34,8 +34,6 @@ def test_the_factors_of_a_three_day_step_at_half_an_episode_a_year_and_twelvefol
 @given(exposure=EXPOSURES, norm=NORMS)
 def test_each_factor_has_mean_one_exactly_at_the_norm(exposure, norm):
     """The likelihood ratio integrates to 1: what the bound on false alarms is proved from."""
-    from math import exp, expm1
-
     quiet = ledger.count_factors(episode=False, exposure=exposure, norm_per_day=norm)
     episode = ledger.count_factors(episode=True, exposure=exposure, norm_per_day=norm)
     for low, high in zip(quiet, episode, strict=True):
