@@ -136,8 +136,9 @@ def of_words(
         )
     if what.says_something and what.support is not Support.NONE:
         return Verdict(outcome=Outcome.READ)
-    if _first(lines, _ASLEEP) is not None:
-        return _asleep(name)
+    asleep = _first(lines, _ASLEEP)
+    if asleep is not None:
+        return _asleep(name, asleep)
     refused = _first(lines, _REFUSED)
     if refused is not None:
         return Verdict(
@@ -156,11 +157,22 @@ def of_words(
                 outcome=Outcome.NO_SMART, explanation=f"{name}: {why}; it is watched by its traffic only"
             )
     if status == ASLEEP_STATUS:
-        return _asleep(name)
+        return _asleep(name, None)
     return _not_understood(lines, what, name=name, expects_smart=expects_smart)
 
 
-def _asleep(name: str) -> Verdict:
+def _asleep(name: str, words: str | None) -> Verdict:
+    """A drive that was left alone.
+
+    smartctl prints SLEEP also where the question for the power mode failed, since a drive in that mode answers
+    nothing. Seen with version 7.3 on a node that is no disk at all; a dying drive may look the same.
+    """
+    if words is not None and "sleep" in words.lower():
+        return Verdict(
+            outcome=Outcome.ASLEEP,
+            explanation=f"{name}: is asleep, or does not even answer whether it is, and was not woken; if it is "
+            "in use all the same, look at its cable, its adapter and the drive",
+        )
     return Verdict(
         outcome=Outcome.ASLEEP, explanation=f"{name}: is asleep and was not woken; it is asked when it is awake"
     )

@@ -48,6 +48,13 @@ def test_a_sleeping_drive_is_asleep(line: str, status: int):
     assert "not woken" in why
 
 
+def test_a_drive_that_may_only_be_silent_is_not_called_asleep_outright():
+    _, asleep = verdict((*HEAD, "Device is in STANDBY mode, exit(3)"), 3)
+    _, silent = verdict((*HEAD, "Device is in SLEEP mode, exit(3)"), 3)
+    assert "cable" not in asleep
+    assert "cable" in silent
+
+
 @pytest.mark.parametrize(
     "line",
     [
