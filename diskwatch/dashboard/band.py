@@ -60,10 +60,10 @@ def band(line: DriveLine, now: int, width: int, face: Face, *, chosen: bool = Fa
         beside = width - _TRAFFIC_WIDTH - 2
         first = _title(line, width, beside, chosen=chosen, bar=bar, mark=mark)
         first.append("  ")
-        return (fit(first.append_text(_doing(line, now, _TRAFFIC_WIDTH, mark)), width),)
+        return (fit(first.append_text(_doing(line, now, _TRAFFIC_WIDTH, mark, brief=False)), width),)
     title = _title(line, width, width, chosen=chosen, bar=bar, mark=mark)
     inner = max(width - INDENT, 0)
-    body = [_doing(line, now, inner, mark)]
+    body = [_doing(line, now, inner, mark, brief=width < WIDE)]
     if not is_quiet(line):
         body.insert(0, _why(line, inner, mark))
     indent = Text.assemble(bar, " " * (INDENT - 1))
@@ -124,17 +124,17 @@ def _why(line: DriveLine, width: int, mark: str) -> Text:
     return Text(cut(told, width, mark))
 
 
-def _doing(line: DriveLine, now: int, width: int, mark: str) -> Text:
-    """Traffic at the left, which gives way; margin and last pass at the right, the margin only when narrow."""
+def _doing(line: DriveLine, now: int, width: int, mark: str, *, brief: bool) -> Text:
+    """Traffic at the left, which gives way; at the right the last pass and, unless it is narrow, the margin."""
     margin = "" if line.call is None or line.call.word is CallWord.KEEP else "margin unknown  "
-    passed, passed_short = _passed(line, now, short=False), _passed(line, now, short=True)
-    rights = (margin + passed, margin + passed_short) if width >= NARROW else (passed, passed_short)
+    right = _passed(line, now, short=brief)
+    if width >= NARROW:
+        right = margin + right
+    right = cut(right, width, mark)
     lefts = traffic(line.traffic)
     for left in lefts:
-        for right in rights:
-            if len(left) + len(right) + 2 <= width:
-                return ends(Text(left), Text(right), width)
-    right = cut(rights[-1], width, mark)
+        if len(left) + len(right) + 2 <= width:
+            return ends(Text(left), Text(right), width)
     return ends(Text(cut(lefts[-1], width - len(right) - 2, mark)), Text(right), width)
 
 

@@ -19,7 +19,7 @@ def test_a_grave_drive_takes_three_lines():
     assert plain(RETIRE, 80) == [
         "█  retire   Photos                  /srv/photos                  12 TB  sdb",
         "█  The drive's own self-assessment failed on 28 November.           cause: media",
-        "█  reads 12/s 4.2 MB/s 6.2 ms  writes 3/s    margin unknown  read 12 minutes ago",
+        "█  reads 12/s 4.2 MB/s 6.2 ms  writes 3/s        margin unknown  read 12 min ago",
     ]
 
 
@@ -47,7 +47,7 @@ def test_a_very_wide_screen_names_the_bay():
 def test_a_quiet_drive_folds_to_one_line_and_its_traffic():
     assert plain(KEEP, 80) == [
         "░  keep     INVENTED NV-2000        /, /home, /boot/efi           2 TB  nvme0n1",
-        "░  reads 12/s 4.2 MB/s 6.2 ms  writes 3/s 90 kB/s            read 12 minutes ago",
+        "░  reads 12/s 4.2 MB/s 6.2 ms  writes 3/s 90 kB/s                read 12 min ago",
     ]
 
 
@@ -70,7 +70,7 @@ def test_an_unread_drive_is_not_quiet_and_says_why():
     assert "size ?" in first
     assert second == "▒  Reading /dev/sde needs the right to do so."
     assert third.startswith("▒  nobody measures its traffic")
-    assert third.endswith("refused 12 minutes ago")
+    assert third.endswith("refused 12 min ago")
 
 
 def test_the_margin_is_named_only_where_something_is_to_be_done():
@@ -81,7 +81,7 @@ def test_the_margin_is_named_only_where_something_is_to_be_done():
 @pytest.mark.parametrize("outcome", list(Outcome))
 def test_every_outcome_has_words_beside_its_time(outcome):
     line = replace(COPY, last_pass=LastPass(at=NOW - 720, outcome=outcome, explanation="So it went."))
-    assert plain(line, 80)[2].endswith(" 12 minutes ago")
+    assert plain(line, 80)[2].endswith(" 12 min ago")
 
 
 def test_a_keep_that_could_not_be_read_is_no_longer_quiet():

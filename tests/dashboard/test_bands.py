@@ -178,4 +178,4 @@ async def test_time_alone_redraws_only_the_lines_that_tell_it():
         await shown(pilot, (RETIRE,), NOW + 60)
         after = app.bands.query_one(Band).drawn
         assert [one == other for one, other in zip(before, after, strict=True)] == [True, True, False]
-        assert "read 13 minutes ago" in text_of(app)
+        assert "read 13 min ago" in text_of(app)
