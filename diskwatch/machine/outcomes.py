@@ -170,8 +170,8 @@ def _asleep(name: str, words: str | None) -> Verdict:
     if words is not None and "sleep" in words.lower():
         return Verdict(
             outcome=Outcome.ASLEEP,
-            explanation=f"{name}: is asleep, or does not even answer whether it is, and was not woken; if it is "
-            "in use all the same, look at its cable, its adapter and the drive",
+            explanation=f"{name}: is asleep, or does not even answer whether it is, and was not woken; if it "
+            "is in use all the same, look at its cable, its adapter and the drive",
         )
     return Verdict(
         outcome=Outcome.ASLEEP, explanation=f"{name}: is asleep and was not woken; it is asked when it is awake"

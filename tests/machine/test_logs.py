@@ -4,6 +4,9 @@ from diskwatch.machine.held import Family, device_of
 from diskwatch.machine.logs import nvme_limits, nvme_values, scsi_values, trip_celsius
 from diskwatch.machine.text import Sheet
 from diskwatch.records import Value
+from tests.machine.recordings import SHARED, text_of, truth_of
+
+SHELF = SHARED / "sas_error_counters.txt"
 
 
 def nvme(*lines: str) -> dict[str, Value]:
@@ -82,6 +85,17 @@ def test_an_error_counter_at_its_end_is_not_known():
 
 def test_non_medium_errors_are_found_under_their_capital_letter():
     assert scsi("Non-medium error count:    84893")["non-medium-errors"].value == 84_893
+
+
+@pytest.mark.skipif(not SHELF.is_file(), reason="the shared recordings are not here")
+@pytest.mark.parametrize("library", [False, True])
+def test_every_disk_of_a_recorded_shelf_gives_the_counts_that_its_text_states(library: bool):
+    disks = text_of(SHELF).split("==================== /dev/")[1:]
+    assert len(disks) == 24
+    for disk in disks:
+        truth, found = truth_of(disk).signals, scsi(*disk.splitlines(), library=library)
+        assert truth
+        assert {signal: found[signal].value for signal in truth} == truth
 
 
 @pytest.mark.parametrize(
