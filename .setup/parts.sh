@@ -144,6 +144,11 @@ choose_place() {
     mkdir -p "${venv%/*}" || give_up "$venv could not be made"
 }
 
+# What an environment was made for: it is made anew when any of this changes, say by an upgrade of Python.
+state_now() {
+    { cat "$top/pyproject.toml" && "$venv/bin/python" -VV && printf %s "$top"; } 2>/dev/null | sha256sum
+}
+
 # fill NAME ARGUMENTS...: have in the environment what pip installs by ARGUMENTS, once for each state of things.
 fill() {
     name=$1
@@ -152,13 +157,16 @@ fill() {
     # Two runs at once must not fill it together; a machine without flock takes the chance.
     exec 9>"$venv/lock"
     if command -v flock >/dev/null; then flock 9; fi
-    state=$({ cat "$top/pyproject.toml" && "$python" -VV && printf %s "$top"; } | sha256sum)
-    if ! "$venv/bin/python" -c '' 2>/dev/null || ! grep -qsxF "$state" "$venv"/*.stamp; then
+    state=$(state_now)
+    if ! grep -qsxF "$state" "$venv"/*.stamp; then
+        need_python
         say "making an environment in $venv"
-        rm -rf "${venv:?}"/*.stamp "${venv:?}/bin" "${venv:?}/include" "${venv:?}/lib" "${venv:?}/lib64" "${venv:?}/pyvenv.cfg"
+        rm -rf "${venv:?}"/*.stamp "${venv:?}/bin" "${venv:?}/include" "${venv:?}/lib" "${venv:?}/lib64" \
+            "${venv:?}/pyvenv.cfg"
         "$python" -m venv "$venv" >&2 || give_up "$python could not make an environment in $venv"
         # Debian 12's pip does not know --group yet.
         pip_install --upgrade pip
+        state=$(state_now)
     fi
     if ! grep -qsxF "$state" "$venv/$name.stamp"; then
         say 'installing libraries into it (a minute or two, once)'

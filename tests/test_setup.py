@@ -250,7 +250,7 @@ class Filling:
         self.log.write_text("")
         each = 'for name in "$@"; do fill "$name" "$name-things"; done'
         done = shell(
-            f"top=$1; venv=$top/.venv; python=$2; shift 2; {each}",
+            f"top=$1; venv=$top/.venv; fake=$2; need_python() {{ python=$fake; }}; shift 2; {each}",
             *(str(self.clone), str(self.python), *names),
             FAKE_LOG=str(self.log),
             FAKE_VERSION=version,
