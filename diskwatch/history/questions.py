@@ -45,7 +45,7 @@ _EVIDENCE = (
 )
 _TRAFFIC = (
     "SELECT drive, at + 60, span_ms, reads, writes, read_bytes, write_bytes, read_ms, write_ms, busy_ms"
-    " FROM io_minute WHERE at >= ? AND at < ? AND drive = ? ORDER BY at"
+    " FROM io_minute WHERE slot >= ? AND slot < ? AND drive = ? ORDER BY slot"
 )
 
 
@@ -105,7 +105,7 @@ def evidence(
 
 def traffic(connection: sqlite3.Connection, drive: int, since: int, until: int) -> tuple[IoSpan, ...]:
     """A drive's minutes, oldest first."""
-    found = connection.execute(_TRAFFIC, (since // 60 * 60, until, drive)).fetchall()
+    found = connection.execute(_TRAFFIC, (rows.slot(since), rows.slot(until + 59), drive)).fetchall()
     return tuple(rows.span(row) for row in found)
 
 

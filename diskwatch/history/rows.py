@@ -5,6 +5,7 @@ program could have written raises ValueError.
 """
 
 import json
+import math
 from collections.abc import Mapping
 from typing import Any
 
@@ -33,6 +34,9 @@ Cell = int | float | str | bytes | None
 
 Row = tuple[Any, ...]
 """A row as SQLite gives it: what its columns hold is checked by the STRICT tables, not by Python's types."""
+
+_DRIVES = 65_536
+"""Numbers of drives that fit into a slot of the minutes."""
 
 _SMALLEST, _LARGEST = -(2**63), 2**63 - 1
 
@@ -232,12 +236,22 @@ def span(row: Row) -> IoSpan:
     )
 
 
-def minute_row(span: IoSpan) -> tuple[int, int, int, int, int, int, int, int, int, int]:
-    """As `span` reads it but with ``at``, here the begin of the minute of the span's middle, first."""
+def slot(at: int, drive: int = 0) -> int:
+    """Where a drive's minute stands among all minutes; without a drive, where the minute itself begins.
+
+    Raises:
+        ValueError: the drive's number has no room in it.
+    """
+    if not 0 <= drive < _DRIVES:
+        raise ValueError(f"no number of a drive: {drive}")
+    return at // 60 * _DRIVES + drive
+
+
+def minute_row(span: IoSpan) -> tuple[int, ...]:
+    """``slot`` of the minute of the span's middle, then as `span` reads it from ``span_ms`` on."""
     counts = span.counts
     return (
-        int((span.at - span.seconds / 2) // 60) * 60,
-        span.drive,
+        slot(math.floor(span.at - span.seconds / 2), span.drive),
         round(span.seconds * 1000),
         counts.reads,
         counts.writes,

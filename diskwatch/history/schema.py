@@ -126,10 +126,13 @@ _BASE = (
         PRIMARY KEY (series, day)
     ) STRICT, WITHOUT ROWID
     """,
+    # The key (at, drive) as one number: a table whose key only grows is written a third less than an index is.
+    # The slot is the minute since 1970 times 65,536 plus the drive.
     """
     CREATE TABLE io_minute (
-        at INTEGER NOT NULL,
-        drive INTEGER NOT NULL REFERENCES drive,
+        slot INTEGER PRIMARY KEY,
+        at INTEGER GENERATED ALWAYS AS (slot / 65536 * 60) VIRTUAL,
+        drive INTEGER GENERATED ALWAYS AS (slot % 65536) VIRTUAL REFERENCES drive,
         span_ms INTEGER NOT NULL,
         reads INTEGER NOT NULL,
         writes INTEGER NOT NULL,
@@ -137,9 +140,8 @@ _BASE = (
         write_bytes INTEGER NOT NULL,
         read_ms INTEGER NOT NULL,
         write_ms INTEGER NOT NULL,
-        busy_ms INTEGER NOT NULL,
-        PRIMARY KEY (at, drive)
-    ) STRICT, WITHOUT ROWID
+        busy_ms INTEGER NOT NULL
+    ) STRICT
     """,
     """
     CREATE TABLE day_book (

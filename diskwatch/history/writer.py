@@ -140,22 +140,22 @@ class History:
         A span belongs wholly to the minute of its middle; how much time a minute's counts cover is kept beside
         them, so that rates stay right also where spans are longer than a minute.
         """
-        sums: dict[tuple[int, int], list[int]] = {}
+        sums: dict[int, list[int]] = {}
         for span in spans:
-            row = rows.minute_row(span)
-            so_far = sums.setdefault(row[:2], [0] * (len(row) - 2))
-            for place, amount in enumerate(row[2:]):
+            slot, *amounts = rows.minute_row(span)
+            so_far = sums.setdefault(slot, [0] * len(amounts))
+            for place, amount in enumerate(amounts):
                 so_far[place] += amount
         with self._writing() as connection:
             connection.executemany(
-                "INSERT INTO io_minute (at, drive, span_ms, reads, writes, read_bytes, write_bytes, read_ms,"
-                " write_ms, busy_ms) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?)"
-                " ON CONFLICT (at, drive) DO UPDATE SET"
+                "INSERT INTO io_minute (slot, span_ms, reads, writes, read_bytes, write_bytes, read_ms,"
+                " write_ms, busy_ms) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)"
+                " ON CONFLICT (slot) DO UPDATE SET"
                 " span_ms = span_ms + excluded.span_ms, reads = reads + excluded.reads,"
                 " writes = writes + excluded.writes, read_bytes = read_bytes + excluded.read_bytes,"
                 " write_bytes = write_bytes + excluded.write_bytes, read_ms = read_ms + excluded.read_ms,"
                 " write_ms = write_ms + excluded.write_ms, busy_ms = busy_ms + excluded.busy_ms",
-                [(*key, *amounts) for key, amounts in sorted(sums.items())],
+                [(slot, *amounts) for slot, amounts in sorted(sums.items())],
             )
 
     @contextmanager

@@ -70,15 +70,30 @@ def test_half_of_a_surrogate_pair_becomes_its_escape():
 
 
 def test_a_span_lies_in_the_minute_of_its_middle():
-    assert rows.minute_row(a_span(at=NOON, seconds=10.0))[0] == NOON - 60
-    assert rows.minute_row(a_span(at=NOON + 4, seconds=10.0))[0] == NOON - 60
-    assert rows.minute_row(a_span(at=NOON + 5, seconds=10.0))[0] == NOON
-    assert rows.minute_row(a_span(at=NOON + 59, seconds=10.0))[0] == NOON
+    def minute(at: int, seconds: float = 10.0) -> int:
+        return rows.minute_row(a_span(7, at, seconds))[0]
+
+    assert minute(NOON) == rows.slot(NOON - 60, 7)
+    assert minute(NOON + 4) == rows.slot(NOON - 60, 7)
+    assert minute(NOON + 5) == rows.slot(NOON, 7)
+    assert minute(NOON + 59) == rows.slot(NOON, 7)
+    assert minute(NOON + 5, 11.0) == rows.slot(NOON - 60, 7)
+
+
+@given(examples.times, st.integers(0, 65_535), examples.times, st.integers(0, 65_535))
+def test_slots_stand_in_order_of_minute_and_then_of_drive(at, drive, other_at, other):
+    assert (rows.slot(at, drive) < rows.slot(other_at, other)) == ((at // 60, drive) < (other_at // 60, other))
+
+
+@pytest.mark.parametrize("drive", [-1, 65_536])
+def test_a_drive_that_would_fall_into_anothers_slot_is_refused(drive):
+    with pytest.raises(ValueError, match="no number of a drive"):
+        rows.slot(NOON, drive)
 
 
 def test_a_minutes_row_reads_back_as_a_span():
-    at, drive, *amounts = rows.minute_row(a_span(drive=3, seconds=9.75, reads=2**40, busy_ms=0))
-    assert rows.span((drive, at, *amounts)) == a_span(drive=3, at=at, seconds=9.75, reads=2**40, busy_ms=0)
+    _, *amounts = rows.minute_row(a_span(drive=3, seconds=9.75, reads=2**40, busy_ms=0))
+    assert rows.span((3, NOON, *amounts)) == a_span(drive=3, seconds=9.75, reads=2**40, busy_ms=0)
 
 
 def test_passes_come_back():

@@ -121,13 +121,20 @@ def test_traffic_adds_up_within_a_minute_however_it_is_handed_over(history):
     history.admit(a_drive(), a_place(), NOON)
     spans = [a_span(at=NOON + ten * 10, reads=ten) for ten in range(1, 13)]
     history.add_traffic(spans)
-    together = history._db.execute("SELECT * FROM io_minute").fetchall()
+    together = history._db.execute("SELECT at, drive, * FROM io_minute").fetchall()
     history._db.execute("DELETE FROM io_minute")
     for one in spans:
         history.add_traffic([one])
     history.add_traffic([])
-    assert history._db.execute("SELECT * FROM io_minute").fetchall() == together
-    assert [row[:4] for row in together] == [(NOON, 1, 60_000, 21), (NOON + 60, 1, 60_000, 57)]
+    assert history._db.execute("SELECT at, drive, * FROM io_minute").fetchall() == together
+    assert [(*row[:2], *row[5:7]) for row in together] == [(NOON, 1, 60_000, 21), (NOON + 60, 1, 60_000, 57)]
+
+
+def test_traffic_of_a_drive_that_nobody_knows_is_refused_whole(history):
+    history.admit(a_drive(), a_place(), NOON)
+    with pytest.raises(HistoryError):
+        history.add_traffic([a_span(1), a_span(2)])
+    assert history._db["io_minute"].count == 0
 
 
 def test_closing_twice_does_nothing_and_a_closed_history_says_so(folder):
@@ -169,8 +176,9 @@ class _Rigged(sqlite3.Connection):
 
 
 @pytest.fixture
-def rigged(tmp_path):
-    path = tmp_path / HISTORY
+def rigged(folder):
+    folder.mkdir()
+    path = folder / HISTORY
     connection = sqlite3.connect(path, factory=_Rigged)
     with History(writer._prepared(connection, path), path, None) as history:
         yield history
@@ -205,9 +213,10 @@ def test_whichever_statement_of_a_round_fails_all_of_it_is_stored_or_nothing(rig
     assert connection.execute("PRAGMA integrity_check").fetchall() == [("ok",)]
 
 
-def test_whichever_statement_of_the_first_start_fails_the_next_start_succeeds(tmp_path):
+def test_whichever_statement_of_the_first_start_fails_the_next_start_succeeds(folder):
+    folder.mkdir()
     for fails_at in range(1, 500):
-        path = tmp_path / f"{fails_at}.db"
+        path = folder / f"{fails_at}.db"
         connection = sqlite3.connect(path, factory=_Rigged)
         connection.fails_at = fails_at
         try:
