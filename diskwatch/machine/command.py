@@ -2,7 +2,7 @@
 
 A drive that is dying can hold whoever asks it for minutes, in a state in which not even SIGKILL is obeyed. So
 nothing here waits without a limit: a child that does not die is left behind, counted, and reaped when the
-kernel lets go of it.
+kernel lets go of it. Until then no other is run for the same owner, so that they do not pile up.
 """
 
 import contextlib
@@ -35,6 +35,7 @@ class Ending(Enum):
     NOT_EXECUTABLE = auto()
     NOT_STARTED = auto()
     TIMED_OUT = auto()
+    HELD = auto()
     TOO_MUCH = auto()
     STOPPED = auto()
 
@@ -72,32 +73,36 @@ class Door:
         self._grace = grace
         self._lock = threading.Lock()
         self._running: set[subprocess.Popen[bytes]] = set()
-        self._left_behind: list[subprocess.Popen[bytes]] = []
+        self._left_behind: list[tuple[str, subprocess.Popen[bytes]]] = []
         self._stopped = False
 
     @property
     def abandoned(self) -> int:
         """How many children were killed but are still held by the kernel."""
         with self._lock:
-            self._left_behind = [child for child in self._left_behind if child.poll() is None]
+            self._reap()
             return len(self._left_behind)
 
-    def run(self, argv: Sequence[str], *, timeout: float) -> Answer:
+    def run(self, argv: Sequence[str], *, timeout: float, owner: str = "") -> Answer:
         """Run a command without a shell, in the C locale, with nothing on its standard input.
 
         Args:
             argv: the command, a path or a name on PATH, and its arguments.
             timeout: seconds after which it is killed with all that it started.
+            owner: for whom it runs, say the drive; where a child of this owner is still held by the kernel,
+                nothing is run.
 
         Returns:
             What became of it; this never raises for the command's sake and returns within the time-out, the
             grace and a little.
         """
-        _ = self.abandoned  # takes up those whom the kernel has let go of since
         deadline = time.monotonic() + timeout
         with self._lock:
             if self._stopped:
                 return Answer(ending=Ending.STOPPED)
+            self._reap()
+            if any(owner and owner == held for held, _child in self._left_behind):
+                return Answer(ending=Ending.HELD)
             try:
                 child = subprocess.Popen(
                     list(argv),
@@ -111,7 +116,7 @@ class Door:
                 return _not_started(error)
             self._running.add(child)
         try:
-            return self._hear(child, deadline)
+            return self._hear(child, deadline, owner)
         finally:
             with self._lock:
                 self._running.discard(child)
@@ -124,7 +129,11 @@ class Door:
                 if child.poll() is None:
                     _kill(child)
 
-    def _hear(self, child: subprocess.Popen[bytes], deadline: float) -> Answer:
+    def _reap(self) -> None:
+        """Take up those whom the kernel has let go of; the lock is held."""
+        self._left_behind = [(owner, child) for owner, child in self._left_behind if child.poll() is None]
+
+    def _hear(self, child: subprocess.Popen[bytes], deadline: float, owner: str) -> Answer:
         """Take up a child's output and its end, and see to it that there is one."""
         pipes = [pipe for pipe in (child.stdout, child.stderr) if pipe is not None]
         out, err = heard = (bytearray(), bytearray())
@@ -136,21 +145,21 @@ class Door:
             except subprocess.TimeoutExpired:
                 ending = Ending.TIMED_OUT
         if ending is not Ending.ENDED:
-            self._put_down(child)
+            self._put_down(child, owner)
         for pipe in pipes:
             pipe.close()
         if self._stopped and (status is None or status < 0):
             ending, status = Ending.STOPPED, None
         return Answer(ending=ending, status=status, out=bytes(out), err=bytes(err))
 
-    def _put_down(self, child: subprocess.Popen[bytes]) -> None:
+    def _put_down(self, child: subprocess.Popen[bytes], owner: str) -> None:
         """Kill a child and all that it started; leave it behind where even that does not end it."""
         _kill(child)
         try:
             child.wait(self._grace)
         except subprocess.TimeoutExpired:
             with self._lock:
-                self._left_behind.append(child)
+                self._left_behind.append((owner, child))
 
 
 def _listen(pipes: Sequence[IO[bytes]], heard: Sequence[bytearray], deadline: float, limit: int) -> Ending:

@@ -92,6 +92,12 @@ def of_command(answer: Answer, *, command: str, name: str, timeout: float) -> Ve
             explanation=f"{name}: gave no answer in {timeout:g} s and was given up for this round; a drive "
             "that does so often, or a cable or adapter before it, may be failing",
         )
+    if answer.ending is Ending.HELD:
+        return Verdict(
+            outcome=Outcome.TIMED_OUT,
+            explanation=f"{name}: an earlier question to it is still stuck in the kernel, so it was not asked "
+            "again; the drive, or a cable or adapter before it, may be failing",
+        )
     if answer.ending is Ending.STOPPED:
         return Verdict(
             outcome=Outcome.TIMED_OUT, explanation=f"{name}: the watch was ended before the drive had answered"

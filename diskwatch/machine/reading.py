@@ -11,6 +11,7 @@ from diskwatch.machine.selftests import newest_result, self_tests
 from diskwatch.machine.text import Sheet
 from diskwatch.machine.told import drive_of, family_of, is_flash
 from diskwatch.records import Drive, Reading, SignalKind, Value
+from diskwatch.units import plain
 
 
 class Support(Enum):
@@ -71,7 +72,7 @@ def understood(lines: Sequence[str], document: Document | None, *, type_: str | 
     newest = newest_result(tests)
     words = (
         *_assessment(family, document, sheet),
-        *([_word("self-test", newest, "self-test log")] if newest else []),
+        *([_word("self-test", plain(newest), "self-test log")] if newest else []),
     )
     return Understood(
         drive=drive,

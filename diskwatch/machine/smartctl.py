@@ -142,7 +142,8 @@ class Smartctl:
         """Run smartctl in the best way that it knows; learn where it knows less than was thought."""
         knows = self._knows
         while True:
-            answer = self._door.run(self._argv(node, type_, knows), timeout=self._timeout)
+            owner = f"{node} {type_ or ''}"
+            answer = self._door.run(self._argv(node, type_, knows), timeout=self._timeout, owner=owner)
             complaint = _complaint(answer)
             lesser = _lesser(knows, complaint) if complaint is not None else None
             if complaint is None:

@@ -22,6 +22,9 @@ _VIRTUAL = re.compile(
 )
 """How virtual machines and controllers name the disks that they make up (practice)."""
 
+_LONGEST = 120
+"""Letters: ATA and NVMe have room for 40, SCSI for fewer; nothing longer is a name."""
+
 _RANK = (Kind.VIRTUAL, Kind.NVME, Kind.USB)
 
 
@@ -146,7 +149,7 @@ def _merged_kind(found: Drive, told: Drive) -> Kind:
 def _name(text: str | None) -> str | None:
     """A name without outer blanks; None where it is empty or holds what no name holds."""
     stripped = (text or "").strip(" \0")
-    return stripped if stripped and stripped.isprintable() else None
+    return stripped if stripped.isprintable() and 0 < len(stripped) <= _LONGEST else None
 
 
 def _model(family: Family, document: Document | None, sheet: Sheet) -> str | None:

@@ -81,13 +81,16 @@ def test_a_child_that_even_sigkill_does_not_end_is_left_behind_and_counted_until
     tool = script(tmp_path, "exec sleep 1.2")
     door = Door(grace=0.1)
     begun = time.monotonic()
-    assert door.run([tool], timeout=0.2).ending is Ending.TIMED_OUT
+    assert door.run([tool], timeout=0.2, owner="this drive").ending is Ending.TIMED_OUT
     assert time.monotonic() - begun < 1.0
     assert door.abandoned == 1
+    assert door.run([tool], timeout=0.2, owner="this drive").ending is Ending.HELD
+    assert door.run([script(tmp_path, "exit 0", "other")], timeout=5, owner="another").status == 0
     deadline = time.monotonic() + 10
     while door.abandoned and time.monotonic() < deadline:
         time.sleep(0.05)
     assert door.abandoned == 0
+    assert door.run([script(tmp_path, "exit 0", "again")], timeout=5, owner="this drive").status == 0
 
 
 def test_a_missing_command_is_told_from_one_that_may_not_be_run_and_from_one_that_fails(tmp_path: Path):

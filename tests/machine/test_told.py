@@ -56,6 +56,11 @@ def test_a_serial_is_kept_as_it_stands_but_for_outer_blanks(text: str):
     assert serial_of(text) == text.strip()
 
 
+def test_a_name_longer_than_any_drive_has_room_for_is_none():
+    assert serial_of("AB" * 60) is not None
+    assert serial_of("AB" * 61) is None
+
+
 @given(st.text(max_size=30))
 def test_a_serial_never_holds_what_a_terminal_might_act_on(text: str):
     found = serial_of(text)
