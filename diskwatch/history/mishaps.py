@@ -36,10 +36,13 @@ _WORDS: dict[int, tuple[str, str | None]] = {
         "look at that disk first",
     ),
 }
+_READ_ONLY_SYSTEM = (
+    "cannot be written: its file system is mounted read-only",
+    "find out why, for a disk in trouble is mounted so too, or name another folder with --state",
+)
 _ERRNO_CODES = {
     errno.ENOSPC: sqlite3.SQLITE_FULL,
     errno.EDQUOT: sqlite3.SQLITE_FULL,
-    errno.EROFS: sqlite3.SQLITE_READONLY,
     errno.EACCES: sqlite3.SQLITE_CANTOPEN,
     errno.EPERM: sqlite3.SQLITE_CANTOPEN,
     errno.EIO: sqlite3.SQLITE_IOERR,
@@ -60,6 +63,8 @@ def told(error: sqlite3.Error | OSError, path: Path | None) -> HistoryError:
         path: the file or folder that was being used; None for a history in memory.
     """
     name = "the history in memory" if path is None else plain(str(path))
+    if isinstance(error, OSError) and error.errno == errno.EROFS:
+        return HistoryError(f"{name} {_READ_ONLY_SYSTEM[0]}", hint=_READ_ONLY_SYSTEM[1])
     code = _ERRNO_CODES.get(error.errno or 0) if isinstance(error, OSError) else primary(error)
     if code in _WORDS:
         what, hint = _WORDS[code]
@@ -72,6 +77,14 @@ def no_database(path: Path) -> HistoryError:
     """The error for a file that is not even the beginning of a database."""
     what, hint = _WORDS[sqlite3.SQLITE_NOTADB]
     return HistoryError(f"{plain(str(path))} {what}", hint=hint)
+
+
+def taken_away(path: Path) -> HistoryError:
+    """The error for a file that was moved, deleted or replaced while it was being written."""
+    return HistoryError(
+        f"{plain(str(path))} was moved or deleted while it was being written; nothing more goes into it",
+        hint="start the watch again: it takes up what is there then, or begins anew",
+    )
 
 
 def unreadable(path: Path | None) -> HistoryError:

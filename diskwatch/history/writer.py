@@ -12,7 +12,7 @@ from diskwatch.history import packing, rows
 from diskwatch.history.bays import standing_calls
 from diskwatch.history.library import Database
 from diskwatch.history.lock import WatchLock
-from diskwatch.history.mishaps import told, unreadable
+from diskwatch.history.mishaps import taken_away, told, unreadable
 from diskwatch.history.opening import BUSY_MS, refuse_foreign
 from diskwatch.history.round import write_entries, write_place, write_round
 from diskwatch.history.schema import bring_up_to_date
@@ -32,6 +32,7 @@ class History:
     def __init__(self, db: Database, path: Path | None, lock: WatchLock | None) -> None:
         self._db = db
         self._path = path
+        self._file = None if path is None else _identity(path)
         self._lock = lock
         self._turn = threading.RLock()
 
@@ -171,11 +172,22 @@ class History:
     @contextmanager
     def _writing(self) -> Iterator[sqlite3.Connection]:
         with self._turn:
+            # SQLite goes on writing into a file that has lost its name, and all of it would be lost in silence.
+            if self._path is not None and _identity(self._path) != self._file:
+                raise taken_away(self._path)
             try:
                 with self._db.atomic():
                     yield self._db.conn
             except sqlite3.Error as error:
                 raise told(error, self._path) from error
+
+
+def _identity(path: Path) -> tuple[int, int] | None:
+    try:
+        about = path.stat()
+    except OSError:
+        return None
+    return about.st_dev, about.st_ino
 
 
 def _make_folder(folder: Path) -> None:

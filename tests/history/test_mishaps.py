@@ -5,7 +5,7 @@ from pathlib import Path
 
 import pytest
 
-from diskwatch.history.mishaps import no_database, primary, told, unreadable
+from diskwatch.history.mishaps import no_database, primary, taken_away, told, unreadable
 
 PATH = Path("/invented/history.db")
 
@@ -41,7 +41,7 @@ def test_each_failure_of_sqlite_is_told_in_our_words_with_the_file(code, says):
     ("number", "says"),
     [
         (errno.ENOSPC, "disk that holds it is full"),
-        (errno.EROFS, "read-only"),
+        (errno.EROFS, "mounted read-only"),
         (errno.EACCES, "cannot be opened"),
         (errno.EIO, "reports an error"),
     ],
@@ -71,3 +71,4 @@ def test_a_path_cannot_write_to_the_terminal():
     assert "\x1b" not in str(told(_raised(sqlite3.SQLITE_FULL), Path("/in\x1b[2Jvented")))
     assert "\x1b" not in str(unreadable(Path("/in\x1b[2Jvented")))
     assert "\x1b" not in str(no_database(Path("/in\x1b[2Jvented")))
+    assert "\x1b" not in str(taken_away(Path("/in\x1b[2Jvented")))

@@ -249,6 +249,23 @@ def test_a_full_disk_is_said_and_what_was_stored_before_is_kept(folder):
     assert _integrity(folder / HISTORY) == [("ok",)]
 
 
+@pytest.mark.parametrize("back", [False, True])
+def test_a_history_that_is_taken_away_is_noticed_before_anything_is_reported_as_stored(folder, back):
+    with History.open(folder) as history:
+        known = history.admit(a_drive(), a_place(), NOON)
+        path = folder / HISTORY
+        path.rename(folder / "aside")
+        if back:
+            path.touch()
+        with pytest.raises(HistoryError, match=r"history\.db was moved or deleted"):
+            history.record(a_round(a_part(known)))
+        path.unlink(missing_ok=True)
+        (folder / "aside").rename(path)
+        history.record(a_round(a_part(known)))
+    with Past.open(folder) as past:
+        assert len(past.passes(known.number)) == 1
+
+
 def test_a_history_that_another_process_writes_is_held_and_its_number_named(folder):
     program = (
         "import sys; from pathlib import Path; from diskwatch.history.writer import History;"
