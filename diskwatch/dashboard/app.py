@@ -225,7 +225,7 @@ class Dashboard(App[None]):
         return notes(self._troubles(), width, self._face, most=max(self.size.height // _ROWS_A_NOTE, 1))
 
     def _blank(self, width: int) -> tuple[Text, ...]:
-        told = instead_of_bands(self.snapshot)
+        told = instead_of_bands(self.snapshot, self._watching)
         if told is None:
             return ()
         return (Text(), *(Text(f"   {line}") for line in wrap(told, max(width - 6, 10))))

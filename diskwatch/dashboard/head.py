@@ -102,8 +102,13 @@ def troubles(snapshot: Snapshot | None, now: int, every: int, *, waited: int = 0
     return (*told, *(plain(trouble) for trouble in bays.trouble))
 
 
-def instead_of_bands(snapshot: Snapshot | None) -> str | None:
-    """Why there are no bands, and what to do, to stand in their place; None where there are some."""
+def instead_of_bands(snapshot: Snapshot | None, watching: str) -> str | None:
+    """Why there are no bands, and what to do, to stand in their place; None where there are some.
+
+    Args:
+        snapshot: what is known; None before the first answer.
+        watching: how this screen was opened, one sentence.
+    """
     if snapshot is None:
         return "Asking the history for the drives."
     bays = snapshot.bays
@@ -115,8 +120,9 @@ def instead_of_bands(snapshot: Snapshot | None) -> str | None:
         return f"No drive has been read yet, because of this: {' '.join(plain(text) for text in bays.trouble)}"
     if bays.watcher is None:
         return (
-            "No drive has been read yet, because nobody is watching. Run diskwatch watch --once to read all "
-            "drives once, or diskwatch watch to go on watching; most machines let only root read drives."
+            f"No drive has been read yet, because nobody is watching so far. This screen: {plain(watching)}. "
+            "If nothing comes, run diskwatch watch --once to read all drives once, or diskwatch watch to go on "
+            "watching; most machines let only root read drives."
         )
     return (
         f"No drive has been read yet, because process {bays.watcher} has not ended its first pass. "

@@ -8,6 +8,7 @@ from rich.cells import cell_len
 from diskwatch.records import CallWord, DriveLine, Kind, Mount, Outcome
 from diskwatch.units import plain, say_bytes
 
+_DEVICES = "/dev/"
 _KINDS = {
     Kind.VIRTUAL: "virtual",
     Kind.NVME: "NVMe",
@@ -20,11 +21,10 @@ _KINDS = {
 
 def name(line: DriveLine, *, roomy: bool = False) -> str:
     """The owner's name for the drive, else its model, else its device; roomy: the model beside the label."""
-    model = plain(line.drive.identity.model or "")
-    label = plain(line.label or "")
-    if label and model and roomy:
-        return f"{label} ({model})"
-    return label or model or device(line)
+    model = line.drive.identity.model
+    if roomy and line.label and model:
+        return plain(f"{line.label} ({model})")
+    return plain(line.name).removeprefix(_DEVICES)
 
 
 def kind(line: DriveLine) -> str:
@@ -34,7 +34,7 @@ def kind(line: DriveLine) -> str:
 
 def device(line: DriveLine) -> str:
     """How it is addressed, without the folder that all device nodes are in."""
-    return plain(line.place.device).removeprefix("/dev/")
+    return plain(line.place.device).removeprefix(_DEVICES)
 
 
 def holdings(line: DriveLine, width: int, *, roomy: bool = False) -> str:

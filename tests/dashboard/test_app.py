@@ -137,7 +137,8 @@ async def test_an_empty_history_says_why_and_what_to_do():
     async with app.run_test(size=(80, 24)) as pilot:
         await settled(pilot)
         text = " ".join(text_of(app).split())
-        assert "No drive has been read yet, because nobody is watching. Run diskwatch watch --once" in text
+        assert "No drive has been read yet, because nobody is watching so far." in text
+        assert "This screen: watching from here. If nothing comes, run diskwatch watch --once" in text
 
 
 async def test_a_source_that_fails_at_once_leaves_a_screen_that_says_so():

@@ -113,32 +113,34 @@ def test_troubles_beyond_the_room_are_counted():
 
 
 def test_an_empty_history_says_why_and_what_to_do():
-    told = instead_of_bands(known(watcher=None))
+    told = instead_of_bands(known(watcher=None), "nobody is watching")
     assert told is not None
-    assert told.startswith("No drive has been read yet, because nobody is watching.")
-    assert "Run diskwatch watch --once" in told
+    assert told.startswith(
+        "No drive has been read yet, because nobody is watching so far. This screen: nobody is watching."
+    )
+    assert "run diskwatch watch --once" in told
 
 
 def test_a_first_pass_under_way_asks_for_patience():
-    told = instead_of_bands(known())
+    told = instead_of_bands(known(), "w")
     assert told is not None
     assert "because process 1234 has not ended its first pass" in told
     assert "Wait a minute" in told
 
 
 def test_a_trouble_explains_an_empty_history():
-    told = instead_of_bands(known(trouble=("smartctl was not found; install it.",)))
+    told = instead_of_bands(known(trouble=("smartctl was not found; install it.",)), "w")
     assert told == "No drive has been read yet, because of this: smartctl was not found; install it."
 
 
 def test_a_history_that_cannot_be_read_is_named_where_the_drives_would_be():
     snapshot = Snapshot(bays=None, error="history.db: permission denied")
-    assert instead_of_bands(snapshot) == "The drives cannot be shown: history.db: permission denied"
+    assert instead_of_bands(snapshot, "w") == "The drives cannot be shown: history.db: permission denied"
     assert tells_trouble(snapshot)
 
 
 def test_where_drives_stand_nothing_stands_instead():
-    assert instead_of_bands(known(RETIRE)) is None
+    assert instead_of_bands(known(RETIRE), "w") is None
     assert not tells_trouble(known(RETIRE))
 
 
