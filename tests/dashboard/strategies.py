@@ -2,7 +2,7 @@
 
 from typing import TypeVar
 
-from hypothesis import strategies as st
+from hypothesis import settings, strategies as st
 
 from diskwatch.records import (
     Call,
@@ -23,6 +23,9 @@ from diskwatch.records import (
 )
 
 T = TypeVar("T")
+
+# How long one example takes says something about the machine under test, nothing about the law.
+unhurried = settings(deadline=None)
 
 # Years 1970 to 9999: what a date can tell.
 TIMES = st.integers(0, 253_402_000_000)

@@ -8,7 +8,7 @@ from diskwatch.dashboard.band import band, is_quiet
 from diskwatch.dashboard.weight import Face
 from diskwatch.records import DriveLine, LastPass, Outcome
 from tests.dashboard.drives import ALL, COPY, KEEP, LOOK, NOW, RETIRE, UNREAD, VIRTUAL
-from tests.dashboard.strategies import DRIVE_LINES, TIMES, WIDTHS
+from tests.dashboard.strategies import DRIVE_LINES, TIMES, WIDTHS, unhurried
 
 
 def plain(line: DriveLine, width: int, face: Face | None = None, *, chosen: bool = False) -> list[str]:
@@ -133,6 +133,7 @@ def test_wide_letters_are_counted_as_two_columns():
         assert band(line, NOW, width, Face())[0].cell_len <= width
 
 
+@unhurried
 @given(DRIVE_LINES, TIMES, WIDTHS)
 def test_any_drive_fits_any_width_without_a_control_character(line, now, width):
     for face in (Face(), Face(ascii_only=True, colours=False)):

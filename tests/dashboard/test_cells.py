@@ -3,6 +3,7 @@ from rich.cells import cell_len
 from rich.text import Text
 
 from diskwatch.dashboard.cells import column, cut, ends, fit, wrap
+from tests.dashboard.strategies import unhurried
 
 
 def test_what_fits_is_left_alone():
@@ -52,6 +53,7 @@ def test_a_word_too_long_for_a_line_is_broken():
     assert wrap("a 123456789 b", 4) == ["a", "1234", "5678", "9 b"]
 
 
+@unhurried
 @given(st.text(), st.integers(0, 60))
 def test_nothing_is_wider_than_it_may_be(text, width):
     assert cell_len(cut(text, width, "…")) <= width
@@ -59,6 +61,7 @@ def test_nothing_is_wider_than_it_may_be(text, width):
     assert cell_len(column(text, width, "…")) <= width
 
 
+@unhurried
 @given(st.text(), st.integers(2, 60))
 def test_wrapping_loses_no_word_and_keeps_the_width(text, width):
     lines = wrap(text, width)

@@ -18,6 +18,7 @@ from diskwatch.dashboard.head import (
 from diskwatch.dashboard.weight import Face
 from diskwatch.records import DriveLine, LastPass, Outcome
 from tests.dashboard.drives import COPY, KEEP, NOW, RETIRE, TWELVE_MINUTES_AGO, bays
+from tests.dashboard.strategies import unhurried
 
 HALF_AN_HOUR = 1_800
 
@@ -153,6 +154,7 @@ def test_troubles_from_outside_are_made_harmless():
     assert troubles(known(KEEP, trouble=("\x1b[2J",)), NOW, HALF_AN_HOUR) == ("\\x1b[2J",)
 
 
+@unhurried
 @given(st.text(max_size=80), st.integers(1, 200), st.booleans())
 def test_no_head_is_wider_than_the_screen(text, width, nobody):
     snapshot = known(KEEP, watcher=None if nobody else 4_194_304)

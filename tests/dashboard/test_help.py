@@ -4,6 +4,7 @@ from diskwatch.dashboard.help import help_lines
 from diskwatch.dashboard.keys import DEEDS, MOVES
 from diskwatch.dashboard.weight import Face
 from diskwatch.records import CallWord
+from tests.dashboard.strategies import unhurried
 
 
 def page(width: int = 80, troubles: tuple[str, ...] = (), face: Face | None = None) -> str:
@@ -52,6 +53,7 @@ def test_the_page_can_be_ascii():
     assert page(face=Face(ascii_only=True)).isascii()
 
 
+@unhurried
 @given(st.integers(12, 200), st.text(max_size=200))
 def test_no_line_is_wider_than_the_screen(width, trouble):
     assert all(row.cell_len <= width for row in help_lines("w", (trouble,), width, Face()))

@@ -2,6 +2,7 @@ from hypothesis import given, strategies as st
 
 from diskwatch.dashboard.keys import DEEDS, MOVES, keys_line
 from diskwatch.dashboard.weight import Face
+from tests.dashboard.strategies import unhurried
 
 
 def test_at_eighty_columns_every_key_and_deed_is_told():
@@ -35,6 +36,7 @@ def test_no_key_does_two_things():
     assert len(names) == len(set(names))
 
 
+@unhurried
 @given(st.integers(1, 200))
 def test_the_line_is_never_wider_than_the_screen(width):
     assert keys_line(width, Face()).cell_len <= width

@@ -7,7 +7,7 @@ from diskwatch.dashboard.unfold import unfolded
 from diskwatch.dashboard.weight import Face
 from diskwatch.records import CallWord, DriveLine, LastPass, Outcome
 from tests.dashboard.drives import COPY, KEEP, NOW, RETIRE, UNREAD, called
-from tests.dashboard.strategies import DRIVE_LINES, TIMES, WIDTHS
+from tests.dashboard.strategies import DRIVE_LINES, TIMES, WIDTHS, unhurried
 
 
 def whole(line: DriveLine, width: int = 80) -> str:
@@ -72,6 +72,7 @@ def test_a_drive_never_asked_says_since_when_it_is_known():
     assert "Never asked; first seen 2026-09-02" in whole(replace(UNREAD, last_pass=None))
 
 
+@unhurried
 @given(DRIVE_LINES, TIMES, WIDTHS)
 def test_any_drive_unfolds_within_any_width_without_a_control_character(line, now, width):
     for row in unfolded(line, now, width, Face()):
