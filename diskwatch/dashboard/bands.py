@@ -5,7 +5,7 @@ from textual import events
 from textual.containers import VerticalScroll
 
 from diskwatch.dashboard.band import band
-from diskwatch.dashboard.lines import Lines
+from diskwatch.dashboard.lines import Build, Lines
 from diskwatch.dashboard.scroll import with_plain_thumb
 from diskwatch.dashboard.unfold import unfolded
 from diskwatch.dashboard.weight import Face
@@ -19,9 +19,9 @@ class Band(Lines):
     Band.chosen { background: $boost; }
     """
 
-    def __init__(self, place: int) -> None:
+    def __init__(self, place: int, build: Build) -> None:
         """Make the band that stands at a place in the list, counted from 0."""
-        super().__init__(_nothing)
+        super().__init__(build)
         self.place = place
 
     def on_click(self, event: events.Click) -> None:
@@ -68,9 +68,11 @@ class Bands(VerticalScroll, can_focus=False):
         bands = list(self.query_children(Band))
         for surplus in bands[len(drives) :]:
             surplus.remove()
-        fresh = [Band(place) for place in range(len(bands), len(drives))]
+        for widget in bands[: len(drives)]:
+            widget.show(self._builder(widget.place))
+        fresh = [Band(place, self._builder(place)) for place in range(len(bands), len(drives))]
         for widget in [*bands[: len(drives)], *fresh]:
-            self._fill(widget)
+            widget.set_class(widget.place == self._place, "chosen")
         # Before the mounting, so that no frame is drawn in the other spacing.
         self._spread()
         if fresh:
@@ -125,11 +127,9 @@ class Bands(VerticalScroll, can_focus=False):
         self.show(self._drives, self._now)
         self._reveal()
 
-    def _fill(self, widget: Band) -> None:
-        line = self._drives[widget.place]
-        chosen = widget.place == self._place
-        widget.set_class(chosen, "chosen")
-        widget.show(lambda width: self._lines(line, width, chosen=chosen))
+    def _builder(self, place: int) -> Build:
+        line, chosen = self._drives[place], place == self._place
+        return lambda width: self._lines(line, width, chosen=chosen)
 
     def _lines(self, line: DriveLine, width: int, *, chosen: bool) -> tuple[Text, ...]:
         lines = band(line, self._now, width, self._face, chosen=chosen)
@@ -148,7 +148,3 @@ class Bands(VerticalScroll, can_focus=False):
         for widget in self.query_children(Band):
             if widget.place == self._place:
                 self.scroll_to_widget(widget, animate=False)
-
-
-def _nothing(_width: int) -> tuple[Text, ...]:
-    return ()

@@ -47,10 +47,7 @@ def ends(left: Text, right: Text, width: int) -> Text:
 def fit(line: Text, width: int) -> Text:
     """The same line, no wider than ``width``, whatever its letters do to each other."""
     if cell_len(line.plain) > width:
-        kept = set_cell_size(line.plain, width).rstrip()
-        line = line[: len(kept)]
-        while cell_len(line.plain) > width:
-            line = line[:-1]
+        line = line[: len(set_cell_size(line.plain, width).rstrip())]
     return line
 
 

@@ -265,6 +265,18 @@ async def test_quitting_works_from_the_help_page_too():
         assert not app.is_running
 
 
+async def test_help_on_a_tiny_screen_still_shows_the_way_back():
+    app = Stage(bays(*ALL)).dashboard()
+    async with app.run_test(size=(40, 10)) as pilot:
+        await settled(pilot)
+        await pilot.press("question_mark")
+        await pilot.pause()
+        assert rows_of(app)[-1] == "? Esc back  q quit"
+        await pilot.press("escape")
+        await pilot.pause()
+        assert rows_of(app)[1].startswith("█> retire")
+
+
 async def test_a_click_on_a_deed_does_it():
     app = Stage(bays(*ALL)).dashboard()
     async with app.run_test(size=(80, 24)) as pilot:

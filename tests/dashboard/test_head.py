@@ -100,6 +100,10 @@ def test_troubles_are_told_gravest_first():
     assert told[1] == "Not up to date: the history is gone"
 
 
+def test_a_history_never_read_is_a_trouble_too():
+    assert troubles(Snapshot(bays=None, error="gone"), NOW, HALF_AN_HOUR) == ("Not up to date: gone",)
+
+
 def test_a_short_wait_is_no_trouble():
     assert troubles(None, NOW, HALF_AN_HOUR, waited=5) == ()
     assert len(troubles(None, NOW, HALF_AN_HOUR, waited=6)) == 1
