@@ -51,6 +51,21 @@ def text_or_none(words: str | None) -> str | None:
     return None if words is None else text(words)
 
 
+def name_cell(name: str | None) -> str | bytes | None:
+    """A name that tells drives apart, kept to the letter: as bytes where UTF-8 cannot carry it.
+
+    Were it changed on the way, its drive would be met as a new one at every start.
+    """
+    if name is None or text(name) == name:
+        return name
+    return name.encode("utf-8", "surrogatepass")
+
+
+def name(kept: str | bytes | None) -> str | None:
+    """The name that `name_cell` was given."""
+    return kept.decode("utf-8", "surrogatepass") if isinstance(kept, bytes) else kept
+
+
 def cell(value: int | str | None) -> int | str | bytes | None:
     """A value as its column keeps it; a number beyond 63 bits as its decimal digits in a BLOB."""
     if isinstance(value, str):
@@ -95,10 +110,10 @@ def drive_row(drive: Drive, place: Place) -> tuple[Cell, ...]:
     """``wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm, device, bay, lives_here``."""
     who = drive.identity
     return (
-        text_or_none(who.wwn),
-        text_or_none(who.model),
-        text_or_none(who.serial),
-        text(who.path),
+        name_cell(who.wwn),
+        name_cell(who.model),
+        name_cell(who.serial),
+        name_cell(who.path),
         drive.kind.value,
         text_or_none(drive.firmware),
         cell(drive.capacity_bytes),
@@ -115,7 +130,7 @@ def known_drive(row: Row) -> KnownDrive:
     return KnownDrive(
         number=number,
         drive=Drive(
-            identity=Identity(wwn=wwn, model=model, serial=serial, path=path),
+            identity=Identity(wwn=name(wwn), model=name(model), serial=name(serial), path=name(path) or ""),
             kind=Kind(kind),
             firmware=firmware,
             capacity_bytes=_number(capacity),

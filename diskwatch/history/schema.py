@@ -11,7 +11,8 @@ must be answered quickly.
 * ``latest`` holds what every signal is now; no question about now walks through the past.
 * Explanations of passes repeat for months: each stands once in ``sentence``.
 * Whole numbers of up to 63 bits are INTEGER. NVMe counters have 128 bits; what is larger is kept as its decimal
-  digits in a BLOB, which tells it from a word by its type alone. Hence the columns of type ANY.
+  digits in a BLOB, which tells it from a word by its type alone. Names that UTF-8 cannot carry are kept as
+  bytes likewise. Hence the columns of type ANY.
 * Times are UTC seconds since 1970, days count from 1970-01-01.
 """
 
@@ -31,10 +32,10 @@ _BASE = (
     """
     CREATE TABLE drive (
         number INTEGER PRIMARY KEY AUTOINCREMENT,
-        wwn TEXT,
-        model TEXT,
-        serial TEXT,
-        path TEXT NOT NULL,
+        wwn ANY,
+        model ANY,
+        serial ANY,
+        path ANY NOT NULL,
         kind TEXT NOT NULL,
         firmware TEXT,
         capacity_bytes ANY,

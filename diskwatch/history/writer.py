@@ -176,6 +176,8 @@ class History:
             if self._path is not None and _identity(self._path) != self._file:
                 raise taken_away(self._path)
             try:
+                # What a failure left open, where even undoing it failed, must not swallow what comes now.
+                self._db.rollback()
                 with self._db.atomic():
                     yield self._db.conn
             except sqlite3.Error as error:

@@ -49,8 +49,11 @@ plain_json = st.dictionaries(
     max_size=3,
 )
 
-identities = st.builds(Identity, wwn=maybe_words, model=maybe_words, serial=maybe_words, path=words)
-mounts = st.builds(Mount, point=st.text(max_size=8), used_bytes=st.none() | vast, total_bytes=st.none() | vast)
+# What tells drives apart must come back to the letter, also where it is no proper text.
+names = st.text(st.characters(), max_size=12)
+maybe_names = st.none() | names
+identities = st.builds(Identity, wwn=maybe_names, model=maybe_names, serial=maybe_names, path=names)
+mounts = st.builds(Mount, point=names, used_bytes=st.none() | vast, total_bytes=st.none() | vast)
 drives = st.builds(
     Drive,
     identity=identities,

@@ -157,13 +157,14 @@ def test_a_history_in_memory_does_the_same_without_any_file(history):
 
 
 class _Rigged(sqlite3.Connection):
-    """A connection whose statement number ``fails_at`` fails, and none after it."""
+    """A connection whose statement number ``fails_at`` fails; with ``fails_on`` all after it too."""
 
     fails_at = 0
+    fails_on = False
 
     def _count(self) -> None:
         self.fails_at -= 1
-        if self.fails_at == 0:
+        if self.fails_at == 0 or (self.fails_on and self.fails_at < 0):
             raise sqlite3.OperationalError("rigged")
 
     def execute(self, *arguments):
@@ -211,6 +212,22 @@ def test_whichever_statement_of_a_round_fails_all_of_it_is_stored_or_nothing(rig
             line for line in after if "_sqlite_migrations" not in line
         ]
     assert connection.execute("PRAGMA integrity_check").fetchall() == [("ok",)]
+
+
+def test_what_a_failure_left_open_does_not_swallow_the_next_round(rigged):
+    """From the n-th statement on all fail, the undoing too, until the trouble is over."""
+    known = rigged.admit(a_drive(), a_place(), NOON)
+    connection = rigged._db.conn
+    for number, fails_at in enumerate((2, 6, 12, 20)):
+        before = rigged._db.execute("SELECT count(*) FROM pass").fetchone()
+        connection.fails_at, connection.fails_on = fails_at, True
+        with pytest.raises(HistoryError, match="rigged"):
+            rigged.record(full_round(known, NOON + DAY, 99))
+        connection.fails_at, connection.fails_on = 0, False
+        rigged.record(full_round(known, NOON + number, number))
+        with closing(sqlite3.connect(rigged._path)) as other:
+            assert other.execute("SELECT count(*) FROM pass").fetchone()[0] == before[0] + 1
+            assert other.execute("SELECT max(at) FROM pass").fetchone() == (NOON + number,)
 
 
 def test_whichever_statement_of_the_first_start_fails_the_next_start_succeeds(folder):
