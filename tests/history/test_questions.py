@@ -3,6 +3,7 @@ from collections.abc import Collection
 from typing import Any
 
 import pytest
+from hypothesis import given, settings, strategies as st
 
 from diskwatch.history import bays, questions
 from diskwatch.history.round import file_past_days
@@ -129,6 +130,38 @@ def test_a_series_joins_what_was_filed_with_what_is_fresh(history, known, connec
         (NOON + step * DAY // 2, value) for step, value in [(0, 1), (2, 2), (3, None), (4, "odd"), (5, 2**100)]
     )
     assert questions.series(connection, known.number, "pending-sectors", None) == whole
+
+
+@given(
+    st.lists(
+        st.tuples(st.integers(1, DAY), st.none() | st.integers(0, 2) | st.sampled_from(["2", "odd"])),
+        max_size=12,
+    ),
+    st.integers(0, 12),
+)
+@settings(max_examples=40)
+def test_whatever_was_read_when_the_series_says_what_held_at_every_time(readings, asked_from):
+    """Against the plainest model: the value that the last pass up to a time brought."""
+    with History.in_memory() as history:
+        known = history.admit(a_drive(), a_place(), NOON)
+        at, brought = NOON, []
+        for step, value in readings:
+            at += step
+            brought.append((at, value))
+            _read(history, known, at, a_value(value=value, reason="Not printed." if value is None else None))
+        since = brought[min(asked_from, len(brought) - 1)][0] if brought else None
+        found = questions.series(history._db.conn, known.number, "pending-sectors", since)
+        if since is not None:
+            (line,) = bays.drive_lines(history._db.conn)
+            assert line.signals[0].value == brought[-1][1]
+            assert found[-1] == (line.signals[0].since, line.signals[0].value)
+    changes = [
+        one
+        for one, before in zip(brought, [None, *brought], strict=False)
+        if before is None or one[1] != before[1]
+    ]
+    held = [one for one in changes if since is None or one[0] <= since][-1:]
+    assert list(found) == held + [one for one in changes if since is not None and one[0] > since]
 
 
 def test_a_series_from_a_time_begins_with_the_value_that_held_then(history, known, connection):
