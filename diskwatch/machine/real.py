@@ -1,0 +1,147 @@
+"""This computer, joined from its parts: the kernel's files, its counters, and smartctl."""
+
+import time
+from collections.abc import Callable, Mapping
+from dataclasses import replace
+from pathlib import Path
+
+from diskwatch.machine import counters
+from diskwatch.machine.blocks import physical_drives
+from diskwatch.machine.choice import asked
+from diskwatch.machine.disks import asleep
+from diskwatch.machine.kernel_files import names_in, text_of
+from diskwatch.machine.mounts import living_on, measured, mount_lines
+from diskwatch.machine.protocol import Counted, Found, Survey
+from diskwatch.machine.smartctl import Smartctl
+from diskwatch.machine.stacks import stack_on
+from diskwatch.machine.survey import joined
+from diskwatch.records import Drive, Kind, Outcome, Pass
+from diskwatch.units import plain
+
+
+def _wall_clock() -> int:
+    return int(time.time())
+
+
+class RealMachine:
+    """The computer that this program runs on; see `diskwatch.machine.protocol.Machine`.
+
+    It remembers, while a device's instance lasts, what a drive said of itself: behind a USB bridge the kernel
+    alone knows another name, or none, and a drive that has fallen asleep must not become a new one.
+    """
+
+    def __init__(
+        self,
+        *,
+        command: str = "smartctl",
+        timeout: float = 60.0,
+        only: tuple[str, ...] = (),
+        ignore: tuple[str, ...] = (),
+        sys_root: Path = Path("/sys"),
+        proc_root: Path = Path("/proc"),
+        dev_root: Path = Path("/dev"),
+        now: Callable[[], int] = _wall_clock,
+    ) -> None:
+        """Nothing is read yet.
+
+        Args:
+            command: the smartctl command, a path or a name on PATH.
+            timeout: seconds that one drive may take to answer.
+            only: watch these and no others; a serial, world-wide name or device each; none means all.
+            ignore: leave these alone.
+            sys_root: where sysfs is mounted.
+            proc_root: where procfs is mounted.
+            dev_root: where device nodes are.
+            now: UTC seconds since 1970.
+        """
+        self._smartctl = Smartctl(command, timeout, now)
+        self._only, self._ignore = only, ignore
+        self._sys, self._proc, self._dev = sys_root, proc_root, dev_root
+        self._now = now
+        self._said: dict[str, Drive] = {}
+        self._without_smart: set[str] = set()
+
+    def survey(self) -> Survey:
+        """List the physical drives with what lives on them; no drive is opened."""
+        scan = self._smartctl.scan()
+        listed = names_in(self._sys / "block")
+        troubles = [scan.trouble] if scan.trouble is not None else []
+        if not listed:
+            troubles.append(
+                f"{self._sys / 'block'} lists no block device, so drives may be missing: "
+                "check that sysfs is mounted there and may be read"
+            )
+        lines = mount_lines(self._proc)
+        found = []
+        for bare in joined(physical_drives(self._sys), scan.entries, listed):
+            said = self._said.get(self._instance(bare))
+            drive = replace(bare, drive=_at(said, bare)) if said is not None else bare
+            if not self._is_asked(drive, said_itself=said is not None):
+                continue
+            lives_here = living_on(
+                stack_on(self._sys, drive.blocks),
+                lines,
+                sys_root=self._sys,
+                dev_root=self._dev,
+                measure=None if drive.asleep else measured,
+            )
+            found.append(replace(drive, place=replace(drive.place, lives_here=lives_here)))
+        return Survey(found=tuple(found), troubles=tuple(troubles))
+
+    def ask(self, found: Found) -> Pass:
+        """Ask one drive, unless that would wake it or the kernel shows that it has nothing to say."""
+        # Looked at anew: since the survey, the drives before it may have taken minutes.
+        if found.asleep or any(asleep(self._sys, block) for block in found.blocks):
+            return Pass(
+                at=self._now(),
+                outcome=Outcome.ASLEEP,
+                explanation=f"{_name(found)}: is suspended by the kernel and was not asked: that would wake it",
+            )
+        instance = self._instance(found)
+        if instance in self._without_smart:
+            return self._no_smart(found, took_ms=0)
+        answer = self._smartctl.ask(found)
+        if answer.drive is not None:
+            self._said[instance] = answer.drive
+        if found.expects_smart or answer.outcome in {Outcome.READ, Outcome.NO_TOOL}:
+            return answer  # a surprise is welcome; without the tool nothing was asked yet
+        self._without_smart.add(instance)
+        return self._no_smart(found, took_ms=answer.took_ms)
+
+    def counts(self) -> Mapping[str, Counted]:
+        """Traffic totals by kernel name of the block device."""
+        return counters.counts(self._sys, self._proc)
+
+    def stop(self) -> None:
+        """End every question that is still under way, at once."""
+        self._smartctl.stop()
+
+    def _instance(self, found: Found) -> str:
+        """Behind a controller the kernel knows no instance; there the place has to do."""
+        if not found.blocks:
+            return found.place.device
+        boot = text_of(self._proc / "sys" / "kernel" / "random" / "boot_id")
+        return counters.instance_of(self._sys, boot, found.blocks[0])
+
+    def _is_asked(self, found: Found, *, said_itself: bool) -> bool:
+        drive = found.drive
+        settled = said_itself or (drive.identity.serial is not None and drive.kind is not Kind.USB)
+        return asked(found, settled=settled, only=self._only, ignore=self._ignore)
+
+    def _no_smart(self, found: Found, *, took_ms: int) -> Pass:
+        what = "a virtual disk" if found.drive.kind is Kind.VIRTUAL else "a memory card"
+        return Pass(
+            at=self._now(),
+            outcome=Outcome.NO_SMART,
+            explanation=f"{_name(found)}: is {what} and has no SMART; its traffic is watched all the same",
+            took_ms=took_ms,
+        )
+
+
+def _at(said: Drive, found: Found) -> Drive:
+    """What a drive said of itself, at the place where it is now."""
+    return replace(said, identity=replace(said.identity, path=found.place.device))
+
+
+def _name(found: Found) -> str:
+    return plain(found.place.device)

@@ -1,0 +1,233 @@
+from collections.abc import Callable
+from dataclasses import replace
+from pathlib import Path
+
+import pytest
+
+from diskwatch.machine import real
+from diskwatch.machine.protocol import Address, Found
+from diskwatch.machine.real import RealMachine
+from diskwatch.machine.smartctl import Scan
+from diskwatch.records import Drive, Identity, Kind, Mount, Outcome, Pass, Reading
+from tests.machine.trees import Tree
+
+AT = 1_800_000_000
+BEHIND_BRIDGE = Drive(
+    identity=Identity(wwn="naa.5000f00000000009", model="INVENTED INSIDE", serial="INV-IN-9", path="/dev/sdb"),
+    kind=Kind.USB,
+    rotation_rpm=5400,
+)
+
+
+class Asked:
+    """Stands where smartctl stands: answers as told, and keeps what it was asked."""
+
+    def __init__(self) -> None:
+        self.scanned = Scan(entries=(), trouble=None)
+        self.answer = Pass(at=AT, outcome=Outcome.READ, reading=Reading(), took_ms=12)
+        self.asked: list[Address] = []
+        self.stopped = False
+        self.made_with: tuple[str, float] | None = None
+
+    def make(self, command: str, timeout: float, now: Callable[[], int]) -> "Asked":
+        assert now() == AT
+        self.made_with = (command, timeout)
+        return self
+
+    def scan(self) -> Scan:
+        return self.scanned
+
+    def ask(self, found: Found) -> Pass:
+        self.asked.append(found.address)
+        return self.answer
+
+    def stop(self) -> None:
+        self.stopped = True
+
+
+@pytest.fixture
+def smartctl(monkeypatch: pytest.MonkeyPatch) -> Asked:
+    stand_in = Asked()
+    monkeypatch.setattr(real, "Smartctl", stand_in.make)
+    return stand_in
+
+
+def machine(tree: Tree, only: tuple[str, ...] = (), ignore: tuple[str, ...] = ()) -> RealMachine:
+    return RealMachine(
+        command="smartctl",
+        timeout=30.0,
+        only=only,
+        ignore=ignore,
+        sys_root=tree.sys,
+        proc_root=tree.proc,
+        dev_root=tree.dev,
+        now=lambda: AT,
+    )
+
+
+def devices(tree: Tree, only: tuple[str, ...] = (), ignore: tuple[str, ...] = ()) -> list[str]:
+    return [found.place.device for found in machine(tree, only, ignore).survey().found]
+
+
+@pytest.mark.usefixtures("smartctl")
+def test_a_survey_says_what_lives_on_each_drive(tree: Tree):
+    tree.partition(tree.sata(), "sda1", "8:1")
+    tree.usb()
+    tree.mount("8:1", "/no/such/folder/here", "ext4", "/dev/sda1")
+    sata, stick = machine(tree).survey().found
+    assert sata.place.lives_here == (Mount(point="/no/such/folder/here"),)
+    assert stick.place.lives_here == ()
+
+
+def test_a_suspended_drive_is_not_even_asked_for_the_size_of_its_file_systems(
+    tree: Tree, smartctl: Asked, monkeypatch: pytest.MonkeyPatch
+):
+    monkeypatch.setattr(real, "measured", lambda *_: (1, 2))
+    tree.sata("sda", files={"device/power/runtime_status": "suspended"})
+    tree.sata("sdb", "8:16", port=4, files={"device/power/runtime_status": "active"})
+    tree.mount("8:0", "/asleep", "ext4", "/dev/sda")
+    tree.mount("8:16", "/awake", "ext4", "/dev/sdb")
+    asleep, awake = machine(tree).survey().found
+    assert asleep.place.lives_here == (Mount(point="/asleep"),)
+    assert awake.place.lives_here == (Mount(point="/awake", used_bytes=1, total_bytes=2),)
+    assert smartctl.asked == []
+
+
+def test_without_smartctl_the_kernels_drives_are_listed_and_the_cure_is_told(tree: Tree, smartctl: Asked):
+    tree.sata()
+    smartctl.scanned = Scan(entries=(), trouble="smartctl was not found: install it")
+    survey = machine(tree).survey()
+    assert [found.place.device for found in survey.found] == ["/dev/sda"]
+    assert survey.troubles == ("smartctl was not found: install it",)
+
+
+def test_a_machine_without_sysfs_says_so_and_still_lists_what_the_scan_knows(tmp_path: Path, smartctl: Asked):
+    smartctl.scanned = Scan(entries=(Address(node="/dev/bus/0", type="megaraid,7"),), trouble=None)
+    survey = RealMachine(
+        sys_root=tmp_path / "sys", proc_root=tmp_path, dev_root=tmp_path, now=lambda: AT
+    ).survey()
+    assert [found.place.device for found in survey.found] == ["/dev/bus/0 megaraid,7"]
+    (trouble,) = survey.troubles
+    assert "lists no block device" in trouble
+
+
+@pytest.mark.usefixtures("smartctl")
+def test_the_owner_may_name_the_drives_to_watch_or_to_leave_alone(tree: Tree):
+    tree.sata("sda", serial="INV-1", wwid=None)
+    tree.sata("sdb", "8:16", port=4, serial="INV-2", wwid=None)
+    assert devices(tree, only=("inv-2",)) == ["/dev/sdb"]
+    assert devices(tree, ignore=("/dev/sdb",)) == ["/dev/sda"]
+    assert devices(tree, only=("INV-1", "INV-2"), ignore=("sda",)) == ["/dev/sdb"]
+
+
+def test_a_suspended_drive_is_left_asleep(tree: Tree, smartctl: Asked):
+    tree.sata(files={"device/power/runtime_status": "suspended"})
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    answer = watched.ask(found)
+    assert (answer.at, answer.outcome, answer.reading) == (AT, Outcome.ASLEEP, None)
+    assert answer.explanation == "/dev/sda: is suspended by the kernel and was not asked: that would wake it"
+    assert smartctl.asked == []
+
+
+def test_a_drive_that_fell_asleep_after_the_survey_is_left_asleep_too(tree: Tree, smartctl: Asked):
+    disk = tree.sata()
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    assert not found.asleep
+    tree.put(disk / "device/power/runtime_status", "suspended")
+    assert watched.ask(found).outcome is Outcome.ASLEEP
+    assert watched.ask(replace(found, blocks=())).outcome is Outcome.READ
+    assert len(smartctl.asked) == 1
+
+
+def test_a_virtual_disk_is_asked_once_in_its_life(tree: Tree, smartctl: Asked):
+    tree.virtio()
+    smartctl.answer = Pass(at=AT, outcome=Outcome.GARBLED, explanation="odd", exit_bits=1, took_ms=9)
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    first, second = watched.ask(found), watched.ask(found)
+    assert len(smartctl.asked) == 1
+    assert first.outcome is second.outcome is Outcome.NO_SMART
+    assert first.explanation == second.explanation
+    assert (
+        first.explanation == "/dev/vda: is a virtual disk and has no SMART; its traffic is watched all the same"
+    )
+    assert (first.took_ms, second.took_ms) == (9, 0)
+
+
+def test_a_virtual_disk_that_came_anew_is_asked_anew(tree: Tree, smartctl: Asked):
+    disk = tree.virtio()
+    smartctl.answer = Pass(at=AT, outcome=Outcome.NO_SMART, explanation="none")
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    watched.ask(found)
+    tree.put(disk / "diskseq", "77")
+    watched.ask(found)
+    assert len(smartctl.asked) == 2
+
+
+def test_a_missing_tool_is_told_as_such_for_a_virtual_disk_too(tree: Tree, smartctl: Asked):
+    tree.virtio()
+    smartctl.answer = Pass(at=AT, outcome=Outcome.NO_TOOL, explanation="no tool")
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    assert watched.ask(found) == watched.ask(found) == smartctl.answer
+
+
+def test_a_virtual_disk_that_answers_after_all_is_believed(tree: Tree, smartctl: Asked):
+    tree.virtio()
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    assert watched.ask(found) == watched.ask(found) == smartctl.answer
+    assert len(smartctl.asked) == 2
+
+
+def test_what_a_drive_said_of_itself_holds_while_its_instance_lasts(tree: Tree, smartctl: Asked):
+    disk = tree.usb()
+    smartctl.answer = Pass(at=AT, outcome=Outcome.READ, drive=BEHIND_BRIDGE, reading=Reading())
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    assert found.drive.identity.serial == "INV-BRIDGE-7"
+    watched.ask(found)
+    smartctl.answer = Pass(at=AT, outcome=Outcome.TIMED_OUT, explanation="slow")
+    watched.ask(found)
+    (again,) = watched.survey().found
+    assert again.drive == BEHIND_BRIDGE
+    tree.put(disk / "diskseq", "77")
+    (other,) = watched.survey().found
+    assert other.drive.identity.serial == "INV-BRIDGE-7"
+
+
+def test_a_drive_behind_a_bridge_is_dropped_once_it_says_that_it_is_not_meant(tree: Tree, smartctl: Asked):
+    tree.usb()
+    smartctl.answer = Pass(at=AT, outcome=Outcome.READ, drive=BEHIND_BRIDGE, reading=Reading())
+    for only, left in (("INV-IN-9", 1), ("INV-ELSE", 0)):
+        watched = machine(tree, only=(only,))
+        (found,) = watched.survey().found
+        watched.ask(found)
+        assert len(watched.survey().found) == left
+
+
+def test_text_from_outside_cannot_reach_the_terminal_raw(tree: Tree, smartctl: Asked):
+    smartctl.scanned = Scan(entries=(Address(node="/dev/\x1b[31m", type="sat"),), trouble=None)
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    explanation = watched.ask(replace(found, asleep=True)).explanation
+    assert explanation is not None
+    assert "\x1b" not in explanation
+
+
+def test_command_and_time_limit_are_handed_on_and_a_stop_is_passed_down(tree: Tree, smartctl: Asked):
+    watched = machine(tree)
+    assert smartctl.made_with == ("smartctl", 30.0)
+    assert not smartctl.stopped
+    watched.stop()
+    assert smartctl.stopped
+
+
+@pytest.mark.usefixtures("smartctl")
+def test_the_traffic_of_this_computers_drives_is_counted():
+    here = RealMachine(now=lambda: AT)
+    blocks = {block for found in here.survey().found for block in found.blocks}
+    assert blocks <= here.counts().keys()
