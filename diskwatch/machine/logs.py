@@ -51,6 +51,8 @@ def scsi_values(document: Document | None, device: Any, sheet: Sheet) -> tuple[V
 
 def _trip(document: Document | None, sheet: Sheet) -> int | None:
     told = number_at(document, "temperature", "drive_trip")
+    if told is None:
+        told = number_at(document, "scsi_temperature", "drive_trip")
     return told if told is not None else whole(sheet.get("Drive Trip Temperature") or "")
 
 

@@ -10,6 +10,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 
 from diskwatch.machine.command import Answer, Ending
+from diskwatch.machine.held import Family
 from diskwatch.machine.reading import Support, Understood
 from diskwatch.records import Outcome
 from diskwatch.units import plain
@@ -135,7 +136,9 @@ def of_words(
         expects_smart: whether the kernel lets one expect SMART of it.
     """
     lines = [line for line in said if line.strip()]
-    if what.support is Support.OFF:
+    # A SCSI drive answers though its exception control is off, even that it predicts its failure; an ATA drive
+    # whose SMART is off answers nothing that holds.
+    if what.support is Support.OFF and not (what.family is Family.SCSI and what.says_something):
         return Verdict(
             outcome=Outcome.NO_SMART,
             explanation=f"{name}: its SMART is switched off; smartctl -s on switches it on",

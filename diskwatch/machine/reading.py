@@ -28,11 +28,13 @@ class Understood:
     """What an answer says.
 
     Attributes:
+        family: which language it speaks.
         drive: the drive as it describes itself, or None.
         reading: what it states of its state; may hold nothing.
         support: what it says of its SMART.
     """
 
+    family: Family
     drive: Drive | None
     reading: Reading
     support: Support
@@ -75,6 +77,7 @@ def understood(lines: Sequence[str], document: Document | None, *, type_: str | 
         *([_word("self-test", plain(newest), "self-test log")] if newest else []),
     )
     return Understood(
+        family=family,
         drive=drive,
         reading=Reading(
             values=(*values, *words),

@@ -62,6 +62,8 @@ def test_a_drives_own_limits_are_taken_and_zero_stands_for_none():
     document = {"nvme_composite_temperature_threshold": {"warning": 70, "critical": 80}}
     assert nvme_limits(document, told) == (70, 80)
     assert trip_celsius(None, Sheet.of(["Drive Trip Temperature:        65 C"])) == 65
+    assert trip_celsius({"temperature": {"drive_trip": 60}}, Sheet.of([])) == 60
+    assert trip_celsius({"scsi_temperature": {"drive_trip": 60}}, Sheet.of([])) == 60
     assert trip_celsius(None, Sheet.of(["Drive Trip Temperature:        0 C"])) is None
     assert trip_celsius(None, Sheet.of(["Drive Trip Temperature:        <not available>"])) is None
 

@@ -106,6 +106,16 @@ def test_smart_that_is_switched_off_is_said_with_the_cure():
     assert "switched off" in why
 
 
+def test_a_scsi_drive_that_predicts_its_failure_is_heard_though_its_smart_is_called_disabled():
+    # Seen with smartctl 7.3 and the kernel's scsi_debug disk: "Disabled", and the prediction all the same.
+    lines = tuple(
+        line.replace("SMART support is:     Enabled", "SMART support is:     Disabled")
+        for line in fixture("invented_sas_megaraid_failing")
+    )
+    assert "SMART support is:     Disabled" in lines
+    assert verdict(lines, 12)[0] == "read"
+
+
 def test_a_drive_that_does_not_answer_sensibly_is_garbled_with_its_words():
     outcome, why = verdict(fixture("invented_scsi_short_inquiry"), 2)
     assert outcome == "garbled"
