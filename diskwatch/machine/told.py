@@ -86,7 +86,7 @@ def drive_of(family: Family, document: Document | None, sheet: Sheet, path: str)
     turns = _turns(document, sheet)
     return Drive(
         identity=identity,
-        kind=_kind(family, document, sheet, identity, turns),
+        kind=_kind(family, sheet, identity, turns),
         firmware=_name(
             text_at(document, "firmware_version")
             or text_at(document, "scsi_revision")
@@ -227,17 +227,13 @@ def _turns(document: Document | None, sheet: Sheet) -> int | None:
     return int(found[1]) if found is not None else None
 
 
-def _kind(
-    family: Family, document: Document | None, sheet: Sheet, identity: Identity, turns: int | None
-) -> Kind:
+def _kind(family: Family, sheet: Sheet, identity: Identity, turns: int | None) -> Kind:
     if _VIRTUAL.search(identity.model or "") is not None or _made_up(family, sheet, identity):
         return Kind.VIRTUAL
     if family is Family.NVME:
         return Kind.NVME
     if family is Family.SCSI:
-        transport = dig(document, "scsi_transport_protocol", "name") or sheet.get("Transport protocol")
-        if str(transport or "").upper().startswith("SAS"):
-            return Kind.SAS
+        return Kind.SAS  # not every one names its transport; what hangs on USB, only the kernel knows
     if turns == 0 or (turns is None and sheet.get("TRIM Command") is not None):
         return Kind.SSD
     return Kind.HDD

@@ -115,6 +115,13 @@ def test_the_model_of_a_scsi_drive_is_vendor_and_product():
     assert (found.identity.model, found.kind, found.firmware) == ("NORDWALL NW10K600", Kind.SAS, "N003")
 
 
+def test_a_scsi_drive_that_names_no_transport_is_taken_for_sas():
+    told = sheet("invented_sas_megaraid_failing", ("Transport protocol:   SAS (SPL-4)\n", ""))
+    found = drive_of(Family.SCSI, None, told, "/dev/x")
+    assert found is not None
+    assert found.kind is Kind.SAS
+
+
 def test_an_answer_that_names_no_drive_gives_none():
     assert drive_of(Family.ATA, None, Sheet.of(["smartctl 7.3"]), "/dev/x") is None
 
