@@ -99,14 +99,14 @@ class RealMachine:
             )
         instance = self._instance(found)
         if instance in self._without_smart:
-            return self._no_smart(found, took_ms=0)
+            return _no_smart(found, Pass(at=self._now(), outcome=Outcome.NO_SMART))
         answer = self._smartctl.ask(found)
         if answer.drive is not None:
             self._said[instance] = answer.drive
         if found.expects_smart or answer.outcome in {Outcome.READ, Outcome.NO_TOOL}:
             return answer  # a surprise is welcome; without the tool nothing was asked yet
         self._without_smart.add(instance)
-        return self._no_smart(found, took_ms=answer.took_ms)
+        return _no_smart(found, answer)
 
     def counts(self) -> Mapping[str, Counted]:
         """Traffic totals by kernel name of the block device."""
@@ -128,14 +128,15 @@ class RealMachine:
         settled = said_itself or (drive.identity.serial is not None and drive.kind is not Kind.USB)
         return asked(found, settled=settled, only=self._only, ignore=self._ignore)
 
-    def _no_smart(self, found: Found, *, took_ms: int) -> Pass:
-        what = "a virtual disk" if found.drive.kind is Kind.VIRTUAL else "a memory card"
-        return Pass(
-            at=self._now(),
-            outcome=Outcome.NO_SMART,
-            explanation=f"{_name(found)}: is {what} and has no SMART; its traffic is watched all the same",
-            took_ms=took_ms,
-        )
+
+def _no_smart(found: Found, answer: Pass) -> Pass:
+    """An answer in the words of one who knows from the kernel that there is nothing to be had."""
+    what = "a virtual disk" if found.drive.kind is Kind.VIRTUAL else "a memory card"
+    return replace(
+        answer,
+        outcome=Outcome.NO_SMART,
+        explanation=f"{_name(found)}: is {what} and has no SMART; its traffic is watched all the same",
+    )
 
 
 def _at(said: Drive, found: Found) -> Drive:

@@ -153,7 +153,8 @@ def test_a_virtual_disk_is_asked_once_in_its_life(tree: Tree, smartctl: Asked):
     assert (
         first.explanation == "/dev/vda: is a virtual disk and has no SMART; its traffic is watched all the same"
     )
-    assert (first.took_ms, second.took_ms) == (9, 0)
+    assert (first.took_ms, first.exit_bits) == (9, 1)
+    assert (second.at, second.took_ms, second.exit_bits) == (AT, 0, None)
 
 
 def test_a_virtual_disk_that_came_anew_is_asked_anew(tree: Tree, smartctl: Asked):
