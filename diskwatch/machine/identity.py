@@ -43,7 +43,7 @@ def recognise(
         The drive, or None where it is new, or where several fit equally: to start a new history is a smaller
         evil than to pour two drives' histories into one.
     """
-    if here is not None and _bare(told):
+    if here is not None and _bare(told) and _agree(told.model, here.drive.identity.model):
         return here  # ahead of the path: paths are handed on from drive to drive
     ranked = [(_closeness(told, one.drive.identity), one) for one in known]
     best = max((rank for rank, _ in ranked), default=0)

@@ -137,6 +137,12 @@ def test_a_drive_that_only_its_path_told_is_known_again_when_the_same_instance_t
 def test_a_drive_that_told_its_name_stays_known_while_the_same_instance_is_silent():
     strong, stale = known(1, who(WWN, "A1")), known(2, who())
     assert recognise(who(), [strong, stale], here=strong) == strong
+    assert recognise(who(model=None), [strong, stale], here=strong) == strong
+
+
+def test_a_nameless_drive_of_another_model_does_not_inherit_the_place_of_the_one_before():
+    strong = known(1, who(WWN, "A1"))
+    assert recognise(who(model="OTHER"), [strong], here=strong) is None
 
 
 def test_another_name_in_the_same_instance_is_another_drive():
