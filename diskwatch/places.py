@@ -1,5 +1,6 @@
 """Every path that the program uses of its own accord."""
 
+import contextlib
 import os
 from pathlib import Path
 
@@ -45,5 +46,9 @@ def settings_file(named: str | None) -> Path | None:
 def live_folders(state: Path) -> tuple[Path, ...]:
     """Where figures of the last seconds may be shared, best first: memory, so that no drive is written to."""
     runtime = os.environ.get("XDG_RUNTIME_DIR", "")
-    own = (Path(runtime) / "diskwatch",) if runtime.startswith("/") else ()
+    runtimes = [Path(runtime)] if runtime.startswith("/") else []
+    with contextlib.suppress(OSError):
+        # Where root looks at a user's own watch, the figures lie in that user's folder.
+        runtimes.append(Path("/run/user") / str(state.stat().st_uid))
+    own = [folder / "diskwatch" for folder in dict.fromkeys(runtimes)]
     return (SYSTEM_RUN, *own, state)

@@ -7,7 +7,7 @@ one that does. ``example.toml`` in the package holds every key with its meaning;
 import difflib
 import re
 from pathlib import Path
-from typing import Annotated, Any, Literal
+from typing import Annotated, Any, Literal, get_args
 
 import msgspec
 
@@ -197,6 +197,14 @@ def _hook(wanted: type, found: Any) -> Any:
     raise NotImplementedError
 
 
+_TOML_WORDS = {
+    "str": "a string",
+    "array": "a list",
+    "object": "a table",
+    "int": "a whole number",
+    "float": "a number",
+    "bool": "true or false",
+}
 _UNKNOWN = re.compile(r"Object contains unknown field `(?P<key>[^`]*)`(?: - at `\$\.?(?P<where>[^`]*)`)?")
 _WRONG = re.compile(r"(?P<what>.*?)(?: - at `\$\.?(?P<where>[^`]*)`)?", re.DOTALL)
 
@@ -208,7 +216,20 @@ def _told(message: str) -> str:
         return _told_unknown(unknown["key"], unknown["where"] or "")
     wrong = _WRONG.fullmatch(message)
     what, where = (wrong["what"], wrong["where"] or "") if wrong is not None else (message, "")
-    return f"{_key_name(where) or 'the file'}: {what[:1].lower()}{what[1:]}"
+    where = where.partition("[")[0]  # of a list the key is named, not the place in it
+    return f"{_key_name(where) or 'the file'}: {_expectation(what, where)}"
+
+
+def _expectation(what: str, where: str) -> str:
+    """What was expected and found, in the words of TOML; of a choice, all that may be chosen."""
+    chosen = re.fullmatch(r"Invalid enum value ('.*')", what)
+    if chosen is not None:
+        table, _, key = where.partition(".")
+        field = next(one for one in msgspec.structs.fields(_TABLES[table]) if one.name == key)
+        return f"expected one of {', '.join(sorted(get_args(field.type)))}, not {chosen[1]}"
+    for name, said in _TOML_WORDS.items():
+        what = what.replace(f"`{name}`", said)
+    return f"{what[:1].lower()}{what[1:]}"
 
 
 def _told_unknown(key: str, where: str) -> str:

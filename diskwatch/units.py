@@ -17,7 +17,7 @@ def seconds_of(text: str) -> int:
     Raises:
         ValueError: the text is no such duration, or shorter than a second; says what is expected.
     """
-    found = re.fullmatch(r"\s*(\d{1,9})\s*([smhd])\s*", text)
+    found = re.fullmatch(r"\s*([0-9]{1,9})\s*([smhd])\s*", text)
     if found is None or int(found[1]) == 0:
         raise ValueError(f"expected a duration such as 1s, 30m, 2h or 7d, at least 1s, not {text!r}")
     return int(found[1]) * _SPANS[found[2]]

@@ -4,6 +4,11 @@ import os
 from pathlib import Path
 
 import pytest
+from hypothesis import settings
+
+# A busy machine must not fail a law, and what failed once must fail again.
+settings.register_profile("house", deadline=None, derandomize=True)
+settings.load_profile("house")
 
 ROOT = Path(__file__).resolve().parent.parent
 

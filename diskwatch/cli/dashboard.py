@@ -9,7 +9,9 @@ import contextlib
 import os
 import subprocess
 import sys
+import time
 from collections.abc import Iterator
+from dataclasses import replace
 from pathlib import Path
 
 from diskwatch.cli import bays as bays_command
@@ -18,6 +20,9 @@ from diskwatch.errors import NothingToWorkOn
 from diskwatch.history.lock import watcher
 from diskwatch.history.reader import Past
 from diskwatch.records import Bays
+
+_STARTING = 5.0
+"""Seconds that the child may take to begin."""
 
 _PATIENCE = 10.0
 """Seconds that the watching child gets to store everything and end."""
@@ -36,12 +41,12 @@ def run(args: argparse.Namespace) -> int:
         args.json = args.code = False
         return bays_command.run(args)
     # Textual takes a quarter of a second to load: the child reads the drives meanwhile.
-    with _watching(folder, args) as told:
+    with _watching(folder, args) as (told, starting):
         from diskwatch.dashboard.app import Dashboard  # noqa: PLC0415
 
         with contextlib.ExitStack() as stack:
             Dashboard(
-                _Source(folder, stack),
+                _Source(folder, stack, starting=starting),
                 now,
                 watching=told,
                 every=int(owner.smart.every),
@@ -53,12 +58,22 @@ def run(args: argparse.Namespace) -> int:
 class _Source:
     """The history, opened once it is there and kept open between two looks."""
 
-    def __init__(self, folder: Path, stack: contextlib.ExitStack) -> None:
+    def __init__(self, folder: Path, stack: contextlib.ExitStack, *, starting: int | None) -> None:
+        """Open nothing yet; ``starting`` is the process that is about to watch, if there is one."""
         self._folder = folder
         self._stack = stack
+        self._starting = starting
+        self._begun = time.monotonic()
         self._past: Past | None = None
 
     def __call__(self, at: int) -> Bays:
+        bays = self._now(at)
+        if bays.watcher is None and self._starting is not None and time.monotonic() - self._begun < _STARTING:
+            # The child is loading its libraries; that nobody watches would be said for a second only.
+            return replace(bays, watcher=self._starting)
+        return bays
+
+    def _now(self, at: int) -> Bays:
         if self._past is None:
             try:
                 self._past = self._stack.enter_context(Past.open(self._folder))
@@ -69,14 +84,14 @@ class _Source:
 
 
 @contextlib.contextmanager
-def _watching(folder: Path, args: argparse.Namespace) -> Iterator[str]:
-    """Watch through a child where nobody does; gives the sentence that says who watches."""
+def _watching(folder: Path, args: argparse.Namespace) -> Iterator[tuple[str, int | None]]:
+    """Watch through a child where nobody does; gives the sentence that says who watches, and the child."""
     holder = watcher(folder)
     if holder is not None:
-        yield f"the watch of process {holder}"
+        yield f"the watch of process {holder}", None
         return
     if not _may_write(folder):
-        yield f"nobody is watching, and the history in {folder} cannot be written by you"
+        yield f"nobody is watching, and the history in {folder} cannot be written by you", None
         return
     command = [sys.executable, "-m", "diskwatch", "watch", "--tied", "--state", str(folder)]
     if args.settings is not None:
@@ -85,7 +100,7 @@ def _watching(folder: Path, args: argparse.Namespace) -> Iterator[str]:
         command, stdin=subprocess.PIPE, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL
     ) as child:
         try:
-            yield "watching from here, as long as this stays open"
+            yield "watching from here, as long as this stays open", child.pid
         finally:
             if child.stdin is not None:
                 child.stdin.close()

@@ -3,9 +3,11 @@
 The file lies in the first of `diskwatch.places.live_folders` that can be written. The last of them is the state
 folder, on a real disk: there it is written at most once a minute.
 
-    {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 20480, 28672, 3, 9, 11]]}
+    {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 2048, 2048, 3, 9, 11]], "troubles": []}
 
-A span is ``drive, at, seconds, reads, writes, read_bytes, write_bytes, read_ms, write_ms, busy_ms``.
+    {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 2048, 2048, 3, 9, 11]],
+     "troubles": []}
+this way too: a history that cannot be written cannot hold why.
 """
 
 import contextlib
@@ -14,6 +16,7 @@ import json
 import os
 import stat
 from collections.abc import Sequence
+from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
@@ -34,6 +37,19 @@ def live_name(state: Path) -> str:
     return f"live-{hashlib.sha256(os.fsencode(state.resolve())).hexdigest()[:16]}.json"
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Live:
+    """What a watch shares of the moment.
+
+    Attributes:
+        spans: the last span of every drive.
+        troubles: what keeps the watch from doing its work, one sentence each.
+    """
+
+    spans: tuple[IoSpan, ...] = ()
+    troubles: tuple[str, ...] = ()
+
+
 class LiveWriter:
     """Shares the figures of one watch; removes them on close.
 
@@ -49,19 +65,21 @@ class LiveWriter:
         self._path: Path | None = None
         self._written_at: int | None = None
 
-    def write(self, spans: Sequence[IoSpan], at: int) -> bool:
-        """Share the last span of every drive.
+    def write(self, spans: Sequence[IoSpan], at: int, troubles: Sequence[str] = ()) -> bool:
+        """Share the last span of every drive, and what troubles the watch.
 
         Args:
             spans: one a drive.
             at: now, UTC seconds since 1970.
+            troubles: one sentence each.
 
         Returns:
             Whether these figures were shared; False also where it is too early for a real disk.
         """
         if self._path is not None and self._path.parent == self._state and not self._due(at):
             return False
-        text = json.dumps({"at": at, "spans": [_row(span) for span in spans]}, separators=(",", ":"))
+        told = {"at": at, "spans": [_row(span) for span in spans], "troubles": list(troubles)}
+        text = json.dumps(told, separators=(",", ":"))
         for folder in places.live_folders(self._state):
             path = folder / self._name
             try:
@@ -84,8 +102,8 @@ class LiveWriter:
             self._path = None
 
 
-def read_live(folder: Path, now: int) -> tuple[IoSpan, ...]:
-    """The figures that the watch of a state folder shares now.
+def read_live(folder: Path, now: int) -> Live:
+    """What the watch of a state folder shares now.
 
     Only a file of the history's owner, or of root, that nobody else may write is believed.
 
@@ -94,19 +112,19 @@ def read_live(folder: Path, now: int) -> tuple[IoSpan, ...]:
         now: UTC seconds since 1970.
 
     Returns:
-        One span a drive; nothing where nobody shares any, or not within the last `FRESH_S` seconds.
+        What it shares; nothing where nobody shares anything, or not within the last `FRESH_S` seconds.
     """
     try:
         owner = (folder / places.HISTORY).stat().st_uid
     except OSError:
-        return ()
+        return Live()
     for candidate in places.live_folders(folder):
         # On a real disk it is written rarely, and so it holds good until the next time it is due.
         patience = FRESH_S + (DISK_EVERY_S if candidate == folder else 0)
         found = _believed(candidate / live_name(folder), frozenset({owner, 0}))
         if found is not None and abs(now - found[0]) <= patience:
             return found[1]
-    return ()
+    return Live()
 
 
 def _row(span: IoSpan) -> list[int | float]:
@@ -146,7 +164,7 @@ def _replace(path: Path, content: bytes) -> None:
         raise
 
 
-def _believed(path: Path, owners: frozenset[int]) -> tuple[int, tuple[IoSpan, ...]] | None:
+def _believed(path: Path, owners: frozenset[int]) -> tuple[int, Live] | None:
     try:
         descriptor = os.open(path, os.O_RDONLY | os.O_NOFOLLOW | os.O_NONBLOCK | os.O_CLOEXEC)
     except OSError:
@@ -157,7 +175,8 @@ def _believed(path: Path, owners: frozenset[int]) -> tuple[int, tuple[IoSpan, ..
             return None
         try:
             found = json.loads(file.read(_LARGEST_FILE))
-            return int(found["at"]), tuple(_span(row) for row in found["spans"])
+            spans = tuple(_span(row) for row in found["spans"])
+            return int(found["at"]), Live(spans=spans, troubles=tuple(map(str, found["troubles"])))
         except (OSError, ValueError, KeyError, TypeError, OverflowError):
             return None
 

@@ -14,7 +14,7 @@ from typing import Self, TypeVar
 from diskwatch.errors import HistoryError
 from diskwatch.history import questions
 from diskwatch.history.bays import drive_lines
-from diskwatch.history.live import read_live
+from diskwatch.history.live import Live, read_live
 from diskwatch.history.lock import watcher
 from diskwatch.history.mishaps import told, unreadable
 from diskwatch.history.naming import choose
@@ -73,11 +73,13 @@ class Past:
         lines = self._ask(drive_lines)
         who = watcher(self._folder)
         # What a watch that has ended left behind is nobody's present.
-        live = {} if who is None else {span.drive: span for span in read_live(self._folder, now)}
+        live = Live() if who is None else read_live(self._folder, now)
+        spans = {span.drive: span for span in live.spans}
         return Bays(
             at=now,
             watcher=who,
-            drives=tuple(replace(line, traffic=live.get(line.number)) for line in lines),
+            drives=tuple(replace(line, traffic=spans.get(line.number)) for line in lines),
+            trouble=live.troubles,
         )
 
     def find(self, text: str) -> DriveLine:

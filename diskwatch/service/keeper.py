@@ -11,6 +11,7 @@ from pathlib import Path
 from diskwatch.errors import DiskwatchError, HistoryError, HistoryHeld, HistoryTooNew, NothingToWorkOn
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
+from diskwatch.places import HISTORY
 from diskwatch.records import Drive, DriveLine, Entry, IoSpan, KnownDrive, Place, Round
 
 MOST_WAITING = 2_000
@@ -35,6 +36,9 @@ class Keeper:
         self._waiting: deque[Callable[[History], None]] = deque(maxlen=MOST_WAITING)
         self._trouble: str | None = None
         self._closed = False
+        self._blind = False
+        self.epoch = 0
+        """Grows when a history comes into reach whose past was not known: what was remembered is void then."""
         self._known: dict[int, KnownDrive] = {}
         self._states: dict[int, str] = {}
         try:
@@ -47,7 +51,18 @@ class Keeper:
 
     def _take_up(self, history: History) -> None:
         self._history = history
-        self._known = {one.number: one for one in history.known()} | self._known
+        known = {one.number: one for one in history.known()}
+        if self._blind and known:
+            # Numbers and states were begun anew without this past, which is worth more than what waits.
+            lost, at = len(self._waiting), max((one.first_seen for one in self._known.values()), default=0)
+            self._waiting.clear()
+            self._known, self._states, self.epoch = {}, {}, self.epoch + 1
+            text = (
+                f"The history came into reach late; {lost} writes from before that were given up for its past."
+            )
+            history.note(Entry(at=at, drive=None, kind="trouble", text=text))
+        self._blind = False
+        self._known = known | self._known
         self._states = dict(history.states()) | self._states
 
     def _remember_what_can_be_read(self) -> None:
@@ -57,7 +72,7 @@ class Keeper:
                 self._known = {line.number: _known(line) for line in past.bays(0).drives}
                 self._states = {number: text for number in self._known if (text := past.state(number))}
         except (NothingToWorkOn, HistoryError):
-            return
+            self._blind = True
 
     @property
     def trouble(self) -> str | None:
@@ -126,11 +141,26 @@ class Keeper:
             if self._history is None:
                 self._take_up(History.open(self._folder))
             while self._history is not None and self._waiting:
-                self._waiting[0](self._history)
-                self._waiting.popleft()
+                self._first_of_those_waiting(self._history)
             self._trouble = None
         except DiskwatchError as error:
             self._trouble = str(error)
+            if self._history is not None and not (self._folder / HISTORY).exists():
+                # The file was taken away under the watch: begin a new one at the next try.
+                self._history.close()
+                self._history = None
+
+    def _first_of_those_waiting(self, history: History) -> None:
+        deed = self._waiting[0]
+        try:
+            deed(history)
+        except DiskwatchError:
+            raise
+        except Exception:
+            # A fault of our own, not of the disk: it must not stand in the way of all that follows.
+            self._waiting.popleft()
+            raise
+        self._waiting.popleft()
 
 
 def _known(line: DriveLine) -> KnownDrive:

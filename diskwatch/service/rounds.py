@@ -20,6 +20,12 @@ from diskwatch.units import plain, say_bytes
 PATIENCE = 3.0
 """Seconds after which what has come in is kept, and the drives that are still silent are waited for apart."""
 
+AT_ONCE = 8
+"""Drives asked at once: more would only slow each other down on few cores, and look slow to the time-out."""
+
+SLOW = 1.0
+"""Seconds after which a drive that has not answered no longer keeps another one waiting."""
+
 AWAY_LIMIT = analyser.UNREAD_LIMIT
 """Rounds in which a drive that is no longer there is still recorded as absent; then its absence is known."""
 
@@ -59,6 +65,7 @@ class Rounds:
         self._here: dict[str, int] = {}
         self._away: dict[int, int] = {}
         self._troubles: tuple[str, ...] = ()
+        self._epoch = keeper.epoch
         self._ending = threading.Event()
         self.blocks: dict[int, tuple[str, ...]] = {}
         """Kernel names of the block devices of each drive of the last round, by the drive's number."""
@@ -78,8 +85,10 @@ class Rounds:
         survey = self._machine.survey()
         entries = self._new_troubles(survey.troubles)
         answers: queue.Queue[_Answer] = queue.Queue()
+        self._forget_if_void()
+        places = threading.Semaphore(AT_ONCE)
         for found in survey.found:
-            self._start(found, answers)
+            self._start(found, answers, places)
         waiting = len(survey.found)
         taken: set[int] = set()
         done: list[DriveRound] = []
@@ -108,11 +117,29 @@ class Rounds:
         """Bring a round under way to its end; call it before the machine is stopped."""
         self._ending.set()
 
-    def _start(self, found: Found, answers: "queue.Queue[_Answer]") -> None:
+    @property
+    def troubles(self) -> tuple[str, ...]:
+        """What kept the last listing of the drives from being complete."""
+        return self._troubles
+
+    def _forget_if_void(self) -> None:
+        """Begin from the history again where it came into reach only now."""
+        if self._keeper.epoch != self._epoch:
+            self._epoch = self._keeper.epoch
+            self._states.clear()
+            self._here.clear()
+            self._away.clear()
+            self.blocks.clear()
+
+    def _start(self, found: Found, answers: "queue.Queue[_Answer]", places: threading.Semaphore) -> None:
         """Ask a drive in a thread of its own; the machine bounds how long that takes."""
+        # One that is slow keeps the next from starting for a moment only, and then no longer holds a place.
+        if not places.acquire(timeout=SLOW):
+            places.release()
 
         def ask() -> None:
             answers.put(_Answer(found, self._machine.ask(found)))
+            places.release()
 
         threading.Thread(target=ask, name=f"asks {plain(_key(found))}", daemon=True).start()
 

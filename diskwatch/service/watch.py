@@ -112,11 +112,14 @@ class Watch:
 
     def _count(self) -> None:
         spans = self._traffic.look(dict(self._rounds.blocks))
-        if spans:
-            self._live.write(spans, now())
-            self._gathered += spans
+        self._live.write(spans, now(), self._troubles())
+        self._gathered += spans
         if time.monotonic() - self._committed >= self._settings.history.commit:
             self._commit_traffic()
+
+    def _troubles(self) -> tuple[str, ...]:
+        kept = self._keeper.trouble
+        return (*self._rounds.troubles, *((kept,) if kept is not None else ()))
 
     def _commit_traffic(self) -> None:
         self._committed = time.monotonic()

@@ -52,6 +52,7 @@ def test_two_passes_with_a_rise_move_ledger_and_damage_by_hand_computed_numbers(
     assert second.evidence["pending-sectors"] == pytest.approx(59.78494049294646, rel=1e-12)
     assert second.evidence["reallocated-sectors"] == second.evidence["pending-sectors"]
     why = analyser.explain(second.state)
+    assert why.damage is not None
     assert why.damage.measure == 4
     assert second.call.word is CallWord.LOOK
     assert second.call.cause is Cause.MEDIA

@@ -11,4 +11,6 @@ def test_what_is_not_known_is_null_and_never_zero():
     answer = drive_answer(line)
     for key in ("call", "cause", "reason", "margin_days", "odds", "label", "last_pass"):
         assert answer[key] is None
-    assert answer["signals"]["temperature"]["value"] is None
+    signals = answer["signals"]
+    assert isinstance(signals, dict)
+    assert signals["temperature"]["value"] is None

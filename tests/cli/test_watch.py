@@ -226,7 +226,8 @@ class Watching:
         self.child.kill()
         self.child.wait()
         for pipe in (self.child.stdin, self.child.stderr):
-            pipe.close()
+            if pipe is not None:
+                pipe.close()
 
 
 def test_sigterm_ends_the_watch_in_time_with_everything_stored_even_while_a_drive_hangs(tmp_path):

@@ -4,7 +4,7 @@ import os
 import pytest
 
 from diskwatch import places
-from diskwatch.history.live import DISK_EVERY_S, FRESH_S, LiveWriter, live_name, read_live
+from diskwatch.history.live import DISK_EVERY_S, FRESH_S, Live, LiveWriter, live_name, read_live
 from tests.history.examples import NOON, a_span
 
 SPANS = (a_span(1, reads=5), a_span(2, seconds=9.5))
@@ -32,30 +32,30 @@ def test_what_is_shared_can_be_read_and_is_taken_away_on_close(state, memory):
     writer = LiveWriter(state)
     assert writer.write(SPANS, NOON)
     assert [path.name for path in memory.iterdir()] == [live_name(state)]
-    assert read_live(state, NOON) == SPANS
+    assert read_live(state, NOON).spans == SPANS
     writer.close()
     assert list(memory.iterdir()) == []
-    assert read_live(state, NOON) == ()
+    assert read_live(state, NOON) == Live()
     writer.close()
 
 
 def test_nothing_shared_reads_as_nothing(state):
-    assert read_live(state, NOON) == ()
-    assert read_live(state / "nowhere", NOON) == ()
+    assert read_live(state, NOON) == Live()
+    assert read_live(state / "nowhere", NOON) == Live()
 
 
 def test_each_look_replaces_the_last(state):
     writer = LiveWriter(state)
     writer.write(SPANS, NOON)
     writer.write(SPANS[:1], NOON + 10)
-    assert read_live(state, NOON + 10) == SPANS[:1]
+    assert read_live(state, NOON + 10).spans == SPANS[:1]
 
 
 def test_old_figures_and_those_of_a_clock_far_ahead_are_not_believed(state):
     LiveWriter(state).write(SPANS, NOON)
-    assert read_live(state, NOON + FRESH_S) == SPANS
-    assert read_live(state, NOON + FRESH_S + 1) == ()
-    assert read_live(state, NOON - FRESH_S - 1) == ()
+    assert read_live(state, NOON + FRESH_S).spans == SPANS
+    assert read_live(state, NOON + FRESH_S + 1) == Live()
+    assert read_live(state, NOON - FRESH_S - 1) == Live()
 
 
 def test_two_state_folders_do_not_mix(state, tmp_path):
@@ -63,7 +63,7 @@ def test_two_state_folders_do_not_mix(state, tmp_path):
     other.mkdir()
     (other / places.HISTORY).touch()
     LiveWriter(state).write(SPANS, NOON)
-    assert read_live(other, NOON) == ()
+    assert read_live(other, NOON) == Live()
 
 
 def test_a_folder_has_one_name_however_it_is_written(state, tmp_path):
@@ -86,9 +86,9 @@ def test_a_real_disk_is_written_at_most_once_a_minute(state):
     writer = LiveWriter(state)
     assert writer.write(SPANS, NOON)
     assert not writer.write(SPANS[:1], NOON + DISK_EVERY_S - 1)
-    assert read_live(state, NOON + DISK_EVERY_S + FRESH_S) == SPANS
+    assert read_live(state, NOON + DISK_EVERY_S + FRESH_S).spans == SPANS
     assert writer.write(SPANS[:1], NOON + DISK_EVERY_S)
-    assert read_live(state, NOON + DISK_EVERY_S) == SPANS[:1]
+    assert read_live(state, NOON + DISK_EVERY_S).spans == SPANS[:1]
 
 
 @pytest.mark.usefixtures("_only_disk")
@@ -102,7 +102,7 @@ def test_where_memory_cannot_be_used_the_next_place_is(state, monkeypatch):
     monkeypatch.setattr(places, "SYSTEM_RUN", state / places.HISTORY / "no folder")
     assert LiveWriter(state).write(SPANS, NOON)
     assert (state / live_name(state)).is_file()
-    assert read_live(state, NOON) == SPANS
+    assert read_live(state, NOON).spans == SPANS
 
 
 def test_figures_that_cannot_be_shared_anywhere_are_no_error(state, monkeypatch):
@@ -129,7 +129,7 @@ def test_figures_that_cannot_be_shared_anywhere_are_no_error(state, monkeypatch)
 def test_a_file_that_makes_no_sense_reads_as_nothing(state, memory, content):
     memory.mkdir()
     (memory / live_name(state)).write_text(content, errors="surrogateescape")
-    assert read_live(state, NOON) == ()
+    assert read_live(state, NOON) == Live()
 
 
 def test_a_link_or_a_pipe_in_its_place_is_not_followed(state, memory, tmp_path):
@@ -138,23 +138,28 @@ def test_a_link_or_a_pipe_in_its_place_is_not_followed(state, memory, tmp_path):
     elsewhere = tmp_path / "elsewhere"
     elsewhere.write_text(json.dumps({"at": NOON, "spans": []}))
     path.symlink_to(elsewhere)
-    assert read_live(state, NOON) == ()
+    assert read_live(state, NOON) == Live()
     path.unlink()
     os.mkfifo(path)
-    assert read_live(state, NOON) == ()
+    assert read_live(state, NOON) == Live()
 
 
 def test_a_file_that_others_may_write_is_not_believed(state, memory):
     LiveWriter(state).write(SPANS, NOON)
     (memory / live_name(state)).chmod(0o666)
-    assert read_live(state, NOON) == ()
+    assert read_live(state, NOON) == Live()
 
 
 @pytest.mark.skipif(os.geteuid() != 0, reason="only root can give files to other users")
 def test_a_file_of_another_user_is_not_believed_but_roots_is(state, memory):
     LiveWriter(state).write(SPANS, NOON)
     os.chown(memory / live_name(state), 65534, 65534)
-    assert read_live(state, NOON) == ()
+    assert read_live(state, NOON) == Live()
     os.chown(memory / live_name(state), 0, 0)
     os.chown(state / places.HISTORY, 65534, 65534)
-    assert read_live(state, NOON) == SPANS
+    assert read_live(state, NOON).spans == SPANS
+
+
+def test_troubles_are_shared_too_since_a_history_that_cannot_be_written_cannot_hold_them(state):
+    LiveWriter(state).write((), NOON, ["the disk is full"])
+    assert read_live(state, NOON) == Live(troubles=("the disk is full",))

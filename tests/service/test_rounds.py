@@ -39,7 +39,9 @@ def test_a_round_asks_every_drive_once_and_keeps_what_it_brought(tmp_path, keepe
     with Past.open(tmp_path) as past:
         lines = {line.drive.identity.serial: line for line in past.bays(NOON).drives}
     assert {signal.name: signal.value for signal in lines["INV0001"].signals}["pending-sectors"] == 3
-    assert lines["INV0003"].call.word is CallWord.KEEP
+    call = lines["INV0003"].call
+    assert call is not None
+    assert call.word is CallWord.KEEP
 
 
 def test_a_drive_that_hangs_delays_the_keeping_of_no_other(keeper, monkeypatch):
@@ -135,7 +137,9 @@ def test_a_drive_that_is_gone_is_followed_for_three_rounds_and_then_known_to_be_
     outcomes = [[one.pass_.outcome.value for one in running.run()] for _ in range(5)]
     assert outcomes == [["absent"], ["absent"], ["absent"], [], []]
     with Past.open(tmp_path) as past:
-        assert past.bays(NOON).drives[0].call.word is CallWord.LOOK
+        call = past.bays(NOON).drives[0].call
+    assert call is not None
+    assert call.word is CallWord.LOOK
 
 
 def test_an_incomplete_listing_accuses_no_drive_of_being_gone(keeper):
@@ -171,3 +175,40 @@ def test_a_drive_that_the_owner_wants_left_alone_is_not_kept(keeper):
 
 def test_a_machine_without_any_drive_gives_an_empty_round(keeper):
     assert rounds(ScriptedMachine(), keeper).run() == ()
+
+
+def test_a_round_asks_a_bounded_number_at_once_and_slow_ones_do_not_keep_the_rest_waiting(keeper, monkeypatch):
+    monkeypatch.setattr("diskwatch.service.rounds.AT_ONCE", 2)
+    monkeypatch.setattr("diskwatch.service.rounds.SLOW", 0.02)
+    many = [with_serial(HDD, f"INV1{number:03}", f"/dev/sd{number}") for number in range(8)]
+    machine = ScriptedMachine(*(found(one, bay=one.identity.path) for one in many))
+    machine.answers = {one.identity.path: [read(NOON, one)] for one in many}
+    slow = {one.identity.path: threading.Event() for one in many[:2]}
+    machine.hold = dict(slow)
+    for event in slow.values():
+        threading.Timer(1.0, event.set).start()
+    assert len(rounds(machine, keeper).run()) == 8
+
+
+def test_a_history_that_comes_into_reach_late_is_taken_up_with_its_past(tmp_path):
+    state = tmp_path / "state"
+    first = Keeper(state)
+    machine = ScriptedMachine(found(HDD))
+    machine.answers = {"/dev/sda": [read(NOON, pending_sectors=0)]}
+    rounds(machine, first).run()
+    first.close()
+    away = tmp_path / "away"
+    state.rename(away)
+    state.write_text("in the way")
+    keeper = Keeper(state)
+    running = rounds(machine, keeper)
+    machine.answers = {"/dev/sda": [read(NOON + DAY, pending_sectors=16)]}
+    running.run()  # blind: a first reading, so a level
+    state.unlink()
+    away.rename(state)
+    (done,) = running.run()  # the history is in reach again as this round is kept
+    (done,) = running.run()
+    keeper.close()
+    assert done.call is not None
+    assert done.call.word is CallWord.LOOK
+    assert any("came into reach late" in text for _, _, text in book(state))

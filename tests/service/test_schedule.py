@@ -4,8 +4,8 @@ from diskwatch.service.schedule import Schedule
 
 
 def test_a_job_runs_at_once_and_a_failing_one_is_told_of_and_runs_again():
-    told, twice = [], threading.Event()
-    runs = []
+    told: list[str] = []
+    twice, runs = threading.Event(), []
 
     def fails():
         runs.append(1)

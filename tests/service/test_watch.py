@@ -1,0 +1,90 @@
+import signal
+import threading
+import time
+
+import pytest
+
+from diskwatch.history.reader import Past
+from diskwatch.service.watch import Watch
+from diskwatch.settings import Duration, HistoryKeeping, Io, Settings, Smart, Watch as WatchSettings
+from tests.samples import HDD, NOON, read, with_serial
+from tests.service.machines import ScriptedMachine, counted, found
+
+QUICK = Settings(
+    smart=Smart(every=Duration(1)), io=Io(every=Duration(1)), history=HistoryKeeping(commit=Duration(1))
+)
+
+
+@pytest.fixture
+def machine():
+    made = ScriptedMachine(found(HDD))
+    made.answers = {"/dev/sda": [read(NOON, pending_sectors=0)]}
+    made.totals = [{"sda": counted(number * 100)} for number in range(60)]
+    return made
+
+
+@pytest.fixture
+def _signals():
+    kept = {number: signal.getsignal(number) for number in (signal.SIGTERM, signal.SIGINT)}
+    yield
+    for number, handler in kept.items():
+        signal.signal(number, handler)
+
+
+def test_once_makes_one_round_and_lets_go(machine, tmp_path):
+    told: list[object] = []
+    watch = Watch(machine, QUICK, tmp_path, told=told.append)
+    (done,) = watch.once()
+    assert told == [(done,)]
+    assert machine.stopped
+    with Past.open(tmp_path) as past:
+        assert past.bays(NOON).watcher is None
+        assert len(past.bays(NOON).drives) == 1
+
+
+@pytest.mark.usefixtures("_signals")
+def test_a_watch_counts_traffic_reads_drives_and_stores_all_of_it_by_its_end(machine, tmp_path):
+    watch = Watch(machine, QUICK, tmp_path)
+    seen = []
+
+    def look():
+        with Past.open(tmp_path) as past:
+            for _ in range(80):
+                bays = past.bays(int(time.time()))
+                if bays.drives and bays.drives[0].traffic is not None:
+                    seen.append(bays)
+                    break
+                time.sleep(0.05)
+        signal.raise_signal(signal.SIGTERM)
+
+    threading.Timer(0.3, look).start()
+    watch.run()
+    (bays,) = seen
+    assert bays.watcher is not None
+    assert bays.drives[0].traffic is not None
+    assert bays.drives[0].traffic.counts.reads == 100
+    with Past.open(tmp_path) as past:
+        entries = [entry.text for entry in past.day_book() if entry.kind == "watch"]
+        assert past.traffic(1, 0, 2**40)
+    assert entries == ["Watching began.", "Watching ended."]
+    assert machine.stopped
+
+
+def test_a_drive_that_tells_only_by_itself_who_it_is_can_still_be_left_alone(machine, tmp_path):
+    other = with_serial(HDD, "INV0099", "/dev/sdz")
+    machine.listed.append(found(other))
+    machine.answers["/dev/sdz"] = [read(NOON, other)]
+    settings = Settings(watch=WatchSettings(ignore=("INV0099",)))
+    done = Watch(machine, settings, tmp_path).once()
+    assert [one.known.drive.identity.serial for one in done] == ["INV0001"]
+
+
+@pytest.mark.usefixtures("_signals")
+def test_a_history_that_cannot_be_written_is_said_to_whoever_looks(machine, tmp_path):
+    blocked = tmp_path / "state"
+    blocked.write_text("in the way")
+    watch = Watch(machine, QUICK, blocked)
+    assert watch.trouble
+    threading.Timer(0.5, watch.end).start()
+    watch.run()
+    assert watch.trouble
