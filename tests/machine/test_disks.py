@@ -26,6 +26,28 @@ def test_a_sata_drive_is_known_by_its_own_words_where_the_kernel_keeps_them(tree
     assert disk.capacity_bytes == 4_000_787_030_016
 
 
+def test_a_drives_own_words_outweigh_what_the_kernel_assumes(tree: Tree):
+    tree.sata(identify=[*WORDS[:217], "0001", *WORDS[218:]], serial=None, rotational=True)
+    disk = look(tree.sys, "sda")
+    assert disk is not None
+    assert (disk.kind, disk.serial) == (Kind.SSD, "INV-A-0001")
+
+
+def test_words_that_leave_something_open_are_filled_from_the_scsi_face(tree: Tree):
+    tree.sata(identify=[*WORDS[:10], *["2020"] * 10, *WORDS[20:217], "0000", *WORDS[218:]], rotational=False)
+    disk = look(tree.sys, "sda")
+    assert disk is not None
+    assert (disk.kind, disk.serial) == (Kind.SSD, "INV-A-0001")
+
+
+@pytest.mark.parametrize(
+    "files", [{"removable": "1"}, {"size": "0"}], ids=["stick", "drive that lost its size"]
+)
+def test_neither_removable_nor_without_size_alone_hides_a_drive(tree: Tree, files: dict[str, str]):
+    tree.sata(files=files)
+    assert look(tree.sys, "sda") is not None
+
+
 def test_a_sata_drive_without_them_has_its_scsi_face_but_no_half_firmware(tree: Tree):
     tree.sata(rotational=False)
     disk = look(tree.sys, "sda")
@@ -80,7 +102,7 @@ def test_a_sas_drive_is_named_by_maker_and_model(tree: Tree):
 
 
 @pytest.mark.parametrize(
-    "name", ["loop0", "zram0", "ram0", "dm-0", "md127", "nbd0", "sr0", "fd0", "zd0", "bcache0"]
+    "name", ["loop0", "zram0", "ram0", "dm-0", "md127", "nbd0", "sr0", "fd0", "zd0", "bcache0", "unheard0"]
 )
 def test_what_is_made_of_others_or_of_memory_is_no_disk(tree: Tree, name: str):
     tree.block(name, "devices/virtual/block", device="devices/odd", number="7:0")
