@@ -13,7 +13,7 @@ from dataclasses import dataclass, replace
 from diskwatch import analyser
 from diskwatch.machine import choice, identity
 from diskwatch.machine.protocol import Found, Machine
-from diskwatch.records import Drive, DriveRound, Entry, Identity, KnownDrive, Outcome, Pass, Round
+from diskwatch.records import Drive, DriveRound, Entry, Identity, Kind, KnownDrive, Outcome, Pass, Round
 from diskwatch.service.keeper import Keeper
 from diskwatch.units import plain, say_bytes
 
@@ -64,6 +64,7 @@ class Rounds:
         self._states: dict[int, analyser.DriveState] = {}
         self._here: dict[str, int] = {}
         self._away: dict[int, int] = {}
+        self._instances: dict[str, str] = {}
         self._troubles: tuple[str, ...] = ()
         self._epoch = keeper.epoch
         self._ending = threading.Event()
@@ -86,6 +87,7 @@ class Rounds:
         entries = self._new_troubles(survey.troubles)
         answers: queue.Queue[_Answer] = queue.Queue()
         self._forget_if_void()
+        self._instances = {name: one.instance for name, one in self._machine.counts().items()}
         places = threading.Semaphore(AT_ONCE)
         for found in survey.found:
             self._start(found, answers, places)
@@ -141,7 +143,7 @@ class Rounds:
             answers.put(_Answer(found, self._machine.ask(found)))
             places.release()
 
-        threading.Thread(target=ask, name=f"asks {plain(_key(found))}", daemon=True).start()
+        threading.Thread(target=ask, name=f"asks {plain(found.place.device)}", daemon=True).start()
 
     def _new_troubles(self, troubles: tuple[str, ...]) -> tuple[Entry, ...]:
         """Troubles of the machine as a whole, said when they begin and when they are over."""
@@ -168,7 +170,7 @@ class Rounds:
                 continue
             known, more = self._recognised(answer, taken)
             taken.add(known.number)
-            self._here[_key(answer.found)] = known.number
+            self._here[self._instance(answer.found)] = known.number
             self.blocks[known.number] = answer.found.blocks
             self._away.pop(known.number, None)
             drive, happened = self._judge(known, replace(answer.pass_, drive=known.drive))
@@ -202,7 +204,13 @@ class Rounds:
         at = answer.pass_.at
         free = [one for one in self._keeper.known if one.number not in taken]
         here = self._known_here(found, free)
-        known = identity.recognise(told.identity, free, here=here)
+        silent = answer.pass_.drive is None and found.drive.kind is Kind.USB
+        if silent and here is not None and here.place.bay == found.place.bay:
+            # Behind a bridge the kernel alone would know it by another name. It did not speak, so nothing of
+            # another drive's can be poured into its history.
+            known: KnownDrive | None = here
+        else:
+            known = identity.recognise(told.identity, free, here=here)
         if known is None:
             admitted = self._keeper.admit(told, found.place, at)
             return admitted, [Entry(at=at, drive=admitted.number, kind="first-seen", text=_greeting(admitted))]
@@ -219,11 +227,17 @@ class Rounds:
 
     def _known_here(self, found: Found, free: list[KnownDrive]) -> KnownDrive | None:
         """The drive that answered from the same place before, for one that does not say who it is."""
-        number = self._here.get(_key(found))
+        number = self._here.get(self._instance(found))
         for one in free:
             if one.number == number or (number is None and one.place.device == found.place.device):
                 return one
         return None
+
+    def _instance(self, found: Found) -> str:
+        """What stays the same as long as one device stands under a name; behind a controller, its address."""
+        if found.blocks:
+            return self._instances.get(found.blocks[0], found.blocks[0])
+        return f"{found.address.node} {found.address.type or ''}".rstrip()
 
     def _gone(self, taken: set[int]) -> tuple[tuple[DriveRound, ...], tuple[Entry, ...]]:
         """Drives that were there and are no longer: said, and followed for a few rounds."""
@@ -266,10 +280,6 @@ def _batch(answers: "queue.Queue[_Answer]", waiting: int) -> Iterator[_Answer]:
             return
         got += 1
         yield answer
-
-
-def _key(found: Found) -> str:
-    return f"{found.address.node} {found.address.type or ''}".rstrip() if not found.blocks else found.blocks[0]
 
 
 def _fuller(known: Drive, told: Drive) -> Drive:

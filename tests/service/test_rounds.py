@@ -4,11 +4,11 @@ from dataclasses import replace
 import pytest
 
 from diskwatch.history.reader import Past
-from diskwatch.records import CallWord, Identity, Outcome, Place
+from diskwatch.records import CallWord, Identity, Kind, Outcome, Place
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.rounds import Rounds
 from tests.samples import DAY, HDD, NOON, NVME, missed, read, with_serial
-from tests.service.machines import ScriptedMachine, found
+from tests.service.machines import ScriptedMachine, counted, found
 
 
 @pytest.fixture
@@ -126,6 +126,28 @@ def test_a_drive_that_falls_silent_is_still_the_same_drive(tmp_path, keeper):
     with Past.open(tmp_path) as past:
         (line,) = past.bays(NOON).drives
     assert line.drive.identity.serial == "INV0001"
+
+
+def test_another_device_under_the_same_name_does_not_inherit_a_silent_drives_history(keeper):
+    """Two sticks without names of their own: only the kernel's number of the device tells them apart."""
+    bare = replace(HDD, identity=Identity(wwn=None, model="stick", serial=None, path="/dev/sda"))
+    machine = ScriptedMachine(found(bare))
+    machine.answers = {"/dev/sda": [read(NOON, HDD), read(NOON, NVME)]}
+    machine.totals = [{"sda": counted(0, instance="disk 1")}, {"sda": counted(0, instance="disk 2")}]
+    running = rounds(machine, keeper)
+    numbers = [running.run()[0].known.number for _ in range(2)]
+    assert len(set(numbers)) == 2
+
+
+def test_a_usb_drive_that_is_silent_after_a_restart_is_no_new_drive(keeper):
+    """The kernel knows the bridge's serial only; the drive behind it told another."""
+    bridge = replace(
+        HDD, kind=Kind.USB, identity=Identity(wwn=None, model="Bridge", serial="B1", path="/dev/sda")
+    )
+    machine = ScriptedMachine(found(bridge))
+    machine.answers = {"/dev/sda": [read(NOON), replace(missed(NOON, Outcome.ASLEEP), drive=None)]}
+    numbers = [Rounds(machine, keeper, lambda: NOON).run()[0].known.number for _ in range(2)]
+    assert len(set(numbers)) == 1
 
 
 def test_a_drive_that_is_gone_is_followed_for_three_rounds_and_then_known_to_be_away(tmp_path, keeper):
