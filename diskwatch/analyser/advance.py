@@ -271,23 +271,34 @@ def _damage(state: DriveState, pass_: Pass, reading: Reading) -> spots.Spots:
 
 
 def _first_defects(state: DriveState, pass_: Pass, rises: Mapping[str, int]) -> Iterator[Finding]:
-    """The first rise of a defect counter since the drive has been watched: a first defect."""
+    """The first rise of a defect counter since the drive has been watched, and whatever rose after it."""
     turning = pass_.reading is not None and _turns(pass_, pass_.reading)
-    for signal in _DEFECTS:
-        if signal in rises and (turning or signal not in _ONLY_TURNING):
-            first = state.firsts.get(signal, 0)
-            yield Finding(
-                name="fact:first-defect",
-                kind=FindingKind.FACT,
-                signals=(signal,),
-                since=pass_.at,
-                calls=CallWord.LOOK,
-                cause=Cause.MEDIA,
-                evidence=None,
-                sentence=sentences.first_defect(signal, first, state.latest[signal]),
-                data={"signal": signal, "first": first, "now": state.latest[signal]},
-            )
-            return
+    telling = [signal for signal in _DEFECTS if turning or signal not in _ONLY_TURNING]
+    if not any(signal in rises for signal in telling):
+        return
+    risen = {
+        signal: (state.firsts[signal], state.latest[signal])
+        for signal in telling
+        if signal in state.latest and state.latest[signal] > state.firsts[signal]
+    }
+    if not risen:
+        # What rose had fallen before, below its first value: the rise alone tells.
+        risen = {
+            signal: (state.latest[signal] - rises[signal], state.latest[signal])
+            for signal in telling
+            if signal in rises
+        }
+    yield Finding(
+        name="fact:first-defect",
+        kind=FindingKind.FACT,
+        signals=tuple(risen),
+        since=pass_.at,
+        calls=CallWord.LOOK,
+        cause=Cause.MEDIA,
+        evidence=None,
+        sentence=sentences.fresh_defects(risen),
+        data={signal: {"first": first, "now": now} for signal, (first, now) in risen.items()},
+    )
 
 
 def _drifts(state: DriveState, pass_: Pass) -> Iterator[Finding]:

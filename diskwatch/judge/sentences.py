@@ -79,11 +79,19 @@ def fell(signal: str, old: int, new: int) -> str:
     )
 
 
-def first_defect(signal: str, first: int, now: int) -> str:
-    """A defect counter rose for the first time since the drive has been watched."""
+def fresh_defects(risen: Mapping[str, tuple[int, int]]) -> str:
+    """Defect counters stand above what they were when the drive was first read.
+
+    Args:
+        risen: (first value, value now) by signal, the most telling first.
+    """
+    told = [
+        f"{say_count(now - first)} new {signal_name(signal, now - first)}"
+        for signal, (first, now) in risen.items()
+    ]
     return (
-        f"{_upper(signal_name(signal))} rose from {say_count(first)} to {say_count(now)} since it has been "
-        f"watched: a fresh defect; back up what matters and see whether more follow."
+        f"{', '.join(told)} since it has been watched: fresh defects; back up what matters and see whether "
+        f"more follow."
     )
 
 

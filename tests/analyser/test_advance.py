@@ -69,6 +69,27 @@ def test_more_passes_within_a_day_are_one_step_of_the_ledger():
     assert many[-1].evidence == few[-1].evidence
 
 
+def test_fresh_defects_are_listed_together_with_how_many_there_are_of_each():
+    steps = lived(
+        read(NOON, pending_sectors=4, reported_uncorrectable=0),
+        read(NOON + DAY, pending_sectors=5, reported_uncorrectable=0),
+        read(NOON + 2 * DAY, pending_sectors=5, reported_uncorrectable=7),
+    )
+    assert steps[-1].call.reason.startswith(
+        "1 new sector that could not be read and waits (pending), 7 new reads that it gave up"
+    )
+    assert steps[-1].call.at == NOON + DAY
+
+
+def test_a_rise_below_the_first_value_is_a_fresh_defect_too():
+    steps = lived(
+        read(NOON, pending_sectors=40),
+        read(NOON + DAY, pending_sectors=0),
+        read(NOON + 2 * DAY, pending_sectors=3),
+    )
+    assert steps[-1].call.reason.startswith("3 new sectors")
+
+
 def test_the_odds_rule_copies_from_seven_and_retires_from_eleven():
     """Counts of one: 0 -> 65 pending: R 7 bits, P 7 bits: 14. With 0 -> 9: 4 + 4 = 8."""
     copy = lived(
