@@ -1,5 +1,7 @@
 """The kernel's traffic counters, and what may be concluded from two looks at them.
 
+Reads, writes and busy time come from psutil; what it drops comes from `diskwatch.machine.stat`.
+
 A counter tells of one device since it appeared. After a boot, or when another disk takes over a name, it starts
 anew; subtracting across that would invent traffic. So every total carries its instance.
 """
@@ -11,6 +13,7 @@ import psutil
 
 from diskwatch.machine.kernel_files import number_of, text_of
 from diskwatch.machine.protocol import Counted
+from diskwatch.machine.stat import stat_of
 from diskwatch.records import IoCounts
 
 _TIME_RANGE = 2**32
@@ -30,7 +33,7 @@ def counts(sys_root: Path = Path("/sys"), proc_root: Path = Path("/proc")) -> Ma
     """Totals of the whole disks, by kernel name.
 
     Partitions, and what is made of other devices (dm, md, loop), are left out: their traffic already counts on
-    the disks below. Empty where the kernel keeps no counters.
+    the disks below. So is a disk for which the kernel was told not to count. Empty where it keeps no counters.
     """
     try:
         # nowrap=False: the default adds up across a fall, and so would splice two drives of one name.
@@ -38,8 +41,14 @@ def counts(sys_root: Path = Path("/sys"), proc_root: Path = Path("/proc")) -> Ma
     except (OSError, NotImplementedError, ValueError):
         return {}
     boot = text_of(proc_root / "sys" / "kernel" / "random" / "boot_id")
-    return {
-        name: Counted(
+    found: dict[str, Counted] = {}
+    for name, total in (totals or {}).items():
+        if not (sys_root / "block" / name / "device").exists():
+            continue
+        stat = stat_of(sys_root, name)
+        if stat is None:
+            continue
+        found[name] = Counted(
             counts=IoCounts(
                 reads=total.read_count,
                 writes=total.write_count,
@@ -48,12 +57,16 @@ def counts(sys_root: Path = Path("/sys"), proc_root: Path = Path("/proc")) -> Ma
                 read_ms=total.read_time,
                 write_ms=total.write_time,
                 busy_ms=total.busy_time,
+                discards=stat.discards,
+                discard_bytes=stat.discard_bytes,
+                discard_ms=stat.discard_ms,
+                flushes=stat.flushes,
+                flush_ms=stat.flush_ms,
             ),
             instance=instance_of(sys_root, boot, name),
+            in_flight=stat.in_flight,
         )
-        for name, total in (totals or {}).items()
-        if (sys_root / "block" / name / "device").exists()
-    }
+    return found
 
 
 def instance_of(sys_root: Path, boot: str | None, name: str) -> str:
@@ -77,17 +90,19 @@ def difference(old: Counted, new: Counted, *, elapsed: float | None = None) -> I
         elapsed: seconds between them by a clock that only moves forward, where known.
 
     Returns:
-        The differences, none negative; None where the looks are of different instances, or where a counter
-        fell. A time that fell while no count did may have passed its 32-bit range. That is undone if the result
-        is one that the requests, and the time that went by, could have brought; a drive with deep queues
-        passes the range within days.
+        The differences, none negative, None for what either look lacks. None altogether where the looks are of
+        different instances, or where a counter fell. A time that fell while no count did may have passed its
+        32-bit range. That is undone if the result is one that the requests, and the time that went by, could
+        have brought; a drive with deep queues passes the range within days.
     """
     if old.instance != new.instance:
         return None
     a, b = old.counts, new.counts
     reads, writes = b.reads - a.reads, b.writes - a.writes
     read_bytes, write_bytes = b.read_bytes - a.read_bytes, b.write_bytes - a.write_bytes
-    if min(reads, writes, read_bytes, write_bytes) < 0:
+    discards, flushes = _known(a.discards, b.discards), _known(a.flushes, b.flushes)
+    discard_bytes = _known(a.discard_bytes, b.discard_bytes)
+    if min(reads, writes, read_bytes, write_bytes, discards or 0, flushes or 0, discard_bytes or 0) < 0:
         return None
     wall = None if elapsed is None else round(elapsed * 1_000) + _SLACK_MS
     read_ms = _time(a.read_ms, b.read_ms, _bound(reads, wall))
@@ -104,6 +119,11 @@ def difference(old: Counted, new: Counted, *, elapsed: float | None = None) -> I
         read_ms=read_ms,
         write_ms=write_ms,
         busy_ms=busy_ms,
+        discards=discards,
+        discard_bytes=discard_bytes,
+        discard_ms=_known_time(a.discard_ms, b.discard_ms, _bound(discards or 0, wall)),
+        flushes=flushes,
+        flush_ms=_known_time(a.flush_ms, b.flush_ms, _bound(flushes or 0, wall)),
     )
 
 
@@ -145,7 +165,35 @@ def together(parts: Iterable[IoCounts]) -> IoCounts:
         read_ms=sum(part.read_ms for part in all_parts),
         write_ms=sum(part.write_ms for part in all_parts),
         busy_ms=max((part.busy_ms for part in all_parts), default=0),
+        discards=_sum(part.discards for part in all_parts),
+        discard_bytes=_sum(part.discard_bytes for part in all_parts),
+        discard_ms=_sum(part.discard_ms for part in all_parts),
+        flushes=_sum(part.flushes for part in all_parts),
+        flush_ms=_sum(part.flush_ms for part in all_parts),
     )
+
+
+def completed(counts: IoCounts) -> int:
+    """All requests that came to an end, of whatever sort, failed ones too."""
+    return counts.reads + counts.writes + (counts.discards or 0) + (counts.flushes or 0)
+
+
+def _known(old: int | None, new: int | None) -> int | None:
+    return None if old is None or new is None else new - old
+
+
+def _known_time(old: int | None, new: int | None, bound: int) -> int | None:
+    return None if old is None or new is None else _time(old, new, bound)
+
+
+def _sum(parts: Iterable[int | None]) -> int | None:
+    """The sum where every part is known: a part would pass for the whole."""
+    total = 0
+    for part in parts:
+        if part is None:
+            return None
+        total += part
+    return total
 
 
 def _bound(requests: int, wall: int | None) -> int:

@@ -67,10 +67,13 @@ class Counted:
         counts: totals since the device appeared.
         instance: changes whenever another device, or the same after a boot or a re-plug, stands under the name;
             totals of different instances must never be subtracted.
+        in_flight: requests that the drive has been handed and has not answered, at the moment of the look; None
+            where the kernel does not say.
     """
 
     counts: IoCounts
     instance: str
+    in_flight: int | None = None
 
 
 class Machine(Protocol):

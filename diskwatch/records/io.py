@@ -15,6 +15,11 @@ class IoCounts:
         read_ms: time that reads took, summed over requests, milliseconds.
         write_ms: the same of writes.
         busy_ms: time in which at least one request was under way, milliseconds.
+        discards: discard requests completed; None where the kernel does not count them, or nobody kept them.
+        discard_bytes: bytes discarded, or None likewise.
+        discard_ms: time that discards took, summed over requests, milliseconds, or None likewise.
+        flushes: flush requests completed, or None likewise; they are no reads and no writes.
+        flush_ms: time that flushes took, summed over requests, milliseconds, or None likewise.
     """
 
     reads: int
@@ -24,6 +29,11 @@ class IoCounts:
     read_ms: int
     write_ms: int
     busy_ms: int
+    discards: int | None = None
+    discard_bytes: int | None = None
+    discard_ms: int | None = None
+    flushes: int | None = None
+    flush_ms: int | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

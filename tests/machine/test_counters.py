@@ -1,4 +1,6 @@
-from dataclasses import astuple, replace
+import os
+import threading
+from dataclasses import astuple, fields, replace
 from pathlib import Path
 from types import SimpleNamespace
 
@@ -6,7 +8,7 @@ import psutil
 import pytest
 from hypothesis import given, strategies as st
 
-from diskwatch.machine.counters import counts, difference, instance_of, together, traffic
+from diskwatch.machine.counters import completed, counts, difference, instance_of, together, traffic
 from diskwatch.machine.protocol import Counted
 from diskwatch.records import IoCounts
 from tests.machine.trees import Tree
@@ -15,46 +17,69 @@ WRAP = 2**32
 START = IoCounts(
     reads=100, writes=200, read_bytes=4096, write_bytes=8192, read_ms=1000, write_ms=2000, busy_ms=1500
 )
+NAMES = tuple(field.name for field in fields(IoCounts))
 small = st.integers(min_value=0, max_value=10**6)
-totals = st.builds(
-    IoCounts,
-    reads=small,
-    writes=small,
-    read_bytes=small,
-    write_bytes=small,
-    read_ms=small,
-    write_ms=small,
-    busy_ms=small,
-)
+full = st.builds(IoCounts, **dict.fromkeys(NAMES, small))
+old_kernels = st.builds(IoCounts, **dict.fromkeys(NAMES[:7], small))
+totals = full | old_kernels
 
 
 def look(counts: IoCounts, instance: str = "boot a, disk 1") -> Counted:
     return Counted(counts=counts, instance=instance)
 
 
+def made(*numbers: int | None) -> IoCounts:
+    """Counts by position; what is left out at the end is not known."""
+    return IoCounts(**dict(zip(NAMES, numbers, strict=False)))  # type: ignore[arg-type]  # the first seven are whole
+
+
+def told(counts: IoCounts) -> list[int]:
+    return [number for number in astuple(counts) if number is not None]
+
+
 def plus(a: IoCounts, b: IoCounts) -> IoCounts:
-    return IoCounts(
-        reads=a.reads + b.reads,
-        writes=a.writes + b.writes,
-        read_bytes=a.read_bytes + b.read_bytes,
-        write_bytes=a.write_bytes + b.write_bytes,
-        read_ms=a.read_ms + b.read_ms,
-        write_ms=a.write_ms + b.write_ms,
-        busy_ms=a.busy_ms + b.busy_ms,
-    )
+    pairs = zip(astuple(a), astuple(b), strict=True)
+    return made(*(None if x is None or y is None else x + y for x, y in pairs))
 
 
 @given(totals, totals)
 def test_a_difference_added_to_the_earlier_look_gives_the_later(old: IoCounts, change: IoCounts):
-    assert difference(look(old), look(plus(old, change))) == change
+    later = plus(old, change)
+    found = difference(look(old), look(later))
+    assert found is not None
+    assert plus(old, found) == later
+    assert told(found) == told(change)[: len(told(found))]
 
 
 @given(totals, totals)
 def test_a_difference_is_never_negative_and_a_fall_gives_none(old: IoCounts, new: IoCounts):
     found = difference(look(old), look(new))
-    fell = any(after < before for before, after in zip(astuple(old), astuple(new), strict=True))
-    assert (found is None) == fell
-    assert found is None or min(astuple(found)) >= 0
+    pairs = {name: (getattr(old, name), getattr(new, name)) for name in NAMES}
+    fell = {name for name, pair in pairs.items() if None not in pair and pair[1] < pair[0]}
+    assert (found is None) == bool(fell - {"discard_ms", "flush_ms"})
+    assert found is None or min(told(found)) >= 0
+
+
+@given(full, full)
+def test_a_time_of_flushes_that_cannot_be_told_takes_nothing_else_away(old: IoCounts, change: IoCounts):
+    later = replace(plus(old, change), flush_ms=0)
+    found = difference(look(replace(old, flush_ms=10**9)), look(later))
+    assert found is not None
+    assert (found.flush_ms, found.flushes, found.reads) == (None, change.flushes, change.reads)
+
+
+def test_a_time_of_discards_that_passed_its_range_is_made_whole():
+    old = made(*range(1, 13))
+    found = difference(
+        look(replace(old, discard_ms=WRAP - 400)), look(replace(old, discards=90, discard_ms=600))
+    )
+    assert found is not None
+    assert found.discard_ms == 1000
+
+
+def test_requests_of_every_sort_come_to_an_end():
+    assert completed(made(1, 20, 3, 4, 5, 6, 7)) == 21
+    assert completed(made(1, 20, 3, 4, 5, 6, 7, 300, 8, 9, 4000, 10)) == 4321
 
 
 def test_another_instance_is_never_subtracted():
@@ -94,10 +119,11 @@ def test_requests_can_bring_together_no_more_time_than_a_full_queue_has_in_the_t
 
 
 def test_namespaces_are_summed_but_are_not_busy_one_after_the_other():
-    other = replace(START, reads=1, busy_ms=700)
+    other = replace(START, reads=1, busy_ms=700, flushes=4)
     assert together((START, other)) == IoCounts(
         reads=101, writes=400, read_bytes=8192, write_bytes=16384, read_ms=2000, write_ms=4000, busy_ms=1500
     )
+    assert together((other, other)).flushes == 8
 
 
 def test_a_drive_has_traffic_only_where_all_of_it_was_seen_twice():
@@ -120,10 +146,11 @@ def test_an_instance_is_the_boot_and_the_disks_number_or_else_its_name_and_size(
     assert instance_of(tree.sys, "b", "sda") == "boot b, sda of 1000 sectors"
 
 
-def test_only_whole_disks_are_counted(tree: Tree, monkeypatch: pytest.MonkeyPatch):
-    disk = tree.sata()
+def test_only_whole_disks_that_the_kernel_counts_are_counted(tree: Tree, monkeypatch: pytest.MonkeyPatch):
+    disk = tree.sata(files={"stat": "1 0 2 3 4 0 5 6 8 7 9 10 11 12 13 14 15"})
     tree.partition(disk, "sda1", "8:1")
     tree.stacked("dm-0", "253:0", disk)
+    tree.sata("sdb", "8:16", port=4, files={"queue/iostats": "0"})
     total = SimpleNamespace(
         read_count=1, write_count=2, read_bytes=3, write_bytes=4, read_time=5, write_time=6, busy_time=7
     )
@@ -131,13 +158,14 @@ def test_only_whole_disks_are_counted(tree: Tree, monkeypatch: pytest.MonkeyPatc
     def told(*, perdisk: bool, nowrap: bool) -> dict[str, SimpleNamespace]:
         assert perdisk
         assert not nowrap
-        return dict.fromkeys(("sda", "sda1", "dm-0"), total)
+        return dict.fromkeys(("sda", "sda1", "dm-0", "sdb"), total)
 
     monkeypatch.setattr(psutil, "disk_io_counters", told)
     assert counts(tree.sys, tree.proc) == {
         "sda": Counted(
-            counts=IoCounts(reads=1, writes=2, read_bytes=3, write_bytes=4, read_ms=5, write_ms=6, busy_ms=7),
+            counts=made(1, 2, 3, 4, 5, 6, 7, 10, 12 * 512, 13, 14, 15),
             instance="boot 11111111-2222-3333-4444-555555555555, disk 1",
+            in_flight=8,
         )
     }
 
@@ -153,26 +181,48 @@ def test_a_kernel_without_counters_counts_nothing(
     assert counts(tree.sys, tree.proc) == {}
 
 
-def test_the_counts_of_this_computer_lie_between_two_looks_at_diskstats():
-    # Fields by position as Documentation/admin-guide/iostats.rst numbers them; sectors are always 512 bytes.
-    def by_hand() -> dict[str, tuple[int, ...]]:
-        lines = [line.split() for line in Path("/proc/diskstats").read_text(encoding="ascii").splitlines()]
-        return {
-            line[2]: (
-                int(line[3]),
-                int(line[7]),
-                int(line[5]) * 512,
-                int(line[9]) * 512,
-                int(line[6]),
-                int(line[10]),
-                int(line[12]),
-            )
-            for line in lines
-        }
+# Fields by position as Documentation/admin-guide/iostats.rst numbers them, the name being the third word before
+# them; sectors are always 512 bytes.
+BY_HAND = ((3, 1), (7, 1), (5, 512), (9, 512), (6, 1), (10, 1), (12, 1))
+BY_HAND_SINCE_5_5 = (*BY_HAND, (14, 1), (16, 512), (17, 1), (18, 1), (19, 1))
 
-    before, found, after = by_hand(), counts(), by_hand()
-    if not found:
-        pytest.skip("this computer shows no physical disk")
-    for name, counted in found.items():
-        for low, value, high in zip(before[name], astuple(counted.counts), after[name], strict=True):
-            assert low <= value <= high
+
+def by_hand() -> dict[str, tuple[int, ...]]:
+    lines = [line.split() for line in Path("/proc/diskstats").read_text(encoding="ascii").splitlines()]
+    return {
+        line[2]: tuple(int(line[at]) * unit for at, unit in (BY_HAND_SINCE_5_5 if len(line) >= 20 else BY_HAND))
+        for line in lines
+    }
+
+
+def test_the_counts_of_this_computer_lie_between_two_looks_at_diskstats_under_load(tmp_path: Path):
+    enough = threading.Event()
+    looks = []
+
+    def load() -> None:
+        with (tmp_path / "load").open("wb", buffering=0) as file:
+            while not enough.is_set():
+                file.seek(0)
+                file.write(os.urandom(65_536))
+                os.fsync(file.fileno())  # so that the disk writes and flushes
+                os.posix_fadvise(file.fileno(), 0, 0, os.POSIX_FADV_DONTNEED)
+                (tmp_path / "load").read_bytes()
+
+    loading = threading.Thread(target=load)
+    loading.start()
+    try:
+        for _ in range(20):
+            before, found, after = by_hand(), counts(), by_hand()
+            if not found:
+                pytest.skip("this computer shows no physical disk that its kernel counts")
+            looks.append(found)
+            for name, counted in found.items():
+                for low, value, high in zip(before[name], told(counted.counts), after[name], strict=True):
+                    assert low <= value <= high
+                assert counted.in_flight is not None
+                assert counted.in_flight >= 0
+    finally:
+        enough.set()
+        loading.join()
+    for name in looks[0].keys() & looks[-1].keys():
+        assert difference(looks[0][name], looks[-1][name]) is not None

@@ -62,6 +62,8 @@ class Tree:
         self.put(place / "hidden", "0")
         self.put(place / "queue/rotational", "0")
         self.put(place / "diskseq", str(self._sequence))
+        self.put(place / "queue/iostats", "1")
+        self.put(place / "stat", "1 0 2 3 4 0 5 6 0 7 9")
         if device is not None:
             (self.sys / device).mkdir(parents=True, exist_ok=True)
             (place / "device").symlink_to(self.sys / device)
