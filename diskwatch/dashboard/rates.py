@@ -18,7 +18,7 @@ def traffic(span: IoSpan | None) -> tuple[str, ...]:
         request took in the mean. The fullest ends with the share of the time in which the drive was busy.
     """
     if span is None:
-        return ("nobody measures its traffic", "not measured")
+        return ("traffic not measured", "not measured")
     if span.seconds < _SHORTEST:
         return ("traffic not known yet",)
     counts = span.counts

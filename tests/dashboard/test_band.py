@@ -69,7 +69,7 @@ def test_an_unread_drive_is_not_quiet_and_says_why():
     assert first.startswith("▒  unread   sde")
     assert "size ?" in first
     assert second == "▒  Reading /dev/sde needs the right to do so."
-    assert third.startswith("▒  nobody measures its traffic")
+    assert third.startswith("▒  traffic not measured")
     assert third.endswith("refused 12 min ago")
 
 

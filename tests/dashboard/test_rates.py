@@ -37,7 +37,7 @@ def test_a_drive_at_rest_has_no_traffic():
 
 
 def test_traffic_that_nobody_measures_is_not_called_none():
-    assert traffic(None)[0] == "nobody measures its traffic"
+    assert traffic(None)[0] == "traffic not measured"
 
 
 def test_a_span_without_length_gives_no_rate():
