@@ -78,8 +78,9 @@ def _band(line: DriveLine, at: int, width: int) -> list[str]:
     last = line.last_pass
     if last is not None:
         ago = say_span(max(0, at - last.at))
-        how = "read" if last.explanation is None else f"{last.outcome.value}: {last.explanation}"
-        told.append(f"Last pass {ago} ago: {how}.".replace("..", "."))
+        # An explanation is a whole sentence already.
+        how = "read." if last.explanation is None else f"{last.outcome.value}: {last.explanation}"
+        told.append(f"Last pass {ago} ago: {how}")
     body = textwrap.wrap(plain(" ".join(told)), max(20, width - 8), break_long_words=True)
     first, *rest = textwrap.wrap(plain(head), max(20, width), subsequent_indent=" " * 8) or [word]
     return [first, *rest, *(" " * 8 + part for part in body)]

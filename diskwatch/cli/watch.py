@@ -69,6 +69,6 @@ def _say(part: tuple[DriveRound, ...]) -> None:
         word = call.word.value if call is not None else "-"
         told = call.reason if call is not None else ""
         if one.pass_.explanation and one.pass_.explanation not in told:
-            told = f"{one.pass_.outcome.value}: {one.pass_.explanation}. {told}".rstrip()
+            told = f"{one.pass_.outcome.value}: {one.pass_.explanation} {told}".rstrip()
         who = one.known.drive.identity.model or one.known.place.device
         print(plain(f"{word:<6}  {who} ({one.known.place.device}): {told}"), flush=True)

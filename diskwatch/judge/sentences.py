@@ -179,7 +179,7 @@ def warns_of_heat() -> str:
 
 def unreadable(times: int, explanation: str) -> str:
     """Passes in a row brought nothing."""
-    return f"It could not be read {times} times in a row: {explanation}"
+    return f"It could not be read {times} times in a row. {explanation}"
 
 
 def no_smart() -> str:

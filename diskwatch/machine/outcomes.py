@@ -24,21 +24,23 @@ _ASLEEP = re.compile(
     r"device is in [\w ()-]*\b(?:standby|sleep|stopped|idle)\w*\b[\w ()-]* mode|device is not ready",
     re.IGNORECASE,
 )
+_UNPROVED = re.compile(r"\bin SLEEP mode|not ready", re.IGNORECASE)
+"""smartctl says SLEEP also where the question for the power mode failed, since a drive in that mode answers
+nothing (seen with version 7.3 on a node that is no disk), and NOT READY of any SCSI drive that is not."""
+
+_RESTS = "It is asleep and was not woken; it is asked again when it is awake."
 _REFUSED = re.compile(r"permission denied|operation not permitted|\bEACCES\b|\bEPERM\b", re.IGNORECASE)
 _ABSENT = re.compile(
     r"no such device|no such file or directory|no such node|\bENXIO\b|\bENOENT\b|\bENODEV\b", re.IGNORECASE
 )
-_UNKNOWN_BRIDGE = (
-    "smartctl does not know its USB adapter and cannot ask the drive behind it (a newer smartctl may; by hand, "
-    "try the device types sat, sntasmedia, sntjmicron and sntrealtek)"
-)
-_NO_ANSWER = "it answers no question of ATA, SCSI or NVMe, as is usual for virtual disks"
+_UNKNOWN_BRIDGE = "It cannot be asked, since smartctl does not know its USB adapter"
+_NO_ANSWER = "It answers no question of ATA, SCSI or NVMe, as is usual for virtual disks"
 _NO_SMART: tuple[tuple[re.Pattern[str], str], ...] = (
     (re.compile(r"unknown usb bridge", re.IGNORECASE), _UNKNOWN_BRIDGE),
     (re.compile(r"unable to detect device type|neither ata, scsi nor nvme", re.IGNORECASE), _NO_ANSWER),
     (
         re.compile(r"lacks smart capability|does not support smart|don't support ata smart", re.IGNORECASE),
-        "it has no SMART",
+        "It has no SMART",
     ),
 )
 _NOISE = re.compile(
@@ -53,11 +55,15 @@ class Verdict:
 
     Attributes:
         outcome: how.
-        explanation: why, one sentence; None for a drive that was read.
+        explanation: why, one whole sentence about "it", since the drive's name stands beside it wherever it is
+            shown; what a person needs first, what to do last, the tool's own words in brackets at the end.
+            None for a drive that was read.
+        unproved: True where the words say asleep, but a drive that answers nothing at all gets them too.
     """
 
     outcome: Outcome
     explanation: str | None = None
+    unproved: bool = False
 
 
 def quoted(text: str) -> str:
@@ -65,74 +71,102 @@ def quoted(text: str) -> str:
     return plain(text.strip())[:_QUOTED]
 
 
-def of_command(answer: Answer, *, command: str, name: str, timeout: float) -> Verdict | None:
+def of_command(answer: Answer, *, command: str, timeout: float) -> Verdict | None:
     """The verdict where the command gave no whole answer; None where it did.
 
     Args:
         answer: what the command left behind.
         command: what was run.
-        name: the drive, as a person knows it.
         timeout: seconds that it had.
     """
     tool = quoted(command)
-    if answer.ending is Ending.MISSING:
-        return Verdict(
-            outcome=Outcome.NO_TOOL,
-            explanation=f"{name}: cannot be asked, since there is no command {tool}; install smartctl, or name "
-            "it in the settings under [smart] command",
-        )
-    if answer.ending is Ending.NOT_EXECUTABLE:
-        return Verdict(
-            outcome=Outcome.NO_TOOL,
-            explanation=f"{name}: cannot be asked, since {tool} cannot be run ({quoted(answer.trouble)}); name "
-            "another smartctl in the settings under [smart] command",
-        )
+    if answer.ending in {Ending.MISSING, Ending.NOT_EXECUTABLE}:
+        return Verdict(outcome=Outcome.NO_TOOL, explanation=_lacking(answer, tool))
     if answer.ending is Ending.TIMED_OUT:
         return Verdict(
             outcome=Outcome.TIMED_OUT,
-            explanation=f"{name}: gave no answer in {timeout:g} s and was given up for this round; a drive "
-            "that does so often, or a cable or adapter before it, may be failing",
+            explanation=f"It gave no answer in {timeout:g} s and was given up for this round: where that comes "
+            "again, copy off what matters first, then look at its cable and adapter.",
         )
     if answer.ending is Ending.HELD:
         return Verdict(
             outcome=Outcome.TIMED_OUT,
-            explanation=f"{name}: an earlier question to it is still stuck in the kernel, so it was not asked "
-            "again; the drive, or a cable or adapter before it, may be failing",
+            explanation="It was not asked, since an earlier question to it is still stuck in the kernel: copy "
+            "off what matters first, then look at its cable and adapter.",
         )
     if answer.ending is Ending.STOPPED:
         return Verdict(
-            outcome=Outcome.TIMED_OUT, explanation=f"{name}: the watch was ended before the drive had answered"
+            outcome=Outcome.TIMED_OUT, explanation="It had not answered yet when the watch was ended."
         )
     if answer.ending is Ending.NOT_STARTED:
         return Verdict(
             outcome=Outcome.GARBLED,
-            explanation=f"{name}: {tool} could not be started ({quoted(answer.trouble)}); it will be tried "
-            "again",
+            explanation=f"It was not asked, since {tool} could not be started; it is tried again in the next "
+            f"round ({quoted(answer.trouble)}).",
         )
     if answer.ending is Ending.TOO_MUCH:
         return Verdict(
             outcome=Outcome.GARBLED,
-            explanation=f"{name}: {tool} wrote without end and was cut off; is it smartctl?",
+            explanation=f"It was not read, since {tool} wrote without end and was cut off: see whether that "
+            "is smartctl.",
         )
     if answer.status is not None and answer.status < 0:
         return Verdict(
             outcome=Outcome.GARBLED,
-            explanation=f"{name}: {tool} was ended by signal {-answer.status} before it was done; it will be "
-            "tried again",
+            explanation=f"It was not read, since {tool} was ended by signal {-answer.status} before it was "
+            "done; it is tried again in the next round.",
         )
     return None
 
 
-def of_words(
-    said: Iterable[str], status: int | None, what: Understood, *, name: str, expects_smart: bool
-) -> Verdict:
+def of_scan(answer: Answer, *, command: str, timeout: float) -> str | None:
+    """Why there is no list of drives, and what to do, one sentence; None where the command gave one.
+
+    Args:
+        answer: what the command left behind.
+        command: what was run.
+        timeout: seconds that it had.
+    """
+    tool = quoted(command)
+    if answer.ending in {Ending.MISSING, Ending.NOT_EXECUTABLE}:
+        return _lacking(answer, tool)
+    if answer.ending is Ending.ENDED and (answer.status or 0) >= 0:
+        return None
+    if answer.ending is Ending.TIMED_OUT:
+        why = f"gave no list of drives in {timeout:g} s"
+    elif answer.ending is Ending.TOO_MUCH:
+        why = "wrote without end when asked for a list of drives"
+    elif answer.ending is Ending.STOPPED:
+        why = "was ended together with the watch"
+    elif answer.ending is Ending.ENDED:
+        why = f"was ended by signal {-(answer.status or 0)} when asked for a list of drives"
+    else:
+        why = f"could not be started ({quoted(answer.trouble)})"
+    return (
+        f"{tool} {why}, so drives behind a controller may be missing here; it is asked again in the next round."
+    )
+
+
+def _lacking(answer: Answer, tool: str) -> str:
+    """What is wrong with the tool itself, and the cure."""
+    if answer.ending is Ending.MISSING:
+        return (
+            f"{tool} was not found: install smartctl (on Debian and Ubuntu: apt install smartmontools), or "
+            "name it in the settings under [smart] command."
+        )
+    return (
+        f"{tool} cannot be run: name another smartctl in the settings under [smart] command "
+        f"({quoted(answer.trouble)})."
+    )
+
+
+def of_words(said: Iterable[str], status: int | None, what: Understood, *, expects_smart: bool) -> Verdict:
     """The verdict on a whole answer.
 
     Args:
         said: every line of text, complaint and standard error.
         status: smartctl's exit status.
         what: what was understood of the answer.
-        name: the drive, as a person knows it.
         expects_smart: whether the kernel lets one expect SMART of it.
     """
     lines = [line for line in said if line.strip()]
@@ -141,69 +175,55 @@ def of_words(
     if what.support is Support.OFF and not (what.family is Family.SCSI and what.says_something):
         return Verdict(
             outcome=Outcome.NO_SMART,
-            explanation=f"{name}: its SMART is switched off; smartctl -s on switches it on",
+            explanation="It has its SMART switched off: 'smartctl -s on' with its device switches it on.",
         )
     if what.says_something and what.support is not Support.NONE:
         return Verdict(outcome=Outcome.READ)
     asleep = _first(lines, _ASLEEP)
     if asleep is not None:
-        return _asleep(name, asleep)
+        return Verdict(
+            outcome=Outcome.ASLEEP, explanation=_RESTS, unproved=_UNPROVED.search(asleep) is not None
+        )
     refused = _first(lines, _REFUSED)
     if refused is not None:
         return Verdict(
             outcome=Outcome.REFUSED,
-            explanation=f"{name}: may not be asked without the rights of root; let the system service watch, "
-            f"or run the command as root ({quoted(refused)})",
+            explanation="It may not be asked without the rights of root: let the system service watch, or run "
+            f"the command as root ({quoted(refused)}).",
         )
     if _first(lines, _ABSENT) is not None:
         return Verdict(
             outcome=Outcome.ABSENT,
-            explanation=f"{name}: is not there any more; if nobody unplugged it, look at its cable and power",
+            explanation="It is not there any more: if nobody unplugged it, look at its cable and power.",
         )
     for pattern, why in _NO_SMART:
         if _first(lines, pattern) is not None:
-            return Verdict(
-                outcome=Outcome.NO_SMART, explanation=f"{name}: {why}; it is watched by its traffic only"
-            )
+            return _without_smart(why)
     if status == ASLEEP_STATUS:
-        return _asleep(name, None)
-    return _not_understood(lines, what, name=name, expects_smart=expects_smart)
+        return Verdict(outcome=Outcome.ASLEEP, explanation=_RESTS)
+    return _not_understood(lines, what, expects_smart=expects_smart)
 
 
-def _asleep(name: str, words: str | None) -> Verdict:
-    """A drive that was left alone.
-
-    smartctl prints SLEEP also where the question for the power mode failed, since a drive in that mode answers
-    nothing. Seen with version 7.3 on a node that is no disk at all; a dying drive may look the same.
-    """
-    if words is not None and "sleep" in words.lower():
-        return Verdict(
-            outcome=Outcome.ASLEEP,
-            explanation=f"{name}: is asleep, or does not even answer whether it is, and was not woken; if it "
-            "is in use all the same, look at its cable, its adapter and the drive",
-        )
-    return Verdict(
-        outcome=Outcome.ASLEEP, explanation=f"{name}: is asleep and was not woken; it is asked when it is awake"
-    )
+def _without_smart(why: str) -> Verdict:
+    return Verdict(outcome=Outcome.NO_SMART, explanation=f"{why}; its traffic is watched all the same.")
 
 
-def _not_understood(lines: list[str], what: Understood, *, name: str, expects_smart: bool) -> Verdict:
+def _not_understood(lines: list[str], what: Understood, *, expects_smart: bool) -> Verdict:
     """An answer in which nothing of a drive's state can be found."""
     if what.support is Support.NONE or not expects_smart:
-        return Verdict(
-            outcome=Outcome.NO_SMART, explanation=f"{name}: it has no SMART; it is watched by its traffic only"
-        )
+        return _without_smart("It has no SMART")
     telling = next((line for line in lines if _NOISE.match(line.strip()) is None), None)
     if what.drive is not None:
-        why = "says who it is but its SMART data could not be read"
+        why = "It says who it is, but not how it is: its SMART data could not be read"
     elif telling is None:
-        why = "smartctl ended without a word about it"
+        why = "It could not be read, and smartctl ended without a word about why"
     else:
-        why = "gave no answer that makes sense"
+        why = "It gave no answer that makes sense"
     words = f" ({quoted(telling)})" if telling is not None and what.drive is None else ""
     return Verdict(
         outcome=Outcome.GARBLED,
-        explanation=f"{name}: {why}{words}; if it stays so, look at its cable, its adapter and the drive",
+        explanation=f"{why}; if it stays so, copy off what matters first, then look at its cable and adapter"
+        f"{words}.",
     )
 
 

@@ -16,7 +16,6 @@ from diskwatch.machine.smartctl import Smartctl
 from diskwatch.machine.stacks import stack_on
 from diskwatch.machine.survey import joined
 from diskwatch.records import Drive, Kind, Outcome, Pass
-from diskwatch.units import plain
 
 
 def _wall_clock() -> int:
@@ -69,7 +68,7 @@ class RealMachine:
         if not listed:
             troubles.append(
                 f"{self._sys / 'block'} lists no block device, so drives may be missing: "
-                "check that sysfs is mounted there and may be read"
+                "check that sysfs is mounted there and may be read."
             )
         lines = mount_lines(self._proc)
         found = []
@@ -95,7 +94,7 @@ class RealMachine:
             return Pass(
                 at=self._now(),
                 outcome=Outcome.ASLEEP,
-                explanation=f"{_name(found)}: is suspended by the kernel and was not asked: that would wake it",
+                explanation="It is suspended by the kernel and was not asked, since that would wake it.",
             )
         instance = self._instance(found)
         if instance in self._without_smart:
@@ -135,14 +134,10 @@ def _no_smart(found: Found, answer: Pass) -> Pass:
     return replace(
         answer,
         outcome=Outcome.NO_SMART,
-        explanation=f"{_name(found)}: is {what} and has no SMART; its traffic is watched all the same",
+        explanation=f"It is {what} and has no SMART; its traffic is watched all the same.",
     )
 
 
 def _at(said: Drive, found: Found) -> Drive:
     """What a drive said of itself, at the place where it is now."""
     return replace(said, identity=replace(said.identity, path=found.place.device))
-
-
-def _name(found: Found) -> str:
-    return plain(found.place.device)

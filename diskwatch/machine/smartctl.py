@@ -86,11 +86,9 @@ class Smartctl:
     def scan(self) -> Scan:
         """List the devices that smartctl sees, opening none of them."""
         answer = self._door.run([self._command, "--scan"], timeout=self._timeout)
-        verdict = outcomes.of_command(
-            answer, command=self._command, name="the list of drives", timeout=self._timeout
-        )
-        if verdict is not None:
-            return Scan(entries=(), trouble=verdict.explanation)
+        trouble = outcomes.of_scan(answer, command=self._command, timeout=self._timeout)
+        if trouble is not None:
+            return Scan(entries=(), trouble=trouble)
         found: dict[Address, None] = {}
         for line in decoded(answer.out).splitlines():
             entry = _SCANNED.fullmatch(line.strip())
@@ -112,16 +110,16 @@ class Smartctl:
             told = Pass(
                 at=0,
                 outcome=Outcome.GARBLED,
-                explanation=f"{quoted(found.place.device)}: its answer could not be taken in "
-                f"({type(error).__name__}); please report this as a fault of diskwatch",
+                explanation="It answered, but the answer could not be taken in: please report this as a fault "
+                f"of diskwatch ({type(error).__name__}).",
             )
         return replace(told, at=self._now(), took_ms=int((time.monotonic() - begun) * 1000))
 
     def _asked(self, found: Found) -> Pass:
-        name, node = quoted(found.place.device), found.address.node
+        node = found.address.node
         type_ = found.address.type or self._worked.get(_key(found))
         answer = self._answer(node, type_)
-        verdict = outcomes.of_command(answer, command=self._command, name=name, timeout=self._timeout)
+        verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
         if verdict is not None:
             return _pass(verdict, found, None, None)
         text = decoded(answer.out)
@@ -133,7 +131,7 @@ class Smartctl:
             *(messages(document) if document is not None else ()),
             *decoded(answer.err).splitlines(),
         )
-        verdict = outcomes.of_words(said, answer.status, what, name=name, expects_smart=found.expects_smart)
+        verdict = outcomes.of_words(said, answer.status, what, expects_smart=found.expects_smart)
         if found.address.type is None:
             self._remember(found, verdict, document)
         return _pass(verdict, found, what, answer.status)

@@ -149,7 +149,8 @@ class Pass:
     Attributes:
         at: when it ended, UTC, whole seconds since 1970.
         outcome: how it ended.
-        explanation: one sentence of why, for every outcome but ``read``; None for ``read``.
+        explanation: one whole sentence of why, with its full stop and without the drive's name, for every
+            outcome but ``read``; None for ``read``.
         drive: the drive as it described itself, or None where it said nothing of itself.
         reading: what it brought; None unless the outcome is ``read`` (a drive without SMART brings none).
         exit_bits: smartctl's exit status, or None where it did not end by itself.
