@@ -4,8 +4,9 @@
 rehearsal of a failure run the very same code.
 """
 
-from diskwatch.analyser.advance import UNREAD_LIMIT, Step, advance
+from diskwatch.analyser.advance import Step, advance
 from diskwatch.analyser.explain import Explanation, explain
+from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.state import DriveState, dump, load, start
 
 __all__ = ["UNREAD_LIMIT", "DriveState", "Explanation", "Step", "advance", "dump", "explain", "load", "start"]

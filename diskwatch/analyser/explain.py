@@ -2,7 +2,7 @@
 
 from dataclasses import dataclass
 
-from diskwatch.analyser.advance import UNREAD_LIMIT
+from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import rules, sentences
 from diskwatch.records import Call, CallWord, Finding

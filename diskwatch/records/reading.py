@@ -1,5 +1,6 @@
 """What one pass over a drive brought."""
 
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from enum import StrEnum
 
@@ -128,17 +129,19 @@ class Reading:
     self_tests: tuple[SelfTest, ...] = ()
     warning_celsius: int | None = None
     critical_celsius: int | None = None
+    _named: Mapping[str, int | str | None] = field(init=False, repr=False, compare=False)
+
+    def __post_init__(self) -> None:
+        """Lay the values out by name: a judgement asks for two dozen of them."""
+        object.__setattr__(self, "_named", {value.signal: value.value for value in reversed(self.values)})
 
     def get(self, signal: str) -> int | str | None:
         """The value of a signal, or None where it is absent or unknown."""
-        for value in self.values:
-            if value.signal == signal:
-                return value.value
-        return None
+        return self._named.get(signal)
 
     def number(self, signal: str) -> int | None:
         """The value of a signal where it is a number, else None."""
-        value = self.get(signal)
+        value = self._named.get(signal)
         return value if isinstance(value, int) else None
 
 
@@ -164,3 +167,22 @@ class Pass:
     reading: Reading | None = field(default=None, repr=False)
     exit_bits: int | None = None
     took_ms: int = 0
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PassDay:
+    """How many passes over a drive ended in one way on one day; so "no change" stays knowledge for ever.
+
+    Attributes:
+        day: UTC day number, counted from 1970-01-01.
+        outcome: how they ended.
+        passes: how many.
+        first: time of the first, UTC seconds since 1970.
+        last: time of the last.
+    """
+
+    day: int
+    outcome: Outcome
+    passes: int
+    first: int
+    last: int

@@ -68,13 +68,14 @@ def next_day(stream: Stream, *, day: int, exposure: float, norm_per_day: float) 
         factors = ledgers.count_factors(episode=False, exposure=counted, norm_per_day=norm_per_day)
         closed = ledgers.after(closed, factors, counted)
     opened_one = stream.decided and stream.last_episode == stream.day
-    return replace(
-        stream,
+    return Stream(
         ledger=closed,
         day=day,
         exposure=exposure,
         absorbing=ABSORBED if opened_one else stream.absorbing - absorbed,
-        decided=False,
+        episodes=stream.episodes,
+        first_episode=stream.first_episode,
+        last_episode=stream.last_episode,
         powered=stream.powered + stream.exposure,
     )
 

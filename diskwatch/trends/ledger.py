@@ -13,6 +13,7 @@ at most once in M days of watching, on average. It is no probability of anything
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from math import exp, expm1
 
 RATIOS = (3.0, 6.0, 12.0, 25.0, 50.0, 100.0)
@@ -57,9 +58,10 @@ def after(ledger: Ledger, factors: Sequence[float], exposure: float = 1.0) -> Le
     if exposure <= 0:
         raise ValueError(f"a step needs an exposure above 0 days, not {exposure}")
     pairs = zip(ledger.sums, factors, strict=True)
-    return Ledger(tuple(min(CAP, (total + exposure) * factor) for total, factor in pairs))
+    return Ledger(tuple([min(CAP, (total + exposure) * factor) for total, factor in pairs]))
 
 
+@lru_cache(maxsize=1024)  # nearly every step is a quiet day of one of a few norms
 def count_factors(*, episode: bool, exposure: float, norm_per_day: float) -> tuple[float, ...]:
     """The factors L_k of a counter's step: likelihood ratios of "r times the norm" against the norm.
 

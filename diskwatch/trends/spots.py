@@ -11,7 +11,7 @@ A *spot* is 8 counts as long as every value seen so far is a multiple of 8 (driv
 tested on another of the open daily drive data of 2013 (11,446 data-centre hard drives, 60 of which failed).
 """
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 WINDOW = 14
 """Days that damage counts as fresh."""
@@ -55,13 +55,14 @@ def seen(spots: Spots, *, day: int, replaced: int | None, pending: int | None) -
     coarse = spots.coarse and all(value % _COARSE == 0 for value in values)
     size = _COARSE if coarse else 1
     fresh = _rise(spots.replaced, replaced) + _rise(spots.pending, pending)
-    rises = tuple((when, count) for when, count in spots.rises if when > day - WINDOW)
+    rises = spots.rises
+    if rises and rises[0][0] <= day - WINDOW:
+        rises = tuple((when, count) for when, count in rises if when > day - WINDOW)
     if fresh:
         before = rises[-1][1] if rises and rises[-1][0] == day else 0
         kept = rises[:-1] if before else rises
         rises = (*kept, (day, before + fresh // size))
-    return replace(
-        spots,
+    return Spots(
         replaced=spots.replaced if replaced is None else replaced,
         pending=spots.pending if pending is None else pending,
         coarse=coarse,

@@ -1,0 +1,130 @@
+"""What a drive's state shows by itself after a reading: drifts, fresh defects, the odds rule."""
+
+from collections.abc import Iterator, Mapping
+
+from diskwatch.analyser.counters import turns
+from diskwatch.analyser.state import DriveState
+from diskwatch.judge import sentences
+from diskwatch.records import CallWord, Cause, Finding, FindingKind, Pass, Reading
+from diskwatch.trends import spots
+from diskwatch.trends.episodes import Stream
+from diskwatch.trends.norms import NORMS, Norm
+from diskwatch.units import day_number
+
+DEFECTS = (
+    "pending-sectors",
+    "offline-uncorrectable",
+    "reported-uncorrectable",
+    "uncorrected-reads",
+    "uncorrected-writes",
+    "media-errors",
+    "reallocated-sectors",
+    "grown-defects",
+)
+"""Counters of which a first rise is a first defect, the most telling first."""
+
+_ONLY_TURNING = frozenset({"reallocated-sectors"})
+"""Of these a rise is ordinary on flash, where most drives retire a block in their first years."""
+
+_CAUSES: Mapping[str, Cause] = {
+    "media": Cause.MEDIA,
+    "flash-media": Cause.MEDIA,
+    "link": Cause.LINK,
+    "timeouts": Cause.UNCLEAR,
+    "power": Cause.POWER,
+    "kernel-errors": Cause.UNCLEAR,
+}
+
+
+def drifts(state: DriveState, pass_: Pass) -> Iterator[Finding]:
+    """Ledgers at or above their threshold."""
+    for norm in NORMS:
+        stream = state.streams.get(norm.stream)
+        if stream is not None and stream.ledger.evidence >= norm.threshold:
+            yield _drift(norm, stream, pass_)
+
+
+def _drift(norm: Norm, stream: Stream, pass_: Pass) -> Finding:
+    evidence = stream.ledger.evidence
+    days = stream.powered + stream.exposure
+    return Finding(
+        name=f"drift:{norm.stream}",
+        kind=FindingKind.DRIFT,
+        signals=norm.signals,
+        since=pass_.at,
+        calls=CallWord.LOOK,
+        cause=_CAUSES[norm.stream],
+        evidence=evidence,
+        sentence=sentences.drift(norm, episodes=stream.episodes, days=days, evidence=evidence),
+        data={
+            "stream": norm.stream,
+            "episodes": stream.episodes,
+            "days": days,
+            "threshold": norm.threshold,
+        },
+    )
+
+
+def fresh_defects(
+    state: DriveState, pass_: Pass, reading: Reading, risen: Mapping[str, int]
+) -> Iterator[Finding]:
+    """The first rise of a defect counter since the drive has been watched, and whatever rose after it."""
+    if risen.keys().isdisjoint(DEFECTS):
+        return
+    turning = turns(pass_, reading)
+    telling = [signal for signal in DEFECTS if turning or signal not in _ONLY_TURNING]
+    if risen.keys().isdisjoint(telling):
+        return
+    above = {
+        signal: (state.firsts[signal], state.latest[signal])
+        for signal in telling
+        if signal in state.latest and state.latest[signal] > state.firsts[signal]
+    }
+    # What fell before, below its first value, and rose again is told by this rise alone.
+    shown = above or {
+        signal: (state.latest[signal] - risen[signal], state.latest[signal])
+        for signal in telling
+        if signal in risen
+    }
+    yield Finding(
+        name="fact:first-defect",
+        kind=FindingKind.FACT,
+        signals=tuple(shown),
+        since=pass_.at,
+        calls=CallWord.LOOK,
+        cause=Cause.MEDIA,
+        evidence=None,
+        sentence=sentences.fresh_defects(shown),
+        data={signal: {"first": first, "now": now} for signal, (first, now) in shown.items()},
+    )
+
+
+def rule(state: DriveState, pass_: Pass) -> Iterator[Finding]:
+    """The odds rule."""
+    if not state.spots.rises:
+        return
+    day = day_number(pass_.at)
+    score = spots.fourfold(state.spots, day)
+    if score < spots.COPY:
+        return
+    retire = score >= spots.RETIRE
+    limit = spots.RETIRE if retire else spots.COPY
+    fresh = spots.fresh(state.spots, day)
+    yield Finding(
+        name="rule:damage-retire" if retire else "rule:damage-copy",
+        kind=FindingKind.RULE,
+        signals=("reallocated-sectors", "pending-sectors"),
+        since=pass_.at,
+        calls=CallWord.RETIRE if retire else CallWord.COPY,
+        cause=Cause.MEDIA,
+        evidence=None,
+        sentence=sentences.damage(
+            fresh=fresh,
+            pending=state.spots.pending or 0,
+            replaced=state.spots.replaced or 0,
+            score=score / 4,
+            limit=limit / 4,
+            days=spots.WINDOW,
+        ),
+        data={"score": score / 4, "fresh": fresh, "limit": limit / 4},
+    )

@@ -1,0 +1,71 @@
+"""Passes that brought nothing, and what the day book hears of how passes end."""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import replace
+
+from diskwatch.analyser.state import DriveState
+from diskwatch.judge import sentences
+from diskwatch.records import CallWord, Cause, Entry, Finding, FindingKind, Kind, Outcome, Pass
+
+UNREAD_LIMIT = 3
+"""Passes in a row without a reading after which a drive wants a hand."""
+
+_SHOULD_HAVE_READ = frozenset({Outcome.TIMED_OUT, Outcome.GARBLED, Outcome.ABSENT})
+_MACHINE_WIDE = frozenset({Outcome.NO_TOOL})
+_USUAL = frozenset({Outcome.READ, Outcome.ASLEEP})
+_UNREADABLE = "fact:unreadable"
+
+
+def entry(pass_: Pass, kind: str, text: str, **data: object) -> Entry:
+    """A day-book entry about a pass; the drive's number is not known here."""
+    return Entry(at=pass_.at, drive=None, kind=kind, text=text, data=data)
+
+
+def told(state: DriveState, pass_: Pass) -> Iterator[Entry]:
+    """Say how a pass ended where that is new; falling asleep and waking up is normal life and said once."""
+    outcome = pass_.outcome
+    if outcome is state.outcome or outcome in _MACHINE_WIDE:
+        return
+    if outcome is Outcome.READ and (state.outcome is None or state.outcome in _USUAL):
+        return
+    if outcome is Outcome.ASLEEP and state.slept:
+        return
+    text = "It answers again." if outcome is Outcome.READ else (pass_.explanation or outcome.value)
+    yield entry(pass_, "pass", text, outcome=outcome.value)
+
+
+def without_reading(state: DriveState, pass_: Pass) -> DriveState:
+    """A pass that brought nothing: it moves no ledger, but three in a row want a hand."""
+    missed = pass_.outcome in _SHOULD_HAVE_READ and not _unplugged(pass_)
+    unread = state.unread + 1 if missed else state.unread
+    standing = state.standing
+    if missed and unread >= UNREAD_LIMIT:
+        standing = {**standing, _UNREADABLE: _unreadable(standing, pass_, unread)}
+    return replace(
+        state,
+        last_at=pass_.at,
+        outcome=pass_.outcome,
+        slept=state.slept or pass_.outcome is Outcome.ASLEEP,
+        unread=unread,
+        standing=standing,
+    )
+
+
+def _unplugged(pass_: Pass) -> bool:
+    """Whether a drive is away because people unplug such drives."""
+    return pass_.outcome is Outcome.ABSENT and pass_.drive is not None and pass_.drive.kind is Kind.USB
+
+
+def _unreadable(standing: Mapping[str, Finding], pass_: Pass, times: int) -> Finding:
+    known = standing.get(_UNREADABLE)
+    return Finding(
+        name=_UNREADABLE,
+        kind=FindingKind.FACT,
+        signals=(),
+        since=pass_.at if known is None else known.since,
+        calls=CallWord.LOOK,
+        cause=Cause.UNCLEAR,
+        evidence=None,
+        sentence=sentences.unreadable(times, pass_.explanation or pass_.outcome.value),
+        data={"times": times, "outcome": pass_.outcome.value},
+    )

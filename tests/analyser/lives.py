@@ -1,0 +1,20 @@
+"""A drive's life for tests of the analyser."""
+
+from diskwatch import analyser
+from diskwatch.analyser import DriveState, Step
+from diskwatch.records import Pass
+
+
+def lived(*passes: Pass, state: DriveState | None = None) -> list[Step]:
+    """All steps of a drive's life."""
+    steps = []
+    state = state or analyser.start()
+    for one in passes:
+        steps.append(analyser.advance(state, one))
+        state = steps[-1].state
+    return steps
+
+
+def kinds(step: Step) -> list[str]:
+    """What the day book hears of a step."""
+    return [entry.kind for entry in step.happened]
