@@ -1,5 +1,3 @@
-from hypothesis import , strategies as st
-
 from diskwatch import analyser
 from diskwatch.records import CallWord, Cause, FindingKind
 from tests.analyser.lives import lived
