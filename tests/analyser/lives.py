@@ -1,11 +1,9 @@
 """A drive's life for tests of the analyser."""
 
 from diskwatch import analyser
-from diskwatch.analyser import DriveState, Step
-from diskwatch.records import Pass
 
 
-def lived(*passes: Pass, state: DriveState | None = None) -> list[Step]:
+def lived(*passes, state=None):
     """All steps of a drive's life."""
     steps = []
     state = state or analyser.start()
@@ -15,6 +13,6 @@ def lived(*passes: Pass, state: DriveState | None = None) -> list[Step]:
     return steps
 
 
-def kinds(step: Step) -> list[str]:
+def kinds(step):
     """What the day book hears of a step."""
     return [entry.kind for entry in step.happened]
