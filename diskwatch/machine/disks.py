@@ -36,6 +36,7 @@ class Disk:
         capacity_bytes: capacity in bytes, or None.
         rotation_rpm: turns a minute, or None.
         asleep: whether the kernel itself has suspended it.
+        adapter: the USB device that it is or hangs on: ids, revision, serial; None on other buses.
     """
 
     name: str
@@ -51,6 +52,7 @@ class Disk:
     capacity_bytes: int | None
     rotation_rpm: int | None
     asleep: bool
+    adapter: str | None
 
 
 def look(sys_root: Path, name: str) -> Disk | None:
@@ -85,6 +87,7 @@ def look(sys_root: Path, name: str) -> Disk | None:
         capacity_bytes=sectors * SECTOR if sectors else None,
         rotation_rpm=told.rotation_rpm if told is not None else None,
         asleep=asleep(sys_root, name),
+        adapter=_adapter(sys_root, parts) if usb else None,
     )
 
 
@@ -178,11 +181,29 @@ def _unit_serial(page: bytes | None) -> str | None:
     return tidy(page[4 : 4 + int.from_bytes(page[2:4], "big")])
 
 
-def _usb_serial(sys_root: Path, parts: tuple[str, ...]) -> str | None:
+def _usb_device(sys_root: Path, parts: tuple[str, ...]) -> Path | None:
+    """The folder of the USB device, the nearest above the disk."""
     for index in range(len(parts) - 1, 0, -1):
         if re.fullmatch(r"\d+-\d+(?:\.\d+)*", parts[index]):
-            return text_of(sys_root.joinpath(*parts[: index + 1]) / "serial")
+            return sys_root.joinpath(*parts[: index + 1])
     return None
+
+
+def _usb_serial(sys_root: Path, parts: tuple[str, ...]) -> str | None:
+    device = _usb_device(sys_root, parts)
+    return text_of(device / "serial") if device is not None else None
+
+
+def _adapter(sys_root: Path, parts: tuple[str, ...]) -> str | None:
+    """Which adapter it is (names of the files: Linux, Documentation/ABI, sysfs-bus-usb); None without ids."""
+    device = _usb_device(sys_root, parts)
+    if device is None:
+        return None
+    ids = [text_of(device / name) for name in ("idVendor", "idProduct", "bcdDevice")]
+    if ids[0] is None or ids[1] is None:
+        return None
+    told = ":".join(one for one in ids if one is not None)
+    return f"{told} {text_of(device / 'serial') or ''}".rstrip()
 
 
 def _wwn(folder: Path, bus: str, told: Identified | None) -> str | None:

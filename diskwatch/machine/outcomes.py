@@ -204,6 +204,14 @@ def of_words(said: Iterable[str], status: int | None, what: Understood, *, expec
     return _not_understood(lines, what, expects_smart=expects_smart)
 
 
+def through_no_type(types: Iterable[str]) -> Verdict:
+    """The verdict on a drive behind a USB adapter that no device type reaches."""
+    return _without_smart(
+        f"It cannot be asked through its USB adapter: none of smartctl's types {', '.join(types)} brings its "
+        "readings; without that adapter, or behind another, it may be read"
+    )
+
+
 def _without_smart(why: str) -> Verdict:
     return Verdict(outcome=Outcome.NO_SMART, explanation=f"{why}; its traffic is watched all the same.")
 

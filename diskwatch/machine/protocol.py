@@ -36,6 +36,8 @@ class Found:
         drive: what the kernel alone knows of it (identity from sysfs where it has one).
         asleep: True where the kernel itself says that the device is suspended: it must not be asked.
         expects_smart: False where the kernel shows that it cannot have SMART (a virtual disk).
+        instance: as in `Counted`; empty where nobody tells instances apart.
+        adapter: the USB adapter before it: its ids, revision and serial (``152d:0578:1402 0123``), or None.
     """
 
     address: Address
@@ -44,6 +46,8 @@ class Found:
     drive: Drive
     asleep: bool = False
     expects_smart: bool = True
+    instance: str = ""
+    adapter: str | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -72,8 +72,9 @@ class RealMachine:
             )
         lines = mount_lines(self._proc)
         found = []
-        for bare in joined(physical_drives(self._sys), scan.entries, listed):
-            said = self._said.get(self._instance(bare))
+        for one in joined(physical_drives(self._sys), scan.entries, listed):
+            bare = replace(one, instance=self._instance(one))
+            said = self._said.get(bare.instance)
             drive = replace(bare, drive=_at(said, bare)) if said is not None else bare
             if not self._is_asked(drive, said_itself=said is not None):
                 continue
@@ -99,7 +100,7 @@ class RealMachine:
         instance = self._instance(found)
         if instance in self._without_smart:
             return _no_smart(found, Pass(at=self._now(), outcome=Outcome.NO_SMART))
-        answer = self._smartctl.ask(found)
+        answer = self._smartctl.ask(found, completed=lambda: self._completed(found))
         if answer.drive is not None:
             self._said[instance] = answer.drive
         if found.expects_smart or answer.outcome in {Outcome.READ, Outcome.NO_TOOL}:
@@ -121,6 +122,15 @@ class RealMachine:
             return found.place.device
         boot = text_of(self._proc / "sys" / "kernel" / "random" / "boot_id")
         return counters.instance_of(self._sys, boot, found.blocks[0])
+
+    def _completed(self, found: Found) -> int | None:
+        """Requests to all of a drive's block devices that came to an end; None where any is not counted."""
+        if not found.blocks:
+            return None
+        counted = self.counts()
+        if any(block not in counted for block in found.blocks):
+            return None
+        return sum(counters.completed(counted[block].counts) for block in found.blocks)
 
     def _is_asked(self, found: Found, *, said_itself: bool) -> bool:
         drive = found.drive

@@ -6,14 +6,16 @@ import time
 from collections.abc import Callable
 from dataclasses import dataclass, replace
 
-from diskwatch.machine import outcomes
+from diskwatch.machine import outcomes, ways
 from diskwatch.machine.command import Answer, Door, Ending
 from diskwatch.machine.document import Document, document_of, messages, plain_lines, text_at
 from diskwatch.machine.outcomes import ASLEEP_STATUS, Verdict, quoted
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import Understood, understood
+from diskwatch.machine.rest import Completed, Rest
 from diskwatch.machine.text import decoded
 from diskwatch.machine.told import merged
+from diskwatch.machine.ways import Ways
 from diskwatch.records import Outcome, Pass
 
 _log = logging.getLogger(__name__)
@@ -51,6 +53,26 @@ class _Knows:
     status: bool = True
 
 
+@dataclass(frozen=True, slots=True)
+class _Told:
+    """One question's answer: the type it was asked with, the verdict, and what there was to judge by.
+
+    ``what`` is None where the command gave no whole answer.
+    """
+
+    type: str | None
+    verdict: Verdict
+    what: Understood | None = None
+    said: tuple[str, ...] = ()
+    document: Document | None = None
+    status: int | None = None
+
+
+def _uncounted() -> int | None:
+    """For whoever has no counters: not known."""
+    return None
+
+
 class Smartctl:
     """A smartctl command, asked from any number of threads, one a drive."""
 
@@ -72,7 +94,8 @@ class Smartctl:
         # Both are replaced whole, so that a thread sees either the old or the new; the worst that a race costs
         # is one more process.
         self._knows = _Knows()
-        self._worked: dict[str, str] = {}
+        self._ways = Ways()
+        self._rest = Rest()
 
     @property
     def abandoned(self) -> int:
@@ -96,32 +119,67 @@ class Smartctl:
                 found[Address(node=entry["node"], type=entry["type"])] = None
         return Scan(entries=tuple(found))
 
-    def ask(self, found: Found) -> Pass:
+    def ask(self, found: Found, *, completed: Completed = _uncounted) -> Pass:
         """Ask one drive; whatever happens is a pass with an outcome, nothing is raised.
 
         Args:
             found: the drive, as the machine lists it.
+            completed: counts its requests, to tell a drive that sleeps from one that does not answer.
         """
         begun = time.monotonic()
+        before = completed()
         try:
             told = self._asked(found)
+            verdict = self._rest.judged(found, told.verdict, before=before, after=completed(), at=self._now())
+            answer = _pass(replace(told, verdict=verdict), found)
         except Exception as error:  # noqa: BLE001 - one odd drive must never keep others from being watched
             _log.exception("the answer of %s could not be taken in", quoted(found.address.node))
-            told = Pass(
+            answer = Pass(
                 at=0,
                 outcome=Outcome.GARBLED,
                 explanation="It answered, but the answer could not be taken in: please report this as a fault "
                 f"of diskwatch ({type(error).__name__}).",
             )
-        return replace(told, at=self._now(), took_ms=int((time.monotonic() - begun) * 1000))
+        return replace(answer, at=self._now(), took_ms=int((time.monotonic() - begun) * 1000))
 
-    def _asked(self, found: Found) -> Pass:
-        node = found.address.node
-        type_ = found.address.type or self._worked.get(_key(found))
-        answer = self._answer(node, type_)
+    def _asked(self, found: Found) -> "_Told":
+        """Ask with the type that is known, and where that brings nothing with those that may do better."""
+        deadline = time.monotonic() + self._timeout
+        type_ = self._ways.known(found) or found.address.type
+        told = self._told(found, type_, self._timeout)
+        others = self._others(found, told)
+        if found.address.type is None and told.what is not None:
+            self._remember(found, told)
+        for other in others:
+            left = deadline - time.monotonic()
+            another = self._told(found, other, left) if left > 0 else None
+            if another is None or another.what is None:
+                break  # no time is left, or one type hangs: the next would hang as well
+            if ways.reaches(another.verdict):
+                self._ways.settled(found, other)
+                return another
+        if len(others) > 1:
+            self._ways.settled(found, None)
+        elif others and told.verdict.outcome is Outcome.READ:
+            self._ways.settled(found, told.type)
+        silent = told.verdict.outcome is Outcome.NO_SMART or told.verdict.unproved
+        if silent and self._ways.closed(found):
+            return replace(told, verdict=outcomes.through_no_type(ways.USB_TYPES))
+        return told
+
+    def _others(self, found: Found, told: "_Told") -> tuple[str, ...]:
+        if told.what is None or self._ways.tried(found):
+            return ()
+        if told.verdict.unproved and self._ways.proved(found):
+            return ()  # it answered to this type before, so that silence is its own
+        return ways.others(found, told.type, told.said, told.verdict, told.what)
+
+    def _told(self, found: Found, type_: str | None, timeout: float) -> "_Told":
+        """Ask once, with one type, and judge the answer."""
+        answer = self._answer(found.address.node, type_, timeout)
         verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
         if verdict is not None:
-            return _pass(verdict, found, None, None)
+            return _Told(type_, verdict)
         text = decoded(answer.out)
         document = document_of(text)
         lines = plain_lines(document) if document is not None else tuple(text.splitlines())
@@ -132,16 +190,14 @@ class Smartctl:
             *decoded(answer.err).splitlines(),
         )
         verdict = outcomes.of_words(said, answer.status, what, expects_smart=found.expects_smart)
-        if found.address.type is None:
-            self._remember(found, verdict, document)
-        return _pass(verdict, found, what, answer.status)
+        return _Told(type_, verdict, what, said, document, answer.status)
 
-    def _answer(self, node: str, type_: str | None) -> Answer:
+    def _answer(self, node: str, type_: str | None, timeout: float) -> Answer:
         """Run smartctl in the best way that it knows; learn where it knows less than was thought."""
         knows = self._knows
         while True:
             owner = f"{node} {type_ or ''}"
-            answer = self._door.run(self._argv(node, type_, knows), timeout=self._timeout, owner=owner)
+            answer = self._door.run(self._argv(node, type_, knows), timeout=timeout, owner=owner)
             complaint = _complaint(answer)
             lesser = _lesser(knows, complaint) if complaint is not None else None
             if complaint is None:
@@ -161,19 +217,13 @@ class Smartctl:
             node,
         ]
 
-    def _remember(self, found: Found, verdict: Verdict, document: Document | None) -> None:
+    def _remember(self, found: Found, told: "_Told") -> None:
         """Keep the type that worked, since finding out may wake a drive; forget one that failed."""
-        worked = text_at(document, "device", "type")
-        if verdict.outcome is Outcome.READ and worked is not None and _TYPE.fullmatch(worked):
-            self._worked = {**self._worked, _key(found): worked}
-        elif verdict.outcome in {Outcome.GARBLED, Outcome.NO_SMART}:
-            self._worked = {key: type_ for key, type_ in self._worked.items() if key != _key(found)}
-
-
-def _key(found: Found) -> str:
-    """The node together with the drive, since another drive may come under the node."""
-    who = found.drive.identity
-    return "\0".join((found.address.node, who.wwn or "", who.model or "", who.serial or ""))
+        worked = text_at(told.document, "device", "type")
+        if told.verdict.outcome is Outcome.READ and worked is not None and _TYPE.fullmatch(worked):
+            self._ways.found_by_itself(found, worked)
+        elif told.verdict.outcome in {Outcome.GARBLED, Outcome.NO_SMART}:
+            self._ways.failed(found)
 
 
 def _complaint(answer: Answer) -> str | None:
@@ -193,14 +243,14 @@ def _lesser(knows: _Knows, complaint: str) -> _Knows | None:
     return replace(knows, json=False) if knows.json else None
 
 
-def _pass(verdict: Verdict, found: Found, what: Understood | None, status: int | None) -> Pass:
+def _pass(told: _Told, found: Found) -> Pass:
     """A pass, but for its time."""
-    drive = merged(found.drive, what.drive) if what is not None and what.drive is not None else None
+    what, outcome = told.what, told.verdict.outcome
     return Pass(
         at=0,
-        outcome=verdict.outcome,
-        explanation=verdict.explanation,
-        drive=drive,
-        reading=what.reading if what is not None and verdict.outcome is Outcome.READ else None,
-        exit_bits=status,
+        outcome=outcome,
+        explanation=told.verdict.explanation,
+        drive=merged(found.drive, what.drive) if what is not None and what.drive is not None else None,
+        reading=what.reading if what is not None and outcome is Outcome.READ else None,
+        exit_bits=told.status,
     )

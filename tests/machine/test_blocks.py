@@ -26,6 +26,17 @@ def test_each_sort_of_drive_is_listed_once_with_its_way_of_asking(tree: Tree):
     assert [drive.expects_smart for drive in drives] == [True, True, True, False, True]
 
 
+def test_a_usb_adapter_is_named_by_its_ids_revision_and_serial(tree: Tree):
+    tree.usb("sdb")
+    device = tree.sys / "devices/pci0000:00/0000:00:14.0/usb1/1-4"
+    assert physical_drives(tree.sys)[0].adapter is None
+    for name, value in {"idVendor": "152d", "idProduct": "0578", "bcdDevice": "1402"}.items():
+        tree.put(device / name, value)
+    assert physical_drives(tree.sys)[0].adapter == "152d:0578:1402 INV-BRIDGE-7"
+    (device / "serial").unlink()
+    assert physical_drives(tree.sys)[0].adapter == "152d:0578:1402"
+
+
 def test_namespaces_of_one_controller_are_one_drive(tree: Tree):
     tree.nvme("nvme0", namespaces=2)
     (drive,) = physical_drives(tree.sys)

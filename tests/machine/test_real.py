@@ -5,10 +5,10 @@ from pathlib import Path
 import pytest
 
 from diskwatch.machine import real
-from diskwatch.machine.protocol import Address, Found
+from diskwatch.machine.protocol import Address, Counted, Found
 from diskwatch.machine.real import RealMachine
 from diskwatch.machine.smartctl import Scan
-from diskwatch.records import Drive, Identity, Kind, Mount, Outcome, Pass, Reading
+from diskwatch.records import Drive, Identity, IoCounts, Kind, Mount, Outcome, Pass, Reading
 from tests.machine.trees import Tree
 
 AT = 1_800_000_000
@@ -26,6 +26,7 @@ class Asked:
         self.scanned = Scan(entries=(), trouble=None)
         self.answer = Pass(at=AT, outcome=Outcome.READ, reading=Reading(), took_ms=12)
         self.asked: list[Address] = []
+        self.completed: int | None = None
         self.stopped = False
         self.made_with: tuple[str, float] | None = None
 
@@ -37,8 +38,9 @@ class Asked:
     def scan(self) -> Scan:
         return self.scanned
 
-    def ask(self, found: Found) -> Pass:
+    def ask(self, found: Found, *, completed: Callable[[], int | None]) -> Pass:
         self.asked.append(found.address)
+        self.completed = completed()
         return self.answer
 
     def stop(self) -> None:
@@ -180,6 +182,29 @@ def test_a_virtual_disk_that_answers_after_all_is_believed(tree: Tree, smartctl:
     (found,) = watched.survey().found
     assert watched.ask(found) == watched.ask(found) == smartctl.answer
     assert len(smartctl.asked) == 2
+
+
+def test_a_drives_requests_are_counted_for_whoever_asks_it(
+    tree: Tree, smartctl: Asked, monkeypatch: pytest.MonkeyPatch
+):
+    tree.sata()
+    watched = machine(tree)
+    counts = IoCounts(reads=1, writes=3, read_bytes=0, write_bytes=0, read_ms=0, write_ms=0, busy_ms=0)
+    monkeypatch.setattr(watched, "counts", lambda: {"sda": Counted(counts=counts, instance="1")})
+    (found,) = watched.survey().found
+    watched.ask(found)
+    assert smartctl.completed == 4
+    watched.ask(replace(found, blocks=("sda", "gone")))
+    assert smartctl.completed is None
+
+
+@pytest.mark.usefixtures("smartctl")
+def test_another_device_under_the_same_name_is_another_instance(tree: Tree):
+    disk = tree.usb()
+    watched = machine(tree)
+    first, same = (watched.survey().found[0].instance for _ in range(2))
+    tree.put(disk / "diskseq", "77")
+    assert first == same != watched.survey().found[0].instance
 
 
 def test_what_a_drive_said_of_itself_holds_while_its_instance_lasts(tree: Tree, smartctl: Asked):

@@ -27,7 +27,7 @@ class Told(Door):
         self.asked: list[list[str]] = []
 
     def run(self, argv: Any, *, timeout: float, owner: str = "") -> Answer:
-        assert timeout == 60
+        assert 0 < timeout <= 60
         assert owner.startswith("/dev/") or "--scan" in argv
         self.asked.append(list(argv))
         answer = self.answers.pop(0) if len(self.answers) > 1 else self.answers[0]
@@ -121,6 +121,70 @@ def test_a_standby_status_alone_that_is_not_known_costs_no_json():
     tool, door = smartctl(no_status, said(NVME_JSON.read_bytes()))
     tool.ask(asked())
     assert door.asked[1] == ["smartctl", "-n", "standby", "-d", "sat", "--json=o", "--all", "/dev/sdx"]
+
+
+UNKNOWN_BRIDGE = (FIXTURES / "invented_usb_bridge_unknown" / "all.txt").read_bytes()
+SLEEP = "smartctl 7.3\n\nDevice is in SLEEP mode, exit(3)\n"
+
+
+def types(door: Told) -> list[str | None]:
+    return [argv[argv.index("-d") + 1] if "-d" in argv else None for argv in door.asked]
+
+
+def test_an_ata_drive_listed_as_scsi_is_asked_through_sat_in_the_same_pass_and_from_then_on_at_once():
+    behind = said("smartctl 7.3\n\nProbable ATA device behind a SAT layer\n", 2)
+    tool, door = smartctl(behind, said(HDD.read_bytes()))
+    for _ in range(2):
+        assert tool.ask(asked(type_="scsi")).outcome is Outcome.READ
+    assert types(door) == ["scsi", "sat", "sat"]
+
+
+def test_a_scsi_answer_of_an_ata_drive_is_kept_where_sat_brings_none():
+    text = (FIXTURES / "invented_sas_megaraid_failing" / "all.txt").read_text()
+    vendor = next(line for line in text.splitlines() if line.startswith("Vendor:"))
+    as_scsi = said(text.replace(vendor, "Vendor:               ATA"))
+    tool, door = smartctl(as_scsi, said("noise", 2), as_scsi)
+    for _ in range(2):
+        assert tool.ask(asked(type_="scsi")).outcome is Outcome.READ
+    assert types(door) == ["scsi", "sat", "scsi"]
+
+
+def test_behind_an_unknown_adapter_the_types_are_tried_in_turn_and_the_one_that_worked_is_kept():
+    tool, door = smartctl(
+        said(UNKNOWN_BRIDGE, 1), said(SLEEP, 3), said("noise", 2), said(NVME_JSON.read_bytes())
+    )
+    for _ in range(2):
+        assert tool.ask(asked(type_=None, usb=True)).outcome is Outcome.READ
+    assert types(door) == [None, "sat", "scsi", "sntasmedia", "sntasmedia"]
+
+
+def test_where_no_type_reaches_a_usb_drive_that_is_said_and_not_tried_again():
+    tool, door = smartctl(said(UNKNOWN_BRIDGE, 1))
+    found = [tool.ask(asked(type_=None, usb=True)) for _ in range(2)]
+    assert types(door) == [None, "sat", "scsi", "sntasmedia", "sntjmicron", "sntrealtek", None]
+    assert {one.outcome for one in found} == {Outcome.NO_SMART}
+    assert all("none of smartctl's types" in (one.explanation or "") for one in found)
+
+
+def test_a_type_that_hangs_ends_the_trying():
+    hang = Answer(ending=Ending.TIMED_OUT)
+    tool, door = smartctl(said(UNKNOWN_BRIDGE, 1), hang, said(UNKNOWN_BRIDGE, 1))
+    for _ in range(2):
+        assert tool.ask(asked(type_=None, usb=True)).outcome is Outcome.NO_SMART
+    assert types(door) == [None, "sat", None]
+
+
+def test_a_usb_drive_that_answered_before_and_is_silent_now_is_asked_no_other_way():
+    tool, door = smartctl(said(NVME_JSON.read_bytes()), said(SLEEP, 3))
+    assert tool.ask(asked(type_=None, usb=True)).outcome is Outcome.READ
+    assert tool.ask(asked(type_=None, usb=True)).outcome is Outcome.ASLEEP
+    assert types(door) == [None, "nvme"]
+
+
+def test_a_drive_that_is_silent_though_it_is_in_use_does_not_sleep():
+    tool, _ = smartctl(said(HDD.read_bytes()), said(SLEEP, 3))
+    assert tool.ask(asked(), completed=lambda: 5).outcome is Outcome.READ
+    assert tool.ask(asked(), completed=lambda: 6).outcome is Outcome.GARBLED
 
 
 def test_a_complaint_that_never_ends_is_asked_three_times_and_teaches_nothing():
