@@ -4,7 +4,10 @@ Packed it costs a third of the bytes, and the bytes that the watch writes are co
 """
 
 import json
+import struct
 import zlib
+from collections.abc import Mapping
+from dataclasses import replace
 from typing import Any
 
 from diskwatch.records import Attribute, Failing, Reading, SelfTest
@@ -49,6 +52,40 @@ def reading_packed(reading: Reading) -> bytes:
     limits = [reading.warning_celsius, reading.critical_celsius]
     whole = {"attributes": attributes, "self_tests": tests, "limits": limits}
     return packed(json.dumps(whole, separators=(",", ":")))
+
+
+def beside_packed(found: Reading) -> bytes:
+    """What a judgement rests on beside the values: attributes that fail now, self-tests, limits."""
+    failing = tuple(one for one in found.attributes if one.failing is Failing.NOW)
+    return reading_packed(replace(found, attributes=failing))
+
+
+_BIN = struct.Struct("<hH")
+"""A bin of a histogram and its count; a day has 288 roll-ups of a drive, twice that where it is lived twice."""
+
+
+def histogram_packed(counts: Mapping[int, int]) -> bytes:
+    """A sparse histogram, four bytes a bin.
+
+    Raises:
+        ValueError: a bin or a count has no room.
+    """
+    try:
+        return b"".join(_BIN.pack(bin_, count) for bin_, count in sorted(counts.items()))
+    except struct.error as error:
+        raise ValueError(f"no histogram of one day: {error}") from error
+
+
+def histogram(kept: bytes) -> dict[int, int]:
+    """The histogram that `histogram_packed` was given.
+
+    Raises:
+        ValueError: these bytes are not what it wrote.
+    """
+    try:
+        return dict(_BIN.iter_unpack(kept))
+    except struct.error as error:
+        raise ValueError(f"packed histogram is damaged: {error}") from error
 
 
 def reading(kept: bytes) -> Reading:

@@ -9,8 +9,8 @@ import sqlite3
 from collections.abc import Collection
 
 from diskwatch.history import packing, rows
-from diskwatch.records import Entry, IoSpan, Pass, Reading
-from diskwatch.units import day_number
+from diskwatch.records import Entry, IoSpan, Outcome, Pass, PassDay, Reading
+from diskwatch.units import DAY, day_number
 
 _EVER = -(2**63)
 
@@ -28,6 +28,14 @@ _PASSES = (
     "SELECT at, outcome, exit_bits, took_ms, text FROM pass"
     " LEFT JOIN sentence ON sentence.number = pass.explanation"
     " WHERE drive = ? AND at >= ? ORDER BY at DESC LIMIT ?"
+)
+# Passes before the mark are in pass_day already, also those few that still stand by themselves.
+_BY_DAY = (
+    "SELECT day, outcome, sum(passes), min(first), max(last) FROM ("
+    "SELECT day, outcome, passes, first, last FROM pass_day WHERE drive = :drive AND day >= :day"
+    " UNION ALL SELECT at / :length, outcome, 1, at, at FROM pass WHERE drive = :drive AND at >= :since"
+    " AND at >= coalesce((SELECT before FROM thinned WHERE what = 'pass' AND number = :drive), :since)"
+    ") GROUP BY day, outcome ORDER BY day, outcome"
 )
 _SERIES = "SELECT number FROM series WHERE drive = ? AND signal = ? AND current"
 _SERIES_EVER = "SELECT number FROM series WHERE drive = ? AND signal = ? ORDER BY number"
@@ -75,6 +83,18 @@ def passes(
     """How asking a drive went, oldest first; with a limit the newest so many."""
     found = connection.execute(_PASSES, (drive, _from(since), _up_to(limit))).fetchall()
     return tuple(rows.past_pass(row) for row in reversed(found))
+
+
+def pass_days(connection: sqlite3.Connection, drive: int, since: int | None) -> tuple[PassDay, ...]:
+    """How many passes of each day ended how, oldest first, thinned or not."""
+    day = _EVER if since is None else day_number(since)
+    found = connection.execute(
+        _BY_DAY, {"drive": drive, "day": day, "since": _EVER if since is None else day * DAY, "length": DAY}
+    ).fetchall()
+    return tuple(
+        PassDay(day=day, outcome=Outcome(outcome), passes=passes, first=first, last=last)
+        for day, outcome, passes, first, last in found
+    )
 
 
 def series(

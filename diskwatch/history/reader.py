@@ -19,8 +19,20 @@ from diskwatch.history.lock import watcher
 from diskwatch.history.mishaps import told, unreadable
 from diskwatch.history.naming import choose
 from diskwatch.history.opening import Opened, open_to_read
+from diskwatch.history.traffic import class_days, rollups
 from diskwatch.places import HISTORY
-from diskwatch.records import Attribute, Bays, DriveLine, Entry, IoSpan, Pass, Reading
+from diskwatch.records import (
+    Attribute,
+    Bays,
+    ClassDay,
+    DriveLine,
+    Entry,
+    IoRollup,
+    IoSpan,
+    Pass,
+    PassDay,
+    Reading,
+)
 from diskwatch.units import plain
 
 _Answer = TypeVar("_Answer")
@@ -123,12 +135,23 @@ class Past:
     def passes(self, drive: int, since: int | None = None, limit: int | None = None) -> tuple[Pass, ...]:
         """How asking a drive went, oldest first; what was read stands in the series.
 
+        Of what is older than some 13 weeks only changes of outcome are left, and `pass_days` has the counts.
+
         Args:
             drive: the drive's number.
             since: leave out what is older, UTC seconds since 1970.
             limit: only the newest so many.
         """
         return self._ask(lambda connection: questions.passes(connection, drive, since, limit))
+
+    def pass_days(self, drive: int, since: int | None = None) -> tuple[PassDay, ...]:
+        """How many passes of each UTC day ended how, oldest first, for ever and exact.
+
+        Args:
+            drive: the drive's number.
+            since: leave out earlier days, UTC seconds since 1970.
+        """
+        return self._ask(lambda connection: questions.pass_days(connection, drive, since))
 
     def evidence(self, drive: int, signal: str, since: int | None = None) -> tuple[tuple[int, float], ...]:
         """A ledger's evidence as ``(day, M)``, oldest first; days count from 1970-01-01, M is in days.
@@ -141,7 +164,7 @@ class Past:
         return self._ask(lambda connection: questions.evidence(connection, drive, signal, since))
 
     def traffic(self, drive: int, since: int, until: int) -> tuple[IoSpan, ...]:
-        """A drive's traffic by the minute, oldest first.
+        """A drive's traffic by the minute, of which seven days are kept, oldest first.
 
         In each, ``at`` is the minute's end and ``seconds`` the time that was measured.
 
@@ -151,6 +174,26 @@ class Past:
             until: first second not wanted any more.
         """
         return self._ask(lambda connection: questions.traffic(connection, drive, since, until))
+
+    def rollups(self, drive: int, since: int, until: int) -> tuple[IoRollup, ...]:
+        """A drive's traffic by five minutes, of which 90 days are kept, oldest first.
+
+        Args:
+            drive: the drive's number.
+            since: first second wanted, UTC seconds since 1970.
+            until: first second not wanted any more.
+        """
+        return self._ask(lambda connection: rollups(connection, since, until, drive))
+
+    def class_days(self, drive: int, since: int, until: int) -> tuple[tuple[int, ClassDay], ...]:
+        """A drive's mean times by day and class of load as ``(day, class)``, kept for ever, oldest first.
+
+        Args:
+            drive: the drive's number.
+            since: first UTC day number wanted.
+            until: first UTC day number not wanted any more.
+        """
+        return self._ask(lambda connection: class_days(connection, drive, since, until))
 
     def last_reading(self, drive: int) -> Reading | None:
         """Attribute table, self-test log and limits as last read, without values; None before that."""

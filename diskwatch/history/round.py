@@ -19,6 +19,9 @@ from diskwatch.records import (
 )
 from diskwatch.units import DAY, day_number
 
+_WEEK = 7 * DAY
+_NOT_THERE = "it was not in this reading"
+
 
 def write_round(connection: sqlite3.Connection, round_: Round) -> None:
     """Write all that a round brought.
@@ -79,7 +82,17 @@ def _write_part(connection: sqlite3.Connection, part: DriveRound, at: int) -> No
     if part.call is not None:
         _write_call(connection, number, part.call)
     if part.state is not None:
+        _keep_copy(connection, number, part.pass_.at)
         _write_packed(connection, "analyser_state", number, part.pass_.at, packing.packed(part.state))
+
+
+def _keep_copy(connection: sqlite3.Connection, number: int, at: int) -> None:
+    """Keep the last state of a week that is over, as it is: what came later can be worked out from it again."""
+    connection.execute(
+        "INSERT OR IGNORE INTO kept_state (drive, at, packed)"
+        " SELECT drive, at, packed FROM analyser_state WHERE drive = ? AND at / ? <> ? / ?",
+        (number, _WEEK, at, _WEEK),
+    )
 
 
 def _sentence(connection: sqlite3.Connection, words: str | None) -> int | None:
@@ -148,6 +161,11 @@ def _write_reading(connection: sqlite3.Connection, number: int, at: int, reading
         same_series = found is not None and found[0] == series
         if not (same_series and found is not None and _unchanged(found[4], found[5], now)):
             changed.append((at, series, *now))
+    read = {rows.text(value.signal) for value in reading.values}
+    for signal, (series, *_, since, known) in before.items():
+        # What is no longer read is no longer known; since is None for what only ledgers follow.
+        if signal not in read and since is not None and known[0] is not None:
+            changed.append((at, series, None, _NOT_THERE))
     connection.executemany(
         "INSERT OR REPLACE INTO fresh (at, series, value, reason) VALUES (?, ?, ?, ?)", changed
     )
@@ -158,6 +176,17 @@ def _write_reading(connection: sqlite3.Connection, number: int, at: int, reading
         changed,
     )
     _write_packed(connection, "last_reading", number, at, packing.reading_packed(reading))
+    _write_beside(connection, number, at, packing.beside_packed(reading))
+
+
+def _write_beside(connection: sqlite3.Connection, number: int, at: int, packed: bytes) -> None:
+    known = connection.execute(
+        "SELECT packed FROM beside WHERE drive = ? ORDER BY at DESC LIMIT 1", (number,)
+    ).fetchone()
+    if known != (packed,):
+        connection.execute(
+            "INSERT OR REPLACE INTO beside (drive, at, packed) VALUES (?, ?, ?)", (number, at, packed)
+        )
 
 
 def _unchanged(

@@ -5,7 +5,6 @@ program could have written raises ValueError.
 """
 
 import json
-import math
 from collections.abc import Mapping
 from typing import Any
 
@@ -251,28 +250,17 @@ def span(row: Row) -> IoSpan:
     )
 
 
-def slot(at: int, drive: int = 0) -> int:
-    """Where a drive's minute stands among all minutes; without a drive, where the minute itself begins.
+def slot(at: int, drive: int = 0, seconds: int = 60) -> int:
+    """Where a drive's stretch of time stands among all of that length; without a drive, where it begins.
+
+    Args:
+        at: a moment in it, UTC seconds since 1970.
+        drive: the drive's number.
+        seconds: how long the stretches are.
 
     Raises:
         ValueError: the drive's number has no room in it.
     """
     if not 0 <= drive < _DRIVES:
         raise ValueError(f"no number of a drive: {drive}")
-    return at // 60 * _DRIVES + drive
-
-
-def minute_row(span: IoSpan) -> tuple[int, ...]:
-    """``slot`` of the minute of the span's middle, then as `span` reads it from ``span_ms`` on."""
-    counts = span.counts
-    return (
-        slot(math.floor(span.at - span.seconds / 2), span.drive),
-        round(span.seconds * 1000),
-        counts.reads,
-        counts.writes,
-        counts.read_bytes,
-        counts.write_bytes,
-        counts.read_ms,
-        counts.write_ms,
-        counts.busy_ms,
-    )
+    return at // seconds * _DRIVES + drive

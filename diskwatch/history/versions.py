@@ -11,7 +11,7 @@ from diskwatch.errors import HistoryError, HistoryTooNew
 from diskwatch.units import plain
 
 MIGRATION_SET = "diskwatch"
-MIGRATIONS = ("0001_base",)
+MIGRATIONS = ("0001_base", "0002_ten_years")
 """Names of all steps of the schema, oldest first; a step is never renamed, changed or taken out."""
 
 _STEPS_TABLE = "_sqlite_migrations"

@@ -3,7 +3,7 @@
 import os
 import sqlite3
 import threading
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from contextlib import contextmanager, suppress
 from pathlib import Path
 from typing import Self
@@ -16,8 +16,11 @@ from diskwatch.history.mishaps import taken_away, told, unreadable
 from diskwatch.history.opening import BUSY_MS, refuse_foreign
 from diskwatch.history.round import write_entries, write_place, write_round
 from diskwatch.history.schema import bring_up_to_date
+from diskwatch.history.thinning import thin
+from diskwatch.history.traffic import rollups, uncondensed_day, write_class_days, write_spans
 from diskwatch.places import HISTORY
-from diskwatch.records import Call, Drive, Entry, IoSpan, KnownDrive, Place, Round
+from diskwatch.records import Call, ClassDay, Drive, Entry, IoRollup, IoSpan, KnownDrive, Place, Round
+from diskwatch.units import DAY
 
 _LOG_BYTES = 4 << 20
 """What a write-ahead log that once grew is cut back to, bytes."""
@@ -116,6 +119,14 @@ class History:
             found = connection.execute("SELECT drive, packed FROM analyser_state").fetchall()
             return {drive: packing.unpacked(packed) for drive, packed in found}
 
+    def copies(self, drive: int) -> tuple[tuple[int, str], ...]:
+        """Dated exact copies of a drive's state as ``(time of its last pass, state)``, oldest first."""
+        with self._using() as connection:
+            found = connection.execute(
+                "SELECT at, packed FROM kept_state WHERE drive = ? ORDER BY at", (drive,)
+            ).fetchall()
+            return tuple((at, packing.unpacked(packed)) for at, packed in found)
+
     def calls(self) -> dict[int, Call]:
         """The call that stands for each drive, by the drive's number."""
         with self._using() as connection:
@@ -136,28 +147,41 @@ class History:
             write_entries(connection, entries)
 
     def add_traffic(self, spans: Sequence[IoSpan]) -> None:
-        """Add spans of traffic to the minutes that they lie in.
-
-        A span belongs wholly to the minute of its middle; how much time a minute's counts cover is kept beside
-        them, so that rates stay right also where spans are longer than a minute.
-        """
-        sums: dict[int, list[int]] = {}
-        for span in spans:
-            slot, *amounts = rows.minute_row(span)
-            so_far = sums.setdefault(slot, [0] * len(amounts))
-            for place, amount in enumerate(amounts):
-                so_far[place] += amount
+        """Add spans of traffic to the minutes and the five minutes that they lie in."""
         with self._writing() as connection:
-            connection.executemany(
-                "INSERT INTO io_minute (slot, span_ms, reads, writes, read_bytes, write_bytes, read_ms,"
-                " write_ms, busy_ms) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)"
-                " ON CONFLICT (slot) DO UPDATE SET"
-                " span_ms = span_ms + excluded.span_ms, reads = reads + excluded.reads,"
-                " writes = writes + excluded.writes, read_bytes = read_bytes + excluded.read_bytes,"
-                " write_bytes = write_bytes + excluded.write_bytes, read_ms = read_ms + excluded.read_ms,"
-                " write_ms = write_ms + excluded.write_ms, busy_ms = busy_ms + excluded.busy_ms",
-                [(slot, *amounts) for slot, amounts in sorted(sums.items())],
-            )
+            write_spans(connection, spans)
+
+    def uncondensed(self, now: int) -> tuple[int, tuple[IoRollup, ...]] | None:
+        """The first day that is over and not condensed yet, with all of its roll-ups; None for none.
+
+        Args:
+            now: UTC seconds since 1970.
+        """
+        with self._using() as connection:
+            day = uncondensed_day(connection, now)
+            return None if day is None else (day, rollups(connection, day * DAY, (day + 1) * DAY, None))
+
+    def condense(self, day: int, condensed: Mapping[int, Sequence[ClassDay]]) -> None:
+        """Keep what a day's roll-ups were condensed to, so that they may be thinned.
+
+        Args:
+            day: UTC day number, as `uncondensed` gave it.
+            condensed: classes of load by the drive's number.
+        """
+        with self._writing() as connection:
+            write_class_days(connection, day, condensed.items())
+
+    def thin(self, now: int) -> bool:
+        """Thin a bite of what `diskwatch.history.keeping` no longer keeps in full.
+
+        Args:
+            now: UTC seconds since 1970.
+
+        Returns:
+            Whether there may be more to thin.
+        """
+        with self._writing() as connection:
+            return thin(connection, now)
 
     @contextmanager
     def _using(self) -> Iterator[sqlite3.Connection]:
@@ -227,6 +251,8 @@ def _prepared(connection: sqlite3.Connection, path: Path | None) -> Database:
         # FULL: a reading that was reported as stored must outlive a power cut.
         connection.execute("PRAGMA synchronous = FULL")
         connection.execute("PRAGMA foreign_keys = ON")
+        # Some builds overwrite with zeros what is thinned away, and that costs the disk twice.
+        connection.execute("PRAGMA secure_delete = OFF")
         connection.execute("PRAGMA journal_mode = WAL")
         connection.execute(f"PRAGMA journal_size_limit = {_LOG_BYTES}")
         bring_up_to_date(db)

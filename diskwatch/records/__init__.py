@@ -7,13 +7,14 @@ or in its line of the docstring.
 from diskwatch.records.bays import Bays, DriveLine, LastPass, SignalNow
 from diskwatch.records.daybook import Entry
 from diskwatch.records.drive import Drive, Identity, Kind, Mount, Place
-from diskwatch.records.io import IoCounts, IoSpan
+from diskwatch.records.io import ClassDay, Direction, IoCounts, IoRollup, IoSpan
 from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingKind
 from diskwatch.records.reading import (
     Attribute,
     Failing,
     Outcome,
     Pass,
+    PassDay,
     Reading,
     SelfTest,
     SignalKind,
@@ -27,6 +28,8 @@ __all__ = [
     "Call",
     "CallWord",
     "Cause",
+    "ClassDay",
+    "Direction",
     "Drive",
     "DriveLine",
     "DriveRound",
@@ -36,6 +39,7 @@ __all__ = [
     "FindingKind",
     "Identity",
     "IoCounts",
+    "IoRollup",
     "IoSpan",
     "Kind",
     "KnownDrive",
@@ -43,6 +47,7 @@ __all__ = [
     "Mount",
     "Outcome",
     "Pass",
+    "PassDay",
     "Place",
     "Reading",
     "Round",

@@ -3,9 +3,10 @@ from typing import Any
 import pytest
 
 from diskwatch.errors import HistoryError
+from diskwatch.history import packing
 from diskwatch.history.round import write_round
 from diskwatch.history.writer import History
-from diskwatch.records import CallWord, Entry, KnownDrive, Outcome, SignalKind, Value
+from diskwatch.records import Attribute, CallWord, Entry, Failing, KnownDrive, Outcome, SignalKind, Value
 from tests.history.examples import (
     DAY,
     NOON,
@@ -207,3 +208,38 @@ def test_the_same_round_written_twice_changes_nothing(history, known):
     with history._writing() as connection:
         write_round(connection, round_)
     assert list(history._db.conn.iterdump()) == before
+
+
+def test_a_signal_that_is_no_longer_read_is_no_longer_known(history, known, rows):
+    _read(history, known, NOON, a_value(value=3), a_value("crc-errors", 1, "events"))
+    _read(history, known, NOON + 1, a_value(value=3))
+    _read(history, known, NOON + 2, a_value(value=3))
+    _read(history, known, NOON + 3, a_value(value=3), a_value("crc-errors", 1, "events"))
+    assert rows("SELECT at, value, reason FROM fresh WHERE series = 2 ORDER BY at") == [
+        (NOON, 1, None),
+        (NOON + 1, None, "it was not in this reading"),
+        (NOON + 3, 1, None),
+    ]
+
+
+def test_the_state_at_the_end_of_every_week_is_kept_as_it_was(history, known):
+    week = 7 * DAY
+    monday = NOON // week * week
+    for step, at in enumerate([monday, monday + DAY, monday + week, monday + week + 5, monday + 3 * week]):
+        _read(history, known, at, a_value(value=step), state=f"state {step}")
+    assert history.copies(known.number) == ((monday + DAY, "state 1"), (monday + week + 5, "state 3"))
+
+
+def test_what_a_judgement_rests_on_beside_the_values_is_kept_on_change(history, known, rows):
+    def attribute(raw: str, failing: Failing | None) -> Attribute:
+        return Attribute(
+            number=5, name="Invented", value=1, worst=1, threshold=9, prefail=True, raw=raw, failing=failing
+        )
+
+    for step, (raw, failing) in enumerate(
+        [("1", None), ("2", None), ("3", Failing.NOW), ("3", Failing.NOW), ("3", Failing.PAST)]
+    ):
+        pass_ = a_pass(NOON + step, attributes=(attribute(raw, failing),))
+        history.record(a_round(a_part(known, pass_), at=NOON + step))
+    kept = [(at, packing.reading(packed).attributes) for at, packed in rows("SELECT at, packed FROM beside")]
+    assert kept == [(NOON, ()), (NOON + 2, (attribute("3", Failing.NOW),)), (NOON + 4, ())]

@@ -7,7 +7,7 @@ from hypothesis import given, strategies as st
 from diskwatch.history import rows
 from diskwatch.records import LastPass, Outcome, Pass
 from tests.history import examples
-from tests.history.examples import NOON, a_span
+from tests.history.examples import NOON
 
 
 def stored(row: tuple[rows.Cell, ...]) -> rows.Row:
@@ -69,17 +69,6 @@ def test_half_of_a_surrogate_pair_becomes_its_escape():
     assert rows.text_or_none(None) is None
 
 
-def test_a_span_lies_in_the_minute_of_its_middle():
-    def minute(at: int, seconds: float = 10.0) -> int:
-        return rows.minute_row(a_span(7, at, seconds))[0]
-
-    assert minute(NOON) == rows.slot(NOON - 60, 7)
-    assert minute(NOON + 4) == rows.slot(NOON - 60, 7)
-    assert minute(NOON + 5) == rows.slot(NOON, 7)
-    assert minute(NOON + 59) == rows.slot(NOON, 7)
-    assert minute(NOON + 5, 11.0) == rows.slot(NOON - 60, 7)
-
-
 @given(examples.times, st.integers(0, 65_535), examples.times, st.integers(0, 65_535))
 def test_slots_stand_in_order_of_minute_and_then_of_drive(at, drive, other_at, other):
     assert (rows.slot(at, drive) < rows.slot(other_at, other)) == ((at // 60, drive) < (other_at // 60, other))
@@ -89,11 +78,6 @@ def test_slots_stand_in_order_of_minute_and_then_of_drive(at, drive, other_at, o
 def test_a_drive_that_would_fall_into_anothers_slot_is_refused(drive):
     with pytest.raises(ValueError, match="no number of a drive"):
         rows.slot(NOON, drive)
-
-
-def test_a_minutes_row_reads_back_as_a_span():
-    _, *amounts = rows.minute_row(a_span(drive=3, seconds=9.75, reads=2**40, busy_ms=0))
-    assert rows.span((3, NOON, *amounts)) == a_span(drive=3, seconds=9.75, reads=2**40, busy_ms=0)
 
 
 def test_passes_come_back():

@@ -1,38 +1,55 @@
-from dataclasses import replace
-
 import pytest
 from hypothesis import given, strategies as st
 
-from diskwatch.trends.load import CLASSES, Direction, Rollup, class_days, load_class
+from diskwatch.records import Direction, IoCounts, IoRollup
+from diskwatch.trends.load import CLASSES, class_days, load_class
 
 READ, WRITE = Direction.READ, Direction.WRITE
 
 
 def rollup(reads=300, writes=0, *, read_size=4096, write_size=4096, seconds=300.0, ms=6, reset=False):
-    return Rollup(
+    return IoRollup(
+        drive=1,
+        at=300,
         wall_seconds=300,
         covered_ms=round(seconds * 1000),
-        reads=reads,
-        writes=writes,
-        read_bytes=reads * read_size,
-        write_bytes=writes * write_size,
-        read_ms=reads * ms,
-        write_ms=writes * ms,
+        counts=IoCounts(
+            reads=reads,
+            writes=writes,
+            read_bytes=reads * read_size,
+            write_bytes=writes * write_size,
+            read_ms=reads * ms,
+            write_ms=writes * ms,
+            busy_ms=0,
+        ),
+        longest_read_us=None,
+        longest_write_us=None,
+        spans=30,
         reset=reset,
     )
 
 
-counts = st.integers(0, 10**7)
+counted = st.integers(0, 10**7)
+vast = st.integers(0, 2**50)
 rollups = st.builds(
-    Rollup,
+    IoRollup,
+    drive=st.just(1),
+    at=st.just(300),
     wall_seconds=st.just(300),
     covered_ms=st.integers(0, 320_000),
-    reads=counts,
-    writes=counts,
-    read_bytes=st.integers(0, 2**50),
-    write_bytes=st.integers(0, 2**50),
-    read_ms=st.integers(0, 2**40),
-    write_ms=st.integers(0, 2**40),
+    counts=st.builds(
+        IoCounts,
+        reads=counted,
+        writes=counted,
+        read_bytes=vast,
+        write_bytes=vast,
+        read_ms=vast,
+        write_ms=vast,
+        busy_ms=vast,
+    ),
+    longest_read_us=st.none(),
+    longest_write_us=st.none(),
+    spans=st.just(30),
     reset=st.booleans(),
 )
 
@@ -82,5 +99,5 @@ def test_every_stretch_that_takes_part_is_counted_once(day):
 
 
 def test_the_order_of_the_stretches_changes_nothing():
-    day = [rollup(300, 40, ms=5), rollup(3000), replace(rollup(300, 40), read_ms=1)]
+    day = [rollup(300, 40, ms=5), rollup(3000), rollup(300, 40, ms=1)]
     assert class_days(day) == class_days(day[::-1])
