@@ -1,30 +1,19 @@
-"""One round: list the drives, ask each, recognise it, judge it, keep it.
+"""One round: list the drives, ask each whose turn it is, recognise it, judge it, keep it."""
 
-Each drive is asked in a thread of its own, so that one that hangs delays no other; what came in is kept while
-the slow ones are still waited for.
-"""
-
-import queue
 import threading
-from collections.abc import Callable, Iterator
+from collections.abc import Callable
 from contextlib import AbstractContextManager, nullcontext
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 from diskwatch import analyser
 from diskwatch.machine import choice, identity
 from diskwatch.machine.protocol import Found, Machine
 from diskwatch.records import Drive, DriveRound, Entry, Identity, Kind, KnownDrive, Outcome, Pass, Round
+from diskwatch.service.asking import Answer, Asking
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.pace import Why
+from diskwatch.service.turns import Turns
 from diskwatch.units import plain, say_bytes
-
-PATIENCE = 3.0
-"""Seconds after which what has come in is kept, and the drives that are still silent are waited for apart."""
-
-AT_ONCE = 8
-"""Drives asked at once: more would only slow each other down on few cores, and look slow to the time-out."""
-
-SLOW = 1.0
-"""Seconds after which a drive that has not answered no longer keeps another one waiting."""
 
 AWAY_LIMIT = analyser.UNREAD_LIMIT
 """Rounds in which a drive that is no longer there is still recorded as absent; then its absence is known."""
@@ -37,17 +26,17 @@ def _all_wanted(_who: Identity, _devices: tuple[str, ...]) -> bool:
     return True
 
 
-@dataclass(frozen=True, slots=True)
-class _Answer:
-    found: Found
-    pass_: Pass
-
-
 class Rounds:
     """Runs rounds; remembers between them what each drive came to."""
 
     def __init__(
-        self, machine: Machine, keeper: Keeper, now: Callable[[], int], *, wanted: Wanted = _all_wanted
+        self,
+        machine: Machine,
+        keeper: Keeper,
+        now: Callable[[], int],
+        *,
+        wanted: Wanted = _all_wanted,
+        turns: Turns | None = None,
     ) -> None:
         """Begin.
 
@@ -56,11 +45,13 @@ class Rounds:
             keeper: where rounds are kept.
             now: UTC seconds since 1970.
             wanted: whether a drive that has told who it is, and goes by these devices, is to be watched.
+            turns: decides which drives a round leaves out; None to ask all each time.
         """
         self._machine = machine
         self._keeper = keeper
         self._now = now
         self._wanted = wanted
+        self._turns = turns
         self._states: dict[int, analyser.DriveState] = {}
         self._here: dict[str, int] = {}
         self._away: dict[int, int] = {}
@@ -72,38 +63,37 @@ class Rounds:
         """Kernel names of the block devices of each drive of the last round, by the drive's number."""
 
     def run(
-        self, *, told: Told | None = None, lock: AbstractContextManager[object] | None = None
+        self,
+        *,
+        told: Told | None = None,
+        lock: AbstractContextManager[object] | None = None,
+        everyone: bool = False,
     ) -> tuple[DriveRound, ...]:
-        """One full round.
+        """One round over all drives whose turn it is.
 
         Args:
             told: called with each part of the round as soon as it has been kept.
             lock: held while the keeper is used, where others use it too; None where nobody does.
+            everyone: whether no drive is left out, but for those that would be woken or that hang.
 
         Returns:
-            One a drive, in the order in which they answered; empty where the machine has no drive at all.
+            One a drive, in the order in which they answered. A drive that was left out gets no pass.
         """
         survey = self._machine.survey()
         entries = self._new_troubles(survey.troubles)
-        answers: queue.Queue[_Answer] = queue.Queue()
         self._forget_if_void()
-        self._instances = {name: one.instance for name, one in self._machine.counts().items()}
-        places = threading.Semaphore(AT_ONCE)
-        for found in survey.found:
-            self._start(found, answers, places)
-        waiting = len(survey.found)
-        taken: set[int] = set()
+        asked, taken = self._planned(survey.found, everyone=everyone)
+        asking = Asking(self._machine, asked)
         done: list[DriveRound] = []
         while True:
-            batch = tuple(_batch(answers, waiting))
-            waiting -= len(batch)
+            batch = asking.batch()
             ending = self._ending.is_set()
             if ending:
                 # A question that was cut short by the end of the watch says nothing of the drive.
                 batch = tuple(one for one in batch if one.pass_.outcome is not Outcome.TIMED_OUT)
             with lock or nullcontext():
                 part, more = self._judged(batch, taken)
-                if waiting == 0 and not survey.troubles and not ending:
+                if asking.waiting == 0 and not survey.troubles and not ending:
                     away, gone = self._gone(taken)
                     part, more = part + away, more + gone
                 if part or entries or more:
@@ -112,7 +102,7 @@ class Rounds:
             done += part
             if told is not None and part:
                 told(part)
-            if waiting == 0:
+            if asking.waiting == 0:
                 return tuple(done)
 
     def end(self) -> None:
@@ -133,17 +123,17 @@ class Rounds:
             self._away.clear()
             self.blocks.clear()
 
-    def _start(self, found: Found, answers: "queue.Queue[_Answer]", places: threading.Semaphore) -> None:
-        """Ask a drive in a thread of its own; the machine bounds how long that takes."""
-        # One that is slow keeps the next from starting for a moment only, and then no longer holds a place.
-        if not places.acquire(timeout=SLOW):
-            places.release()
-
-        def ask() -> None:
-            answers.put(_Answer(found, self._machine.ask(found)))
-            places.release()
-
-        threading.Thread(target=ask, name=f"asks {plain(found.place.device)}", daemon=True).start()
+    def _planned(self, drives: tuple[Found, ...], *, everyone: bool) -> tuple[tuple[Found, ...], set[int]]:
+        """Which drives this round asks, and the numbers of those that it leaves out: they are not gone."""
+        totals = self._machine.counts()
+        self._instances = {name: one.instance for name, one in totals.items()}
+        if self._turns is None:
+            return drives, set()
+        keyed = {self._instance(found): found for found in drives}
+        turns = self._turns.plan(keyed, totals, at=self._now(), everyone=everyone)
+        # The machine answers for a drive that the kernel has suspended, without asking it.
+        asked = {key: found for key, found in keyed.items() if turns[key].ask or turns[key] is Why.ASLEEP}
+        return tuple(asked.values()), {self._here[key] for key in keyed.keys() - asked if key in self._here}
 
     def _new_troubles(self, troubles: tuple[str, ...]) -> tuple[Entry, ...]:
         """Troubles of the machine as a whole, said when they begin and when they are over."""
@@ -160,11 +150,13 @@ class Rounds:
         return (*begun, *over)
 
     def _judged(
-        self, batch: tuple[_Answer, ...], taken: set[int]
+        self, batch: tuple[Answer, ...], taken: set[int]
     ) -> tuple[tuple[DriveRound, ...], tuple[Entry, ...]]:
         drives: list[DriveRound] = []
         entries: list[Entry] = []
         for answer in batch:
+            if self._turns is not None:
+                self._turns.answered(self._instance(answer.found), answer.pass_.outcome)
             told = answer.pass_.drive or answer.found.drive
             if not self._wanted(told.identity, choice.devices_of(answer.found)):
                 continue
@@ -198,7 +190,7 @@ class Rounds:
             self._states[number] = analyser.start() if kept is None else analyser.load(kept)
         return self._states[number]
 
-    def _recognised(self, answer: _Answer, taken: set[int]) -> tuple[KnownDrive, list[Entry]]:
+    def _recognised(self, answer: Answer, taken: set[int]) -> tuple[KnownDrive, list[Entry]]:
         """Which drive answered: one that is known, moved or not, or a new one."""
         found, told = answer.found, answer.pass_.drive or answer.found.drive
         at = answer.pass_.at
@@ -267,19 +259,6 @@ class Rounds:
             drives.append(drive)
             entries += happened
         return tuple(drives), tuple(entries)
-
-
-def _batch(answers: "queue.Queue[_Answer]", waiting: int) -> Iterator[_Answer]:
-    """What comes in, until all is in or nobody has answered for a while."""
-    got = 0
-    while got < waiting:
-        try:
-            # Nothing in hand: wait as long as it takes; the machine bounds every question itself.
-            answer = answers.get(timeout=PATIENCE if got else None)
-        except queue.Empty:
-            return
-        got += 1
-        yield answer
 
 
 def _fuller(known: Drive, told: Drive) -> Drive:

@@ -1,13 +1,31 @@
-"""Traffic: looks at the kernel's counters and makes spans of what lies between two looks."""
+"""Traffic: looks at the kernel's counters and makes spans of what lies between two looks.
+
+The same looks show which drives stand still.
+"""
 
 from collections.abc import Callable, Mapping
+from dataclasses import dataclass
 
 from diskwatch.machine import counters
 from diskwatch.machine.protocol import Counted, Machine
-from diskwatch.records import IoSpan
+from diskwatch.records import Entry, IoSpan
+from diskwatch.service.standstill import Standstill
 
 JUMP = 5.0
 """Seconds by which the clock and the steady clock may differ over a span; beyond, it slept or was set."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Look:
+    """What one look brought.
+
+    Attributes:
+        spans: the traffic since the look before, one a drive whose counters can be compared.
+        entries: drives that stand still or move again, for the day book.
+    """
+
+    spans: tuple[IoSpan, ...] = ()
+    entries: tuple[Entry, ...] = ()
 
 
 class Traffic:
@@ -26,26 +44,37 @@ class Traffic:
         self._steady = steady
         self._before: Mapping[str, Counted] = {}
         self._before_at = (0, 0.0)
+        self._standstill = Standstill()
 
-    def look(self, blocks: Mapping[int, tuple[str, ...]]) -> tuple[IoSpan, ...]:
+    @property
+    def hung(self) -> frozenset[str]:
+        """Kernel names of the block devices whose requests do not move; may be asked from any thread."""
+        return self._standstill.blocks
+
+    @property
+    def troubles(self) -> tuple[str, ...]:
+        """The same in one sentence each."""
+        return self._standstill.troubles
+
+    def look(self, blocks: Mapping[int, tuple[str, ...]]) -> Look:
         """Look once.
 
         Args:
             blocks: kernel names of each drive's block devices, by the drive's number.
 
         Returns:
-            The spans since the look before, one a drive whose counters can be compared. A span over which the
-            machine slept or its clock was set gives nothing.
+            A span over which the machine slept or its clock was set gives no traffic.
         """
         totals, at, steady = self._machine.counts(), self._now(), self._steady()
         before, (before_at, before_steady) = self._before, self._before_at
         self._before, self._before_at = totals, (at, steady)
+        entries = self._standstill.look(totals, blocks, at=at, steady=steady)
         seconds = steady - before_steady
         if not before or seconds <= 0 or abs((at - before_at) - seconds) > JUMP:
-            return ()
+            return Look(entries=entries)
         spans = []
         for number, names in sorted(blocks.items()):
             counts = counters.traffic(names, before, totals, elapsed=seconds)
             if counts is not None:
                 spans.append(IoSpan(drive=number, at=at, seconds=seconds, counts=counts))
-        return tuple(spans)
+        return Look(spans=tuple(spans), entries=entries)

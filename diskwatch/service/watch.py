@@ -14,6 +14,7 @@ from diskwatch.service.keeper import Keeper
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.schedule import Schedule
 from diskwatch.service.traffic import JUMP, Traffic
+from diskwatch.service.turns import Turns
 from diskwatch.settings import Settings
 from diskwatch.units import plain
 
@@ -50,13 +51,14 @@ class Watch:
         self._keeper = Keeper(folder)
         self._live = LiveWriter(folder)
         watch = settings.watch
+        self._traffic = Traffic(machine, now, time.monotonic)
         self._rounds = Rounds(
             machine,
             self._keeper,
             now,
             wanted=lambda who, devices: choice.watched(who, devices, only=watch.only, ignore=watch.ignore),
+            turns=Turns(every=settings.smart.every, hung=lambda: self._traffic.hung),
         )
-        self._traffic = Traffic(machine, now, time.monotonic)
         self._gathered: list[IoSpan] = []
         self._committed = time.monotonic()
         self._rounding = threading.Lock()
@@ -70,7 +72,7 @@ class Watch:
     def once(self) -> tuple[DriveRound, ...]:
         """One full round, and then the end."""
         try:
-            return self._rounds.run(told=self._told, lock=self._lock)
+            return self._rounds.run(told=self._told, lock=self._lock, everyone=True)
         finally:
             self._end()
 
@@ -111,15 +113,19 @@ class Watch:
             self._rounds.run(told=self._told, lock=self._lock)
 
     def _count(self) -> None:
-        spans = self._traffic.look(dict(self._rounds.blocks))
-        self._live.write(spans, now(), self._troubles())
-        self._gathered += spans
+        look = self._traffic.look(dict(self._rounds.blocks))
+        # First of all what needs no disk: the one that hangs may be the one that the history lies on.
+        self._live.write(look.spans, now(), self._troubles())
+        self._gathered += look.spans
+        if look.entries:
+            with self._lock:
+                self._keeper.note(*look.entries)
         if time.monotonic() - self._committed >= self._settings.history.commit:
             self._commit_traffic()
 
     def _troubles(self) -> tuple[str, ...]:
         kept = self._keeper.trouble
-        return (*self._rounds.troubles, *((kept,) if kept is not None else ()))
+        return (*self._rounds.troubles, *self._traffic.troubles, *((kept,) if kept is not None else ()))
 
     def _commit_traffic(self) -> None:
         self._committed = time.monotonic()

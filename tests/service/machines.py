@@ -59,7 +59,9 @@ class ScriptedMachine:
         self.stopped = True
 
 
-def counted(reads: int, *, instance: str = "boot 1, disk 1", busy_ms: int = 0) -> Counted:
+def counted(
+    reads: int, *, instance: str = "boot 1, disk 1", busy_ms: int = 0, in_flight: int | None = None
+) -> Counted:
     """Totals of a block device that has only read."""
     return Counted(
         counts=IoCounts(
@@ -72,4 +74,5 @@ def counted(reads: int, *, instance: str = "boot 1, disk 1", busy_ms: int = 0) -
             busy_ms=busy_ms,
         ),
         instance=instance,
+        in_flight=in_flight,
     )

@@ -7,6 +7,7 @@ from diskwatch.history.reader import Past
 from diskwatch.records import CallWord, Identity, Kind, Outcome, Place
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.rounds import Rounds
+from diskwatch.service.turns import Turns
 from tests.samples import DAY, HDD, NOON, NVME, missed, read, with_serial
 from tests.service.machines import ScriptedMachine, counted, found
 
@@ -45,7 +46,7 @@ def test_a_round_asks_every_drive_once_and_keeps_what_it_brought(tmp_path, keepe
 
 
 def test_a_drive_that_hangs_delays_the_keeping_of_no_other(keeper, monkeypatch):
-    monkeypatch.setattr("diskwatch.service.rounds.PATIENCE", 0.05)
+    monkeypatch.setattr("diskwatch.service.asking.PATIENCE", 0.05)
     machine = ScriptedMachine(found(HDD), found(NVME))
     machine.answers = {"/dev/sda": [missed(NOON, Outcome.TIMED_OUT)], "/dev/nvme0": [read(NOON, NVME)]}
     machine.hold["/dev/sda"] = threading.Event()
@@ -200,8 +201,8 @@ def test_a_machine_without_any_drive_gives_an_empty_round(keeper):
 
 
 def test_a_round_asks_a_bounded_number_at_once_and_slow_ones_do_not_keep_the_rest_waiting(keeper, monkeypatch):
-    monkeypatch.setattr("diskwatch.service.rounds.AT_ONCE", 2)
-    monkeypatch.setattr("diskwatch.service.rounds.SLOW", 0.02)
+    monkeypatch.setattr("diskwatch.service.asking.AT_ONCE", 2)
+    monkeypatch.setattr("diskwatch.service.asking.SLOW", 0.02)
     many = [with_serial(HDD, f"INV1{number:03}", f"/dev/sd{number}") for number in range(8)]
     machine = ScriptedMachine(*(found(one, bay=one.identity.path) for one in many))
     machine.answers = {one.identity.path: [read(NOON, one)] for one in many}
@@ -234,3 +235,42 @@ def test_a_history_that_comes_into_reach_late_is_taken_up_with_its_past(tmp_path
     assert done.call is not None
     assert done.call.word is CallWord.LOOK
     assert any("came into reach late" in text for _, _, text in book(state))
+
+
+def test_a_drive_that_is_left_out_of_a_round_gets_no_pass_and_is_not_gone(tmp_path, keeper):
+    machine = ScriptedMachine(found(HDD), found(NVME))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/nvme0": [read(NOON, NVME)]}
+    machine.totals = [{"sda": counted(5), "nvme0": counted(7, instance="disk 2")}]
+    running = rounds(machine, keeper, turns=Turns(every=1800))
+    passes = [[one.known.drive.identity.serial for one in running.run()] for _ in range(3)]
+    assert sorted(passes[0]) == ["INV0001", "INV0003"]
+    assert passes[1:] == [["INV0003"], ["INV0003"]]
+    assert sorted(one.known.drive.identity.serial for one in running.run(everyone=True)) == sorted(passes[0])
+    assert {kind for kind, *_ in book(tmp_path)} == {"first-seen"}
+
+
+def test_a_drive_that_hangs_is_not_asked_while_another_goes_on(keeper):
+    machine = ScriptedMachine(found(HDD), found(NVME))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/nvme0": [read(NOON, NVME)]}
+    hung: set[str] = set()
+    running = rounds(machine, keeper, turns=Turns(hung=lambda: frozenset(hung)))
+    running.run()
+    hung.add("sda")
+    machine.asked.clear()
+    running.run()
+    assert machine.asked == ["/dev/nvme0"]
+    hung.clear()
+    running.run()
+    assert sorted(machine.asked) == ["/dev/nvme0", "/dev/nvme0", "/dev/sda"]
+
+
+def test_a_twin_of_a_drive_that_is_left_out_does_not_take_its_history(keeper):
+    twin = replace(HDD, identity=replace(HDD.identity, path="/dev/sdb"))
+    machine = ScriptedMachine(found(HDD, bay="ata-1"), found(twin, bay="ata-2"))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/sdb": [read(NOON, twin)]}
+    hung: set[str] = set()
+    running = rounds(machine, keeper, turns=Turns(hung=lambda: frozenset(hung)))
+    numbers = {one.known.place.device: one.known.number for one in running.run()}
+    hung.add("sda")
+    (done,) = running.run()
+    assert done.known.number == numbers["/dev/sdb"]

@@ -23,9 +23,9 @@ def traffic(*totals):
 
 def test_the_first_look_gives_nothing_and_the_second_the_difference():
     looks, clocks = traffic(counted(100), counted(130))
-    assert looks.look(BLOCKS) == ()
+    assert looks.look(BLOCKS).spans == ()
     clocks.move(10)
-    (span,) = looks.look(BLOCKS)
+    (span,) = looks.look(BLOCKS).spans
     assert (span.drive, span.at, span.seconds, span.counts.reads) == (7, clocks.wall, 10.0, 30)
 
 
@@ -35,24 +35,52 @@ def test_counters_of_another_device_under_the_same_name_are_never_subtracted():
     )
     looks.look(BLOCKS)
     clocks.move(10)
-    assert looks.look(BLOCKS) == ()
+    assert looks.look(BLOCKS).spans == ()
     clocks.move(10)
-    assert looks.look(BLOCKS)[0].counts.reads == 10
+    assert looks.look(BLOCKS).spans[0].counts.reads == 10
 
 
 def test_a_span_over_a_sleep_or_a_set_clock_is_dropped():
     looks, clocks = traffic(counted(100), counted(130), counted(140), counted(150))
     looks.look(BLOCKS)
     clocks.move(10, asleep=3600)
-    assert looks.look(BLOCKS) == ()
+    assert looks.look(BLOCKS).spans == ()
     clocks.move(10, asleep=-7200)
-    assert looks.look(BLOCKS) == ()
+    assert looks.look(BLOCKS).spans == ()
     clocks.move(10)
-    assert looks.look(BLOCKS)[0].counts.reads == 10
+    assert looks.look(BLOCKS).spans[0].counts.reads == 10
 
 
 def test_a_drive_without_block_devices_has_no_traffic_of_its_own():
     looks, clocks = traffic(counted(100), counted(130))
     looks.look({7: ()})
     clocks.move(10)
-    assert looks.look({7: ()}) == ()
+    assert looks.look({7: ()}).spans == ()
+
+
+def test_a_drive_that_stands_still_is_told_within_a_minute_and_named_to_whoever_asks():
+    stuck = counted(100, in_flight=2)
+    looks, clocks = traffic(counted(90, in_flight=2), stuck, stuck, stuck, stuck, counted(101, in_flight=1))
+    told = []
+    for _ in range(5):
+        told += [(clocks.wall, entry) for entry in looks.look(BLOCKS).entries]
+        clocks.move(10)
+    ((at, entry),) = told
+    assert at - 1_000_000 <= 60
+    assert (entry.drive, entry.kind, entry.at) == (7, "trouble", at)
+    assert looks.hung == {"sda"}
+    assert looks.troubles == (
+        "Requests to sda have not moved for 30 seconds; its drive is not asked until they do",
+    )
+    (over,) = looks.look(BLOCKS).entries
+    assert (over.drive, over.kind) == (7, "trouble")
+    assert (looks.hung, looks.troubles) == (frozenset(), ())
+
+
+def test_a_standstill_over_a_sleep_of_the_machine_counts_only_the_time_awake():
+    stuck = counted(100, in_flight=2)
+    looks, clocks = traffic(stuck, stuck, stuck)
+    looks.look(BLOCKS)
+    clocks.move(10, asleep=3600)
+    assert looks.look(BLOCKS).entries == ()
+    assert looks.hung == frozenset()

@@ -5,6 +5,7 @@ import time
 import pytest
 
 from diskwatch.history.reader import Past
+from diskwatch.records import Entry
 from diskwatch.service.watch import Watch
 from diskwatch.settings import Duration, HistoryKeeping, Io, Settings, Smart, Watch as WatchSettings
 from tests.samples import HDD, NOON, read, with_serial
@@ -88,3 +89,28 @@ def test_a_history_that_cannot_be_written_is_said_to_whoever_looks(machine, tmp_
     threading.Timer(0.5, watch.end).start()
     watch.run()
     assert watch.trouble
+
+
+@pytest.mark.usefixtures("_signals")
+def test_a_drive_that_hangs_is_written_in_the_day_book_and_said_to_whoever_looks(
+    machine, tmp_path, monkeypatch
+):
+    monkeypatch.setattr("diskwatch.machine.standstill.HUNG", 1.0)
+    machine.totals = [{"sda": counted(100, in_flight=2)}]
+    watch = Watch(machine, QUICK, tmp_path)
+    seen: list[Entry] = []
+
+    def look():
+        for _ in range(100):
+            with Past.open(tmp_path) as past:
+                seen[:] = [entry for entry in past.day_book() if entry.kind == "trouble"]
+                if seen and past.bays(int(time.time())).trouble:
+                    break
+            time.sleep(0.05)
+        watch.end()
+
+    threading.Timer(0.3, look).start()
+    watch.run()
+    (entry,) = seen
+    assert entry.drive == 1
+    assert entry.text.startswith("Requests to it have not moved for ")
