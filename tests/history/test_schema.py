@@ -1,9 +1,20 @@
+import runpy
+import shutil
 import sqlite3
+from contextlib import closing
+from pathlib import Path
 
 import pytest
 
+from diskwatch.errors import HistoryError
 from diskwatch.history import schema, versions
 from diskwatch.history.library import Database, Migrations
+from diskwatch.history.reader import Past
+from diskwatch.history.writer import History
+from diskwatch.places import HISTORY
+from tests.history.examples import DAY, NOON
+
+OLD = Path(__file__).parents[2] / "fixtures" / "history"
 
 
 @pytest.fixture
@@ -48,6 +59,69 @@ def test_a_step_that_fails_leaves_the_history_as_it_was(db, monkeypatch):
     with pytest.raises(sqlite3.IntegrityError):
         schema.bring_up_to_date(db)
     assert _dump(db) == before
+
+
+@pytest.fixture
+def old(folder):
+    """A history as the first version had it, in its place."""
+    folder.mkdir()
+    shutil.copyfile(OLD / "0001.db", folder / HISTORY)
+    return folder
+
+
+def test_every_older_version_is_kept_as_a_file_and_its_script_still_makes_it(tmp_path):
+    kept = sorted(path.stem for path in OLD.glob("*.db"))
+    assert kept == [name[:4] for name in versions.MIGRATIONS[:-1]]
+    for name in kept:
+        runpy.run_path(str(OLD / f"make_{name}.py"))["make"](tmp_path / "made.db")
+        with (
+            closing(sqlite3.connect(tmp_path / "made.db")) as made,
+            closing(sqlite3.connect(OLD / f"{name}.db")) as there,
+        ):
+            assert list(made.iterdump()) == list(there.iterdump())
+
+
+def test_a_history_of_the_first_version_comes_over_whole(old):
+    with pytest.raises(HistoryError, match="older version"):
+        Past.open(old)
+    with History.open(old) as history:
+        assert history.states() == {1: '{"parameters":1}'}
+    with Past.open(old) as past:
+        (line,) = past.bays(NOON).drives
+        assert (line.label, line.call.word if line.call else None, len(line.findings)) == ("attic", "look", 1)
+        assert past.series(1, "pending-sectors") == ((NOON, 0), (NOON + DAY, 8))
+        assert past.series(1, "data-written") == ((NOON + DAY, 2**70),)
+        assert [one.outcome for one in past.passes(1)] == ["timed-out", "read"]
+        assert [one.passes for one in past.pass_days(1)] == [1, 1]
+        assert past.evidence(1, "pending-sectors") == ((NOON // DAY, 1.5), (NOON // DAY + 1, 4000.5))
+        assert len(past.traffic(1, 0, 2**40)) == 7
+        rollups = past.rollups(1, 0, 2**40)
+        assert [(one.at, one.covered_ms, one.counts.writes) for one in rollups] == [
+            (NOON + 300, 300_000, 100),
+            (NOON + 600, 120_000, 40),
+        ]
+        assert {(one.longest_read_us, one.reset) for one in rollups} == {(None, False)}
+        assert [entry.kind for entry in past.day_book()] == ["rise"]
+        reading = past.last_reading(1)
+        assert reading is not None
+        assert reading.warning_celsius == 60
+
+
+def test_whichever_statement_of_a_step_fails_the_old_file_stays_as_it_was(old, monkeypatch):
+    path = old / HISTORY
+    with closing(sqlite3.connect(path)) as before:
+        dump = list(before.iterdump())
+    for count in range(1, len(schema._TEN_YEARS) + 1):
+        broken = (*schema._TEN_YEARS[: count - 1], "CREATE TABLE no words")
+        with monkeypatch.context() as patch:
+            patch.setattr(schema, "_TEN_YEARS", broken)
+            with pytest.raises(HistoryError):
+                History.open(old)
+        with closing(sqlite3.connect(path)) as after:
+            assert list(after.iterdump()) == dump
+    History.open(old).close()
+    with Past.open(old) as past:
+        assert len(past.rollups(1, 0, 2**40)) == 2
 
 
 def test_every_table_of_ours_checks_types(db):
