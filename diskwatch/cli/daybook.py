@@ -58,7 +58,7 @@ def since_when(text: str, at: int) -> int:
 
 
 def _name(line: DriveLine) -> str:
-    return line.drive.identity.serial or line.drive.identity.wwn or line.place.device
+    return line.drive.identity.telling_serial or line.drive.identity.wwn or line.place.device
 
 
 def _told(entry: Entry, lines: dict[int, DriveLine]) -> str:

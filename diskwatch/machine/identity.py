@@ -4,15 +4,14 @@ The order of trust: a world-wide name, then serial with model, then (weakly) the
 trusted blindly: bridges and cheap drives ship names that many units share.
 """
 
-import re
 from collections.abc import Iterable
 
 from diskwatch.records import Identity, KnownDrive
+from diskwatch.records.placeholders import empty_wwn
 
 _CUT = 16
 """Letters of the model field in SCSI INQUIRY data (SPC), to which a drive's model may have been cut."""
 
-_EMPTY_WORDS = frozenset({"unknown", "none", "n/a", "null", "invalid", "not specified", "serial number"})
 _RUNS = ("0123456789abcdef", "123456789abcdef0", "1234567890")
 
 
@@ -56,8 +55,8 @@ def recognise(
 
 def serial_of(identity: Identity) -> str | None:
     """The serial for comparison: blanks and case folded; None where it is missing or a placeholder."""
-    serial = _fold(identity.serial)
-    if serial is None or serial in _EMPTY_WORDS or re.fullmatch(r"(.)\1*|[0xf.\-_ ]+", serial):
+    serial = _fold(identity.telling_serial)
+    if serial is None:
         return None
     # Bridges that invent a serial count upwards; a drive that also names its model is believed.
     if _fold(identity.model) is None and len(serial) >= 6 and any(run.startswith(serial) for run in _RUNS):
@@ -67,14 +66,7 @@ def serial_of(identity: Identity) -> str | None:
 
 def wwn_of(identity: Identity) -> str | None:
     """The world-wide name for comparison; None where it is missing or a placeholder."""
-    name = _fold(identity.wwn)
-    if name is None:
-        return None
-    digits = re.sub(r"[^0-9a-z]", "", name.partition(".")[2])
-    # Behind the naming authority's digit, an all-zero name is as empty as one of zeros alone.
-    if re.fullmatch(r"[0-9a-f]?0*|f*|x*", digits):
-        return None
-    return name
+    return None if empty_wwn(identity.wwn) else _fold(identity.wwn)
 
 
 def _closeness(a: Identity, b: Identity) -> int:

@@ -8,12 +8,8 @@ from diskwatch.machine.held import Family
 from diskwatch.machine.text import Sheet, whole
 from diskwatch.records import Drive, Identity, Kind
 
-_NO_NAME = re.compile(
-    r"(?:(.)\1*|none|null|n/?a|unknown|unspecified|not (?:available|specified|applicable)|default string|"
-    r"\[no information found\]|to be filled by o\.?e\.?m\.?|serial ?(?:number|no\.?)?)",
-    re.IGNORECASE,
-)
-"""Serials that tell nothing: one letter again and again, or a word that stands for nothing (practice)."""
+_NOT_TOLD = "[no information found]"
+"""smartctl's own words where a drive left a field empty."""
 
 _VIRTUAL = re.compile(
     r"\b(?:qemu|vbox|virtualbox|vmware|virtio|msft virtual|virtual (?:disk|hd|drive)|logical volume|"
@@ -116,7 +112,7 @@ def merged(found: Drive, told: Drive) -> Drive:
             kernel,
             wwn=kernel.wwn if by_kernel else (mine.wwn or kernel.wwn),
             model=mine.model or kernel.model,
-            serial=mine.serial or kernel.serial,
+            serial=mine.telling_serial or kernel.telling_serial or mine.serial or kernel.serial,
         ),
         kind=kind,
         firmware=told.firmware or found.firmware,
@@ -126,9 +122,9 @@ def merged(found: Drive, told: Drive) -> Drive:
 
 
 def serial_of(text: str | None) -> str | None:
-    """A serial that tells one drive from another, else None."""
+    """A serial as the drive states it, also one that stands for nothing; None where it states none."""
     name = _name(text)
-    return None if name is None or _NO_NAME.fullmatch(name) else name
+    return None if name is None or name.lower() == _NOT_TOLD else name
 
 
 def is_flash(drive: Drive | None) -> bool:

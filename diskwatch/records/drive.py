@@ -3,6 +3,8 @@
 from dataclasses import dataclass
 from enum import StrEnum
 
+from diskwatch.records.placeholders import empty_serial, empty_wwn
+
 
 class Kind(StrEnum):
     """What sort of device it is: the first that fits, in this order."""
@@ -22,7 +24,8 @@ class Identity:
     Attributes:
         wwn: world-wide name as Linux's ``wwid`` writes it (``naa.5000c500a0000001``, ``eui.…``), or None.
         model: model as the drive gives it, outer blanks removed, or None.
-        serial: serial as the drive gives it, outer blanks removed, or None.
+        serial: serial as the drive gives it, outer blanks removed, or None; may be one that stands for nothing
+            (``XXXXXXXX``), see ``telling_serial``.
         path: where it answered (``/dev/sda``, ``/dev/bus/0 megaraid,7``); identifies it only when nothing
             else does, and weakly, since paths change.
     """
@@ -35,7 +38,12 @@ class Identity:
     @property
     def weak(self) -> bool:
         """Whether only the path tells this drive from others."""
-        return self.wwn is None and self.serial is None
+        return empty_wwn(self.wwn) and self.telling_serial is None
+
+    @property
+    def telling_serial(self) -> str | None:
+        """The serial where it can tell one drive from another, else None."""
+        return None if empty_serial(self.serial) else self.serial
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

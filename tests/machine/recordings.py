@@ -132,7 +132,7 @@ def truth_of(text: str) -> Truth:
 
 
 def _note_identity(truth: Truth, label: str, rest: str) -> None:
-    if label in WHO and not (label.startswith("Serial") and set(rest) == {"X"}):
+    if label in WHO:
         setattr(truth, WHO[label], rest)
     elif label == "Vendor":
         truth.model = rest

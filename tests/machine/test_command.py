@@ -6,6 +6,7 @@ from pathlib import Path
 
 import pytest
 
+from diskwatch.machine import command
 from diskwatch.machine.command import Answer, Door, Ending
 
 
@@ -45,6 +46,20 @@ def test_the_command_runs_in_the_c_locale_with_nothing_to_read_and_in_its_own_gr
 def test_a_command_on_path_is_found_by_its_name(tmp_path: Path, monkeypatch: pytest.MonkeyPatch):
     script(tmp_path, "echo found", name="tool-of-the-test")
     monkeypatch.setenv("PATH", str(tmp_path))
+    assert Door().run(["tool-of-the-test"], timeout=10).out == b"found\n"
+
+
+def test_a_command_of_the_system_is_found_though_an_ordinary_users_path_lacks_its_folder(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+):
+    """On Debian smartctl lies in /usr/sbin, which only root has on PATH."""
+    sbin = tmp_path / "sbin"
+    sbin.mkdir()
+    script(sbin, "echo found", name="tool-of-the-test")
+    monkeypatch.setenv("PATH", "/usr/bin:/bin")
+    assert Door().run(["tool-of-the-test"], timeout=10).ending is Ending.MISSING
+    assert "/usr/sbin" in command._SBIN.split(":")
+    monkeypatch.setattr(command, "_SBIN", f"{command._SBIN}:{sbin}")
     assert Door().run(["tool-of-the-test"], timeout=10).out == b"found\n"
 
 
