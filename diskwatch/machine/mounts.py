@@ -5,12 +5,14 @@ Read from the first process's mountinfo: a hardened service sees its own, altere
 
 import os
 import re
-from collections.abc import Callable, Iterable, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, replace
 from pathlib import Path
 
-from diskwatch.machine.kernel_files import names_in, text_of, whole_of
+from diskwatch.machine.kernel_files import names_in, whole_of
+from diskwatch.machine.nodes import kernel_name
 from diskwatch.machine.stacks import Stack
+from diskwatch.machine.zfs import pool_on
 from diskwatch.records import Mount
 
 _NAMED_BY_SOURCE = frozenset({"btrfs", "bcachefs"})
@@ -63,6 +65,7 @@ def living_on(
     sys_root: Path = Path("/sys"),
     dev_root: Path = Path("/dev"),
     measure: Measure | None = None,
+    pools: Mapping[str, bool] | None = None,
 ) -> tuple[Mount, ...]:
     """The file systems on a drive.
 
@@ -72,19 +75,27 @@ def living_on(
         sys_root: where sysfs is mounted.
         dev_root: where device nodes are; only links there are followed, no node is opened.
         measure: how to ask for sizes; None leaves them unknown, as for a drive that must not be woken.
+        pools: the ZFS pools (`diskwatch.machine.zfs.pools`).
 
     Returns:
         Shortest path first. Of several mounts of the same files (bind mounts) one stands for all. Several parts
         of one file system (subvolumes) are listed each, but its size stands with the first only, so that a sum
-        over the drive counts nothing twice.
+        over the drive counts nothing twice. The file systems of a ZFS pool share their room: each has what it
+        uses, and only the first the room as well.
     """
+    pool = pool_on(stack, pools or {})
     visible = {line.point: line for line in lines}  # a later mount on the same point hides the earlier
     groups: dict[str, list[MountLine]] = {}
     for line in visible.values():
-        if _lies_on(line, stack, sys_root, dev_root):
+        if _lies_on(line, stack, sys_root, dev_root) or (pool is not None and _is_of(line, pool)):
             groups.setdefault(line.number, []).append(line)
-    mounts = [mount for group in groups.values() for mount in _told(_without_binds(group), measure)]
-    return tuple(sorted(mounts, key=lambda mount: (len(mount.point), mount.point)))
+    mounts: list[Mount] = []
+    shared: list[Mount] = []
+    for group in groups.values():
+        zfs = group[0].type == "zfs"
+        suspended = zfs and not (pools or {}).get(pool or "", False)
+        (shared if zfs else mounts).extend(_told(_without_binds(group), None if suspended else measure))
+    return tuple(sorted((*mounts, *_once(sorted(shared, key=_by_length))), key=_by_length))
 
 
 def measured(point: str, number: str) -> tuple[int, int] | None:
@@ -108,16 +119,29 @@ def _line(raw: str) -> MountLine | None:
         return None
     return MountLine(
         number=front[2],
-        root=_unescaped(front[3]),
-        point=_unescaped(front[4]),
+        root=unescaped(front[3]),
+        point=unescaped(front[4]),
         type=back[0],
-        source=_unescaped(back[1]),
+        source=unescaped(back[1]),
     )
 
 
-def _unescaped(text: str) -> str:
-    r"""Blanks, tabs, line ends and backslashes stand as ``\040`` and the like."""
+def unescaped(text: str) -> str:
+    r"""A path as it is: blanks, tabs, line ends and backslashes stand as ``\040`` and the like in /proc."""
     return re.sub(r"\\([0-3][0-7]{2})", lambda found: chr(int(found[1], 8)), text)
+
+
+def _is_of(line: MountLine, pool: str) -> bool:
+    return line.type == "zfs" and line.source.partition("/")[0] == pool
+
+
+def _once(shared: Sequence[Mount]) -> list[Mount]:
+    """File systems that share their room, which stands with the first only."""
+    return [mount if index == 0 else replace(mount, total_bytes=None) for index, mount in enumerate(shared)]
+
+
+def _by_length(mount: Mount) -> tuple[int, str]:
+    return len(mount.point), mount.point
 
 
 def _lies_on(line: MountLine, stack: Stack, sys_root: Path, dev_root: Path) -> bool:
@@ -125,20 +149,10 @@ def _lies_on(line: MountLine, stack: Stack, sys_root: Path, dev_root: Path) -> b
         return True
     if line.type not in _NAMED_BY_SOURCE:
         return False
-    devices = {_kernel_name(source, sys_root, dev_root) for source in line.source.split(":")}
+    devices = {kernel_name(source, sys_root, dev_root) for source in line.source.split(":")}
     if line.type == "btrfs":
         devices |= _members(devices, sys_root)
     return not stack.names.isdisjoint(devices)
-
-
-def _kernel_name(source: str, sys_root: Path, dev_root: Path) -> str:
-    """``dm-0`` for ``/dev/mapper/vault``, ``sda2`` for ``/dev/sda2``."""
-    node = source.removeprefix("/dev/")
-    if node.startswith("mapper/"):
-        for block in names_in(sys_root / "block"):
-            if block.startswith("dm-") and text_of(sys_root / "block" / block / "dm" / "name") == node[7:]:
-                return block
-    return Path(os.path.realpath(dev_root / node)).name
 
 
 def _members(devices: Iterable[str], sys_root: Path) -> set[str]:

@@ -1,7 +1,7 @@
 """This computer, joined from its parts: the kernel's files, its counters, and smartctl."""
 
 import time
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
 
@@ -10,12 +10,15 @@ from diskwatch.machine.blocks import physical_drives
 from diskwatch.machine.choice import asked
 from diskwatch.machine.disks import asleep
 from diskwatch.machine.kernel_files import names_in, text_of
-from diskwatch.machine.mounts import living_on, measured, mount_lines
+from diskwatch.machine.mounts import MountLine, living_on, measured, mount_lines
+from diskwatch.machine.patience import Patience
 from diskwatch.machine.protocol import Counted, Found, Survey
 from diskwatch.machine.smartctl import Smartctl
 from diskwatch.machine.stacks import stack_on
 from diskwatch.machine.survey import joined
-from diskwatch.records import Drive, Kind, Outcome, Pass
+from diskwatch.machine.swaps import swap_on
+from diskwatch.machine.zfs import pools
+from diskwatch.records import Drive, Kind, Mount, Outcome, Pass
 
 
 def _wall_clock() -> int:
@@ -57,6 +60,7 @@ class RealMachine:
         self._only, self._ignore = only, ignore
         self._sys, self._proc, self._dev = sys_root, proc_root, dev_root
         self._now = now
+        self._measure = Patience(measured)
         self._said: dict[str, Drive] = {}
         self._without_smart: set[str] = set()
 
@@ -70,7 +74,7 @@ class RealMachine:
                 f"{self._sys / 'block'} lists no block device, so drives may be missing: "
                 "check that sysfs is mounted there and may be read."
             )
-        lines = mount_lines(self._proc)
+        mounted = mount_lines(self._proc), pools(self._proc)
         found = []
         for one in joined(physical_drives(self._sys), scan.entries, listed):
             bare = replace(one, instance=self._instance(one))
@@ -78,13 +82,7 @@ class RealMachine:
             drive = replace(bare, drive=_at(said, bare)) if said is not None else bare
             if not self._is_asked(drive, said_itself=said is not None):
                 continue
-            lives_here = living_on(
-                stack_on(self._sys, drive.blocks),
-                lines,
-                sys_root=self._sys,
-                dev_root=self._dev,
-                measure=None if drive.asleep else measured,
-            )
+            lives_here = self._living_on(drive, *mounted)
             found.append(replace(drive, place=replace(drive.place, lives_here=lives_here)))
         return Survey(found=tuple(found), troubles=tuple(troubles))
 
@@ -115,6 +113,20 @@ class RealMachine:
     def stop(self) -> None:
         """End every question that is still under way, at once."""
         self._smartctl.stop()
+
+    def _living_on(
+        self, drive: Found, lines: Sequence[MountLine], pools: Mapping[str, bool]
+    ) -> tuple[Mount, ...]:
+        stack = stack_on(self._sys, drive.blocks, dev_root=self._dev)
+        mounts = living_on(
+            stack,
+            lines,
+            sys_root=self._sys,
+            dev_root=self._dev,
+            measure=None if drive.asleep else self._measure,
+            pools=pools,
+        )
+        return (*mounts, *swap_on(stack, self._proc, sys_root=self._sys, dev_root=self._dev))
 
     def _instance(self, found: Found) -> str:
         """Behind a controller the kernel knows no instance; there the place has to do."""

@@ -7,6 +7,7 @@ from hypothesis import given, strategies as st
 from diskwatch.machine.blocks import physical_drives
 from diskwatch.machine.mounts import living_on, measured, mount_lines, parse
 from diskwatch.machine.stacks import stack_on
+from diskwatch.machine.zfs import pools
 from diskwatch.records import Mount
 from tests.machine.trees import Tree
 
@@ -75,6 +76,45 @@ def test_a_source_that_is_a_link_is_followed(tree: Tree):
     (tree.dev / "vg" / "data").symlink_to("../dm-3")
     tree.mount("0:30", "/data", "btrfs", "/dev/vg/data")
     assert points(tree, "sda") == ["/data"]
+
+
+def lived_in_pool(tree: Tree, measure: object) -> list[Mount]:
+    tree.partition(tree.sata(), "sda1", "8:1", label="zfs-0123456789abcdef")
+    for source, point in (("tank/home", "/tank/home"), ("tank", "/tank"), ("tankard", "/other")):
+        tree.mount(f"0:{40 + len(point)}", point, "zfs", source)
+    tree.mount("0:60", "/tank/x", "zfs", "tank/x")
+    return list(
+        living_on(
+            stack_on(tree.sys, ["sda"]),
+            mount_lines(tree.proc),
+            measure=measure,  # type: ignore[arg-type]  # every one below fits
+            pools=pools(tree.proc),
+        )
+    )
+
+
+def test_file_systems_of_a_pool_have_each_what_they_use_and_their_common_room_once(tree: Tree):
+    tree.zfs("tank")
+    assert lived_in_pool(tree, lambda *_: (30, 100)) == [
+        Mount(point="/tank", used_bytes=30, total_bytes=100),
+        Mount(point="/tank/x", used_bytes=30),
+        Mount(point="/tank/home", used_bytes=30),
+    ]
+
+
+def test_a_pool_that_is_suspended_is_not_asked_for_its_size(tree: Tree):
+    tree.zfs("tank", "SUSPENDED")
+
+    def refuse(*_: str) -> None:
+        raise AssertionError
+
+    assert [mount.point for mount in lived_in_pool(tree, refuse)] == ["/tank", "/tank/x", "/tank/home"]
+
+
+def test_nothing_is_said_of_a_pool_that_the_kernel_does_not_place(tree: Tree):
+    tree.zfs("tank")
+    tree.zfs("vault")
+    assert lived_in_pool(tree, None) == []
 
 
 def test_files_mounted_twice_are_shown_once_at_the_widest_then_shortest(tree: Tree):

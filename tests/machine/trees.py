@@ -204,8 +204,10 @@ class Tree:
             files["serial"] = serial
         return self.block(name, f"{above}/block", device=above, number=number, files=files)
 
-    def partition(self, disk: Path, name: str, number: str) -> Path:
+    def partition(self, disk: Path, name: str, number: str, *, label: str | None = None) -> Path:
         place = disk / name
+        told = "" if label is None else f"\nPARTNAME={label}"
+        self.put(place / "uevent", f"DEVNAME={name}\nDEVTYPE=partition\nPARTN=1{told}")
         (place / "holders").mkdir(parents=True)
         self.put(place / "partition", "1")
         self.put(place / "dev", number)
@@ -219,6 +221,18 @@ class Tree:
         for part in below:
             (part / "holders" / name).symlink_to(place)
         return place
+
+    def loop(self, name: str, number: str, below: str) -> Path:
+        place = self.block(name, "devices/virtual/block", device=None, number=number)
+        self.put(place / "loop/backing_file", below)
+        return place
+
+    def zfs(self, pool: str, state: str = "ONLINE") -> None:
+        self.put(self.proc / "spl/kstat/zfs" / pool / "state", state)
+
+    def swaps(self, *lines: str) -> None:
+        head = "Filename\t\t\t\tType\t\tSize\t\tUsed\t\tPriority\n"
+        (self.proc / "swaps").write_text(head + "".join(f"{line}\n" for line in lines))
 
     def btrfs(self, uuid: str, *devices: Path) -> None:
         for device in devices:
