@@ -37,6 +37,7 @@ class Rounds:
         *,
         wanted: Wanted = _all_wanted,
         turns: Turns | None = None,
+        asking: type[Asking] = Asking,
     ) -> None:
         """Begin.
 
@@ -46,12 +47,14 @@ class Rounds:
             now: UTC seconds since 1970.
             wanted: whether a drive that has told who it is, and goes by these devices, is to be watched.
             turns: decides which drives a round leaves out; None to ask all each time.
+            asking: how the drives of a round are asked.
         """
         self._machine = machine
         self._keeper = keeper
         self._now = now
         self._wanted = wanted
         self._turns = turns
+        self._asking = asking
         self._states: dict[int, analyser.DriveState] = {}
         self._here: dict[str, int] = {}
         self._away: dict[int, int] = {}
@@ -83,7 +86,7 @@ class Rounds:
         entries = self._new_troubles(survey.troubles)
         self._forget_if_void()
         asked, taken = self._planned(survey.found, everyone=everyone)
-        asking = Asking(self._machine, asked)
+        asking = self._asking(self._machine, asked)
         done: list[DriveRound] = []
         while True:
             batch = asking.batch()

@@ -1,6 +1,6 @@
 import threading
 
-from diskwatch.service.asking import Asking
+from diskwatch.service.asking import Asking, InTurn
 from tests.samples import HDD, NOON, NVME, read
 from tests.service.machines import ScriptedMachine, found
 
@@ -36,3 +36,10 @@ def test_what_came_in_is_handed_over_while_a_slow_one_is_waited_for(monkeypatch)
 def test_no_drive_to_ask_is_an_empty_batch():
     asking = Asking(both(), ())
     assert (asking.batch(), asking.waiting) == ((), 0)
+
+
+def test_in_turn_answers_come_in_the_order_of_the_list():
+    machine = both()
+    asking = InTurn(machine, machine.listed)
+    assert [answer.found.address.node for answer in asking.batch()] == ["/dev/sda", "/dev/nvme0"]
+    assert asking.waiting == 0
