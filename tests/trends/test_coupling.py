@@ -1,0 +1,86 @@
+import pytest
+from hypothesis import given, strategies as st
+
+from diskwatch.records import Direction
+from diskwatch.trends.coupling import DAYS, FOLLOWS, Coupling, Unknown, coupling, rank_correlation
+from diskwatch.trends.shift import DayShift
+
+FIGURES = st.lists(st.integers(-20, 20), min_size=2, max_size=40)
+
+
+def scored(days):
+    """Scored days from triples of day, shift and temperature."""
+    return [
+        DayShift(
+            day=day,
+            direction=Direction.READ,
+            rollups=60,
+            classes=4,
+            shift=shift,
+            temperature=warmth,
+        )
+        for day, shift, warmth in days
+    ]
+
+
+def test_the_worked_example_of_ten_pairs():
+    """Ten pairs of intelligence and hours of watching, used in many texts (from memory): rho = -29/165."""
+    one = [106, 100, 86, 101, 99, 103, 97, 113, 112, 110]
+    other = [7, 27, 2, 50, 28, 29, 20, 12, 6, 17]
+    assert rank_correlation(one, other) == pytest.approx(-29 / 165)
+
+
+def test_equal_figures_share_their_mean_rank():
+    """Worked by hand: ranks 1.5, 1.5, 3 against 1, 2, 3 give 1.5 / sqrt(1.5 * 2)."""
+    assert rank_correlation([5, 5, 9], [1, 2, 3]) == pytest.approx(1.5 / 3**0.5)
+
+
+@given(FIGURES)
+def test_a_series_follows_itself_and_any_rising_image_of_itself(figures):
+    found = rank_correlation(figures, [figure**3 + figure for figure in figures])
+    assert found == (None if len(set(figures)) == 1 else pytest.approx(1))
+    falling = rank_correlation(figures, [-figure for figure in figures])
+    assert falling == (None if len(set(figures)) == 1 else pytest.approx(-1))
+
+
+@given(FIGURES, st.randoms(use_true_random=False))
+def test_the_correlation_is_the_same_both_ways_round(figures, shuffler):
+    other = list(figures)
+    shuffler.shuffle(other)
+    assert rank_correlation(figures, other) == rank_correlation(other, figures)
+
+
+def test_series_of_different_length_are_refused():
+    with pytest.raises(ValueError, match="zip"):
+        rank_correlation([1, 2], [1])
+
+
+def test_slowness_that_rises_and_falls_with_the_temperature_names_heat():
+    found = coupling(scored((day, 0.01 * (day % 9), 30 + day % 9) for day in range(40)))
+    assert found.heat
+    assert found.correlation == pytest.approx(1)
+    assert found.days == DAYS
+
+
+def test_slowness_that_does_not_follow_temperature_names_none():
+    found = coupling(scored((day, 0.01 * (day % 9), 30 + day % 7) for day in range(40)))
+    assert found.correlation is not None
+    assert abs(found.correlation) < FOLLOWS
+    assert not found.heat
+
+
+def test_only_days_with_both_figures_count():
+    days = [(day, 0.01 * day, 30 + day) for day in range(29)]
+    without = [(29, None, 60), (30, 0.3, None)]
+    assert coupling(scored([*days, *without])) == Coupling(correlation=None, unknown=Unknown.FEW_DAYS, days=29)
+    assert coupling(()) == Coupling(correlation=None, unknown=Unknown.FEW_DAYS, days=0)
+
+
+def test_days_of_another_season_do_not_count():
+    days = [(day * 5, 0.01 * day, 30 + day) for day in range(30)]
+    assert coupling(scored(days)).unknown is Unknown.FEW_DAYS
+
+
+def test_a_temperature_that_never_changes_couples_with_nothing():
+    found = coupling(scored((day, 0.01 * day, 30) for day in range(30)))
+    assert found == Coupling(correlation=None, unknown=Unknown.STEADY, days=30)
