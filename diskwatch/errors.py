@@ -7,6 +7,7 @@
     |-- NothingToWorkOn       3   there is no drive at all, or none was read yet
     `-- HistoryError          4   the history cannot be read or written
         |-- HistoryTooNew     4   it was written by a newer version; it is left untouched
+        |-- HistoryDamaged    4   its file is damaged; what can be read of it can be carried over
         `-- HistoryHeld       4   another process is writing it
 
 One line says what happened, to which thing; ``hint`` says what to do about it. A drive that cannot be read
@@ -57,6 +58,10 @@ class HistoryError(DiskwatchError):
 
 class HistoryTooNew(HistoryError):
     """The history was written by a newer version; it is left untouched."""
+
+
+class HistoryDamaged(HistoryError):
+    """The history's file is damaged; nothing of it was changed."""
 
 
 class HistoryHeld(HistoryError):

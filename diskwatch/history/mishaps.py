@@ -4,7 +4,7 @@ import errno
 import sqlite3
 from pathlib import Path
 
-from diskwatch.errors import HistoryError
+from diskwatch.errors import HistoryDamaged, HistoryError
 from diskwatch.units import plain
 
 _WORDS: dict[int, tuple[str, str | None]] = {
@@ -20,11 +20,11 @@ _WORDS: dict[int, tuple[str, str | None]] = {
     sqlite3.SQLITE_LOCKED: ("is locked by another process", "try again when that process has ended"),
     sqlite3.SQLITE_CORRUPT: (
         "is damaged",
-        "keep it, move it aside, and start again or bring back a copy",
+        "the watch sets it aside and carries over what can be read",
     ),
     sqlite3.SQLITE_NOTADB: (
         "is not a history of diskwatch: it is no SQLite database, or its beginning is damaged",
-        "keep it, move it aside, and start again or bring back a copy",
+        "the watch sets it aside and carries over what can be read",
     ),
     sqlite3.SQLITE_CANTOPEN: (
         "cannot be opened: it, its folder or a file beside it does not let this user in",
@@ -36,6 +36,7 @@ _WORDS: dict[int, tuple[str, str | None]] = {
         "look at that disk first",
     ),
 }
+_DAMAGED = frozenset({sqlite3.SQLITE_CORRUPT, sqlite3.SQLITE_NOTADB})
 _READ_ONLY_SYSTEM = (
     "cannot be written: its file system is mounted read-only",
     "find out why, for a disk in trouble is mounted so too, or name another folder with --state",
@@ -68,7 +69,8 @@ def told(error: sqlite3.Error | OSError, path: Path | None) -> HistoryError:
     code = _ERRNO_CODES.get(error.errno or 0) if isinstance(error, OSError) else primary(error)
     if code in _WORDS:
         what, hint = _WORDS[code]
-        return HistoryError(f"{name} {what}", hint=hint)
+        kind = HistoryDamaged if code in _DAMAGED else HistoryError
+        return kind(f"{name} {what}", hint=hint)
     detail = error.strerror if isinstance(error, OSError) else str(error)
     return HistoryError(f"{name} cannot be used: {plain(str(detail))}")
 
@@ -76,7 +78,7 @@ def told(error: sqlite3.Error | OSError, path: Path | None) -> HistoryError:
 def no_database(path: Path) -> HistoryError:
     """The error for a file that is not even the beginning of a database."""
     what, hint = _WORDS[sqlite3.SQLITE_NOTADB]
-    return HistoryError(f"{plain(str(path))} {what}", hint=hint)
+    return HistoryDamaged(f"{plain(str(path))} {what}", hint=hint)
 
 
 def taken_away(path: Path) -> HistoryError:

@@ -164,7 +164,8 @@ def _refuse_no_database(path: Path) -> None:
             begin = file.read(_SMALLEST_PAGE)
     except OSError as error:
         raise told(error, path) from error
-    if len(begin) < _SMALLEST_PAGE or not begin.startswith(_MAGIC):
+    # The two bytes behind the page size say who may write and read: 1 or 2, or what was written is damaged.
+    if len(begin) < _SMALLEST_PAGE or not begin.startswith(_MAGIC) or not {*begin[18:20]} <= {1, 2}:
         raise no_database(path)
 
 

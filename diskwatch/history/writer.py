@@ -237,6 +237,15 @@ def _make_file(path: Path) -> None:
     os.close(descriptor)
 
 
+def begun(path: Path) -> Database:
+    """A history of this version at a path, made where there is none; whoever calls holds the lock.
+
+    Raises:
+        HistoryError: it cannot be made.
+    """
+    return _opened(path)
+
+
 def _opened(path: Path) -> Database:
     try:
         connection = sqlite3.connect(path, check_same_thread=False, timeout=BUSY_MS / 1000)

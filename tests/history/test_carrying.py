@@ -1,0 +1,63 @@
+import sqlite3
+from contextlib import closing
+
+import pytest
+
+from diskwatch.history.carrying import carry, let_go_of_orphans, tables_of
+from diskwatch.history.writer import History, begun
+from tests.history.examples import DAY, NOON, a_drive, a_place, full_round
+
+
+@pytest.fixture
+def old(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    for number in range(5):
+        history.record(full_round(known, NOON + number * DAY, number))
+    return history._db.conn
+
+
+@pytest.fixture
+def new(tmp_path):
+    with closing(begun(tmp_path / "new.db")) as db:
+        db.conn.execute("PRAGMA foreign_keys = OFF")
+        yield db.conn
+
+
+def test_all_rows_come_over_once_however_often_they_are_carried(old, new):
+    first = carry(old, new)
+    assert first.gaps == {}
+    assert first.rows["pass"] == 5
+    assert sum(carry(old, new).rows.values()) == 0
+    assert let_go_of_orphans(new) == 0
+
+
+def test_what_the_new_file_has_already_stays(old, new):
+    new.execute("INSERT INTO analyser_state VALUES (1, 0, x'00')")
+    carry(old, new)
+    assert new.execute("SELECT at FROM analyser_state").fetchone() == (0,)
+
+
+def test_a_pass_whose_explanation_is_lost_stays(old, new):
+    old.execute("INSERT INTO sentence VALUES (9, 'It sleeps.')")
+    old.execute("INSERT INTO pass VALUES (1, 5, 'asleep', 2, 0, 9)")
+    carry(old, new)
+    new.execute("DELETE FROM sentence")
+    assert let_go_of_orphans(new) == 0
+    assert new.execute("SELECT outcome, explanation FROM pass WHERE at = 5").fetchone() == ("asleep", None)
+
+
+def test_a_value_of_a_kind_that_its_column_cannot_hold_is_left_behind(new):
+    loose = sqlite3.connect(":memory:")
+    loose.execute("CREATE TABLE plugged (drive, since, device, bay)")
+    loose.executemany("INSERT INTO plugged VALUES (1, ?, ?, NULL)", [(1, "/dev/sda"), (2, b"\xff")])
+    found = carry(loose, new)
+    assert (found.rows, found.gaps) == ({"plugged": 1}, {"plugged": 1})
+    assert tables_of(loose) == {"plugged"}
+    loose.close()
+
+
+def test_a_history_that_lacks_newer_tables_comes_over(history, new):
+    history._db.conn.execute("DROP TABLE io_five")
+    found = carry(history._db.conn, new)
+    assert "io_five" not in found.rows
+    assert isinstance(history, History)
