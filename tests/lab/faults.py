@@ -38,9 +38,7 @@ def slow() -> None:
     sluggish = over(node[5:], read)
     lab("fast", "nvme")
     means = [one.read_ms / one.reads for one in (quick, sluggish)]
-    say(
-        f"       {quick.reads} reads, {means[0]:.1f} ms each; slowed down {sluggish.reads}, {means[1]:.1f} ms each"
-    )
+    say(f"       {quick.reads} reads of {means[0]:.1f} ms; slowed down {sluggish.reads} of {means[1]:.1f} ms")
     check(means[1] > 30 > means[0], "a disk that is slow is seen to be")
 
 
