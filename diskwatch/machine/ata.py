@@ -4,7 +4,7 @@ import re
 from collections.abc import Iterator, Sequence
 from typing import Any
 
-from diskwatch.machine import meanings, packing
+from diskwatch.machine import device_statistics, meanings, packing
 from diskwatch.machine.document import Document, flag_at, number_at, rows_at, text_at
 from diskwatch.machine.meanings import AtaMeaning
 from diskwatch.machine.text import Sheet, whole
@@ -36,7 +36,12 @@ def attributes(document: Document | None, device: Any, sheet: Sheet) -> tuple[At
 
 
 def values(
-    rows: Sequence[Attribute], document: Document | None, sheet: Sheet, *, flash: bool
+    rows: Sequence[Attribute],
+    document: Document | None,
+    sheet: Sheet,
+    *,
+    flash: bool,
+    statistics_first: bool = True,
 ) -> tuple[Value, ...]:
     """The signals of an ATA drive, one each.
 
@@ -45,6 +50,8 @@ def values(
         document: smartctl's document, or None.
         sheet: the plain text.
         flash: whether it is a solid-state drive.
+        statistics_first: whether Device Statistics hold where the table states the same signal; if not they
+            only fill in what the table leaves open.
     """
     found: dict[str, Value] = {}
     for meaning in (*meanings.ATA, *(() if flash else (meanings.RETRACTS,))):
@@ -55,13 +62,19 @@ def values(
                 found[meaning.signal] = value
     cycles = found["power-cycles"].value if "power-cycles" in found else None
     least = _LEAST_MOVED * (cycles if isinstance(cycles, int) else 1)
+    sector = _sector(document, sheet)
     more = (
-        *_volumes(rows, _sector(document, sheet), least=least if flash else 0),
+        *_volumes(rows, sector, least=least if flash else 0),
         *_wear(rows, known_model=_in_table(document, sheet)),
         *_exact(document),
         *_error_log(document, sheet),
     )
-    return tuple({**found, **{value.signal: value for value in more}}.values())
+    found.update({value.signal: value for value in more})
+    for value in device_statistics.values(document, sheet, sector=sector):
+        known = found.get(value.signal)
+        if known is None or known.value is None or (statistics_first and value.value is not None):
+            found[value.signal] = value
+    return tuple(found.values())
 
 
 def _from_document(document: Document | None) -> Iterator[Attribute]:
@@ -231,31 +244,16 @@ _STATED: tuple[tuple[tuple[str, ...], str, str, SignalKind], ...] = (
 )
 """What the document states outside the table, worked out by smartctl with what it knows of the model."""
 
-_STATISTICS = {
-    "Percentage Used Endurance Indicator": ("percentage-used", "percent", SignalKind.WEAR),
-    "Number of Reported Uncorrectable Errors": ("reported-uncorrectable", "errors", SignalKind.COUNT),
-    "Power-on Hours": ("power-on-hours", "hours", SignalKind.TIME),
-}
-"""Device Statistics (log 04h) that are standardised, and so better than any attribute."""
-
 _SANE = {"celsius": packing.sane_celsius, "hours": packing.sane_hours}
 
 
 def _exact(document: Document | None) -> Iterator[Value]:
-    """What the document states outside the table, the standardised last, so that it holds."""
-    stated = [
-        (number_at(document, *path), signal, unit, kind, "smartctl") for path, signal, unit, kind in _STATED
-    ]
-    for page in rows_at(document, "ata_device_statistics", "pages"):
-        for row in rows_at(page, "table"):
-            meant = _STATISTICS.get(text_at(row, "name") or "")
-            if meant is not None and flag_at(row, "flags", "valid") is True:
-                signal, unit, kind = meant
-                stated.append((number_at(row, "value"), signal, unit, kind, "log 04h"))
-    for number, signal, unit, kind, source in stated:
+    """What the document states outside the table."""
+    for path, signal, unit, kind in _STATED:
+        number = number_at(document, *path)
         if number is not None:
             value, reason = _SANE[unit](number) if unit in _SANE else (number, None)
-            yield Value(signal=signal, value=value, unit=unit, kind=kind, source=source, reason=reason)
+            yield Value(signal=signal, value=value, unit=unit, kind=kind, source="smartctl", reason=reason)
 
 
 def _error_log(document: Document | None, sheet: Sheet) -> Iterator[Value]:
@@ -281,14 +279,3 @@ def _error_log(document: Document | None, sheet: Sheet) -> Iterator[Value]:
         source="log 01h",
         reason=reason,
     )
-
-
-def limits(document: Document | None) -> tuple[int | None, int | None]:
-    """The drive's own temperature limits, warning and critical, where its SCT status was asked for."""
-    found: list[int | None] = []
-    for key in ("op_limit_max", "limit_max"):
-        told = number_at(document, "ata_sct_status", "temperature", key)
-        if told is None:
-            told = number_at(document, "temperature", key)
-        found.append(told if told is not None and 0 < told <= packing.HOTTEST else None)
-    return found[0], found[1]

@@ -67,6 +67,7 @@ def _found(sys_root: Path, disks: list[Disk]) -> Found:
         asleep=any(disk.asleep for disk in disks),
         expects_smart=_may_have_smart(first),
         adapter=first.adapter,
+        has_statistics=first.statistics,
     )
 
 

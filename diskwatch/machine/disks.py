@@ -37,6 +37,7 @@ class Disk:
         rotation_rpm: turns a minute, or None.
         asleep: whether the kernel itself has suspended it.
         adapter: the USB device that it is or hangs on: ids, revision, serial; None on other buses.
+        statistics: whether it has Device Statistics, see `diskwatch.machine.identify.Identified`.
     """
 
     name: str
@@ -53,6 +54,7 @@ class Disk:
     rotation_rpm: int | None
     asleep: bool
     adapter: str | None
+    statistics: bool | None
 
 
 def look(sys_root: Path, name: str) -> Disk | None:
@@ -88,6 +90,7 @@ def look(sys_root: Path, name: str) -> Disk | None:
         rotation_rpm=told.rotation_rpm if told is not None else None,
         asleep=asleep(sys_root, name),
         adapter=_adapter(sys_root, parts) if usb else None,
+        statistics=told.statistics if told is not None else None,
     )
 
 

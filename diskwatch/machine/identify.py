@@ -3,8 +3,8 @@
 The SCSI face that Linux gives an ATA drive cuts its model to 16 letters and its firmware to four. libata keeps
 the whole block in ``ata_device/devN.0/id``: 256 words of four hexadecimal digits.
 
-Sources: ATA/ATAPI Command Set, table of IDENTIFY DEVICE data (words 10, 23, 27, 87, 108, 217), word numbers
-and the validity test of the name from memory; Linux, Documentation/ABI, sysfs-ata (``id``).
+Sources: ATA/ATAPI Command Set, table of IDENTIFY DEVICE data (words 10, 23, 27, 80, 84, 87, 108, 217), word
+numbers and validity tests from memory; Linux, Documentation/ABI, sysfs-ata (``id``).
 """
 
 import re
@@ -28,6 +28,8 @@ class Identified:
         wwn: world-wide name as ``naa.…``, or None where the drive has none.
         rotating: whether it turns; None where it does not say.
         rotation_rpm: turns a minute, or None.
+        statistics: whether it has general purpose logs and a standard that knows Device Statistics (ACS-2 or
+            later); None where it does not say.
     """
 
     model: str | None
@@ -36,6 +38,7 @@ class Identified:
     wwn: str | None
     rotating: bool | None
     rotation_rpm: int | None
+    statistics: bool | None
 
 
 def remembered(port: Path) -> Identified | None:
@@ -75,7 +78,15 @@ def parse(text: str) -> Identified | None:
         wwn=_wwn(words),
         rotating=False if turns == 1 else True if _SLOWEST <= turns < 0xFFFF else None,
         rotation_rpm=turns if _SLOWEST <= turns < 0xFFFF else None,
+        statistics=_statistics(int(words[80], 16), int(words[84], 16)),
     )
+
+
+def _statistics(standards: int, features: int) -> bool | None:
+    """Word 80 has a bit for each standard, ACS-2 is 9; word 84 has bit 5 for general purpose logs."""
+    if standards in {0, 0xFFFF} or features & 0xC000 != 0x4000:
+        return None
+    return standards >> 9 != 0 and bool(features & 0x20)
 
 
 def _letters(words: list[str]) -> str | None:

@@ -5,7 +5,7 @@ from collections.abc import Iterator
 from decimal import Decimal
 from typing import Any
 
-from diskwatch.machine import meanings
+from diskwatch.machine import background_scan, meanings
 from diskwatch.machine.document import Document, dig, number_at, text_at
 from diskwatch.machine.meanings import LogMeaning
 from diskwatch.machine.packing import sane_celsius
@@ -46,6 +46,9 @@ def scsi_values(document: Document | None, device: Any, sheet: Sheet) -> tuple[V
         )
     for value in (*_error_counters(document, device, sheet), *_hours(document, sheet)):
         found[value.signal] = value
+    pending = background_scan.pending(document, sheet)
+    if pending is not None:
+        found.setdefault(pending.signal, pending)  # the list of pending defects is complete, the scan's is not
     return tuple(found.values())
 
 

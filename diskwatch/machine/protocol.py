@@ -38,6 +38,8 @@ class Found:
         expects_smart: False where the kernel shows that it cannot have SMART (a virtual disk).
         instance: as in `Counted`; empty where nobody tells instances apart.
         adapter: the USB adapter before it: its ids, revision and serial (``152d:0578:1402 0123``), or None.
+        has_statistics: whether an ATA drive's IDENTIFY data, as the kernel keeps them, say that it has Device
+            Statistics (log 04h); None where they say nothing.
     """
 
     address: Address
@@ -48,6 +50,7 @@ class Found:
     expects_smart: bool = True
     instance: str = ""
     adapter: str | None = None
+    has_statistics: bool | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -4,7 +4,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from enum import Enum, auto
 
-from diskwatch.machine import ata, logs
+from diskwatch.machine import ata, logs, nvme_errors, sct
 from diskwatch.machine.document import Document, flag_at
 from diskwatch.machine.held import Family, device_of
 from diskwatch.machine.selftests import newest_result, self_tests
@@ -45,7 +45,14 @@ class Understood:
         return any(value.value is not None for value in self.reading.values)
 
 
-def understood(lines: Sequence[str], document: Document | None, *, type_: str | None, path: str) -> Understood:
+def understood(
+    lines: Sequence[str],
+    document: Document | None,
+    *,
+    type_: str | None,
+    path: str,
+    statistics_first: bool = True,
+) -> Understood:
     """Understand one answer.
 
     Args:
@@ -53,6 +60,7 @@ def understood(lines: Sequence[str], document: Document | None, *, type_: str | 
         document: its JSON document, or None; where it states something, that holds.
         type_: the device type that was asked with, or None.
         path: where the drive answered, for its identity.
+        statistics_first: whether an ATA drive's Device Statistics hold before its attribute table.
     """
     sheet = Sheet.of(lines)
     family = family_of(document, sheet, type_)
@@ -63,10 +71,11 @@ def understood(lines: Sequence[str], document: Document | None, *, type_: str | 
     warning: int | None = None
     critical: int | None = None
     if family is Family.ATA:
-        values = ata.values(rows, document, sheet, flash=is_flash(drive))
-        warning, critical = ata.limits(document)
+        values = ata.values(rows, document, sheet, flash=is_flash(drive), statistics_first=statistics_first)
+        warning, critical = sct.limits(document, sheet)
     elif family is Family.NVME:
-        values = logs.nvme_values(document, sheet)
+        media = nvme_errors.media_entries(document, sheet)
+        values = (*logs.nvme_values(document, sheet), *([media] if media is not None else []))
         warning, critical = logs.nvme_limits(document, sheet)
     else:
         values = logs.scsi_values(document, device, sheet)

@@ -9,6 +9,7 @@ from dataclasses import dataclass, replace
 from diskwatch.machine import outcomes, ways
 from diskwatch.machine.command import Answer, Door, Ending
 from diskwatch.machine.document import Document, document_of, messages, plain_lines, text_at
+from diskwatch.machine.optional import BACKGROUND, STATISTICS, TEMPERATURE, Optional
 from diskwatch.machine.outcomes import ASLEEP_STATUS, Verdict, quoted
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import Understood, understood
@@ -29,6 +30,7 @@ _USAGE = re.compile(
     re.IGNORECASE,
 )
 _NAMES_STANDBY = re.compile(r"(?:to|option:?|argument:?)\s+['\"]?-?-?n(?:ocheck)?\b|standby", re.IGNORECASE)
+_NAMES_LOG = re.compile(r"argument to -l\b", re.IGNORECASE)
 _NAMES_TYPE = re.compile(r"argument to -d\b", re.IGNORECASE)
 
 
@@ -51,6 +53,7 @@ class _Knows:
 
     json: bool = True
     status: bool = True
+    logs: frozenset[str] = frozenset({STATISTICS, TEMPERATURE, BACKGROUND})
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,6 +99,7 @@ class Smartctl:
         self._knows = _Knows()
         self._ways = Ways()
         self._rest = Rest()
+        self._optional = Optional()
 
     @property
     def abandoned(self) -> int:
@@ -146,7 +150,7 @@ class Smartctl:
         """Ask with the type that is known, and where that brings nothing with those that may do better."""
         deadline = time.monotonic() + self._timeout
         type_ = self._ways.known(found) or found.address.type
-        told = self._told(found, type_, self._timeout)
+        told = self._told(found, type_, self._timeout, self._optional.wanted(found, self._now()))
         others = self._others(found, told)
         if found.address.type is None and told.what is not None:
             self._remember(found, told)
@@ -174,30 +178,34 @@ class Smartctl:
             return ()  # it answered to this type before, so that silence is its own
         return ways.others(found, told.type, told.said, told.verdict, told.what)
 
-    def _told(self, found: Found, type_: str | None, timeout: float) -> "_Told":
+    def _told(self, found: Found, type_: str | None, timeout: float, logs: tuple[str, ...] = ()) -> "_Told":
         """Ask once, with one type, and judge the answer."""
-        answer = self._answer(found.address.node, type_, timeout)
+        answer = self._answer(found.address.node, type_, timeout, logs)
         verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
         if verdict is not None:
             return _Told(type_, verdict)
         text = decoded(answer.out)
         document = document_of(text)
         lines = plain_lines(document) if document is not None else tuple(text.splitlines())
-        what = understood(lines, document, type_=type_, path=found.drive.identity.path)
+        first = self._optional.statistics_first(found)
+        what = understood(lines, document, type_=type_, path=found.drive.identity.path, statistics_first=first)
         said = (
             *lines,
             *(messages(document) if document is not None else ()),
             *decoded(answer.err).splitlines(),
         )
         verdict = outcomes.of_words(said, answer.status, what, expects_smart=found.expects_smart)
+        if verdict.outcome is Outcome.READ:
+            reading = self._optional.learn(found, logs, what, lines, document, at=self._now())
+            what = replace(what, reading=reading)
         return _Told(type_, verdict, what, said, document, answer.status)
 
-    def _answer(self, node: str, type_: str | None, timeout: float) -> Answer:
+    def _answer(self, node: str, type_: str | None, timeout: float, logs: tuple[str, ...]) -> Answer:
         """Run smartctl in the best way that it knows; learn where it knows less than was thought."""
         knows = self._knows
         while True:
             owner = f"{node} {type_ or ''}"
-            answer = self._door.run(self._argv(node, type_, knows), timeout=timeout, owner=owner)
+            answer = self._door.run(self._argv(node, type_, logs, knows), timeout=timeout, owner=owner)
             complaint = _complaint(answer)
             lesser = _lesser(knows, complaint) if complaint is not None else None
             if complaint is None:
@@ -206,7 +214,7 @@ class Smartctl:
                 return answer
             knows = lesser
 
-    def _argv(self, node: str, type_: str | None, knows: _Knows) -> list[str]:
+    def _argv(self, node: str, type_: str | None, logs: tuple[str, ...], knows: _Knows) -> list[str]:
         return [
             self._command,
             "-n",
@@ -214,6 +222,7 @@ class Smartctl:
             *(("-d", type_) if type_ is not None else ()),
             *(("--json=o",) if knows.json else ()),
             "--all",
+            *(word for log in logs if log in knows.logs for word in ("-l", log)),
             node,
         ]
 
@@ -238,6 +247,9 @@ def _complaint(answer: Answer) -> str | None:
 
 def _lesser(knows: _Knows, complaint: str) -> _Knows | None:
     """What to try next after a complaint; None where nothing is left."""
+    unknown = {log for log in knows.logs if _NAMES_LOG.search(complaint) and log in complaint}
+    if unknown:
+        return replace(knows, logs=knows.logs - unknown)
     if knows.status and (_NAMES_STANDBY.search(complaint) is not None or not knows.json):
         return replace(knows, status=False)
     return replace(knows, json=False) if knows.json else None

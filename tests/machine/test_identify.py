@@ -1,3 +1,5 @@
+import pytest
+
 from diskwatch.machine.identify import Identified, parse, remembered
 from tests.machine.trees import AHCI, Tree, identify_words
 
@@ -18,6 +20,7 @@ def test_a_whole_block_tells_all_that_the_scsi_face_cuts():
         wwn="naa.5000f00000000001",
         rotating=True,
         rotation_rpm=7200,
+        statistics=None,
     )
 
 
@@ -49,3 +52,23 @@ def test_two_drives_on_one_port_are_not_guessed_between(tree: Tree):
     assert remembered(port) is not None
     tree.put(port / "link7" / "dev7.1" / "ata_device" / "dev7.1" / "id", " ".join(WORDS))
     assert remembered(port) is None
+
+
+@pytest.mark.parametrize(
+    ("standards", "features", "has"),
+    [
+        (0x03F0, 0x4020, True),  # up to ACS-2, with logs
+        (0x07F0, 0x6163, True),
+        (0x01F0, 0x4020, False),  # no later than ATA8-ACS
+        (0x03F0, 0x4000, False),  # no general purpose logs
+        (0x03F0, 0x0020, None),  # word 84 is not valid
+        (0x0000, 0x4020, None),
+        (0xFFFF, 0x4020, None),
+    ],
+)
+def test_device_statistics_are_foretold_by_the_standard_and_the_log_feature(standards, features, has):
+    words = [*WORDS]
+    words[80], words[84] = f"{standards:04x}", f"{features:04x}"
+    found = parse(" ".join(words))
+    assert found is not None
+    assert found.statistics is has

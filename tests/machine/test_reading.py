@@ -19,6 +19,7 @@ from tests.machine.recordings import (
     text_of,
     truth_of,
 )
+from tests.machine.test_device_statistics import LOG as STATISTICS_LOG, STATED as STATISTICS
 
 ANSWERS = answers()
 # Of these the text states a number whose unit, or whose being reported at all, is not known.
@@ -272,6 +273,18 @@ def test_a_recorded_document_without_text_is_read_exactly():
     assert found.reading.get("temperature") == log["temperature"]
 
 
+def test_device_statistics_hold_before_the_attribute_table_unless_they_are_to_fill_in_only():
+    text = fixture("invented_hdd_failing/all.txt") + STATISTICS_LOG
+    table = read(fixture("invented_hdd_failing/all.txt")).reading
+    before = read(text).reading
+    assert {signal: before.get(signal) for signal in STATISTICS} == STATISTICS
+    assert before.warning_celsius == 70
+    filling = understood(text.splitlines(), None, type_=None, path="/dev/x", statistics_first=False).reading
+    assert filling.get("reallocated-sectors") == table.get("reallocated-sectors") == 2_264
+    assert filling.get("hardware-resets") == 736
+    assert len(before.values) == len(filling.values) > len(table.values)
+
+
 def test_what_newer_versions_state_of_wear_and_what_cannot_be_true_is_handled():
     told = {
         **ATA_DOCUMENT,
@@ -351,7 +364,11 @@ def test_a_document_with_anything_in_any_place_is_survived(data: st.DataObject):
     understood((), told, type_="sat", path="/dev/x")
 
 
-ORIGINALS = [text_of(path) for path in ANSWERS]
+ORIGINALS = [
+    *(text_of(path) for path in ANSWERS),
+    fixture("invented_hdd_sister/all.txt") + STATISTICS_LOG,
+    fixture("invented_sas_megaraid_failing/all.txt") + fixture("sas_hdd_0_issue_51/background.txt"),
+]
 NOISE = "0123456789 :=.,-+\t\x00\x1b\x9b\u202e[]()#%/xXhn"
 
 

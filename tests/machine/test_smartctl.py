@@ -111,7 +111,7 @@ def test_a_command_that_knows_no_standby_status_either_is_asked_a_third_time():
     )
     tool, door = smartctl(no_json, no_status, said(HDD.read_bytes()))
     for _ in range(2):
-        assert tool.ask(asked()).outcome is Outcome.READ
+        assert tool.ask(asked(usb=True)).outcome is Outcome.READ
     assert len(door.asked) == 4
     assert door.asked[3] == ["smartctl", "-n", "standby", "-d", "sat", "--all", "/dev/sdx"]
 
@@ -185,6 +185,24 @@ def test_a_drive_that_is_silent_though_it_is_in_use_does_not_sleep():
     tool, _ = smartctl(said(HDD.read_bytes()), said(SLEEP, 3))
     assert tool.ask(asked(), completed=lambda: 5).outcome is Outcome.READ
     assert tool.ask(asked(), completed=lambda: 6).outcome is Outcome.GARBLED
+
+
+def test_an_optional_log_is_asked_for_in_the_same_process_and_dropped_where_the_drive_lacks_it():
+    tool, door = smartctl(said(HDD.read_bytes(), 24), said(HDD.read_bytes(), 28))
+    for _ in range(3):
+        assert tool.ask(asked()).outcome is Outcome.READ
+    assert [argv[7:-1] for argv in door.asked] == [[], ["-l", "devstat"], ["-l", "scttempsts"]]
+
+
+def test_a_log_that_smartctl_does_not_know_is_asked_for_no_more_of_any_drive():
+    refusal = said(f"=======> INVALID ARGUMENT TO -l: devstat\n=======> VALID ARGUMENTS ARE: error{USAGE}", 1)
+    tool, door = smartctl(said(HDD.read_bytes()), refusal, said(HDD.read_bytes()))
+    for _ in range(2):
+        assert tool.ask(asked()).outcome is Outcome.READ
+    assert tool.ask(asked("/dev/sdy")).outcome is Outcome.READ
+    assert tool.ask(asked("/dev/sdy")).outcome is Outcome.READ
+    assert ["devstat" in argv for argv in door.asked] == [False, True, False, False, False]
+    assert all("--json=o" in argv for argv in door.asked)
 
 
 def test_a_complaint_that_never_ends_is_asked_three_times_and_teaches_nothing():

@@ -1,0 +1,98 @@
+"""SCSI background scan results, log page 15h: sectors that the drive itself found and could not yet replace.
+
+Sources: SBC, background scan results log page; reassign status 1h, pending, from a maker's SCSI manual; the
+words that smartctl prints for it from memory. Entries from 1 to 800h are results, others are the maker's own.
+"""
+
+import re
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from diskwatch.machine.document import Document, dig, number_at, text_at
+from diskwatch.machine.text import Sheet
+from diskwatch.records import SignalKind, Value
+
+SOURCE = "SCSI background scan log"
+
+_HEADLINE = "background scan results log"
+_LAST = 0x800
+_PENDING = re.compile(r"require write or reassign|reassignment pending", re.IGNORECASE)
+_ROW = re.compile(
+    r"\s*(?P<number>[0-9]{1,5})\s+(?P<hours>[0-9]{1,8}):(?P<minutes>[0-9]{2})\s+(?P<lba>[0-9a-fA-F]{8,16})\s+"
+    r"\[[0-9a-fA-F]{1,2},[0-9a-fA-F]{1,2},[0-9a-fA-F]{1,2}\]\s+(?P<status>\S.*)"
+)
+
+
+@dataclass(frozen=True, slots=True)
+class _Found:
+    """One result: which block, when (powered minutes), and whether it waits for a write."""
+
+    lba: str
+    minutes: int
+    pending: bool
+
+
+def told(document: Document | None, sheet: Sheet) -> bool:
+    """Whether an answer holds the log's status, with or without results."""
+    return dig(document, "scsi_background_scan") is not None or (
+        sheet.holds(_HEADLINE) and sheet.holds("Number of background scans performed")
+    )
+
+
+def lacking(sheet: Sheet) -> bool:
+    """Whether an answer says that the drive keeps no such log."""
+    return sheet.holds("does not support Background scan results logging")
+
+
+def hinted(sheet: Sheet) -> bool:
+    """Whether an answer without the log holds a figure that stands in that log: powered time in minutes."""
+    return any(
+        re.search(r"power on time, hours:minutes [0-9]+:[0-9]{2} \[[0-9]+ minutes\]", line)
+        for line in sheet.lines
+    )
+
+
+def pending(document: Document | None, sheet: Sheet) -> Value | None:
+    """How many sectors wait to be written or reassigned; None where the drive was not asked or keeps no log.
+
+    What was found later about a block holds: blocks that were rewritten since count no more.
+    """
+    if not told(document, sheet):
+        return None
+    rows = list(_from_document(document)) or list(_from_rows(sheet))
+    newest: dict[str, _Found] = {}
+    for row in rows:
+        if row.lba not in newest or row.minutes >= newest[row.lba].minutes:
+            newest[row.lba] = row
+    return Value(
+        signal="pending-sectors",
+        value=sum(row.pending for row in newest.values()),
+        unit="sectors",
+        kind=SignalKind.GAUGE,
+        source=SOURCE,
+    )
+
+
+def _from_rows(sheet: Sheet) -> Iterator[_Found]:
+    inside = False
+    for line in sheet.lines:
+        if _HEADLINE in line.lower():
+            inside = True
+        row = _ROW.fullmatch(line) if inside else None
+        if row is not None and 0 < int(row["number"]) <= _LAST:
+            minutes = int(row["hours"]) * 60 + int(row["minutes"])
+            waits = _PENDING.search(row["status"]) is not None
+            yield _Found(row["lba"].lower().lstrip("0"), minutes, waits)
+
+
+def _from_document(document: Document | None) -> Iterator[_Found]:
+    """Results in a document of version 7.4 or later (keys from memory)."""
+    scan = dig(document, "scsi_background_scan")
+    for number in range(1, _LAST + 1):
+        row = dig(scan, f"result_{number}")
+        if row is None:
+            return
+        status, lba = text_at(row, "reassign_status"), number_at(row, "lba", "value")
+        minutes = number_at(row, "accumulated_power_on", "minutes")
+        if status is not None and lba is not None:
+            yield _Found(f"{lba:x}", minutes or 0, _PENDING.search(status) is not None)

@@ -1,0 +1,78 @@
+"""The NVMe error information log, page 01h: errors of the medium told from commands that were refused.
+
+Every optional command that a host tries and the drive does not know adds an entry, so that their total rises by
+thousands on drives without a fault. Only an entry whose status code type is 2h, media and data integrity errors
+(NVM Express Base Specification, status field), speaks of the medium.
+"""
+
+import re
+from collections.abc import Iterator
+
+from diskwatch.machine.document import Document, number_at, rows_at
+from diskwatch.machine.text import Sheet
+from diskwatch.records import SignalKind, Value
+
+_HEADLINE = "error information (nvme log 0x01"
+_MEDIUM = 2
+# Number, error count, queue, command, status, location, block, and what may stand behind.
+_ROW = re.compile(
+    r"\s*[0-9]{1,4}\s+(?P<count>[0-9]{1,20})\s+(?:[0-9]{1,5}|-)\s+(?:0x[0-9a-fA-F]{4}|-)\s+"
+    r"0x(?P<status>[0-9a-fA-F]{4})\s+\S+\s+\S+(?:\s+\S.*)?"
+)
+
+
+def media_entries(document: Document | None, sheet: Sheet) -> Value | None:
+    """How many of the entries that the drive still keeps speak of the medium; None where it shows no log.
+
+    The log holds the newest entries only, so the number falls when others push them out.
+
+    Args:
+        document: smartctl's document, or None; where it has the log, that holds.
+        sheet: the plain text.
+    """
+    rows = rows_at(document, "nvme_error_information_log", "table")
+    kinds = list(_from_document(rows) if rows else _from_rows(sheet))
+    if not kinds and not _shown_empty(document, sheet):
+        return None
+    return Value(
+        signal="media-error-entries",
+        value=sum(kind == _MEDIUM for kind in kinds),
+        unit="events",
+        kind=SignalKind.GAUGE,
+        source="NVMe log 01h",
+    )
+
+
+def _shown_empty(document: Document | None, sheet: Sheet) -> bool:
+    if number_at(document, "nvme_error_information_log", "read") is not None:
+        return True
+    lines = iter(sheet.lines)
+    return any(_HEADLINE in line.lower() for line in lines) and "No Errors Logged" in next(lines, "")
+
+
+def _from_document(rows: tuple[Document, ...]) -> Iterator[int]:
+    """Status code types in a document of version 7.4 or later (keys from memory)."""
+    for row in rows:
+        kind = number_at(row, "status_field", "status_code_type")
+        value = number_at(row, "status_field", "value")
+        if kind is not None:
+            yield kind
+        elif value is not None:
+            yield value >> 8 & 0x7
+
+
+def _from_rows(sheet: Sheet) -> Iterator[int]:
+    """Status code types in the text.
+
+    What is printed is the status field as it stands in the log, with the phase tag in bit 0: the code type lies
+    in bits 9 to 11 (NVM Express Base Specification, error information log entry, bytes 12 and 13).
+    """
+    inside = False
+    for line in sheet.lines:
+        if _HEADLINE in line.lower():
+            inside = True
+        elif not line.strip():
+            inside = False
+        row = _ROW.fullmatch(line) if inside else None
+        if row is not None and int(row["count"]) > 0:
+            yield int(row["status"], 16) >> 9 & 0x7
