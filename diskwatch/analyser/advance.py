@@ -9,7 +9,6 @@ from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
 from diskwatch.records import Call, CallWord, Entry, Finding, FindingKind, Kind, Outcome, Pass, Reading
 from diskwatch.trends.norms import NORMS
-from diskwatch.units import DAY
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -18,17 +17,32 @@ class Step:
 
     Attributes:
         state: the state after it.
-        findings: everything that stands now, leading one first.
-        evidence: M in days by signal, for signals that a ledger follows.
-        call: what to do; None until the drive has been read.
         happened: what the day book should hold, in order; without the drive's number, which is not known here.
     """
 
     state: DriveState
-    findings: tuple[Finding, ...]
-    evidence: Mapping[str, float]
-    call: Call | None
     happened: tuple[Entry, ...]
+
+    @property
+    def call(self) -> Call | None:
+        """What to do; None until the drive has been read."""
+        return self.state.call
+
+    @property
+    def findings(self) -> tuple[Finding, ...]:
+        """Everything that stands now, leading one first."""
+        return rules.leading_first(self.state.standing.values())
+
+    @property
+    def evidence(self) -> Mapping[str, float]:
+        """M in days by signal: a stream's evidence belongs to each of its signals that the drive has."""
+        return {
+            signal: self.state.streams[norm.stream].ledger.evidence
+            for norm in NORMS
+            if norm.stream in self.state.streams
+            for signal in norm.signals
+            if signal in self.state.latest
+        }
 
 
 def advance(state: DriveState, pass_: Pass) -> Step:
@@ -53,13 +67,7 @@ def advance(state: DriveState, pass_: Pass) -> Step:
         happened += _told_call(state.call, call)
     if call is not state.call:
         now = replace(now, call=call)
-    return Step(
-        state=now,
-        findings=rules.leading_first(now.standing.values()),
-        evidence=_evidence(now),
-        call=call,
-        happened=tuple(happened),
-    )
+    return Step(state=now, happened=tuple(happened))
 
 
 def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveState, list[Entry]]:
@@ -67,17 +75,21 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
     counts = counters.followed(reading)
     risen, happened = counters.rises(state, pass_, counts)
     hours = reading.number("power-on-hours")
-    now = replace(
-        state,
+    # Written out: replace() takes three times as long, and a replay of years comes by here for every day.
+    now = DriveState(
+        parameters=state.parameters,
         first_at=pass_.at if state.first_at is None else state.first_at,
         last_at=pass_.at,
         outcome=pass_.outcome,
+        slept=state.slept,
         unread=0,
+        hours=state.hours if hours is None else hours,
         firsts=_firsts(state, reading, counts),
+        latest={**state.latest, **counts},
         streams=counters.streams(state, pass_, counts, risen, hours),
         spots=counters.damage(state, pass_, reading),
-        hours=state.hours if hours is None else hours,
-        latest={**state.latest, **counts},
+        standing=state.standing,
+        call=state.call,
     )
     shown = (
         *facts.facts(reading, at=pass_.at, first_spare=now.firsts.get("available-spare")),
@@ -111,17 +123,6 @@ def _standing(before: Mapping[str, Finding], shown: tuple[Finding, ...]) -> Mapp
     return after
 
 
-def _evidence(state: DriveState) -> Mapping[str, float]:
-    """M by signal: a stream's evidence belongs to each of its signals that the drive has."""
-    return {
-        signal: state.streams[norm.stream].ledger.evidence
-        for norm in NORMS
-        if norm.stream in state.streams
-        for signal in norm.signals
-        if signal in state.latest
-    }
-
-
 def _called(state: DriveState, pass_: Pass) -> Call | None:
     """The call, or None as long as nothing is known of the drive."""
     if state.first_at is None and not state.standing:
@@ -135,7 +136,7 @@ def _quiet(state: DriveState, pass_: Pass) -> str:
     old = {signal: count for signal in findings.DEFECTS if (count := state.firsts.get(signal, 0)) > 0}
     if state.first_at is None or state.first_at == pass_.at:
         return sentences.first_reading(old)
-    return sentences.quiet(old, (pass_.at - state.first_at) / DAY)
+    return sentences.quiet(old)
 
 
 def _told_call(before: Call | None, call: Call) -> Iterator[Entry]:

@@ -22,6 +22,7 @@ COMMANDS = {
     "bays": "the drives, where they are, what to do with each, and why",
     "why": "the chain from a drive's readings to its call, and what would change it",
     "daybook": "what happened to the drives, in order",
+    "replay": "recorded readings through the same analyser: what it would have said, and when",
     "preflight": "what is missing on this machine for a full watch, each with its cure",
 }
 """Every command with what it does; its module in this room bears its name."""

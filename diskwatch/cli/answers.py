@@ -2,7 +2,7 @@
 
 from typing import TYPE_CHECKING
 
-from diskwatch.records import Bays, DriveLine, Entry, Finding, SignalNow
+from diskwatch.records import Bays, DriveLine, Entry, Finding, ReplayedDrive, ReplaySummary, SignalNow
 from diskwatch.units import rfc3339
 
 if TYPE_CHECKING:  # the analyser takes as long to load as all that ``bays`` needs together
@@ -124,6 +124,47 @@ def why_answer(line: DriveLine, why: "Explanation") -> dict[str, object]:
         },
         "findings": [_finding(one) for one in why.findings],
         "would_change": list(why.would_change),
+    }
+
+
+def replay_answer(drives: tuple[ReplayedDrive, ...], summary: ReplaySummary) -> dict[str, object]:
+    """What ``replay --json`` prints."""
+    return {
+        "schema": "diskwatch/replay/1",
+        "drives": [
+            {
+                "serial": drive.serial,
+                "model": drive.model,
+                "first": rfc3339(drive.first),
+                "last": rfc3339(drive.last),
+                "failed": drive.failed,
+                "worst": drive.worst.value if drive.worst else None,
+                "calls": [
+                    {
+                        "at": rfc3339(call.at),
+                        "call": call.word.value,
+                        "cause": call.cause.value if call.cause else None,
+                        "reason": call.reason,
+                        "evidence": call.evidence,
+                    }
+                    for call in drive.calls
+                ],
+                "drifts": [
+                    {"at": rfc3339(drift.at), "signal": drift.signal, "evidence": drift.evidence}
+                    for drift in drive.drifts
+                ],
+            }
+            for drive in drives
+        ],
+        "summary": {
+            "drives": summary.drives,
+            "failed": summary.failed,
+            "warned_failed": summary.warned_failed,
+            "warned_sound": summary.warned_sound,
+            "median_lead_days": summary.median_lead_days,
+            "drive_days": summary.drive_days,
+            "skipped": summary.skipped,
+        },
     }
 
 

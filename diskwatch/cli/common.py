@@ -6,7 +6,7 @@ import sys
 import time
 from collections.abc import Mapping, Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Self
 
 from diskwatch import places
 from diskwatch.units import plain
@@ -51,6 +51,35 @@ def print_json(answer: Mapping[str, object]) -> None:
     """One JSON object to standard output; integers that JSON readers cannot hold exactly become strings."""
     json.dump(_exact(answer), sys.stdout, indent=2, ensure_ascii=False, allow_nan=False)
     sys.stdout.write("\n")
+
+
+class Bar:
+    """How far a long piece of work is, on a terminal only; it leaves nothing behind."""
+
+    _WIDTH = 40
+
+    def __init__(self, what: str) -> None:
+        """Name what is being done."""
+        self._what = what
+        self._shown = False
+
+    def __enter__(self) -> Self:
+        return self
+
+    def __exit__(self, *_: object) -> None:
+        if self._shown:
+            sys.stderr.write("\r" + " " * (len(self._what) + self._WIDTH + 12) + "\r")
+            sys.stderr.flush()
+
+    def show(self, done: int, total: int) -> None:
+        """So much of so much is done."""
+        if not sys.stderr.isatty() or total <= 0:
+            return
+        share = min(1.0, done / total)
+        full = round(share * self._WIDTH)
+        sys.stderr.write(f"\r{self._what}  {'=' * full}{'.' * (self._WIDTH - full)}  {share:4.0%}")
+        sys.stderr.flush()
+        self._shown = True
 
 
 def _exact(thing: object) -> object:

@@ -51,6 +51,8 @@ def decide(findings: Iterable[Finding], *, before: Call | None, at: int, quiet: 
         one for one in leading_first(findings) if one.calls is not None and one.calls is not CallWord.KEEP
     ]
     if not asking:
+        if before is not None and before.word is CallWord.KEEP and before.reason == quiet:
+            return before
         return Call(
             word=CallWord.KEEP,
             at=before.at if before and before.word is CallWord.KEEP else at,

@@ -194,12 +194,13 @@ def first_reading(old: Mapping[str, int]) -> str:
     return f"It came with old defects: {_list(old)}. That is a level, not a trend; a rise will speak."
 
 
-def quiet(old: Mapping[str, int], days: float) -> str:
-    """Nothing asks for a deed."""
-    watched = f"in {say_days(days)} of watching" if days >= 1 else "since it was first read"
+def quiet(old: Mapping[str, int]) -> str:
+    """Nothing asks for a deed. The same words every day: what changes daily would be written daily."""
     if not old:
-        return f"No error counter has gone beyond its norm {watched}."
-    return f"It came with old defects: {_list(old)}. Nothing has gone beyond its norm {watched}."
+        return "No error counter has gone beyond its norm since it has been watched."
+    return (
+        f"It came with old defects: {_list(old)}. Nothing has gone beyond its norm since it has been watched."
+    )
 
 
 def call_changed(before: str | None, after: str, reason: str) -> str:

@@ -20,6 +20,7 @@ from diskwatch.records.reading import (
     SignalKind,
     Value,
 )
+from diskwatch.records.replayed import Drift, ReplayedDrive, ReplaySummary, summed
 from diskwatch.records.round import DriveRound, KnownDrive, Round
 
 __all__ = [
@@ -30,6 +31,7 @@ __all__ = [
     "Cause",
     "ClassDay",
     "Direction",
+    "Drift",
     "Drive",
     "DriveLine",
     "DriveRound",
@@ -50,9 +52,12 @@ __all__ = [
     "PassDay",
     "Place",
     "Reading",
+    "ReplaySummary",
+    "ReplayedDrive",
     "Round",
     "SelfTest",
     "SignalKind",
     "SignalNow",
     "Value",
+    "summed",
 ]

@@ -1,9 +1,25 @@
+import io
 import json
+import sys
 
-from diskwatch.cli.common import print_json
+from diskwatch.cli.common import Bar, print_json
 
 
 def test_large_integers_become_strings_at_any_depth_and_small_ones_stay(capsys):
     print_json({"a": [2**53, 2**53 + 1, {"b": -(2**64)}], "c": True, "d": 1.5, "e": None})
     answer = json.loads(capsys.readouterr().out)
     assert answer == {"a": [2**53, str(2**53 + 1), {"b": str(-(2**64))}], "c": True, "d": 1.5, "e": None}
+
+
+def test_a_bar_is_shown_on_a_terminal_only_and_leaves_nothing_behind(monkeypatch):
+    written = io.StringIO()
+    monkeypatch.setattr(sys, "stderr", written)
+    with Bar("replaying") as bar:
+        bar.show(1, 2)
+    assert written.getvalue() == ""
+    monkeypatch.setattr(written, "isatty", lambda: True, raising=False)
+    with Bar("replaying") as bar:
+        bar.show(1, 2)
+        bar.show(0, 0)
+    assert "50%" in written.getvalue()
+    assert written.getvalue().endswith("\r")
