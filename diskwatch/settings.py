@@ -139,8 +139,8 @@ class Settings(_Section, frozen=True, kw_only=True):
     selftest: SelfTests = SelfTests()
 
 
-NOT_YET = frozenset({"kernel_log", "notices", "probe", "selftest", "history.backup"})
-"""Tables and keys that are read and checked but that nothing acts on in this version."""
+NOT_YET = frozenset({"kernel_log", "notices", "probe", "selftest"})
+"""Tables that are read and checked but that nothing acts on in this version."""
 
 
 def load(path: Path | None) -> Settings:
@@ -166,17 +166,9 @@ def load(path: Path | None) -> Settings:
 
 
 def without_effect(settings: Settings) -> tuple[str, ...]:
-    """Names of tables and keys that are set to something but that this version does not act on yet."""
+    """Names of tables that are set to something but that this version does not act on yet."""
     plain = Settings()
-    found = []
-    for name in sorted(NOT_YET):
-        table, _, key = name.partition(".")
-        mine, default = getattr(settings, table), getattr(plain, table)
-        if (getattr(mine, key), getattr(default, key)) if key else (mine, default):
-            differs = getattr(mine, key) != getattr(default, key) if key else mine != default
-            if differs:
-                found.append(name)
-    return tuple(found)
+    return tuple(name for name in sorted(NOT_YET) if getattr(settings, name) != getattr(plain, name))
 
 
 def _decode(text: bytes) -> Settings:

@@ -287,7 +287,7 @@ _TEN_YEARS = (
         PRIMARY KEY (drive, at)
     ) STRICT, WITHOUT ROWID
     """,
-    # How far thinning has come: everything before this time is thin already.
+    # How far upkeep has come: everything before this time is thin already, or condensed, or was looked through.
     """
     CREATE TABLE thinned (
         what TEXT NOT NULL,

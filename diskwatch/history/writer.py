@@ -183,6 +183,19 @@ class History:
         with self._writing() as connection:
             return thin(connection, now)
 
+    def checked_at(self) -> int | None:
+        """When the file was last looked through for damage, UTC seconds since 1970; None for never."""
+        with self._using() as connection:
+            found = connection.execute("SELECT before FROM thinned WHERE what = 'checked'").fetchone()
+            return None if found is None else int(found[0])
+
+    def note_checked(self, at: int) -> None:
+        """Remember when the file was looked through and no damage was found, UTC seconds since 1970."""
+        with self._writing() as connection:
+            connection.execute(
+                "INSERT OR REPLACE INTO thinned (what, number, before) VALUES ('checked', 0, ?)", (at,)
+            )
+
     @contextmanager
     def _using(self) -> Iterator[sqlite3.Connection]:
         with self._turn:

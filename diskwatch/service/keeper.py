@@ -6,9 +6,18 @@ here, bounded, and is written when the trouble is over; what the trouble is can 
 
 from collections import deque
 from collections.abc import Callable, Sequence
+from contextlib import suppress
 from pathlib import Path
+from typing import TypeVar
 
-from diskwatch.errors import DiskwatchError, HistoryError, HistoryHeld, HistoryTooNew, NothingToWorkOn
+from diskwatch.errors import (
+    DiskwatchError,
+    HistoryDamaged,
+    HistoryError,
+    HistoryHeld,
+    HistoryTooNew,
+    NothingToWorkOn,
+)
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
@@ -16,6 +25,8 @@ from diskwatch.records import Drive, DriveLine, Entry, IoSpan, KnownDrive, Place
 
 MOST_WAITING = 2_000
 """Writes that wait at most; half-hourly rounds of a whole month fit."""
+
+_Answer = TypeVar("_Answer")
 
 
 class Keeper:
@@ -35,6 +46,7 @@ class Keeper:
         self._history: History | None = None
         self._waiting: deque[Callable[[History], None]] = deque(maxlen=MOST_WAITING)
         self._trouble: str | None = None
+        self._damaged = False
         self._closed = False
         self._blind = False
         self.epoch = 0
@@ -47,6 +59,7 @@ class Keeper:
             raise
         except HistoryError as error:
             self._trouble = str(error)
+            self._damaged = isinstance(error, HistoryDamaged)
             self._remember_what_can_be_read()
 
     def _take_up(self, history: History) -> None:
@@ -78,6 +91,11 @@ class Keeper:
     def trouble(self) -> str | None:
         """What keeps the history from being written, one sentence; None where nothing does."""
         return self._trouble
+
+    @property
+    def damaged(self) -> bool:
+        """Whether what keeps it from being written is damage to its file."""
+        return self._damaged
 
     @property
     def waiting(self) -> int:
@@ -117,6 +135,26 @@ class Keeper:
         if entries:
             self._write(lambda history: history.note(*entries))
 
+    def ask(self, question: Callable[[History], _Answer]) -> _Answer | None:
+        """Ask the history something, or let it do something that need not be done now.
+
+        Returns:
+            Its answer; None where there is no history in reach.
+
+        Raises:
+            HistoryDamaged: its file is damaged.
+            HistoryError: it could not answer for another reason.
+        """
+        return None if self._history is None else question(self._history)
+
+    def let_go(self, trouble: str) -> None:
+        """Let go of the file, so that it can be mended; meanwhile all waits, and this is the trouble."""
+        self._trouble = trouble
+        if self._history is not None:
+            with suppress(DiskwatchError):
+                self._history.close()
+            self._history = None
+
     def try_again(self) -> None:
         """Write what waits, if it can be written now."""
         if self._waiting or self._history is None:
@@ -143,8 +181,10 @@ class Keeper:
             while self._history is not None and self._waiting:
                 self._first_of_those_waiting(self._history)
             self._trouble = None
+            self._damaged = False
         except DiskwatchError as error:
             self._trouble = str(error)
+            self._damaged = isinstance(error, HistoryDamaged)
             if self._history is not None and not (self._folder / HISTORY).exists():
                 # The file was taken away under the watch: begin a new one at the next try.
                 self._history.close()

@@ -27,10 +27,14 @@ class Schedule:
         """
         self._mishap = mishap
         self._jobs: dict[str, float] = {}
-        # A place each, so that a round with a slow drive never holds up the counting of traffic.
+        # A place each, so that neither a round with a slow drive nor upkeep holds up the counting of traffic.
         self._scheduler = BackgroundScheduler(
             timezone=UTC,
-            executors={"rounds": ThreadPoolExecutor(1), "default": ThreadPoolExecutor(1)},
+            executors={
+                "rounds": ThreadPoolExecutor(1),
+                "upkeep": ThreadPoolExecutor(1),
+                "default": ThreadPoolExecutor(1),
+            },
             job_defaults={"coalesce": True, "misfire_grace_time": None, "max_instances": 1},
         )
         self._scheduler.add_listener(self._failed, EVENT_JOB_ERROR | EVENT_JOB_MAX_INSTANCES)

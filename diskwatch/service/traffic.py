@@ -45,6 +45,7 @@ class Traffic:
         self._before: Mapping[str, Counted] = {}
         self._before_at = (0, 0.0)
         self._standstill = Standstill()
+        self._broken: set[int] = set()
 
     @property
     def hung(self) -> frozenset[str]:
@@ -75,6 +76,10 @@ class Traffic:
         spans = []
         for number, names in sorted(blocks.items()):
             counts = counters.traffic(names, before, totals, elapsed=seconds)
-            if counts is not None:
-                spans.append(IoSpan(drive=number, at=at, seconds=seconds, counts=counts))
+            if counts is None:
+                self._broken.add(number)
+                continue
+            reset = number in self._broken
+            self._broken.discard(number)
+            spans.append(IoSpan(drive=number, at=at, seconds=seconds, counts=counts, reset=reset))
         return Look(spans=tuple(spans), entries=entries)

@@ -15,6 +15,7 @@ from diskwatch.service.rounds import Rounds
 from diskwatch.service.schedule import Schedule
 from diskwatch.service.traffic import JUMP, Traffic
 from diskwatch.service.turns import Turns
+from diskwatch.service.upkeep import EVERY, Upkeep
 from diskwatch.settings import Settings
 from diskwatch.units import plain
 
@@ -63,6 +64,14 @@ class Watch:
         self._committed = time.monotonic()
         self._rounding = threading.Lock()
         self._stop = threading.Event()
+        self._upkeep = Upkeep(
+            self._keeper,
+            folder,
+            lock=self._lock,
+            backup=settings.history.backup,
+            now=now,
+            ending=self._stop,
+        )
 
     @property
     def trouble(self) -> str | None:
@@ -72,6 +81,7 @@ class Watch:
     def once(self) -> tuple[DriveRound, ...]:
         """One full round, and then the end."""
         try:
+            self._upkeep.mend_if_damaged()
             return self._rounds.run(told=self._told, lock=self._lock, everyone=True)
         finally:
             self._end()
@@ -83,6 +93,7 @@ class Watch:
         schedule = Schedule(self._mishap)
         schedule.every("round", self._settings.smart.every, self._round, place="rounds")
         schedule.every("traffic", self._settings.io.every, self._count)
+        schedule.every("upkeep", EVERY, self._upkeep.turn, place="upkeep")
         self._note("watch", "Watching began.")
         schedule.start()
         try:

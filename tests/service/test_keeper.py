@@ -6,6 +6,7 @@ import pytest
 
 from diskwatch.errors import HistoryHeld, HistoryTooNew
 from diskwatch.history.reader import Past
+from diskwatch.history.writer import History
 from diskwatch.records import DriveRound, Entry, Round
 from diskwatch.service.keeper import Keeper
 from tests.samples import HDD, HERE, NOON, read
@@ -110,6 +111,44 @@ def test_a_history_that_another_process_writes_is_refused(tmp_path):
     keeper = Keeper(tmp_path)
     with pytest.raises(HistoryHeld):
         Keeper(tmp_path)
+    keeper.close()
+
+
+def test_what_need_not_be_done_now_is_left_out_where_no_history_is_in_reach(tmp_path):
+    blocked = tmp_path / "state"
+    blocked.write_text("in the way")
+    keeper = Keeper(blocked)
+    assert keeper.ask(lambda history: history.known()) is None
+    blocked.unlink()
+    keeper.try_again()
+    assert keeper.ask(lambda history: history.known()) == ()
+    keeper.close()
+
+
+def test_a_history_that_was_let_go_is_taken_up_again_with_all_that_waited(tmp_path):
+    keeper = Keeper(tmp_path)
+    keeper.record(a_round(keeper))
+    keeper.let_go("It is being mended.")
+    assert keeper.trouble == "It is being mended."
+    with History.open(tmp_path):
+        keeper.record(a_round(keeper, NOON + 60))
+        assert keeper.waiting == 1
+    keeper.try_again()
+    assert keeper.waiting == 0
+    assert keeper.ask(History.known)
+    keeper.close()
+    assert entries(tmp_path) == ["A round.", "A round."]
+
+
+def test_damage_is_told_from_every_other_trouble(tmp_path):
+    (tmp_path / "history.db").write_bytes(b"no database" * 100)
+    keeper = Keeper(tmp_path)
+    assert keeper.damaged
+    keeper.close()
+    blocked = tmp_path / "state"
+    blocked.write_text("in the way")
+    keeper = Keeper(blocked)
+    assert (keeper.damaged, keeper.trouble is None) == (False, False)
     keeper.close()
 
 

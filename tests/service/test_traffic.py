@@ -84,3 +84,17 @@ def test_a_standstill_over_a_sleep_of_the_machine_counts_only_the_time_awake():
     clocks.move(10, asleep=3600)
     assert looks.look(BLOCKS).entries == ()
     assert looks.hung == frozenset()
+
+
+def test_the_span_after_counters_began_anew_says_so_and_no_other():
+    looks, clocks = traffic(
+        counted(100), *(counted(number, instance="boot 1, disk 2") for number in (130, 140, 150))
+    )
+    looks.look(BLOCKS)
+    clocks.move(10)
+    looks.look(BLOCKS)
+    resets = []
+    for _ in range(2):
+        clocks.move(10)
+        resets += [span.reset for span in looks.look(BLOCKS).spans]
+    assert resets == [True, False]
