@@ -1,4 +1,4 @@
-"""Drives that sleep: asked once at most, and not woken. Twins: two disks with one world-wide name."""
+"""Drives that sleep: asked once at most, and not woken."""
 
 import time
 
@@ -64,36 +64,11 @@ def by_itself(bench: Bench) -> None:
     sh("udevadm settle; rmmod scsi_debug", check=False)
 
 
-def twins(bench: Bench) -> None:
-    """Two disks that tell one world-wide name."""
-    before = set(sh("ls /sys/block").split())
-    sh("modprobe scsi_debug dev_size_mb=16 add_host=2 vpd_use_hostno=0; udevadm settle")
-    blocks = sorted(set(sh("ls /sys/block").split()) - before)
-    names = [sh(f"cat /sys/block/{block}/device/wwid") for block in blocks]
-    links = sh("ls /dev/disk/by-id | grep -c '^wwn-.*' || true")
-    say(f"       {blocks} {names}; {links} by-id links of all disks")
-    check(len(names) == 2 and len(set(names)) == 1, "two disks with one name")
-    rounds = []
-    for _ in range(2):
-        done = [one for one in bench.round().values() if one.known.place.device[5:] in blocks]
-        say(f"       {[(one.known.number, one.known.place.device, one.known.drive.identity) for one in done]}")
-        rounds.append(
-            {
-                one.known.place.device: one.known.number
-                for one in bench.all
-                if one.known.place.device[5:] in blocks
-            }
-        )
-    check(all(len(set(one.values())) == 2 for one in rounds), f"they are two drives: {rounds}")
-    check(rounds[0] == rounds[1], "each keeps its own history")
-
-
 def main() -> None:
-    """Run all three."""
+    """Run both."""
     bench = Bench("sleeping")
     by_kernel(bench)
     by_itself(bench)
-    twins(bench)
     end()
 
 
