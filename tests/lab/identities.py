@@ -30,9 +30,8 @@ def twins(bench: Bench, numbers: dict[str, int]) -> None:
         done = bench.round()
         both = [done[serial] for serial in ("LABHDD0001", "LABTWIN001")]
         rounds.append([one.known.number for one in both])
-        say(
-            f"       {[(one.known.place.device, one.known.drive.identity.wwn) for one in both]}; {links} link by name"
-        )
+        told = [(one.known.place.device, one.known.drive.identity.wwn) for one in both]
+        say(f"       {told}; {links} link by that name")
     check(len({one.known.drive.identity.wwn for one in both}) == 1, "two disks tell one world-wide name")
     check(rounds[0][0] == numbers["LABHDD0001"], "the first keeps its history")
     check(rounds[0][1] not in numbers.values(), "the second has a history of its own")
