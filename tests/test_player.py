@@ -190,6 +190,15 @@ def test_a_sata_disk_asked_as_scsi_gives_itself_away_and_no_more(tmp_path):
     assert "Probable ATA device behind a SAT layer" in done.stdout
 
 
+def test_a_log_asked_for_besides_stands_behind_the_answer_and_one_that_is_lacking_sets_bit_2(tmp_path):
+    command = lay(tmp_path, [{**SISTER, "folder": "invented_hdd_statistics"}])
+    with_log = run(command, "-d", "sat", "--all", "-l", "devstat", "/dev/sda")
+    assert with_log.returncode == 0
+    assert "Number of Reallocated Logical Sectors" in with_log.stdout
+    assert with_log.stdout.count("=== START OF READ SMART DATA SECTION ===") == 1
+    assert run(command, "-d", "sat", "--all", "-l", "scttempsts", "/dev/sda").returncode == 4
+
+
 def test_calls_at_the_same_moment_are_all_logged_and_each_gets_its_turn(tmp_path):
     command = lay(tmp_path, [SISTER | {"steps": [{"status": number} for number in range(8)]}])
     with ThreadPoolExecutor(4) as pool:

@@ -52,6 +52,9 @@ _MEANINGS: dict[tuple[int, int], tuple[str, str, str, SignalKind]] = {
 }
 """By page and offset: the printed name, the signal, its unit and kind."""
 
+SIGNALS = frozenset(meaning[1] for meaning in _MEANINGS.values())
+"""Every signal that the log can state."""
+
 _PLACES = {meaning[0]: place for place, meaning in _MEANINGS.items()} | {
     "Specified Maximum Operating Temperature": _MAXIMUM
 }

@@ -25,6 +25,9 @@ from diskwatch.units import DAY
 STATISTICS, TEMPERATURE, BACKGROUND = "devstat", "scttempsts", "background"
 """What smartctl calls the three behind ``-l``."""
 
+_PATIENCE = 2
+"""Passes for which a log 04h that the kernel foretells may be silent at first; then the table is taken."""
+
 _SILENT = "the drive's log 04h did not answer this time"
 _ACS_2 = re.compile(r"\bACS-[2-9]\b")
 
@@ -37,7 +40,8 @@ class _Drive:
         instance: which device it is about.
         has: by log, whether the drive has it; not there while that is not known.
         seen: the logs that answered at least once.
-        first: whether the first reading had log 04h; None before it.
+        first: whether the first reading had log 04h; None before it, and while a foretold log is still silent.
+        waited: passes for which it was silent.
         stated: signals that came from log 04h so far.
         heat_at: when its SCT status was asked for, UTC seconds since 1970.
         limits: the temperature limits that it stated last, warning and critical.
@@ -47,6 +51,7 @@ class _Drive:
     has: dict[str, bool]
     seen: frozenset[str] = frozenset()
     first: bool | None = None
+    waited: int = 0
     stated: frozenset[str] = frozenset()
     heat_at: int | None = None
     limits: tuple[int | None, int | None] = (None, None)
@@ -96,25 +101,31 @@ class Optional:
             at: when, UTC seconds since 1970.
         """
         sheet, drive = Sheet.of(lines), self._drive(found)
-        told = _told(document, sheet)
+        told, denied = _told(document, sheet), _denied(sheet)
+        waits = drive.first is None and STATISTICS in set(asked) - told - denied and drive.waited < _PATIENCE
         seen = drive.seen | told
         # A log that never answered is lacking, whatever is said of it; one that did may fail once.
-        lacking = {log for log in asked if log not in seen} | _denied(sheet)
-        has = {**_offered(what, sheet, document), **drive.has, **dict.fromkeys(lacking & set(asked), False)}
+        lacking = set(asked) & (set(asked) - seen - ({STATISTICS} if waits else set()) | denied)
+        has = {**_offered(what, sheet, document), **drive.has, **dict.fromkeys(lacking, False)}
         if TEMPERATURE not in has and (STATISTICS in told or not has.get(STATISTICS)):
             # The same limit in log 04h spares the drive the question.
             known = device_statistics.maximum_celsius(document, sheet) is not None
             model = what.drive.identity.model if what.drive is not None else None
             has[TEMPERATURE] = not known and sct.may_be_asked(document, sheet, model)
-        first = STATISTICS in told if drive.first is None else drive.first
-        reading = _completed(what.reading, drive, silent=bool(drive.first) and STATISTICS not in told)
+        first = drive.first
+        if (first is None and not waits) or STATISTICS in denied:
+            first = STATISTICS in told
+        silent = waits or (drive.first is True and STATISTICS not in told | denied)
+        unknown = (drive.stated or device_statistics.SIGNALS) if silent else frozenset()
+        reading = _completed(what.reading, drive, unknown)
         stated = {value.signal for value in reading.values if value.source == device_statistics.SOURCE}
         self._drives[found.place.device] = _Drive(
             instance=found.instance,
             has=has if what.family is not Family.NVME else {},
             seen=seen,
             first=first,
-            stated=drive.stated | stated,
+            waited=drive.waited + waits,
+            stated=drive.stated if silent else drive.stated | stated,
             heat_at=at if TEMPERATURE in asked else drive.heat_at,
             limits=(reading.warning_celsius, reading.critical_celsius),
         )
@@ -158,21 +169,20 @@ def _denied(sheet: Sheet) -> set[str]:
     return {
         log
         for log, lacking in (
-            (STATISTICS, device_statistics.lacking(sheet)),
+            # Where the directory of logs could not be read, smartctl calls every log in it not supported.
+            (STATISTICS, device_statistics.lacking(sheet) and not sheet.holds("Log Directory failed")),
             (BACKGROUND, background_scan.lacking(sheet)),
         )
         if lacking
     }
 
 
-def _completed(reading: Reading, drive: _Drive, *, silent: bool) -> Reading:
-    """A reading with the limits of before, and without values that only stand in for a silent log 04h."""
+def _completed(reading: Reading, drive: _Drive, unknown: frozenset[str]) -> Reading:
+    """A reading with the limits of before, and without values that would only stand in for a silent log 04h."""
     warning, critical = reading.warning_celsius, reading.critical_celsius
     return replace(
         reading,
-        values=tuple(
-            _unknown(value) if silent and value.signal in drive.stated else value for value in reading.values
-        ),
+        values=tuple(_unknown(value) if value.signal in unknown else value for value in reading.values),
         warning_celsius=drive.limits[0] if warning is None else warning,
         critical_celsius=drive.limits[1] if critical is None else critical,
     )

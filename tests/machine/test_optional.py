@@ -1,3 +1,5 @@
+import pytest
+
 from diskwatch.machine.optional import BACKGROUND, STATISTICS, TEMPERATURE, Optional
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import understood
@@ -90,15 +92,40 @@ def test_where_log_04h_fails_once_its_signals_are_unknown_and_not_taken_from_els
 
 
 def test_a_log_that_the_drive_lacks_is_asked_for_once():
-    for answer in (NOT_THERE, ""):
-        drive = Asking(has=True)
-        assert drive.read(HDD + answer).get("reallocated-sectors") == 2_264
-        assert STATISTICS not in drive.wanted()
+    drive = Asking(has=True)
+    assert drive.read(HDD + NOT_THERE).get("reallocated-sectors") == 2_264
+    assert STATISTICS not in drive.wanted()
+    late = Asking()
+    late.read(HDD)
+    late.read(HDD)  # asked for this time, and silent
+    assert STATISTICS not in late.wanted()
+
+
+def test_a_drive_that_no_longer_has_log_04h_goes_back_to_its_table():
+    drive = Asking(has=True)
+    drive.read(HDD + STATISTICS_LOG)
+    assert drive.read(HDD + NOT_THERE).get("reallocated-sectors") == 2_264
+    assert STATISTICS not in drive.wanted()
+    assert drive.read(HDD).get("reallocated-sectors") == 2_264
+
+
+@pytest.mark.parametrize("answer", ["", "Read GP Log Directory failed\n" + NOT_THERE])
+def test_a_foretold_log_that_is_silent_at_first_does_not_hand_the_counters_to_the_table_at_once(answer: str):
+    drive, patient = Asking(has=True), Asking(has=True)
+    for _ in range(2):
+        assert drive.read(HDD + answer).get("reallocated-sectors") is None
+        assert STATISTICS in drive.wanted()
+    assert drive.read(HDD + answer).get("reallocated-sectors") == 2_264
+    assert STATISTICS not in drive.wanted()
+    patient.read(HDD + answer)
+    assert patient.read(HDD + STATISTICS_LOG).get("reallocated-sectors") == 16
+    assert patient.read(HDD).get("reallocated-sectors") is None
 
 
 def test_another_device_is_learnt_anew():
     drive = Asking(has=True)
-    drive.read(HDD)
+    drive.read(HDD + NOT_THERE)
+    assert drive.wanted() == {TEMPERATURE}
     again = Asking(has=True, instance="2")
     again.optional = drive.optional
     assert again.wanted() == {STATISTICS}

@@ -1,6 +1,7 @@
 import json
 import threading
 import time
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -11,6 +12,7 @@ from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.smartctl import Scan, Smartctl
 from diskwatch.records import Drive, Identity, Kind, Outcome, Place
 from tests.machine.recordings import FIXTURES
+from tests.player import calls, lay
 
 NOW = 1_800_000_000
 HDD = FIXTURES / "invented_hdd_failing" / "all.txt"
@@ -304,6 +306,19 @@ def test_a_real_command_is_asked_and_its_time_taken(tmp_path: Path):
     found = tool.ask(asked())
     assert found.outcome is Outcome.READ
     assert 0 <= found.took_ms < 30_000
+
+
+def test_device_statistics_are_asked_for_where_the_kernel_knows_of_them_and_hold_before_the_table(
+    tmp_path: Path,
+):
+    command = lay(tmp_path, [{"node": "/dev/sdx", "type": "sat", "folder": "invented_hdd_statistics"}])
+    tool = Smartctl(str(command), 30, lambda: NOW)
+    reading = tool.ask(replace(asked(), has_statistics=True)).reading
+    assert reading is not None
+    assert (reading.get("reallocated-sectors"), reading.get("pending-sectors")) == (16, 8)
+    assert (reading.get("power-on-hours"), reading.warning_celsius) == (37_109, 70)
+    (call,) = calls(command)
+    assert call.argv.count("-l") == 1
 
 
 def test_a_hanging_drive_is_given_up_in_time_and_does_not_hold_another(tmp_path: Path):
