@@ -59,7 +59,7 @@ def pending(document: Document | None, sheet: Sheet) -> Value | None:
     """
     if not told(document, sheet):
         return None
-    rows = list(_from_document(document)) or list(_from_rows(sheet))
+    rows = list(_from_rows(sheet)) or list(_from_document(document))
     newest: dict[str, _Found] = {}
     for row in rows:
         if row.lba not in newest or row.minutes >= newest[row.lba].minutes:
@@ -86,13 +86,15 @@ def _from_rows(sheet: Sheet) -> Iterator[_Found]:
 
 
 def _from_document(document: Document | None) -> Iterator[_Found]:
-    """Results in a document of version 7.4 or later (keys from memory)."""
+    """Results in a document without its text (keys from the program, what lies below them from memory)."""
     scan = dig(document, "scsi_background_scan")
     for number in range(1, _LAST + 1):
         row = dig(scan, f"result_{number}")
         if row is None:
             return
-        status, lba = text_at(row, "reassign_status"), number_at(row, "lba", "value")
-        minutes = number_at(row, "accumulated_power_on", "minutes")
+        status, lba = text_at(row, "reassign_status"), number_at(row, "lba")
+        if lba is None:
+            lba = number_at(row, "lba", "value")
+        hours, minutes = (number_at(row, "accumulated_power_on", key) for key in ("hours", "minutes"))
         if status is not None and lba is not None:
-            yield _Found(f"{lba:x}", minutes or 0, _PENDING.search(status) is not None)
+            yield _Found(f"{lba:x}", (hours or 0) * 60 + (minutes or 0), _PENDING.search(status) is not None)

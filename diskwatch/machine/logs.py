@@ -106,7 +106,7 @@ def _printed(text: str) -> int | None:
     if number is None:
         number = hexadecimal(text)
     if number is None:
-        worded = re.fullmatch(r"([0-9]{1,10}) Pending Defects?", text)
+        worded = re.fullmatch(r"([0-9]{1,10}) Pending Defects?(?:[,:].*)?", text)
         number = int(worded[1]) if worded is not None else None
     return number
 

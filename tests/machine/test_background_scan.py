@@ -84,8 +84,13 @@ def test_powered_minutes_in_an_answer_without_the_log_show_that_the_drive_keeps_
 def test_the_document_is_read_too():
     scan = {
         "status": {"number_scans_performed": 9},
-        "result_1": {"lba": {"value": 5}, "accumulated_power_on": {"minutes": 7}, "reassign_status": WAITS},
-        "result_2": {"lba": {"value": 6}, "accumulated_power_on": {"minutes": 8}, "reassign_status": DONE},
+        "result_1": {
+            "lba": {"value": 5},
+            "accumulated_power_on": {"hours": 9, "minutes": 7},
+            "reassign_status": WAITS,
+        },
+        "result_2": {"lba": 6, "accumulated_power_on": {"hours": 1, "minutes": 8}, "reassign_status": DONE},
+        "result_3": {"lba": 5, "accumulated_power_on": {"hours": 8, "minutes": 59}, "reassign_status": DONE},
     }
     value = pending({"scsi_background_scan": scan}, Sheet.of([]))
     assert value is not None

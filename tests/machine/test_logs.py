@@ -125,5 +125,8 @@ def test_a_controllers_zero_temperature_is_not_known_but_a_drives_is():
 
 def test_pending_defects_are_counted_where_the_drive_lists_them():
     assert scsi("  Pending defect count:0 Pending Defects")["pending-sectors"].value == 0
-    assert scsi("  Pending defect count:1 Pending Defect, LBA follows").get("pending-sectors") is not None
+    one = scsi("  Pending defect count:1 Pending Defect, LBA and accumulated_power_on_hours follow")
+    assert one["pending-sectors"].value == 1
+    many = scsi("  Pending defect count:12 Pending Defects: index, LBA and accumulated_power_on_hours follow")
+    assert many["pending-sectors"].value == 12
     assert scsi("  Pending defect count:3 Pending Defects")["pending-sectors"].value == 3
