@@ -23,6 +23,7 @@ COMMANDS = {
     "why": "the chain from a drive's readings to its call, and what would change it",
     "daybook": "what happened to the drives, in order",
     "replay": "recorded readings through the same analyser: what it would have said, and when",
+    "rehearse": "an invented machine whose drives live through years in seconds, judged like a real one",
     "preflight": "what is missing on this machine for a full watch, each with its cure",
 }
 """Every command with what it does; its module in this room bears its name."""

@@ -1,0 +1,247 @@
+"""An invented machine lives through months in seconds, and the whole judgement is tried on it.
+
+Every drive, maker, serial and place in it is invented. The history goes into a temporary folder unless --state
+names one, which is refused where it holds real drives.
+"""
+
+import argparse
+import contextlib
+import math
+import os
+import sys
+import tempfile
+import time
+from collections.abc import Iterator
+from pathlib import Path
+
+from diskwatch.cli.answers import replay_answer
+from diskwatch.cli.common import Bar, print_json, settings, talk
+from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, summed
+from diskwatch.rehearsal import scenarios, state
+from diskwatch.rehearsal.course import Course, Ended
+from diskwatch.rehearsal.story import Story
+from diskwatch.rehearsal.verdict import Outcome, Verdict
+from diskwatch.service.asking import InTurn
+from diskwatch.service.keeper import Keeper
+from diskwatch.service.rounds import Rounds
+from diskwatch.service.traffic import Traffic
+from diskwatch.units import DAY, plain, rfc3339, say_count
+
+_MEMORY = Path("/dev/shm")  # noqa: S108 - a folder of a name of its own is made in it
+_MOST_DAYS = 36_525
+
+
+def options(parser: argparse.ArgumentParser) -> None:
+    """Options of this command."""
+    parser.add_argument(
+        "scenario",
+        nargs="?",
+        default=scenarios.DEFAULT,
+        metavar="SCENARIO",
+        help=f"a scenario by name, or a file of your own (default: {scenarios.DEFAULT})",
+    )
+    parser.add_argument("--list", action="store_true", help="the scenarios, and what each should lead to")
+    parser.add_argument("--days", type=_days, metavar="N", help="how many days (default: the scenario's)")
+    parser.add_argument(
+        "--speed", type=_speed, metavar="X", help="days of the invented machine a second (default: no limit)"
+    )
+    parser.add_argument("--seed", type=int, metavar="N", help="of chance (default: the scenario's)")
+    parser.add_argument("--headless", action="store_true", help="without the dashboard")
+    parser.add_argument("--json", action="store_true", help="one JSON object")
+
+
+def _days(text: str) -> int:
+    if not text.isdecimal() or not 1 <= int(text) <= _MOST_DAYS:
+        raise argparse.ArgumentTypeError(f"expected a number of days from 1 to {_MOST_DAYS}, not {text!r}")
+    return int(text)
+
+
+def _speed(text: str) -> float:
+    try:
+        speed = float(text)
+    except ValueError:
+        speed = math.nan
+    if not 0 < speed < math.inf:
+        raise argparse.ArgumentTypeError(f"expected a number above 0, not {text!r}")
+    return speed
+
+
+def run(args: argparse.Namespace) -> int:
+    """Rehearse; 0 when it ran to its end, whatever came of it; 4 when its history could not be kept."""
+    if args.settings is not None:
+        settings(args)
+    if args.list:
+        _list(as_json=args.json)
+        return 0
+    course = Course(scenarios.load(args.scenario), seed=args.seed, days=args.days)
+    if not args.headless and not args.json:
+        talk("The moving dashboard for rehearsals is not there yet; this one runs without it.")
+    with _folder(args.state) as folder:
+        trouble = _rehearse(course, folder, args.speed)
+        ended = course.ended()
+    if args.json:
+        print_json(answer(ended))
+    else:
+        sys.stdout.write(told(ended))
+        if args.state is not None:
+            talk(f"The history of these INVENTED drives is kept in {args.state}.")
+    if trouble is not None:
+        talk(f"diskwatch: not stored: {trouble}")
+        return 4
+    return 0
+
+
+@contextlib.contextmanager
+def _folder(named: str | None) -> Iterator[Path]:
+    """The state folder: the one named, else one in memory, so that no drive is written to for a game."""
+    if named is not None:
+        if state.claim(Path(named)):
+            talk(f"{named}: the history of an earlier rehearsal was removed; this one takes its place.")
+        yield Path(named)
+        return
+    where = _MEMORY if os.access(_MEMORY, os.W_OK | os.X_OK) else None
+    with tempfile.TemporaryDirectory(prefix="diskwatch-rehearsal-", dir=where) as folder:
+        yield Path(folder)
+
+
+def _rehearse(course: Course, folder: Path, speed: float | None) -> str | None:
+    """Join the invented machine with the rounds, the traffic and the history of the real watch."""
+    keeper = Keeper(folder)
+    rounds = Rounds(course.machine, keeper, course.clock.now, asking=InTurn)
+    traffic = Traffic(course.machine, course.clock.now, course.clock.steady)
+    gathered: list[IoSpan] = []
+
+    def ask() -> tuple[DriveRound, ...]:
+        keeper.add_traffic(gathered)
+        gathered.clear()
+        return rounds.run()
+
+    def count() -> None:
+        gathered.extend(traffic.look(dict(rounds.blocks)).spans)
+
+    text = f"A rehearsal began ({course.scenario.title}): every drive in this history is INVENTED."
+    keeper.note(Entry(at=course.clock.now(), drive=None, kind="watch", text=text))
+    try:
+        with Bar("rehearsing") as bar:
+            for days in course.run(ask, count):
+                bar.show(int(days), course.days)
+                if speed is not None:
+                    time.sleep(course.scenario.step_minutes / 1440 / speed)
+        keeper.add_traffic(gathered)
+    finally:
+        keeper.close()
+    return keeper.trouble
+
+
+def _list(*, as_json: bool) -> None:
+    known = scenarios.listed()
+    if as_json:
+        print_json(
+            {
+                "schema": "diskwatch/scenarios/1",
+                "scenarios": [
+                    {
+                        "name": name,
+                        "title": one.title,
+                        "about": " ".join(one.about.split()),
+                        "days": one.days,
+                        "drives": len(one.drive),
+                        "expected": [wish.because for wish in one.expect],
+                    }
+                    for name, one in known.items()
+                ],
+            }
+        )
+        return
+    width = max(map(len, known), default=0)
+    for name, one in known.items():
+        print(plain(f"{name:<{width}}  {one.days:>4} days, {len(one.drive)} INVENTED drives: {one.title}"))
+
+
+def answer(ended: Ended) -> dict[str, object]:
+    """What ``rehearse --json`` prints: the object of ``replay --json``, and what was expected."""
+    stories = ended.stories.values()
+    drives = tuple(one for story in stories if (one := story.told) is not None)
+    summary = summed(drives, skipped=sum(story.missed for story in stories))
+    return {
+        **replay_answer(drives, summary),
+        "schema": "diskwatch/rehearsal/1",
+        "invented": True,
+        "scenario": ended.scenario.title,
+        "place": ended.scenario.place,
+        "seed": ended.seed,
+        "from": rfc3339(ended.start),
+        "to": rfc3339(ended.end),
+        "counters_moved": {story.serial: sorted(story.moved) for story in stories},
+        "expected": [_expected(one) for one in ended.outcomes],
+    }
+
+
+def _expected(one: Outcome) -> dict[str, object]:
+    wish = one.wish
+    return {
+        "serial": one.serial,
+        "call": wish.call.value if wish.call else None,
+        "cause": wish.cause.value if wish.cause else None,
+        "from_day": wish.from_day,
+        "by_day": wish.by_day,
+        "stays": wish.stays.value if wish.stays else None,
+        "never_cause": [cause.value for cause in wish.never_cause],
+        "needs": list(wish.needs),
+        "because": wish.because,
+        "verdict": one.verdict.value,
+        "at": None if one.at is None else rfc3339(one.at),
+        "day": one.day,
+    }
+
+
+def told(ended: Ended) -> str:
+    """The rehearsal for a person."""
+    scenario = ended.scenario
+    lived = say_count(round((ended.end - ended.start) / DAY))
+    lines = [
+        f"{scenario.title}: {lived} days in {scenario.place}, seed {ended.seed}. EVERYTHING HERE IS INVENTED.",
+        *(["", *scenario.about.strip().splitlines()] if scenario.about.strip() else []),
+    ]
+    for story in ended.stories.values():
+        lines += ["", f"{story.serial}  {story.model}", *_told_story(story, ended.start)]
+    lines += ["", "Expected:"]
+    for one in ended.outcomes:
+        when = f" on day {one.day:g}" if one.day is not None else ""
+        lines.append(f"  {one.verdict.value + when:<24} {one.serial}: {_wished(one)}")
+        lines.append(f"  {'':<24} ({one.wish.because})")
+    return "\n".join(plain(line) for line in lines) + "\n"
+
+
+def _told_story(story: Story, start: int) -> Iterator[str]:
+    told = story.told
+    if told is None:
+        yield "  It was never there."
+        return
+    if told.worst is CallWord.KEEP:
+        yield "  It was keep all the time; that is no promise."
+    else:
+        for call in told.calls:
+            yield f"  day {(call.at - start) / DAY:7.2f}  {call.word.value:<6}  {call.reason}"
+    for drift in told.drifts:
+        day = (drift.at - start) / DAY
+        yield f"  day {day:7.2f}  ledger alarm ({drift.signal}), evidence {drift.evidence:.0f} days"
+    if told.failed and told.warned_at is None:
+        moved = ", ".join(sorted(story.moved))
+        what = f"only these error counters had moved: {moved}" if moved else "no error counter had moved"
+        yield f"  It died, and nothing had told to copy it off: {what}. Only a copy made in time helps."
+
+
+def _wished(one: Outcome) -> str:
+    wish = one.wish
+    parts = []
+    if wish.call is not None:
+        cause = f" for {wish.cause.value}" if wish.cause else ""
+        parts.append(f"{wish.call.value}{cause} from day {wish.from_day:g} to {wish.by_day or 0:g}")
+    if wish.stays is not None:
+        parts.append(f"never more than {wish.stays.value}")
+    if wish.never_cause:
+        parts.append(f"never blamed on {', '.join(cause.value for cause in wish.never_cause)}")
+    if one.verdict is Verdict.NOT_YET_JUDGED:
+        parts.append(f"needs {' and '.join(wish.needs)}")
+    return "; ".join(parts)

@@ -1,0 +1,99 @@
+"""Whether what a scenario expects came true."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from enum import StrEnum
+
+from diskwatch.records import CallWord
+from diskwatch.rehearsal.scenario import Expectation, Scenario
+from diskwatch.rehearsal.story import Said, Story
+from diskwatch.units import DAY
+
+
+class Verdict(StrEnum):
+    """What became of an expectation.
+
+    NOT_YET_JUDGED needs parts of the judgement that are not there yet; it is never reached. OPEN: the run ended
+    before the day by which it should be.
+    """
+
+    REACHED = "reached"
+    MISSED = "missed"
+    TOO_EARLY = "too early"
+    WRONG_CAUSE = "wrong cause"
+    BROKEN = "broken"
+    OPEN = "open"
+    NOT_YET_JUDGED = "not yet judged"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Outcome:
+    """An expectation of one drive and what became of it.
+
+    Attributes:
+        serial: the drive.
+        wish: what was expected.
+        verdict: what became of it.
+        at: when that was settled, UTC seconds since 1970; None where nothing happened that settled it.
+        day: the same in days since the beginning, or None.
+    """
+
+    serial: str
+    wish: Expectation
+    verdict: Verdict
+    at: int | None
+    day: float | None
+
+
+def outcomes(scenario: Scenario, stories: Mapping[str, Story], *, start: int, end: int) -> tuple[Outcome, ...]:
+    """Every expectation of every drive that it is about.
+
+    Args:
+        scenario: what was expected.
+        stories: what was said, by serial.
+        start: when the rehearsal began, UTC seconds since 1970.
+        end: when it ended.
+    """
+    named = {wish.drive for wish in scenario.expect if wish.drive}
+    return tuple(
+        _outcome(wish, stories[serial], start, end)
+        for wish in scenario.expect
+        for serial in ([wish.drive] if wish.drive else [one for one in stories if one not in named])
+    )
+
+
+def _outcome(wish: Expectation, story: Story, start: int, end: int) -> Outcome:
+    verdict, at = _judged(wish, story, start, end)
+    day = None if at is None else round((at - start) / DAY, 2)
+    return Outcome(serial=story.serial, wish=wish, verdict=verdict, at=at, day=day)
+
+
+def _judged(wish: Expectation, story: Story, start: int, end: int) -> tuple[Verdict, int | None]:
+    broken = next((one for one in story.said if _breaks(wish, one)), None)
+    if broken is not None:
+        return Verdict.BROKEN, broken.at
+    if wish.needs:
+        return Verdict.NOT_YET_JUDGED, None
+    if wish.call is None:
+        return (Verdict.REACHED, None) if story.said else (Verdict.OPEN, None)
+    return _reached(wish, wish.call, story, start, end)
+
+
+def _breaks(wish: Expectation, one: Said) -> bool:
+    too_strong = wish.stays is not None and one.call.word.rank > wish.stays.rank
+    return too_strong or one.call.cause in wish.never_cause
+
+
+def _reached(
+    wish: Expectation, call: CallWord, story: Story, start: int, end: int
+) -> tuple[Verdict, int | None]:
+    reached = [one for one in story.said if one.call.word.rank >= call.rank]
+    earliest, latest = start + wish.from_day * DAY, start + (wish.by_day or 0) * DAY
+    if not reached:
+        return (Verdict.OPEN, None) if end < latest else (Verdict.MISSED, None)
+    if reached[0].at < earliest:
+        return Verdict.TOO_EARLY, reached[0].at
+    named = [one for one in reached if wish.cause is None or one.call.cause is wish.cause]
+    if not named:
+        return Verdict.WRONG_CAUSE, reached[0].at
+    return (Verdict.REACHED if named[0].at <= latest else Verdict.MISSED), named[0].at

@@ -1,0 +1,115 @@
+from hypothesis import given, settings, strategies as st
+
+from diskwatch.records import Outcome
+from diskwatch.rehearsal.scenario import BaySpec, Busy, Holiday, StripFails
+from tests.rehearsal.examples import HDD, NVME, hdd, live, machine, nvme, ssd
+
+
+def test_the_survey_lists_each_drive_where_it_is_and_ask_brings_its_reading():
+    one = machine()
+    live(one, 0.2)
+    found = one.survey().found
+    assert [(each.place.device, each.blocks) for each in found] == [
+        ("/dev/sda", ("sda",)),
+        ("/dev/nvme0", ("nvme0n1",)),
+    ]
+    for each in found:
+        answer = one.ask(each)
+        assert answer.outcome is Outcome.READ
+        assert answer.at == one.clock.now()
+        assert answer.reading is not None
+        assert answer.reading.number("power-on-hours") is not None
+
+
+def test_a_sleeping_drive_is_not_asked_and_an_absent_one_says_so():
+    one = machine(hdd(sleeps=True, load=0.0))
+    live(one, 0.2)
+    (found,) = one.survey().found
+    assert found.asleep
+    assert one.ask(found).outcome is Outcome.ASLEEP
+    one.take_away(HDD, 0)
+    assert one.ask(found).outcome is Outcome.ABSENT
+
+
+def test_a_drive_that_joins_later_is_not_there_before():
+    one = machine(hdd(joins_day=2), nvme())
+    live(one, 1.9)
+    assert len(one.survey().found) == 1
+    live(one, 2.1)
+    assert len(one.survey().found) == 2
+
+
+def test_two_devices_are_never_one_instance_nor_one_device_after_a_start():
+    one = machine(hdd(), nvme(), ssd())
+    live(one, 0.2)
+    before = {name: each.instance for name, each in one.counts().items()}
+    assert len(set(before.values())) == 3
+    one.drives[HDD].power_up()
+    after = {name: each.instance for name, each in one.counts().items()}
+    assert [name for name in before if before[name] != after[name]] == ["sda"]
+
+
+def test_a_strip_that_fails_hits_all_of_its_drives_at_once_and_no_other():
+    bays = (BaySpec(name="one", strip="desk"), BaySpec(name="two", strip="desk"))
+    one = machine(hdd(), nvme(), ssd(), bay=bays, event=(StripFails(day=0, strip="desk", losses_a_year=400),))
+    one.strips["wall"].losses_a_year = 0.0
+    live(one, 20)
+    lost = [drive.unsafe for drive in one.drives.values()]
+    assert lost[0] == lost[1] > 5
+    assert lost[2] == 0
+
+
+def test_an_office_machine_counts_starts_and_no_hours_at_night():
+    one = machine(habit="office", holiday=(Holiday(day=20, days=7),))
+    live(one, 28)
+    told = one.drives[HDD].told()
+    working_days = 15  # 2025-01-01 to 2025-01-20, then a week away, then Tuesday the 28th
+    assert working_days - 2 <= told.cycles - 1 <= working_days + 1
+    assert (told.hours - 1000) / (told.cycles - 1) <= 12
+
+
+def test_a_busy_week_is_busy_and_then_over():
+    one = machine(event=(Busy(day=7, days=7, factor=6.0),))
+    moved = []
+    for day in (7, 14, 21):
+        before = one.drives[NVME].read_commands + one.drives[NVME].write_commands
+        live(one, day)
+        moved.append(one.drives[NVME].read_commands + one.drives[NVME].write_commands - before)
+    assert moved[1] > 2.5 * max(moved[0], moved[2])
+
+
+def test_each_drives_life_is_its_own_whatever_drives_stand_beside_it():
+    alone, together = machine(hdd()), machine(hdd(), nvme(), ssd())
+    for each in (alone, together):
+        live(each, 5)
+    assert alone.drives[HDD].told() == together.drives[HDD].told()
+
+
+@settings(max_examples=8)
+@given(st.integers(0, 10_000))
+def test_the_same_seed_gives_the_same_life(seed):
+    lives = []
+    for _ in range(2):
+        one = machine(hdd(), nvme(), seed=seed)
+        live(one, 3)
+        lives.append(([drive.told() for drive in one.drives.values()], dict(one.counts())))
+    assert lives[0] == lives[1]
+
+
+def test_utilisation_and_requests_under_way_agree_with_rate_times_time():
+    # Little's law and the utilisation law on the counters of one span: L = l W, U = l S <= L.
+    one = machine(hdd(load=4.0))
+    live(one, 1)
+    before = one.counts()["sda"].counts
+    live(one, 1.5)
+    after = one.counts()["sda"].counts
+    span = 43_200_000
+    count = after.reads + after.writes - before.reads - before.writes
+    total = after.read_ms + after.write_ms - before.read_ms - before.write_ms
+    busy = after.busy_ms - before.busy_ms
+    under_way, used = total / span, busy / span
+    assert count > 1_000
+    assert 0 < used < 1
+    # With one request served at a time, those under way are the one in service and those that wait.
+    assert used <= under_way + 1e-6
+    assert under_way <= used + used**2 / (1 - used) * 3 + 0.05

@@ -1,0 +1,100 @@
+import pytest
+
+from diskwatch.errors import UsageError
+from diskwatch.records import CallWord
+from diskwatch.rehearsal import scenarios
+from diskwatch.rehearsal.scenario import MARK, CableLoosens, Scratch
+
+SMALL = """
+title = "small"
+about = "a test"
+days = 10
+[[drive]]
+serial = "INVENTED-1"
+model = "Nordwall INVENTED"
+kind = "hdd"
+device = "/dev/sda"
+bay = "one"
+capacity_gb = 1000
+"""
+
+
+def written(tmp_path, text):
+    path = tmp_path / "mine.toml"
+    path.write_text(text, encoding="utf-8")
+    return str(path)
+
+
+def test_every_scenario_that_was_asked_for_is_there_and_sound():
+    asked = {
+        "scratched-media",
+        "weak-head",
+        "loose-cable",
+        "worn-solid-state-drive",
+        "exhausted-spare",
+        "hot-summer",
+        "blocked-fan",
+        "bad-power-strip",
+        "vanishing-controller",
+        "busy-month",
+        "firmware-update",
+        "old-defects",
+        "sudden-death",
+    }
+    known = scenarios.listed()
+    assert asked <= set(known)
+    assert scenarios.DEFAULT in known
+    for name, one in known.items():
+        assert one.expect, name
+        assert all(MARK in drive.model for drive in one.drive)
+        assert "invented" in one.place
+        assert not list(scenarios.faults(one))
+
+
+@pytest.mark.parametrize("name", ["busy-month", "firmware-update", "old-defects"])
+def test_where_nothing_is_wrong_every_drive_is_to_stay_keep(name):
+    wishes = scenarios.load(name).expect
+    assert any(wish.stays is CallWord.KEEP and not wish.needs for wish in wishes)
+
+
+def test_an_owners_file_is_read_from_anywhere(tmp_path):
+    assert scenarios.load(written(tmp_path, SMALL)).drive[0].capacity == 10**12
+
+
+@pytest.mark.parametrize(
+    ("text", "told"),
+    [
+        (SMALL + "colour = 1\n", "colour"),
+        (SMALL.replace("days = 10", "days = 0"), "$.days"),
+        (SMALL.replace("days = 10", 'days = "ten"'), "$.days"),
+        (SMALL.replace('"INVENTED-1"', '"X-1"'), "X-1 does not begin with INVENTED"),
+        (SMALL.replace("Nordwall INVENTED", "Nordwall"), "Nordwall does not contain INVENTED"),
+        (SMALL + '[[event]]\nwhat = "cable-changed"\nday = 1\nbay = "two"\n', "bay two"),
+        (SMALL + '[[event]]\nwhat = "blocks-fail"\nday = 1\ndrive = "INVENTED-1"\na_year = 2\n', "solid-state"),
+        (SMALL + '[[event]]\nwhat = "rain"\nday = 1\n', "rain"),
+        (SMALL + '[[expect]]\nbecause = "it is so"\n', "asks for nothing"),
+        (SMALL + '[[expect]]\ncall = "look"\nbecause = "it is so"\n', "by_day"),
+        (SMALL + '[[expect]]\ndrive = "INVENTED-9"\nstays = "keep"\nbecause = "x"\n', "INVENTED-9"),
+        (SMALL + SMALL[SMALL.index("[[drive]]") :], "two drives have the serial"),
+        ("title = ", "no TOML"),
+    ],
+)
+def test_a_wrong_file_is_refused_in_one_line_that_names_it_and_the_fault(tmp_path, text, told):
+    with pytest.raises(UsageError) as caught:
+        scenarios.load(written(tmp_path, text))
+    assert told in str(caught.value)
+    assert "mine.toml" in str(caught.value)
+    assert "\n" not in str(caught.value)
+
+
+def test_a_name_that_is_not_known_gets_the_nearest_one():
+    with pytest.raises(UsageError, match="did you mean loose-cable"):
+        scenarios.load("lose-cable")
+    with pytest.raises(UsageError, match="cannot be read"):
+        scenarios.load("./none.toml")
+
+
+def test_events_keep_their_sort_and_amounts():
+    events = scenarios.load("scratched-media").event
+    assert events == (Scratch(day=60, drive="INVENTED-NW-0101", units=12, growth=0.08),)
+    assert isinstance(scenarios.load("loose-cable").event[0], CableLoosens)

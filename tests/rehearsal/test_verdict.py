@@ -1,0 +1,75 @@
+from typing import Any
+
+import pytest
+
+from diskwatch.records import Call, CallWord, Cause
+from diskwatch.rehearsal.scenario import Expectation
+from diskwatch.rehearsal.story import Said, Story
+from diskwatch.rehearsal.verdict import Verdict, outcomes
+from tests.rehearsal.examples import HDD, NVME, scenario
+
+DAY = 86_400
+
+
+def said(day: float, word: str, cause: str | None = None) -> Said:
+    call = Call(
+        word=CallWord(word),
+        at=int(day * DAY),
+        cause=Cause(cause) if cause else None,
+        cause_probability=None,
+        cause_second=None,
+        reason="x",
+        rule="x",
+        evidence=None,
+    )
+    return Said(at=call.at, call=call, changed=True)
+
+
+def judged(wish: dict[str, Any], *told: Said, end: float = 100) -> Verdict:
+    expectation = Expectation(**{"drive": HDD, "because": "x", **wish})
+    story = Story(serial=HDD, model="x", said=[said(0, "keep"), *told])
+    stories = {HDD: story, NVME: Story(serial=NVME, model="y")}
+    (one,) = outcomes(scenario(expect=(expectation,)), stories, start=0, end=int(end * DAY))
+    return one.verdict
+
+
+LOOK = {"call": CallWord.LOOK, "cause": Cause.MEDIA, "from_day": 10, "by_day": 20}
+
+
+@pytest.mark.parametrize(
+    ("told", "end", "verdict"),
+    [
+        ((said(12, "look", "media"),), 100, "reached"),
+        ((said(12, "retire", "media"),), 100, "reached"),
+        ((said(12, "look", "link"), said(19, "copy", "media")), 100, "reached"),
+        ((said(12, "look", "link"),), 100, "wrong cause"),
+        ((said(9, "look", "media"),), 100, "too early"),
+        ((said(21, "look", "media"),), 100, "missed"),
+        ((), 100, "missed"),
+        ((), 15, "open"),
+    ],
+)
+def test_a_call_is_reached_in_its_time_and_for_its_cause(told, end, verdict):
+    assert judged(LOOK, *told, end=end) is Verdict(verdict)
+
+
+def test_what_needs_a_judgement_that_is_not_there_is_never_reached():
+    assert judged({**LOOK, "needs": ("latency",)}, said(12, "look", "media")) is Verdict.NOT_YET_JUDGED
+
+
+def test_what_must_not_be_is_broken_once_it_was_whatever_is_needed_elsewhere():
+    wish = {"stays": CallWord.LOOK, "never_cause": (Cause.LINK,)}
+    assert judged(wish, said(5, "look", "media")) is Verdict.REACHED
+    assert judged(wish, said(5, "copy", "media"), said(6, "keep")) is Verdict.BROKEN
+    assert judged(wish, said(5, "look", "link")) is Verdict.BROKEN
+    assert judged({**wish, "needs": ("latency",)}, said(5, "look", "link")) is Verdict.BROKEN
+
+
+def test_an_expectation_without_a_drive_is_of_all_that_no_other_names():
+    wishes = (
+        Expectation(stays=CallWord.KEEP, because="x"),
+        Expectation(drive=HDD, stays=CallWord.LOOK, because="y"),
+    )
+    stories = {serial: Story(serial=serial, model="x", said=[said(0, "keep")]) for serial in (HDD, NVME)}
+    told = outcomes(scenario(expect=wishes), stories, start=0, end=DAY)
+    assert [(one.serial, one.wish.because) for one in told] == [(NVME, "x"), (HDD, "y")]
