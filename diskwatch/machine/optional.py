@@ -57,7 +57,7 @@ class _Drive:
     limits: tuple[int | None, int | None] = (None, None)
 
 
-class Optional:
+class OptionalLogs:
     """Remembers, drive by drive, which logs to ask for."""
 
     def __init__(self) -> None:

@@ -9,7 +9,7 @@ from dataclasses import dataclass, replace
 from diskwatch.machine import outcomes, ways
 from diskwatch.machine.command import Answer, Door, Ending
 from diskwatch.machine.document import Document, document_of, messages, plain_lines, text_at
-from diskwatch.machine.optional import BACKGROUND, STATISTICS, TEMPERATURE, Optional
+from diskwatch.machine.optional import BACKGROUND, STATISTICS, TEMPERATURE, OptionalLogs
 from diskwatch.machine.outcomes import ASLEEP_STATUS, Verdict, quoted
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import Understood, understood
@@ -99,7 +99,7 @@ class Smartctl:
         self._knows = _Knows()
         self._ways = Ways()
         self._rest = Rest()
-        self._optional = Optional()
+        self._optional = OptionalLogs()
 
     @property
     def abandoned(self) -> int:

@@ -1,6 +1,6 @@
 import pytest
 
-from diskwatch.machine.optional import BACKGROUND, STATISTICS, TEMPERATURE, Optional
+from diskwatch.machine.optional import BACKGROUND, STATISTICS, TEMPERATURE, OptionalLogs
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import understood
 from diskwatch.records import Drive, Identity, Kind, Place, Reading
@@ -26,7 +26,7 @@ class Asking:
     """A drive that is asked pass by pass."""
 
     def __init__(self, *, has: bool | None = None, kind: Kind = Kind.HDD, instance: str = "1") -> None:
-        self.optional = Optional()
+        self.optional = OptionalLogs()
         self.at = AT
         self.found = Found(
             address=Address(node="/dev/sdx", type="sat"),

@@ -285,6 +285,49 @@ def test_device_statistics_hold_before_the_attribute_table_unless_they_are_to_fi
     assert len(before.values) == len(filling.values) > len(table.values)
 
 
+@pytest.mark.parametrize(
+    ("name", "log"),
+    [
+        ("invented_hdd_unreadable", STATISTICS_LOG),
+        (
+            "invented_hdd_unreadable",
+            (
+                "SCT Status Version:                  3\nSCT Version (vendor specific):       522 (0x020a)\n"
+                "Device State:                        Active (0)\n"
+                "Current Temperature:                    37 Celsius\n"
+                "Power Cycle Min/Max Temperature:     20/40 Celsius\n"
+                "Lifetime    Min/Max Temperature:      2/60 Celsius\n"
+                "Under/Over Temperature Limit Count:   0/0\n"
+            ),
+        ),
+        (
+            "invented_sas_megaraid_failing",
+            (
+                "Background scan results log\n  Status: scan is active\n"
+                "    Accumulated power on time, hours:minutes 41211:27 [2472687 minutes]\n"
+                "    Number of background scans performed: 855,  scan progress: 52.92%\n\n"
+                "   #  when        lba(hex)    [sk,asc,ascq]    reassign_status\n"
+                "   1 100:00  0000000011b74d24  [1,17,1]   Successfully reassigned\n"
+            ),
+        ),
+    ],
+)
+def test_a_log_behind_the_answer_changes_nothing_of_what_stands_before_it(name: str, log: str):
+    alone, both = (read(fixture(f"{name}/all.txt") + more) for more in ("", "\n" + log))
+    assert both.drive == alone.drive
+    assert both.support is alone.support
+    assert (both.reading.attributes, both.reading.self_tests) == (
+        alone.reading.attributes,
+        alone.reading.self_tests,
+    )
+    told = {value.signal: value for value in both.reading.values}
+    assert all(
+        told[value.signal].value == value.value
+        for value in alone.reading.values
+        if told[value.signal].source == value.source
+    )
+
+
 def test_what_newer_versions_state_of_wear_and_what_cannot_be_true_is_handled():
     told = {
         **ATA_DOCUMENT,
