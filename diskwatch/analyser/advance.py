@@ -3,12 +3,13 @@
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 
-from diskwatch.analyser import counters, findings, outcomes
+from diskwatch.analyser import counters, findings, outcomes, signs
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
 from diskwatch.records import Call, CallWord, Entry, Finding, FindingKind, Kind, Outcome, Pass, Reading
 from diskwatch.trends.norms import NORMS
+from diskwatch.units import day_number
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -86,6 +87,7 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         hours=state.hours if hours is None else hours,
         firsts=_firsts(state, reading, counts),
         latest={**state.latest, **counts},
+        risen={**state.risen, **dict.fromkeys(risen, day_number(pass_.at))} if risen else state.risen,
         streams=counters.streams(state, pass_, counts, risen, hours),
         spots=counters.damage(state, pass_, reading),
         standing=state.standing,
@@ -129,7 +131,18 @@ def _called(state: DriveState, pass_: Pass) -> Call | None:
         if pass_.outcome is Outcome.NO_SMART and pass_.drive is not None and pass_.drive.kind is Kind.VIRTUAL:
             return rules.decide((), before=state.call, at=pass_.at, quiet=sentences.no_smart())
         return state.call
-    return rules.decide(state.standing.values(), before=state.call, at=pass_.at, quiet=_quiet(state, pass_))
+    lead = rules.leading(state.standing.values())
+    if lead is None or pass_.reading is None:
+        explained = None
+    else:
+        explained = signs.explained(state, pass_.reading, day_number(pass_.at), lead)
+    return rules.decide(
+        state.standing.values(),
+        before=state.call,
+        at=pass_.at,
+        quiet=_quiet(state, pass_),
+        explained=explained,
+    )
 
 
 def _quiet(state: DriveState, pass_: Pass) -> str:

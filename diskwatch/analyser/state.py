@@ -28,6 +28,7 @@ class DriveState:
         hours: powered hours at the last reading, or None.
         firsts: counters as first read.
         latest: counters as last read with a usable value.
+        risen: UTC day number of each counter's last rise.
         streams: ledgers by stream.
         spots: damage for the odds rule.
         standing: findings that stand, by name.
@@ -43,6 +44,7 @@ class DriveState:
     hours: int | None = None
     firsts: Mapping[str, int] = field(default_factory=dict)
     latest: Mapping[str, int] = field(default_factory=dict)
+    risen: Mapping[str, int] = field(default_factory=dict)
     streams: Mapping[str, Stream] = field(default_factory=dict)
     spots: Spots = field(default_factory=Spots)
     standing: Mapping[str, Finding] = field(default_factory=dict)

@@ -2,6 +2,7 @@
 
 from collections.abc import Iterable
 
+from diskwatch.judge.causes import Explained
 from diskwatch.records import Call, CallWord, Cause, Finding, FindingKind
 
 VERSION = 1
@@ -34,7 +35,23 @@ def leading_first(findings: Iterable[Finding]) -> tuple[Finding, ...]:
     )
 
 
-def decide(findings: Iterable[Finding], *, before: Call | None, at: int, quiet: str) -> Call:
+def leading(findings: Iterable[Finding]) -> Finding | None:
+    """The finding that decides the call; None where none asks for anything."""
+    return next(iter(_asking(findings)), None)
+
+
+def _asking(findings: Iterable[Finding]) -> tuple[Finding, ...]:
+    return leading_first(one for one in findings if one.calls is not None and one.calls is not CallWord.KEEP)
+
+
+def decide(
+    findings: Iterable[Finding],
+    *,
+    before: Call | None,
+    at: int,
+    quiet: str,
+    explained: Explained | None = None,
+) -> Call:
     """The call that follows from what stands.
 
     Args:
@@ -42,14 +59,13 @@ def decide(findings: Iterable[Finding], *, before: Call | None, at: int, quiet: 
         before: the call until now, or None.
         at: now, UTC seconds since 1970.
         quiet: the sentence for when nothing asks for a deed.
+        explained: what the drive's signs point to, where the table of causes was asked; without it the cause is
+            what the leading finding points to, or, where that finding decided before, what it was then.
 
     Returns:
-        The strongest call that a finding asks for, or keep. Its cause is the leading finding's; the runner-up
-        is the next different cause among the findings that ask for something.
+        The strongest call that a finding asks for, or keep.
     """
-    asking = [
-        one for one in leading_first(findings) if one.calls is not None and one.calls is not CallWord.KEEP
-    ]
+    asking = _asking(findings)
     if not asking:
         if before is not None and before.word is CallWord.KEEP and before.reason == quiet:
             return before
@@ -65,15 +81,26 @@ def decide(findings: Iterable[Finding], *, before: Call | None, at: int, quiet: 
         )
     lead = asking[0]
     word = lead.calls or CallWord.LOOK
-    cause = lead.cause or Cause.UNCLEAR
-    others = [one.cause for one in asking[1:] if one.cause not in {None, cause, Cause.UNCLEAR}]
+    cause, probability, second = _cause(lead, asking, before, explained)
     return Call(
         word=word,
         at=before.at if before and before.word is word else at,
         cause=cause,
-        cause_probability=None,
-        cause_second=others[0] if others else None,
+        cause_probability=probability,
+        cause_second=second,
         reason=lead.sentence,
         rule=lead.name,
         evidence=lead.evidence if lead.kind is FindingKind.DRIFT else None,
     )
+
+
+def _cause(
+    lead: Finding, asking: tuple[Finding, ...], before: Call | None, explained: Explained | None
+) -> tuple[Cause, float | None, Cause | None]:
+    if explained is not None and explained.cause is not Cause.UNCLEAR:
+        return explained.cause, explained.probability, explained.second
+    if explained is None and before is not None and before.rule == lead.name and before.cause is not None:
+        return before.cause, before.cause_probability, before.cause_second
+    own = lead.cause or Cause.UNCLEAR
+    others = [one.cause for one in asking[1:] if one.cause not in {None, own, Cause.UNCLEAR}]
+    return own, None, others[0] if others else None

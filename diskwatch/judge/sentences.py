@@ -105,10 +105,12 @@ def drift(norm: Norm, *, episodes: int, days: float, evidence: float) -> str:
 
 
 def once_in(evidence: float) -> str:
-    """Evidence in days, said as "once in N years", rounded down to two digits."""
+    """Evidence in days, said as "once in N years", rounded down to two digits; it says nothing beyond 1,000."""
     years = evidence / YEAR
     if years < 1:
         return "once in less than a year"
+    if years >= 1000:
+        return "once in more than 1,000 years"
     scale = 10 ** max(0, len(str(int(years))) - 2)
     rounded = int(years) // scale * scale
     return f"once in {say_count(rounded)} {'year' if rounded == 1 else 'years'}"

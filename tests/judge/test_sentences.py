@@ -16,7 +16,8 @@ from tests.samples import attribute
         (365.25 * 3.9, "once in 3 years"),
         (365.25, "once in 1 year"),
         (364, "once in less than a year"),
-        (365.25 * 1239, "once in 1,200 years"),
+        (365.25 * 999, "once in 990 years"),
+        (365.25 * 1239, "once in more than 1,000 years"),
     ],
 )
 def test_evidence_is_said_in_years_rounded_down_to_two_digits(days, said):

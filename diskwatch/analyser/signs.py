@@ -1,0 +1,105 @@
+"""Which signs of the table of causes a drive has shown lately, and which it could have and did not."""
+
+from collections.abc import Mapping
+
+from diskwatch.analyser.state import DriveState
+from diskwatch.judge import causes
+from diskwatch.judge.causes import Explained
+from diskwatch.records import Finding, FindingKind, Reading
+from diskwatch.trends.norms import STREAM_OF, YEAR
+
+LATELY = 30
+"""Days that a sign counts."""
+
+_NOTICEABLE = YEAR
+"""Evidence in days from which a rise that is ordinary by itself (a CRC error, a power cut) counts as a sign."""
+
+_DEFECTS: Mapping[str, tuple[str, ...]] = {
+    "media counter": ("reallocated-sectors", "pending-sectors", "grown-defects"),
+    "uncorrectable event": (
+        "reported-uncorrectable",
+        "offline-uncorrectable",
+        "uncorrected-reads",
+        "uncorrected-writes",
+    ),
+    "flash media errors": ("media-errors",),
+}
+"""Signs that one rise is enough for."""
+
+_ORDINARY: Mapping[str, tuple[str, ...]] = {
+    "CRC counter": ("crc-errors",),
+    "link reset": ("link-resets",),
+    "command timeout": ("command-timeouts",),
+    "unsafe power-off": ("unsafe-power-offs",),
+}
+"""Signs that ask for more than the norm."""
+
+_BY_FACT: Mapping[str, str] = {
+    "fact:attribute-5": "media counter",
+    "fact:attribute-196": "media counter",
+    "fact:attribute-197": "media counter",
+    "fact:attribute-187": "uncorrectable event",
+    "fact:attribute-198": "uncorrectable event",
+    "fact:self-test-unreadable": "uncorrectable event",
+    "fact:hot": "hot",
+    "fact:warns-of-heat": "hot",
+    "fact:spare": "spare low",
+}
+"""Signs that a fact is, also on a first reading."""
+
+_WORN = 90
+_TOLD_BY_ITSELF = ("fact:hot", "fact:warns-of-heat", "fact:spare", "fact:worn", "fact:worn-out")
+"""Facts that name their cause themselves, so that no table is asked."""
+
+
+def explained(state: DriveState, reading: Reading, day: int, lead: Finding) -> Explained | None:
+    """What the drive's signs together point to.
+
+    Args:
+        state: the drive after the reading.
+        reading: the reading.
+        day: UTC day number of the reading.
+        lead: the finding that decides the call.
+
+    Returns:
+        The cause; None where the leading fact tells it by itself.
+    """
+    if lead.name in _TOLD_BY_ITSELF or (lead.kind is FindingKind.FACT and lead.data.get("critical_warning")):
+        return None
+    shown = {sign: _shows(state, day, sign) for sign in (*_DEFECTS, *_ORDINARY)}
+    used = reading.number("percentage-used")
+    told: dict[str, bool | None] = {
+        **shown,
+        "worn": None if used is None else used >= _WORN,
+        "spare low": None if reading.number("available-spare") is None else False,
+        "hot": None if _limit(reading) is None else False,
+    }
+    for name, sign in _BY_FACT.items():
+        if name in state.standing:
+            told[sign] = True
+    if "fact:self-assessment" in state.standing and (reading.number("grown-defects") or 0) > 0:
+        told["media counter"] = True
+    return causes.explain(
+        [sign for sign, showing in told.items() if showing],
+        [sign for sign, showing in told.items() if showing is False],
+        drifting=lead.kind is FindingKind.DRIFT,
+    )
+
+
+def _shows(state: DriveState, day: int, sign: str) -> bool | None:
+    """Whether a counter's sign shows; None where the drive has no such counter."""
+    signals = _DEFECTS.get(sign) or _ORDINARY[sign]
+    if not any(signal in state.latest for signal in signals):
+        return None
+    lately = any(day - state.risen[signal] < LATELY for signal in signals if signal in state.risen)
+    if not lately or sign in _DEFECTS:
+        return lately
+    return any(
+        state.streams[STREAM_OF[signal].stream].ledger.evidence >= _NOTICEABLE
+        for signal in signals
+        if signal in state.risen
+    )
+
+
+def _limit(reading: Reading) -> int | None:
+    return reading.warning_celsius if reading.warning_celsius is not None else reading.critical_celsius

@@ -1,0 +1,106 @@
+"""What best explains the signs that a drive shows: a naive-Bayes table with every cell in sight.
+
+For each cause, ``causes.csv`` gives how likely it is beforehand, and how likely each sign is to have shown
+within the last 30 days if that cause is at work. Signs that a drive cannot show are left out. The score of a
+cause is
+
+    ln prior + 0.8 * sum of ln p (signs that showed) and ln(1 - p) (signs that could have and did not)
+
+The 0.8 pays for signs that overlap. Each cell carries its source; "proposal" is field practice and general
+reading, no measured rate. On 6,000 simulated cases with the table wrong by 0.8 logit in every cell, a named
+cause was right in 91 %, calibration error 0.04 (simulated; not measured on real failing drives).
+"""
+
+import csv
+from collections.abc import Collection, Mapping
+from dataclasses import dataclass
+from functools import cache
+from importlib.resources import files
+from math import exp, log
+
+from diskwatch.records import Cause
+
+OVERLAP = 0.8
+NAMED = 0.70
+"""Probability from which a cause is named alone."""
+
+UNCLEAR = 0.35
+"""Probability of the best cause below which none is named."""
+
+_SOUND = "sound"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Explained:
+    """What the signs point to.
+
+    Attributes:
+        cause: the best cause; UNCLEAR where none stands out, or where a sound drive explains the signs best.
+        probability: its posterior probability; None where unclear.
+        second: the runner-up where the best is not certain enough to stand alone; else None.
+    """
+
+    cause: Cause
+    probability: float | None
+    second: Cause | None
+
+
+@cache
+def _table() -> Mapping[str, Mapping[str, float]]:
+    """Probabilities by sign and cause; the sign ``prior`` holds those beforehand."""
+    table: dict[str, dict[str, float]] = {}
+    text = files("diskwatch.judge").joinpath("causes.csv").read_text(encoding="utf-8")
+    for row in csv.DictReader(text.splitlines()):
+        table.setdefault(row["sign"], {})[row["cause"]] = float(row["probability"])
+    return table
+
+
+def signs() -> frozenset[str]:
+    """Every sign that the table knows."""
+    return frozenset(_table()) - {"prior"}
+
+
+def posterior(shown: Collection[str], absent: Collection[str]) -> Mapping[str, float]:
+    """The probability of each cause, and of ``sound``, given the signs.
+
+    Args:
+        shown: signs that showed within the last 30 days.
+        absent: signs that could have shown and did not.
+
+    Raises:
+        KeyError: a sign that the table does not know.
+    """
+    table = _table()
+    scores = {
+        cause: log(prior)
+        + OVERLAP
+        * (sum(log(table[sign][cause]) for sign in shown) + sum(log(1 - table[sign][cause]) for sign in absent))
+        for cause, prior in table["prior"].items()
+    }
+    top = max(scores.values())
+    weights = {cause: exp(score - top) for cause, score in scores.items()}
+    total = sum(weights.values())
+    return {cause: weight / total for cause, weight in weights.items()}
+
+
+def explain(shown: Collection[str], absent: Collection[str], *, drifting: bool = False) -> Explained:
+    """Name the cause, or the best two, or say that it is unclear.
+
+    Args:
+        shown: signs that showed within the last 30 days.
+        absent: signs that could have shown and did not.
+        drifting: whether a ledger has alarmed. Its evidence already speaks against a drive within its norms, so
+            that "sound" is left out of the comparison.
+    """
+    weights = dict(posterior(shown, absent))
+    if drifting:
+        del weights[_SOUND]
+    total = sum(weights.values())
+    ranked = sorted(((cause, weight / total) for cause, weight in weights.items()), key=lambda pair: -pair[1])
+    best, probability = ranked[0]
+    if best == _SOUND or probability < UNCLEAR:
+        return Explained(cause=Cause.UNCLEAR, probability=None, second=None)
+    second = next(cause for cause, _ in ranked[1:] if cause != _SOUND)
+    return Explained(
+        cause=Cause(best), probability=probability, second=None if probability >= NAMED else Cause(second)
+    )

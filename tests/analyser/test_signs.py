@@ -1,0 +1,66 @@
+import pytest
+
+from diskwatch.records import CallWord, Cause, Failing, Outcome
+from tests.analyser.lives import lived
+from tests.samples import DAY, NOON, NVME, attribute, missed, read
+
+
+def test_crc_errors_beyond_their_norm_and_quiet_media_are_the_link():
+    steps = lived(*(read(NOON + day * DAY, crc_errors=day // 10, pending_sectors=0) for day in range(120)))
+    call = steps[-1].call
+    assert call.cause is Cause.LINK
+    assert call.cause_probability >= 0.7
+    assert call.cause_second is None
+
+
+def test_a_first_bad_sector_alone_names_the_medium_with_a_runner_up():
+    call = lived(
+        read(NOON, pending_sectors=0, crc_errors=0), read(NOON + DAY, pending_sectors=8, crc_errors=0)
+    )[-1].call
+    assert (call.cause, call.cause_second) == (Cause.MEDIA, Cause.HEAD)
+    assert 0.35 <= call.cause_probability < 0.7
+
+
+def test_bad_sectors_and_reads_given_up_make_it_surer_that_it_is_the_medium():
+    def probability(given_up):
+        before = read(NOON, pending_sectors=0, reported_uncorrectable=0, crc_errors=0)
+        after = read(NOON + DAY, pending_sectors=8, reported_uncorrectable=given_up, crc_errors=0)
+        return lived(before, after)[-1].call.cause_probability
+
+    assert probability(2) > probability(0)
+
+
+def test_one_crc_error_within_its_norm_is_no_sign():
+    """Beside a bad sector it would speak for the link; within two a year it says nothing."""
+    calm = read(NOON, pending_sectors=0, crc_errors=0)
+    with_one = lived(calm, read(NOON + DAY, pending_sectors=8, crc_errors=1))[-1].call
+    without = lived(calm, read(NOON + DAY, pending_sectors=8, crc_errors=0))[-1].call
+    assert with_one.cause is without.cause
+
+
+@pytest.mark.parametrize(
+    ("signals", "cause"),
+    [
+        ({"temperature": 85, "warning_celsius": 80}, Cause.HEAT),
+        ({"available_spare": 3, "spare_threshold": 10}, Cause.SPARE),
+        ({"self_assessment": "failed", "critical_warning": 8}, Cause.WEAR_OUT),
+    ],
+)
+def test_a_fact_that_tells_its_cause_is_not_put_to_the_table(signals, cause):
+    (step,) = lived(read(NOON, NVME, media_errors=0, **signals))
+    assert (step.call.cause, step.call.cause_probability) == (cause, None)
+
+
+def test_a_failing_attribute_is_a_sign_on_the_first_reading_too():
+    (step,) = lived(read(NOON, crc_errors=0, attributes=(attribute(5, failing=Failing.NOW),)))
+    assert step.call.word is CallWord.RETIRE
+    assert step.call.cause is Cause.MEDIA
+
+
+def test_the_cause_stands_while_the_drive_is_not_read():
+    steps = lived(
+        read(NOON, pending_sectors=0),
+        read(NOON + DAY, pending_sectors=8),
+        missed(NOON + DAY + 60, Outcome.ASLEEP),
+    )
+    assert steps[-1].call == steps[-2].call
