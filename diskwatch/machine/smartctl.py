@@ -168,7 +168,7 @@ class Smartctl:
             self._ways.settled(found, told.type)
         silent = told.verdict.outcome is Outcome.NO_SMART or told.verdict.unproved
         if silent and self._ways.closed(found):
-            return replace(told, verdict=outcomes.through_no_type(ways.USB_TYPES))
+            return replace(told, verdict=outcomes.through_no_type(ways.usb_types(found)))
         return told
 
     def _others(self, found: Found, told: "_Told") -> tuple[str, ...]:

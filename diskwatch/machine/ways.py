@@ -18,6 +18,9 @@ USB_TYPES = ("sat", "scsi", "sntasmedia", "sntjmicron", "sntrealtek")
 more than another way to carry the same commands. The old ones that only their own adapters understand are left
 to smartctl's table."""
 
+_OWN = {"174c": "sntasmedia", "152d": "sntjmicron", "0bda": "sntrealtek"}
+"""USB vendor ids (memory) of the three makers whose adapters these types speak to."""
+
 _BEHIND_SAT = "probable ata device behind a sat layer"
 _OVER_SAT = ("megaraid,", "sssraid,", "cciss,")
 
@@ -47,8 +50,17 @@ def others(
     # Every SCSI device says who it is, an adapter too; one that says it as ATA or NVMe is the drive itself.
     itself = what.support is Support.OFF or (what.drive is not None and what.family is not Family.SCSI)
     if usb and unanswered and not itself:
-        return tuple(one for one in USB_TYPES if one != type_)
+        return tuple(one for one in usb_types(found) if one != type_)
     return ()
+
+
+def usb_types(found: Found) -> tuple[str, ...]:
+    """The types to try behind a USB adapter; of those for one maker's adapters only its own, where it is known.
+
+    They are commands that another maker's adapter may take for something else.
+    """
+    own = _OWN.get((found.adapter or "").partition(":")[0])
+    return tuple(one for one in USB_TYPES if own is None or one in {"sat", "scsi", own})
 
 
 def reaches(verdict: Verdict) -> bool:

@@ -16,7 +16,7 @@ READ = Verdict(outcome=Outcome.READ)
 
 
 def device(
-    type_: str | None = None, *, kind: Kind = Kind.USB, instance: str = "1", adapter: str | None = "0bda:9210"
+    type_: str | None = None, *, kind: Kind = Kind.USB, instance: str = "1", adapter: str | None = "1f75:0621"
 ) -> Found:
     return Found(
         address=Address(node="/dev/sdx", type=type_),
@@ -54,6 +54,14 @@ def test_a_scsi_answer_of_the_vendor_ata_is_an_ata_drives_too():
 def test_behind_an_unknown_adapter_every_type_is_tried_but_the_one_just_asked_with():
     assert next_types(device(kind=Kind.SAS), None, UNKNOWN, 1) == USB_TYPES
     assert next_types(device("sat"), "sat", "noise") == USB_TYPES[1:]
+
+
+@pytest.mark.parametrize(
+    ("adapter", "own"),
+    [("174c:2362:0100", "sntasmedia"), ("152d:0583", "sntjmicron"), ("0bda:9210 00AB", "sntrealtek")],
+)
+def test_an_adapter_whose_maker_is_known_is_sent_no_command_of_another_maker(adapter, own):
+    assert next_types(device(adapter=adapter), None, UNKNOWN, 1) == ("sat", "scsi", own)
 
 
 def test_silence_of_a_usb_drive_is_no_proof_that_its_type_is_right():
