@@ -5,11 +5,13 @@ Seeded; the laws stand beside each. Nothing here was fitted to real drives.
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
-from math import exp, log, sqrt
+from math import exp, expm1, log, sqrt
 from random import Random
 
-from diskwatch.trends import wear as wears
+from diskwatch.trends import episodes, wear as wears
 from diskwatch.trends.interval import Interval
+from diskwatch.trends.norms import NORMS
+from diskwatch.trends.waiting import after_alarm
 
 USERS = {
     # name: (jumps of the level of use a year, standard deviation of the logarithm of a jump, share)
@@ -151,3 +153,64 @@ def told_by(make: Callable[[Random], Told | None], *, seed: int, drives: int) ->
     """The forecasts of many drives, those left out about which there was nothing to say."""
     chance = Random(seed)  # noqa: S311 - a simulation, seeded so that it repeats itself
     return [told for _ in range(drives) if (told := make(chance)) is not None]
+
+
+GROWTHS = {"steady": 0.0, "doubling in 90 days": 90.0, "in 60": 60.0, "in 30": 30.0, "in 15": 15.0}
+"""Days in which the rate of episodes doubles; 0 where it does not."""
+
+
+def clustered(
+    chance: Random, growth: str, *, before: int, more: int = 5, later: float = 0.0, absorbed: float = 7.0
+) -> Told:
+    """A drive with episodes of which some came, and the forecast of when some more will have come.
+
+    It begins with one in 12 to 90 open days, and every episode absorbs some days after it.
+
+    Args:
+        chance: where the scatter comes from.
+        growth: of `GROWTHS`.
+        before: episodes that came.
+        more: that are to come.
+        later: how long after the last of them the forecast is made, in mean gaps; left out where the next came
+            before.
+        absorbed: days after an episode on which no other opens.
+    """
+    rate = exp(chance.uniform(log(1 / 90), log(1 / 12)))
+    doubling = GROWTHS[growth]
+    pace = log(2) / doubling if doubling else 0.0
+    opened, now, times = 0.0, 0.0, [0.0]
+    while len(times) < before + more:
+        passed, level = chance.expovariate(1), rate * exp(pace * opened)
+        wait = log(1 + pace * passed / level) / pace if pace else passed / level
+        opened, now = opened + wait, now + wait + absorbed
+        times.append(now)
+    seen = times[before - 1]
+    asked = min(seen + later * seen / (before - 1), times[before] - 1e-6)
+    interval = after_alarm(more, episodes=times[:before], now=asked, absorbed=absorbed)
+    return Told(interval=interval, came=times[-1] - asked, kind=growth)
+
+
+def alarmed(chance: Random, times_norm: float, *, doubling: float = 0.0, more: int = 5) -> Told | None:
+    """A drive whose media episodes come so many times as often as the norm, asked on the day of its alarm.
+
+    None where its alarm came before there were episodes enough to say anything.
+    """
+    norm = NORMS[0]
+    stream = episodes.begin(0)
+    days: list[float] = []
+    asked, day = None, 0
+    while asked is None or len([one for one in days if one > asked]) < more:
+        day += 1
+        stream = episodes.next_day(stream, day=day, exposure=1.0, norm_per_day=norm.per_day)
+        level = times_norm * norm.per_day * (2 ** (day / doubling) if doubling else 1.0)
+        if chance.random() < -expm1(-level):
+            count = stream.episodes
+            stream = episodes.rise(stream, norm_per_day=norm.per_day)
+            if stream.episodes > count:
+                days.append(float(day))
+        if asked is None and stream.ledger.evidence >= norm.threshold:
+            asked = float(day)
+            interval = after_alarm(more, episodes=days, now=asked)
+            if not interval.known:
+                return None
+    return Told(interval=interval, came=day - asked, kind="at the alarm")
