@@ -14,6 +14,8 @@ HUNG = 30.0
 """Seconds without a single answer that count as hung: what Linux gives one command of a disk before it resets
 the link (from memory; ``device/timeout`` of a SCSI disk and the option ``nvme_core.io_timeout`` hold it)."""
 
+_EARLY = 0.5  # a look that is due every ten seconds may come that much before its time
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Standing:
@@ -42,7 +44,7 @@ class Standing:
     @property
     def hung(self) -> bool:
         """Whether it has been long enough to say so."""
-        return self.seconds >= HUNG
+        return self.seconds >= HUNG - _EARLY
 
 
 def looked(before: Standing | None, now: Counted, at: float) -> Standing:

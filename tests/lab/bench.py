@@ -98,6 +98,6 @@ class Bench:
         return {one.known.drive.identity.serial or one.known.place.device: one for one in done}
 
     def book(self) -> list[Entry]:
-        """The day book, newest first."""
+        """The day book."""
         with Past.open(self.folder) as past:
             return list(past.day_book())

@@ -90,7 +90,7 @@ class Watching:
             "--settings",
             str(settings),
         ]
-        self.process = subprocess.Popen(command, env=dict(os.environ))
+        self.process = subprocess.Popen(command, env=dict(os.environ), stdout=subprocess.DEVNULL)
 
     def begun(self) -> bool:
         """Whether there is a history yet."""
@@ -100,7 +100,7 @@ class Watching:
             return False
 
     def told(self, kind: str = "trouble") -> list[str]:
-        """The day book, newest first."""
+        """Lines of the day book of one kind, newest last."""
         with Past.open(self.folder) as past:
             return [f"{entry.drive}: {entry.text}" for entry in past.day_book() if entry.kind == kind]
 
@@ -141,7 +141,7 @@ def hang(watching: Watching, name: str, number: int) -> None:
     load = subprocess.Popen(["sh", "-c", work])
     said, over_ = f"{number}: Requests to it have not moved", f"{number}: Requests to it move again"
     took = wait(f"{name}: told", lambda: any(one.startswith(said) for one in watching.told()), 90)
-    say(f"       {name}: told after {took:.0f} s: {watching.told()[0]}")
+    say(f"       {name}: told after {took:.0f} s: {watching.told()[-1]}")
     check(took <= 60, f"{name}: a disk that hangs is told within a minute")
     watching.smartctl.started()
     wait("others are asked", lambda: watching.last_pass("LABSSD0001") > begun + 45, 60)
@@ -150,7 +150,7 @@ def hang(watching: Watching, name: str, number: int) -> None:
     check(not asked, f"{name}: not asked while it hangs ({len(asked)} processes)")
     lab("fast", name)
     took = wait(f"{name}: over", lambda: any(one.startswith(over_) for one in watching.told()), 90)
-    say(f"       {name}: over told after {took:.0f} s: {watching.told()[0]}")
+    say(f"       {name}: over told after {took:.0f} s: {watching.told()[-1]}")
     load.terminate()
     for process in reads:
         process.wait()
