@@ -14,6 +14,8 @@ from typing import Self, TypeVar
 from diskwatch.errors import HistoryError
 from diskwatch.history import questions
 from diskwatch.history.bays import drive_lines
+from diskwatch.history.exchange import Line
+from diskwatch.history.leaving import lines_of
 from diskwatch.history.live import Live, read_live
 from diskwatch.history.lock import watcher
 from diskwatch.history.mishaps import told, unreadable
@@ -203,6 +205,10 @@ class Past:
         """An ATA drive's attribute table as last read; empty for other drives."""
         found = self.last_reading(drive)
         return () if found is None else found.attributes
+
+    def lines(self, drive: int) -> tuple[Line, ...]:
+        """All of a drive's past that can travel, see `diskwatch.history.exchange`."""
+        return self._ask(lambda connection: tuple(lines_of(connection, drive)))
 
     def state(self, drive: int) -> str | None:
         """The analyser's state of a drive as last recorded, or None."""

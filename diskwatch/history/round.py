@@ -7,6 +7,7 @@ from diskwatch.errors import HistoryError
 from diskwatch.history import packing, rows
 from diskwatch.records import (
     Call,
+    Drive,
     DriveRound,
     Entry,
     Finding,
@@ -19,8 +20,11 @@ from diskwatch.records import (
 )
 from diskwatch.units import DAY, day_number
 
-_WEEK = 7 * DAY
-_NOT_THERE = "it was not in this reading"
+WEEK = 7 * DAY
+"""The last state of every such stretch since 1970 is kept, seconds."""
+
+NOT_THERE = "it was not in this reading"
+"""Why a signal that was read before is not known: no other value is stored with these words."""
 
 
 def write_round(connection: sqlite3.Connection, round_: Round) -> None:
@@ -42,6 +46,18 @@ def write_entries(connection: sqlite3.Connection, entries: Iterable[Entry]) -> N
         "INSERT INTO day_book (at, drive, kind, text, data) VALUES (?, ?, ?, ?, ?)",
         [rows.entry_row(entry) for entry in entries],
     )
+
+
+def admit(connection: sqlite3.Connection, drive: Drive, place: Place, at: int) -> KnownDrive:
+    """Take up a drive that was never seen before, first seen at a time in UTC seconds since 1970."""
+    (number,) = connection.execute(
+        "INSERT INTO drive (wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
+        " device, bay, lives_here, first_seen) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)"
+        " RETURNING number",
+        (*rows.drive_row(drive, place), at),
+    ).fetchone()
+    write_place(connection, number, place, at)
+    return KnownDrive(number=number, drive=drive, place=place, first_seen=at)
 
 
 def write_place(connection: sqlite3.Connection, number: int, place: Place, at: int) -> None:
@@ -71,18 +87,34 @@ def file_past_days(connection: sqlite3.Connection, today: int) -> None:
 
 def _write_part(connection: sqlite3.Connection, part: DriveRound, at: int) -> None:
     number = part.known.number
-    explanation = _sentence(connection, part.pass_.explanation)
+    explanation = sentence_number(connection, part.pass_.explanation)
     _write_drive(connection, part.known, part.pass_, explanation)
     write_place(connection, number, part.known.place, at)
     _write_pass(connection, number, part.pass_, explanation)
     if part.pass_.reading is not None:
         _write_reading(connection, number, part.pass_.at, part.pass_.reading)
+    if part.state is not None:
+        _keep_copy(connection, number, part.pass_.at)
+    write_judgement(connection, part, at)
+
+
+def write_judgement(connection: sqlite3.Connection, part: DriveRound, at: int) -> None:
+    """Write what is thought of a drive, without the pass that led to it.
+
+    Args:
+        connection: within a transaction.
+        part: whose findings, evidence, call and state to write.
+        at: when it was judged, UTC seconds since 1970.
+
+    Raises:
+        sqlite3.Error: it could not be written; the caller undoes the transaction.
+    """
+    number = part.known.number
     _write_findings(connection, number, part.findings, at)
     _write_evidence(connection, number, part.evidence, at)
     if part.call is not None:
         _write_call(connection, number, part.call)
     if part.state is not None:
-        _keep_copy(connection, number, part.pass_.at)
         _write_packed(connection, "analyser_state", number, part.pass_.at, packing.packed(part.state))
 
 
@@ -91,11 +123,12 @@ def _keep_copy(connection: sqlite3.Connection, number: int, at: int) -> None:
     connection.execute(
         "INSERT OR IGNORE INTO kept_state (drive, at, packed)"
         " SELECT drive, at, packed FROM analyser_state WHERE drive = ? AND at / ? <> ? / ?",
-        (number, _WEEK, at, _WEEK),
+        (number, WEEK, at, WEEK),
     )
 
 
-def _sentence(connection: sqlite3.Connection, words: str | None) -> int | None:
+def sentence_number(connection: sqlite3.Connection, words: str | None) -> int | None:
+    """The number of an explanation, which is kept once however often it repeats; None for none."""
     if words is None:
         return None
     kept = rows.text(words)
@@ -165,7 +198,7 @@ def _write_reading(connection: sqlite3.Connection, number: int, at: int, reading
     for signal, (series, *_, since, known) in before.items():
         # What is no longer read is no longer known; since is None for what only ledgers follow.
         if signal not in read and since is not None and known[0] is not None:
-            changed.append((at, series, None, _NOT_THERE))
+            changed.append((at, series, None, NOT_THERE))
     connection.executemany(
         "INSERT OR REPLACE INTO fresh (at, series, value, reason) VALUES (?, ?, ?, ?)", changed
     )

@@ -9,12 +9,14 @@ from pathlib import Path
 from typing import Self
 
 from diskwatch.history import packing, rows
+from diskwatch.history.arriving import Arrived
 from diskwatch.history.bays import standing_calls
 from diskwatch.history.library import Database
 from diskwatch.history.lock import WatchLock
 from diskwatch.history.mishaps import taken_away, told, unreadable
+from diskwatch.history.moving import Judge, Part, arrive
 from diskwatch.history.opening import BUSY_MS, refuse_foreign
-from diskwatch.history.round import write_entries, write_place, write_round
+from diskwatch.history.round import admit, write_entries, write_round
 from diskwatch.history.schema import bring_up_to_date
 from diskwatch.history.thinning import thin
 from diskwatch.history.traffic import rollups, uncondensed_day, write_class_days, write_spans
@@ -104,14 +106,7 @@ class History:
             at: when it was first seen, UTC seconds since 1970.
         """
         with self._writing() as connection:
-            (number,) = connection.execute(
-                "INSERT INTO drive (wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
-                " device, bay, lives_here, first_seen) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)"
-                " RETURNING number",
-                (*rows.drive_row(drive, place), at),
-            ).fetchone()
-            write_place(connection, number, place, at)
-        return KnownDrive(number=number, drive=drive, place=place, first_seen=at)
+            return admit(connection, drive, place, at)
 
     def states(self) -> dict[int, str]:
         """The analyser's state of each drive as last recorded, by the drive's number."""
@@ -182,6 +177,19 @@ class History:
         """
         with self._writing() as connection:
             return thin(connection, now)
+
+    def arrive(self, parts: Sequence[Part], judge: Judge) -> tuple[Arrived, ...]:
+        """Take in pasts from elsewhere, all of them or none.
+
+        Args:
+            parts: one a drive.
+            judge: says what is thought of a drive now that its past is another; None leaves all as it was.
+
+        Raises:
+            HistoryError: it could not be stored; nothing of it was.
+        """
+        with self._writing() as connection:
+            return tuple(arrive(connection, part, judge) for part in parts)
 
     def checked_at(self) -> int | None:
         """When the file was last looked through for damage, UTC seconds since 1970; None for never."""

@@ -1,0 +1,109 @@
+"""A drive's past moves in: its rows are taken in, then it is judged anew, within one transaction."""
+
+import sqlite3
+from collections.abc import Callable, Iterator, Sequence
+from dataclasses import dataclass
+
+from diskwatch.history import packing
+from diskwatch.history.arriving import Arrived, Described, take_in
+from diskwatch.history.exchange import Line
+from diskwatch.history.readings import passes_with_readings
+from diskwatch.history.round import admit, write_judgement
+from diskwatch.records import DriveRound, KnownDrive, Pass
+
+_Dated = tuple[int, str]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Part:
+    """One drive of a file.
+
+    Attributes:
+        known: the drive that it is here; None for a new one.
+        described: how the file describes it.
+        lines: its rows.
+    """
+
+    known: KnownDrive | None
+    described: Described
+    lines: Sequence[Line]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Case:
+    """What there is to judge a drive by, after its past has moved in.
+
+    Attributes:
+        known: the drive.
+        copies: dated states that stood here before, oldest first.
+        arrived: what came with the file.
+        passes: the drive's passes behind a time (None: all), oldest first, with their readings.
+    """
+
+    known: KnownDrive
+    copies: tuple[_Dated, ...]
+    arrived: Arrived
+    passes: Callable[[int | None], Iterator[Pass]]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Judged:
+    """What is thought of the drive now.
+
+    Attributes:
+        part: findings, evidence, call and state; its pass is the last one.
+        since: all dated states behind this time are no longer right; None for none of them.
+        copies: those that take their place.
+    """
+
+    part: DriveRound
+    since: int | None
+    copies: tuple[_Dated, ...]
+
+
+Judge = Callable[[Case], Judged | None]
+
+
+def arrive(connection: sqlite3.Connection, part: Part, judge: Judge) -> Arrived:
+    """Take in one drive's past and judge it.
+
+    Args:
+        connection: within a transaction.
+        part: the drive and its rows.
+        judge: says what is thought of it now; None leaves all as it is.
+
+    Raises:
+        sqlite3.Error: it could not be written; the caller undoes the transaction.
+    """
+    there = part.described
+    known = part.known or admit(connection, there.drive, there.place, there.first_seen)
+    copies = _copies(connection, known.number)
+    arrived = take_in(connection, known.number, part.lines)
+    judged = judge(
+        Case(
+            known=known,
+            copies=copies,
+            arrived=arrived,
+            passes=lambda after: passes_with_readings(connection, known.number, after),
+        )
+    )
+    if judged is not None:
+        if judged.since is not None:
+            connection.execute(
+                "DELETE FROM kept_state WHERE drive = ? AND at > ?", (known.number, judged.since)
+            )
+        connection.executemany(
+            "INSERT OR REPLACE INTO kept_state (drive, at, packed) VALUES (?, ?, ?)",
+            [(known.number, at, packing.packed(state)) for at, state in judged.copies],
+        )
+        write_judgement(connection, judged.part, judged.part.pass_.at)
+    return arrived
+
+
+def _copies(connection: sqlite3.Connection, drive: int) -> tuple[_Dated, ...]:
+    found = connection.execute(
+        "SELECT at, packed FROM kept_state WHERE drive = ?1 UNION SELECT at, packed FROM analyser_state"
+        " WHERE drive = ?1 ORDER BY at",
+        (drive,),
+    ).fetchall()
+    return tuple((at, packing.unpacked(packed)) for at, packed in found)

@@ -1,0 +1,130 @@
+"""Pasts of drives that come from another machine: recognised, taken in, judged anew by the same analyser."""
+
+from collections.abc import Sequence
+from contextlib import suppress
+from dataclasses import dataclass, replace
+
+from diskwatch import analyser
+from diskwatch.errors import HistoryTooNew
+from diskwatch.history.arriving import Described, described
+from diskwatch.history.exchange import Line
+from diskwatch.history.moving import Case, Judged, Part
+from diskwatch.history.round import WEEK
+from diskwatch.history.writer import History
+from diskwatch.machine import identity
+from diskwatch.records import DriveRound, Entry, Outcome, Pass
+from diskwatch.units import plain, say_count
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Told:
+    """What came of it, for a person.
+
+    Attributes:
+        done: one sentence a drive.
+        wrong: what is wrong with rows that were left out.
+    """
+
+    done: tuple[str, ...]
+    wrong: tuple[str, ...]
+
+
+def take_in(history: History, lines: Sequence[Line], at: int) -> Told:
+    """Take in all drives of a file, wholly or not at all.
+
+    Args:
+        history: where to.
+        lines: the file's rows.
+        at: now, UTC seconds since 1970.
+
+    Raises:
+        HistoryError: nothing of it could be stored.
+    """
+    by_drive: dict[int, list[Line]] = {}
+    for line in lines:
+        by_drive.setdefault(line.drive, []).append(line)
+    free = list(history.known())
+    parts: list[Part] = []
+    wrong: list[str] = []
+    for number, rows in by_drive.items():
+        found, why = _described(rows)
+        wrong += why
+        if found is None:
+            wrong.append(
+                f"all {say_count(len(rows))} rows of drive {number} are left out: no row says who it is"
+            )
+            continue
+        known = identity.recognise(found.drive.identity, free)
+        free = [one for one in free if one is not known]
+        rest = [line for line in rows if line.record != "drive"]
+        parts.append(Part(known=known, described=found, lines=rest))
+    arrived = history.arrive(parts, judged)
+    done = tuple(_sentence(part, len(one.wrong)) for part, one in zip(parts, arrived, strict=True))
+    if done:
+        history.note(*(Entry(at=at, drive=None, kind="watch", text=sentence) for sentence in done))
+    return Told(done=done, wrong=(*wrong, *(why for one in arrived for why in one.wrong)))
+
+
+def _described(rows: Sequence[Line]) -> tuple[Described | None, list[str]]:
+    wrong: list[str] = []
+    for line in rows:
+        if line.record == "drive":
+            try:
+                return described(line), wrong
+            except ValueError as error:
+                wrong.append(f"row {line.number} is left out: {plain(str(error))}")
+    return None, wrong
+
+
+def _sentence(part: Part, left_out: int) -> str:
+    who = part.described.drive.identity
+    name = plain(who.serial or who.wwn or who.model or part.described.place.device)
+    taken = say_count(len(part.lines) - left_out)
+    what = "a drive that is new here" if part.known is None else "added to what is known of it"
+    return f"The past of {name} was taken in: {taken} rows, {what}."
+
+
+def judged(case: Case) -> Judged | None:
+    """What is thought of a drive whose past has become another.
+
+    The state is worked out from the newest dated one that no pass of the other side reaches back behind, so
+    that what was exact stays exact.
+    """
+    if case.arrived.new_from is None:
+        return None
+    states = [
+        *(one for one in case.copies if one[0] < case.arrived.new_from),
+        *(
+            one
+            for one in case.arrived.states
+            if case.arrived.own_from is None or one[0] < case.arrived.own_from
+        ),
+    ]
+    for at, text in sorted(states, reverse=True):
+        # One that a newer version wrote, or that is no state at all, is no beginning.
+        with suppress(ValueError, HistoryTooNew):
+            return _from(case, at, analyser.load(text))
+    return _from(case, None, analyser.start())
+
+
+def _from(case: Case, at: int | None, state: analyser.DriveState) -> Judged | None:
+    copies: list[tuple[int, str]] = []
+    outcome = state.outcome
+    last = at
+    for told in case.passes(at):
+        if last is not None and last // WEEK != told.at // WEEK:
+            copies.append((last, analyser.dump(state)))
+        state = analyser.advance(state, replace(told, drive=case.known.drive)).state
+        last, outcome = told.at, told.outcome
+    if last is None:
+        return None
+    step = analyser.Step(state=state, happened=())
+    part = DriveRound(
+        known=case.known,
+        pass_=Pass(at=last, outcome=outcome or Outcome.READ),
+        state=analyser.dump(state),
+        findings=step.findings,
+        evidence=step.evidence,
+        call=step.call,
+    )
+    return Judged(part=part, since=at, copies=tuple(copies))

@@ -1,0 +1,65 @@
+import pytest
+from hypothesis import given, strategies as st
+
+from diskwatch.history.arriving import described, take_in
+from diskwatch.history.exchange import Line
+from diskwatch.history.leaving import lines_of
+from diskwatch.history.writer import History
+from tests.history.examples import NOON, a_drive, a_place, full_round
+
+
+def _lines():
+    with History.in_memory() as source:
+        known = source.admit(a_drive(), a_place(), NOON)
+        for number in range(3):
+            source.record(full_round(known, NOON + number * 60, number))
+        return tuple(lines_of(source._db.conn, 1))
+
+
+LINES = _lines()
+
+
+def test_a_drive_comes_out_as_it_went_in():
+    found = described(LINES[0])
+    assert (found.drive, found.place.device, found.first_seen) == (a_drive(), "/dev/sda", NOON)
+
+
+@pytest.mark.parametrize("change", [{"kind": "wonder"}, {"serial": 5}, {"capacity_bytes": "big"}])
+def test_a_drive_that_cannot_be_right_is_refused(change):
+    with pytest.raises(ValueError, match=r"."):
+        described(Line(record="drive", drive=1, at=NOON, fields={**LINES[0].fields, **change}))
+    lacking = {key: value for key, value in LINES[0].fields.items() if key not in change}
+    with pytest.raises(ValueError, match="lacks"):
+        described(Line(record="drive", drive=1, at=NOON, fields=lacking))
+
+
+def test_the_first_passes_of_either_side_are_told(history):
+    history.admit(a_drive(), a_place(), NOON)
+    with history._writing() as connection:
+        arrived = take_in(connection, 1, LINES[1:])
+        again = take_in(connection, 1, LINES[1:])
+    assert (arrived.wrong, arrived.new_from, arrived.own_from) == ((), NOON, None)
+    assert (again.wrong, again.new_from, again.own_from) == ((), None, None)
+    assert arrived.states == ((NOON + 120, "state 2"),)
+
+
+json_values: st.SearchStrategy[object] = (
+    st.none() | st.booleans() | st.integers() | st.floats() | st.text(max_size=5) | st.just([]) | st.just({})
+)
+
+
+@given(st.sampled_from(range(1, len(LINES))), st.data())
+def test_whatever_stands_in_a_row_it_is_taken_in_or_named_and_nothing_else_happens(which, data):
+    line = LINES[which]
+    key = data.draw(st.sampled_from(sorted(line.fields)))
+    spoilt = Line(
+        record=line.record, drive=1, at=line.at, fields={**line.fields, key: data.draw(json_values)}, number=7
+    )
+    with History.in_memory() as history:
+        history.admit(a_drive(), a_place(), NOON)
+        with history._writing() as connection:
+            wrong = take_in(connection, 1, [spoilt]).wrong
+        assert all(one.startswith("row 7 is left out: ") for one in wrong)
+        assert history._db.execute("PRAGMA integrity_check").fetchone() == ("ok",)
+        # What was taken in can be told again.
+        assert tuple(lines_of(history._db.conn, 1))

@@ -1,0 +1,36 @@
+from collections import Counter
+
+from diskwatch.history.leaving import lines_of
+from diskwatch.records import ClassDay, Direction
+from tests.history.examples import NOON, a_drive, a_place, full_round
+
+
+def test_every_kind_of_row_of_a_drive_leaves_and_none_of_another(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    other = history.admit(a_drive("INVENTED-2", "/dev/sdb"), a_place("/dev/sdb"), NOON)
+    week = 7 * 86_400
+    for number in range(3):
+        history.record(full_round(known, NOON + number * week, number))
+        history.record(full_round(other, NOON + number * week, number))
+    one = ClassDay(load_class=7, direction=Direction.READ, rollups=3, operations=9, histogram={5: 3})
+    history.condense(NOON // 86_400, {1: [one], 2: [one]})
+    connection = history._db.conn
+    connection.execute("INSERT INTO owner_fact VALUES (1, 'label', 'attic', ?)", (NOON,))
+    connection.execute("INSERT INTO pass_day VALUES (1, 20000, 'read', 48, 1, 2)")
+    found = Counter(line.record for line in lines_of(connection, 1))
+    assert found == {
+        "drive": 1, "owner": 1, "place": 1, "passes": 1, "pass": 3, "value": 9, "beside": 1, "evidence": 6,
+        "load": 1, "finding": 4, "call": 3, "event": 3, "copy": 2, "state": 1,
+    }  # fmt: skip  # a table reads better in rows
+    assert {line.drive for line in lines_of(connection, 1)} == {1}
+
+
+def test_numbers_beyond_any_column_leave_as_numbers(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    history.record(full_round(known, NOON, 5))
+    values = {
+        line.fields["signal"]: line.fields["value"]
+        for line in lines_of(history._db.conn, 1)
+        if line.record == "value"
+    }
+    assert values == {"pending-sectors": 5, "data-written": 2**70 + 5, "self-assessment": "word 5"}
