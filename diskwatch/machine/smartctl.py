@@ -131,8 +131,8 @@ class Smartctl:
             completed: counts its requests, to tell a drive that sleeps from one that does not answer.
         """
         begun = time.monotonic()
-        before = completed()
         try:
+            before = completed()
             told = self._asked(found)
             verdict = self._rest.judged(found, told.verdict, before=before, after=completed(), at=self._now())
             answer = _pass(replace(told, verdict=verdict), found)
@@ -180,7 +180,7 @@ class Smartctl:
 
     def _told(self, found: Found, type_: str | None, timeout: float, logs: tuple[str, ...] = ()) -> "_Told":
         """Ask once, with one type, and judge the answer."""
-        answer = self._answer(found.address.node, type_, timeout, logs)
+        answer = self._answer(found, type_, timeout, logs)
         verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
         if verdict is not None:
             return _Told(type_, verdict)
@@ -200,12 +200,13 @@ class Smartctl:
             what = replace(what, reading=reading)
         return _Told(type_, verdict, what, said, document, answer.status)
 
-    def _answer(self, node: str, type_: str | None, timeout: float, logs: tuple[str, ...]) -> Answer:
+    def _answer(self, found: Found, type_: str | None, timeout: float, logs: tuple[str, ...]) -> Answer:
         """Run smartctl in the best way that it knows; learn where it knows less than was thought."""
         knows = self._knows
         while True:
-            owner = f"{node} {type_ or ''}"
-            answer = self._door.run(self._argv(node, type_, logs, knows), timeout=timeout, owner=owner)
+            argv = self._argv(found.address.node, type_, logs, knows)
+            # By drive, whatever the type: where one question is stuck in the kernel, the next would be as well.
+            answer = self._door.run(argv, timeout=timeout, owner=found.place.device)
             complaint = _complaint(answer)
             lesser = _lesser(knows, complaint) if complaint is not None else None
             if complaint is None:

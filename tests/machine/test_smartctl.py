@@ -27,11 +27,13 @@ class Told(Door):
         super().__init__()
         self.answers = list(answers)
         self.asked: list[list[str]] = []
+        self.owners: set[str] = set()
 
     def run(self, argv: Any, *, timeout: float, owner: str = "") -> Answer:
         assert 0 < timeout <= 60
         assert owner.startswith("/dev/") or "--scan" in argv
         self.asked.append(list(argv))
+        self.owners.add(owner)
         answer = self.answers.pop(0) if len(self.answers) > 1 else self.answers[0]
         if isinstance(answer, Exception):
             raise answer
@@ -205,6 +207,21 @@ def test_a_log_that_smartctl_does_not_know_is_asked_for_no_more_of_any_drive():
     assert tool.ask(asked("/dev/sdy")).outcome is Outcome.READ
     assert ["devstat" in argv for argv in door.asked] == [False, True, False, False, False]
     assert all("--json=o" in argv for argv in door.asked)
+
+
+def test_counters_that_cannot_be_read_are_a_pass_like_any_other():
+    def broken() -> int:
+        raise OSError("gone")
+
+    tool, _ = smartctl(said(HDD.read_bytes()))
+    assert tool.ask(asked(), completed=broken).outcome is Outcome.GARBLED
+
+
+def test_all_questions_to_one_drive_have_one_owner_whatever_their_type():
+    tool, door = smartctl(said(UNKNOWN_BRIDGE, 1))
+    tool.ask(asked(type_=None, usb=True))
+    assert len(door.asked) == 6
+    assert door.owners == {"/dev/sdx"}
 
 
 def test_a_complaint_that_never_ends_is_asked_three_times_and_teaches_nothing():
