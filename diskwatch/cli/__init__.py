@@ -25,6 +25,8 @@ COMMANDS = {
     "replay": "recorded readings through the same analyser: what it would have said, and when",
     "rehearse": "an invented machine whose drives live through years in seconds, judged like a real one",
     "preflight": "what is missing on this machine for a full watch, each with its cure",
+    "export-history": "the past of drives, to a file that can travel",
+    "import-history": "take in the past of drives from such a file",
 }
 """Every command with what it does; its module in this room bears its name."""
 
@@ -45,7 +47,7 @@ def main(argv: Sequence[str] | None = None) -> int:
     words = list(sys.argv[1:] if argv is None else argv)
     try:
         name, words = _chosen(words)
-        module = importlib.import_module(f"diskwatch.cli.{name}")
+        module = importlib.import_module(f"diskwatch.cli.{name.replace('-', '_')}")
         parser = _parser(name, module.__doc__ or "")
         module.options(parser)
         return int(module.run(parser.parse_args(words)))
@@ -101,7 +103,7 @@ def _parser(name: str, about: str) -> argparse.ArgumentParser:
 
 
 def _listed() -> str:
-    lines = [f"  {name:<11} {about}" for name, about in COMMANDS.items()]
+    lines = [f"  {name:<14} {about}" for name, about in COMMANDS.items()]
     return "\n".join(["commands (each has its own --help):", *lines])
 
 

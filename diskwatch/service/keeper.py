@@ -147,6 +147,21 @@ class Keeper:
         """
         return None if self._history is None else question(self._history)
 
+    def change(self, deed: Callable[[History], _Answer]) -> _Answer:
+        """Let the owner change the past: what was remembered of it is void afterwards.
+
+        Raises:
+            HistoryError: there is no history in reach, or it cannot be written.
+        """
+        self.try_again()
+        if self._history is None or self._waiting:
+            raise HistoryError(f"the history cannot be written now: {self._trouble}")
+        answer = deed(self._history)
+        self._known = {one.number: one for one in self._history.known()}
+        self._states = dict(self._history.states())
+        self.epoch += 1
+        return answer
+
     def let_go(self, trouble: str) -> None:
         """Let go of the file, so that it can be mended; meanwhile all waits, and this is the trouble."""
         self._trouble = trouble

@@ -3,14 +3,19 @@
 import signal
 import threading
 import time
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from pathlib import Path
+from typing import Any
 
+from diskwatch.history.exchange import read
 from diskwatch.history.live import LiveWriter
 from diskwatch.machine import choice
 from diskwatch.machine.protocol import Machine
 from diskwatch.records import DriveRound, Entry, IoSpan
+from diskwatch.service import requests
+from diskwatch.service.arrival import take_in
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.requests import Answer
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.schedule import Schedule
 from diskwatch.service.traffic import JUMP, Traffic
@@ -47,6 +52,7 @@ class Watch:
         """
         self._machine = machine
         self._settings = settings
+        self._folder = folder
         self._told = told
         self._lock = threading.Lock()
         self._keeper = Keeper(folder)
@@ -64,6 +70,7 @@ class Watch:
         self._committed = time.monotonic()
         self._rounding = threading.Lock()
         self._stop = threading.Event()
+        self._asked = threading.Thread()
         self._upkeep = Upkeep(
             self._keeper,
             folder,
@@ -93,6 +100,8 @@ class Watch:
         schedule = Schedule(self._mishap)
         schedule.every("round", self._settings.smart.every, self._round, place="rounds")
         schedule.every("traffic", self._settings.io.every, self._count)
+        if self._settings.io.every > requests.EVERY:
+            schedule.every("requests", requests.EVERY, self._look_for_requests)
         schedule.every("upkeep", EVERY, self._upkeep.turn, place="upkeep")
         self._note("watch", "Watching began.")
         schedule.start()
@@ -124,6 +133,8 @@ class Watch:
             self._rounds.run(told=self._told, lock=self._lock)
 
     def _count(self) -> None:
+        # Here, since every job of its own would wake the machine once more.
+        self._look_for_requests()
         look = self._traffic.look(dict(self._rounds.blocks))
         # First of all what needs no disk: the one that hangs may be the one that the history lies on.
         self._live.write(look.spans, now(), self._troubles())
@@ -133,6 +144,22 @@ class Watch:
                 self._keeper.note(*look.entries)
         if time.monotonic() - self._committed >= self._settings.history.commit:
             self._commit_traffic()
+
+    def _look_for_requests(self) -> None:
+        """Take up what the owner asks for, in a thread of its own: counting must not wait for it."""
+        if requests.waiting(self._folder) and not self._asked.is_alive():
+            self._asked = threading.Thread(target=self._take_up, name="takes up requests", daemon=True)
+            self._asked.start()
+
+    def _take_up(self) -> None:
+        requests.take_up(self._folder, {"import-history": self._import})
+
+    def _import(self, words: Mapping[str, Any]) -> Answer:
+        lines, _ = read(words["text"])
+        # Between two rounds: none may go on from a state that has become another.
+        with self._rounding, self._lock:
+            told = self._keeper.change(lambda history: take_in(history, lines, now()))
+        return Answer(done=told.done, wrong=told.wrong)
 
     def _troubles(self) -> tuple[str, ...]:
         kept = self._keeper.trouble

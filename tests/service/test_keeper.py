@@ -4,7 +4,7 @@ import subprocess
 
 import pytest
 
-from diskwatch.errors import HistoryHeld, HistoryTooNew
+from diskwatch.errors import HistoryError, HistoryHeld, HistoryTooNew
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
 from diskwatch.records import DriveRound, Entry, Round
@@ -171,3 +171,21 @@ def test_a_read_only_folder_is_still_judged_by_its_past(tmp_path):
         keeper.close()
     finally:
         subprocess.run(["umount", "-l", str(state)], check=False)
+
+
+def test_after_a_change_by_the_owner_what_was_remembered_is_void(tmp_path):
+    keeper = Keeper(tmp_path)
+    keeper.record(a_round(keeper))
+    before = keeper.epoch
+    assert keeper.change(lambda history: history.admit(HDD, HERE, NOON).number) == 2
+    assert (len(keeper.known), keeper.epoch) == (2, before + 1)
+    keeper.close()
+
+
+def test_a_change_is_refused_where_the_history_cannot_be_written(tmp_path):
+    blocked = tmp_path / "state"
+    blocked.write_text("in the way")
+    keeper = Keeper(blocked)
+    with pytest.raises(HistoryError, match="cannot be written now"):
+        keeper.change(lambda history: history.known())
+    keeper.close()
