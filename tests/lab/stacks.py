@@ -31,10 +31,12 @@ def build() -> dict[str, set[str]]:
     sh(f"mkfs.btrfs -q -f -d raid1 -m raid1 {node['nvme']} {node['vblk']}")
     sh(f"btrfs device scan; mount {node['nvme']} {AT}/pool")
     # A disk with a cache before it.
-    sh(f"make-bcache -B {node['scsi']} -C {node['usb']}", check=False)
+    sh(f"make-bcache --bucket 64k -B {node['scsi']} -C {node['usb']}")
     for disk in ("scsi", "usb"):
         sh(f"echo {node[disk]} >/sys/fs/bcache/register", check=False)
     sh(f"udevadm settle; mkfs.ext4 -q /dev/bcache0 && mount /dev/bcache0 {AT}/cached")
+    state = sh("cat /sys/block/bcache0/bcache/state")
+    check(state != "no cache", f"the cache is in use: {state}")
     # A file of a file system mounted again: counted in the file system already.
     sh(f"truncate -s 20M {AT}/data/image && mkfs.ext4 -q {AT}/data/image")
     sh(f"mount -o loop {AT}/data/image {AT}/looped")
