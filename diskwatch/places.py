@@ -4,6 +4,8 @@ import contextlib
 import os
 from pathlib import Path
 
+from diskwatch.errors import UsageError
+
 SYSTEM_STATE = Path("/var/lib/diskwatch")
 SYSTEM_SETTINGS = Path("/etc/diskwatch/settings.toml")
 SYSTEM_RUN = Path("/run/diskwatch")
@@ -12,9 +14,29 @@ WATCH_LOCK = "watch.lock"
 
 
 def _xdg(variable: str, fallback: str) -> Path:
-    """An XDG base directory; a relative path there is invalid and ignored, as the specification says."""
+    """An XDG base directory; a relative path there is invalid and ignored, as the specification says.
+
+    Raises:
+        UsageError: neither the variable nor the user's home is known.
+    """
     named = os.environ.get(variable, "")
-    return Path(named) if named.startswith("/") else Path.home() / fallback
+    if named.startswith("/"):
+        return Path(named)
+    try:
+        return Path.home() / fallback
+    except RuntimeError as error:
+        raise UsageError(
+            "this user has no home folder", hint="name a folder with --state, or set HOME"
+        ) from error
+
+
+def is_there(path: Path) -> bool:
+    """Whether something lies there, as far as this user may see."""
+    try:
+        path.stat()
+    except OSError:
+        return False
+    return True
 
 
 def user_state() -> Path:
@@ -23,10 +45,16 @@ def user_state() -> Path:
 
 
 def state_folder(named: str | None) -> Path:
-    """Where the history lies: the folder named, else the system's where it can be read, else this user's."""
+    """Where the history lies: the folder named, else the system's where it can be read, else this user's.
+
+    Raises:
+        UsageError: the name is empty, or this user has no home folder.
+    """
+    if named == "":
+        raise UsageError("--state names no folder", hint="leave it out for the default")
     if named is not None:
         return Path(named)
-    if (SYSTEM_STATE / HISTORY).exists() and os.access(SYSTEM_STATE, os.R_OK | os.X_OK):
+    if is_there(SYSTEM_STATE / HISTORY) and os.access(SYSTEM_STATE, os.R_OK | os.X_OK):
         return SYSTEM_STATE
     if os.geteuid() == 0:
         return SYSTEM_STATE
@@ -34,13 +62,19 @@ def state_folder(named: str | None) -> Path:
 
 
 def settings_file(named: str | None) -> Path | None:
-    """The settings file: the one named, else this user's, else the system's, else None."""
+    """The settings file: the one named, else this user's, else the system's, else None.
+
+    Root reads the system's only: settings name a program to run, and under ``su`` or ``sudo`` the home may be
+    another user's.
+
+    Raises:
+        UsageError: this user has no home folder.
+    """
     if named is not None:
         return Path(named)
-    for candidate in (_xdg("XDG_CONFIG_HOME", ".config") / "diskwatch" / "settings.toml", SYSTEM_SETTINGS):
-        if candidate.is_file():
-            return candidate
-    return None
+    root = os.geteuid() == 0
+    own = () if root else (_xdg("XDG_CONFIG_HOME", ".config") / "diskwatch" / "settings.toml",)
+    return next((candidate for candidate in (*own, SYSTEM_SETTINGS) if is_there(candidate)), None)
 
 
 def live_folders(state: Path) -> tuple[Path, ...]:

@@ -156,12 +156,14 @@ def load(path: Path | None) -> Settings:
     if path is None:
         return Settings()
     try:
+        if not path.is_file() and path.exists():
+            raise SettingsError(f"{path}: is no file")
         return _decode(path.read_bytes())
     except OSError as error:
         raise SettingsError(f"{path}: cannot be read: {error.strerror}") from error
     except msgspec.ValidationError as error:
         raise SettingsError(f"{path}: {_told(str(error))}") from error
-    except (msgspec.DecodeError, UnicodeDecodeError) as error:
+    except (msgspec.DecodeError, RecursionError, ValueError) as error:
         raise SettingsError(f"{path}: is no TOML: {error}") from error
 
 

@@ -5,6 +5,7 @@ from datetime import UTC, datetime
 
 DAY = 86_400
 _SPANS = {"s": 1, "m": 60, "h": 3_600, "d": DAY}
+_LONGEST = 36_525 * DAY
 _BYTE_STEPS = ("bytes", "kB", "MB", "GB", "TB", "PB")
 
 
@@ -15,12 +16,16 @@ def seconds_of(text: str) -> int:
         Whole seconds, at least 1.
 
     Raises:
-        ValueError: the text is no such duration, or shorter than a second; says what is expected.
+        ValueError: the text is no such duration, shorter than a second or longer than a century; says what is
+            expected.
     """
     found = re.fullmatch(r"\s*([0-9]{1,9})\s*([smhd])\s*", text)
-    if found is None or int(found[1]) == 0:
-        raise ValueError(f"expected a duration such as 1s, 30m, 2h or 7d, at least 1s, not {text!r}")
-    return int(found[1]) * _SPANS[found[2]]
+    seconds = int(found[1]) * _SPANS[found[2]] if found is not None else 0
+    if seconds == 0:
+        raise ValueError(f"expected a duration such as 1s, 30m, 2h or 7d, at least 1s, not {text[:60]!r}")
+    if seconds > _LONGEST:
+        raise ValueError(f"expected a duration of at most 36525d, not {text[:60]!r}")
+    return seconds
 
 
 def day_number(at: int) -> int:
@@ -85,6 +90,18 @@ def say_days(days: float) -> str:
     return say_span(days * DAY)
 
 
+def once_in(days: float) -> str:
+    """Evidence in days, said as "once in N years", rounded down to two digits; it says nothing beyond 1,000."""
+    years = days / 365.25
+    if years < 1:
+        return "once in less than a year"
+    if years >= 1000:
+        return "once in more than 1,000 years"
+    scale = 10 ** max(0, len(str(int(years))) - 2)
+    rounded = int(years) // scale * scale
+    return f"once in {say_count(rounded)} {'year' if rounded == 1 else 'years'}"
+
+
 def _plural(count: int, name: str) -> str:
     return f"{count} {name}" if count == 1 else f"{count} {name}s"
 
@@ -103,12 +120,21 @@ _DIRECTIONS = frozenset(
 )
 
 
+def is_active(letter: str) -> bool:
+    """Whether a terminal may act on a letter instead of showing it; line ends and tabs do not count."""
+    code = ord(letter)
+    return (
+        (code < 0x20 and letter not in "\t\n\r")
+        or 0x7F <= code < 0xA0
+        or letter in _DIRECTIONS
+        or 0xD800 <= code <= 0xDFFF
+    )
+
+
 def _harmless(letter: str) -> str:
     if letter in "\t\n\r":
         return " "
+    if not is_active(letter):
+        return letter
     code = ord(letter)
-    if code < 0x20 or 0x7F <= code < 0xA0:
-        return f"\\x{code:02x}"
-    if letter in _DIRECTIONS or 0xD800 <= code <= 0xDFFF:
-        return f"\\u{code:04x}"
-    return letter
+    return f"\\x{code:02x}" if code < 0x100 else f"\\u{code:04x}"

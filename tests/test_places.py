@@ -4,6 +4,7 @@ from pathlib import Path
 import pytest
 
 from diskwatch import places
+from diskwatch.errors import UsageError
 
 
 @pytest.fixture(autouse=True)
@@ -56,3 +57,30 @@ def test_live_figures_go_to_memory_first_and_to_the_state_folder_last(monkeypatc
     assert folders[0] == places.SYSTEM_RUN
     assert folders[1] == Path("/run/user/7/diskwatch")
     assert folders[-1] == tmp_path
+
+
+def test_root_never_takes_settings_from_a_home_that_may_be_another_users(system, monkeypatch):
+    own = Path.home() / ".config" / "diskwatch" / "settings.toml"
+    own.parent.mkdir(parents=True)
+    own.touch()
+    monkeypatch.setattr(os, "geteuid", lambda: 0)
+    assert places.settings_file(None) is None
+    (system / "etc.toml").touch()
+    assert places.settings_file(None) == system / "etc.toml"
+
+
+def test_a_user_without_a_home_and_an_empty_folder_name_are_wrong_usage(monkeypatch):
+    monkeypatch.delenv("HOME")
+    monkeypatch.setattr(Path, "home", classmethod(lambda _: (_ for _ in ()).throw(RuntimeError("no home"))))
+    with pytest.raises(UsageError, match="no home folder"):
+        places.state_folder(None)
+    with pytest.raises(UsageError, match="names no folder"):
+        places.state_folder("")
+
+
+def test_what_may_not_be_seen_is_not_there(monkeypatch):
+    def refuse(_self, **_options):
+        raise PermissionError(13, "Permission denied")
+
+    monkeypatch.setattr(Path, "stat", refuse)
+    assert not places.is_there(Path("/root/x"))

@@ -1,3 +1,4 @@
+import os
 import re
 from pathlib import Path
 
@@ -87,3 +88,19 @@ def test_what_is_no_toml_and_what_is_not_there_are_told(tmp_path):
 def test_what_is_set_without_effect_is_named_and_defaults_are_not(tmp_path):
     found = load(tmp_path, '[probe]\nenabled = true\n[history]\nbackup = "daily"\ncommit = "1m"\n[selftest]\n')
     assert settings.without_effect(found) == ("probe",)
+
+
+@pytest.mark.parametrize(
+    "text",
+    ["a = " + "[" * 50_000, "[smart]\nevery = " + "9" * 6_000, '[smart]\nevery = "999999999d"'],
+    ids=["deep", "long", "far"],
+)
+def test_nonsense_of_any_size_is_told_in_one_line(tmp_path, text):
+    assert len(refused(tmp_path, text)) < 400
+
+
+def test_a_folder_or_a_pipe_is_no_settings_file(tmp_path):
+    os.mkfifo(tmp_path / "pipe")
+    for path in (tmp_path, tmp_path / "pipe"):
+        with pytest.raises(SettingsError, match="is no file"):
+            settings.load(path)

@@ -80,3 +80,19 @@ def test_text_made_plain_holds_nothing_that_a_terminal_would_act_on(text):
 
 def test_ordinary_text_stays_as_it_is():
     assert units.plain("Größe 41 °C, 漢字") == "Größe 41 °C, 漢字"
+
+
+@pytest.mark.parametrize(
+    ("days", "said"),
+    [
+        (27_000, "once in 73 years"),
+        (365.25 * 3.9, "once in 3 years"),
+        (365.25, "once in 1 year"),
+        (364, "once in less than a year"),
+        (365.25 * 999, "once in 990 years"),
+        (365.25 * 1239, "once in more than 1,000 years"),
+    ],
+)
+def test_evidence_is_said_in_years_rounded_down_to_two_digits(days, said):
+    """27,000 days are 73.92 years: worked example of the method."""
+    assert units.once_in(days) == said

@@ -149,7 +149,10 @@ def _quiet(state: DriveState, pass_: Pass) -> str:
     old = {signal: count for signal in findings.DEFECTS if (count := state.firsts.get(signal, 0)) > 0}
     if state.first_at is None or state.first_at == pass_.at:
         return sentences.first_reading(old)
-    return sentences.quiet(old)
+    risen = {
+        signal: now - state.firsts[signal] for signal, now in state.latest.items() if now > state.firsts[signal]
+    }
+    return sentences.quiet(old, risen)
 
 
 def _told_call(before: Call | None, call: Call) -> Iterator[Entry]:

@@ -8,7 +8,7 @@ from diskwatch.judge import sentences
 from diskwatch.records import CallWord, Cause, Entry, Finding, FindingKind, Kind, Outcome, Pass
 
 UNREAD_LIMIT = 3
-"""Passes in a row without a reading after which a drive wants a hand."""
+"""Passes without a reading after which a drive wants a hand; sleep in between neither counts nor ends it."""
 
 _SHOULD_HAVE_READ = frozenset({Outcome.TIMED_OUT, Outcome.GARBLED, Outcome.ABSENT})
 _MACHINE_WIDE = frozenset({Outcome.NO_TOOL})
@@ -36,7 +36,7 @@ def told(state: DriveState, pass_: Pass) -> Iterator[Entry]:
 
 def without_reading(state: DriveState, pass_: Pass) -> DriveState:
     """A pass that brought nothing: it moves no ledger, but three in a row want a hand."""
-    missed = pass_.outcome in _SHOULD_HAVE_READ and not _unplugged(pass_)
+    missed = _missed(state, pass_)
     unread = state.unread + 1 if missed else state.unread
     standing = state.standing
     if missed and unread >= UNREAD_LIMIT:
@@ -51,9 +51,18 @@ def without_reading(state: DriveState, pass_: Pass) -> DriveState:
     )
 
 
-def _unplugged(pass_: Pass) -> bool:
-    """Whether a drive is away because people unplug such drives."""
-    return pass_.outcome is Outcome.ABSENT and pass_.drive is not None and pass_.drive.kind is Kind.USB
+def _missed(state: DriveState, pass_: Pass) -> bool:
+    """Whether the pass should have brought a reading and did not.
+
+    A drive that has given readings before cannot lack SMART: a dying one answers none of the questions by which
+    it is told what it is. A USB drive is away because people unplug such drives.
+    """
+    kind = None if pass_.drive is None else pass_.drive.kind
+    if pass_.outcome is Outcome.NO_SMART:
+        return state.first_at is not None and kind is not Kind.VIRTUAL
+    if pass_.outcome is Outcome.ABSENT and kind is Kind.USB:
+        return False
+    return pass_.outcome in _SHOULD_HAVE_READ
 
 
 def _unreadable(standing: Mapping[str, Finding], pass_: Pass, times: int) -> Finding:

@@ -8,6 +8,7 @@ import argparse
 import contextlib
 import difflib
 import importlib
+import io
 import os
 import sys
 from collections.abc import Sequence
@@ -45,22 +46,44 @@ def main(argv: Sequence[str] | None = None) -> int:
         what else a command may return it says itself.
     """
     words = list(sys.argv[1:] if argv is None else argv)
+    _take_any_letter()
     try:
         name, words = _chosen(words)
         module = importlib.import_module(f"diskwatch.cli.{name.replace('-', '_')}")
         parser = _parser(name, module.__doc__ or "")
         module.options(parser)
-        return int(module.run(parser.parse_args(words)))
+        code = int(module.run(parser.parse_args(words)))
+        sys.stdout.flush()
+        return code
     except DiskwatchError as error:
         _complain(str(error))
         return error.exit_code
     except KeyboardInterrupt:
         return 130
     except BrokenPipeError:
-        # Whoever read our output has gone; say nothing, and keep the interpreter from trying once more.
-        with contextlib.suppress(OSError):
-            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        # Whoever read our output has gone: there is nobody to say anything to.
+        _write_no_more()
         return 0
+    except OSError as error:
+        _write_no_more()
+        _complain(f"cannot read or write: {error}")
+        return DiskwatchError.exit_code
+
+
+def _take_any_letter() -> None:
+    """Let no letter that a terminal cannot show, and no missing stream, end a command."""
+    for name, mode in (("stdin", "r"), ("stdout", "w"), ("stderr", "w")):
+        stream = getattr(sys, name)
+        if stream is None:
+            setattr(sys, name, open(os.devnull, mode, encoding="utf-8"))  # noqa: SIM115, PTH123 - for the process's life
+        elif isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="backslashreplace")
+
+
+def _write_no_more() -> None:
+    """Keep the interpreter from trying to write once more at its end what could not be written."""
+    with contextlib.suppress(OSError, ValueError):
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def _chosen(words: list[str]) -> tuple[str, list[str]]:

@@ -9,7 +9,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Self
 
 from diskwatch import places
-from diskwatch.units import plain
+from diskwatch.units import is_active, plain
 
 if TYPE_CHECKING:
     from diskwatch.settings import Settings
@@ -49,8 +49,10 @@ def talk(text: str) -> None:
 
 def print_json(answer: Mapping[str, object]) -> None:
     """One JSON object to standard output; integers that JSON readers cannot hold exactly become strings."""
-    json.dump(_exact(answer), sys.stdout, indent=2, ensure_ascii=False, allow_nan=False)
-    sys.stdout.write("\n")
+    text = json.dumps(_exact(answer), indent=2, ensure_ascii=False, allow_nan=False)
+    # What JSON may hold raw, a terminal may act on: such letters are written as JSON's own escapes.
+    sys.stdout.write("".join(f"\\u{ord(one):04x}" if is_active(one) else one for one in text) + "\n")
+    sys.stdout.flush()
 
 
 class Bar:

@@ -19,6 +19,7 @@ from diskwatch.cli.common import now, settings, state_folder, talk
 from diskwatch.errors import NothingToWorkOn
 from diskwatch.history.lock import watcher
 from diskwatch.history.reader import Past
+from diskwatch.places import is_there
 from diskwatch.records import Bays
 
 _STARTING = 5.0
@@ -113,7 +114,7 @@ def _watching(folder: Path, args: argparse.Namespace) -> Iterator[tuple[str, int
 def _may_write(folder: Path) -> bool:
     """Whether the history can be written, or made where there is none yet."""
     place = folder
-    while not place.exists():
+    while not is_there(place):
         place = place.parent
     return os.access(place, os.W_OK | os.X_OK)
 

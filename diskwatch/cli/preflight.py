@@ -9,9 +9,11 @@ from pathlib import Path
 
 from diskwatch.cli.common import print_json, settings, state_folder
 from diskwatch.cli.watch import machine
+from diskwatch.errors import HistoryError
 from diskwatch.history.lock import watcher
+from diskwatch.history.opening import refuse_foreign
 from diskwatch.machine.protocol import Found, Machine
-from diskwatch.places import HISTORY
+from diskwatch.places import HISTORY, is_there
 from diskwatch.records import Pass
 from diskwatch.service.readiness import Check, checks
 from diskwatch.units import plain
@@ -56,7 +58,11 @@ def _asked(this: Machine, found: tuple[Found, ...]) -> tuple[Pass, ...]:
 def _unwritable(folder: Path) -> str | None:
     """Why the history cannot be written, found out without writing anything."""
     place = folder / HISTORY
-    while not place.exists():
+    try:
+        refuse_foreign(place)
+    except HistoryError as error:
+        return str(error)
+    while not is_there(place):
         place = place.parent
     if os.access(place, os.W_OK):
         return None

@@ -25,11 +25,13 @@ def options(parser: argparse.ArgumentParser) -> None:
 def run(args: argparse.Namespace) -> int:
     """Watch; 0 when all was recorded, 3 without any drive, 4 when the history could not be written."""
     owner = settings(args)
-    watch = Watch(machine(owner), owner, state_folder(args), told=None if args.tied else _say)
+    watch = Watch(machine(owner), owner, state_folder(args), told=None if args.tied else Voice().say)
     if watch.trouble:
         talk(f"diskwatch: {watch.trouble}; watching goes on without it")
     if args.once:
         rounds = watch.once()
+        for trouble in watch.machine_troubles:
+            talk(f"diskwatch: {trouble}")
         if watch.trouble:
             talk(f"diskwatch: not stored: {watch.trouble}")
             return 4
@@ -62,13 +64,28 @@ def _end_with_parent(watch: Watch) -> None:
     watch.end()
 
 
-def _say(part: tuple[DriveRound, ...]) -> None:
-    """A line a drive: the call, or how the pass ended, and why."""
-    for one in part:
-        call = one.call
-        word = call.word.value if call is not None else "-"
-        told = call.reason if call is not None else ""
-        if one.pass_.explanation and one.pass_.explanation not in told:
-            told = f"{one.pass_.outcome.value}: {one.pass_.explanation} {told}".rstrip()
-        who = one.known.drive.identity.model or one.known.place.device
-        print(plain(f"{word:<6}  {who} ({one.known.place.device}): {told}"), flush=True)
+class Voice:
+    """Says what each round brought; where nobody listens any more it falls silent, and the watch goes on."""
+
+    def __init__(self) -> None:
+        self._heard = True
+
+    def say(self, part: tuple[DriveRound, ...]) -> None:
+        """A line a drive: the call, or how the pass ended, and why."""
+        if not self._heard:
+            return
+        try:
+            for one in part:
+                print(plain(_line(one)), flush=True)
+        except (OSError, ValueError):
+            self._heard = False
+
+
+def _line(one: DriveRound) -> str:
+    call = one.call
+    word = call.word.value if call is not None else "-"
+    told = call.reason if call is not None else ""
+    if one.pass_.explanation and one.pass_.explanation not in told:
+        told = f"{one.pass_.outcome.value}: {one.pass_.explanation} {told}".rstrip()
+    who = one.known.drive.identity.model or one.known.place.device
+    return f"{word:<6}  {who} ({one.known.place.device}): {told}"

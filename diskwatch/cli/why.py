@@ -12,7 +12,7 @@ from diskwatch.cli.common import now, print_json, settings, state_folder
 from diskwatch.history.reader import Past
 from diskwatch.judge import sentences
 from diskwatch.records import DriveLine
-from diskwatch.units import plain, say_count, say_days
+from diskwatch.units import once_in, plain, say_count, say_days
 
 _WIDTH = 78
 
@@ -71,9 +71,10 @@ def _counters(why: analyser.Explanation) -> Iterator[str]:
 def _evidence(why: analyser.Explanation) -> Iterator[str]:
     for one in why.evidence:
         yield (
-            f"{one.stream}: {sentences.once_in(one.days)} after {say_days(one.powered_days)} powered; "
-            f"{one.episodes} occasions, the norm is {one.norm_per_year:g} a year; "
-            f"alarms at {sentences.once_in(one.alarms_at)}"
+            f"{one.stream}: {once_in(one.days)} after {say_days(one.powered_days)} powered; "
+            f"{one.episodes} {'occasion' if one.episodes == 1 else 'occasions'}, "
+            f"the norm is {one.norm_per_year:g} a year; "
+            f"alarms at {once_in(one.alarms_at)}"
         )
 
 

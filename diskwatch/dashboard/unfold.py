@@ -8,7 +8,7 @@ from diskwatch.dashboard.cells import fit, wrap
 from diskwatch.dashboard.weight import Face
 from diskwatch.dashboard.words import cause, kind, reason
 from diskwatch.records import DriveLine, Mount
-from diskwatch.units import plain, say_bytes, say_days
+from diskwatch.units import once_in, plain, say_bytes
 
 _LEAST_ROOM = 10
 
@@ -47,7 +47,7 @@ def _paragraphs(line: DriveLine, now: int, above: tuple[Text, ...]) -> list[str]
         evidence = (
             "a fact, which needs no evidence"
             if finding.evidence is None
-            else f"a sound drive shows this at most once in {say_days(finding.evidence)}"
+            else f"a drive within the norm would show this at most {once_in(finding.evidence)}"
         )
         stands = f"{since(finding.since, now)}; {evidence}"
         sentence = "The above" if finding.sentence == lead else plain(finding.sentence)

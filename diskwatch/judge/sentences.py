@@ -8,7 +8,7 @@ from collections.abc import Mapping
 
 from diskwatch.records import Attribute, SelfTest
 from diskwatch.trends.norms import YEAR, Norm
-from diskwatch.units import plain, say_count, say_days
+from diskwatch.units import once_in, plain, say_count, say_days
 
 _NAMES: Mapping[str, tuple[str, str]] = {
     "reallocated-sectors": (
@@ -104,18 +104,6 @@ def drift(norm: Norm, *, episodes: int, days: float, evidence: float) -> str:
     )
 
 
-def once_in(evidence: float) -> str:
-    """Evidence in days, said as "once in N years", rounded down to two digits; it says nothing beyond 1,000."""
-    years = evidence / YEAR
-    if years < 1:
-        return "once in less than a year"
-    if years >= 1000:
-        return "once in more than 1,000 years"
-    scale = 10 ** max(0, len(str(int(years))) - 2)
-    rounded = int(years) // scale * scale
-    return f"once in {say_count(rounded)} {'year' if rounded == 1 else 'years'}"
-
-
 def damage(*, fresh: int, pending: int, replaced: int, score: float, limit: float, days: int) -> str:
     """The odds rule called."""
     return (
@@ -196,13 +184,17 @@ def first_reading(old: Mapping[str, int]) -> str:
     return f"It came with old defects: {_list(old)}. That is a level, not a trend; a rise will speak."
 
 
-def quiet(old: Mapping[str, int]) -> str:
-    """Nothing asks for a deed. The same words every day: what changes daily would be written daily."""
-    if not old:
-        return "No error counter has gone beyond its norm since it has been watched."
-    return (
-        f"It came with old defects: {_list(old)}. Nothing has gone beyond its norm since it has been watched."
-    )
+def quiet(old: Mapping[str, int], risen: Mapping[str, int]) -> str:
+    """Nothing asks for a deed. The same words every day: what changes daily would be written daily.
+
+    Args:
+        old: what the defect counters held when the drive was first read, where not 0.
+        risen: how far error counters have risen since, where they have.
+    """
+    came = f"It came with old defects: {_list(old)}. " if old else ""
+    if not risen:
+        return f"{came}No error counter has gone beyond its norm since it has been watched."
+    return f"{came}Since it has been watched: {_list(risen)}. That is within the norm so far."
 
 
 def call_changed(before: str | None, after: str, reason: str) -> str:

@@ -4,6 +4,7 @@ APScheduler keeps a failing job's exception to itself and goes on; a listener tu
 book, since a watch that has stopped working must not look like one that works.
 """
 
+import logging
 from collections.abc import Callable
 from datetime import UTC, datetime
 from typing import Any
@@ -14,6 +15,11 @@ from apscheduler.schedulers.background import BackgroundScheduler
 from apscheduler.triggers.interval import IntervalTrigger
 
 Mishap = Callable[[str], None]
+
+# What goes wrong is told through the listener below, in our words; the library's own lines, with tracebacks,
+# would otherwise reach standard error.
+logging.getLogger("apscheduler").addHandler(logging.NullHandler())
+logging.getLogger("apscheduler").propagate = False
 
 
 class Schedule:

@@ -85,6 +85,11 @@ class Watch:
         """What keeps the history from being written; None where nothing does."""
         return self._keeper.trouble
 
+    @property
+    def machine_troubles(self) -> tuple[str, ...]:
+        """What kept the last listing of the drives from being complete, one sentence each."""
+        return self._rounds.troubles
+
     def once(self) -> tuple[DriveRound, ...]:
         """One full round, and then the end."""
         try:

@@ -65,3 +65,10 @@ def test_a_clock_set_back_lives_no_day_twice():
     assert back[0].evidence == forward[-1].evidence
     stream = back[-1].state.streams["media"]
     assert stream.day == (NOON + 2 * DAY) // DAY
+
+
+def test_a_keep_names_what_has_risen_within_the_norm():
+    steps = lived(read(NOON, crc_errors=0), read(NOON + DAY, crc_errors=318))
+    assert steps[-1].call.word is CallWord.KEEP
+    assert "318 transfers damaged" in steps[-1].call.reason
+    assert "within the norm so far" in steps[-1].call.reason

@@ -2,6 +2,7 @@ import io
 import json
 import sys
 
+from diskwatch import units
 from diskwatch.cli.common import Bar, print_json
 
 
@@ -23,3 +24,10 @@ def test_a_bar_is_shown_on_a_terminal_only_and_leaves_nothing_behind(monkeypatch
         bar.show(0, 0)
     assert "50%" in written.getvalue()
     assert written.getvalue().endswith("\r")
+
+
+def test_letters_that_a_terminal_acts_on_are_escaped_as_json_has_it(capsys):
+    print_json({"mount": "/srv/\u009b31m\u202egnp", "text": "\x1b[2J\n"})
+    out = capsys.readouterr().out
+    assert not any(units.is_active(letter) for letter in out)
+    assert json.loads(out) == {"mount": "/srv/\u009b31m\u202egnp", "text": "\x1b[2J\n"}

@@ -1,3 +1,5 @@
+import sqlite3
+
 from tests.cli.run import run, settings_for
 from tests.player import lay
 
@@ -17,3 +19,17 @@ def test_a_usb_bridge_that_the_tool_does_not_know_is_lacking_and_has_a_cure(tmp_
     ended = run("preflight", "--state", tmp_path / "state", "--settings", settings)
     assert ended.code == 4
     assert "USB adapter" in ended.out
+
+
+def test_a_history_that_is_not_ours_or_of_a_newer_version_is_lacking(tmp_path):
+    settings = settings_for(lay(tmp_path / "player", []), tmp_path)
+    state = tmp_path / "state"
+    state.mkdir()
+    db = sqlite3.connect(state / "history.db")
+    db.execute("PRAGMA user_version = 999")
+    db.execute("CREATE TABLE other (x)")
+    db.commit()
+    db.close()
+    ended = run("preflight", "--json", "--state", state, "--settings", settings)
+    assert ended.code == 4
+    assert [check["lacking"] for check in ended.json["checks"] if check["name"] == "history"] == [True]

@@ -6,9 +6,12 @@ import time
 
 import pytest
 
+from diskwatch.cli.watch import Voice
 from diskwatch.history.lock import watcher
+from diskwatch.records import DriveRound, KnownDrive
 from tests.cli.run import COMMAND, ROOT, run, settings_for
 from tests.player import calls, lay, lay_plan, set_day
+from tests.samples import HDD, HERE, NOON, read
 
 GOOD = {"node": "/dev/inv1", "type": "sat", "folder": "invented_hdd_sister"}
 
@@ -257,3 +260,19 @@ def test_the_dashboards_child_ends_with_whoever_started_it(tmp_path):
 def test_the_history_can_be_read_by_everybody_and_written_by_its_owner_alone(tmp_path):
     once(tmp_path, [GOOD])
     assert stat.S_IMODE((tmp_path / "state" / "history.db").stat().st_mode) == 0o644
+
+
+def test_a_listener_that_goes_away_silences_the_lines_and_not_the_watch(monkeypatch):
+    said = []
+
+    def gone(*words, **_options):
+        said.append(words)
+        raise BrokenPipeError
+
+    monkeypatch.setattr("builtins.print", gone)
+    voice = Voice()
+    known = KnownDrive(number=1, drive=HDD, place=HERE, first_seen=NOON)
+    part = (DriveRound(known=known, pass_=read(NOON), state=None),)
+    voice.say(part)
+    voice.say(part)
+    assert len(said) == 1

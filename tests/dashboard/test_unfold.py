@@ -38,8 +38,8 @@ def test_the_call_is_told_with_its_age_rule_and_cause():
 def test_every_finding_is_told_with_its_evidence_or_as_a_fact():
     told = whole(COPY)
     assert (
-        "Finding drift:media: The above (since Saturday; a sound drive shows this at most once in 10 years)"
-        in told
+        "Finding drift:media: The above (since Saturday; "
+        "a drive within the norm would show this at most once in 10 years)" in told
     )
     assert "An extended self-test could not read block 88,211,004. (since 22 October 2026; a fact" in told
 

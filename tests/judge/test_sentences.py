@@ -2,27 +2,9 @@ import inspect
 import re
 from pathlib import Path
 
-import pytest
-
 from diskwatch.judge import sentences
 from diskwatch.trends.norms import NORMS, STREAM_OF
 from tests.samples import attribute
-
-
-@pytest.mark.parametrize(
-    ("days", "said"),
-    [
-        (27_000, "once in 73 years"),
-        (365.25 * 3.9, "once in 3 years"),
-        (365.25, "once in 1 year"),
-        (364, "once in less than a year"),
-        (365.25 * 999, "once in 990 years"),
-        (365.25 * 1239, "once in more than 1,000 years"),
-    ],
-)
-def test_evidence_is_said_in_years_rounded_down_to_two_digits(days, said):
-    """27,000 days are 73.92 years: worked example of the method."""
-    assert sentences.once_in(days) == said
 
 
 def test_a_drift_tells_the_facts_first_and_then_the_bound():
