@@ -10,6 +10,7 @@ from random import Random
 
 from diskwatch.trends import episodes, wear as wears
 from diskwatch.trends.interval import Interval
+from diskwatch.trends.latency_forecast import forecast
 from diskwatch.trends.norms import NORMS
 from diskwatch.trends.waiting import after_alarm
 
@@ -214,3 +215,32 @@ def alarmed(chance: Random, times_norm: float, *, doubling: float = 0.0, more: i
             if not interval.known:
                 return None
     return Told(interval=interval, came=day - asked, kind="at the alarm")
+
+
+def slowing(chance: Random, *, wander: float = 0.5, alike: float = 0.6, noise: float = 0.05) -> Told | None:
+    """A disk that slows down from the first day on, and the forecast of when it takes twice as long.
+
+    It would take 60 to 500 days at its first slope, whose logarithm wanders by ``wander`` in 90 days; a day's
+    shift has noise that resembles the day before. It is asked once it is 20 to 70 % slower; None where it is
+    not so soon enough, or where there is nothing to say.
+    """
+    log_slope = log(log(2) / exp(chance.uniform(log(60), log(500))))
+    asked_at = log(1 + chance.uniform(0.2, 0.7))
+    level, shake, day = 0.0, chance.gauss(0, noise), 0
+    days: list[float] = []
+    shifts: list[float] = []
+    interval: Interval | None = None
+    asked = 0.0
+    while level < log(2) and day < 5000:
+        day += 1
+        log_slope += wander / sqrt(90) * chance.gauss(0, 1)
+        level += exp(log_slope)
+        shake = alike * shake + noise * sqrt(1 - alike**2) * chance.gauss(0, 1)
+        if chance.random() < 0.85 and interval is None:
+            days.append(float(day))
+            shifts.append(level + shake)
+        if interval is None and level >= asked_at and len(days) >= 8:
+            interval, asked = forecast(days, shifts), days[-1]
+    if interval is None or not interval.known or interval.high == 0:
+        return None
+    return Told(interval=interval, came=day - asked if level >= log(2) else float("inf"), kind="slowing")
