@@ -1,4 +1,3 @@
-from itertools import pairwise
 from math import comb, inf, nan
 from random import Random
 
@@ -161,6 +160,6 @@ def test_the_delay_of_late_reads_is_that_of_the_study():
         found = delays(retried, 100)
         show(f"late reads, {retried:.1%} retried: median {found[50]} days, 90 % {found[90]} days")
     assert delays(0.01, 100)[90] <= 10
-    sound = delays(0.0, 60)
-    show(f"late reads, sound: {sum(days < 365 for days in sound)} of 60 alarmed within a year")
-    assert all(earlier <= later for earlier, later in pairwise(sound))
+    sound = sum(days < 365 for days in delays(0.0, 60))
+    show(f"late reads, sound: {sound} of 60 alarmed within a year")
+    assert sound <= 1
