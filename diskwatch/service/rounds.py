@@ -125,6 +125,8 @@ class Rounds:
             self._here.clear()
             self._away.clear()
             self.blocks.clear()
+            if self._turns is not None:
+                self._turns.forget()
 
     def _planned(self, drives: tuple[Found, ...], *, everyone: bool) -> tuple[tuple[Found, ...], set[int]]:
         """Which drives this round asks, and the numbers of those that it leaves out: they are not gone."""

@@ -70,6 +70,10 @@ class Turns:
                 self._memory[key] = _Memory(asked=pace.left_out(memory.asked), done=memory.done)
         return turns
 
+    def forget(self) -> None:
+        """Begin anew: the next round asks every drive that is awake."""
+        self._memory.clear()
+
     def answered(self, key: str, outcome: Outcome) -> None:
         """Take in how asking a drive of this round ended."""
         if key not in self._now:

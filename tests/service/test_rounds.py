@@ -274,3 +274,24 @@ def test_a_twin_of_a_drive_that_is_left_out_does_not_take_its_history(keeper):
     hung.add("sda")
     (done,) = running.run()
     assert done.known.number == numbers["/dev/sdb"]
+
+
+def test_no_drive_that_was_left_out_is_taken_for_gone_when_a_history_comes_into_reach_late(tmp_path):
+    state, away = tmp_path / "state", tmp_path / "away"
+    machine = ScriptedMachine(found(HDD))
+    machine.answers = {"/dev/sda": [read(NOON)]}
+    machine.totals = [{"sda": counted(5)}]
+    first = Keeper(state)
+    rounds(machine, first).run()
+    first.close()
+    state.rename(away)
+    state.write_text("in the way")
+    keeper = Keeper(state)
+    running = rounds(machine, keeper, turns=Turns(every=1800))
+    running.run()  # blind
+    state.unlink()
+    away.rename(state)
+    keeper.try_again()
+    outcomes = [one.pass_.outcome for _ in range(3) for one in running.run()]
+    keeper.close()
+    assert outcomes == [Outcome.READ]

@@ -85,6 +85,13 @@ def test_whoever_wants_everyone_asked_gets_the_idle_too():
     assert [running.round(5), running.round(5, everyone=True)] == [Why.FIRST, Why.WANTED]
 
 
+def test_what_is_forgotten_is_asked_as_if_new():
+    running = Running()
+    running.round(5)
+    running.turns.forget()
+    assert running.round(5) is Why.FIRST
+
+
 def test_an_answer_to_a_question_that_was_not_planned_is_none():
     turns = Turns(every=HALF_HOUR)
     turns.answered("disk 1", Outcome.TIMED_OUT)
