@@ -1,11 +1,9 @@
 import os
 import random
-import signal
 import sqlite3
 import subprocess
 import sys
 import threading
-import time
 from contextlib import closing
 from pathlib import Path
 
@@ -341,50 +339,3 @@ def test_threads_take_turns_and_none_undoes_anothers_work(folder):
         assert troubles == []
         found = history._db.execute("SELECT text, count(*) FROM day_book GROUP BY text").fetchall()
         assert found == [(name, 20) for name in "abc"]
-
-
-def _write_rounds_for_ever(folder: Path, pipe: int) -> None:
-    """What the child does until it is killed: report each round's number once it is stored."""
-    history = History.open(folder)
-    known = (history.known() or (history.admit(a_drive(), a_place(), NOON),))[0]
-    number = history._db.execute("SELECT count(*) FROM pass").fetchone()[0]
-    while True:
-        history.record(full_round(known, NOON + number * 7200, number))
-        number += 1
-        os.write(pipe, number.to_bytes(4, "big"))
-
-
-def test_a_writer_that_is_killed_leaves_whole_rounds_and_all_that_it_reported(folder):
-    """SIGKILL at twenty moments: process death, not power loss."""
-    when = random.Random(7)  # noqa: S311  # moments, not secrets
-    for _ in range(20):
-        reader, pipe = os.pipe()
-        child = os.fork()
-        if child == 0:
-            try:
-                _write_rounds_for_ever(folder, pipe)
-            finally:
-                os._exit(1)
-        os.close(pipe)
-        reported = os.read(reader, 4)
-        time.sleep(when.uniform(0, 0.03))  # the moment must be any, so it cannot be waited for
-        os.kill(child, signal.SIGKILL)
-        assert os.waitpid(child, 0)[1] == signal.SIGKILL
-        while more := os.read(reader, 4):
-            reported = more
-        os.close(reader)
-
-        stored = int.from_bytes(reported, "big")
-        with Past.open(folder) as past:
-            passes = len(past.passes(1))
-            assert passes in {stored, stored + 1}
-            assert [entry.data["n"] for entry in past.day_book()] == list(range(passes))
-            assert past.state(1) == f"state {passes - 1}"
-            assert [value for _, value in past.series(1, "pending-sectors")] == list(range(passes))
-            assert past.evidence(1, "pending-sectors")[-1][1] == passes - 1
-            call = past.bays(NOON).drives[0].call
-            assert call is not None
-            assert call.reason == f"reason {passes - 1}"
-            assert past.bays(NOON).watcher is None
-        History.open(folder).close()
-        assert _integrity(folder / HISTORY) == [("ok",)]

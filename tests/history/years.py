@@ -1,0 +1,181 @@
+"""Years of six invented drives, written week by week as the watch leaves them, thinned by the real code."""
+
+import random
+import time
+from collections.abc import Iterator
+from dataclasses import replace
+
+from diskwatch.history import packing, rows
+from diskwatch.history.writer import History
+from diskwatch.records import (
+    Attribute,
+    CallWord,
+    DriveRound,
+    Entry,
+    IoSpan,
+    KnownDrive,
+    Round,
+    SignalKind,
+    Value,
+)
+from diskwatch.trends.load import class_days
+from tests.history.examples import (
+    DAY,
+    NOON,
+    a_call,
+    a_drive,
+    a_part,
+    a_pass,
+    a_place,
+    a_round,
+    a_span,
+    a_value,
+)
+
+DRIVES = 6
+WEEK = 7 * DAY
+BEGIN = NOON // WEEK * WEEK
+STILL = tuple(f"still-{number}" for number in range(20))
+MOVING = ("temperature", *(f"moving-{number}" for number in range(7)))
+FOLLOWED = STILL[:12]
+_LOADS = ((0.2, 4096), (0.5, 16384), (2.0, 4096), (5.0, 65536), (9.0, 131072), (30.0, 16384), (90.0, 262144))
+"""Operations a second and their size: what an invented workstation does by turns."""
+
+
+def admitted(history: History) -> tuple[KnownDrive, ...]:
+    return tuple(
+        history.admit(a_drive(f"INVENTED-{n}", f"/dev/sd{n}"), a_place(f"/dev/sd{n}"), BEGIN)
+        for n in range(DRIVES)
+    )
+
+
+def moving_value(name: str, noise: random.Random) -> Value:
+    if name == "temperature":
+        return a_value(name, noise.randrange(30, 45), "celsius", SignalKind.GAUGE)
+    return a_value(name, noise.randrange(2**40), "opaque", SignalKind.GAUGE)
+
+
+def a_rounds_part(known: KnownDrive, at: int, noise: random.Random) -> DriveRound:
+    table = tuple(
+        Attribute(
+            number=number,
+            name=f"Invented_Attribute_{number}",
+            value=100,
+            worst=100,
+            threshold=0,
+            prefail=False,
+            raw=str(noise.randrange(2**30)) if number < 9 else "0",
+        )
+        for number in range(1, 26)
+    )
+    values = (*(a_value(name, 0) for name in STILL), *(moving_value(name, noise) for name in MOVING))
+    return a_part(
+        replace(known, place=a_place(known.place.device)),
+        a_pass(at, *values, attributes=table),
+        state=a_state(noise),
+        evidence={name: noise.random() for name in FOLLOWED},
+        call=a_call(CallWord.KEEP, BEGIN),
+    )
+
+
+def a_state(noise: random.Random) -> str:
+    return str({name: [noise.random() for _ in range(8)] for name in FOLLOWED})
+
+
+def a_round_of_all(drives: tuple[KnownDrive, ...], at: int, noise: random.Random) -> Round:
+    return a_round(*(a_rounds_part(known, at, noise) for known in drives), at=at)
+
+
+def spans(drives: tuple[KnownDrive, ...], begin: int, noise: random.Random) -> list[IoSpan]:
+    """A quarter of an hour by ten seconds."""
+    return [_span(known.number, begin + ten * 10, 10, noise) for ten in range(1, 91) for known in drives]
+
+
+def _span(drive: int, at: int, seconds: int, noise: random.Random) -> IoSpan:
+    a_second, size = _LOADS[noise.randrange(len(_LOADS))]
+    reads = round(a_second * seconds * noise.random())
+    writes = round(a_second * seconds * noise.random())
+    return a_span(
+        drive,
+        at,
+        float(seconds),
+        reads=reads,
+        writes=writes,
+        read_bytes=reads * size,
+        write_bytes=writes * size,
+        read_ms=round(reads * noise.lognormvariate(1.5, 0.5)),
+        write_ms=round(writes * noise.lognormvariate(0.5, 0.5)),
+        busy_ms=noise.randrange(seconds * 500),
+    )
+
+
+def a_week(history: History, drives: tuple[KnownDrive, ...], begin: int, noise: random.Random) -> None:
+    """What a week of watching leaves, but for minutes, of which only the last seven days would stay."""
+    with history._writing() as connection:
+        series = {row[1]: row[0] for row in connection.execute("SELECT number, drive || signal FROM series")}
+        connection.executemany(
+            "INSERT OR IGNORE INTO pass VALUES (?, ?, 'read', 0, 900, NULL)",
+            ((known.number, at) for known in drives for at in range(begin, begin + WEEK, 1800)),
+        )
+        connection.executemany(
+            "INSERT OR IGNORE INTO value VALUES (?, ?, ?, NULL)",
+            (
+                (series[f"{known.number}{name}"], at, moving_value(name, noise).value)
+                for known in drives
+                for name in MOVING
+                for at in range(begin, begin + WEEK, 1800)
+            ),
+        )
+        connection.executemany(
+            "INSERT OR IGNORE INTO evidence VALUES (?, ?, ?)",
+            (
+                (series[f"{known.number}{name}"], day, noise.random())
+                for known in drives
+                for name in FOLLOWED
+                for day in range(begin // DAY, (begin + WEEK) // DAY)
+            ),
+        )
+        connection.executemany(
+            "INSERT OR IGNORE INTO kept_state (drive, at, packed) VALUES (?, ?, ?)",
+            [(known.number, begin + WEEK - 1800, packing.packed(a_state(noise))) for known in drives],
+        )
+        connection.executemany("INSERT OR REPLACE INTO io_five VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)",
+                               _fives(drives, begin, noise))  # fmt: skip
+    history.note(
+        *(
+            Entry(at=at, drive=known.number, kind="rise", text="8 sectors more wait.", data={"rise": 8})
+            for at in range(begin, begin + WEEK, DAY)
+            for known in drives
+        )
+    )
+
+
+def _fives(drives: tuple[KnownDrive, ...], begin: int, noise: random.Random) -> Iterator[tuple[int, ...]]:
+    for at in range(begin, begin + WEEK, 300):
+        for known in drives:
+            one = _span(known.number, at, 300, noise).counts
+            slot = rows.slot(at, known.number, 300)
+            yield (
+                slot, 300_000, one.reads, one.writes, one.read_bytes, one.write_bytes,
+                one.read_ms, one.write_ms, one.busy_ms, 9_000, 8_000, 30, 0,
+            )  # fmt: skip  # one row, as its columns stand
+
+
+def upkept(history: History, now: int) -> list[float]:
+    """All upkeep that is due, as the watch does it; gives how long each bite held the writer, seconds."""
+    held = []
+    while (found := history.uncondensed(now)) is not None:
+        day, rollups = found
+        by_drive = {
+            number: class_days(one for one in rollups if one.drive == number)
+            for number in {one.drive for one in rollups}
+        }
+        begun = time.perf_counter()
+        history.condense(day, by_drive)
+        held.append(time.perf_counter() - begun)
+    more = True
+    while more:
+        begun = time.perf_counter()
+        more = history.thin(now)
+        held.append(time.perf_counter() - begun)
+    return held
