@@ -278,8 +278,8 @@ class _Arrival:
             self._insert("value", ("series", "at", "value", "reason"), cells, drive=False)
 
     def _beside(self, at: int, of: Mapping[str, Any]) -> None:
-        packed = packing.packed(json.dumps(of["reading"], separators=(",", ":")))
-        packing.reading(packed)  # refuses what is no reading
+        packed = json.dumps(of["reading"], separators=(",", ":")).encode()
+        packing.beside(packed)  # refuses what is no reading
         self._insert("beside", ("at", "packed"), (at, packed))
 
     def _evidence(self, at: int, of: Mapping[str, Any]) -> None:

@@ -48,7 +48,7 @@ def _unpacked(row: dict[str, Any]) -> dict[str, Any]:
 
 
 def _beside(row: dict[str, Any]) -> dict[str, Any]:
-    return {"at": row["at"], "reading": json.loads(packing.unpacked(row["packed"]))}
+    return {"at": row["at"], "reading": json.loads(row["packed"])}
 
 
 def _load(row: dict[str, Any]) -> dict[str, Any]:

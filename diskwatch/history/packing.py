@@ -32,6 +32,28 @@ def unpacked(kept: bytes) -> str:
 
 def reading_packed(reading: Reading) -> bytes:
     """All of a reading but its values, which stand in the series."""
+    return packed(_told(reading))
+
+
+def beside_bytes(found: Reading) -> bytes:
+    """What a judgement rests on beside the values: attributes that fail now, self-tests, limits.
+
+    It is compared at every pass and written once in a long while, so it is not packed.
+    """
+    failing = tuple(one for one in found.attributes if one.failing is Failing.NOW)
+    return _told(replace(found, attributes=failing)).encode("utf-8", "surrogatepass")
+
+
+def beside(kept: bytes) -> Reading:
+    """A reading with what `beside_bytes` gave.
+
+    Raises:
+        ValueError: these bytes are not what it wrote.
+    """
+    return _reading(kept.decode("utf-8", "surrogatepass"))
+
+
+def _told(reading: Reading) -> str:
     attributes = [
         [
             one.number,
@@ -51,13 +73,7 @@ def reading_packed(reading: Reading) -> bytes:
     ]
     limits = [reading.warning_celsius, reading.critical_celsius]
     whole = {"attributes": attributes, "self_tests": tests, "limits": limits}
-    return packed(json.dumps(whole, separators=(",", ":")))
-
-
-def beside_packed(found: Reading) -> bytes:
-    """What a judgement rests on beside the values: attributes that fail now, self-tests, limits."""
-    failing = tuple(one for one in found.attributes if one.failing is Failing.NOW)
-    return reading_packed(replace(found, attributes=failing))
+    return json.dumps(whole, separators=(",", ":"))
 
 
 _BIN = struct.Struct("<hH")
@@ -94,8 +110,12 @@ def reading(kept: bytes) -> Reading:
     Raises:
         ValueError: these bytes are not what it wrote.
     """
+    return _reading(unpacked(kept))
+
+
+def _reading(words: str) -> Reading:
     try:
-        found: dict[str, Any] = json.loads(unpacked(kept))
+        found: dict[str, Any] = json.loads(words)
         warning, critical = found["limits"]
     except (KeyError, TypeError) as error:
         raise ValueError(f"no reading: {error}") from error

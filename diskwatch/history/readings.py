@@ -63,7 +63,7 @@ def passes_with_readings(connection: sqlite3.Connection, drive: int, after: int 
                 signal=signal, value=rows.value(value), unit=unit, kind=kind, source=source, reason=reason
             )
         while beside and beside[0][0] <= pass_.at:
-            reading = packing.reading(beside.pop(0)[1])
+            reading = packing.beside(beside.pop(0)[1])
         if pass_.outcome is Outcome.READ:
             there = tuple(value for value in held.values() if value.reason != NOT_THERE)
             pass_ = replace(pass_, reading=replace(reading, values=there))

@@ -209,7 +209,7 @@ def _write_reading(connection: sqlite3.Connection, number: int, at: int, reading
         changed,
     )
     _write_packed(connection, "last_reading", number, at, packing.reading_packed(reading))
-    _write_beside(connection, number, at, packing.beside_packed(reading))
+    _write_beside(connection, number, at, packing.beside_bytes(reading))
 
 
 def _write_beside(connection: sqlite3.Connection, number: int, at: int, packed: bytes) -> None:
@@ -288,27 +288,27 @@ def _write_evidence(
 ) -> None:
     """Keep the last evidence of each day: today's in ``latest``, from where the next day moves it on."""
     today = day_number(at)
-    for signal, days in evidence.items():
-        name = rows.text(signal)
-        found = connection.execute(
-            "SELECT number FROM series WHERE drive = ? AND signal = ? AND current", (number, name)
+    series = dict(
+        connection.execute(
+            "SELECT signal, number FROM series WHERE drive = ? AND current", (number,)
+        ).fetchall()
+    )
+    named = {rows.text(signal): days for signal, days in evidence.items()}
+    for name in named.keys() - series.keys():
+        # Some ledgers follow what no drive reports, such as a service time.
+        (series[name],) = connection.execute(
+            "INSERT INTO series (drive, signal) VALUES (?, ?) RETURNING number", (number, name)
         ).fetchone()
-        if found is None:
-            # Some ledgers follow what no drive reports, such as a service time.
-            found = connection.execute(
-                "INSERT INTO series (drive, signal) VALUES (?, ?) RETURNING number", (number, name)
-            ).fetchone()
-        connection.execute(
-            "INSERT OR REPLACE INTO evidence (series, day, evidence)"
-            " SELECT series, day, evidence FROM latest"
-            " WHERE series = ? AND day <> ? AND evidence IS NOT NULL",
-            (found[0], today),
-        )
-        connection.execute(
-            "INSERT INTO latest (series, day, evidence) VALUES (?, ?, ?)"
-            " ON CONFLICT (series) DO UPDATE SET day = excluded.day, evidence = excluded.evidence",
-            (found[0], today, days),
-        )
+    connection.executemany(
+        "INSERT OR REPLACE INTO evidence (series, day, evidence)"
+        " SELECT series, day, evidence FROM latest WHERE series = ? AND day <> ? AND evidence IS NOT NULL",
+        [(series[name], today) for name in named],
+    )
+    connection.executemany(
+        "INSERT INTO latest (series, day, evidence) VALUES (?, ?, ?)"
+        " ON CONFLICT (series) DO UPDATE SET day = excluded.day, evidence = excluded.evidence",
+        [(series[name], today, days) for name, days in named.items()],
+    )
 
 
 def _write_call(connection: sqlite3.Connection, number: int, call: Call) -> None:

@@ -241,5 +241,5 @@ def test_what_a_judgement_rests_on_beside_the_values_is_kept_on_change(history, 
     ):
         pass_ = a_pass(NOON + step, attributes=(attribute(raw, failing),))
         history.record(a_round(a_part(known, pass_), at=NOON + step))
-    kept = [(at, packing.reading(packed).attributes) for at, packed in rows("SELECT at, packed FROM beside")]
+    kept = [(at, packing.beside(packed).attributes) for at, packed in rows("SELECT at, packed FROM beside")]
     assert kept == [(NOON, ()), (NOON + 2, (attribute("3", Failing.NOW),)), (NOON + 4, ())]
