@@ -43,9 +43,11 @@ _NO_SMART: tuple[tuple[re.Pattern[str], str], ...] = (
         "It has no SMART",
     ),
 )
+_VERSION = re.compile(r"smartctl (?:version |pre-)?[0-9]")
+"""The line that names the tool's version: complaints begin with "Smartctl" as well, in another case."""
+
 _NOISE = re.compile(
-    r"smartctl |copyright|=== start|use smartctl -h|please specify device type|a mandatory smart command|$",
-    re.IGNORECASE,
+    r"copyright|=== start|use smartctl -h|please specify device type|a mandatory smart command|$", re.IGNORECASE
 )
 
 
@@ -220,7 +222,7 @@ def _not_understood(lines: list[str], what: Understood, *, expects_smart: bool) 
     """An answer in which nothing of a drive's state can be found."""
     if what.support is Support.NONE or not expects_smart:
         return _without_smart("It has no SMART")
-    telling = next((line for line in lines if _NOISE.match(line.strip()) is None), None)
+    telling = next((line for line in lines if _is_telling(line.strip())), None)
     if what.drive is not None:
         why = "It says who it is, but not how it is: its SMART data could not be read"
     elif telling is None:
@@ -233,6 +235,10 @@ def _not_understood(lines: list[str], what: Understood, *, expects_smart: bool) 
         explanation=f"{why}; if it stays so, copy off what matters first, then look at its cable and adapter"
         f"{words}.",
     )
+
+
+def _is_telling(line: str) -> bool:
+    return _VERSION.match(line) is None and _NOISE.match(line) is None
 
 
 def _first(lines: Iterable[str], pattern: re.Pattern[str]) -> str | None:

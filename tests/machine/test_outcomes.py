@@ -138,6 +138,26 @@ def test_a_drive_that_does_not_answer_sensibly_is_garbled_with_its_words():
     assert "Short INQUIRY response" in why
 
 
+@pytest.mark.parametrize(
+    ("head", "complaint"),
+    [
+        (HEAD[0], "Smartctl open device: /dev/sdq [SAT] failed: Input/output error"),
+        ("smartctl pre-7.5 2024-11-01 r5600", "Smartctl open device: /dev/sdq failed: INQUIRY failed"),
+        ("smartctl version 5.38", "Smartctl: Device Read Identity Failed: I/O error"),
+    ],
+)
+def test_the_tools_own_reason_is_shown_though_it_begins_with_its_name(head: str, complaint: str):
+    outcome, why = verdict((head, HEAD[1], "", complaint), 2)
+    assert outcome == "garbled"
+    assert f"({complaint})" in why
+
+
+def test_where_the_tool_gives_no_reason_that_is_said_and_its_version_is_not_taken_for_one():
+    outcome, why = verdict((*HEAD, "A mandatory SMART command failed: exiting."), 2)
+    assert outcome == "garbled"
+    assert "without a word about why" in why
+
+
 def test_a_drive_that_names_itself_but_gives_no_data_is_garbled():
     lines = fixture("invented_hdd_failing")
     cut = lines[: lines.index("=== START OF READ SMART DATA SECTION ===")]
