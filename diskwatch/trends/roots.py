@@ -58,13 +58,16 @@ def _step(points: tuple[float, float, float], values: tuple[float, float, float]
     return 0.5
 
 
-def rising_root(function: Callable[[float], float], start: float, step: float = 1.0) -> float:
+def rising_root(
+    function: Callable[[float], float], start: float, step: float = 1.0, *, within: float = 1e-13
+) -> float:
     """Where a function that never falls crosses zero, from a guess; the bracket is sought by doubled steps.
 
     Args:
         function: never falling, and of both signs somewhere.
         start: a guess.
         step: first step away from it, above 0.
+        within: how near to the crossing, as a difference.
 
     Raises:
         ValueError: no crossing was found as far as numbers reach.
@@ -75,6 +78,6 @@ def rising_root(function: Callable[[float], float], start: float, step: float = 
         there = here + way
         beyond = function(there)
         if (beyond > 0) != (value > 0) or beyond == 0:
-            return root(function, min(here, there), max(here, there))
+            return root(function, min(here, there), max(here, there), within=within)
         here, way = there, 2 * way
     raise ValueError(f"no crossing was found from {start}")

@@ -122,8 +122,8 @@ def after_alarm(
     back = still + (more - 1) * absorbed
     tail = (1 - probability) / 2
     start = log(end * more / len(episodes))
-    low = exp(rising_root(lambda u: came(u) - tail, start))
-    high = exp(rising_root(lambda u: came(u) - (1 - tail), start))
+    low = exp(rising_root(lambda u: came(u) - tail, start, within=1e-6))
+    high = exp(rising_root(lambda u: came(u) - (1 - tail), start, within=1e-6))
     return Interval(low=low + back, high=high + back, probability=probability)
 
 

@@ -101,7 +101,7 @@ def test_more_episodes_take_longer_and_a_surer_interval_is_never_narrower(gaps, 
     here = ends(after_alarm(more, episodes=times, now=times[-1], probability=probability))
     further = ends(after_alarm(more + 1, episodes=times, now=times[-1], probability=probability))
     surer = ends(after_alarm(more, episodes=times, now=times[-1], probability=(1 + probability) / 2))
-    middle = ends(after_alarm(more, episodes=times, now=times[-1], probability=1e-6))
+    middle = ends(after_alarm(more, episodes=times, now=times[-1], probability=1e-4))
     assert here[0] < further[0]
     assert here[1] < further[1]
     assert surer[0] < here[0] < middle[0] <= middle[1] < here[1] < surer[1]
