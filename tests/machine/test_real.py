@@ -9,6 +9,7 @@ from diskwatch.machine.protocol import Address, Counted, Found
 from diskwatch.machine.real import RealMachine
 from diskwatch.machine.smartctl import Scan
 from diskwatch.records import Drive, Identity, IoCounts, Kind, Mount, Outcome, Pass, Reading
+from tests.machine.recordings import FIXTURES
 from tests.machine.trees import Tree
 
 AT = 1_800_000_000
@@ -246,3 +247,29 @@ def test_the_traffic_of_this_computers_drives_is_counted():
     here = RealMachine(now=lambda: AT)
     blocks = {block for found in here.survey().found for block in found.blocks}
     assert blocks <= here.counts().keys()
+
+
+def test_an_ata_drive_that_only_the_scan_knows_as_scsi_is_read_through_sat_in_one_pass_and_so_ever_after(
+    tree: Tree, tmp_path: Path
+):
+    command, log = tmp_path / "smartctl", tmp_path / "asked"
+    command.write_text(
+        "#!/bin/sh\n"
+        f'echo "$*" >> {log}\n'
+        'case "$*" in\n'
+        "*--scan*) echo '/dev/sdq -d scsi # /dev/sdq, SCSI device';;\n"
+        "*'-d scsi'*) printf 'smartctl 7.3 2022-02-28 r5338\\n\\n"
+        "Probable ATA device behind a SAT layer\\nTry an additional -d sat argument.\\n'; exit 2;;\n"
+        f"*) cat {FIXTURES / 'invented_hdd_failing' / 'all.txt'};;\n"
+        "esac\n"
+    )
+    command.chmod(0o755)
+    watched = RealMachine(
+        command=str(command), sys_root=tree.sys, proc_root=tree.proc, dev_root=tree.dev, now=lambda: AT
+    )
+    for _ in range(2):
+        (found,) = watched.survey().found
+        assert found.blocks == ()
+        assert watched.ask(found).outcome is Outcome.READ
+    types = [line.split()[3] for line in log.read_text().splitlines() if "--scan" not in line]
+    assert types == ["scsi", "sat", "sat"]
