@@ -24,6 +24,13 @@ MOST_OUTPUT = 4 * 1024 * 1024
 _GRACE = 1.0
 """Seconds that a killed child gets to disappear before it is left behind."""
 
+_LINGER = 0.5
+"""Seconds in which output may still come after the command itself has ended; who holds its pipes longer is some
+helper of it, and must not cost the answer that it gave."""
+
+_LOOK = 0.25
+"""Seconds between looks at whether the command itself has ended, while its pipes stay open."""
+
 _SBIN = "/usr/local/sbin:/usr/sbin:/sbin"
 
 
@@ -137,7 +144,7 @@ class Door:
         """Take up a child's output and its end, and see to it that there is one."""
         pipes = [pipe for pipe in (child.stdout, child.stderr) if pipe is not None]
         out, err = heard = (bytearray(), bytearray())
-        ending = _listen(pipes, heard, deadline, self._limit)
+        ending = _listen(child, pipes, heard, deadline, self._limit)
         status: int | None = None
         if ending is Ending.ENDED:
             try:
@@ -162,16 +169,32 @@ class Door:
                 self._left_behind.append((owner, child))
 
 
-def _listen(pipes: Sequence[IO[bytes]], heard: Sequence[bytearray], deadline: float, limit: int) -> Ending:
-    """Read pipes to their ends, or until the time is over or too much was said."""
+def _listen(
+    child: subprocess.Popen[bytes],
+    pipes: Sequence[IO[bytes]],
+    heard: Sequence[bytearray],
+    deadline: float,
+    limit: int,
+) -> Ending:
+    """Read pipes to their ends, or until the time is over or too much was said.
+
+    A child that has ended is not waited for long, though what it started may hold its pipes open for ever.
+    """
+    last: float | None = None
     with selectors.DefaultSelector() as selector:
         for pipe, into in zip(pipes, heard, strict=True):
             selector.register(pipe, selectors.EVENT_READ, into)
         while selector.get_map():
-            left = deadline - time.monotonic()
+            now = time.monotonic()
+            if last is None and _has_ended(child):
+                last = now + _LINGER
+            if last is not None and now >= min(last, deadline):
+                _kill(child)  # what is left of its group; whoever left that group only loses its pipe
+                return Ending.ENDED
+            left = (deadline if last is None else min(last, deadline)) - now
             if left <= 0:
                 return Ending.TIMED_OUT
-            for key, _events in selector.select(left):
+            for key, _events in selector.select(min(left, _LOOK)):
                 piece = os.read(key.fd, 65_536)
                 if piece:
                     key.data.extend(piece)
@@ -180,6 +203,14 @@ def _listen(pipes: Sequence[IO[bytes]], heard: Sequence[bytearray], deadline: fl
             if sum(map(len, heard)) > limit:
                 return Ending.TOO_MUCH
     return Ending.ENDED
+
+
+def _has_ended(child: subprocess.Popen[bytes]) -> bool:
+    """Whether a child has ended; it is not taken up yet, so that its number stays its group's alone."""
+    try:
+        return os.waitid(os.P_PID, child.pid, os.WEXITED | os.WNOHANG | os.WNOWAIT) is not None
+    except ChildProcessError:
+        return True  # taken up by whoever stopped it
 
 
 def _kill(child: subprocess.Popen[bytes]) -> None:

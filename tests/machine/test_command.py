@@ -1,4 +1,5 @@
 import os
+import signal
 import sys
 import threading
 import time
@@ -86,6 +87,52 @@ def test_a_command_that_trickles_for_ever_is_killed_in_time(tmp_path: Path):
 def test_a_command_that_closes_its_output_and_lives_on_is_killed_in_time(tmp_path: Path):
     tool = script(tmp_path, "exec >&- 2>&-; sleep 60")
     assert Door().run([tool], timeout=0.3).ending is Ending.TIMED_OUT
+
+
+@pytest.mark.parametrize("apart", ["", "setsid "])
+def test_the_answer_of_a_command_that_has_ended_is_whole_though_a_helper_of_it_holds_its_output(
+    tmp_path: Path, apart: str
+):
+    helper = tmp_path / "helper"
+    begin = f"{apart}sh -c 'echo $$ > {helper}; exec sleep 30' & while [ ! -s {helper} ]; do sleep 0.02; done"
+    tool = script(tmp_path, f"{begin}; echo said; exit 4")
+    begun = time.monotonic()
+    answer = Door().run([tool], timeout=20)
+    assert time.monotonic() - begun < 5
+    assert answer == Answer(ending=Ending.ENDED, status=4, out=b"said\n")
+    if apart:
+        os.kill(int(helper.read_text()), signal.SIGKILL)
+    else:
+        assert is_gone(int(helper.read_text()))
+
+
+def test_what_a_helper_still_says_shortly_after_the_command_has_ended_is_heard(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+):
+    monkeypatch.setattr(command, "_LINGER", 10.0)  # a busy computer must not decide what this test sees
+    tool = script(tmp_path, "(sleep 0.4; echo late) & echo said")
+    assert Door().run([tool], timeout=20).out == b"said\nlate\n"
+
+
+def test_a_helper_that_talks_on_for_ever_neither_holds_the_answer_nor_spoils_its_status(tmp_path: Path):
+    tool = script(tmp_path, "(while :; do echo drop; sleep 0.05; done) & exit 3")
+    begun = time.monotonic()
+    answer = Door().run([tool], timeout=20)
+    assert time.monotonic() - begun < 5
+    assert (answer.ending, answer.status) == (Ending.ENDED, 3)
+
+
+def is_gone(process: int) -> bool:
+    """Whether a killed process ends; who takes it up, and when, is not ours to say."""
+    for _ in range(100):
+        try:
+            state = Path(f"/proc/{process}/stat").read_text().rpartition(") ")[2][0]
+        except FileNotFoundError:
+            return True
+        if state == "Z":
+            return True
+        time.sleep(0.02)
+    return False
 
 
 def test_a_child_that_even_sigkill_does_not_end_is_left_behind_and_counted_until_it_goes(
