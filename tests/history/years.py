@@ -109,8 +109,13 @@ def _span(drive: int, at: int, seconds: int, noise: random.Random) -> IoSpan:
     )
 
 
-def a_week(history: History, drives: tuple[KnownDrive, ...], begin: int, noise: random.Random) -> None:
-    """What a week of watching leaves, but for minutes, of which only the last seven days would stay."""
+def a_week(
+    history: History, drives: tuple[KnownDrive, ...], begin: int, noise: random.Random, *, traffic: bool = True
+) -> None:
+    """What a week of watching leaves, but for minutes, of which only the last seven days would stay.
+
+    Without traffic of its own it takes over the histograms that the week before was condensed to.
+    """
     with history._writing() as connection:
         series = {row[1]: row[0] for row in connection.execute("SELECT number, drive || signal FROM series")}
         connection.executemany(
@@ -139,8 +144,18 @@ def a_week(history: History, drives: tuple[KnownDrive, ...], begin: int, noise: 
             "INSERT OR IGNORE INTO kept_state (drive, at, packed) VALUES (?, ?, ?)",
             [(known.number, begin + WEEK - 1800, packing.packed(a_state(noise))) for known in drives],
         )
-        connection.executemany("INSERT OR REPLACE INTO io_five VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)",
-                               _fives(drives, begin, noise))  # fmt: skip
+        if traffic:
+            connection.executemany(
+                "INSERT OR REPLACE INTO io_five VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)",
+                _fives(drives, begin, noise),
+            )
+        else:
+            connection.execute(
+                "INSERT OR IGNORE INTO io_day"
+                " SELECT drive, day + 7, load_class, direction, rollups, operations, histogram"
+                " FROM drive JOIN io_day ON drive = number WHERE day >= ? AND day < ?",
+                (begin // DAY - 7, begin // DAY),
+            )
     history.note(
         *(
             Entry(at=at, drive=known.number, kind="rise", text="8 sectors more wait.", data={"rise": 8})
