@@ -1,6 +1,8 @@
+import csv
+import gzip
 import statistics
 from dataclasses import replace
-from itertools import accumulate
+from itertools import accumulate, pairwise
 from math import exp, log
 from random import Random
 
@@ -12,7 +14,9 @@ from diskwatch.records import Direction
 from diskwatch.trends import latency
 from diskwatch.trends.latency import LAID_ASIDE, Latency, acknowledged, begin, evidence, moved
 from diskwatch.trends.load import load_class
+from diskwatch.trends.shift import Silence
 from diskwatch.trends.slowness import KEPT, threshold
+from diskwatch.trends.today import unpacked
 from diskwatch.units import DAY
 from tests.trends.traffic import a_day, rollup
 
@@ -262,3 +266,28 @@ def test_roll_ups_of_a_later_day_wait_until_the_open_one_is_closed():
     assert not latency.ends_day(begin(), rollup(DAY + 300))
     with pytest.raises(ValueError, match="close that day first"):
         latency.arrive(state, rollup(DAY + 300))
+
+
+def test_recorded_traffic_of_one_endless_job_is_gathered_but_never_scored(shared):
+    """Kernel counters of a 12 TB drive that is read end to end (origin in the data's own README)."""
+    path = shared / "block_io" / "mdadm-sdc-2.csv.gz"
+    with gzip.open(path, "rt", encoding="utf-8") as told:
+        rows = list(csv.DictReader(told))
+    names = ("reads", "sectors_read", "ms_reading", "t_ns")
+    stretches: dict[int, list[int]] = {}
+    for before, after in pairwise(rows):
+        sums = stretches.setdefault(int(after["t_ns"]) // (300 * 10**9), [0] * len(names))
+        for place, name in enumerate(names):
+            sums[place] += int(after[name]) - int(before[name])
+    state, held = begin(), []
+    for slot, (reads, sectors, spent, covered) in sorted(stretches.items()):
+        one = rollup(slot * 300 + 300, reads, covered=covered / 3e11)
+        one = replace(one, counts=replace(one.counts, read_bytes=sectors * 512, read_ms=spent))
+        if latency.ends_day(state, one):
+            state, shifts = latency.close_day(state)
+            held.append(shifts[0])
+        state = latency.arrive(state, one)
+    assert [shift.silence for shift in held] == [Silence.FEW_CLASSES]
+    times = [exp(log_ / 1000) for _, log_ in unpacked(state.today.reads)]
+    assert len(times) > 150
+    assert 5 < min(times) <= max(times) < 50
