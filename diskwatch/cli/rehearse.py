@@ -83,7 +83,7 @@ def run(args: argparse.Namespace) -> int:
         print_json(answer(ended))
     else:
         sys.stdout.write(told(ended))
-        if args.state is not None:
+        if args.state is not None and trouble is None:
             talk(f"The history of these INVENTED drives is kept in {args.state}.")
     if trouble is not None:
         talk(f"diskwatch: not stored: {trouble}")
@@ -123,8 +123,11 @@ def _rehearse(course: Course, folder: Path, speed: float | None) -> str | None:
     keeper.note(Entry(at=course.clock.now(), drive=None, kind="watch", text=text))
     try:
         with Bar("rehearsing") as bar:
+            shown = 0
             for days in course.run(ask, count):
-                bar.show(int(days), course.days)
+                if days >= shown:
+                    shown = int(days) + 1
+                    bar.show(int(days), course.days)
                 if speed is not None:
                     time.sleep(course.scenario.step_minutes / 1440 / speed)
         keeper.add_traffic(gathered)

@@ -141,16 +141,20 @@ class InventedMachine:
             ),
             drive=drive.drive,
             asleep=drive.asleep,
+            instance=self._instance(drive),
         )
+
+    def _instance(self, drive: InventedDrive) -> str:
+        return f"boot {self.boots}, disk {drive.number}.{drive.appearances}"
 
     def ask(self, found: Found) -> Pass:
         """Ask one drive: its answer goes the same way as a real one's, from smartctl's words to a reading."""
         drive = next(one for one in self.drives.values() if one.spec.device == found.address.node)
         at = self.clock.now()
         if not drive.reachable:
-            return Pass(at=at, outcome=Outcome.ABSENT, explanation=f"{found.place.device}: is not there")
+            return Pass(at=at, outcome=Outcome.ABSENT, explanation="It is not there.")
         if drive.asleep:
-            told = f"{found.place.device}: is asleep and was not asked: that would wake it"
+            told = "It is asleep and was not asked, since that would wake it."
             return Pass(at=at, outcome=Outcome.ASLEEP, explanation=told, drive=drive.drive)
         told_now = drive.told()
         text = lines(told_now) if drive.spec.as_text else ()
@@ -165,9 +169,7 @@ class InventedMachine:
     def counts(self) -> Mapping[str, Counted]:
         """Traffic totals by kernel name."""
         return {
-            _block(drive.spec): Counted(
-                counts=drive.counts, instance=f"boot {self.boots}, disk {drive.number}.{drive.appearances}"
-            )
+            _block(drive.spec): Counted(counts=drive.counts, instance=self._instance(drive))
             for drive in self.drives.values()
             if drive.reachable
         }

@@ -27,6 +27,7 @@ def test_drives_are_asked_at_the_interval_and_counted_at_every_step():
     asked, counted = lived(Course(scenario(days=3)))
     assert [(at - START) / 3600 for at in asked[:4]] == [1, 6, 12, 18]
     assert len(asked) == 13
+    assert asked == sorted(set(asked)), "time never repeats"
     assert counted == 72
 
 

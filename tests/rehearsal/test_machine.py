@@ -1,7 +1,17 @@
 from hypothesis import given, settings, strategies as st
 
-from diskwatch.records import Outcome
-from diskwatch.rehearsal.scenario import BaySpec, Busy, Holiday, StripFails
+from diskwatch.records import Outcome, SignalKind
+from diskwatch.rehearsal.scenario import (
+    BaySpec,
+    BlocksFail,
+    Busy,
+    CableLoosens,
+    FirmwareUpdate,
+    Holiday,
+    Scratch,
+    StripFails,
+)
+from diskwatch.trends.norms import MAY_FALL
 from tests.rehearsal.examples import HDD, NVME, hdd, live, machine, nvme, ssd
 
 
@@ -43,6 +53,7 @@ def test_two_devices_are_never_one_instance_nor_one_device_after_a_start():
     one = machine(hdd(), nvme(), ssd())
     live(one, 0.2)
     before = {name: each.instance for name, each in one.counts().items()}
+    assert [found.instance for found in one.survey().found] == list(before.values())
     assert len(set(before.values())) == 3
     one.drives[HDD].power_up()
     after = {name: each.instance for name, each in one.counts().items()}
@@ -94,6 +105,33 @@ def test_the_same_seed_gives_the_same_life(seed):
         live(one, 3)
         lives.append(([drive.told() for drive in one.drives.values()], dict(one.counts())))
     assert lives[0] == lives[1]
+
+
+@settings(max_examples=8)
+@given(st.integers(0, 10_000), st.floats(1, 4))
+def test_counters_as_read_never_fall_but_where_the_scenario_resets_them(seed, day):
+    reset = FirmwareUpdate(day=day, drive=HDD, firmware="I2", resets=True)
+    loose = CableLoosens(day=0, bay="one", bad_days=1.0, burst=9.0, hangs=0.3)
+    harm = Scratch(day=1, drive=HDD, units=30, growth=0.2)
+    one = machine(
+        hdd(), nvme(), seed=seed, event=(loose, harm, reset, BlocksFail(day=0, drive=NVME, a_year=900))
+    )
+    before: dict[tuple[str, str], int] = {}
+    fell: set[tuple[str, float]] = set()
+    while one.clock.days() < 5:
+        one.live()
+        for found in one.survey().found:
+            reading = one.ask(found).reading
+            assert reading is not None
+            for value in reading.values:
+                key = (found.place.device, value.signal)
+                if value.kind in {SignalKind.COUNT, SignalKind.TIME} and isinstance(value.value, int):
+                    if value.value < before.get(key, 0) and value.signal not in MAY_FALL:
+                        fell.add((value.signal, one.clock.days()))
+                    before[key] = value.value
+    assert {signal for signal, _ in fell} <= {"crc-errors", "command-timeouts"}
+    assert all(day <= when < day + 1 / 24 + 1e-9 for _, when in fell)
+    assert before["/dev/nvme0", "power-on-hours"] == 120
 
 
 def test_utilisation_and_requests_under_way_agree_with_rate_times_time():
