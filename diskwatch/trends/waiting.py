@@ -5,7 +5,7 @@ gamma law of shape 0.5 and mean 0.5 a year does, and what it showed so far corre
 counts, beta-prime waiting times). After an alarm that law would be far too slow, and nobody knows how its rate
 grows from now on; so two laws that grow in different ways are believed in equally: a rate that doubles at some
 pace, which may be none (log-linear), and one that grows as a power of time (Crow 1975; MIL-HDBK-189). Both are
-worked out exactly but for sums over grids; nothing is drawn by chance. (Choice and constants: our own study.)
+worked out exactly but for sums over grids; nothing is drawn by chance. (Choice of laws: our own study.)
 """
 
 from collections.abc import Sequence
@@ -24,7 +24,10 @@ LEAST = 3
 """Episodes since the onset that a forecast after an alarm needs."""
 
 _STEADY = 0.35
-_SLOWEST, _FASTEST, _USUAL_DOUBLING = 400.0, 8.0, 45.0  # days in which the rate doubles
+_SLOWEST, _FASTEST = 400.0, 8.0  # days in which the rate doubles, at the ends of the grid
+# The study had 45 days here; with 20 as many intervals hold at a steady rate, and far more where it doubles in
+# 30 days or 15, for intervals hardly wider.
+_USUAL_DOUBLING = 20.0
 _GROWTHS = 24
 _SHAPES = 24
 _NEGLIGIBLE = -18.0  # as a natural logarithm

@@ -153,16 +153,16 @@ def test_the_intervals_hold_about_as_often_as_they_say(growth):
 
 @pytest.mark.bench
 def test_the_coverage_of_the_forecast_of_counters_reaches_its_goal():
-    """Goal: 77 to 94 % of nominal 80 %, upper over lower end 5 to 10; doubling in 15 days lies beyond it."""
+    """Goal: 77 to 94 % of nominal 80 %, upper over lower end 5 to 10; doubling in 15 days is the hardest."""
     for growth in GROWTHS:
         for before in (3, 5, 8, 15):
-            told = told_by(lambda chance: clustered(chance, growth, before=before), seed=before, drives=600)  # noqa: B023 - used at once
+            told = told_by(lambda chance: clustered(chance, growth, before=before), seed=before, drives=400)  # noqa: B023 - used at once
             show(f"five more after {before}, {growth}: {coverage(told)}   (goal 77 to 94 %)")
-            if growth not in {"in 30", "in 15"}:
+            if growth != "in 15":
                 assert coverage(told).share >= 0.77
-    quiet = told_by(lambda chance: clustered(chance, "steady", before=8, later=0.7), seed=9, drives=600)
+    quiet = told_by(lambda chance: clustered(chance, "steady", before=8, later=0.7), seed=9, drives=400)
     show(f"five more after 8, asked up to 0.7 mean gaps later: {coverage(quiet)}")
-    bare = told_by(lambda chance: clustered(chance, "steady", before=8, absorbed=0.0), seed=8, drives=600)
+    bare = told_by(lambda chance: clustered(chance, "steady", before=8, absorbed=0.0), seed=8, drives=400)
     show(f"five more after 8, nothing absorbed: {coverage(bare)}")
     for times in (10.0, 30.0, 100.0):
         told = told_by(lambda chance: alarmed(chance, times), seed=7, drives=300)  # noqa: B023 - used at once
