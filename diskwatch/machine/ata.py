@@ -5,7 +5,7 @@ from collections.abc import Iterator, Sequence
 from typing import Any
 
 from diskwatch.machine import device_statistics, meanings, packing
-from diskwatch.machine.document import Document, flag_at, number_at, rows_at, text_at
+from diskwatch.machine.document import Document, flag_at, natural_at, number_at, rows_at, text_at
 from diskwatch.machine.meanings import AtaMeaning
 from diskwatch.machine.text import Sheet, whole
 from diskwatch.records import Attribute, Failing, SignalKind, Value
@@ -87,9 +87,9 @@ def _from_document(document: Document | None) -> Iterator[Attribute]:
         yield Attribute(
             number=number,
             name=name,
-            value=number_at(row, "value"),
-            worst=number_at(row, "worst"),
-            threshold=number_at(row, "thresh"),
+            value=natural_at(row, "value", most=255),
+            worst=natural_at(row, "worst", most=255),
+            threshold=natural_at(row, "thresh", most=255),
             prefail=flag_at(row, "flags", "prefailure") is True,
             raw=raw.strip(),
             failing=_FAILING.get((text_at(row, "when_failed") or "").lower()),

@@ -8,7 +8,7 @@ import re
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from diskwatch.machine.document import Document, dig, number_at, text_at
+from diskwatch.machine.document import Document, dig, natural_at, number_at, text_at
 from diskwatch.machine.text import Sheet
 from diskwatch.records import SignalKind, Value
 
@@ -92,9 +92,9 @@ def _from_document(document: Document | None) -> Iterator[_Found]:
         row = dig(scan, f"result_{number}")
         if row is None:
             return
-        status, lba = text_at(row, "reassign_status"), number_at(row, "lba")
+        status, lba = text_at(row, "reassign_status"), natural_at(row, "lba")
         if lba is None:
-            lba = number_at(row, "lba", "value")
+            lba = natural_at(row, "lba", "value")
         hours, minutes = (number_at(row, "accumulated_power_on", key) for key in ("hours", "minutes"))
         if status is not None and lba is not None:
             yield _Found(f"{lba:x}", (hours or 0) * 60 + (minutes or 0), _PENDING.search(status) is not None)

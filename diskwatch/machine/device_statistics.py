@@ -10,7 +10,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from diskwatch.machine import packing
-from diskwatch.machine.document import Document, flag_at, number_at, rows_at, text_at
+from diskwatch.machine.document import Document, flag_at, natural_at, number_at, rows_at, text_at
 from diskwatch.machine.text import Sheet, hexadecimal
 from diskwatch.records import SignalKind, Value
 
@@ -149,7 +149,7 @@ def _from_document(pages: tuple[Document, ...]) -> Iterator[_Field]:
             )
             if place is not None and value is not None and flag_at(row, "flags", "valid") is True:
                 normalised = flag_at(row, "flags", "normalized") is True
-                yield _Field(place, number_at(row, "size"), value, normalised)
+                yield _Field(place, natural_at(row, "size", most=8), value, normalised)
 
 
 def _from_rows(sheet: Sheet) -> Iterator[_Field]:

@@ -44,6 +44,12 @@ def number_at(document: object, *path: str) -> int | None:
     return found if isinstance(found, int) and not isinstance(found, bool) else None
 
 
+def natural_at(document: object, *path: str, most: int | None = None) -> int | None:
+    """A whole number from zero up to ``most`` at a path, or None; for fields that can hold no other."""
+    found = number_at(document, *path)
+    return found if found is not None and found >= 0 and (most is None or found <= most) else None
+
+
 def text_at(document: object, *path: str) -> str | None:
     """Text at a path, or None."""
     found = dig(document, *path)

@@ -89,8 +89,17 @@ def sane_celsius(number: int) -> Decoded:
 
 
 def sane_hours(number: int) -> Decoded:
-    """Powered hours, unless no drive can have so many."""
-    return (number, None) if number <= _MOST_HOURS else (None, _IMPOSSIBLE)
+    """Powered hours, unless no drive can have so many, or so few."""
+    return (number, None) if 0 <= number <= _MOST_HOURS else (None, _IMPOSSIBLE)
+
+
+def sane(number: int, unit: str) -> Decoded:
+    """Any number of a drive, unless its unit shows that it cannot be true: only temperatures go below zero."""
+    if unit == "celsius":
+        return sane_celsius(number)
+    if unit == "hours":
+        return sane_hours(number)
+    return (number, None) if number >= 0 else (None, _IMPOSSIBLE)
 
 
 def _sane_count(number: int) -> Decoded:

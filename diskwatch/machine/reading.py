@@ -1,10 +1,10 @@
 """One answer of smartctl understood: the drive, its reading, and whether it has SMART at all."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from enum import Enum, auto
 
-from diskwatch.machine import ata, logs, nvme_errors, sct
+from diskwatch.machine import ata, logs, nvme_errors, packing, sct
 from diskwatch.machine.document import Document, flag_at
 from diskwatch.machine.held import Family, device_of
 from diskwatch.machine.selftests import newest_result, self_tests
@@ -41,8 +41,9 @@ class Understood:
 
     @property
     def says_something(self) -> bool:
-        """Whether at least one signal has a value."""
-        return any(value.value is not None for value in self.reading.values)
+        """Whether it speaks of a drive's state, which takes more than one number that belongs to nobody."""
+        known = [value.signal for value in self.reading.values if value.value is not None]
+        return len(known) > 1 or (bool(known) and self.drive is not None) or "self-assessment" in known
 
 
 def understood(
@@ -89,7 +90,7 @@ def understood(
         family=family,
         drive=drive,
         reading=Reading(
-            values=(*values, *words),
+            values=(*(_possible(value) for value in values), *words),
             attributes=rows,
             self_tests=tests,
             warning_celsius=warning,
@@ -97,6 +98,14 @@ def understood(
         ),
         support=_support(document, sheet),
     )
+
+
+def _possible(value: Value) -> Value:
+    """A value, without its number where that cannot be true: a broken tool's document may hold any."""
+    if not isinstance(value.value, int):
+        return value
+    _, reason = packing.sane(value.value, value.unit)
+    return value if reason is None else replace(value, value=None, reason=reason)
 
 
 def _word(signal: str, word: str | None, source: str, reason: str | None = None) -> Value:

@@ -4,7 +4,7 @@ import re
 from collections.abc import Callable, Iterable, Iterator
 from typing import Any
 
-from diskwatch.machine.document import Document, flag_at, number_at, rows_at, text_at
+from diskwatch.machine.document import Document, flag_at, natural_at, rows_at, text_at
 from diskwatch.machine.held import Family
 from diskwatch.machine.text import Sheet, whole
 from diskwatch.records import SelfTest
@@ -63,14 +63,14 @@ def _from_document(document: Document | None) -> Iterator[SelfTest]:
             yield _test(
                 name,
                 result,
-                hours=number_at(row, "lifetime_hours"),
-                lba=number_at(row, "lba"),
+                hours=natural_at(row, "lifetime_hours"),
+                lba=natural_at(row, "lba"),
                 passed=flag_at(row, "status", "passed"),
             )
     for row in rows_at(document, "nvme_self_test_log", "table"):
         name, result = text_at(row, "self_test_code", "string"), text_at(row, "self_test_result", "string")
         if name and result:
-            yield _test(name, result, hours=number_at(row, "power_on_hours"), lba=number_at(row, "lba"))
+            yield _test(name, result, hours=natural_at(row, "power_on_hours"), lba=natural_at(row, "lba"))
 
 
 def _from_library(device: Any) -> Iterator[SelfTest]:

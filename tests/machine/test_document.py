@@ -3,6 +3,7 @@ from diskwatch.machine.document import (
     document_of,
     flag_at,
     messages,
+    natural_at,
     number_at,
     plain_lines,
     rows_at,
@@ -44,6 +45,15 @@ def test_what_is_missing_or_of_another_sort_is_none():
     assert rows_at(document, "a", "e") == ({"f": 2},)
     assert rows_at(document, "a", "d") == ()
     assert dig(document, "none", "none") is None
+
+
+def test_a_number_that_a_field_cannot_hold_is_none():
+    row = {"value": 256, "worst": -1, "hours": 0}
+    assert natural_at(row, "value") == 256
+    assert natural_at(row, "value", most=255) is None
+    assert natural_at(row, "worst") is None
+    assert natural_at(row, "hours") == 0
+    assert natural_at(row, "none") is None
 
 
 def test_the_plain_text_and_the_complaints_are_found():

@@ -85,6 +85,27 @@ def test_a_volume_is_a_whole_number_that_is_not_full():
     assert packing.volume("12/34")[0] is None
 
 
+@pytest.mark.parametrize(
+    ("number", "unit", "value"),
+    [
+        (-4, "hours", None),
+        (0, "hours", 0),
+        (1_000_001, "hours", None),
+        (-1, "sectors", None),
+        (0, "sectors", 0),
+        (2**100, "bytes", 2**100),
+        (-5, "celsius", -5),
+        (10**9, "celsius", None),
+    ],
+)
+def test_only_temperatures_go_below_zero_and_no_drive_ran_for_longer_than_there_are_drives(
+    number: int, unit: str, value: int | None
+):
+    found, reason = packing.sane(number, unit)
+    assert found == value
+    assert (found is None) is (reason is not None)
+
+
 @given(st.text(max_size=30))
 def test_every_decoder_answers_every_text_with_a_value_or_a_reason(raw: str):
     for decode in (

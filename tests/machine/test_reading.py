@@ -404,7 +404,56 @@ def test_a_document_with_anything_in_any_place_is_survived(data: st.DataObject):
                 spot[key] = data.draw(JSON_VALUES)
                 break
             spot = spot[key]
-    understood((), told, type_="sat", path="/dev/x")
+    reading = understood((), told, type_="sat", path="/dev/x").reading
+    for value in reading.values:
+        assert not isinstance(value.value, int) or value.value >= 0 or value.unit == "celsius", value
+    for row in reading.attributes:
+        assert all(part is None or 0 <= part <= 255 for part in (row.value, row.worst, row.threshold))
+    for test in reading.self_tests:
+        assert all(part is None or part >= 0 for part in (test.hours, test.lba))
+
+
+WRONG_SHAPE = """{
+    "smartctl": {"version": "x", "output": {"a": 1}, "messages": [1, {"string": 5}]},
+    "device": [], "smart_status": {"passed": "yes"}, "power_on_time": {"hours": -4},
+    "temperature": {"current": 1e9}, "serial_number": 7, "model_name": [1], "user_capacity": {"bytes": -5},
+    "wwn": {"naa": -1, "oui": 99999999999999, "id": 3.5}, "rotation_rate": -1, "scsi_grown_defect_list": -3,
+    "ata_smart_attributes": {"table": [
+        {"id": "5", "raw": []},
+        {"id": 5, "name": "Reallocated_Sector_Ct", "value": 1e400, "raw": {"value": -7, "string": 3}}
+    ]},
+    "nvme_smart_health_information_log": {"critical_warning": -1, "temperature": "hot", "media_errors": 1e30}
+}"""
+
+
+def test_a_document_of_the_wrong_shape_gives_no_impossible_number_and_counts_for_no_reading():
+    told = document_of(WRONG_SHAPE)
+    assert told is not None
+    for type_ in ("sat", "nvme", "scsi"):
+        found = understood(plain_lines(told), told, type_=type_, path="/dev/x")
+        assert (found.drive, found.says_something) == (None, False)
+        assert all(value.value is None and value.reason for value in found.reading.values)
+
+
+@pytest.mark.parametrize(
+    ("told", "something"),
+    [
+        ({"power_on_time": {"hours": 7}}, False),
+        ({"power_on_time": {"hours": 7}, "temperature": {"current": 30}}, True),
+        ({"power_on_time": {"hours": 7}, "serial_number": "INVENTED-7"}, True),
+        ({"serial_number": "INVENTED-7"}, False),
+        ({"smart_status": {"passed": True}}, True),
+        ({}, False),
+    ],
+)
+def test_an_answer_speaks_of_a_drive_by_its_name_its_own_verdict_or_two_values(told: Any, something: bool):
+    assert understood((), told, type_="sat", path="/dev/x").says_something is something
+
+
+def test_a_field_of_an_impossible_size_is_read_at_once():
+    told = json.loads(json.dumps(ATA_DOCUMENT))
+    told["ata_device_statistics"]["pages"][0]["table"][0]["size"] = 10**12
+    assert understood((), told, type_="sat", path="/dev/x").reading.get("percentage-used") == 7
 
 
 ORIGINALS = [
