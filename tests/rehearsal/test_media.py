@@ -74,23 +74,29 @@ def test_counts_never_fall_and_no_sector_is_counted_twice(units, growth, spares,
         before = now
 
 
-def base_rate(path, column: str) -> float:
-    """Share of drives that did not fail with a value above zero on their last day."""
+def touched(path, *columns: str) -> float:
+    """Share of drives that did not fail with any of these values above zero on their last day."""
     with gzip.open(path, "rt") as lines:
         rows = [row for row in csv.DictReader(lines) if row["failure"] in {"0", "0.0"}]
-    told = [float(row[column]) for row in rows if row[column]]
-    return sum(value > 0 for value in told) / len(told)
+    return sum(any(float(row.get(column) or 0) > 0 for column in columns) for row in rows) / len(rows)
 
 
-def test_sound_drives_have_replaced_sectors_as_often_as_open_drive_data_show(shared):
-    # lastday_2019_*.csv.gz, origin in the data folder's README: 0.5 to 4.8 % by model, about three years old.
-    series = shared / "drive_series"
+def test_sound_drives_have_defects_as_often_as_open_drive_data_show(shared):
+    # lastday_2019_*.csv.gz, origin in the data folder's README: drives two and a half to three and a half years
+    # old; 5 above zero on 0.5 to 4.8 %, any of 5, 187, 197 and 198 on 0.7 to 5.5 %, by model.
     names = ("ST8000DM002", "ST8000NM0055", "HGST_HMS5C4040BLE640")
-    rates = [base_rate(series / f"lastday_2019_{name}.csv.gz", "smart_5_raw") for name in names]
+    files = [shared / "drive_series" / f"lastday_2019_{name}.csv.gz" for name in names]
+    replaced = [touched(file, "smart_5_raw") for file in files]
+    any_of = [touched(file, *(f"smart_{number}_raw" for number in (5, 187, 197, 198))) for file in files]
     drives = [Surface(clusters=[]) for _ in range(1_500)]
     rng = stream(1, "fleet")
     for _ in range(110):
         for surface in drives:
             surface.live(rng, 10.0, read_share=0.1, written=True)
-    share = sum(surface.reallocated > 0 for surface in drives) / len(drives)
-    assert min(rates) <= share <= 1.2 * max(rates)
+    ours = sum(surface.reallocated > 0 for surface in drives) / len(drives)
+    ours_any = sum(
+        bool(surface.reallocated or surface.pending or surface.uncorrectable) for surface in drives
+    ) / len(drives)
+    assert min(replaced) <= ours <= 1.2 * max(replaced)
+    assert ours < ours_any
+    assert min(any_of) <= ours_any <= 1.2 * max(any_of)
