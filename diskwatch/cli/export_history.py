@@ -31,18 +31,17 @@ def run(args: argparse.Namespace) -> int:
     at = now()
     with Past.open(state_folder(args)) as past:
         drives = past.bays(at).drives if args.drive is None else (past.find(args.drive),)
-        lines = [
-            line for drive in sorted(drives, key=lambda one: one.number) for line in past.lines(drive.number)
-        ]
-    if not lines:
-        raise NothingToWorkOn("no drive has been read yet", hint="see 'diskwatch preflight'")
-    pieces = written(lines, args.format, at)
-    if args.file is None:
-        sys.stdout.writelines(pieces)
-        return 0
-    _put(Path(args.file), pieces)
-    count = "one drive" if len(drives) == 1 else f"{len(drives)} drives"
-    talk(f"diskwatch: {len(lines)} rows of {count} are in {args.file}")
+        if not drives:
+            raise NothingToWorkOn("no drive has been read yet", hint="see 'diskwatch preflight'")
+        numbers = sorted(drive.number for drive in drives)
+        # One drive after the other: ten years of several would fill the memory.
+        pieces = written((line for number in numbers for line in past.lines(number)), args.format, at)
+        if args.file is None:
+            sys.stdout.writelines(pieces)
+            return 0
+        _put(Path(args.file), pieces)
+    count = "one drive" if len(numbers) == 1 else f"{len(numbers)} drives"
+    talk(f"diskwatch: the past of {count} is in {args.file}")
     return 0
 
 

@@ -47,6 +47,7 @@ class Keeper:
         self._waiting: deque[Callable[[History], None]] = deque(maxlen=MOST_WAITING)
         self._trouble: str | None = None
         self._damaged = False
+        self._away = False
         self._closed = False
         self._blind = False
         self.epoch = 0
@@ -163,12 +164,18 @@ class Keeper:
         return answer
 
     def let_go(self, trouble: str) -> None:
-        """Let go of the file, so that it can be mended; meanwhile all waits, and this is the trouble."""
+        """Let go of the file until `come_back`, so that it can be mended; all waits, this is the trouble."""
         self._trouble = trouble
+        self._away = True
         if self._history is not None:
             with suppress(DiskwatchError):
                 self._history.close()
             self._history = None
+
+    def come_back(self) -> None:
+        """Take up the history again that was let go, and write what waits."""
+        self._away = False
+        self._flush()
 
     def try_again(self) -> None:
         """Write what waits, if it can be written now."""
@@ -190,6 +197,8 @@ class Keeper:
         self._flush()
 
     def _flush(self) -> None:
+        if self._away:
+            return
         try:
             if self._history is None:
                 self._take_up(History.open(self._folder))

@@ -150,4 +150,4 @@ class Upkeep:
             raise HistoryError(error.what, hint=error.hint) from error
         finally:
             with self._lock:
-                self._keeper.try_again()
+                self._keeper.come_back()

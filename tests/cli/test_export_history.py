@@ -22,7 +22,7 @@ def test_the_past_of_all_drives_or_of_one_goes_to_a_file_or_to_standard_output(t
     file = tmp_path / "past.csv"
     one = run("export-history", "--drive", "inv1", "--format", "csv", "-o", file, "--state", state)
     assert (one.code, one.out) == (0, "")
-    assert f"rows of one drive are in {file}" in one.err
+    assert f"the past of one drive is in {file}" in one.err
     lines, wrong = read(file.read_text())
     assert wrong == ()
     assert [line.fields["device"] for line in lines if line.record == "drive"] == ["/dev/inv1"]

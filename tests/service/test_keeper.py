@@ -132,8 +132,10 @@ def test_a_history_that_was_let_go_is_taken_up_again_with_all_that_waited(tmp_pa
     assert keeper.trouble == "It is being mended."
     with History.open(tmp_path):
         keeper.record(a_round(keeper, NOON + 60))
+        keeper.try_again()
         assert keeper.waiting == 1
-    keeper.try_again()
+        assert keeper.trouble == "It is being mended."
+    keeper.come_back()
     assert keeper.waiting == 0
     assert keeper.ask(History.known)
     keeper.close()
