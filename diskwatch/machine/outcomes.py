@@ -12,7 +12,7 @@ from dataclasses import dataclass
 from diskwatch.machine.command import Answer, Ending
 from diskwatch.machine.held import Family
 from diskwatch.machine.reading import Support, Understood
-from diskwatch.records import Outcome
+from diskwatch.records import Kind, Outcome
 from diskwatch.units import plain
 
 ASLEEP_STATUS = 3
@@ -35,14 +35,24 @@ _ABSENT = re.compile(
 )
 _UNKNOWN_BRIDGE = "It cannot be asked, since smartctl does not know its USB adapter"
 _NO_ANSWER = "It answers no question of ATA, SCSI or NVMe, as is usual for virtual disks"
+_TRY = "look at its cable and power, or try it at another port"
+_SHOULD_ANSWER = {
+    Kind.NVME: ("NVMe", "see that it sits firmly and has power, or try it in another slot"),
+    Kind.SAS: ("SCSI", _TRY),
+    Kind.USB: ("ATA, SCSI or NVMe", f"{_TRY} or behind another adapter"),
+    Kind.SSD: ("ATA", _TRY),
+    Kind.HDD: ("ATA", _TRY),
+}
+"""What every drive of a kind answers, and what to try where one does not; a virtual disk need answer nothing."""
+
 _NO_SMART: tuple[tuple[re.Pattern[str], str], ...] = (
     (re.compile(r"unknown usb bridge", re.IGNORECASE), _UNKNOWN_BRIDGE),
-    (re.compile(r"unable to detect device type|neither ata, scsi nor nvme", re.IGNORECASE), _NO_ANSWER),
     (
         re.compile(r"lacks smart capability|does not support smart|don't support ata smart", re.IGNORECASE),
         "It has no SMART",
     ),
 )
+_NO_LANGUAGE = re.compile(r"unable to detect device type|neither ata, scsi nor nvme", re.IGNORECASE)
 _VERSION = re.compile(r"smartctl (?:version |pre-)?[0-9]")
 """The line that names the tool's version: complaints begin with "Smartctl" as well, in another case."""
 
@@ -162,7 +172,9 @@ def _lacking(answer: Answer, tool: str) -> str:
     )
 
 
-def of_words(said: Iterable[str], status: int | None, what: Understood, *, expects_smart: bool) -> Verdict:
+def of_words(
+    said: Iterable[str], status: int | None, what: Understood, *, expects_smart: bool, kind: Kind
+) -> Verdict:
     """The verdict on a whole answer.
 
     Args:
@@ -170,6 +182,7 @@ def of_words(said: Iterable[str], status: int | None, what: Understood, *, expec
         status: smartctl's exit status.
         what: what was understood of the answer.
         expects_smart: whether the kernel lets one expect SMART of it.
+        kind: what sort of device the machine takes it for.
     """
     lines = [line for line in said if line.strip()]
     # A SCSI drive answers though its exception control is off, even that it predicts its failure; an ATA drive
@@ -201,6 +214,8 @@ def of_words(said: Iterable[str], status: int | None, what: Understood, *, expec
     for pattern, why in _NO_SMART:
         if _first(lines, pattern) is not None:
             return _without_smart(why)
+    if _first(lines, _NO_LANGUAGE) is not None:
+        return _without_smart(_no_answer(kind))
     if status == ASLEEP_STATUS:
         return Verdict(outcome=Outcome.ASLEEP, explanation=_RESTS)
     return _not_understood(lines, what, expects_smart=expects_smart)
@@ -211,6 +226,17 @@ def through_no_type(types: Iterable[str]) -> Verdict:
     return _without_smart(
         f"It cannot be asked through its USB adapter: none of smartctl's types {', '.join(types)} brings its "
         "readings; without that adapter, or behind another, it may be read"
+    )
+
+
+def _no_answer(kind: Kind) -> str:
+    """What to say of a device that speaks no language: of a real drive that is no usual thing."""
+    if kind not in _SHOULD_ANSWER:
+        return _NO_ANSWER
+    language, deed = _SHOULD_ANSWER[kind]
+    return (
+        f"It answers no question of {language}, as a drive of its kind should: {deed}, and where it answered "
+        "before, copy off what matters first"
     )
 
 

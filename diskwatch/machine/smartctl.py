@@ -194,7 +194,9 @@ class Smartctl:
             *(messages(document) if document is not None else ()),
             *decoded(answer.err).splitlines(),
         )
-        verdict = outcomes.of_words(said, answer.status, what, expects_smart=found.expects_smart)
+        verdict = outcomes.of_words(
+            said, answer.status, what, expects_smart=found.expects_smart, kind=found.drive.kind
+        )
         if verdict.outcome is Outcome.READ:
             reading = self._optional.learn(found, logs, what, lines, document, at=self._now())
             what = replace(what, reading=reading)

@@ -1,9 +1,9 @@
 import pytest
 
 from diskwatch.machine.command import Answer, Ending
-from diskwatch.machine.outcomes import Verdict, of_command, of_scan, of_words, quoted
+from diskwatch.machine.outcomes import _SHOULD_ANSWER, Verdict, of_command, of_scan, of_words, quoted
 from diskwatch.machine.reading import understood
-from diskwatch.records import Outcome
+from diskwatch.records import Kind, Outcome
 from tests.machine.recordings import FIXTURES, text_of
 
 HEAD = (
@@ -18,15 +18,27 @@ def fixture(name: str) -> tuple[str, ...]:
 
 
 def verdict(
-    lines: tuple[str, ...], status: int, *, expects_smart: bool = True, err: str = ""
+    lines: tuple[str, ...],
+    status: int,
+    *,
+    expects_smart: bool = True,
+    kind: Kind = Kind.HDD,
+    err: str = "",
 ) -> tuple[str, str]:
-    found = judged(lines, status, expects_smart=expects_smart, err=err)
+    found = judged(lines, status, expects_smart=expects_smart, kind=kind, err=err)
     return found.outcome.value, found.explanation or ""
 
 
-def judged(lines: tuple[str, ...], status: int, *, expects_smart: bool = True, err: str = "") -> Verdict:
+def judged(
+    lines: tuple[str, ...],
+    status: int,
+    *,
+    expects_smart: bool = True,
+    kind: Kind = Kind.HDD,
+    err: str = "",
+) -> Verdict:
     what = understood(lines, None, type_=None, path="/dev/x")
-    found = of_words((*lines, err), status, what, expects_smart=expects_smart)
+    found = of_words((*lines, err), status, what, expects_smart=expects_smart, kind=kind)
     assert (found.explanation is None) is (found.outcome is Outcome.READ)
     assert found.explanation is None or is_a_sentence_about_it(found.explanation)
     return found
@@ -95,10 +107,36 @@ def test_what_is_said_on_the_error_channel_counts_too():
     assert verdict((), 2, err="cannot open: Permission denied")[0] == "refused"
 
 
-def test_a_disk_of_no_language_has_no_smart():
-    outcome, why = verdict((*HEAD, "/dev/vda: Unable to detect device type"), 1)
+NO_LANGUAGE = (*HEAD, "/dev/x1: Unable to detect device type", "Please specify device type with the -d option.")
+
+
+def test_a_virtual_disk_of_no_language_has_no_smart():
+    outcome, why = verdict(NO_LANGUAGE, 1, kind=Kind.VIRTUAL)
     assert outcome == "no-smart"
-    assert "virtual" in why
+    assert "usual for virtual disks" in why
+
+
+@pytest.mark.parametrize(
+    ("kind", "language", "deed"),
+    [
+        (Kind.HDD, "question of ATA,", "cable and power, or try it at another port"),
+        (Kind.SSD, "question of ATA,", "another port"),
+        (Kind.SAS, "question of SCSI,", "another port"),
+        (Kind.NVME, "question of NVMe,", "another slot"),
+        (Kind.USB, "question of ATA, SCSI or NVMe,", "another adapter"),
+    ],
+)
+def test_a_real_drive_of_no_language_is_not_explained_away_as_virtual(kind: Kind, language: str, deed: str):
+    outcome, why = verdict(NO_LANGUAGE, 1, kind=kind)
+    assert outcome == "no-smart"
+    assert "virtual" not in why
+    assert language in why
+    assert deed in why
+    assert "copy off what matters first" in why
+
+
+def test_every_kind_but_virtual_is_known_to_answer_some_language():
+    assert set(_SHOULD_ANSWER) == set(Kind) - {Kind.VIRTUAL}
 
 
 def test_an_unknown_usb_bridge_has_no_smart():

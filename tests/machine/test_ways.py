@@ -31,7 +31,9 @@ def device(
 def next_types(found: Found, type_: str | None, text: str, status: int = 2) -> tuple[str, ...]:
     lines = tuple(text.splitlines())
     what = understood(lines, None, type_=type_, path="/dev/sdx")
-    return others(found, type_, lines, of_words(lines, status, what, expects_smart=True), what)
+    return others(
+        found, type_, lines, of_words(lines, status, what, expects_smart=True, kind=found.drive.kind), what
+    )
 
 
 @pytest.mark.parametrize(
