@@ -124,6 +124,7 @@ SOUND = {
     "steady work": (disk.STEADY, 120),
     "work changes openly": (disk.VISIBLE, 120),
     "work changes openly and hidden": (disk.HIDDEN, 120),
+    "openly and hidden, changes add up": (disk.World(visible=True, hidden=True, adds_up=True), 120),
     "openly, day noise 10 %": (disk.World(visible=True, day_noise=0.10), 40),
     "openly, day noise 15 %": (disk.World(visible=True, day_noise=0.15), 40),
     "openly, +- 8 % over the year": (disk.World(visible=True, season=0.08), 40),

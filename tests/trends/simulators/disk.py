@@ -54,6 +54,7 @@ class World:
         visible: whether the work changes openly, about every 170 days.
         heavy: natural logarithm by which the owner's load lies above the usual.
         hidden: whether such a change also moves stroke and cache, which no counter shows.
+        adds_up: True where each hidden change comes on top of those before it, False where each replaces them.
         day_noise: spread of a day's own pace, as a natural logarithm.
         season: swing of times over the year, as a natural logarithm.
         begins: day from which the disk is slower; None for never.
@@ -65,6 +66,7 @@ class World:
     visible: bool = False
     heavy: float = 0.0
     hidden: bool = False
+    adds_up: bool = False
     day_noise: float = 0.05
     season: float = 0.0
     begins: int | None = None
@@ -113,7 +115,7 @@ def _changed(owner: _Owner, chance: Random, world: World) -> _Owner:
         far, cache = exp(chance.gauss(0, 0.15)), chance.gauss(0, 0.05)
         works = tuple(
             replace(one, stroke=min(1.0, one.stroke * far), cached=min(0.8, max(0.0, one.cached + cache)))
-            for one in works
+            for one in (owner.works if world.adds_up else WORKS)
         )
     mix = tuple(chance.gammavariate(0.8, 1) + 0.02 for _ in WORKS)
     return replace(owner, mix=mix, load=owner.usual + chance.gauss(0, 1), works=works)
