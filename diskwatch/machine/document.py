@@ -6,6 +6,26 @@ from typing import cast
 
 Document = Mapping[str, object]
 
+_SORTS: tuple[tuple[type, tuple[tuple[str, ...], ...]], ...] = (
+    (list, (("smartctl", "version"), ("smartctl", "output"), ("smartctl", "messages"))),
+    (str, (("serial_number",), ("model_name",))),
+    (
+        dict,
+        (
+            ("smartctl",),
+            ("device",),
+            ("wwn",),
+            ("user_capacity",),
+            ("smart_status",),
+            ("temperature",),
+            ("power_on_time",),
+            ("ata_smart_attributes",),
+            ("nvme_smart_health_information_log",),
+        ),
+    ),
+)
+"""Of which sort smartctl 7.3 writes some members, where it writes them."""
+
 
 def document_of(text: str) -> Document | None:
     """The document in a command's output, or None where the output is no JSON object.
@@ -68,6 +88,16 @@ def rows_at(document: object, *path: str) -> tuple[Document, ...]:
     if not isinstance(found, list):
         return ()
     return tuple(cast("Document", row) for row in found if isinstance(row, dict))
+
+
+def in_shape(document: Document) -> bool:
+    """Whether the members of a document are of the sort that smartctl writes."""
+    return all(
+        found is None or isinstance(found, sort)
+        for sort, paths in _SORTS
+        for path in paths
+        for found in (dig(document, *path),)
+    )
 
 
 def plain_lines(document: Document) -> tuple[str, ...]:

@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from diskwatch.machine.command import Answer, Ending
 from diskwatch.machine.held import Family
 from diskwatch.machine.reading import Support, Understood
+from diskwatch.machine.text import names_version
 from diskwatch.records import Kind, Outcome
 from diskwatch.units import plain
 
@@ -19,6 +20,11 @@ ASLEEP_STATUS = 3
 """The exit status that smartctl is told to end with where a drive is in standby."""
 
 _QUOTED = 200
+
+_SAY_WHICH = "see whether [smart] command in the settings names smartctl, and one that works"
+_NOT_PARSED, _TROUBLES = 1, 0b111
+"""smartctl's exit bits (its manual page): the command line was not understood; that, or the device could not be
+opened, or a command to it failed."""
 
 _ASLEEP = re.compile(
     r"device is in [\w ()-]*\b(?:standby|sleep|stopped|idle)\w*\b[\w ()-]* mode|device is not ready",
@@ -43,7 +49,7 @@ _SHOULD_ANSWER = {
     Kind.SSD: ("ATA", _TRY),
     Kind.HDD: ("ATA", _TRY),
 }
-"""What every drive of a kind answers, and what to try where one does not; a virtual disk need answer nothing."""
+"""What every drive of a kind answers, and what to try where one does not; a virtual disk need not answer."""
 
 _NO_SMART: tuple[tuple[re.Pattern[str], str], ...] = (
     (re.compile(r"unknown usb bridge", re.IGNORECASE), _UNKNOWN_BRIDGE),
@@ -53,9 +59,6 @@ _NO_SMART: tuple[tuple[re.Pattern[str], str], ...] = (
     ),
 )
 _NO_LANGUAGE = re.compile(r"unable to detect device type|neither ata, scsi nor nvme", re.IGNORECASE)
-_VERSION = re.compile(r"smartctl (?:version |pre-)?[0-9]")
-"""The line that names the tool's version: complaints begin with "Smartctl" as well, in another case."""
-
 _NOISE = re.compile(
     r"copyright|=== start|use smartctl -h|please specify device type|a mandatory smart command|$", re.IGNORECASE
 )
@@ -119,8 +122,7 @@ def of_command(answer: Answer, *, command: str, timeout: float) -> Verdict | Non
     if answer.ending is Ending.TOO_MUCH:
         return Verdict(
             outcome=Outcome.GARBLED,
-            explanation=f"It was not read, since {tool} wrote without end and was cut off: see whether that "
-            "is smartctl.",
+            explanation=f"It was not read, since {tool} wrote without end and was cut off: {_SAY_WHICH}.",
         )
     if answer.status is not None and answer.status < 0:
         return Verdict(
@@ -173,7 +175,7 @@ def _lacking(answer: Answer, tool: str) -> str:
 
 
 def of_words(
-    said: Iterable[str], status: int | None, what: Understood, *, expects_smart: bool, kind: Kind
+    said: Iterable[str], status: int | None, what: Understood, *, expects_smart: bool, kind: Kind, command: str
 ) -> Verdict:
     """The verdict on a whole answer.
 
@@ -183,6 +185,7 @@ def of_words(
         what: what was understood of the answer.
         expects_smart: whether the kernel lets one expect SMART of it.
         kind: what sort of device the machine takes it for.
+        command: what was run.
     """
     lines = [line for line in said if line.strip()]
     # A SCSI drive answers though its exception control is off, even that it predicts its failure; an ATA drive
@@ -211,14 +214,17 @@ def of_words(
             outcome=Outcome.ABSENT,
             explanation="It is not there any more: if nobody unplugged it, look at its cable and power.",
         )
-    for pattern, why in _NO_SMART:
-        if _first(lines, pattern) is not None:
-            return _without_smart(why)
-    if _first(lines, _NO_LANGUAGE) is not None:
-        return _without_smart(_no_answer(kind))
+    lacking = next((why for pattern, why in _NO_SMART if _first(lines, pattern) is not None), None)
+    if lacking is None and _first(lines, _NO_LANGUAGE) is not None:
+        lacking = _no_answer(kind)
+    if lacking is not None:
+        return _without_smart(lacking)
     if status == ASLEEP_STATUS:
-        return Verdict(outcome=Outcome.ASLEEP, explanation=_RESTS)
-    return _not_understood(lines, what, expects_smart=expects_smart)
+        return Verdict(outcome=Outcome.ASLEEP, explanation=_RESTS, unproved=not what.genuine)
+    if what.support is Support.NONE or not expects_smart:
+        return _without_smart("It has no SMART")
+    telling = next((line for line in lines if _is_telling(line.strip())), None)
+    return _of_tool(status, what, quoted(command), telling) or _garbled(what, telling)
 
 
 def through_no_type(types: Iterable[str]) -> Verdict:
@@ -244,27 +250,41 @@ def _without_smart(why: str) -> Verdict:
     return Verdict(outcome=Outcome.NO_SMART, explanation=f"{why}; its traffic is watched all the same.")
 
 
-def _not_understood(lines: list[str], what: Understood, *, expects_smart: bool) -> Verdict:
+def _of_tool(status: int | None, what: Understood, tool: str, telling: str | None) -> Verdict | None:
+    """The verdict where the tool is why there is no reading; None where the drive is."""
+    troubles = (status or 0) & _TROUBLES
+    if not what.genuine:
+        why = f"what {tool} wrote is no answer of smartctl"
+    elif troubles == _NOT_PARSED:
+        why = f"{tool} did not understand the question"
+    elif troubles == 0 and what.drive is None:
+        why = f"{tool} told neither a drive nor any trouble"
+    else:
+        return None
+    return _not_read(f"It was not read, since {why}: {_SAY_WHICH}", telling)
+
+
+def _garbled(what: Understood, telling: str | None) -> Verdict:
     """An answer in which nothing of a drive's state can be found."""
-    if what.support is Support.NONE or not expects_smart:
-        return _without_smart("It has no SMART")
-    telling = next((line for line in lines if _is_telling(line.strip())), None)
     if what.drive is not None:
         why = "It says who it is, but not how it is: its SMART data could not be read"
     elif telling is None:
         why = "It could not be read, and smartctl ended without a word about why"
     else:
         why = "It gave no answer that makes sense"
-    words = f" ({quoted(telling)})" if telling is not None and what.drive is None else ""
-    return Verdict(
-        outcome=Outcome.GARBLED,
-        explanation=f"{why}; if it stays so, copy off what matters first, then look at its cable and adapter"
-        f"{words}.",
+    return _not_read(
+        f"{why}; if it stays so, copy off what matters first, then look at its cable and adapter",
+        telling if what.drive is None else None,
     )
 
 
+def _not_read(why: str, telling: str | None) -> Verdict:
+    words = f" ({quoted(telling)})" if telling is not None else ""
+    return Verdict(outcome=Outcome.GARBLED, explanation=f"{why}{words}.")
+
+
 def _is_telling(line: str) -> bool:
-    return _VERSION.match(line) is None and _NOISE.match(line) is None
+    return not names_version(line) and _NOISE.match(line) is None
 
 
 def _first(lines: Iterable[str], pattern: re.Pattern[str]) -> str | None:

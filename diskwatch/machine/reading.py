@@ -5,10 +5,10 @@ from dataclasses import dataclass, replace
 from enum import Enum, auto
 
 from diskwatch.machine import ata, logs, nvme_errors, packing, sct
-from diskwatch.machine.document import Document, flag_at
+from diskwatch.machine.document import Document, dig, flag_at, in_shape
 from diskwatch.machine.held import Family, device_of
 from diskwatch.machine.selftests import newest_result, self_tests
-from diskwatch.machine.text import Sheet
+from diskwatch.machine.text import Sheet, is_of_smartctl
 from diskwatch.machine.told import drive_of, family_of, is_flash
 from diskwatch.records import Drive, Reading, SignalKind, Value
 from diskwatch.units import plain
@@ -32,12 +32,14 @@ class Understood:
         drive: the drive as it describes itself, or None.
         reading: what it states of its state; may hold nothing.
         support: what it says of its SMART.
+        genuine: whether it is written as smartctl writes: the version is named, the document in shape.
     """
 
     family: Family
     drive: Drive | None
     reading: Reading
     support: Support
+    genuine: bool
 
     @property
     def says_something(self) -> bool:
@@ -97,7 +99,13 @@ def understood(
             critical_celsius=critical,
         ),
         support=_support(document, sheet),
+        genuine=_genuine(document, sheet),
     )
+
+
+def _genuine(document: Document | None, sheet: Sheet) -> bool:
+    signed = any(map(is_of_smartctl, sheet.lines)) or dig(document, "smartctl", "version") is not None
+    return signed and (document is None or in_shape(document))
 
 
 def _possible(value: Value) -> Value:

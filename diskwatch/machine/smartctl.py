@@ -195,7 +195,12 @@ class Smartctl:
             *decoded(answer.err).splitlines(),
         )
         verdict = outcomes.of_words(
-            said, answer.status, what, expects_smart=found.expects_smart, kind=found.drive.kind
+            said,
+            answer.status,
+            what,
+            expects_smart=found.expects_smart,
+            kind=found.drive.kind,
+            command=self._command,
         )
         if verdict.outcome is Outcome.READ:
             reading = self._optional.learn(found, logs, what, lines, document, at=self._now())

@@ -14,6 +14,8 @@ _NUMBER = re.compile(
     rf"(?P<number>[0-9]{{1,3}}(?:(?P<apart>[{_SEPARATORS}])[0-9]{{3}}(?:(?P=apart)[0-9]{{3}})*)|[0-9]{{1,40}})"
     r"\s*(?:%|bytes|Celsius|C|Pages|rpm|minutes)?\s*(?:\[.*)?"
 )
+_VERSION = re.compile(r"smartctl (?:version |pre-)?[0-9]")
+_OWN_WORDS = re.compile(r"Smartctl open device|Read Device Identity|A mandatory SMART command|=== START OF ")
 _LABELLED = re.compile(r"\s*(?P<label>[^\s:=][^:=]{0,70}?)\s*[:=]\s*(?P<value>.*?)\s*")
 
 
@@ -37,6 +39,16 @@ def hexadecimal(text: str) -> int | None:
     """A number such as ``0x04`` that makes up the whole text, else None."""
     found = re.fullmatch(r"\s*0x([0-9a-fA-F]{1,32})\s*", text)
     return int(found[1], 16) if found else None
+
+
+def names_version(line: str) -> bool:
+    """Whether a line names smartctl's version; its complaints begin with its name as well, in another case."""
+    return _VERSION.match(line.strip()) is not None
+
+
+def is_of_smartctl(line: str) -> bool:
+    """Whether a line shows that it was smartctl that wrote it."""
+    return names_version(line) or _OWN_WORDS.match(line.strip()) is not None
 
 
 @dataclass(frozen=True, slots=True)

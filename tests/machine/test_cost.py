@@ -64,7 +64,9 @@ def drive(node: str) -> Found:
         address=Address(node=node, type="sat"),
         blocks=(),
         place=Place(device=node),
-        drive=Drive(identity=Identity(wwn=None, model=None, serial=None, path=node), kind=Kind.HDD),
+        drive=Drive(
+            identity=Identity(wwn=None, model=None, serial=None, path=node), kind=Kind.HDD, command="x"
+        ),
     )
 
 

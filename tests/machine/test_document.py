@@ -2,6 +2,7 @@ from diskwatch.machine.document import (
     dig,
     document_of,
     flag_at,
+    in_shape,
     messages,
     natural_at,
     number_at,
@@ -54,6 +55,14 @@ def test_a_number_that_a_field_cannot_hold_is_none():
     assert natural_at(row, "worst") is None
     assert natural_at(row, "hours") == 0
     assert natural_at(row, "none") is None
+
+
+def test_a_document_is_in_shape_unless_a_member_is_of_another_sort_than_smartctl_writes():
+    assert in_shape({})
+    assert in_shape({"smartctl": {"version": [7, 3]}, "serial_number": "INVENTED-1", "unknown": 5})
+    assert not in_shape({"smartctl": {"version": "7.3"}})
+    assert not in_shape({"serial_number": 7})
+    assert not in_shape({"power_on_time": [1]})
 
 
 def test_the_plain_text_and_the_complaints_are_found():

@@ -38,7 +38,7 @@ def judged(
     err: str = "",
 ) -> Verdict:
     what = understood(lines, None, type_=None, path="/dev/x")
-    found = of_words((*lines, err), status, what, expects_smart=expects_smart, kind=kind)
+    found = of_words((*lines, err), status, what, expects_smart=expects_smart, kind=kind, command="/opt/tool")
     assert (found.explanation is None) is (found.outcome is Outcome.READ)
     assert found.explanation is None or is_a_sentence_about_it(found.explanation)
     return found
@@ -204,6 +204,48 @@ def test_a_drive_that_names_itself_but_gives_no_data_is_garbled():
     assert "could not be read" in why
 
 
+@pytest.mark.parametrize(
+    ("lines", "status", "word"),
+    [
+        ((), 0, "no answer of smartctl"),
+        (("AAAA", "AAAA"), 0, "no answer of smartctl"),
+        (("sudo: a password is required",), 1, "no answer of smartctl"),
+        ((*HEAD, "=======> UNRECOGNIZED OPTION: all"), 1, "did not understand the question"),
+        (HEAD, 0, "neither a drive nor any trouble"),
+    ],
+)
+def test_where_the_tool_is_at_fault_it_and_its_setting_are_named_and_no_cable(
+    lines: tuple[str, ...], status: int, word: str
+):
+    outcome, why = verdict(lines, status)
+    assert outcome == "garbled"
+    assert word in why
+    assert "/opt/tool" in why
+    assert "[smart] command in the settings" in why
+    assert "cable" not in why
+
+
+@pytest.mark.parametrize(
+    "lines",
+    [
+        ("Read Device Identity failed: Input/output error",),
+        ("Smartctl open device: /dev/sdq failed: INQUIRY failed",),
+        (*HEAD, "Read Device Identity failed: scsi error medium or hardware error (serious)"),
+    ],
+)
+def test_where_the_tool_had_trouble_with_the_drive_the_drive_is_what_to_look_at(lines: tuple[str, ...]):
+    outcome, why = verdict(lines, 2)
+    assert outcome == "garbled"
+    assert "copy off what matters first" in why
+    assert "[smart]" not in why
+
+
+def test_an_exit_status_alone_that_stands_for_sleep_is_proof_only_where_smartctl_shows_that_it_is_there():
+    assert judged(HEAD, 3).unproved is False
+    assert judged((), 3).unproved is True
+    assert judged((), 3).outcome is Outcome.ASLEEP
+
+
 def test_silence_and_noise_are_garbled_unless_no_smart_was_to_be_expected():
     assert verdict((), 0)[0] == "garbled"
     assert verdict(("\x00\x1b[2J 197 Current_Pending_Sector 0x0032",), 0)[0] == "garbled"
@@ -228,7 +270,7 @@ def test_words_of_a_drive_are_made_harmless_and_cut():
         (Answer(ending=Ending.TIMED_OUT), "timed-out", "no answer in 60 s"),
         (Answer(ending=Ending.HELD), "timed-out", "stuck in the kernel"),
         (Answer(ending=Ending.STOPPED), "timed-out", "ended"),
-        (Answer(ending=Ending.TOO_MUCH), "garbled", "without end"),
+        (Answer(ending=Ending.TOO_MUCH), "garbled", "without end and was cut off: see whether [smart] command"),
         (Answer(ending=Ending.ENDED, status=-11), "garbled", "signal 11"),
     ],
 )

@@ -431,8 +431,18 @@ def test_a_document_of_the_wrong_shape_gives_no_impossible_number_and_counts_for
     assert told is not None
     for type_ in ("sat", "nvme", "scsi"):
         found = understood(plain_lines(told), told, type_=type_, path="/dev/x")
-        assert (found.drive, found.says_something) == (None, False)
+        assert (found.drive, found.says_something, found.genuine) == (None, False, False)
         assert all(value.value is None and value.reason for value in found.reading.values)
+
+
+def test_an_answer_is_smartctls_where_it_names_itself_and_its_document_is_in_shape():
+    text = fixture("invented_hdd_sister/all.txt")
+    assert read(text).genuine
+    assert not read("AAAA\n").genuine
+    told = document("invented_nvme_json/document.json")
+    assert understood((), told, type_=None, path="x").genuine
+    assert not understood((), {**told, "smart_status": "yes"}, type_=None, path="x").genuine
+    assert not understood((), {"temperature": {"current": 30}}, type_=None, path="x").genuine
 
 
 @pytest.mark.parametrize(

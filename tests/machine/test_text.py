@@ -1,7 +1,7 @@
 import pytest
 from hypothesis import given, strategies as st
 
-from diskwatch.machine.text import Sheet, decoded, hexadecimal, whole
+from diskwatch.machine.text import Sheet, decoded, hexadecimal, is_of_smartctl, names_version, whole
 
 
 @pytest.mark.parametrize(
@@ -70,3 +70,23 @@ def test_a_label_that_stands_twice_keeps_both_values():
 @given(st.binary(max_size=200))
 def test_any_bytes_become_text_and_lines(output: bytes):
     Sheet.of(decoded(output).splitlines())
+
+
+@pytest.mark.parametrize(
+    ("line", "version", "own"),
+    [
+        ("smartctl 7.3 2022-02-28 r5338 [x86_64-linux-6.1.0] (local build)", True, True),
+        ("smartctl pre-7.5 2024-11-01 r5600", True, True),
+        ("smartctl version 5.38", True, True),
+        ("Smartctl open device: /dev/sdq [SAT] failed: Input/output error", False, True),
+        ("Read Device Identity failed: Input/output error", False, True),
+        ("=== START OF INFORMATION SECTION ===", False, True),
+        ("smartctl: command not found", False, False),
+        ("AAAA", False, False),
+        ("", False, False),
+    ],
+)
+def test_the_tools_version_is_told_from_its_complaints_and_both_from_words_of_others(
+    line: str, version: bool, own: bool
+):
+    assert (names_version(line), is_of_smartctl(line)) == (version, own)

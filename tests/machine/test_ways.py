@@ -32,7 +32,11 @@ def next_types(found: Found, type_: str | None, text: str, status: int = 2) -> t
     lines = tuple(text.splitlines())
     what = understood(lines, None, type_=type_, path="/dev/sdx")
     return others(
-        found, type_, lines, of_words(lines, status, what, expects_smart=True, kind=found.drive.kind), what
+        found,
+        type_,
+        lines,
+        of_words(lines, status, what, expects_smart=True, kind=found.drive.kind, command="smartctl"),
+        what,
     )
 
 
