@@ -14,7 +14,7 @@ from diskwatch.machine.outcomes import ASLEEP_STATUS, Verdict, quoted
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import Understood, understood
 from diskwatch.machine.rest import Completed, Rest
-from diskwatch.machine.text import decoded
+from diskwatch.machine.text import decoded, lines_of
 from diskwatch.machine.told import merged
 from diskwatch.machine.ways import Ways
 from diskwatch.records import Outcome, Pass
@@ -186,13 +186,13 @@ class Smartctl:
             return _Told(type_, verdict)
         text = decoded(answer.out)
         document = document_of(text)
-        lines = plain_lines(document) if document is not None else tuple(text.splitlines())
+        lines = plain_lines(document) if document is not None else lines_of(text)
         first = self._optional.statistics_first(found)
         what = understood(lines, document, type_=type_, path=found.drive.identity.path, statistics_first=first)
         said = (
             *lines,
             *(messages(document) if document is not None else ()),
-            *decoded(answer.err).splitlines(),
+            *lines_of(decoded(answer.err)),
         )
         verdict = outcomes.of_words(
             said,

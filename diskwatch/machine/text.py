@@ -27,6 +27,14 @@ def decoded(output: bytes) -> str:
         return output.decode("latin-1")
 
 
+def lines_of(text: str) -> tuple[str, ...]:
+    """The lines of a text, ended by line feeds alone.
+
+    A drive's name may hold other letters that pass for line ends, and would then be cut in two.
+    """
+    return tuple(line.removesuffix("\r") for line in text.removesuffix("\n").split("\n")) if text else ()
+
+
 def whole(text: str) -> int | None:
     """A number that makes up the whole text, but for thousands' separators and a unit behind it; else None."""
     found = _NUMBER.fullmatch(text.strip())

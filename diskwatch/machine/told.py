@@ -143,9 +143,15 @@ def _merged_kind(found: Drive, told: Drive) -> Kind:
 
 
 def _name(text: str | None) -> str | None:
-    """A name without outer blanks; None where it is empty or holds what no name holds."""
-    stripped = (text or "").strip(" \0")
-    return stripped if stripped.isprintable() and 0 < len(stripped) <= _LONGEST else None
+    """A name without outer blanks, and without what no name holds; None where nothing is left of it.
+
+    Broken firmware or a flipped bit may set a letter in it that cannot be shown; the rest still tells the drive
+    from others, unless it is a single letter.
+    """
+    told = (text or "").strip(" \0")
+    shown = "".join(letter for letter in told if letter.isprintable()).strip()
+    least = 1 if shown == told else 2
+    return shown if least <= len(shown) <= _LONGEST else None
 
 
 def _model(family: Family, document: Document | None, sheet: Sheet) -> str | None:

@@ -265,6 +265,13 @@ def test_a_drive_asleep_brings_neither_drive_nor_reading():
     assert (found.outcome, found.drive, found.reading, found.exit_bits) == (Outcome.ASLEEP, None, None, 3)
 
 
+def test_a_name_with_an_odd_letter_that_passes_for_a_line_end_is_not_cut_in_two():
+    tool, _ = smartctl(said(HDD.read_text().replace("INVENTED-BT-0001", "INVENTED\x1c-BT-\u20280001")))
+    drive = tool.ask(asked()).drive
+    assert drive is not None
+    assert drive.identity.serial == "INVENTED-BT-0001"
+
+
 def test_a_drive_without_smart_states_who_it_is_and_brings_no_reading():
     tool, _ = smartctl(said((FIXTURES / "invented_virtual_no_smart" / "all.txt").read_bytes(), 4))
     found = tool.ask(asked())

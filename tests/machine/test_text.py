@@ -1,7 +1,7 @@
 import pytest
 from hypothesis import given, strategies as st
 
-from diskwatch.machine.text import Sheet, decoded, hexadecimal, is_of_smartctl, names_version, whole
+from diskwatch.machine.text import Sheet, decoded, hexadecimal, is_of_smartctl, lines_of, names_version, whole
 
 
 @pytest.mark.parametrize(
@@ -90,3 +90,19 @@ def test_the_tools_version_is_told_from_its_complaints_and_both_from_words_of_ot
     line: str, version: bool, own: bool
 ):
     assert (names_version(line), is_of_smartctl(line)) == (version, own)
+
+
+def test_a_line_ends_at_a_line_feed_and_nowhere_else():
+    assert lines_of("a\r\nSerial Number: X\x1c\x85\u2028\x0bY\n\nb\n") == (
+        "a",
+        "Serial Number: X\x1c\x85\u2028\x0bY",
+        "",
+        "b",
+    )
+    assert lines_of("") == ()
+    assert lines_of("\n") == ("",)
+
+
+@given(st.text(alphabet="ab \n", max_size=20))
+def test_text_without_odd_letters_is_split_as_always(text: str):
+    assert lines_of(text) == tuple(text.splitlines())

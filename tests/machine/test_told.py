@@ -40,6 +40,36 @@ def test_a_serial_is_kept_as_it_stands_but_for_outer_blanks(text: str):
     assert serial_of(text) == text.strip()
 
 
+@pytest.mark.parametrize(
+    ("text", "serial"),
+    [
+        ("INV\x7f\x9d0;x\x07-KR-0012", "INV0;x-KR-0012"),
+        ("\x01 AB\u202e12 \x02", "AB12"),
+        ("A\x00", "A"),
+        ("\x01A", None),
+        ("\x01\x02", None),
+        ("\x1b[No Information Found]", None),
+    ],
+)
+def test_what_can_be_shown_of_a_serial_is_kept_though_a_control_character_stands_in_it(
+    text: str, serial: str | None
+):
+    assert serial_of(text) == serial
+
+
+def test_a_model_with_a_control_character_in_it_is_kept_and_nothing_else_of_the_drive_is_lost():
+    changed = sheet(
+        "invented_hdd_failing",
+        ("Tundra BT4000", "Tun\x9b2Jdra\u202e BT4000"),
+        ("INVENTED-BT", "INV\x07ENTED-BT"),
+    )
+    found = drive_of(Family.ATA, None, changed, "/dev/x")
+    plain = drive_of(Family.ATA, None, sheet("invented_hdd_failing"), "/dev/x")
+    assert found is not None
+    assert plain is not None
+    assert found == replace(plain, identity=replace(plain.identity, model="Borealis Tun2Jdra BT4000"))
+
+
 def test_a_name_longer_than_any_drive_has_room_for_is_none():
     assert serial_of("AB" * 60) is not None
     assert serial_of("AB" * 61) is None
