@@ -131,6 +131,9 @@ def _test(
     ATA has a word of its own for a sector that could not be read. SCSI and NVMe say which part of the test
     failed; there it was a sector where the drive names one, or where the SCSI sense key says medium error (3h).
     """
+    # Behind some results smartctl sets an arrow that points at the next column.
+    head, arrow, _ = result.partition("->")
+    result = (head.rstrip("- \t") or result) if arrow else result
     lower = result.lower()
     if any(word in lower for word in _NEITHER):
         ended: bool | None = None

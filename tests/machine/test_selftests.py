@@ -80,6 +80,30 @@ def test_a_scsi_test_met_an_unreadable_sector_where_it_names_one_or_says_medium_
     assert named.extended
 
 
+@pytest.mark.parametrize("library", [False, True])
+def test_the_arrow_that_points_at_the_next_column_is_no_part_of_a_result(library: bool):
+    named, medium, sound, aborted = log_of(SCSI, Family.SCSI, library=library)
+    assert (named.result, medium.result) == ("Failed in segment", "Failed in segment")
+    assert (sound.result, aborted.result) == ("Completed", "Aborted (by user command)")
+    assert newest_result((named, sound)) == "Failed in segment"
+
+
+@pytest.mark.parametrize(
+    ("told", "result"),
+    [
+        ("Failed in segment --> 7 -", "Failed in segment"),
+        ("Failed in segment->", "Failed in segment"),
+        ("Completed: servo/seek failure", "Completed: servo/seek failure"),
+        ("Self-test - odd", "Self-test - odd"),
+        ("-->", "-->"),
+    ],
+)
+def test_a_result_stays_the_drives_own_word_up_to_an_arrow(told: str, result: str):
+    row = {"self_test_code": {"string": "Short"}, "self_test_result": {"string": told}}
+    (found,) = self_tests(Family.NVME, {"nvme_self_test_log": {"table": [row]}}, None, Sheet.of([]))
+    assert found.result == result
+
+
 @pytest.mark.parametrize("more", ["", ", NSID 0xffffffff"])
 @pytest.mark.parametrize("library", [False, True])
 def test_an_nvme_log_is_read_under_either_headline_and_no_other_table_is(more: str, library: bool):
