@@ -3,7 +3,7 @@
 from functools import singledispatch
 from typing import TYPE_CHECKING
 
-from diskwatch.rehearsal import scenario as told
+from diskwatch.rehearsal import happenings as told
 from diskwatch.rehearsal.disk import Disk
 from diskwatch.rehearsal.heat import Spell
 from diskwatch.rehearsal.solid import Solid

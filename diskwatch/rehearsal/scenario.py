@@ -9,24 +9,18 @@ from typing import Annotated, Literal
 import msgspec
 
 from diskwatch.records import CallWord, Cause
+from diskwatch.rehearsal.happenings import Event, NotNegative, Positive, Table, Text
 from diskwatch.rehearsal.workload import Habit
 
 MARK = "INVENTED"
 """Stands in every model and begins every serial, so that no output can be taken for one of real drives."""
 
-_Positive = Annotated[float, msgspec.Meta(gt=0)]
-_NotNegative = Annotated[float, msgspec.Meta(ge=0)]
 _Count = Annotated[int, msgspec.Meta(ge=0)]
-_Text = Annotated[str, msgspec.Meta(min_length=1, max_length=120)]
 
 _GB, _TB = 10**9, 10**12
 
 
-class _Table(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
-    """A table of the file: unknown keys are refused."""
-
-
-class DriveSpec(_Table, frozen=True, kw_only=True):
+class DriveSpec(Table, frozen=True, kw_only=True):
     """An invented drive, as it is when the scenario begins.
 
     Attributes:
@@ -58,32 +52,32 @@ class DriveSpec(_Table, frozen=True, kw_only=True):
         joins_day: day on which it is plugged in.
     """
 
-    serial: _Text
-    model: _Text
+    serial: Text
+    model: Text
     kind: Literal["hdd", "ssd", "nvme"]
     device: Annotated[str, msgspec.Meta(pattern=r"^/dev/[a-z0-9]+$")]
-    bay: _Text
+    bay: Text
     capacity_gb: Annotated[int, msgspec.Meta(gt=0)]
-    firmware: _Text = "I1.0"
+    firmware: Text = "I1.0"
     rpm: Annotated[int, msgspec.Meta(ge=3_600, le=15_000)] = 7_200
     lives_here: tuple[str, ...] = ()
     age_hours: _Count = 0
     cycles: Annotated[int, msgspec.Meta(ge=1)] = 1
-    written_tb: _NotNegative = 0.0
-    read_tb: _NotNegative = 0.0
+    written_tb: NotNegative = 0.0
+    read_tb: NotNegative = 0.0
     reallocated: _Count = 0
     pending: _Count = 0
     bad_blocks: Annotated[int, msgspec.Meta(ge=0, le=400)] = 0
     crc: _Count = 0
     unsafe: _Count = 0
-    rated_turns: _Positive = 1_000.0
+    rated_turns: Positive = 1_000.0
     amplification: Annotated[float, msgspec.Meta(ge=1)] = 2.0
-    load: _NotNegative = 1.0
+    load: NotNegative = 1.0
     sleeps: bool = False
     backup: Literal["none", "source", "target"] = "none"
     self_tests_days: _Count = 0
     as_text: bool = False
-    joins_day: _NotNegative = 0.0
+    joins_day: NotNegative = 0.0
 
     @property
     def capacity(self) -> int:
@@ -101,126 +95,7 @@ class DriveSpec(_Table, frozen=True, kw_only=True):
         return int(self.read_tb * _TB)
 
 
-class _Event(_Table, frozen=True, kw_only=True, tag_field="what"):
-    """Something that happens.
-
-    Attributes:
-        day: when, in days since the beginning.
-    """
-
-    day: _NotNegative
-
-
-class Scratch(_Event, frozen=True, kw_only=True, tag="scratch"):
-    """A place of a disk's surface is damaged: so many units of eight sectors, growing by a share a day."""
-
-    drive: str
-    units: Annotated[int, msgspec.Meta(gt=0)]
-    growth: _NotNegative = 0.0
-
-
-class HeadWeakens(_Event, frozen=True, kw_only=True, tag="head-weakens"):
-    """A head begins to need further turns; the share of such reads grows by this much of itself a day."""
-
-    drive: str
-    growth: _Positive
-
-
-class CableLoosens(_Event, frozen=True, kw_only=True, tag="cable-loosens"):
-    """A connector works loose: on a share of days a burst of damaged transfers, some commands hang."""
-
-    bay: str
-    bad_days: Annotated[float, msgspec.Meta(gt=0, le=1)]
-    burst: _Positive
-    hangs: Annotated[float, msgspec.Meta(ge=0, le=1)] = 0.0
-
-
-class CableChanged(_Event, frozen=True, kw_only=True, tag="cable-changed"):
-    """A bay gets a new cable."""
-
-    bay: str
-
-
-class Moved(_Event, frozen=True, kw_only=True, tag="moved"):
-    """A drive is plugged into another bay; its node stays the same."""
-
-    drive: str
-    to: str
-
-
-class Fan(_Event, frozen=True, kw_only=True, tag="fan"):
-    """What the fan moves from now on; 1 as built, 0.3 with its way blocked by dust."""
-
-    draught: Annotated[float, msgspec.Meta(gt=0, le=2)]
-
-
-class HotSpell(_Event, frozen=True, kw_only=True, tag="hot-spell"):
-    """Days on which the room is hotter than its season."""
-
-    days: _Positive
-    celsius: float
-
-
-class StripFails(_Event, frozen=True, kw_only=True, tag="strip-fails"):
-    """A power strip loses power so many times a year from now on; 1 is usual."""
-
-    strip: str
-    losses_a_year: _NotNegative
-
-
-class Vanishes(_Event, frozen=True, kw_only=True, tag="vanishes"):
-    """A drive is no longer there, for a while or for ever (0 days)."""
-
-    drive: str
-    days: _NotNegative = 0.0
-
-
-class Dies(_Event, frozen=True, kw_only=True, tag="dies"):
-    """A drive dies: it is no longer there, and it counts as failed."""
-
-    drive: str
-
-
-class Busy(_Event, frozen=True, kw_only=True, tag="busy"):
-    """So many days on which everything is used so many times as much."""
-
-    days: _Positive
-    factor: _Positive
-
-
-class FirmwareUpdate(_Event, frozen=True, kw_only=True, tag="firmware-update"):
-    """A new firmware; it may begin its link and time-out counters anew, as some do."""
-
-    drive: str
-    firmware: _Text
-    resets: bool = False
-
-
-class BlocksFail(_Event, frozen=True, kw_only=True, tag="blocks-fail"):
-    """Flash blocks go bad by themselves, so many a year from now on."""
-
-    drive: str
-    a_year: _NotNegative
-
-
-Event = (
-    Scratch
-    | HeadWeakens
-    | CableLoosens
-    | CableChanged
-    | Moved
-    | Fan
-    | HotSpell
-    | StripFails
-    | Vanishes
-    | Dies
-    | Busy
-    | FirmwareUpdate
-    | BlocksFail
-)
-
-
-class Expectation(_Table, frozen=True, kw_only=True):
+class Expectation(Table, frozen=True, kw_only=True):
     """What should be concluded of a drive, or must not be.
 
     Attributes:
@@ -238,37 +113,37 @@ class Expectation(_Table, frozen=True, kw_only=True):
     drive: str = ""
     call: CallWord | None = None
     cause: Cause | None = None
-    from_day: _NotNegative = 0.0
-    by_day: _NotNegative | None = None
+    from_day: NotNegative = 0.0
+    by_day: NotNegative | None = None
     stays: CallWord | None = None
     never_cause: tuple[Cause, ...] = ()
     needs: tuple[str, ...] = ()
-    because: _Text
+    because: Text
 
 
-class RoomSpec(_Table, frozen=True, kw_only=True):
+class RoomSpec(Table, frozen=True, kw_only=True):
     """Where the machine stands; degrees Celsius."""
 
     celsius: float = 21.0
-    season: _NotNegative = 2.5
-    daily: _NotNegative = 1.0
+    season: NotNegative = 2.5
+    daily: NotNegative = 1.0
 
 
-class BaySpec(_Table, frozen=True, kw_only=True):
+class BaySpec(Table, frozen=True, kw_only=True):
     """A place for a drive, and the power strip that feeds it."""
 
-    name: _Text
+    name: Text
     strip: str = "wall"
 
 
-class Holiday(_Table, frozen=True, kw_only=True):
+class Holiday(Table, frozen=True, kw_only=True):
     """Days on which nobody is there."""
 
-    day: _NotNegative
-    days: _Positive
+    day: NotNegative
+    days: Positive
 
 
-class Scenario(_Table, frozen=True, kw_only=True):
+class Scenario(Table, frozen=True, kw_only=True):
     """A whole scenario.
 
     Attributes:
@@ -289,9 +164,9 @@ class Scenario(_Table, frozen=True, kw_only=True):
         expect: what should be concluded.
     """
 
-    title: _Text
+    title: Text
     about: str
-    place: _Text = "an invented place"
+    place: Text = "an invented place"
     days: Annotated[int, msgspec.Meta(gt=0, le=36_525)]
     seed: int = 1
     habit: Habit = "studio"

@@ -11,7 +11,8 @@ from pathlib import Path
 import msgspec
 
 from diskwatch.errors import UsageError
-from diskwatch.rehearsal.scenario import MARK, BlocksFail, HeadWeakens, Scenario, Scratch
+from diskwatch.rehearsal.happenings import BlocksFail, HeadWeakens, Scratch
+from diskwatch.rehearsal.scenario import MARK, Scenario
 from diskwatch.units import plain
 
 DEFAULT = "scratched-media"

@@ -1,6 +1,6 @@
 from diskwatch.records import DriveRound, KnownDrive
 from diskwatch.rehearsal.course import START, Course
-from diskwatch.rehearsal.scenario import Dies
+from diskwatch.rehearsal.happenings import Dies
 from tests.rehearsal.examples import HDD, NVME, scenario
 
 

@@ -1,6 +1,6 @@
 import pytest
 
-from diskwatch.rehearsal import events, scenario as told
+from diskwatch.rehearsal import events, happenings as told
 from diskwatch.rehearsal.disk import Disk
 from diskwatch.rehearsal.solid import Solid
 from tests.rehearsal.examples import HDD, NVME, machine

@@ -1,16 +1,8 @@
 from hypothesis import given, settings, strategies as st
 
 from diskwatch.records import Outcome, SignalKind
-from diskwatch.rehearsal.scenario import (
-    BaySpec,
-    BlocksFail,
-    Busy,
-    CableLoosens,
-    FirmwareUpdate,
-    Holiday,
-    Scratch,
-    StripFails,
-)
+from diskwatch.rehearsal.happenings import BlocksFail, Busy, CableLoosens, FirmwareUpdate, Scratch, StripFails
+from diskwatch.rehearsal.scenario import BaySpec, Holiday
 from diskwatch.trends.norms import MAY_FALL
 from tests.rehearsal.examples import HDD, NVME, hdd, live, machine, nvme, ssd
 

@@ -3,7 +3,8 @@ import pytest
 from diskwatch.errors import UsageError
 from diskwatch.records import CallWord
 from diskwatch.rehearsal import scenarios
-from diskwatch.rehearsal.scenario import MARK, CableLoosens, Scratch
+from diskwatch.rehearsal.happenings import CableLoosens, Scratch
+from diskwatch.rehearsal.scenario import MARK
 
 SMALL = """
 title = "small"
