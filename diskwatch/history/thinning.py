@@ -13,7 +13,7 @@ from diskwatch.history.keeping import DETAIL_COPIES, DETAIL_DAYS, MINUTE_DAYS, D
 from diskwatch.history.traffic import FIVE, MINUTE, stored_days
 from diskwatch.units import DAY, day_number
 
-BITE = 400
+BITE = 200
 """Rows that a bite looks at, at most: under 10 ms of work on a slow core, and a few pages to write."""
 
 _EVER = -(2**63)
