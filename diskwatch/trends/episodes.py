@@ -9,8 +9,8 @@ What this leaves open, measured on invented lives with every counter exactly at 
 together in ten years; `tests/trends/test_bench_bound.py`): 0.53 where episodes are single days, 0.59 where each
 goes on for another day three times in ten; but 1.1 where it goes on six times in ten, 1.3 where one in fifty
 goes on for weeks, and 1.8 where a tenth of life has three times the errors. There the assumption fails, the
-bound with it, and the alarm says what is true: the counter rose on so many occasions, beyond the norm. Days off,
-days unwatched and counters that begin anew only lower the figure.
+bound with it, and the alarm says what is true: the counter rose on so many occasions, beyond the norm. Days
+off, days unwatched and counters that begin anew do not raise the figure.
 """
 
 from dataclasses import dataclass, replace
