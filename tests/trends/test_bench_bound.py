@@ -25,10 +25,10 @@ from random import Random
 import pytest
 
 from diskwatch.records import Direction
-from diskwatch.trends import latency
+from diskwatch.trends import latency, ledger
 from diskwatch.trends.load import load_class
 from diskwatch.trends.norms import BUDGET, NORMS
-from diskwatch.trends.slowness import threshold
+from diskwatch.trends.slowness import SUSPICIONS, factors, threshold
 from tests.trends.simulators import counters, disk, readings
 from tests.trends.simulators.cusum import compare
 from tests.trends.simulators.followed import alarms, follow, per_ten_years
@@ -161,6 +161,31 @@ def test_false_alarms_of_latency():
         if name in SOUND_GOALS:
             rate, error = rates[READ, threshold(READ), True]
             assert rate - 2 * error <= SOUND_GOALS[name]
+
+
+def test_false_alarms_of_latency_exactly_at_its_norm():
+    print("\nThe same where z itself is normal about the tolerance on every day, 300 drives x 20 years")
+    for name, spread, alike in (
+        ("spread 1, days unlike", 1.0, 0.0),
+        ("spread 1, days alike 0.6", 1.0, 0.6),
+        ("spread of the proxy, days unlike", 1.5**0.5, 0.0),
+        ("spread of the proxy, days alike 0.6", 1.5**0.5, 0.6),
+    ):
+        counts = []
+        for drive in range(300):
+            chance, z, found = Random(f"{name} {drive}"), 0.0, 0  # noqa: S311  # days, not secrets
+            state = ledger.empty(len(SUSPICIONS))
+            for _ in range(7305):
+                z = alike * z + chance.gauss(0, spread * (1 - alike**2) ** 0.5)
+                state = ledger.after(state, factors(z))
+                if state.evidence >= threshold(READ):
+                    found += 1
+                    state = ledger.empty(len(SUSPICIONS))
+            counts.append(found)
+        rate, error = per_ten_years(counts, 20)
+        print(f"  {name:36} {rate:.3f} +- {error:.3f}  (its share is 0.12)")
+        if alike == 0:
+            assert rate - 2 * error <= 0.12
 
 
 SLOWED = {
