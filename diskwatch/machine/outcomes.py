@@ -254,14 +254,14 @@ def _of_tool(status: int | None, what: Understood, tool: str, telling: str | Non
     """The verdict where the tool is why there is no reading; None where the drive is."""
     troubles = (status or 0) & _TROUBLES
     if not what.genuine:
-        why = f"what {tool} wrote is no answer of smartctl"
+        why = f"It gave no answer that makes sense, since what {tool} wrote is not smartctl's"
     elif troubles == _NOT_PARSED:
-        why = f"{tool} did not understand the question"
+        why = f"It was not read, since {tool} did not understand the question"
     elif troubles == 0 and what.drive is None:
-        why = f"{tool} told neither a drive nor any trouble"
+        why = f"It was not read, since {tool} told neither a drive nor any trouble"
     else:
         return None
-    return _not_read(f"It was not read, since {why}: {_SAY_WHICH}", telling)
+    return _not_read(f"{why}: {_SAY_WHICH}", telling)
 
 
 def _garbled(what: Understood, telling: str | None) -> Verdict:

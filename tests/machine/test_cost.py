@@ -64,9 +64,7 @@ def drive(node: str) -> Found:
         address=Address(node=node, type="sat"),
         blocks=(),
         place=Place(device=node),
-        drive=Drive(
-            identity=Identity(wwn=None, model=None, serial=None, path=node), kind=Kind.HDD, command="x"
-        ),
+        drive=Drive(identity=Identity(wwn=None, model=None, serial=None, path=node), kind=Kind.HDD),
     )
 
 
@@ -110,7 +108,7 @@ def test_mutated_answers_raise_nothing_and_give_no_number_that_they_do_not_state
         document = document_of(text) if as_document else None
         lines = plain_lines(document) if document is not None else tuple(text.splitlines())
         what = understood(lines, document, type_=None, path="/dev/x")
-        of_words(lines, dice.choice((0, 2, 3, 4, 64)), what, expects_smart=True, kind=Kind.HDD)
+        of_words(lines, dice.choice((0, 2, 3, 4, 64)), what, expects_smart=True, kind=Kind.HDD, command="x")
         check_nothing_is_invented(what, text)
     print(  # noqa: T201 - a measurement is for whoever runs it
         f"\n{MUTATIONS} mutated answers in {time.monotonic() - begun:.0f} s, "

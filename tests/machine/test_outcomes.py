@@ -207,9 +207,9 @@ def test_a_drive_that_names_itself_but_gives_no_data_is_garbled():
 @pytest.mark.parametrize(
     ("lines", "status", "word"),
     [
-        ((), 0, "no answer of smartctl"),
-        (("AAAA", "AAAA"), 0, "no answer of smartctl"),
-        (("sudo: a password is required",), 1, "no answer of smartctl"),
+        ((), 0, "wrote is not smartctl's"),
+        (("AAAA", "AAAA"), 0, "wrote is not smartctl's"),
+        (("sudo: a password is required",), 1, "wrote is not smartctl's"),
         ((*HEAD, "=======> UNRECOGNIZED OPTION: all"), 1, "did not understand the question"),
         (HEAD, 0, "neither a drive nor any trouble"),
     ],
