@@ -105,7 +105,7 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         if one.kind is FindingKind.DRIFT and one.name not in state.standing
     ]
     if shown or now.standing:
-        now = replace(now, standing=_standing(state.standing, shown))
+        now = replace(now, standing=_standing(state.standing, shown, pass_.at))
     return now, [*happened, *alarms]
 
 
@@ -116,12 +116,13 @@ def _firsts(state: DriveState, reading: Reading, counts: Mapping[str, int]) -> M
     return state.firsts if seen.keys() <= state.firsts.keys() else {**seen, **state.firsts}
 
 
-def _standing(before: Mapping[str, Finding], shown: tuple[Finding, ...]) -> Mapping[str, Finding]:
-    """What stands after a reading: all that it shows, since it first did, and what lasts beyond it."""
-    after = {name: one for name, one in before.items() if rules.lasting(one)}
+def _standing(before: Mapping[str, Finding], shown: tuple[Finding, ...], at: int) -> Mapping[str, Finding]:
+    """What stands after a reading: all that it shows, since it first did, and what lasts or lingers on."""
+    after = {name: one for name, one in before.items() if rules.lasting(one) or rules.lingers(one, at)}
     for one in shown:
+        now = replace(one, data={**one.data, "last": at}) if one.name in rules.LINGERING else one
         known = before.get(one.name)
-        after[one.name] = one if known is None else replace(one, since=known.since)
+        after[one.name] = now if known is None else replace(now, since=known.since)
     return after
 
 

@@ -41,10 +41,10 @@ def drifts(state: DriveState, pass_: Pass) -> Iterator[Finding]:
     for norm in NORMS:
         stream = state.streams.get(norm.stream)
         if stream is not None and stream.ledger.evidence >= norm.threshold:
-            yield _drift(norm, stream, pass_)
+            yield _drift(state, norm, stream, pass_)
 
 
-def _drift(norm: Norm, stream: Stream, pass_: Pass) -> Finding:
+def _drift(state: DriveState, norm: Norm, stream: Stream, pass_: Pass) -> Finding:
     evidence = stream.ledger.evidence
     days = stream.powered + stream.exposure
     return Finding(
@@ -58,11 +58,17 @@ def _drift(norm: Norm, stream: Stream, pass_: Pass) -> Finding:
         sentence=sentences.drift(norm, episodes=stream.episodes, days=days, evidence=evidence),
         data={
             "stream": norm.stream,
+            "signal": _latest_riser(state, norm),
             "episodes": stream.episodes,
             "days": days,
             "threshold": norm.threshold,
         },
     )
+
+
+def _latest_riser(state: DriveState, norm: Norm) -> str:
+    """The counter of a stream that rose last, the first named where several did: what the alarm is about."""
+    return max(norm.signals, key=lambda signal: state.risen.get(signal, -1))
 
 
 def fresh_defects(

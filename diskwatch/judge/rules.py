@@ -4,9 +4,16 @@ from collections.abc import Iterable
 
 from diskwatch.judge.causes import Explained
 from diskwatch.records import Call, CallWord, Cause, Finding, FindingKind
+from diskwatch.units import DAY
 
 VERSION = 1
 """Of the rules as a whole; a ticket names it so that a call can be checked by the rules it followed."""
+
+LINGERING = frozenset({"fact:hot", "fact:warns-of-heat"})
+"""Passing findings that come and go with the hour of the day stand on for a while after they last showed."""
+
+LINGER = 3 * DAY
+"""Seconds that a lingering finding stands on: a drive that is hot every noon is one that is hot."""
 
 PASSING = frozenset({"fact:unreadable", "fact:hot", "fact:warns-of-heat"})
 """Findings about the present moment end with what they tell of; all others stand until the owner speaks."""
@@ -19,13 +26,28 @@ def lasting(finding: Finding) -> bool:
     return finding.calls is not None and finding.name not in PASSING
 
 
+def lingers(finding: Finding, at: int) -> bool:
+    """Whether a finding that no longer shows stands on for now.
+
+    Args:
+        finding: with the time at which it last showed, ``last``, among its data.
+        at: now, UTC seconds since 1970.
+    """
+    last = finding.data.get("last")
+    return finding.name in LINGERING and isinstance(last, int) and 0 <= at - last < LINGER
+
+
 def leading_first(findings: Iterable[Finding]) -> tuple[Finding, ...]:
-    """Findings in the order in which they matter: the strongest call, then facts before rules before drifts."""
+    """Findings in the order in which they matter.
+
+    The strongest call first; of equal ones what lasts before what passes, facts before rules before drifts.
+    """
     return tuple(
         sorted(
             findings,
             key=lambda one: (
                 -(one.calls.rank if one.calls else -1),
+                one.name in PASSING,
                 -_WEIGHT[one.kind],
                 -(one.evidence or 0.0),
                 one.since,

@@ -16,7 +16,7 @@ class Drift:
 
     Attributes:
         at: when, UTC seconds since 1970.
-        signal: the stream that alarmed.
+        signal: the counter whose stream alarmed, of several the one that rose last.
         evidence: M in days.
     """
 

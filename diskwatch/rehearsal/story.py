@@ -65,8 +65,8 @@ class Story:
         for finding in one.findings:
             if finding.kind is FindingKind.DRIFT and finding.name not in self._alarmed:
                 self._alarmed.add(finding.name)
-                stream = str(finding.data["stream"])
-                self.drifts.append(Drift(at=at, signal=stream, evidence=finding.evidence or 0.0))
+                signal = str(finding.data["signal"])
+                self.drifts.append(Drift(at=at, signal=signal, evidence=finding.evidence or 0.0))
         if one.call is not None:
             self._say(at, one.call)
 

@@ -131,7 +131,7 @@ def _live(lives: dict[str, _Life], row: Row, bad: Callable[[str], None], path: P
     for entry in step.happened:
         if entry.kind == "drift":
             evidence = entry.data["evidence"]
-            life.drifts.append(Drift(at=at, signal=str(entry.data["stream"]), evidence=float(str(evidence))))
+            life.drifts.append(Drift(at=at, signal=str(entry.data["signal"]), evidence=float(str(evidence))))
     life.state = step.state
     life.last = at
     life.rows += 1

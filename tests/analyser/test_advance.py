@@ -50,12 +50,18 @@ def test_a_virtual_disk_keeps_and_is_told_of_once():
     assert [kinds(step) for step in steps] == [["pass"], []]
 
 
-def test_heat_passes_with_the_heat():
+def test_heat_stands_for_three_days_after_it_last_showed_so_that_hot_noons_are_one_finding():
+    hot = {"temperature": 85, "warning_celsius": 80}
+    cool = {"temperature": 50, "warning_celsius": 80}
     steps = lived(
-        read(NOON, NVME, temperature=85, warning_celsius=80),
-        read(NOON + 60, NVME, temperature=50, warning_celsius=80),
+        read(NOON, NVME, **hot),
+        read(NOON + DAY // 2, NVME, **cool),
+        read(NOON + DAY, NVME, **hot),
+        read(NOON + 3 * DAY, NVME, **cool),
+        read(NOON + 4 * DAY, NVME, **cool),
     )
-    assert [step.call.word for step in steps] == [CallWord.LOOK, CallWord.KEEP]
+    assert [step.call.word.value for step in steps] == ["look", "look", "look", "look", "keep"]
+    assert sum(kinds(step).count("call") for step in steps) == 2
 
 
 COUNTERS = (

@@ -64,3 +64,10 @@ def test_the_runner_up_is_the_next_different_cause():
 def test_findings_about_the_moment_pass_and_all_others_last():
     assert not rules.lasting(finding(CallWord.LOOK, name="fact:hot"))
     assert rules.lasting(finding(CallWord.LOOK, name="fact:first-defect"))
+
+
+def test_of_two_equal_calls_the_one_that_lasts_leads_before_the_one_that_passes():
+    hot = finding(CallWord.LOOK, name="fact:hot", cause=Cause.HEAT, since=NOON)
+    defect = finding(CallWord.LOOK, name="fact:first-defect", since=NOON + 60)
+    assert rules.leading([hot, defect]) is defect
+    assert decide(hot, defect).cause_second is Cause.HEAT

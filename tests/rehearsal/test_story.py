@@ -51,9 +51,9 @@ def test_error_counters_that_rose_are_told_and_levels_are_none():
     assert one.moved == {"crc-errors": 2}
 
 
-def test_a_ledger_alarm_is_told_once_by_its_stream():
+def test_a_ledger_alarm_is_told_once_by_the_counter_that_rose():
     one = told(*(read(NOON + day * DAY, crc_errors=day // 8) for day in range(80)))
-    assert [(drift.signal, drift.evidence > 18_000) for drift in one.drifts] == [("link", True)]
+    assert [(drift.signal, drift.evidence > 18_000) for drift in one.drifts] == [("crc-errors", True)]
 
 
 def test_passes_without_a_reading_are_counted_apart_and_sleep_is_none():
