@@ -29,8 +29,8 @@ _CURES: Mapping[Outcome, str] = {
     Outcome.REFUSED: "watch as root, as the service does",
     Outcome.TIMED_OUT: "copy off what matters from this drive first, then check its cable; it is asked again",
     Outcome.ABSENT: "see whether it is plugged in",
-    Outcome.GARBLED: "copy off what matters from this drive first, then check its cable and port",
-    Outcome.NO_SMART: "connect it without a bridge; until then only its traffic is watched",
+    Outcome.GARBLED: "see to what is said here, then run this again",
+    Outcome.NO_SMART: "see to what is said here; until then only its traffic is watched",
 }
 
 
