@@ -11,6 +11,7 @@ SYSTEM_SETTINGS = Path("/etc/diskwatch/settings.toml")
 SYSTEM_RUN = Path("/run/diskwatch")
 HISTORY = "history.db"
 WATCH_LOCK = "watch.lock"
+WRITE_LOCK = "write.lock"
 
 
 def _xdg(variable: str, fallback: str) -> Path:

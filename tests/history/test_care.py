@@ -64,7 +64,7 @@ def test_a_copy_is_a_whole_history_of_one_file_that_others_may_read(grown):
     with closing(sqlite3.connect(made)) as copy, closing(sqlite3.connect(grown / HISTORY)) as source:
         assert list(copy.iterdump()) == list(source.iterdump())
         assert copy.execute("PRAGMA journal_mode").fetchone() == ("delete",)
-    assert {path.name for path in grown.iterdir()} == {HISTORY, "watch.lock", made.name}
+    assert {path.name for path in grown.iterdir()} == {HISTORY, "watch.lock", "write.lock", made.name}
 
 
 def test_a_copy_can_take_the_place_of_the_history(grown, tmp_path):

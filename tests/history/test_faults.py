@@ -11,14 +11,16 @@ import signal
 import sqlite3
 import subprocess
 import time
-from contextlib import closing
+from contextlib import closing, suppress
 from dataclasses import replace
 
 import pytest
 
 from diskwatch import analyser
-from diskwatch.errors import HistoryError
+from diskwatch.errors import HistoryError, HistoryHeld
 from diskwatch.history.keeping import DETAIL_COPIES
+from diskwatch.history.live import LiveWriter
+from diskwatch.history.lock import WatchLock, watcher
 from diskwatch.history.reader import Past
 from diskwatch.history.round import file_past_days
 from diskwatch.history.writer import History
@@ -140,6 +142,40 @@ def test_on_a_full_disk_nothing_stored_is_lost_and_writing_goes_on_when_there_is
         ballast.unlink()
         history.record(full_round(known, NOON + stored * DAY, stored))
     _whole(small_disk / "state", stored + 1)
+
+
+def _full(disk):
+    """Leave no byte free."""
+    with (disk / "ballast").open("ab", buffering=0) as file, suppress(OSError):
+        while True:
+            file.write(bytes(4096))
+
+
+def test_on_a_full_disk_a_watch_keeps_others_out_and_whoever_looks_knows_that_it_watches(small_disk):
+    state = small_disk / "state"
+    with History.open(state) as history:
+        history.admit(a_drive(), a_place(), NOON)
+    _full(small_disk)
+    child = os.fork()
+    if child == 0:
+        try:
+            lock = WatchLock.take(state)
+            LiveWriter(state).write((), int(time.time()), ["the disk is full"])
+            os.kill(os.getpid(), signal.SIGSTOP)
+            lock.release()
+        finally:
+            os._exit(1)
+    assert os.WIFSTOPPED(os.waitpid(child, os.WUNTRACED)[1])
+    try:
+        assert watcher(state) == child
+        with Past.open(state) as past:
+            assert past.bays(int(time.time())).trouble == ("the disk is full",)
+        with pytest.raises(HistoryHeld, match=f"process {child}"):
+            WatchLock.take(state)
+    finally:
+        os.kill(child, signal.SIGKILL)
+        os.waitpid(child, 0)
+    assert watcher(state) is None
 
 
 def _round(known, state, at, pending=0):

@@ -14,7 +14,7 @@ from diskwatch.history import rows
 from diskwatch.history.live import LiveWriter
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
-from diskwatch.places import HISTORY, WATCH_LOCK
+from diskwatch.places import HISTORY, WATCH_LOCK, WRITE_LOCK
 from diskwatch.records import KnownDrive
 from tests.history.examples import DAY, NOON, a_drive, a_place, a_span, full_round
 
@@ -275,7 +275,7 @@ def test_another_user_reads_while_the_watch_runs_and_after_it_ended(roots, nobod
         history.record(full_round(history.admit(a_drive(), a_place(), NOON)))
         assert nobody.ask(roots) == f"1 {os.getpid()}"
     assert nobody.ask(roots) == "1 None"
-    assert {file.name for file in roots.iterdir()} == {HISTORY, WATCH_LOCK}
+    assert {file.name for file in roots.iterdir()} == {HISTORY, WATCH_LOCK, WRITE_LOCK}
 
 
 def test_another_user_reads_what_a_killed_watch_left_in_its_log(roots, nobody):
@@ -318,7 +318,7 @@ def test_a_history_that_may_not_be_read_is_told_to_another_user(roots, nobody):
 
 def test_a_read_only_folder_can_be_read_but_not_written(roots, nobody):
     _watch_once(roots)
-    for path in (roots, roots / HISTORY, roots / WATCH_LOCK):
+    for path in (roots, roots / HISTORY, roots / WATCH_LOCK, roots / WRITE_LOCK):
         os.chown(path, NOBODY, NOBODY)
     roots.chmod(0o555)
     (roots / HISTORY).chmod(0o444)

@@ -14,7 +14,7 @@ from diskwatch.history import writer
 from diskwatch.history.lock import watcher
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
-from diskwatch.places import HISTORY, WATCH_LOCK
+from diskwatch.places import HISTORY, WATCH_LOCK, WRITE_LOCK
 from diskwatch.records import Entry
 from tests.history.examples import DAY, NOON, a_call, a_drive, a_part, a_place, a_round, a_span, full_round
 
@@ -37,6 +37,7 @@ def test_opening_makes_folder_and_file_that_others_may_read_whatever_the_umask(f
     finally:
         os.umask(before)
     assert folder.stat().st_mode & 0o777 == 0o755
+    assert modes.pop(WRITE_LOCK) == 0o600
     assert modes == dict.fromkeys((HISTORY, HISTORY + "-wal", HISTORY + "-shm", WATCH_LOCK), 0o644)
 
 
