@@ -7,6 +7,7 @@ file alone. That is right only as long as the file stays as it is, so whoever re
 before and after.
 """
 
+import os
 import sqlite3
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -15,6 +16,7 @@ from pathlib import Path
 
 from diskwatch.errors import HistoryError, NothingToWorkOn
 from diskwatch.history import versions
+from diskwatch.history.guarding import refuse_odd_database
 from diskwatch.history.mishaps import no_database, primary, told
 from diskwatch.units import plain
 
@@ -45,7 +47,7 @@ class _Mark:
 
 def _size(path: Path) -> int | None:
     try:
-        return path.stat().st_size
+        return path.lstat().st_size
     except FileNotFoundError:
         return None
 
@@ -54,7 +56,7 @@ def _mark(path: Path) -> _Mark:
     # The logs are looked at first: one that appears in between is then met by the next look, never missed.
     log = _size(path.with_name(path.name + "-wal"))
     journal = _size(path.with_name(path.name + "-journal"))
-    about = path.stat()
+    about = path.lstat()
     return _Mark(
         file=(about.st_dev, about.st_ino),
         changed=(about.st_mtime_ns, about.st_size),
@@ -96,8 +98,9 @@ def open_to_read(path: Path) -> Opened:
     Raises:
         NothingToWorkOn: there is none yet, or nothing in it.
         HistoryTooNew: a newer version wrote it.
-        HistoryError: it cannot be read.
+        HistoryError: it cannot be read, or is no plain file.
     """
+    refuse_odd_database(path, to_write=False)
     try:
         mark = _mark(path)
     except FileNotFoundError:
@@ -132,8 +135,9 @@ def refuse_foreign(path: Path) -> None:
 
     Raises:
         HistoryTooNew: a newer version wrote it.
-        HistoryError: it is no history of diskwatch, or damaged, or cannot be read.
+        HistoryError: it is no history of diskwatch, or damaged, or cannot be read, or it is somebody else's.
     """
+    refuse_odd_database(path, to_write=True)
     try:
         mark = _mark(path)
     except FileNotFoundError:
@@ -160,7 +164,9 @@ def _nothing_yet(path: Path) -> NothingToWorkOn:
 def _refuse_no_database(path: Path) -> None:
     """SQLite takes a file of less than its smallest page for an empty database, and would write over it."""
     try:
-        with path.open("rb") as file:
+        # Whatever took its place since it was looked at, nothing is followed and nothing waited for.
+        descriptor = os.open(path, os.O_RDONLY | os.O_NOFOLLOW | os.O_NONBLOCK | os.O_CLOEXEC)
+        with os.fdopen(descriptor, "rb") as file:
             begin = file.read(_SMALLEST_PAGE)
     except OSError as error:
         raise told(error, path) from error
@@ -189,7 +195,7 @@ def _connected(path: Path, mark: _Mark) -> Opened:
 
 
 def _connect(path: Path, mark: _Mark, *, frozen: bool) -> Opened:
-    uri = path.resolve().as_uri() + ("?immutable=1" if frozen else "?mode=ro")
+    uri = (path.parent.resolve() / path.name).as_uri() + ("?immutable=1" if frozen else "?mode=ro")
     with _told(path):
         connection = sqlite3.connect(
             uri, uri=True, isolation_level=None, check_same_thread=False, timeout=BUSY_MS / 1000

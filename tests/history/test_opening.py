@@ -1,4 +1,5 @@
 import hashlib
+import os
 import sqlite3
 from contextlib import closing
 from pathlib import Path
@@ -164,6 +165,39 @@ def test_an_empty_log_that_was_left_behind_hides_nothing(path):
     path.with_name(HISTORY + "-wal").touch()
     with closing(open_to_read(path)) as opened:
         assert _drives(opened) == 1
+
+
+@pytest.mark.parametrize("opener", [open_to_read, refuse_foreign, lambda path: History.open(path.parent)])
+@pytest.mark.parametrize("beside", ["", "-wal", "-shm", "-journal"])
+def test_a_link_or_a_pipe_in_its_place_or_beside_it_is_refused_and_nothing_waits_for_it(path, opener, beside):
+    victim = path.with_name("victim")
+    path.rename(victim)
+    if beside:
+        victim.rename(path)
+        victim.write_text("what somebody else needs")
+    there, whole = path.with_name(path.name + beside), victim.read_bytes()
+    there.symlink_to(victim)
+    with pytest.raises(HistoryError, match="symbolic link"):
+        opener(path)
+    there.unlink()
+    os.mkfifo(there)
+    with pytest.raises(HistoryError, match="is a pipe"):
+        opener(path)
+    there.unlink()
+    assert victim.read_bytes() == whole
+
+
+@pytest.mark.skipif(os.geteuid() != 0, reason="only root can give files to other users")
+@pytest.mark.parametrize("whole", [True, False], ids=["folder and all", "the file alone"])
+def test_root_reads_the_history_of_another_user_but_leaves_no_byte_in_it(path, whole):
+    for given in (path, *([path.parent] if whole else [])):
+        os.chown(given, 65534, 65534)
+    before = _all_of(path.parent)
+    with pytest.raises(HistoryError, match="run as that user, or name another folder"):
+        History.open(path.parent)
+    with closing(open_to_read(path)) as opened:
+        assert _drives(opened) == 1
+    assert _all_of(path.parent) == before
 
 
 def test_a_folder_in_its_place_is_told(tmp_path):
