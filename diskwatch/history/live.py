@@ -5,22 +5,24 @@ folder, on a real disk: there it is written at most once a minute.
 
     {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 2048, 2048, 3, 9, 11]], "troubles": []}
 
-    {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 2048, 2048, 3, 9, 11]],
-     "troubles": []}
-this way too: a history that cannot be written cannot hold why.
+What troubles the watch goes this way too: a history that cannot be written cannot hold why.
 """
 
 import contextlib
+import errno
 import hashlib
 import json
 import os
+import re
 import stat
+import time
 from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
 from diskwatch import places
+from diskwatch.history.guarding import ROOT
 from diskwatch.records import IoCounts, IoSpan
 
 FRESH_S = 60
@@ -30,6 +32,8 @@ DISK_EVERY_S = 60
 """Least time between two writes where the file lies on a real disk, seconds."""
 
 _LARGEST_FILE = 1 << 20
+_OURS = re.compile(r"live-[0-9a-f]{16}\.json|\.live-[0-9a-f]{16}\.json\.[0-9]+")
+"""Names that only this module gives: figures, and what a watch that was killed left half written."""
 
 
 def live_name(state: Path) -> str:
@@ -53,13 +57,15 @@ class Live:
 class LiveWriter:
     """Shares the figures of one watch; removes them on close.
 
-    That they cannot be shared harms nothing but the view of the moment, so it is no error.
+    That they cannot be shared harms nothing but the view of the moment, so it is no error. Figures of watches
+    that were killed would lie there for ever, and are removed when a watch begins.
 
     Args:
         folder: the state folder of the watch.
     """
 
     def __init__(self, folder: Path) -> None:
+        _clear_up(places.live_folders(folder))
         self._state = folder
         self._name = live_name(folder)
         self._path: Path | None = None
@@ -115,7 +121,7 @@ def read_live(folder: Path, now: int) -> Live:
         What it shares; nothing where nobody shares anything, or not within the last `FRESH_S` seconds.
     """
     try:
-        owner = (folder / places.HISTORY).stat().st_uid
+        owner = (folder / places.HISTORY).lstat().st_uid
     except OSError:
         return Live()
     for candidate in places.live_folders(folder):
@@ -147,6 +153,31 @@ def _ready(folder: Path) -> None:
     with contextlib.suppress(FileExistsError):
         folder.mkdir(mode=0o755)
         folder.chmod(0o755)  # whatever the umask: other users may look
+    if not _own(folder):
+        raise PermissionError(errno.EPERM, os.strerror(errno.EPERM), str(folder))
+
+
+def _own(folder: Path) -> bool:
+    """Whether a folder is this user's or root's: in any other, root could be led through a link."""
+    return folder.stat().st_uid in {os.geteuid(), ROOT}
+
+
+def _clear_up(folders: Sequence[Path]) -> None:
+    """Remove figures that no watch writes any more; one that was only held up shares its own again soon."""
+    for folder in folders:
+        with contextlib.suppress(OSError):
+            for path in folder.iterdir() if _own(folder) else ():
+                if _OURS.fullmatch(path.name) is not None and _is_left(path):
+                    path.unlink()
+
+
+def _is_left(path: Path) -> bool:
+    about = path.lstat()
+    return (
+        stat.S_ISREG(about.st_mode)
+        and about.st_uid in {os.geteuid(), ROOT}
+        and abs(time.time() - about.st_mtime) > FRESH_S + DISK_EVERY_S
+    )
 
 
 def _replace(path: Path, content: bytes) -> None:

@@ -1,5 +1,6 @@
 import json
 import os
+import time
 
 import pytest
 
@@ -163,3 +164,41 @@ def test_a_file_of_another_user_is_not_believed_but_roots_is(state, memory):
 def test_troubles_are_shared_too_since_a_history_that_cannot_be_written_cannot_hold_them(state):
     LiveWriter(state).write((), NOON, ["the disk is full"])
     assert read_live(state, NOON) == Live(troubles=("the disk is full",))
+
+
+def _left(path, age=FRESH_S + DISK_EVERY_S + 1):
+    path.write_text("{}")
+    os.utime(path, (time.time() - age,) * 2)
+
+
+def test_figures_of_watches_that_were_killed_go_when_a_watch_begins_and_nothing_else_does(
+    state, memory, tmp_path
+):
+    memory.mkdir()
+    gone = ["live-0123456789abcdef.json", ".live-0123456789abcdef.json.4711"]
+    kept = ["live-0123456789abcdeX.json", "live-0123456789abcdef.json.bak", "other.json", "live.json"]
+    for folder in (memory, state):
+        for name in (*gone, *kept):
+            _left(folder / name)
+        _left(folder / "live-aaaaaaaaaaaaaaaa.json", age=5)
+        (folder / "live-bbbbbbbbbbbbbbbb.json").symlink_to(tmp_path / "elsewhere")
+        os.mkfifo(folder / "live-cccccccccccccccc.json")
+        (folder / "live-dddddddddddddddd.json").mkdir()
+    LiveWriter(state)
+    names = {*kept, *(f"live-{one * 16}.json" for one in "abcd")}
+    assert {path.name for path in memory.iterdir()} == names
+    assert {path.name for path in state.iterdir()} == names | {places.HISTORY}
+
+
+@pytest.mark.skipif(os.geteuid() != 0, reason="only root can give files to other users")
+def test_figures_in_a_strangers_folder_or_of_a_stranger_are_left_alone_and_none_are_laid_there(state, memory):
+    memory.mkdir()
+    _left(memory / "live-0123456789abcdef.json")
+    os.chown(memory / "live-0123456789abcdef.json", 65534, 65534)
+    LiveWriter(state)
+    assert (memory / "live-0123456789abcdef.json").exists()
+    os.chown(memory / "live-0123456789abcdef.json", 0, 0)
+    os.chown(memory, 65534, 65534)
+    assert LiveWriter(state).write(SPANS, NOON)
+    assert [path.name for path in memory.iterdir()] == ["live-0123456789abcdef.json"]
+    assert (state / live_name(state)).exists()
