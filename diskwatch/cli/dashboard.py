@@ -7,8 +7,10 @@ written it also watches, for as long as the dashboard is open; else it says that
 import argparse
 import contextlib
 import os
+import select
 import subprocess
 import sys
+import threading
 import time
 from collections.abc import Iterator
 from dataclasses import replace
@@ -41,6 +43,7 @@ def run(args: argparse.Namespace) -> int:
         talk("diskwatch: this is no full-screen terminal; 'diskwatch bays' shows the same as text")
         args.json = args.code = False
         return bays_command.run(args)
+    threading.Thread(target=_end_with_terminal, name="terminal", daemon=True).start()
     # Textual takes a quarter of a second to load: the child reads the drives meanwhile.
     with _watching(folder, args) as (told, starting):
         from diskwatch.dashboard.app import Dashboard  # noqa: PLC0415
@@ -54,6 +57,20 @@ def run(args: argparse.Namespace) -> int:
                 ascii_only=not _speaks_more_than_ascii(),
             ).run()
     return 0
+
+
+def _end_with_terminal() -> None:
+    """End at once when the terminal is gone.
+
+    Where it is not the controlling terminal (under ``su -c``, say) no signal tells, and the full-screen
+    library would go on reading an end of file for ever. The watching child ends with its standard input.
+    """
+    hang_up = select.poll()
+    hang_up.register(sys.stdin.fileno(), 0)
+    gone = select.POLLHUP | select.POLLERR | select.POLLNVAL
+    while not any(event & gone for _, event in hang_up.poll()):
+        pass
+    os._exit(0)
 
 
 class _Source:
