@@ -230,8 +230,11 @@ class _Arrival:
             explanation=_words(of["explanation"]),
         )
         explanation = sentence_number(self._db, told.explanation)
-        columns = ("at", "outcome", "exit_bits", "took_ms", "explanation")
-        self._insert("pass", columns, (at, told.outcome.value, told.exit_bits, told.took_ms, explanation))
+        # Not told where it was written before passes of one second were kept apart.
+        nth = _whole(of.get("nth", 0))
+        columns = ("at", "nth", "outcome", "exit_bits", "took_ms", "explanation")
+        cells = (at, nth, told.outcome.value, told.exit_bits, told.took_ms, explanation)
+        self._insert("pass", columns, cells)
         self.arrived.add(at)
         if of.get("counted"):
             self._counted.add(at)
@@ -368,7 +371,8 @@ class _Arrival:
         self._settle_latest()
         self._db.execute(
             "UPDATE drive SET (passed_at, outcome, explanation) ="
-            " (SELECT at, outcome, explanation FROM pass WHERE drive = number ORDER BY at DESC LIMIT 1)"
+            " (SELECT at, outcome, explanation FROM pass WHERE drive = number"
+            " ORDER BY at DESC, nth DESC LIMIT 1)"
             " WHERE number = ? AND EXISTS (SELECT 1 FROM pass WHERE drive = number)",
             (self._drive,),
         )

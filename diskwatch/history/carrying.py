@@ -115,7 +115,10 @@ def _tables(new: sqlite3.Connection, old: sqlite3.Connection) -> Iterator[_Table
         mine = new.execute("SELECT name, pk, hidden FROM pragma_table_xinfo(?)", (name,)).fetchall()
         theirs = {row[0] for row in old.execute("SELECT name FROM pragma_table_xinfo(?)", (name,))}
         columns = tuple(column for column, _, hidden in mine if not hidden and column in theirs)
-        keys = tuple(column for column, place, _ in sorted(mine, key=lambda row: row[1]) if place)
+        # An older file may have had a shorter key.
+        keys = tuple(
+            column for column, place, _ in sorted(mine, key=lambda row: row[1]) if place and column in theirs
+        )
         yield _Table(name, columns, keys if without_rowid else ("rowid",))
 
 

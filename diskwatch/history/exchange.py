@@ -8,7 +8,7 @@ Both hold the same rows. A row has a ``record`` (what it is), a ``drive`` (which
 | drive | wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm, device, bay; at: first seen |
 | owner | fact, value |
 | place | device, bay |
-| pass | outcome, exit_bits, took_ms, explanation |
+| pass | nth (of those of its second, from 0), outcome, exit_bits, took_ms, explanation |
 | passes | outcome, passes, last: of passes thinned, how many of a day ended so; at: the first |
 | value | signal, value, unit, kind, source, reason: on change |
 | beside | reading: failing attributes, self-tests and limits, on change |

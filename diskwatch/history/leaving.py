@@ -69,9 +69,9 @@ _QUERIES = {
     "owner": "SELECT at, fact, value FROM owner_fact WHERE drive = :drive",
     "place": "SELECT since AS at, device, bay FROM plugged WHERE drive = :drive",
     "passes": "SELECT first AS at, outcome, passes, last FROM pass_day WHERE drive = :drive",
-    "pass": "SELECT at, outcome, exit_bits, took_ms, text AS explanation, at < coalesce((SELECT before"
+    "pass": "SELECT at, nth, outcome, exit_bits, took_ms, text AS explanation, at < coalesce((SELECT before"
     " FROM thinned WHERE what = 'pass' AND number = :drive), at) AS counted FROM pass"
-    " LEFT JOIN sentence ON sentence.number = explanation WHERE drive = :drive ORDER BY at",
+    " LEFT JOIN sentence ON sentence.number = explanation WHERE drive = :drive ORDER BY at, nth",
     "value": "SELECT at, signal, value, unit, kind, source, reason FROM series"
     " JOIN (SELECT at, value, reason, series FROM value UNION ALL SELECT at, value, reason, series FROM fresh)"
     " AS stated ON stated.series = series.number"

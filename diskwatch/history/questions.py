@@ -27,7 +27,7 @@ _DAY_BOOK_OF_DRIVE = (
 _PASSES = (
     "SELECT at, outcome, exit_bits, took_ms, text FROM pass"
     " LEFT JOIN sentence ON sentence.number = pass.explanation"
-    " WHERE drive = ? AND at >= ? ORDER BY at DESC LIMIT ?"
+    " WHERE drive = ? AND at >= ? ORDER BY at DESC, nth DESC LIMIT ?"
 )
 # Passes before the mark are in pass_day already, also those few that still stand by themselves.
 _BY_DAY = (

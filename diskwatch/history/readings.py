@@ -19,7 +19,7 @@ _HELD = (
 )
 _PASSES = (
     "SELECT at, outcome, exit_bits, took_ms, text FROM pass"
-    " LEFT JOIN sentence ON sentence.number = pass.explanation WHERE drive = ? AND at > ? ORDER BY at"
+    " LEFT JOIN sentence ON sentence.number = pass.explanation WHERE drive = ? AND at > ? ORDER BY at, nth"
 )
 
 

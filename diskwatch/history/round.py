@@ -88,9 +88,10 @@ def file_past_days(connection: sqlite3.Connection, today: int) -> None:
 def _write_part(connection: sqlite3.Connection, part: DriveRound, at: int) -> None:
     number = part.known.number
     explanation = sentence_number(connection, part.pass_.explanation)
+    before = connection.execute("SELECT passed_at FROM drive WHERE number = ?", (number,)).fetchone()
     _write_drive(connection, part.known, part.pass_, explanation)
     write_place(connection, number, part.known.place, at)
-    _write_pass(connection, number, part.pass_, explanation)
+    _write_pass(connection, number, part.pass_, explanation, latest=before == (part.pass_.at,))
     if part.pass_.reading is not None:
         _write_reading(connection, number, part.pass_.at, part.pass_.reading)
     if part.state is not None:
@@ -167,11 +168,26 @@ def _write_drive(
         )
 
 
-def _write_pass(connection: sqlite3.Connection, number: int, pass_: Pass, explanation: int | None) -> None:
+def _write_pass(
+    connection: sqlite3.Connection, number: int, pass_: Pass, explanation: int | None, *, latest: bool
+) -> None:
+    """Keep a pass, also one of a second that has one already.
+
+    Only the drive's latest pass may be met again, word for word, and is then the same: a round is written once
+    more where it was in doubt whether it had reached the disk.
+    """
+    row = (pass_.outcome.value, pass_.exit_bits, pass_.took_ms, explanation)
+    there = connection.execute(
+        "SELECT nth, outcome, exit_bits, took_ms, explanation FROM pass WHERE drive = ? AND at = ?"
+        " ORDER BY nth DESC LIMIT 1",
+        (number, pass_.at),
+    ).fetchone()
+    if there is not None and latest and there[1:] == row:
+        return
     connection.execute(
-        "INSERT OR REPLACE INTO pass (drive, at, outcome, exit_bits, took_ms, explanation)"
-        " VALUES (?, ?, ?, ?, ?, ?)",
-        (number, pass_.at, pass_.outcome.value, pass_.exit_bits, pass_.took_ms, explanation),
+        "INSERT INTO pass (drive, at, nth, outcome, exit_bits, took_ms, explanation)"
+        " VALUES (?, ?, ?, ?, ?, ?, ?)",
+        (number, pass_.at, 0 if there is None else there[0] + 1, *row),
     )
 
 

@@ -18,7 +18,7 @@ must be answered quickly.
 """
 
 from diskwatch.history.library import Database, Migrations
-from diskwatch.history.versions import MIGRATION_SET, MIGRATIONS
+from diskwatch.history.versions import APPLICATION_ID, MIGRATION_SET, MIGRATIONS
 
 steps = Migrations(MIGRATION_SET)
 
@@ -304,6 +304,38 @@ def _ten_years(db: Database) -> None:
     for statement in _TEN_YEARS:
         db.conn.execute(statement)
     db.conn.execute("PRAGMA user_version = 2")
+
+
+_EVERY_PASS = (
+    # Two passes may fall into one second, also where the clock was set back: nth tells them apart.
+    """
+    CREATE TABLE every_pass (
+        drive INTEGER NOT NULL REFERENCES drive,
+        at INTEGER NOT NULL,
+        nth INTEGER NOT NULL DEFAULT 0,
+        outcome TEXT NOT NULL,
+        exit_bits INTEGER,
+        took_ms INTEGER NOT NULL,
+        explanation INTEGER REFERENCES sentence,
+        PRIMARY KEY (drive, at, nth)
+    ) STRICT, WITHOUT ROWID
+    """,
+    """
+    INSERT INTO every_pass (drive, at, outcome, exit_bits, took_ms, explanation)
+    SELECT drive, at, outcome, exit_bits, took_ms, explanation FROM pass
+    """,
+    "DROP TABLE pass",
+    "ALTER TABLE every_pass RENAME TO pass",
+    # By this the first bytes of a damaged file still tell whose it is.
+    f"PRAGMA application_id = {APPLICATION_ID}",
+)
+
+
+@steps(name=MIGRATIONS[2])
+def _every_pass(db: Database) -> None:
+    for statement in _EVERY_PASS:
+        db.conn.execute(statement)
+    db.conn.execute("PRAGMA user_version = 3")
 
 
 def bring_up_to_date(db: Database) -> None:

@@ -197,26 +197,31 @@ def _passes(connection: sqlite3.Connection, drive: int, before: int) -> bool:
     """Passes of one outcome in a row become the first of them, and a count a day."""
     mark = _mark(connection, "pass", drive)
     found = connection.execute(
-        "SELECT at, outcome FROM pass WHERE drive = ? AND at >= ? AND at < ? ORDER BY at LIMIT ?",
+        "SELECT at, nth, outcome FROM pass WHERE drive = ? AND at >= ? AND at < ? ORDER BY at, nth LIMIT ?",
         (drive, mark, before, BITE),
     ).fetchall()
     if not found:
         return False
+    # The mark is a second: a bite that ended within one would leave the rest of it uncounted for ever.
+    found += connection.execute(
+        "SELECT at, nth, outcome FROM pass WHERE drive = ? AND at = ? AND nth > ? ORDER BY nth",
+        (drive, *found[-1][:2]),
+    ).fetchall()
     earlier = connection.execute(
-        "SELECT outcome FROM pass WHERE drive = ? AND at < ? ORDER BY at DESC LIMIT 1", (drive, mark)
+        "SELECT outcome FROM pass WHERE drive = ? AND at < ? ORDER BY at DESC, nth DESC LIMIT 1", (drive, mark)
     ).fetchone()
     outcome = None if earlier is None else earlier[0]
     surplus = []
-    for at, now in found:
+    for at, nth, now in found:
         if now == outcome:
-            surplus.append((drive, at))
+            surplus.append((drive, at, nth))
         outcome = now
     connection.executemany(
         "INSERT INTO pass_day (drive, day, outcome, passes, first, last) VALUES (?, ?, ?, 1, ?, ?)"
         " ON CONFLICT (drive, day, outcome) DO UPDATE SET passes = passes + 1,"
         " first = min(first, excluded.first), last = max(last, excluded.last)",
-        [(drive, day_number(at), how, at, at) for at, how in found],
+        [(drive, day_number(at), how, at, at) for at, _, how in found],
     )
-    connection.executemany("DELETE FROM pass WHERE drive = ? AND at = ?", surplus)
+    connection.executemany("DELETE FROM pass WHERE drive = ? AND at = ? AND nth = ?", surplus)
     _set_mark(connection, "pass", drive, found[-1][0] + 1)
     return True

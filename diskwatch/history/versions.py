@@ -11,8 +11,11 @@ from diskwatch.errors import HistoryError, HistoryTooNew
 from diskwatch.units import plain
 
 MIGRATION_SET = "diskwatch"
-MIGRATIONS = ("0001_base", "0002_ten_years")
+MIGRATIONS = ("0001_base", "0002_ten_years", "0003_every_pass")
 """Names of all steps of the schema, oldest first; a step is never renamed, changed or taken out."""
+
+APPLICATION_ID = int.from_bytes(b"dskw", "big")
+"""What stands at byte 68 of our files and tells that they are ours (SQLite, Database File Format, 1.3.17)."""
 
 _STEPS_TABLE = "_sqlite_migrations"
 

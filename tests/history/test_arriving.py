@@ -1,3 +1,5 @@
+from dataclasses import replace
+
 import pytest
 from hypothesis import given, strategies as st
 
@@ -5,7 +7,7 @@ from diskwatch.history.arriving import described, take_in
 from diskwatch.history.exchange import Line
 from diskwatch.history.leaving import lines_of
 from diskwatch.history.writer import History
-from tests.history.examples import NOON, a_drive, a_place, full_round
+from tests.history.examples import NOON, a_drive, a_part, a_pass, a_place, a_round, full_round
 
 
 def _lines():
@@ -41,6 +43,34 @@ def test_the_first_passes_of_either_side_are_told(history):
     assert (arrived.wrong, arrived.new_from, arrived.own_from) == ((), NOON, None)
     assert (again.wrong, again.new_from, again.own_from) == ((), None, None)
     assert arrived.states == ((NOON + 120, "state 2"),)
+
+
+def test_passes_of_one_second_arrive_all_and_none_of_them_twice(history):
+    with History.in_memory() as source:
+        known = source.admit(a_drive(), a_place(), NOON)
+        for took in range(3):
+            source.record(a_round(a_part(known, replace(a_pass(NOON), took_ms=took))))
+        source._db.execute("DELETE FROM pass WHERE nth = 1")  # as thinning does
+        lines = tuple(lines_of(source._db.conn, 1))[1:]
+        with source._writing() as connection:
+            assert take_in(connection, 1, lines).wrong == ()
+            assert tuple(lines_of(connection, 1))[1:] == lines
+    history.admit(a_drive(), a_place(), NOON)
+    with history._writing() as connection:
+        assert take_in(connection, 1, lines).wrong == ()
+        assert connection.execute("SELECT nth, took_ms FROM pass").fetchall() == [(0, 0), (2, 2)]
+
+
+def test_a_pass_written_before_passes_of_one_second_were_kept_apart_arrives(history):
+    old = [
+        Line(record=one.record, drive=1, at=one.at, fields={k: v for k, v in one.fields.items() if k != "nth"})
+        for one in LINES
+        if one.record == "pass"
+    ]
+    history.admit(a_drive(), a_place(), NOON)
+    with history._writing() as connection:
+        assert take_in(connection, 1, old).wrong == ()
+        assert connection.execute("SELECT count(*) FROM pass").fetchone() == (3,)
 
 
 json_values: st.SearchStrategy[object] = (

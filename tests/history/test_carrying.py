@@ -1,5 +1,6 @@
 import sqlite3
 from contextlib import closing
+from pathlib import Path
 
 import pytest
 
@@ -39,11 +40,23 @@ def test_what_the_new_file_has_already_stays(old, new):
 
 def test_a_pass_whose_explanation_is_lost_stays(old, new):
     old.execute("INSERT INTO sentence VALUES (9, 'It sleeps.')")
-    old.execute("INSERT INTO pass VALUES (1, 5, 'asleep', 2, 0, 9)")
+    old.execute("INSERT INTO pass VALUES (1, 5, 0, 'asleep', 2, 0, 9)")
     carry(old, new)
     new.execute("DELETE FROM sentence")
     assert let_go_of_orphans(new) == 0
     assert new.execute("SELECT outcome, explanation FROM pass WHERE at = 5").fetchone() == ("asleep", None)
+
+
+def test_rows_of_an_older_version_come_over_though_their_key_was_shorter(new):
+    path = Path(__file__).parents[2] / "fixtures" / "history" / "0002.db"
+    with closing(sqlite3.connect(f"{path.as_uri()}?mode=ro&immutable=1", uri=True)) as older:
+        found = carry(older, new)
+    assert found.gaps == {}
+    assert new.execute("SELECT nth, outcome FROM pass").fetchall() == [
+        (0, "asleep"),
+        (0, "timed-out"),
+        (0, "read"),
+    ]
 
 
 def test_a_value_of_a_kind_that_its_column_cannot_hold_is_left_behind(new):

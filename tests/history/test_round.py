@@ -43,6 +43,26 @@ def test_a_value_is_stored_when_it_changes_and_every_pass_always(history, known,
     assert rows("SELECT since, value FROM latest") == [(NOON + 5, 0)]
 
 
+def test_passes_of_one_second_are_all_kept_also_where_the_clock_was_set_back(history, known, rows):
+    told = [
+        a_pass(NOON, a_value(value=1)),
+        a_pass(NOON, outcome=Outcome.TIMED_OUT, explanation="It did not answer."),
+        a_pass(NOON - 60, a_value(value=1)),
+        a_pass(NOON, a_value(value=2)),
+        a_pass(NOON + 60, outcome=Outcome.ASLEEP),
+        a_pass(NOON, a_value(value=2)),
+    ]
+    for pass_ in told:
+        history.record(a_round(a_part(known, pass_), at=pass_.at))
+    assert rows("SELECT at - 1796126400, nth, outcome FROM pass WHERE at <= 1796126400 ORDER BY at, nth") == [
+        (-60, 0, "read"),
+        (0, 0, "read"),
+        (0, 1, "timed-out"),
+        (0, 2, "read"),
+        (0, 3, "read"),
+    ]
+
+
 def test_a_value_that_becomes_unknown_or_known_again_is_a_change(history, known, rows):
     _read(history, known, NOON, a_value(value=0))
     _read(history, known, NOON + 1, a_value(value=None, reason="The log could not be read."))

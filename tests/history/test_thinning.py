@@ -122,6 +122,24 @@ def test_passes_become_changes_of_outcome_and_the_counts_of_every_day_stay_exact
     assert thin == changes
 
 
+@pytest.mark.parametrize("bite", [2, 3, 7, 200])
+def test_passes_of_one_second_are_all_counted_wherever_a_bite_ends(
+    history, known, connection, monkeypatch, bite
+):
+    monkeypatch.setattr(thinning, "BITE", bite)
+    outcomes = [Outcome.READ, Outcome.ASLEEP, Outcome.READ, Outcome.TIMED_OUT, Outcome.READ]
+    for number in range(WEEKS * 7):
+        for nth, outcome in enumerate(outcomes):
+            _read(history, known, BEGIN + number * DAY, 10 * number + nth, outcome)
+    _all_of_it(history, END)
+    (mark,) = connection.execute("SELECT before FROM thinned WHERE what = 'pass'").fetchone()
+    counts = {(one.outcome, one.passes) for one in pass_days(connection, 1, None)}
+    assert counts == {(Outcome.READ, 3), (Outcome.ASLEEP, 1), (Outcome.TIMED_OUT, 1)}
+    kept = connection.execute("SELECT count(*) FROM pass WHERE at < ?", (mark,)).fetchone()[0]
+    # Of each second four changes, and the very first pass.
+    assert kept == ((mark - 1 - BEGIN) // DAY + 1) * 4 + 1
+
+
 def test_behind_the_horizon_stands_an_exact_copy_of_the_state(history, known, connection):
     _half_a_year(history, known)
     _all_of_it(history, END)

@@ -119,7 +119,7 @@ def a_week(
     with history._writing() as connection:
         series = {row[1]: row[0] for row in connection.execute("SELECT number, drive || signal FROM series")}
         connection.executemany(
-            "INSERT OR IGNORE INTO pass VALUES (?, ?, 'read', 0, 900, NULL)",
+            "INSERT OR IGNORE INTO pass (drive, at, outcome, exit_bits, took_ms) VALUES (?, ?, 'read', 0, 900)",
             ((known.number, at) for known in drives for at in range(begin, begin + WEEK, 1800)),
         )
         connection.executemany(
