@@ -23,7 +23,7 @@ _WORDS: dict[int, tuple[str, str | None]] = {
         "the watch sets it aside and carries over what can be read",
     ),
     sqlite3.SQLITE_NOTADB: (
-        "is not a history of diskwatch: it is no SQLite database, or its beginning is damaged",
+        "is damaged: its beginning is not that of an SQLite database",
         "the watch sets it aside and carries over what can be read",
     ),
     sqlite3.SQLITE_CANTOPEN: (
@@ -79,6 +79,14 @@ def no_database(path: Path) -> HistoryError:
     """The error for a file that is not even the beginning of a database."""
     what, hint = _WORDS[sqlite3.SQLITE_NOTADB]
     return HistoryDamaged(f"{plain(str(path))} {what}", hint=hint)
+
+
+def foreign(path: Path) -> HistoryError:
+    """The error for a file of which nothing says that it is ours: it may be all that somebody has."""
+    return HistoryError(
+        f"{plain(str(path))} is no history of diskwatch, as far as can be told from it; it is left untouched",
+        hint="move it away, or name another folder with --state",
+    )
 
 
 def taken_away(path: Path) -> HistoryError:

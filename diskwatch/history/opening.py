@@ -14,10 +14,12 @@ from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 
-from diskwatch.errors import HistoryError, NothingToWorkOn
+from diskwatch.errors import HistoryDamaged, HistoryError, NothingToWorkOn
 from diskwatch.history import versions
 from diskwatch.history.guarding import refuse_odd_database
-from diskwatch.history.mishaps import no_database, primary, told
+from diskwatch.history.mishaps import foreign, no_database, primary, told
+from diskwatch.history.versions import APPLICATION_ID
+from diskwatch.places import WATCH_LOCK, WRITE_LOCK
 from diskwatch.units import plain
 
 BUSY_MS = 5_000
@@ -26,6 +28,9 @@ BUSY_MS = 5_000
 _MAGIC = b"SQLite format 3\0"
 _SMALLEST_PAGE = 512
 """How every database begins, and the least bytes that one has (SQLite, Database File Format, 1.3)."""
+
+_ID_AT = 68
+"""Where the application id stands, four bytes, the largest first (likewise, 1.3.17)."""
 
 _NO_WAY_IN = frozenset({sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_READONLY})
 
@@ -154,6 +159,27 @@ def refuse_foreign(path: Path) -> None:
         opened.close()
 
 
+def is_ours(path: Path) -> bool:
+    """Whether anything says that a file, damaged as it may be, is a history of diskwatch.
+
+    Its first bytes may, by the application id, or a lock file beside it, which only a watch of ours lays.
+    """
+    try:
+        begin = _beginning(path)
+    except OSError:
+        begin = b""
+    if begin[_ID_AT : _ID_AT + 4] == APPLICATION_ID.to_bytes(4, "big"):
+        return True
+    return any(_size(path.with_name(name)) is not None for name in (WRITE_LOCK, WATCH_LOCK))
+
+
+def _beginning(path: Path) -> bytes:
+    # Whatever took its place since it was looked at, nothing is followed and nothing waited for.
+    descriptor = os.open(path, os.O_RDONLY | os.O_NOFOLLOW | os.O_NONBLOCK | os.O_CLOEXEC)
+    with os.fdopen(descriptor, "rb") as file:
+        return file.read(_SMALLEST_PAGE)
+
+
 def _nothing_yet(path: Path) -> NothingToWorkOn:
     return NothingToWorkOn(
         f"nothing has been recorded in {plain(str(path.parent))} yet",
@@ -164,15 +190,12 @@ def _nothing_yet(path: Path) -> NothingToWorkOn:
 def _refuse_no_database(path: Path) -> None:
     """SQLite takes a file of less than its smallest page for an empty database, and would write over it."""
     try:
-        # Whatever took its place since it was looked at, nothing is followed and nothing waited for.
-        descriptor = os.open(path, os.O_RDONLY | os.O_NOFOLLOW | os.O_NONBLOCK | os.O_CLOEXEC)
-        with os.fdopen(descriptor, "rb") as file:
-            begin = file.read(_SMALLEST_PAGE)
+        begin = _beginning(path)
     except OSError as error:
         raise told(error, path) from error
     # The two bytes behind the page size say who may write and read: 1 or 2, or what was written is damaged.
     if len(begin) < _SMALLEST_PAGE or not begin.startswith(_MAGIC) or not {*begin[18:20]} <= {1, 2}:
-        raise no_database(path)
+        raise _of_whom(no_database(path), path)
 
 
 def _connected(path: Path, mark: _Mark) -> Opened:
@@ -213,4 +236,9 @@ def _told(path: Path) -> Iterator[None]:
     try:
         yield
     except sqlite3.Error as error:
-        raise told(error, path) from error
+        raise _of_whom(told(error, path), path) from error
+
+
+def _of_whom(error: HistoryError, path: Path) -> HistoryError:
+    """Damage is only ours to mend where the file is ours."""
+    return foreign(path) if isinstance(error, HistoryDamaged) and not is_ours(path) else error

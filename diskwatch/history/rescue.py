@@ -17,7 +17,8 @@ from diskwatch.history import versions
 from diskwatch.history.care import copies
 from diskwatch.history.carrying import Carried, carry, let_go_of_orphans, tables_of
 from diskwatch.history.lock import WatchLock
-from diskwatch.history.mishaps import told
+from diskwatch.history.mishaps import foreign, told
+from diskwatch.history.opening import is_ours
 from diskwatch.history.round import write_entries
 from diskwatch.history.writer import begun
 from diskwatch.places import HISTORY
@@ -73,10 +74,13 @@ def rescue(folder: Path, at: int) -> Rescued:
     Raises:
         HistoryHeld: another process writes it.
         HistoryTooNew: a newer version wrote it; it is left untouched.
-        HistoryError: the new one cannot be made; the damaged one stays where it was.
+        HistoryError: the new one cannot be made, or nothing says that the file is ours; it stays where it was.
     """
-    lock = WatchLock.take(folder)
     path, making = folder / HISTORY, folder / f".{HISTORY}.making"
+    # Before a lock lies beside it, which would say that it is.
+    if not is_ours(path):
+        raise foreign(path)
+    lock = WatchLock.take(folder)
     mended = folder / f".{HISTORY}.mended"
     try:
         for left in (making, mended):

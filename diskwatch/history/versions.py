@@ -57,7 +57,12 @@ def age(connection: sqlite3.Connection, path: Path) -> Age:
             hint="use that version, or name another folder with --state",
         )
     if not applied:
-        if version or not {name for name in tables if not name.startswith("sqlite_")} <= {_STEPS_TABLE}:
+        (whose,) = connection.execute("PRAGMA application_id").fetchone()
+        if (
+            version
+            or whose
+            or not {name for name in tables if not name.startswith("sqlite_")} <= {_STEPS_TABLE}
+        ):
             raise HistoryError(
                 f"{plain(str(path))} is a database, but no history of diskwatch; it is left untouched",
                 hint="move it away, or name another folder with --state",

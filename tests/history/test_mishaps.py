@@ -24,7 +24,7 @@ def _raised(code: int) -> sqlite3.OperationalError:
         (sqlite3.SQLITE_BUSY_SNAPSHOT, "locked by another process"),
         (sqlite3.SQLITE_LOCKED, "locked by another process"),
         (sqlite3.SQLITE_CORRUPT_VTAB, "is damaged"),
-        (sqlite3.SQLITE_NOTADB, "no SQLite database"),
+        (sqlite3.SQLITE_NOTADB, "not that of an SQLite database"),
         (sqlite3.SQLITE_CANTOPEN, "cannot be opened"),
         (sqlite3.SQLITE_IOERR_WRITE, "reports an error"),
     ],

@@ -6,11 +6,11 @@ from pathlib import Path
 
 import pytest
 
-from diskwatch.errors import HistoryError, HistoryTooNew, NothingToWorkOn
+from diskwatch.errors import HistoryDamaged, HistoryError, HistoryTooNew, NothingToWorkOn
 from diskwatch.history import versions
-from diskwatch.history.opening import Opened, open_to_read, refuse_foreign
+from diskwatch.history.opening import Opened, is_ours, open_to_read, refuse_foreign
 from diskwatch.history.writer import History
-from diskwatch.places import HISTORY
+from diskwatch.places import HISTORY, WATCH_LOCK, WRITE_LOCK
 from tests.history.examples import NOON, a_drive, a_place
 
 
@@ -128,10 +128,28 @@ def test_a_file_that_is_no_history_is_refused_by_name_and_left_untouched(tmp_pat
     path = tmp_path / HISTORY
     path.write_bytes(content)
     before = _all_of(tmp_path)
-    with pytest.raises(HistoryError, match=r"history\.db is") as caught:
+    with pytest.raises(HistoryError, match=r"history\.db is no history.*move it away") as caught:
         opener(path)
-    assert caught.value.hint
+    assert not isinstance(caught.value, HistoryDamaged)  # or the watch would set it aside
     assert _all_of(tmp_path) == before
+
+
+@pytest.mark.parametrize("sign", ["the lock", "the application id"])
+def test_a_damaged_file_is_ours_by_the_lock_beside_it_or_by_its_application_id(path, sign):
+    assert is_ours(path)
+    if sign == "the lock":
+        path.write_bytes(b"\xff" * 4096)
+    else:
+        for name in (WATCH_LOCK, WRITE_LOCK):
+            path.with_name(name).unlink()
+        path.write_bytes(b"\xff" * 60 + path.read_bytes()[60:])
+    with pytest.raises(HistoryDamaged, match="the watch sets it aside"):
+        refuse_foreign(path)
+    for name in (WATCH_LOCK, WRITE_LOCK):
+        path.with_name(name).unlink(missing_ok=True)
+    path.write_bytes(b"\xff" * 4096)
+    assert not is_ours(path)
+    assert not is_ours(path.with_name("nowhere") / HISTORY)
 
 
 @pytest.mark.parametrize("opener", [open_to_read, refuse_foreign, lambda path: History.open(path.parent)])

@@ -4,12 +4,12 @@ from contextlib import closing
 
 import pytest
 
-from diskwatch.errors import HistoryDamaged, HistoryHeld, HistoryTooNew
+from diskwatch.errors import HistoryDamaged, HistoryError, HistoryHeld, HistoryTooNew
 from diskwatch.history.care import check, make_copy
 from diskwatch.history.reader import Past
 from diskwatch.history.rescue import rescue
 from diskwatch.history.writer import History
-from diskwatch.places import HISTORY
+from diskwatch.places import HISTORY, WATCH_LOCK, WRITE_LOCK
 from tests.history.damage import PAGE, pages, turn
 from tests.history.examples import DAY, NOON, a_drive, a_place, a_span, full_round
 
@@ -181,6 +181,26 @@ def test_a_history_of_a_newer_version_is_left_alone(grown):
     with pytest.raises(HistoryTooNew):
         rescue(grown, NOON)
     assert set(grown.iterdir()) == before
+
+
+@pytest.mark.parametrize("content", [b"what somebody else needs\n", b"SQLite format 3\0" + bytes(5000), b""])
+def test_a_file_of_which_nothing_says_that_it_is_ours_is_never_set_aside(folder, content):
+    folder.mkdir()
+    (folder / HISTORY).write_bytes(content)
+    with pytest.raises(HistoryError, match="left untouched") as caught:
+        rescue(folder, NOON)
+    assert not isinstance(caught.value, HistoryDamaged)
+    assert {path.name: path.read_bytes() for path in folder.iterdir()} == {HISTORY: content}
+
+
+def test_a_file_that_says_that_it_is_ours_is_mended_also_where_no_lock_lies_beside_it(grown):
+    (grown / WATCH_LOCK).unlink()
+    (grown / WRITE_LOCK).unlink()
+    before = _rows(grown / HISTORY)
+    turn(grown / HISTORY, 1, 0)
+    rescue(grown, NOON)
+    after = _rows(grown / HISTORY)
+    assert all(before[name] <= after[name] for name in before)
 
 
 def test_where_the_new_file_cannot_be_made_the_damaged_one_stays_in_place(grown, monkeypatch):

@@ -61,7 +61,9 @@ def test_a_version_number_above_ours_means_a_newer_version(ours):
         age(ours, PATH)
 
 
-@pytest.mark.parametrize("statement", ["CREATE TABLE somebody_elses (x)", "PRAGMA user_version = 3"])
+@pytest.mark.parametrize(
+    "statement", ["CREATE TABLE somebody_elses (x)", "PRAGMA user_version = 3", "PRAGMA application_id = 7"]
+)
 def test_a_database_of_something_else_is_refused_but_not_called_newer(empty, statement):
     empty.execute(statement)
     with pytest.raises(HistoryError, match="no history of diskwatch") as caught:

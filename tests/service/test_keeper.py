@@ -143,9 +143,16 @@ def test_a_history_that_was_let_go_is_taken_up_again_with_all_that_waited(tmp_pa
 
 
 def test_damage_is_told_from_every_other_trouble(tmp_path):
+    Keeper(tmp_path).close()
     (tmp_path / "history.db").write_bytes(b"no database" * 100)
     keeper = Keeper(tmp_path)
     assert keeper.damaged
+    keeper.close()
+    for lock in tmp_path.glob("*.lock"):
+        lock.unlink()
+    # Nothing says any more that the file is ours, and what is not ours is not ours to mend.
+    keeper = Keeper(tmp_path)
+    assert (keeper.damaged, keeper.trouble is None) == (False, False)
     keeper.close()
     blocked = tmp_path / "state"
     blocked.write_text("in the way")
