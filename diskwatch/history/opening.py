@@ -18,6 +18,7 @@ from diskwatch.errors import HistoryDamaged, HistoryError, NothingToWorkOn
 from diskwatch.history import versions
 from diskwatch.history.guarding import refuse_odd_database
 from diskwatch.history.mishaps import foreign, no_database, primary, told
+from diskwatch.history.older import read_as_current
 from diskwatch.history.versions import APPLICATION_ID
 from diskwatch.places import WATCH_LOCK, WRITE_LOCK
 from diskwatch.units import plain
@@ -76,19 +77,29 @@ class Opened:
     Attributes:
         connection: the connection; it cannot write.
         frozen: True where it reads the file alone, without any log.
+        version: for a file of an older version, which one that is; its answers are right until the watch
+            brings the file up to date. None for a file of this version.
     """
 
     def __init__(self, path: Path, connection: sqlite3.Connection, mark: _Mark, *, frozen: bool) -> None:
         self.connection = connection
         self.frozen = frozen
+        self.version: int | None = None
         self._path = path
         self._mark = mark
+
+    @property
+    def lasting(self) -> bool:
+        """Whether its answers are right however the file is written meanwhile; else `holds` must be asked."""
+        return not self.frozen and self.version is None
 
     def holds(self) -> bool:
         """Whether what this connection gives is still what the file says."""
         try:
             now = _mark(self._path)
-        except OSError:
+            if self.version is not None and not self.frozen and _version(self.connection) != self.version:
+                return False
+        except (OSError, sqlite3.Error):
             return False
         return now == self._mark if self.frozen else now.file == self._mark.file
 
@@ -129,10 +140,20 @@ def _refuse_unreadable(opened: Opened, path: Path) -> None:
     if found is versions.Age.EMPTY:
         raise _nothing_yet(path)
     if found is versions.Age.OLDER:
-        raise HistoryError(
-            f"{plain(str(path))} was written by an older version of diskwatch",
-            hint="the watch brings it up to date when it starts, or run 'diskwatch watch --once'",
-        )
+        with _told(path):
+            # First, so that a step that is taken meanwhile is noticed by `holds`.
+            opened.version = _version(opened.connection)
+            readable = read_as_current(opened.connection)
+        if not readable:
+            raise HistoryError(
+                f"{plain(str(path))} was written by an older version of diskwatch",
+                hint="the watch brings it up to date when it starts, or run 'diskwatch watch --once'",
+            )
+
+
+def _version(connection: sqlite3.Connection) -> int:
+    (found,) = connection.execute("PRAGMA main.user_version").fetchone()
+    return int(found)
 
 
 def refuse_foreign(path: Path) -> None:

@@ -63,7 +63,7 @@ def lives(process: Process, owners: frozenset[int]) -> bool:
 
 def _seen(pid: int) -> Process | None:
     try:
-        boot = (_PROC / "sys/kernel/random/boot_id").read_text(encoding="ascii").strip()
+        boot = (_PROC / "sys/kernel/random/boot_id").read_text(encoding="utf-8").strip()
         line = (_PROC / str(pid) / "stat").read_text(encoding="utf-8", errors="replace")
         # The second field is a name in parentheses, in which anything may stand, also a parenthesis.
         fields = line.rpartition(")")[2].split()

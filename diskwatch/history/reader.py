@@ -221,14 +221,14 @@ class Past:
                 try:
                     answer = _at_one_moment(opened.connection, question)
                 except sqlite3.Error as error:
-                    if opened.frozen and not opened.holds():
+                    if not opened.lasting and not opened.holds():
                         continue  # somebody began to write: what was read may be half of this and half of that
                     raise told(error, self._path) from error
                 except ValueError as error:
-                    if opened.frozen and not opened.holds():
+                    if not opened.lasting and not opened.holds():
                         continue
                     raise unreadable(self._path) from error
-                if opened.holds() or not opened.frozen:
+                if opened.lasting or opened.holds():
                     return answer
         raise HistoryError(f"{plain(str(self._path))} changes faster than it can be read", hint="try again")
 

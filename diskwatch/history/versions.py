@@ -43,13 +43,8 @@ def age(connection: sqlite3.Connection, path: Path) -> Age:
         HistoryError: it is a database of something else.
         sqlite3.Error: it cannot be read.
     """
-    tables = {name for (name,) in connection.execute("SELECT name FROM sqlite_master WHERE type = 'table'")}
-    applied: set[str] = set()
-    if _STEPS_TABLE in tables:
-        rows = connection.execute(
-            "SELECT name FROM _sqlite_migrations WHERE migration_set = ?", (MIGRATION_SET,)
-        )
-        applied = {name for (name,) in rows}
+    tables = _tables(connection)
+    applied = steps_of(connection)
     (version,) = connection.execute("PRAGMA user_version").fetchone()
     if applied - set(MIGRATIONS) or (applied and version > len(MIGRATIONS)):
         raise HistoryTooNew(
@@ -69,3 +64,20 @@ def age(connection: sqlite3.Connection, path: Path) -> Age:
             )
         return Age.EMPTY
     return Age.CURRENT if applied == set(MIGRATIONS) else Age.OLDER
+
+
+def steps_of(connection: sqlite3.Connection) -> frozenset[str]:
+    """Names of the steps that a history has taken; none where it is none of ours.
+
+    Raises:
+        sqlite3.Error: it cannot be read.
+    """
+    if _STEPS_TABLE not in _tables(connection):
+        return frozenset()
+    taken = connection.execute("SELECT name FROM _sqlite_migrations WHERE migration_set = ?", (MIGRATION_SET,))
+    return frozenset(name for (name,) in taken)
+
+
+def _tables(connection: sqlite3.Connection) -> frozenset[str]:
+    found = connection.execute("SELECT name FROM sqlite_master WHERE type = 'table'")
+    return frozenset(name for (name,) in found)

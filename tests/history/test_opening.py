@@ -113,7 +113,7 @@ def test_a_newer_history_is_refused_and_left_untouched(path, opener, statement):
     assert _all_of(path.parent) == before
 
 
-def test_an_older_history_cannot_be_read_until_the_watch_has_brought_it_up_to_date(path, monkeypatch):
+def test_an_older_history_that_no_view_makes_readable_waits_for_the_watch(path, monkeypatch):
     monkeypatch.setattr(versions, "MIGRATIONS", (*versions.MIGRATIONS, "9999_invented"))
     with pytest.raises(HistoryError, match="older version"):
         open_to_read(path)

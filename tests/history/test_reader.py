@@ -1,10 +1,12 @@
 import os
 import shutil
 import signal
+import sqlite3
 import subprocess
 import sys
 import tempfile
 import threading
+from contextlib import closing
 from pathlib import Path
 
 import pytest
@@ -268,6 +270,65 @@ def roots(nobody):  # noqa: ARG001  # the child is forked first, and only root g
     above.chmod(0o755)
     yield above / "state"
     shutil.rmtree(above)
+
+
+OLD = sorted((Path(__file__).parents[2] / "fixtures" / "history").glob("*.db"))
+
+
+def _all_answers(past):
+    return (
+        past.bays(NOON),
+        past.day_book(),
+        past.passes(1),
+        past.pass_days(1),
+        past.rollups(1, 0, 2**40),
+        past.class_days(1, 0, 2**40),
+        past.traffic(1, 0, 2**40),
+        past.series(1, "pending-sectors"),
+        past.evidence(1, "pending-sectors"),
+        past.last_reading(1),
+        past.state(1),
+        past.lines(1),
+    )
+
+
+@pytest.mark.parametrize("old", OLD, ids=lambda path: path.stem)
+@pytest.mark.parametrize("log", [False, True], ids=["alone", "with a log"])
+def test_a_history_of_an_older_version_answers_as_it_will_once_the_watch_has_brought_it_up_to_date(
+    folder, old, log
+):
+    folder.mkdir()
+    shutil.copyfile(old, folder / HISTORY)
+    if log:
+        # As a watch of that version left it that was killed: all that it wrote last stands in the log.
+        with closing(sqlite3.connect(folder / HISTORY, isolation_level=None)) as writing:
+            writing.execute("PRAGMA journal_mode = WAL")
+            writing.execute("UPDATE owner_fact SET value = 'cellar'")
+            for name in (HISTORY, f"{HISTORY}-wal"):
+                shutil.copyfile(folder / name, folder / f"kept-{name}")
+        for name in (HISTORY, f"{HISTORY}-wal"):
+            (folder / f"kept-{name}").replace(folder / name)
+    with Past.open(folder) as past:
+        before = _all_answers(past)
+        (line,) = past.bays(NOON).drives
+        assert line.label == ("cellar" if log else "attic")
+        assert all(before[which] for which in (2, 4, 6, 11))
+        with History.open(folder) as history:
+            # The very connection that read it as it was reads on.
+            assert _all_answers(past)[1:] == before[1:]
+            history.record(full_round(history.known()[0], NOON + 9 * DAY, 9))
+            assert len(past.passes(1)) == len(before[2]) + 1
+    with Past.open(folder) as past:
+        assert past.passes(1)[-1].at == NOON + 9 * DAY
+
+
+def test_reading_an_older_history_changes_no_byte_of_it_and_lays_nothing_beside_it(folder):
+    folder.mkdir()
+    shutil.copyfile(OLD[0], folder / HISTORY)
+    with Past.open(folder) as past:
+        _all_answers(past)
+        assert [path.name for path in folder.iterdir()] == [HISTORY]
+    assert (folder / HISTORY).read_bytes() == OLD[0].read_bytes()
 
 
 def test_another_user_reads_while_the_watch_runs_and_after_it_ended(roots, nobody):
