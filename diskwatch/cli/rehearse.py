@@ -158,7 +158,10 @@ def _list(*, as_json: bool) -> None:
         return
     width = max(map(len, known), default=0)
     for name, one in known.items():
-        print(plain(f"{name:<{width}}  {one.days:>4} days, {len(one.drive)} INVENTED drives: {one.title}"))
+        drives = "1 INVENTED drive" if len(one.drive) == 1 else f"{len(one.drive)} INVENTED drives"
+        print(plain(f"{name:<{width}}  {one.days:>4} days, {drives}: {one.title}"))
+        for wish in one.expect:
+            print(plain(f"    {' '.join(wish.because.split())}"))
 
 
 def answer(ended: Ended) -> dict[str, object]:
