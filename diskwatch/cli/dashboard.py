@@ -18,10 +18,11 @@ from pathlib import Path
 
 from diskwatch.cli import bays as bays_command
 from diskwatch.cli.common import now, settings, state_folder, talk
-from diskwatch.errors import NothingToWorkOn
+from diskwatch.errors import HistoryError, NothingToWorkOn
 from diskwatch.history.lock import watcher
+from diskwatch.history.opening import refuse_foreign
 from diskwatch.history.reader import Past
-from diskwatch.places import is_there
+from diskwatch.places import HISTORY, is_there
 from diskwatch.records import Bays
 
 _STARTING = 5.0
@@ -130,6 +131,10 @@ def _watching(folder: Path, args: argparse.Namespace) -> Iterator[tuple[str, int
 
 def _may_write(folder: Path) -> bool:
     """Whether the history can be written, or made where there is none yet."""
+    try:
+        refuse_foreign(folder / HISTORY)
+    except HistoryError:
+        return False  # the screen tells why, when it cannot read it either
     place = folder
     while not is_there(place):
         place = place.parent

@@ -2,6 +2,7 @@ import os
 import subprocess
 import time
 
+from diskwatch.cli.dashboard import _may_write
 from diskwatch.history.lock import watcher
 from tests.cli.run import COMMAND, ROOT, run
 
@@ -35,3 +36,9 @@ def test_a_terminal_that_goes_away_without_a_signal_ends_the_screen_and_its_watc
     while watcher(tmp_path) is not None and time.monotonic() < until + 10:
         time.sleep(0.05)
     assert watcher(tmp_path) is None
+
+
+def test_no_watch_is_begun_on_a_history_that_is_not_ours(tmp_path):
+    assert _may_write(tmp_path / "new" / "folder")
+    (tmp_path / "history.db").write_text("somebody else's", encoding="utf-8")
+    assert not _may_write(tmp_path)
