@@ -16,6 +16,7 @@ from pathlib import Path
 
 from diskwatch.cli.answers import replay_answer
 from diskwatch.cli.common import Bar, print_json, settings, talk
+from diskwatch.places import state_folder
 from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, summed
 from diskwatch.rehearsal import scenarios, state
 from diskwatch.rehearsal.course import Course, Ended
@@ -95,9 +96,10 @@ def run(args: argparse.Namespace) -> int:
 def _folder(named: str | None) -> Iterator[Path]:
     """The state folder: the one named, else one in memory, so that no drive is written to for a game."""
     if named is not None:
-        if state.claim(Path(named)):
+        folder = state_folder(named)
+        if state.claim(folder):
             talk(f"{named}: the history of an earlier rehearsal was removed; this one takes its place.")
-        yield Path(named)
+        yield folder
         return
     where = _MEMORY if os.access(_MEMORY, os.W_OK | os.X_OK) else None
     with tempfile.TemporaryDirectory(prefix="diskwatch-rehearsal-", dir=where) as folder:

@@ -169,3 +169,8 @@ def test_the_speed_bounds_how_fast_days_go_by(small):
     begun = time.monotonic()
     assert run("rehearse", small, "--json", "--days", 2, "--speed", 8).code == 0
     assert time.monotonic() - begun >= 0.25
+
+
+def test_an_empty_name_is_no_folder_and_nothing_is_kept_where_the_command_was_called():
+    ended = run("rehearse", "scratched-media", "--headless", "--days", 1, "--state", "")
+    assert (ended.code, ended.err.count("\n")) == (2, 1)
