@@ -96,10 +96,10 @@ def run(args: argparse.Namespace) -> int:
 def _folder(named: str | None) -> Iterator[Path]:
     """The state folder: the one named, else one in memory, so that no drive is written to for a game."""
     if named is not None:
-        folder = state_folder(named)
-        if state.claim(folder):
+        chosen = state_folder(named)
+        if state.claim(chosen):
             talk(f"{named}: the history of an earlier rehearsal was removed; this one takes its place.")
-        yield folder
+        yield chosen
         return
     where = _MEMORY if os.access(_MEMORY, os.W_OK | os.X_OK) else None
     with tempfile.TemporaryDirectory(prefix="diskwatch-rehearsal-", dir=where) as folder:
