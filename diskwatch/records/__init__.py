@@ -7,6 +7,7 @@ or in its line of the docstring.
 from diskwatch.records.bays import Bays, DriveLine, LastPass, SignalNow
 from diskwatch.records.daybook import Entry
 from diskwatch.records.drive import Drive, Identity, Kind, Mount, Place
+from diskwatch.records.forecast import Forecast, LimitSource
 from diskwatch.records.io import ClassDay, Direction, IoCounts, IoRollup, IoSpan
 from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingKind
 from diskwatch.records.reading import (
@@ -39,6 +40,7 @@ __all__ = [
     "Failing",
     "Finding",
     "FindingKind",
+    "Forecast",
     "Identity",
     "IoCounts",
     "IoRollup",
@@ -46,6 +48,7 @@ __all__ = [
     "Kind",
     "KnownDrive",
     "LastPass",
+    "LimitSource",
     "Mount",
     "Outcome",
     "Pass",
