@@ -42,6 +42,13 @@ def settings(args: argparse.Namespace) -> "Settings":
     return found
 
 
+def drive_option(parser: argparse.ArgumentParser) -> None:
+    """The drive that a command is about."""
+    parser.add_argument(
+        "drive", metavar="DRIVE", help="serial, WWN, device, label, or an unambiguous part of one"
+    )
+
+
 def talk(text: str) -> None:
     """One line to the person at the terminal, beside the data."""
     print(plain(text), file=sys.stderr)

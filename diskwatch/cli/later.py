@@ -1,0 +1,58 @@
+"""Put the notices of one drive off, for this user alone.
+
+A notice comes again when the days are over, or at once when the drive's call becomes a stronger one. Nothing
+else changes: the drive stays as it is called, and every other command goes on showing it.
+"""
+
+import argparse
+import sys
+from datetime import datetime
+
+from diskwatch import places
+from diskwatch.cli.common import drive_option, now, settings, state_folder
+from diskwatch.errors import UsageError
+from diskwatch.history.later import PutOff, put_off
+from diskwatch.history.reader import Past
+from diskwatch.units import DAY, plain
+
+DAYS = 7
+MOST_DAYS = 90
+"""A drive in trouble is not to be put off for ever."""
+
+
+def options(parser: argparse.ArgumentParser) -> None:
+    """Options of this command."""
+    drive_option(parser)
+    parser.add_argument(
+        "--days",
+        metavar="N",
+        type=int,
+        default=DAYS,
+        help=f"for how many days, 1 to {MOST_DAYS} (default: {DAYS})",
+    )
+
+
+def run(args: argparse.Namespace) -> int:
+    """Put off; 0, 2 where no drive is meant, 3 where there is no history, 4 where it cannot be written down."""
+    if args.settings is not None:
+        settings(args)
+    if not 1 <= args.days <= MOST_DAYS:
+        raise UsageError(
+            f"--days {args.days} is not possible", hint=f"name a number of days from 1 to {MOST_DAYS}"
+        )
+    at = now()
+    with Past.open(state_folder(args)) as past:
+        line = past.find(args.drive)
+    until = at + args.days * DAY
+    word = None if line.call is None else line.call.word
+    put_off(places.user_state(), line.drive.identity, PutOff(until=until, call=word), at)
+    when = datetime.fromtimestamp(until).astimezone().strftime("%Y-%m-%d %H:%M")
+    standing = "It has no call yet" if word is None else f"Its call stays {word.value}"
+    sys.stdout.write(
+        plain(
+            f"Notices about {line.name} ({line.place.device}) are put off for you until {when}. {standing}; "
+            f"should it become a stronger one, a notice comes at once."
+        )
+        + "\n"
+    )
+    return 0
