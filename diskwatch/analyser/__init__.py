@@ -1,12 +1,24 @@
 """The one state machine from readings to findings and a call.
 
-``advance(state, pass) -> step`` knows no clock, file or process: live readings, replay of recorded ones and
-rehearsal of a failure run the very same code.
+``advance(state, pass) -> step`` and ``settle(state, word) -> step`` know no clock, file or process: live
+readings, replay of recorded ones and rehearsal of a failure run the very same code.
 """
 
 from diskwatch.analyser.advance import Step, advance
 from diskwatch.analyser.explain import Explanation, explain
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
+from diskwatch.analyser.settle import settle
 from diskwatch.analyser.state import DriveState, dump, load, start
 
-__all__ = ["UNREAD_LIMIT", "DriveState", "Explanation", "Step", "advance", "dump", "explain", "load", "start"]
+__all__ = [
+    "UNREAD_LIMIT",
+    "DriveState",
+    "Explanation",
+    "Step",
+    "advance",
+    "dump",
+    "explain",
+    "load",
+    "settle",
+    "start",
+]

@@ -3,7 +3,7 @@
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 
-from diskwatch.analyser import counters, findings, outcomes, signs
+from diskwatch.analyser import counters, endings, findings, outcomes, signs
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
@@ -65,7 +65,7 @@ def advance(state: DriveState, pass_: Pass) -> Step:
         now = outcomes.without_reading(state, pass_)
     call = _called(now, pass_)
     if call is not None and (state.call is None or call.word is not state.call.word):
-        happened += _told_call(state.call, call)
+        happened += told_call(state.call, call)
     if call is not state.call:
         now = replace(now, call=call)
     return Step(state=now, happened=tuple(happened))
@@ -76,6 +76,7 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
     counts = counters.followed(reading)
     risen, happened = counters.rises(state, pass_, counts)
     hours = reading.number("power-on-hours")
+    streams = counters.streams(state, pass_, counts, risen, hours)
     # Written out: replace() takes three times as long, and a replay of years comes by here for every day.
     now = DriveState(
         parameters=state.parameters,
@@ -87,9 +88,13 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         hours=state.hours if hours is None else hours,
         firsts=_firsts(state, reading, counts),
         latest={**state.latest, **counts},
+        base=state.base,
         risen={**state.risen, **dict.fromkeys(risen, day_number(pass_.at))} if risen else state.risen,
-        streams=counters.streams(state, pass_, counts, risen, hours),
+        rose=counters.rose(state.rose, streams, risen) if risen else state.rose,
+        streams=streams,
         spots=counters.damage(state, pass_, reading),
+        settled=state.settled,
+        word=state.word,
         standing=state.standing,
         call=state.call,
     )
@@ -97,6 +102,7 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         *facts.facts(reading, at=pass_.at, first_spare=now.firsts.get("available-spare")),
         *findings.fresh_defects(now, pass_, reading, risen),
         *findings.drifts(now, pass_),
+        *findings.back(now, pass_, risen),
         *findings.rule(now, pass_),
     )
     alarms = [
@@ -105,7 +111,8 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         if one.kind is FindingKind.DRIFT and one.name not in state.standing
     ]
     if shown or now.standing:
-        now = replace(now, standing=_standing(state.standing, shown, pass_.at))
+        now, ended = endings.ended(replace(now, standing=_standing(state.standing, shown, pass_.at)), pass_)
+        alarms += ended
     return now, [*happened, *alarms]
 
 
@@ -141,22 +148,23 @@ def _called(state: DriveState, pass_: Pass) -> Call | None:
         state.standing.values(),
         before=state.call,
         at=pass_.at,
-        quiet=_quiet(state, pass_),
+        quiet=quiet(state, pass_.at),
         explained=explained,
     )
 
 
-def _quiet(state: DriveState, pass_: Pass) -> str:
+def quiet(state: DriveState, at: int) -> str:
+    """The reason for keep, where nothing asks for a deed."""
     old = {signal: count for signal in findings.DEFECTS if (count := state.firsts.get(signal, 0)) > 0}
-    if state.first_at is None or state.first_at == pass_.at:
+    if state.first_at is None or state.first_at == at:
         return sentences.first_reading(old)
-    risen = {
-        signal: now - state.firsts[signal] for signal, now in state.latest.items() if now > state.firsts[signal]
-    }
-    return sentences.quiet(old, risen)
+    since = {**state.firsts, **state.base}
+    risen = {signal: now - since[signal] for signal, now in state.latest.items() if now > since[signal]}
+    return sentences.quiet(old, risen, state.word)
 
 
-def _told_call(before: Call | None, call: Call) -> Iterator[Entry]:
+def told_call(before: Call | None, call: Call) -> Iterator[Entry]:
+    """Say that the call changed; that a new drive is kept is no news."""
     if before is None and call.word is CallWord.KEEP:
         return
     was = before.word.value if before else None

@@ -75,6 +75,14 @@ def streams(
     return after
 
 
+def rose(
+    before: Mapping[str, float], after: Mapping[str, episodes.Stream], risen: Mapping[str, int]
+) -> Mapping[str, float]:
+    """The powered days at which each stream last rose, carried past a reading that brought rises."""
+    streams = {STREAM_OF[signal].stream for signal in risen}
+    return {**before, **{stream: after[stream].powered + after[stream].exposure for stream in streams}}
+
+
 def turns(pass_: Pass, reading: Reading) -> bool:
     """Whether the drive has a turning platter, as far as can be told."""
     drive = pass_.drive

@@ -4,7 +4,7 @@ from collections.abc import Iterator, Mapping
 
 from diskwatch.analyser.counters import turns
 from diskwatch.analyser.state import DriveState
-from diskwatch.judge import sentences
+from diskwatch.judge import rules, sentences
 from diskwatch.records import CallWord, Cause, Finding, FindingKind, Pass, Reading
 from diskwatch.trends import spots
 from diskwatch.trends.episodes import Stream
@@ -81,10 +81,11 @@ def fresh_defects(
     telling = [signal for signal in DEFECTS if turning or signal not in _ONLY_TURNING]
     if risen.keys().isdisjoint(telling):
         return
+    since = {**state.firsts, **state.base}
     above = {
-        signal: (state.firsts[signal], state.latest[signal])
+        signal: (since[signal], state.latest[signal])
         for signal in telling
-        if signal in state.latest and state.latest[signal] > state.firsts[signal]
+        if signal in state.latest and state.latest[signal] > since[signal]
     }
     # What fell before, below its first value, and rose again is told by this rise alone.
     shown = above or {
@@ -102,6 +103,29 @@ def fresh_defects(
         evidence=None,
         sentence=sentences.fresh_defects(shown),
         data={signal: {"first": first, "now": now} for signal, (first, now) in shown.items()},
+    )
+
+
+def back(state: DriveState, pass_: Pass, risen: Mapping[str, int]) -> Iterator[Finding]:
+    """Damaged transfers came back soon after the owner had seen to the link."""
+    word = state.settled.get("link")
+    if word is None or not risen:
+        return
+    norm = next(one for one in NORMS if one.stream == "link")
+    again = {signal: risen[signal] for signal in norm.signals if signal in risen}
+    stream = state.streams["link"]
+    if not again or stream.powered + stream.exposure > rules.LINK_QUIET:
+        return
+    yield Finding(
+        name="fact:link-again",
+        kind=FindingKind.FACT,
+        signals=tuple(again),
+        since=pass_.at,
+        calls=CallWord.LOOK,
+        cause=Cause.LINK,
+        evidence=None,
+        sentence=sentences.link_again(again, word),
+        data=dict(again),
     )
 
 

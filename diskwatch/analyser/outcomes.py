@@ -55,12 +55,14 @@ def _missed(state: DriveState, pass_: Pass) -> bool:
     """Whether the pass should have brought a reading and did not.
 
     A drive that has given readings before cannot lack SMART: a dying one answers none of the questions by which
-    it is told what it is. A USB drive is away because people unplug such drives.
+    it is told what it is. A USB drive is away because people unplug such drives, a replaced one because
+    it was taken out.
     """
     kind = None if pass_.drive is None else pass_.drive.kind
     if pass_.outcome is Outcome.NO_SMART:
         return state.first_at is not None and kind is not Kind.VIRTUAL
-    if pass_.outcome is Outcome.ABSENT and kind is Kind.USB:
+    replaced = state.word is not None and state.word.replaced_by is not None
+    if pass_.outcome is Outcome.ABSENT and (kind is Kind.USB or replaced):
         return False
     return pass_.outcome in _SHOULD_HAVE_READ
 

@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 import msgspec
 
 from diskwatch.errors import HistoryTooNew
-from diskwatch.records import Call, Finding, Outcome
+from diskwatch.records import Call, Finding, Outcome, Settled
 from diskwatch.trends.episodes import Stream
 from diskwatch.trends.spots import Spots
 
@@ -28,9 +28,13 @@ class DriveState:
         hours: powered hours at the last reading, or None.
         firsts: counters as first read.
         latest: counters as last read with a usable value.
-        risen: UTC day number of each counter's last rise.
+        base: counters as they were at the owner's last word about them; fresh defects are counted from there.
+        risen: UTC day number of each counter's last rise, or none where the owner has spoken since.
+        rose: powered days that a stream had seen when one of its counters last rose.
         streams: ledgers by stream.
         spots: damage for the odds rule.
+        settled: the owner's last word about each stream.
+        word: the owner's last word, or None.
         standing: findings that stand, by name.
         call: the call that stands, or None.
     """
@@ -44,9 +48,13 @@ class DriveState:
     hours: int | None = None
     firsts: Mapping[str, int] = field(default_factory=dict)
     latest: Mapping[str, int] = field(default_factory=dict)
+    base: Mapping[str, int] = field(default_factory=dict)
     risen: Mapping[str, int] = field(default_factory=dict)
+    rose: Mapping[str, float] = field(default_factory=dict)
     streams: Mapping[str, Stream] = field(default_factory=dict)
     spots: Spots = field(default_factory=Spots)
+    settled: Mapping[str, Settled] = field(default_factory=dict)
+    word: Settled | None = None
     standing: Mapping[str, Finding] = field(default_factory=dict)
     call: Call | None = None
 

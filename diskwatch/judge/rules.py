@@ -6,7 +6,7 @@ from diskwatch.judge.causes import Explained
 from diskwatch.records import Call, CallWord, Cause, Finding, FindingKind
 from diskwatch.units import DAY
 
-VERSION = 1
+VERSION = 2
 """Of the rules as a whole; a ticket names it so that a call can be checked by the rules it followed."""
 
 LINGERING = frozenset({"fact:hot", "fact:warns-of-heat"})
@@ -16,7 +16,16 @@ LINGER = 3 * DAY
 """Seconds that a lingering finding stands on: a drive that is hot every noon is one that is hot."""
 
 PASSING = frozenset({"fact:unreadable", "fact:hot", "fact:warns-of-heat"})
-"""Findings about the present moment end with what they tell of; all others stand until the owner speaks."""
+"""Findings about the present moment end with what they tell of.
+
+All others stand until evidence ends them (`LINK_QUIET`, `PENDING_QUIET`) or the owner speaks.
+"""
+
+LINK_QUIET = 30.0
+"""Powered days without a damaged transfer after which a link is taken for mended (a proposal; no source)."""
+
+PENDING_QUIET = 90
+"""Days without any new defect after which a sector that was rewritten asks for nothing more (likewise)."""
 
 _WEIGHT = {FindingKind.FACT: 3, FindingKind.RULE: 2, FindingKind.DRIFT: 1, FindingKind.LEVEL: 0}
 

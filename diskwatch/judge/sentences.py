@@ -6,9 +6,9 @@ sentence says or implies that a drive is safe; a test reads them all.
 
 from collections.abc import Mapping
 
-from diskwatch.records import Attribute, SelfTest
+from diskwatch.records import Attribute, SelfTest, Settled
 from diskwatch.trends.norms import YEAR, Norm
-from diskwatch.units import once_in, plain, say_count, say_days
+from diskwatch.units import once_in, plain, rfc3339, say_count, say_days
 
 _NAMES: Mapping[str, tuple[str, str]] = {
     "reallocated-sectors": (
@@ -184,17 +184,48 @@ def first_reading(old: Mapping[str, int]) -> str:
     return f"It came with old defects: {_list(old)}. That is a level, not a trend; a rise will speak."
 
 
-def quiet(old: Mapping[str, int], risen: Mapping[str, int]) -> str:
+def quiet(old: Mapping[str, int], risen: Mapping[str, int], word: Settled | None = None) -> str:
     """Nothing asks for a deed. The same words every day: what changes daily would be written daily.
 
     Args:
         old: what the defect counters held when the drive was first read, where not 0.
-        risen: how far error counters have risen since, where they have.
+        risen: how far error counters have risen since, or since the owner's word, where they have.
+        word: the owner's last word, or None.
     """
     came = f"It came with old defects: {_list(old)}. " if old else ""
+    said = f"{settled(word)} " if word else ""
+    since = "since then" if word else "since it has been watched"
     if not risen:
-        return f"{came}No error counter has gone beyond its norm since it has been watched."
-    return f"{came}Since it has been watched: {_list(risen)}. That is within the norm so far."
+        return f"{came}{said}No error counter has gone beyond its norm {since}."
+    return f"{came}{said}{_upper(since)}: {_list(risen)}. That is within the norm so far."
+
+
+def settled(word: Settled) -> str:
+    """The owner's word."""
+    about = f" about {', '.join(signal_name(one) for one in word.signals)}" if word.signals else ""
+    instead = f" {plain(word.replaced_by)} took its place." if word.replaced_by else ""
+    return f"On {rfc3339(word.at)[:10]} the owner said{about}: “{plain(word.because)}”.{instead}"
+
+
+def link_again(risen: Mapping[str, int], word: Settled) -> str:
+    """Damaged transfers within 30 powered days of the owner's word that the link was seen to."""
+    return (
+        f"{_list(risen)} came after the link was seen to on {rfc3339(word.at)[:10]}: reseat or replace the "
+        f"cable once more, or try another port, then watch."
+    )
+
+
+def link_is_quiet(days: int) -> str:
+    """A link finding ends on evidence."""
+    return f"No transfer was damaged in {say_days(days)} of powered time: the link is taken for mended."
+
+
+def pending_is_over(days: int) -> str:
+    """A first pending sector ends on evidence."""
+    return (
+        f"The sectors that could not be read have been rewritten, and {say_days(days)} brought no new defect: "
+        f"that finding ends. It is no promise for the days to come."
+    )
 
 
 def call_changed(before: str | None, after: str, reason: str) -> str:

@@ -23,6 +23,7 @@ from diskwatch.records.reading import (
 )
 from diskwatch.records.replayed import Drift, ReplayedDrive, ReplaySummary, summed
 from diskwatch.records.round import DriveRound, KnownDrive, Round
+from diskwatch.records.settled import Settled
 
 __all__ = [
     "Attribute",
@@ -59,6 +60,7 @@ __all__ = [
     "ReplayedDrive",
     "Round",
     "SelfTest",
+    "Settled",
     "SignalKind",
     "SignalNow",
     "Value",
