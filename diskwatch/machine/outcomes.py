@@ -7,7 +7,7 @@ answer comes first, then its words, then the bits.
 
 import re
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from diskwatch.machine.command import Answer, Ending
 from diskwatch.machine.held import Family
@@ -74,11 +74,13 @@ class Verdict:
             shown; what a person needs first, what to do last, the tool's own words in brackets at the end.
             None for a drive that was read.
         unproved: True where the words say asleep, but a drive that answers nothing at all gets them too.
+        strange: True where a command that is no smartctl at all would have ended so too.
     """
 
     outcome: Outcome
     explanation: str | None = None
     unproved: bool = False
+    strange: bool = False
 
 
 def quoted(text: str) -> str:
@@ -115,7 +117,7 @@ def of_command(answer: Answer, *, command: str, timeout: float) -> Verdict | Non
         )
     if answer.ending is Ending.NOT_STARTED:
         return Verdict(
-            outcome=Outcome.GARBLED,
+            outcome=Outcome.NO_TOOL,
             explanation=f"It was not asked, since {tool} could not be started; it is tried again in the next "
             f"round ({quoted(answer.trouble)}).",
         )
@@ -123,14 +125,35 @@ def of_command(answer: Answer, *, command: str, timeout: float) -> Verdict | Non
         return Verdict(
             outcome=Outcome.GARBLED,
             explanation=f"It was not read, since {tool} wrote without end and was cut off: {_SAY_WHICH}.",
+            strange=True,
         )
     if answer.status is not None and answer.status < 0:
         return Verdict(
             outcome=Outcome.GARBLED,
             explanation=f"It was not read, since {tool} was ended by signal {-answer.status} before it was "
             "done; it is tried again in the next round.",
+            strange=True,
         )
     return None
+
+
+def of_stranger(verdict: Verdict, *, command: str) -> Verdict:
+    """The verdict where nothing shows that the command is smartctl: then the drive has not been asked at all.
+
+    Blaming the drive would turn a slip in the settings into a call for every drive of the machine.
+
+    Args:
+        verdict: on what the command left behind.
+        command: what was run.
+    """
+    if not verdict.strange:
+        return verdict
+    return Verdict(outcome=Outcome.NO_TOOL, explanation=no_smartctl(command))
+
+
+def no_smartctl(command: str) -> str:
+    """What is wrong with a command that does not answer as smartctl does, and the cure."""
+    return f"{quoted(command)} does not answer as smartctl does, so no drive can be read: {_SAY_WHICH}."
 
 
 def of_scan(answer: Answer, *, command: str, timeout: float) -> str | None:
@@ -220,7 +243,12 @@ def of_words(
     if lacking is not None:
         return _without_smart(lacking)
     if status == ASLEEP_STATUS:
-        return Verdict(outcome=Outcome.ASLEEP, explanation=_RESTS, unproved=not what.genuine)
+        return Verdict(
+            outcome=Outcome.ASLEEP,
+            explanation=_RESTS,
+            unproved=not what.genuine,
+            strange=not what.genuine,
+        )
     if what.support is Support.NONE or not expects_smart:
         return _without_smart("It has no SMART")
     telling = next((line for line in lines if _is_telling(line.strip())), None)
@@ -261,7 +289,7 @@ def _of_tool(status: int | None, what: Understood, tool: str, telling: str | Non
         why = f"It was not read, since {tool} told neither a drive nor any trouble"
     else:
         return None
-    return _not_read(f"{why}: {_SAY_WHICH}", telling)
+    return replace(_not_read(f"{why}: {_SAY_WHICH}", telling), strange=not what.genuine)
 
 
 def _garbled(what: Understood, telling: str | None) -> Verdict:

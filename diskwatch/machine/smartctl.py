@@ -14,7 +14,7 @@ from diskwatch.machine.outcomes import ASLEEP_STATUS, Verdict, quoted
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import Understood, understood
 from diskwatch.machine.rest import Completed, Rest
-from diskwatch.machine.text import decoded, lines_of
+from diskwatch.machine.text import decoded, lines_of, names_version
 from diskwatch.machine.told import merged
 from diskwatch.machine.ways import Ways
 from diskwatch.records import Outcome, Pass
@@ -97,6 +97,7 @@ class Smartctl:
         # Both are replaced whole, so that a thread sees either the old or the new; the worst that a race costs
         # is one more process.
         self._knows = _Knows()
+        self._genuine = False
         self._ways = Ways()
         self._rest = Rest()
         self._optional = OptionalLogs()
@@ -121,7 +122,16 @@ class Smartctl:
             entry = _SCANNED.fullmatch(line.strip())
             if entry is not None and (entry["type"] is None or _TYPE.fullmatch(entry["type"])):
                 found[Address(node=entry["node"], type=entry["type"])] = None
+        self._genuine = self._genuine or any(one.type is not None for one in found)
+        if not self._genuine and not self._names_itself():
+            return Scan(entries=tuple(found), trouble=outcomes.no_smartctl(self._command))
         return Scan(entries=tuple(found))
+
+    def _names_itself(self) -> bool:
+        """Whether the command says that it is smartctl, asked where an empty list leaves that open."""
+        answer = self._door.run([self._command, "--version"], timeout=self._timeout)
+        self._genuine = any(map(names_version, lines_of(decoded(answer.out))))
+        return self._genuine
 
     def ask(self, found: Found, *, completed: Completed = _uncounted) -> Pass:
         """Ask one drive; whatever happens is a pass with an outcome, nothing is raised.
@@ -183,7 +193,7 @@ class Smartctl:
         answer = self._answer(found, type_, timeout, logs)
         verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
         if verdict is not None:
-            return _Told(type_, verdict)
+            return _Told(type_, self._of_whom(verdict))
         text = decoded(answer.out)
         document = document_of(text)
         lines = plain_lines(document) if document is not None else lines_of(text)
@@ -194,18 +204,25 @@ class Smartctl:
             *(messages(document) if document is not None else ()),
             *lines_of(decoded(answer.err)),
         )
-        verdict = outcomes.of_words(
-            said,
-            answer.status,
-            what,
-            expects_smart=found.expects_smart,
-            kind=found.drive.kind,
-            command=self._command,
+        self._genuine = self._genuine or what.genuine
+        verdict = self._of_whom(
+            outcomes.of_words(
+                said,
+                answer.status,
+                what,
+                expects_smart=found.expects_smart,
+                kind=found.drive.kind,
+                command=self._command,
+            )
         )
         if verdict.outcome is Outcome.READ:
             reading = self._optional.learn(found, logs, what, lines, document, at=self._now())
             what = replace(what, reading=reading)
         return _Told(type_, verdict, what, said, document, answer.status)
+
+    def _of_whom(self, verdict: Verdict) -> Verdict:
+        """The verdict, where the command never listed or answered anything as smartctl does: on the command."""
+        return verdict if self._genuine else outcomes.of_stranger(verdict, command=self._command)
 
     def _answer(self, found: Found, type_: str | None, timeout: float, logs: tuple[str, ...]) -> Answer:
         """Run smartctl in the best way that it knows; learn where it knows less than was thought."""

@@ -25,7 +25,8 @@ class Check:
 
 
 _CURES: Mapping[Outcome, str] = {
-    Outcome.NO_TOOL: "install smartctl (on Debian and Ubuntu: apt install smartmontools)",
+    Outcome.NO_TOOL: "install smartctl (on Debian and Ubuntu: apt install smartmontools), or name it in the "
+    "settings under [smart] command",
     Outcome.REFUSED: "watch as root, as the service does",
     Outcome.TIMED_OUT: "copy off what matters from this drive first, then check its cable; it is asked again",
     Outcome.ABSENT: "see whether it is plugged in",
@@ -48,7 +49,11 @@ def checks(
     told = tuple(troubles)
     asked = tuple(passes)
     # A missing tool is one trouble of the machine, not one of each drive.
-    drives = tuple(_drive(name, one) for name, one in asked if not (told and one.outcome is Outcome.NO_TOOL))
+    drives = tuple(
+        _drive(name, one)
+        for name, one in asked
+        if not (one.outcome is Outcome.NO_TOOL and one.explanation in told)
+    )
     found = [
         Check(name="drives", lacking=False, text=f"{len(asked)} found.")
         if asked

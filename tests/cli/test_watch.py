@@ -1,3 +1,4 @@
+import shutil
 import signal
 import sqlite3
 import stat
@@ -6,6 +7,7 @@ import time
 
 import pytest
 
+from diskwatch.analyser import UNREAD_LIMIT
 from diskwatch.cli.watch import Voice
 from diskwatch.history.lock import watcher
 from diskwatch.records import DriveRound, KnownDrive
@@ -131,6 +133,25 @@ def test_a_missing_tool_is_one_line_in_the_day_book_and_the_kernels_drives_are_s
     ready = run("preflight", "--state", tmp_path / "state", "--settings", settings)
     assert ready.code == 4
     assert ready.out.count("install smartctl") == 1
+
+
+@pytest.mark.parametrize("stranger", ["true", "cat"])
+def test_a_command_that_is_no_smartctl_is_said_and_moves_no_call(tmp_path, stranger):
+    once(tmp_path, [GOOD])
+    before = drives(tmp_path)
+    settings = settings_for(shutil.which(stranger), tmp_path)
+    for _ in range(UNREAD_LIMIT):
+        ended = run("watch", "--once", "--state", tmp_path / "state", "--settings", settings)
+        assert ended.code in {0, 3}  # 3 on a machine that shows no drive at all
+        assert ended.err.count("does not answer as smartctl does") == 1
+    after = drives(tmp_path)
+    assert {name: one["call"] for name, one in after.items()} == {
+        name: one["call"] for name, one in before.items()
+    }
+    assert after["/dev/inv1"]["last_pass"] == before["/dev/inv1"]["last_pass"]
+    ready = run("preflight", "--json", "--state", tmp_path / "state", "--settings", settings)
+    assert ready.code == 4
+    assert [one["name"] for one in ready.json["checks"] if "does not answer" in one["text"]] == ["drives"]
 
 
 def test_an_old_tool_that_knows_no_json_is_read_by_its_text(tmp_path):

@@ -266,7 +266,7 @@ def test_words_of_a_drive_are_made_harmless_and_cut():
     [
         (Answer(ending=Ending.MISSING), "no-tool", "install"),
         (Answer(ending=Ending.NOT_EXECUTABLE, trouble="Permission denied"), "no-tool", "Permission denied"),
-        (Answer(ending=Ending.NOT_STARTED, trouble="Cannot allocate memory"), "garbled", "memory"),
+        (Answer(ending=Ending.NOT_STARTED, trouble="Cannot allocate memory"), "no-tool", "memory"),
         (Answer(ending=Ending.TIMED_OUT), "timed-out", "no answer in 60 s"),
         (Answer(ending=Ending.HELD), "timed-out", "stuck in the kernel"),
         (Answer(ending=Ending.STOPPED), "timed-out", "ended"),

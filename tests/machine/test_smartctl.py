@@ -18,6 +18,7 @@ NOW = 1_800_000_000
 HDD = FIXTURES / "invented_hdd_failing" / "all.txt"
 NVME_JSON = FIXTURES / "invented_nvme_json" / "document.json"
 USAGE = "\nUse smartctl -h to get a usage summary\n\n"
+HEAD = "smartctl 7.3 2022-02-28 r5338 [x86_64-linux-invented] (local build)\n\n"
 
 
 class Told(Door):
@@ -31,7 +32,7 @@ class Told(Door):
 
     def run(self, argv: Any, *, timeout: float, owner: str = "") -> Answer:
         assert 0 < timeout <= 60
-        assert owner.startswith("/dev/") or "--scan" in argv
+        assert owner.startswith("/dev/") or argv[1:] in (["--scan"], ["--version"])
         self.asked.append(list(argv))
         self.owners.add(owner)
         answer = self.answers.pop(0) if len(self.answers) > 1 else self.answers[0]
@@ -225,7 +226,7 @@ def test_all_questions_to_one_drive_have_one_owner_whatever_their_type():
 
 
 def test_a_complaint_that_never_ends_is_asked_three_times_and_teaches_nothing():
-    tool, door = smartctl(said(f"=======> UNRECOGNIZED OPTION: all\n{USAGE}", 1))
+    tool, door = smartctl(said(f"{HEAD}=======> UNRECOGNIZED OPTION: all\n{USAGE}", 1))
     assert tool.ask(asked()).outcome is Outcome.GARBLED
     assert len(door.asked) == 3
     tool.ask(asked())
@@ -234,7 +235,7 @@ def test_a_complaint_that_never_ends_is_asked_three_times_and_teaches_nothing():
 
 def test_a_type_that_is_not_known_is_no_reason_to_ask_for_less():
     tool, door = smartctl(
-        said("/dev/sdx: Unknown device type 'sntnew'\n=======> VALID ARGUMENTS ARE: ata\n", 1)
+        said(f"{HEAD}/dev/sdx: Unknown device type 'sntnew'\n=======> VALID ARGUMENTS ARE: ata\n", 1)
     )
     found = tool.ask(asked(type_="sntnew"))
     assert (len(door.asked), found.outcome) == (1, Outcome.GARBLED)
@@ -372,6 +373,54 @@ def test_after_stop_nothing_is_run(tmp_path: Path):
     tool.stop()
     assert tool.ask(asked()).outcome is Outcome.TIMED_OUT
     assert not trace.exists()
+
+
+PAGE = "echo '<html><body>502 Bad Gateway</body></html>'"
+
+
+@pytest.mark.parametrize(
+    "body",
+    ["exit 0", 'exec cat "$@"', PAGE, "exit 3", "echo sudo: a password is required >&2; exit 1"],
+)
+def test_a_command_that_is_no_smartctl_is_told_as_such_and_no_drive_is_blamed(tmp_path: Path, body: str):
+    command = script(tmp_path, body)
+    tool = Smartctl(command, 30, lambda: NOW)
+    found = [tool.ask(asked(usb=usb)) for usb in (False, True)]
+    assert {one.outcome for one in found} == {Outcome.NO_TOOL}
+    told = f"{command} does not answer as smartctl does, so no drive can be read: see whether [smart] command "
+    assert all((one.explanation or "").startswith(told) for one in found)
+    assert tool.scan().trouble == found[0].explanation
+
+
+@pytest.mark.parametrize("body", ["exec yes", "kill -9 $$"])
+def test_what_is_no_smartctl_and_writes_without_end_or_dies_blames_no_drive(tmp_path: Path, body: str):
+    tool = Smartctl(script(tmp_path, body), 30, lambda: NOW, door=Door(limit=10_000))
+    assert tool.ask(asked()).outcome is Outcome.NO_TOOL
+
+
+@pytest.mark.parametrize("proof", ["scan", "answer"])
+def test_noise_is_the_drives_own_where_the_command_showed_before_that_it_is_smartctl(proof: str):
+    tool, door = smartctl(said("/dev/sda -d sat # /dev/sda, ATA device\n"), said("\x00\xffnoise", 0))
+    if proof == "answer":
+        door.answers[0] = said(HDD.read_bytes())
+        tool.ask(asked())
+    else:
+        tool.scan()
+    assert tool.ask(asked()).outcome is Outcome.GARBLED
+    assert tool.scan().trouble is None
+
+
+def test_a_command_that_lists_no_drive_is_asked_once_whether_it_is_smartctl():
+    tool, door = smartctl(said(""), said(HEAD), said(""))
+    assert [tool.scan().trouble for _ in range(2)] == [None, None]
+    assert [argv[1:] for argv in door.asked] == [["--scan"], ["--version"], ["--scan"]]
+
+
+def test_a_command_that_turns_out_to_be_smartctl_after_all_is_no_trouble_any_more():
+    tool, _ = smartctl(said("", 0), said("", 0), said(HDD.read_bytes()), said(""))
+    assert "does not answer as smartctl does" in (tool.scan().trouble or "")
+    assert tool.ask(asked()).outcome is Outcome.READ
+    assert tool.scan().trouble is None
 
 
 def test_a_missing_command_is_no_tool(tmp_path: Path):

@@ -28,10 +28,14 @@ def test_sleep_and_a_virtual_disk_are_nothing_to_cure():
 
 
 def test_a_missing_tool_is_told_once_and_not_for_each_drive():
-    found = lacking(
-        missed(NOON, Outcome.NO_TOOL), missed(NOON, Outcome.NO_TOOL), troubles=("smartctl was not found",)
-    )
-    assert found == [("drives", False)]
+    one = missed(NOON, Outcome.NO_TOOL)
+    assert one.explanation is not None
+    assert lacking(one, one, troubles=(one.explanation,)) == [("drives", False)]
+
+
+def test_what_is_wrong_with_the_tool_is_told_of_a_drive_where_the_listing_did_not_meet_it():
+    found = lacking(missed(NOON, Outcome.NO_TOOL), troubles=("drives may be missing",))
+    assert found == [("drives", False), ("/dev/sda", True)]
 
 
 def test_a_history_that_cannot_be_written_and_a_machine_without_drives_are_lacking():
