@@ -21,6 +21,7 @@ def bays_answer(bays: Bays) -> dict[str, object]:
         "watched": bays.watcher is not None,
         "trouble": list(bays.trouble),
         "drives": [drive_answer(line) for line in bays.drives],
+        "departed": [drive_answer(line) for line in bays.departed],
     }
 
 
@@ -35,6 +36,10 @@ def drive_answer(line: DriveLine) -> dict[str, object]:
         "device": line.place.device,
         "bay": line.place.bay,
         "label": line.label,
+        "asset": line.owner.asset,
+        "warranty_until": line.owner.warranty_until,
+        "backed_up": line.owner.backed_up,
+        "replaced_by": line.owner.replaced_by,
         "kind": drive.kind.value,
         "capacity_bytes": drive.capacity_bytes,
         "rotation_rpm": drive.rotation_rpm,

@@ -7,6 +7,7 @@ import textwrap
 
 from diskwatch.cli.answers import bays_answer
 from diskwatch.cli.common import now, print_json, settings, state_folder
+from diskwatch.cli.said import said
 from diskwatch.errors import NothingToWorkOn
 from diskwatch.history.reader import Past
 from diskwatch.records import Bays, CallWord, DriveLine
@@ -64,7 +65,16 @@ def listed(bays: Bays, width: int) -> str:
     for line in bays.drives:
         lines.append("")
         lines += _band(line, bays.at, width)
+    for line in bays.departed:
+        lines.append("")
+        lines += _departed(line, width)
     return "\n".join(lines) + "\n"
+
+
+def _departed(line: DriveLine, width: int) -> list[str]:
+    serial = f", serial {line.drive.identity.serial}" if line.drive.identity.serial else ""
+    told = f"{'gone':<7} {line.name}{serial}: {line.owner.replaced_by} took its place, by your word."
+    return textwrap.wrap(plain(told), max(20, width), subsequent_indent=" " * 8)
 
 
 def _band(line: DriveLine, at: int, width: int) -> list[str]:
@@ -81,6 +91,8 @@ def _band(line: DriveLine, at: int, width: int) -> list[str]:
         # An explanation is a whole sentence already.
         how = "read." if last.explanation is None else f"{last.outcome.value}: {last.explanation}"
         told.append(f"Last pass {ago} ago: {how}")
+    if (words := said(line, at)) is not None:
+        told.append(words)
     body = textwrap.wrap(plain(" ".join(told)), max(20, width - 8), break_long_words=True)
     first, *rest = textwrap.wrap(plain(head), max(20, width), subsequent_indent=" " * 8) or [word]
     return [first, *rest, *(" " * 8 + part for part in body)]

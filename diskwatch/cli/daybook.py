@@ -31,7 +31,7 @@ def run(args: argparse.Namespace) -> int:
     with Past.open(state_folder(args)) as past:
         drive = None if args.drive is None else past.find(args.drive).number
         entries = past.day_book(since, drive, None, None)
-        lines = {line.number: line for line in past.bays(now()).drives}
+        lines = {line.number: line for line in past.bays(now()).every}
     if args.json:
         print_json(daybook_answer(entries, {number: _name(line) for number, line in lines.items()}))
     else:

@@ -30,7 +30,7 @@ def run(args: argparse.Namespace) -> int:
         settings(args)
     at = now()
     with Past.open(state_folder(args)) as past:
-        drives = past.bays(at).drives if args.drive is None else (past.find(args.drive),)
+        drives = past.bays(at).every if args.drive is None else (past.find(args.drive),)
         if not drives:
             raise NothingToWorkOn("no drive has been read yet", hint="see 'diskwatch preflight'")
         numbers = sorted(drive.number for drive in drives)

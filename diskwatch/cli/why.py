@@ -9,6 +9,7 @@ from datetime import datetime
 from diskwatch import analyser
 from diskwatch.cli.answers import why_answer
 from diskwatch.cli.common import now, print_json, settings, state_folder
+from diskwatch.cli.said import said
 from diskwatch.history.reader import Past
 from diskwatch.judge import sentences
 from diskwatch.records import DriveLine
@@ -31,7 +32,7 @@ def run(args: argparse.Namespace) -> int:
         settings(args)
     with Past.open(state_folder(args)) as past:
         number = past.find(args.drive).number
-        line = next(one for one in past.bays(now()).drives if one.number == number)
+        line = next(one for one in past.bays(now()).every if one.number == number)
         kept = past.state(number)
     state = analyser.start() if kept is None else analyser.load(kept)
     why = analyser.explain(state)
@@ -44,6 +45,8 @@ def run(args: argparse.Namespace) -> int:
 
 def _told(line: DriveLine, why: analyser.Explanation) -> Iterator[str]:
     yield f"{line.name}, serial {line.drive.identity.serial or 'not known'}, {line.place.device}"
+    if (words := said(line, now())) is not None:
+        yield words
     if line.call is None:
         yield "Call: none yet."
     else:

@@ -5,6 +5,7 @@ from collections import defaultdict
 
 from diskwatch.history import rows
 from diskwatch.records import Call, CallWord, DriveLine, Finding, SignalNow
+from diskwatch.records.owner import LABEL, owner_facts
 
 
 def drive_lines(connection: sqlite3.Connection) -> tuple[DriveLine, ...]:
@@ -14,7 +15,7 @@ def drive_lines(connection: sqlite3.Connection) -> tuple[DriveLine, ...]:
         sqlite3.Error: the history cannot be read.
         ValueError: it holds what cannot be right.
     """
-    labels = dict(connection.execute("SELECT drive, value FROM owner_fact WHERE fact = 'label'"))
+    said = _said(connection)
     calls = standing_calls(connection)
     findings = _findings(connection)
     signals = _signals(connection)
@@ -31,12 +32,13 @@ def drive_lines(connection: sqlite3.Connection) -> tuple[DriveLine, ...]:
                 number=known.number,
                 drive=known.drive,
                 place=known.place,
-                label=labels.get(known.number),
+                label=said[known.number].get(LABEL, ("", 0))[0] or None,
                 first_seen=known.first_seen,
                 last_pass=rows.last_pass(row[13:]),
                 call=calls.get(known.number),
                 findings=tuple(sorted(findings[known.number], key=_leading)),
                 signals=tuple(signals[known.number]),
+                owner=owner_facts(said[known.number]),
             )
         )
     return tuple(sorted(lines, key=_worst))
@@ -49,6 +51,14 @@ def standing_calls(connection: sqlite3.Connection) -> dict[int, Call]:
         " FROM call WHERE number IN (SELECT max(number) FROM call GROUP BY drive)"
     ).fetchall()
     return {row[0]: rows.call(row[1:]) for row in found}
+
+
+def _said(connection: sqlite3.Connection) -> defaultdict[int, dict[str, tuple[str, int]]]:
+    """What the owner said of each drive, with the time of saying, by the fact's name."""
+    found: defaultdict[int, dict[str, tuple[str, int]]] = defaultdict(dict)
+    for drive, fact, value, at in connection.execute("SELECT drive, fact, value, at FROM owner_fact"):
+        found[drive][fact] = (value, at)
+    return found
 
 
 def _findings(connection: sqlite3.Connection) -> defaultdict[int, list[Finding]]:

@@ -24,7 +24,7 @@ def choose(text: str, lines: Sequence[DriveLine]) -> DriveLine:
     wanted = text.strip().casefold()
     if not wanted:
         raise DriveUnknown("no drive is named", hint=_choice(lines))
-    names = {line.number: _names(line, lines) for line in lines}
+    names = {line.number: names_of(line, lines) for line in lines}
     whole = [line for line in lines if wanted in names[line.number]]
     fitting = whole or [line for line in lines if any(wanted in name for name in names[line.number])]
     if len(fitting) == 1:
@@ -35,7 +35,8 @@ def choose(text: str, lines: Sequence[DriveLine]) -> DriveLine:
     raise DriveUnknown(f"{shown} could be more than one drive", hint=_choice(fitting))
 
 
-def _names(line: DriveLine, lines: Iterable[DriveLine]) -> frozenset[str]:
+def names_of(line: DriveLine, lines: Iterable[DriveLine]) -> frozenset[str]:
+    """Every whole name that means a drive among all drives, case folded."""
     who = line.drive.identity
     names = [who.serial, who.wwn, line.label]
     if all(other is line or _last_seen(other) < _last_seen(line) for other in _sharing(line, lines)):

@@ -81,6 +81,8 @@ class Past:
     def bays(self, now: int) -> Bays:
         """All drives as last known, worst call first, with their traffic where somebody measures it now.
 
+        Those whose place another drive has taken stand apart.
+
         Args:
             now: UTC seconds since 1970.
         """
@@ -89,11 +91,13 @@ class Past:
         # What a watch that has ended left behind is nobody's present.
         live = Live() if who is None else read_live(self._folder, now)
         spans = {span.drive: span for span in live.spans}
+        shown = [replace(line, traffic=spans.get(line.number)) for line in lines]
         return Bays(
             at=now,
             watcher=who,
-            drives=tuple(replace(line, traffic=spans.get(line.number)) for line in lines),
+            drives=tuple(line for line in shown if not line.departed),
             trouble=live.troubles,
+            departed=tuple(line for line in shown if line.departed),
         )
 
     def find(self, text: str) -> DriveLine:

@@ -141,6 +141,25 @@ class History:
         with self._writing() as connection:
             write_entries(connection, entries)
 
+    def tell(self, drive: int, facts: Mapping[str, str], at: int, *entries: Entry) -> None:
+        """Keep what the owner says of a drive, with its lines in the day book, all of it or nothing.
+
+        Args:
+            drive: the drive's number.
+            facts: values by name, see `diskwatch.records.owner`; an empty one takes the fact back.
+            at: when it was said, UTC seconds since 1970.
+            entries: for the day book.
+
+        Raises:
+            HistoryError: it could not be stored, or there is no such drive; nothing of it was.
+        """
+        with self._writing() as connection:
+            connection.executemany(
+                "INSERT OR REPLACE INTO owner_fact (drive, fact, value, at) VALUES (?, ?, ?, ?)",
+                [(drive, name, value, at) for name, value in facts.items()],
+            )
+            write_entries(connection, entries)
+
     def add_traffic(self, spans: Sequence[IoSpan]) -> None:
         """Add spans of traffic to the minutes and the five minutes that they lie in."""
         with self._writing() as connection:
@@ -178,18 +197,21 @@ class History:
         with self._writing() as connection:
             return thin(connection, now)
 
-    def arrive(self, parts: Sequence[Part], judge: Judge) -> tuple[Arrived, ...]:
+    def arrive(self, parts: Sequence[Part], judge: Judge, *entries: Entry) -> tuple[Arrived, ...]:
         """Take in pasts from elsewhere, all of them or none.
 
         Args:
             parts: one a drive.
             judge: says what is thought of a drive now that its past is another; None leaves all as it was.
+            entries: for the day book.
 
         Raises:
             HistoryError: it could not be stored; nothing of it was.
         """
         with self._writing() as connection:
-            return tuple(arrive(connection, part, judge) for part in parts)
+            arrived = tuple(arrive(connection, part, judge) for part in parts)
+            write_entries(connection, entries)
+            return arrived
 
     def checked_at(self) -> int | None:
         """When the file was last looked through for damage, UTC seconds since 1970; None for never."""

@@ -1,10 +1,11 @@
 """What a screen or a list shows of all drives at one moment."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from diskwatch.records.drive import Drive, Place
 from diskwatch.records.io import IoSpan
 from diskwatch.records.judgement import Call, Finding
+from diskwatch.records.owner import OwnerFacts
 from diskwatch.records.reading import Outcome
 
 
@@ -57,6 +58,7 @@ class DriveLine:
         findings: what stands now, leading one first.
         signals: its signals as last read, by name.
         traffic: its traffic over the last span, or None where nobody measures it now.
+        owner: what the owner has said of it besides.
     """
 
     number: int
@@ -69,6 +71,13 @@ class DriveLine:
     findings: tuple[Finding, ...] = ()
     signals: tuple[SignalNow, ...] = ()
     traffic: IoSpan | None = None
+    owner: OwnerFacts = field(default_factory=OwnerFacts)
+
+    @property
+    def departed(self) -> bool:
+        """Whether another drive has taken its place and it was not met since; met again it is back at once."""
+        said, last = self.owner.replaced_at, self.last_pass
+        return said is not None and (last is None or last.outcome is Outcome.ABSENT or last.at <= said)
 
     @property
     def name(self) -> str:
@@ -85,9 +94,16 @@ class Bays:
         watcher: process number of whoever watches now; None where nobody does.
         drives: worst call first.
         trouble: what keeps the watch from doing its work, one sentence each.
+        departed: drives whose place another one has taken (`DriveLine.departed`): they ask for nothing more.
     """
 
     at: int
     watcher: int | None
     drives: tuple[DriveLine, ...]
     trouble: tuple[str, ...] = ()
+    departed: tuple[DriveLine, ...] = ()
+
+    @property
+    def every(self) -> tuple[DriveLine, ...]:
+        """All drives that the history knows, those that departed last."""
+        return (*self.drives, *self.departed)

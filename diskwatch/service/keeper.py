@@ -83,7 +83,7 @@ class Keeper:
         """A history that cannot be written may still be read: its past is what a judgement rests on."""
         try:
             with Past.open(self._folder) as past:
-                self._known = {line.number: _known(line) for line in past.bays(0).drives}
+                self._known = {line.number: _known(line) for line in past.bays(0).every}
                 self._states = {number: text for number in self._known if (text := past.state(number))}
         except (NothingToWorkOn, HistoryError):
             self._blind = True

@@ -4,17 +4,20 @@ import signal
 import threading
 import time
 from collections.abc import Callable, Mapping
+from functools import partial
 from pathlib import Path
 from typing import Any
 
 from diskwatch.history.exchange import read
 from diskwatch.history.live import LiveWriter
+from diskwatch.history.writer import History
 from diskwatch.machine import choice
 from diskwatch.machine.protocol import Machine
 from diskwatch.records import DriveRound, Entry, IoSpan
 from diskwatch.service import requests
 from diskwatch.service.arrival import take_in
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.owner import DEEDS
 from diskwatch.service.requests import Answer
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.schedule import Schedule
@@ -157,7 +160,10 @@ class Watch:
             self._asked.start()
 
     def _take_up(self) -> None:
-        requests.take_up(self._folder, {"import-history": self._import})
+        deeds = {"import-history": self._import}
+        requests.take_up(
+            self._folder, deeds | {name: partial(self._owner, deed) for name, deed in DEEDS.items()}
+        )
 
     def _import(self, words: Mapping[str, Any]) -> Answer:
         lines, _ = read(words["text"])
@@ -165,6 +171,13 @@ class Watch:
         with self._rounding, self._lock:
             told = self._keeper.change(lambda history: take_in(history, lines, now()))
         return Answer(done=told.done, wrong=told.wrong)
+
+    def _owner(
+        self, deed: Callable[[History, Mapping[str, Any], int], Answer], words: Mapping[str, Any]
+    ) -> Answer:
+        # Between two rounds, for the same reason.
+        with self._rounding, self._lock:
+            return self._keeper.change(lambda history: deed(history, words, now()))
 
     def _troubles(self) -> tuple[str, ...]:
         kept = self._keeper.trouble

@@ -3,6 +3,7 @@ import pytest
 from diskwatch.history.bays import drive_lines
 from diskwatch.history.writer import History
 from diskwatch.records import CallWord, FindingKind, KnownDrive, LastPass, Outcome, SignalNow
+from diskwatch.records.owner import OwnerFacts
 from tests.history.examples import (
     DAY,
     NOON,
@@ -99,3 +100,14 @@ def test_what_has_ended_does_not_stand(history, lines):
     history.record(a_round(a_part(known, findings=(a_finding("old"),))))
     history.record(a_round(a_part(known, findings=(a_finding("new"),)), at=NOON + 1))
     assert [one.name for one in lines()[0].findings] == ["new"]
+
+
+def test_what_the_owner_said_stands_beside_a_drive_and_what_was_taken_back_does_not(history, lines):
+    _admit(history, "INV-1", "/dev/sda")
+    _admit(history, "INV-2", "/dev/sdb")
+    history.tell(1, {"label": "left", "asset": "A-17", "replaced-by": "INV-2"}, NOON)
+    history.tell(1, {"label": ""}, NOON + DAY)
+    told = {line.number: line for line in lines()}
+    assert told[1].label is None
+    assert told[1].owner == OwnerFacts(asset="A-17", replaced_by="INV-2", replaced_at=NOON)
+    assert told[2].owner == OwnerFacts()

@@ -340,3 +340,14 @@ def test_threads_take_turns_and_none_undoes_anothers_work(folder):
         assert troubles == []
         found = history._db.execute("SELECT text, count(*) FROM day_book GROUP BY text").fetchall()
         assert found == [(name, 20) for name in "abc"]
+
+
+def test_what_an_owner_tells_of_a_drive_that_nobody_knows_is_refused_whole(history):
+    history.admit(a_drive("INV-1", "/dev/sda"), a_place("/dev/sda"), NOON)
+    entry = Entry(at=NOON, drive=1, kind="owner", text="Told.")
+    history.tell(1, {"label": "left", "asset": "A"}, NOON, entry)
+    with pytest.raises(HistoryError):
+        history.tell(2, {"label": "right"}, NOON, entry)
+    kept = history._db.conn.execute("SELECT drive, fact, value FROM owner_fact ORDER BY fact").fetchall()
+    assert kept == [(1, "asset", "A"), (1, "label", "left")]
+    assert history._db.conn.execute("SELECT count(*) FROM day_book").fetchone() == (1,)

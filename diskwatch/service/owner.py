@@ -1,0 +1,148 @@
+"""The owner's word about a drive, kept: what is told of it, and what has been seen to.
+
+Each deed takes a history that may be written and the words of a request, which are looked through anew: whoever
+leaves a request may have looked less closely.
+"""
+
+from collections.abc import Callable, Mapping
+from dataclasses import replace
+from typing import Any
+
+from diskwatch import analyser
+from diskwatch.errors import HistoryError, UsageError
+from diskwatch.history.arriving import Described
+from diskwatch.history.moving import Case, Judged, Part
+from diskwatch.history.writer import History
+from diskwatch.judge import sentences
+from diskwatch.records import DriveRound, Entry, KnownDrive, Outcome, Pass, Settled
+from diskwatch.records.owner import LONGEST_REASON, REPLACED_BY, checked_fact, checked_text
+from diskwatch.service.requests import Answer
+
+TELL, SETTLE = "tell", "settle"
+
+
+def tell(history: History, words: Mapping[str, Any], at: int) -> Answer:
+    """Keep facts of a drive.
+
+    Args:
+        history: where.
+        words: ``drive``, its number, and ``facts``, values by name (`diskwatch.records.owner.TOLD`).
+        at: now, UTC seconds since 1970.
+
+    Raises:
+        UsageError: a fact cannot be right.
+        HistoryError: there is no such drive, or it could not be stored.
+    """
+    known = _drive(history, words["drive"])
+    facts = {name: checked_fact(name, str(value), at) for name, value in dict(words["facts"]).items()}
+    said = [_told(name, value) for name, value in facts.items()]
+    entries = [
+        Entry(
+            at=at,
+            drive=known.number,
+            kind="owner",
+            text=text,
+            data={"fact": name, "value": facts[name] or None},
+        )
+        for name, text in zip(facts, said, strict=True)
+    ]
+    history.tell(known.number, facts, at, *entries)
+    return Answer(done=tuple(said))
+
+
+def settle(history: History, words: Mapping[str, Any], at: int) -> Answer:
+    """Keep that something has been seen to; the drive is judged anew from there.
+
+    A drive whose place another one has taken is not judged anew: should it come back, its call stands.
+
+    Args:
+        history: where.
+        words: ``drive``, its number; ``because``, what was done; ``replaced_by``, another's number, or None.
+        at: now, UTC seconds since 1970.
+
+    Raises:
+        UsageError: the words cannot be right.
+        HistoryError: there is no such drive, it was never judged, or it could not be stored.
+    """
+    known = _drive(history, words["drive"])
+    because = checked_text("--because", str(words["because"]), LONGEST_REASON)
+    if not because:
+        raise UsageError("--because holds no words", hint="say what was done: it goes into the day book")
+    if words["replaced_by"] is not None:
+        return _replaced(history, known, _drive(history, words["replaced_by"]), because, at)
+    kept = history.states().get(known.number)
+    if kept is None:
+        raise HistoryError(
+            "the drive has never been judged, so there is nothing to settle", hint="see 'diskwatch bays'"
+        )
+    state = analyser.load(kept)
+    before = state.call
+    step = analyser.settle(state, Settled(at=at, because=because))
+    entries = [replace(entry, drive=known.number) for entry in step.happened]
+    history.arrive((_nothing_new(known),), lambda case: _judged(case, step), *entries)
+    stands = "" if step.call is None or before is None else _stands(before.word, step.call.word)
+    return Answer(done=(*(entry.text for entry in entries[:1]), *((stands,) if stands else ())))
+
+
+DEEDS: Mapping[str, Callable[[History, Mapping[str, Any], int], Answer]] = {TELL: tell, SETTLE: settle}
+"""What an owner may ask for, by the name of the request."""
+
+
+def _drive(history: History, number: object) -> KnownDrive:
+    found = next((one for one in history.known() if one.number == number), None)
+    if found is None:
+        raise HistoryError("the history knows no such drive any more", hint="see 'diskwatch bays'")
+    return found
+
+
+def _told(name: str, value: str) -> str:
+    what = name.replace("-", " ")
+    return f"Told by the owner: {what} {value}." if value else f"Taken back by the owner: {what}."
+
+
+def _replaced(history: History, old: KnownDrive, new: KnownDrive, because: str, at: int) -> Answer:
+    if old.number == new.number:
+        raise UsageError("a drive cannot be replaced by itself", hint="name the new one behind --replaced-by")
+    text = sentences.settled(Settled(at=at, because=because, replaced_by=_name(new)))
+    data = {"because": because, "replaced_by": _name(new)}
+    took = f"It took the place of {_name(old)}, by the owner's word: {because}."
+    history.tell(
+        old.number,
+        {REPLACED_BY: _name(new)},
+        at,
+        Entry(at=at, drive=old.number, kind="settled", text=text, data=data),
+        Entry(
+            at=at, drive=new.number, kind="owner", text=took, data={"because": because, "replaced": _name(old)}
+        ),
+    )
+    gone = "It is left out of the bays from now on; should it be met again, it comes back with the call it had."
+    return Answer(done=(text, gone))
+
+
+def _name(known: KnownDrive) -> str:
+    who = known.drive.identity
+    return who.telling_serial or who.wwn or known.place.device
+
+
+def _nothing_new(known: KnownDrive) -> Part:
+    there = Described(drive=known.drive, place=known.place, first_seen=known.first_seen)
+    return Part(known=known, described=there, lines=())
+
+
+def _judged(case: Case, step: analyser.Step) -> Judged:
+    """The state as settled takes the place of the one at the last pass, also as the dated copy of it."""
+    last = step.state.last_at or 0
+    kept = analyser.dump(step.state)
+    part = DriveRound(
+        known=case.known,
+        pass_=Pass(at=last, outcome=step.state.outcome or Outcome.READ),
+        state=kept,
+        findings=step.findings,
+        evidence=step.evidence,
+        call=step.call,
+    )
+    return Judged(part=part, since=None, copies=((last, kept),))
+
+
+def _stands(before: str, now: str) -> str:
+    return f"Its call was {before} and is now {now}." if before != now else f"Its call stays {now}."
