@@ -7,6 +7,7 @@ or in its line of the docstring.
 from diskwatch.records.bays import Bays, DriveLine, LastPass, SignalNow
 from diskwatch.records.daybook import Entry
 from diskwatch.records.drive import Drive, Identity, Kind, Mount, Place
+from diskwatch.records.event import Event, EventKind
 from diskwatch.records.forecast import Forecast, LimitSource
 from diskwatch.records.io import ClassDay, Direction, IoCounts, IoRollup, IoSpan
 from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingKind
@@ -22,7 +23,7 @@ from diskwatch.records.reading import (
     Value,
 )
 from diskwatch.records.replayed import Drift, ReplayedDrive, ReplaySummary, summed
-from diskwatch.records.round import DriveRound, KnownDrive, Round
+from diskwatch.records.round import DriveRound, KnownDrive, Learnt, Round
 from diskwatch.records.settled import Settled
 
 __all__ = [
@@ -38,6 +39,8 @@ __all__ = [
     "DriveLine",
     "DriveRound",
     "Entry",
+    "Event",
+    "EventKind",
     "Failing",
     "Finding",
     "FindingKind",
@@ -49,6 +52,7 @@ __all__ = [
     "Kind",
     "KnownDrive",
     "LastPass",
+    "Learnt",
     "LimitSource",
     "Mount",
     "Outcome",

@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 from diskwatch.records.daybook import Entry
 from diskwatch.records.drive import Drive, Place
 from diskwatch.records.judgement import Call, Finding
-from diskwatch.records.reading import Pass
+from diskwatch.records.reading import Pass, Value
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -27,6 +27,19 @@ class KnownDrive:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Learnt:
+    """What a drive's latency was learnt from; it is large and moves once a day.
+
+    Attributes:
+        through: the last UTC day number whose traffic is in it.
+        state: as text, see `diskwatch.trends.latency`.
+    """
+
+    through: int
+    state: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class DriveRound:
     """One drive's part of a round.
 
@@ -37,6 +50,8 @@ class DriveRound:
         findings: everything that stands now; what stood before and is not here has ended.
         evidence: M in days a signal, for signals that a ledger follows.
         call: the call that stands now; None until the drive has been read.
+        measured: signals that are measured from the drive's traffic, beside those that it tells of itself.
+        learnt: what its latency was learnt from; None where no day of traffic was taken in.
     """
 
     known: KnownDrive
@@ -45,6 +60,8 @@ class DriveRound:
     findings: tuple[Finding, ...] = ()
     evidence: Mapping[str, float] = field(default_factory=dict)
     call: Call | None = None
+    measured: tuple[Value, ...] = ()
+    learnt: Learnt | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
