@@ -19,8 +19,12 @@ class Clock:
         return self._now
 
     def steady(self) -> float:
-        """Seconds for which the machine has been on; stands still while it is off, as a steady clock does."""
+        """Seconds since the machine last started, as its steady clock has it."""
         return float(self._awake)
+
+    def boot(self) -> None:
+        """The machine starts: its steady clock begins anew."""
+        self._awake = 0
 
     def days(self) -> float:
         """Days since the beginning."""

@@ -3,14 +3,14 @@
 from typing import Any
 
 from diskwatch.records import SelfTest
-from diskwatch.rehearsal.told import Row, Told
+from diskwatch.rehearsal.told import Logged, Row, Told
 
 OUI = 0xFFFFF0
 """In the place of a maker's number in world-wide names; nobody's, as in the recorded twins of the tests."""
 
 
 def document(told: Told) -> dict[str, Any]:
-    """The document; keys as smartctl 7.3 writes them."""
+    """The document; keys as smartctl 7.3 writes them, those of the NVMe error log as 7.4 does (from memory)."""
     common: dict[str, Any] = {
         "model_name": told.model,
         "serial_number": told.serial,
@@ -68,14 +68,25 @@ def _nvme(told: Told) -> dict[str, Any]:
         "nvme_namespaces": [{"id": 1, "eui64": {"oui": OUI, "ext_id": told.number}}],
         "nvme_composite_temperature_threshold": {"warning": told.limit, "critical": told.limit + 6},
         "nvme_smart_health_information_log": dict(told.log),
-        **({} if told.log["num_err_log_entries"] else {"nvme_error_information_log": {"size": 64, "read": 16}}),
+        "nvme_error_information_log": {
+            "size": 64,
+            "read": 16,
+            **({"table": [_error(one) for one in told.errors]} if told.errors else {}),
+        },
         "nvme_self_test_log": {"table": [_nvme_test(test) for test in told.tests]},
     }
 
 
+def _error(one: Logged) -> dict[str, Any]:
+    status = {"value": one.status, "status_code_type": one.status >> 8 & 0x7, "status_code": one.status & 0xFF}
+    row: dict[str, Any] = {"error_count": one.count, "status_field": status}
+    return row if one.lba is None else row | {"lba": {"value": one.lba}}
+
+
 def _nvme_test(test: SelfTest) -> dict[str, Any]:
-    return {
+    row: dict[str, Any] = {
         "self_test_code": {"string": test.name},
         "self_test_result": {"string": test.result},
         "power_on_hours": test.hours,
     }
+    return row if test.lba is None else row | {"lba": test.lba}

@@ -14,8 +14,11 @@ from diskwatch.rehearsal.scenario import DriveSpec
 from diskwatch.rehearsal.told import Told
 from diskwatch.rehearsal.workload import Work, Workload, limited
 
-_TESTS_KEPT = 21
-"""Entries of an ATA drive's self-test log."""
+PAST_REQUEST = 65_536
+"""Bytes a request that a drive moved before the scenario began."""
+
+_TESTS_KEPT = {False: 21, True: 20}
+"""Entries of the self-test log: of an ATA drive, and of one that speaks NVMe."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -60,8 +63,8 @@ class InventedDrive(ABC):
         self.warmth = self.new_warmth()
         self.tests: tuple[SelfTest, ...] = ()
         self.drive_read, self.drive_written = spec.read_bytes, spec.written_bytes
-        self.read_commands = spec.read_bytes // 65_536
-        self.write_commands = spec.written_bytes // 65_536
+        self.read_commands = spec.read_bytes // PAST_REQUEST
+        self.write_commands = spec.written_bytes // PAST_REQUEST
         self.appearances = 1
         self._fresh = True
         self._totals = [0, 0, 0, 0]
@@ -111,7 +114,7 @@ class InventedDrive(ABC):
         return self._times[2]
 
     def appear(self) -> None:
-        """Power up or plug in: the kernel begins its totals anew."""
+        """The kernel finds it, after a start of its own or of the machine, and begins its totals anew."""
         self.appearances += 1
         self._totals = [0, 0, 0, 0]
         self._times = [0.0, 0.0, 0.0]
@@ -123,9 +126,11 @@ class InventedDrive(ABC):
         self.appear()
 
     def lose_power(self, times: int) -> None:
-        """Power goes away without notice and comes back."""
+        """Power goes away without notice and comes back: the drive starts, and the kernel finds it anew."""
         self.unsafe += times
         self.cycles += times
+        self.asleep, self._fresh = False, True
+        self.appear()
 
     def live(self, span: Span, work: Work) -> None:
         """Let a span pass, switched on, and do its work."""
@@ -160,17 +165,18 @@ class InventedDrive(ABC):
     def test(self, *, extended: bool) -> None:
         """Run its own test, as its owner asked."""
         found = self.first_bad() if extended else None
-        result = "Completed without error" if found is None else "Completed: read failure"
+        nvme, name = self.kind is Kind.NVME, "Extended" if extended else "Short"
+        failed = "Completed: failed segments" if nvme else "Completed: read failure"
         entry = SelfTest(
-            name="Extended offline" if extended else "Short offline",
-            result=result,
+            name=name if nvme else f"{name} offline",
+            result="Completed without error" if found is None else failed,
             extended=extended,
             passed=found is None,
             unreadable=found is not None,
-            hours=self.hours & 0xFFFF,  # the log's field has 16 bits
+            hours=self.hours if nvme else self.hours & 0xFFFF,  # ATA's field has 16 bits
             lba=found,
         )
-        self.tests = (entry, *self.tests)[:_TESTS_KEPT]
+        self.tests = (entry, *self.tests)[: _TESTS_KEPT[nvme]]
 
     @abstractmethod
     def new_warmth(self) -> Warmth:

@@ -27,7 +27,7 @@ def _happen(event: object, machine: "InventedMachine") -> None:
 def _(event: told.Scratch, machine: "InventedMachine") -> None:
     drive = machine.drives[event.drive]
     if isinstance(drive, Disk):  # a scenario that says otherwise was refused when it was read
-        drive.surface.scratch(event.units, event.growth)
+        drive.surface.scratch(drive.rng, event.units, event.growth, event.place)
 
 
 @_happen.register(told.HeadWeakens)

@@ -5,11 +5,14 @@ that over the turns that the maker rates. Latencies, rates and the odds of a blo
 practice, no source.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from random import Random
 
-from diskwatch.rehearsal.chance import poisson
+from diskwatch.rehearsal.chance import poisson, share_of
 from diskwatch.rehearsal.rotating import Mix, Service
+
+_PAGE = 16_384
+"""Bytes that are lost together: a page of flash."""
 
 THROTTLED = 3.0
 """How many times as long requests take while the drive slows itself down to cool."""
@@ -59,6 +62,7 @@ class Cells:
         cached: bytes in the cache that are still to be moved.
         bad_blocks: blocks replaced from the reserve.
         media_errors: times that data could not be recovered.
+        lost: first logical blocks of what could not be recovered and was not written anew since.
         losses: blocks that go bad by themselves a year (a fault), beside those that wear takes.
     """
 
@@ -66,6 +70,7 @@ class Cells:
     cached: float = 0.0
     bad_blocks: int = 0
     media_errors: int = 0
+    lost: list[int] = field(default_factory=list)
     losses: float = 0.0
 
     def write(self, chips: Chips, amount: float, seconds: float) -> float:
@@ -88,8 +93,13 @@ class Cells:
         lost = poisson(rng, worn + self.losses * days / 365.25)
         before = self.bad_blocks
         self.bad_blocks = min(chips.spare_blocks, before + lost)
+        # What is written anew lies elsewhere from then on.
+        for _ in range(share_of(rng, len(self.lost), min(1.0, amount / chips.capacity))):
+            self.lost.pop(rng.randrange(len(self.lost)))
         # What a dying block held is nearly always moved in time.
-        self.media_errors += poisson(rng, 0.01 * (self.bad_blocks - before))
+        for _ in range(poisson(rng, 0.01 * (self.bad_blocks - before))):
+            self.media_errors += 1
+            self.lost.append(int(rng.random() * chips.capacity) // _PAGE * (_PAGE // 512))
 
     def spare_percent(self, chips: Chips) -> int:
         """Share of the reserve that is left, in whole percent."""

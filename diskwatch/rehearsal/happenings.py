@@ -29,6 +29,7 @@ class Scratch(_Event, frozen=True, kw_only=True, tag="scratch"):
     drive: str
     units: Annotated[int, msgspec.Meta(gt=0)]
     growth: NotNegative = 0.0
+    place: Annotated[float, msgspec.Meta(ge=0, le=1)] | None = None
 
 
 class HeadWeakens(_Event, frozen=True, kw_only=True, tag="head-weakens"):

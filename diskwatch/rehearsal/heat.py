@@ -5,7 +5,7 @@ constant.
 """
 
 from dataclasses import dataclass
-from math import cos, exp, pi
+from math import cos, exp, log, pi
 
 from diskwatch.units import DAY
 
@@ -62,12 +62,18 @@ class Warmth:
         idle: degrees above the room at rest, with the fan as built.
         load: degrees more at full load.
         constant: seconds in which two thirds of a change are through.
+        before: what it was at the beginning of the last span.
+        level: where it was heading over that span.
+        seconds: how long that span was.
     """
 
     celsius: float
     idle: float
     load: float
     constant: float = 1_800.0
+    before: float = 0.0
+    level: float = 0.0
+    seconds: float = 0.0
 
     def live(self, room: float, *, seconds: float, used: float, draught: float) -> None:
         """Let time pass.
@@ -78,9 +84,26 @@ class Warmth:
             used: share of the time in which the drive was busy.
             draught: what the fan moves, 1 as built; half the air doubles the drive's rise above it.
         """
-        level = room + (self.idle + self.load * used) / max(0.05, draught)
-        self.celsius = level + (self.celsius - level) * exp(-seconds / self.constant)
+        self._towards(room + (self.idle + self.load * used) / max(0.05, draught), seconds)
 
     def rest(self, room: float, *, seconds: float) -> None:
         """Cool down, switched off."""
-        self.celsius = room + (self.celsius - room) * exp(-seconds / self.constant)
+        self._towards(room, seconds)
+
+    def _towards(self, level: float, seconds: float) -> None:
+        self.before, self.level, self.seconds = self.celsius, level, seconds
+        self.celsius = level + (self.celsius - level) * exp(-seconds / self.constant)
+
+    def above(self, limit: float) -> float:
+        """For how many seconds of the last span it was at or above a limit; exact, since it warms in one curve.
+
+        Args:
+            limit: °C.
+        """
+        begins, ends = self.before >= limit, self.celsius >= limit
+        if begins is ends:
+            return self.seconds if begins else 0.0
+        if self.level == limit:  # reached at the very end, as far as a float can tell
+            return 0.0
+        crossed = self.constant * log((self.before - self.level) / (limit - self.level))
+        return min(self.seconds, crossed if begins else self.seconds - crossed)

@@ -41,7 +41,7 @@ class InventedMachine:
         self.room = Room(celsius=room.celsius, season=room.season, daily=room.daily, spells=[])
         self.draught = 1.0
         self.busy_until, self.busy_factor = 0.0, 1.0
-        strips = {"wall", *(bay.strip for bay in scenario.bay)}
+        strips = {"wall", scenario.strip, *(bay.strip for bay in scenario.bay)}
         self.strips = {name: Strip(name=name) for name in sorted(strips)}
         self._mains = stream(seed, "mains")
         self.bays = {bay.name: Bay(name=bay.name, strip=bay.strip) for bay in scenario.bay}
@@ -68,22 +68,41 @@ class InventedMachine:
         seconds = self.scenario.step_minutes * 60
         away = any(one.day <= self.clock.days() < one.day + one.days for one in self.scenario.holiday)
         on = is_on(self.scenario.habit, self.clock.now(), away=away)
+        starts = on and not self.on
+        if starts:
+            self._boot()
         self.clock.forward(seconds, on=on)
         self._happen(self.clock.days())
         span = Span(
             at=self.clock.now(), seconds=seconds, air=self.room.at(self.clock.now()), draught=self.draught
         )
-        if on and not self.on:
-            self.boots += 1
-            for drive in self.drives.values():
-                if drive.reachable:
-                    drive.power_up()
+        if starts:
+            for drive in self._there():
+                drive.power_up()
         self.on = on
         if on:
             self._use(span, away=away)
         else:
             for drive in self.drives.values():
                 drive.warmth.rest(span.air, seconds=seconds)
+
+    def _boot(self) -> None:
+        self.boots += 1
+        self.clock.boot()
+
+    def _there(self) -> list[InventedDrive]:
+        return [drive for drive in self.drives.values() if drive.reachable]
+
+    def _lose_power(self, losses: Mapping[str, int]) -> None:
+        """Drives on a strip lose power together; where the machine itself does, all of it starts anew."""
+        whole = losses[self.scenario.strip] > 0
+        if whole:
+            self._boot()
+        for drive in self._there():
+            if lost := losses[drive.bay.strip]:
+                drive.lose_power(lost)
+            elif whole:
+                drive.appear()
 
     def _happen(self, days: float) -> None:
         while self._waiting and self._waiting[0].day <= days:
@@ -108,13 +127,9 @@ class InventedMachine:
         drive.power_up()
 
     def _use(self, span: Span, *, away: bool) -> None:
-        losses = {name: strip.losses(self._mains, span.days) for name, strip in self.strips.items()}
+        self._lose_power({name: strip.losses(self._mains, span.days) for name, strip in self.strips.items()})
         begins = (span.at - self.scenario.backup_hour * 3_600) % DAY < span.seconds
-        for drive in self.drives.values():
-            if not drive.reachable:
-                continue
-            if lost := losses[drive.bay.strip]:
-                drive.lose_power(lost)
+        for drive in self._there():
             spec = drive.spec
             if begins and spec.backup != "none":
                 saturday = span.at // DAY % 7 == _SATURDAY
@@ -127,7 +142,7 @@ class InventedMachine:
 
     def survey(self) -> Survey:
         """List the drives that are there."""
-        return Survey(found=tuple(self._found(drive) for drive in self.drives.values() if drive.reachable))
+        return Survey(found=tuple(self._found(drive) for drive in self._there()))
 
     def _found(self, drive: InventedDrive) -> Found:
         spec = drive.spec
@@ -170,8 +185,7 @@ class InventedMachine:
         """Traffic totals by kernel name."""
         return {
             _block(drive.spec): Counted(counts=drive.counts, instance=self._instance(drive))
-            for drive in self.drives.values()
-            if drive.reachable
+            for drive in self._there()
         }
 
     def stop(self) -> None:

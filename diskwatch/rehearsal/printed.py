@@ -1,10 +1,10 @@
 """An invented drive's answer as the plain text that smartctl 7.3 prints: rehearses the reader of text."""
 
 from diskwatch.rehearsal.document import OUI
-from diskwatch.rehearsal.told import Row, Told
+from diskwatch.rehearsal.told import Logged, Row, Told
 
 _HEAD = "smartctl 7.3 2022-02-28 r5338 [x86_64-linux-invented] (local build)"
-_ERROR_LOG = "NVMe Log 0x01, 16 of 64 entries"
+_ERRORS = "Error Information (NVMe Log 0x01, 16 of 64 entries)"
 _FAILING = {"now": "FAILING_NOW", "past": "In_the_past", "": "-"}
 
 
@@ -120,8 +120,36 @@ def _nvme_state(told: Told) -> tuple[str, ...]:
         f"Warning  Comp. Temperature Time:    {log['warning_temp_time']}",
         f"Critical Comp. Temperature Time:    {log['critical_comp_time']}",
         "",
-        # The entries themselves are not modelled: a drive that counts any shows no such log.
-        *(() if log["num_err_log_entries"] else (f"Error Information ({_ERROR_LOG})", "No Errors Logged", "")),
+        _ERRORS,
+        *(_nvme_errors(told.errors) if told.errors else ("No Errors Logged",)),
+        "",
+        "Self-test Log (NVMe Log 0x06)",
+        "Self-test status: No self-test in progress",
+        *(_nvme_tests(told) if told.tests else ("No Self-tests Logged",)),
+        "",
+    )
+
+
+def _nvme_errors(errors: tuple[Logged, ...]) -> tuple[str, ...]:
+    # The status field is printed with its phase tag, bit 0.
+    return (
+        "Num   ErrCount  SQId   CmdId  Status  PELoc          LBA  NSID    VS",
+        *(
+            f"{place:3} {one.count:10} {0 if one.lba is None else 1:5}  0x0014  0x{one.status << 1:04x}  0x028"
+            f" {'-' if one.lba is None else one.lba:>12}     1     -"
+            for place, one in enumerate(errors)
+        ),
+    )
+
+
+def _nvme_tests(told: Told) -> tuple[str, ...]:
+    return (
+        "Num  Test_Description  Status                       Power_on_Hours  Failing_LBA  NSID Seg SCT Code",
+        *(
+            f"{place:2}   {test.name:<16}  {test.result:<27} {test.hours or 0:>15}"
+            + (f"{'-':>13}     -   -   -    -" if test.lba is None else f"{test.lba:>13}     1   2   2 0x81")
+            for place, test in enumerate(told.tests)
+        ),
     )
 
 

@@ -15,8 +15,8 @@ _MEAN_ROOT = 8 / 15
 
 _VARIANCE_ROOT = 1 / 3 - _MEAN_ROOT**2
 
-_MEAN_TURNS, _SQUARE_TURNS = 2.0, 6.0
-"""Mean and mean square of the turns that a retried read costs, each further one as likely as not."""
+_AGAIN = 0.5
+"""Chance that one more turn is not enough, on a sound head (practice)."""
 
 _CACHE_MS = 0.15
 _CACHE_BYTES_A_MS = 500_000.0
@@ -32,7 +32,8 @@ class Mix:
         cached: share that the drive's own memory answers.
         stroke: share of the surface that they are spread over.
         place: where on the surface, 0 the outer edge (first block) to 1 the inner one.
-        retried: share of reads from the medium that need further turns.
+        retried: share of requests to the medium that need further turns.
+        again: chance that each further turn is not enough either, below 1.
     """
 
     size: int
@@ -41,6 +42,12 @@ class Mix:
     stroke: float
     place: float = 0.3
     retried: float = 0.0
+    again: float = _AGAIN
+
+    @property
+    def reach(self) -> tuple[float, float]:
+        """The part of the surface that the requests fall on: begin and end as shares of it."""
+        return max(0.0, self.place - self.stroke / 2), min(1.0, self.place + self.stroke / 2)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -59,6 +66,11 @@ class Service:
     def spread(self) -> float:
         """Squared coefficient of variation: 0 where all take the same time, 1 for the exponential law."""
         return self.variance / self.mean_ms**2 if self.mean_ms > 0 else 0.0
+
+    @property
+    def square_ms(self) -> float:
+        """Mean of the squared time, squared milliseconds."""
+        return self.variance + self.mean_ms**2
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -113,10 +125,15 @@ class Platters:
         """Wait for the sector to come round."""
         return rng.random() * self.turn_ms
 
-    def retry_ms(self, rng: Random) -> float:
-        """What a retried read costs: whole turns, at least one."""
+    def retry_ms(self, rng: Random, again: float = _AGAIN) -> float:
+        """What a retried read costs: whole turns, at least one.
+
+        Args:
+            rng: chance.
+            again: chance that each turn is not enough.
+        """
         turns = 1
-        while rng.random() < 0.5:
+        while rng.random() < again:
             turns += 1
         return turns * self.turn_ms
 
@@ -128,15 +145,17 @@ class Platters:
         if rng.random() >= mix.sequential:
             time += self.seek_ms(mix.stroke * abs(rng.random() - rng.random())) + self.wait_ms(rng)
         if rng.random() < mix.retried:
-            time += self.retry_ms(rng)
+            time += self.retry_ms(rng, mix.again)
         return time
 
     def service(self, mix: Mix) -> Service:
         """Mean and variance of `request_ms`, in closed form."""
         turn, travel = self.turn_ms, (self.full_ms - self.track_ms) * sqrt(mix.stroke)
         flat = self.overhead_ms + mix.size / self.rate(mix.place) * 1000
-        again = mix.retried * _MEAN_TURNS * turn
-        again_variance = mix.retried * _SQUARE_TURNS * turn**2 - again**2
+        # Turns until one is enough follow the geometric law: mean 1/q, mean square (2 - q)/q^2, q their chance.
+        enough = 1 - mix.again
+        again = mix.retried / enough * turn
+        again_variance = mix.retried * (1 + mix.again) / enough**2 * turn**2 - again**2
         moved = self.track_ms + travel * _MEAN_ROOT + turn / 2
         moved_variance = travel**2 * _VARIANCE_ROOT + turn**2 / 12
         medium = 1 - mix.cached

@@ -156,6 +156,7 @@ class Scenario(Table, frozen=True, kw_only=True):
         step_minutes: span of time that is lived through at once.
         every_hours: time between two rounds of readings.
         backup_hour: hour of the day at which backups begin; whole ones on Saturdays.
+        strip: the power strip that feeds the machine itself: where that fails, all of it starts anew.
         room: where it stands.
         bay: its bays; one that a drive names and that is not here is a plain one.
         holiday: when nobody is there.
@@ -173,6 +174,7 @@ class Scenario(Table, frozen=True, kw_only=True):
     step_minutes: Annotated[int, msgspec.Meta(ge=1, le=360)] = 60
     every_hours: Annotated[int, msgspec.Meta(ge=1, le=24)] = 6
     backup_hour: Annotated[int, msgspec.Meta(ge=0, le=23)] = 13
+    strip: Text = "wall"
     room: RoomSpec = RoomSpec()
     bay: tuple[BaySpec, ...] = ()
     holiday: tuple[Holiday, ...] = ()

@@ -1,14 +1,17 @@
 """An invented solid-state drive, behind ATA or NVMe."""
 
+from collections.abc import Sequence
+
 from diskwatch.records import Kind
 from diskwatch.rehearsal import flash, queue
-from diskwatch.rehearsal.drive import InventedDrive, Span
+from diskwatch.rehearsal.drive import PAST_REQUEST, InventedDrive, Span
 from diskwatch.rehearsal.flash import Cells, Chips
 from diskwatch.rehearsal.heat import Warmth
 from diskwatch.rehearsal.link import Bay
 from diskwatch.rehearsal.queue import Served
+from diskwatch.rehearsal.rotating import Mix
 from diskwatch.rehearsal.scenario import DriveSpec
-from diskwatch.rehearsal.told import Row, Told
+from diskwatch.rehearsal.told import Logged, Row, Told
 from diskwatch.rehearsal.workload import Work, Workload
 
 DATA_UNIT = 512_000
@@ -19,6 +22,12 @@ _THRESHOLD = 10
 
 _SPARE_WARNS = 1
 _HEAT_WARNS = 2
+
+_CRITICAL = 6
+"""Degrees above the limit for a warning at which the drive calls its temperature critical (practice)."""
+
+_ERRORS_KEPT = 16
+"""Entries of the error log that a reader asks for."""
 
 
 class Solid(InventedDrive):
@@ -39,9 +48,36 @@ class Solid(InventedDrive):
         )
         self.cells = Cells(written=float(spec.written_bytes), bad_blocks=spec.bad_blocks)
         self.throttled = False
-        self.hot_minutes = 0.0
-        self.life_busy_ms = 0.0
+        self.hot_minutes = self.critical_minutes = 0.0
+        self.errors = tuple(Logged(count=start) for start in range(spec.cycles, 0, -1)[:_ERRORS_KEPT])
         super().__init__(spec, number, seed, bay, workload)
+        # What it moved before cost time too, as much as a request of its mean size takes.
+        past = Mix(size=PAST_REQUEST, sequential=0.0, cached=0.0, stroke=1.0)
+        self.life_busy_ms = (
+            self.read_commands * flash.reads(self.chips, past, throttled=False).mean_ms
+            + self.write_commands * flash.writes(self.chips, past, cliff=0.0, throttled=False).mean_ms
+        )
+
+    @property
+    def logged(self) -> int:
+        """Errors in its life; it counts a command that it refuses at every start too, as most do (practice)."""
+        return self.cycles + self.cells.media_errors
+
+    def power_up(self) -> None:
+        """A start, at which it is asked for something that it does not know."""
+        super().power_up()
+        self._enter((None,))
+
+    def lose_power(self, times: int) -> None:
+        """As many starts as power came back."""
+        super().lose_power(times)
+        self._enter((None,) * times)
+
+    def _enter(self, errors: Sequence[int | None]) -> None:
+        """Enter what was just counted, oldest first: blocks that could not be read, or None for a refusal."""
+        newest = enumerate(reversed(errors[-_ERRORS_KEPT:]))
+        told = (Logged(count=self.logged - place, lba=lba) for place, lba in newest)
+        self.errors = (*told, *self.errors)[:_ERRORS_KEPT]
 
     def new_warmth(self) -> Warmth:
         """A card warms within minutes, and much under load."""
@@ -51,35 +87,35 @@ class Solid(InventedDrive):
 
     def can_do(self, span: Span, work: Work) -> float:
         """Reads and writes one after the other; a drive that does several at once is not modelled."""
-        mean = max(
-            flash.reads(self.chips, work.mix, throttled=self.throttled).mean_ms,
-            flash.writes(self.chips, work.mix, cliff=1.0, throttled=self.throttled).mean_ms,
-        )
-        return queue.FULL * span.seconds * 1000 / ((work.reads + work.writes) * mean)
+        reading = flash.reads(self.chips, work.reading, throttled=self.throttled).mean_ms
+        writing = flash.writes(self.chips, work.writing, cliff=1.0, throttled=self.throttled).mean_ms
+        return queue.FULL * span.seconds * 1000 / (work.reads * reading + work.writes * writing)
 
     def serve(self, span: Span, work: Work) -> tuple[Served, Served]:
-        """Reads at one speed, writes at two."""
+        """Reads at one speed, writes at two; each waits for all."""
         cliff = self.cells.write(self.chips, work.write_bytes, span.seconds)
-        milliseconds = span.seconds * 1000.0
-        reading = flash.reads(self.chips, work.mix, throttled=self.throttled)
-        writing = flash.writes(self.chips, work.mix, cliff=cliff, throttled=self.throttled)
-        done = (
-            queue.together(self.rng, work.reads, milliseconds, reading, direct=work.direct),
-            queue.together(self.rng, work.writes, milliseconds, writing, direct=work.direct),
+        costs = (
+            (work.reads, flash.reads(self.chips, work.reading, throttled=self.throttled)),
+            (work.writes, flash.writes(self.chips, work.writing, cliff=cliff, throttled=self.throttled)),
         )
-        self.life_busy_ms += done[0].busy_ms + done[1].busy_ms
-        return done
+        reading, writing = queue.together(self.rng, span.seconds * 1000.0, costs, direct=work.direct)
+        self.life_busy_ms += reading.busy_ms + writing.busy_ms
+        return reading, writing
 
     def age(self, span: Span, work: Work) -> None:
-        """Wear, heat."""
+        """Wear, data that is lost, heat."""
+        errors = self.cells.media_errors
         self.cells.age(self.rng, self.chips, work.write_bytes, span.days)
-        hot = self.warmth.celsius >= self.limit
+        if (more := self.cells.media_errors - errors) > 0:
+            self._enter(self.cells.lost[-more:])
         self.throttled = self.warmth.celsius >= self.limit - 2
-        self.hot_minutes += span.seconds / 60 if hot else 0.0
+        critical = self.warmth.above(self.limit + _CRITICAL)
+        self.critical_minutes += critical / 60
+        self.hot_minutes += (self.warmth.above(self.limit) - critical) / 60
 
     def first_bad(self) -> int | None:
-        """Its test reads through correction; nothing is modelled that it could not."""
-        return None
+        """The first block of what it lost; all else its test reads through correction."""
+        return min(self.cells.lost, default=None)
 
     def told(self) -> Told:
         """The health log, or an attribute table."""
@@ -100,6 +136,7 @@ class Solid(InventedDrive):
             passed=not low,
             rows=() if self.kind is Kind.NVME else self._rows(spare, celsius),
             log=self._log(spare, celsius) if self.kind is Kind.NVME else {},
+            errors=self.errors if self.kind is Kind.NVME else (),
             tests=self.tests,
         )
 
@@ -120,9 +157,9 @@ class Solid(InventedDrive):
             "power_on_hours": self.hours,
             "unsafe_shutdowns": self.unsafe,
             "media_errors": self.cells.media_errors,
-            "num_err_log_entries": self.cells.media_errors,
+            "num_err_log_entries": self.logged,
             "warning_temp_time": int(self.hot_minutes),
-            "critical_comp_time": 0,
+            "critical_comp_time": int(self.critical_minutes),
         }
 
     def _rows(self, spare: int, celsius: int) -> tuple[Row, ...]:

@@ -37,6 +37,27 @@ class Row:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Logged:
+    """An entry of the NVMe error information log.
+
+    Attributes:
+        count: which error of the drive's life it was.
+        lba: first block that could not be read; None where a command was refused, as at every start.
+    """
+
+    count: int
+    lba: int | None = None
+
+    @property
+    def status(self) -> int:
+        """The status field without its phase tag: unrecovered read error (2h, 81h) or invalid field (0h, 02h).
+
+        More such entries follow where bit 13 is set (NVM Express Base Specification, status field).
+        """
+        return 0x2002 if self.lba is None else 0x2281
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Told:
     """All that a drive states in one answer.
 
@@ -54,6 +75,7 @@ class Told:
         passed: its own verdict.
         rows: attribute table; empty for NVMe.
         log: fields of the NVMe health log by smartctl's key; empty for ATA.
+        errors: entries that the NVMe error log still keeps, newest first.
         tests: self-tests, newest first.
     """
 
@@ -70,6 +92,7 @@ class Told:
     passed: bool
     rows: tuple[Row, ...] = ()
     log: Mapping[str, int]
+    errors: tuple[Logged, ...] = ()
     tests: tuple[SelfTest, ...] = ()
 
     @property

@@ -22,7 +22,10 @@ BLOCK = 512
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Activity:
-    size: int
+    """Sizes are KiB a read and a write, reads the share of them among requests, pace requests a second."""
+
+    read: float
+    write: float
     sequential: float
     cached: float
     stroke: float
@@ -31,13 +34,12 @@ class _Activity:
 
 
 _ACTIVITIES = (
-    _Activity(size=16_384, sequential=0.25, cached=0.45, stroke=0.25, reads=0.65, pace=6.0),  # documents, mail
-    _Activity(size=8_192, sequential=0.10, cached=0.30, stroke=0.15, reads=0.55, pace=12.0),  # small records
-    _Activity(size=131_072, sequential=0.85, cached=0.20, stroke=0.05, reads=0.85, pace=10.0),  # pictures, film
-    _Activity(
-        size=32_768, sequential=0.50, cached=0.35, stroke=0.40, reads=0.80, pace=8.0
-    ),  # starting programs
-    _Activity(size=65_536, sequential=0.60, cached=0.10, stroke=0.60, reads=0.40, pace=5.0),  # moving files
+    # documents and mail; small records; pictures and film; starting programs; moving files
+    _Activity(read=16, write=8, sequential=0.25, cached=0.45, stroke=0.25, reads=0.65, pace=6.0),
+    _Activity(read=8, write=4, sequential=0.10, cached=0.30, stroke=0.15, reads=0.55, pace=12.0),
+    _Activity(read=128, write=256, sequential=0.85, cached=0.20, stroke=0.05, reads=0.85, pace=10.0),
+    _Activity(read=32, write=8, sequential=0.50, cached=0.35, stroke=0.40, reads=0.80, pace=8.0),
+    _Activity(read=64, write=64, sequential=0.60, cached=0.10, stroke=0.60, reads=0.40, pace=5.0),
 )
 
 
@@ -80,31 +82,30 @@ class Work:
     Attributes:
         reads: read requests.
         writes: write requests.
-        read_size: bytes of each read.
-        write_size: bytes of each write.
-        mix: what they were like.
+        reading: what the reads were like.
+        writing: what the writes were like.
         direct: whether each waited for the one before, as in a copy.
     """
 
     reads: int = 0
     writes: int = 0
-    read_size: int = 0
-    write_size: int = 0
-    mix: Mix
+    reading: Mix
+    writing: Mix
     direct: bool = False
 
     @property
     def read_bytes(self) -> int:
         """Bytes read."""
-        return self.reads * self.read_size
+        return self.reads * self.reading.size
 
     @property
     def write_bytes(self) -> int:
         """Bytes written."""
-        return self.writes * self.write_size
+        return self.writes * self.writing.size
 
 
-NOTHING = Work(mix=Mix(size=BLOCK, sequential=0, cached=0, stroke=0))
+_NONE = Mix(size=BLOCK, sequential=0, cached=0, stroke=0)
+NOTHING = Work(reading=_NONE, writing=_NONE)
 
 
 def is_on(habit: Habit, at: int, *, away: bool) -> bool:
@@ -148,7 +149,7 @@ class Workload:
         self._wander = 0.0
         self._habit_load = 1.0
         self._weights = self._new_weights()
-        self._to_copy, self._copy_to = 0, False
+        self._to_copy, self._copied_so_far, self._copy_to = 0, 0, False
         self.factor = 1.0
         """What a busy month multiplies the load by."""
 
@@ -173,15 +174,19 @@ class Workload:
         pace = what.pace * curve * self._load * self._habit_load * self.factor * exp(self._wander)
         count = int(pace * seconds * (0.9 + 0.2 * rng.random()))
         reads = int(count * min(1.0, what.reads * (0.9 + 0.2 * rng.random())))
-        size = max(BLOCK, int(what.size * exp(rng.gauss(0.0, 0.2))) // BLOCK * BLOCK)
         mix = Mix(
-            size=size,
+            size=self._size(what.read),
             sequential=what.sequential,
             cached=what.cached,
             stroke=what.stroke,
             place=0.2 + 0.3 * rng.random(),
         )
-        return Work(reads=reads, writes=count - reads, read_size=size, write_size=size, mix=mix)
+        writing = replace(mix, size=self._size(what.write))
+        return Work(reads=reads, writes=count - reads, reading=mix, writing=writing)
+
+    def _size(self, kibibytes: float) -> int:
+        """Bytes a request over a span, near what is usual for an activity."""
+        return max(BLOCK, int(kibibytes * 1024 * exp(self._rng.gauss(0.0, 0.2))) // BLOCK * BLOCK)
 
     def _drift(self, seconds: int) -> None:
         rng = self._rng
@@ -202,15 +207,18 @@ class Workload:
         """
         share = (0.3 if whole else 0.01) * (0.8 + 0.4 * self._rng.random())
         self._to_copy = int(share * min(self._surface, _MOST_COPIED) / _COPY_SIZE)
-        self._copy_to = target
+        self._copied_so_far, self._copy_to = 0, target
 
     def _copied(self, seconds: int) -> Work:
+        """The next piece of a backup: it goes over the drive from its beginning, each place once."""
         count = min(self._to_copy, max(1, int(_COPY_PACE * seconds / _COPY_SIZE)))
+        begin, share = self._copied_so_far * _COPY_SIZE / self._surface, count * _COPY_SIZE / self._surface
         self._to_copy -= count
-        mix = Mix(size=_COPY_SIZE, sequential=0.95, cached=0.02, stroke=0.3, place=self._rng.random() * 0.6)
+        self._copied_so_far += count
+        mix = Mix(size=_COPY_SIZE, sequential=0.95, cached=0.02, stroke=share, place=begin + share / 2)
         if self._copy_to:
-            return Work(writes=count, write_size=_COPY_SIZE, mix=mix, direct=True)
-        return Work(reads=count, read_size=_COPY_SIZE, mix=mix, direct=True)
+            return Work(writes=count, reading=_NONE, writing=mix, direct=True)
+        return Work(reads=count, reading=mix, writing=_NONE, direct=True)
 
 
 def limited(work: Work, share: float) -> Work:

@@ -8,7 +8,7 @@ from tests.rehearsal.examples import alone, hdd, hour, nvme, ssd
 
 def work(reads=1_000, writes=500, size=16_384):
     mix = Mix(size=size, sequential=0.3, cached=0.3, stroke=0.3)
-    return Work(reads=reads, writes=writes, read_size=size, write_size=size, mix=mix)
+    return Work(reads=reads, writes=writes, reading=mix, writing=mix)
 
 
 def test_an_hour_counts_as_one_and_its_work_reaches_the_kernels_counters():
@@ -31,6 +31,16 @@ def test_the_kernel_begins_its_totals_anew_at_a_start_and_the_drive_does_not():
     )
     assert one.drive_written == 500 * 16_384
     assert one.appearances == 2
+
+
+def test_power_that_goes_away_starts_the_drive_and_the_kernels_totals_anew():
+    for spec in (hdd(unsafe=3, cycles=9), ssd(unsafe=3, cycles=9), nvme(unsafe=3, cycles=9)):
+        one = alone(spec)
+        one.live(hour(), work())
+        one.lose_power(2)
+        assert (one.unsafe, one.cycles, one.appearances) == (5, 11, 2)
+        assert (one.counts.reads, one.counts.busy_ms) == (0, 0)
+        assert one.read_commands == 1_000
 
 
 def test_a_drive_that_sleeps_does_so_when_nobody_wants_it_and_wakes_for_work():

@@ -14,7 +14,7 @@ def test_each_event_changes_what_it_is_about_and_nothing_else():
     events.apply(one, told.Scratch(day=0, drive=HDD, units=5))
     assert disk.surface.latent == 5
     events.apply(one, told.HeadWeakens(day=0, drive=HDD, growth=0.1))
-    assert disk.head_growth == 0.1
+    assert (disk.head.growth, disk.head.weakness) == (0.1, 0.05)
     events.apply(one, told.BlocksFail(day=0, drive=NVME, a_year=100))
     assert card.cells.losses == 100
     events.apply(one, told.Fan(day=0, draught=0.4))

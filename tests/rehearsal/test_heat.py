@@ -36,6 +36,17 @@ def test_load_warms_and_half_the_air_doubles_the_rise():
     assert warmed(draught=0.5) == pytest.approx(40, abs=0.1)
 
 
+def test_time_above_a_limit_is_what_short_steps_of_the_same_curve_come_to():
+    for start, air in ((20.0, 70.0), (75.0, 15.0), (20.0, 15.0), (80.0, 75.0)):
+        whole, steps = (Warmth(celsius=start, idle=0.0, load=0.0) for _ in range(2))
+        whole.rest(air, seconds=3_600)
+        above = 0
+        for _ in range(3_600):
+            steps.rest(air, seconds=1)
+            above += steps.celsius >= 45.0
+        assert whole.above(45.0) == pytest.approx(above, abs=2)
+
+
 @given(st.floats(0, 80), st.floats(10, 45), st.floats(1, 1e6))
 def test_a_drive_at_rest_comes_nearer_to_the_room_and_never_beyond(start, air, seconds):
     warmth = Warmth(celsius=start, idle=10.0, load=8.0)

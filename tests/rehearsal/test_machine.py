@@ -1,3 +1,4 @@
+import pytest
 from hypothesis import given, settings, strategies as st
 
 from diskwatch.records import Outcome, SignalKind
@@ -60,6 +61,46 @@ def test_a_strip_that_fails_hits_all_of_its_drives_at_once_and_no_other():
     lost = [drive.unsafe for drive in one.drives.values()]
     assert lost[0] == lost[1] > 5
     assert lost[2] == 0
+
+
+def until_power_fails(one):
+    """Live until a power loss has hit the first drive; the instances of all before it."""
+    first = next(iter(one.drives.values()))
+    before, unsafe = {}, first.unsafe
+    while first.unsafe == unsafe:
+        before = {name: each.instance for name, each in one.counts().items()}
+        one.live()
+    return before
+
+
+def test_where_the_machine_itself_loses_power_all_of_it_starts_anew():
+    bays = (BaySpec(name="one", strip="desk"), BaySpec(name="two", strip="desk"))
+    fails = StripFails(day=0.5, strip="desk", losses_a_year=100)
+    one = machine(hdd(), nvme(), ssd(), bay=bays, strip="desk", event=(fails,))
+    one.strips["wall"].losses_a_year = 0.0
+    live(one, 0.4)
+    assert one.clock.steady() == pytest.approx(0.4 * 86_400, abs=3_600)
+    before = until_power_fails(one)
+    assert one.boots == 2
+    assert one.clock.steady() == 0.0
+    after = one.counts()
+    assert not [name for name in before if after[name].instance == before[name]]
+    # What the kernel counted since is the work of one hour at most, whatever stood there before.
+    assert all(each.counts.busy_ms <= 3_600_000 for each in after.values())
+    cycles = [drive.cycles for drive in one.drives.values()]
+    assert cycles[0] == cycles[1] > cycles[2], "the third drive hangs on the wall and kept its power"
+
+
+def test_drives_on_a_strip_of_their_own_come_back_anew_while_the_machine_runs_on():
+    fails = StripFails(day=0, strip="desk", losses_a_year=100)
+    one = machine(hdd(), nvme(), bay=(BaySpec(name="one", strip="desk"),), event=(fails,))
+    one.strips["wall"].losses_a_year = 0.0
+    live(one, 0.1)
+    before = until_power_fails(one)
+    assert one.boots == 1
+    assert one.clock.steady() > 0
+    after = one.counts()
+    assert [name for name in before if after[name].instance != before[name]] == ["sda"]
 
 
 def test_an_office_machine_counts_starts_and_no_hours_at_night():

@@ -3,7 +3,8 @@ import pytest
 from diskwatch.machine.reading import understood
 from diskwatch.rehearsal.document import document
 from diskwatch.rehearsal.printed import lines
-from tests.rehearsal.examples import alone, disk, hdd, hour, nvme, ssd
+from diskwatch.rehearsal.workload import NOTHING
+from tests.rehearsal.examples import alone, disk, hdd, hour, nvme, solid, ssd
 
 
 def lived(spec):
@@ -38,6 +39,22 @@ def test_failing_attributes_and_failed_tests_are_printed_as_such():
     assert by_text.self_tests == by_document.self_tests
     assert by_text.attributes == by_document.attributes
     assert by_text.get("self-assessment") == "failed"
+
+
+def test_an_nvme_drives_errors_and_self_tests_come_through_both_ways():
+    one = solid(nvme(cycles=5))
+    one.cells.losses = 20_000.0
+    for step in range(24 * 8):
+        one.live(hour(1_735_693_200 + step * 3600), NOTHING)
+    one.test(extended=True)
+    one.test(extended=False)
+    by_text = understood(lines(one.told()), None, type_=None, path="/dev/nvme0").reading
+    by_document = understood((), document(one.told()), type_=None, path="/dev/nvme0").reading
+    assert by_text.self_tests == by_document.self_tests == one.tests
+    assert by_text.self_tests[1].unreadable
+    entries = [reading.get("media-error-entries") for reading in (by_text, by_document)]
+    assert entries == [min(16, one.cells.media_errors)] * 2
+    assert by_text.get("error-log-entries") == 5 + one.cells.media_errors
 
 
 def test_every_answer_says_that_it_is_invented():

@@ -59,6 +59,7 @@ def test_a_retry_costs_whole_turns_and_at_least_one():
     [
         RANDOM,
         Mix(size=4_096, sequential=0.3, cached=0.4, stroke=0.2, retried=0.02),
+        Mix(size=4_096, sequential=0.3, cached=0.4, stroke=0.2, retried=0.2, again=0.4),
         Mix(size=524_288, sequential=0.95, cached=0.02, stroke=0.3, place=0.8),
     ],
 )

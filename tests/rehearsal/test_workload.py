@@ -56,14 +56,35 @@ def test_a_backup_reads_the_source_writes_the_target_and_comes_to_an_end():
         assert spans[-1] == NOTHING
 
 
+def test_a_backup_goes_over_the_drive_from_its_beginning_and_meets_each_place_once():
+    work = workload(load=0.0)
+    work.plan_backup(whole=True, target=False)
+    reached = 0.0
+    for hour in range(24):
+        one = work.span(MONDAY + hour * 3600, 3600, away=False)
+        if one.reads:
+            begin, end = one.reading.reach
+            assert begin == pytest.approx(reached)
+            assert end - begin == pytest.approx(one.read_bytes / 10**12)
+            reached = end
+    assert 0.2 < reached < 0.4
+
+
+def test_reads_and_writes_have_sizes_of_their_own():
+    work = workload()
+    spans = [work.span(MONDAY + hour * 3600, 3600, away=False) for hour in range(24 * 30)]
+    apart = sum(one.reading.size != one.writing.size for one in spans if one.reads and one.writes)
+    assert apart > 0.9 * len(spans)
+
+
 @given(st.integers(0, 10_000), st.floats(0, 50), st.sampled_from(["office", "home", "studio", "server"]))
 def test_bytes_and_operations_agree(seed, load, habit):
     work = workload(habit, load=load, seed=seed)
     for hour in range(12):
         one = work.span(MONDAY + hour * 3600, 3600, away=False)
         for count, size, amount in (
-            (one.reads, one.read_size, one.read_bytes),
-            (one.writes, one.write_size, one.write_bytes),
+            (one.reads, one.reading.size, one.read_bytes),
+            (one.writes, one.writing.size, one.write_bytes),
         ):
             assert count >= 0
             assert amount == count * size
