@@ -1,7 +1,7 @@
 """This computer, joined from its parts: the kernel's files, its counters, and smartctl."""
 
 import time
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
 
@@ -18,7 +18,7 @@ from diskwatch.machine.stacks import stack_on
 from diskwatch.machine.survey import joined
 from diskwatch.machine.swaps import swap_on
 from diskwatch.machine.zfs import pools
-from diskwatch.records import Drive, Kind, Mount, Outcome, Pass
+from diskwatch.records import Drive, Kind, Mount, Outcome, Pass, Way
 
 
 def _wall_clock() -> int:
@@ -39,6 +39,7 @@ class RealMachine:
         timeout: float = 60.0,
         only: tuple[str, ...] = (),
         ignore: tuple[str, ...] = (),
+        ways: Iterable[Way] = (),
         sys_root: Path = Path("/sys"),
         proc_root: Path = Path("/proc"),
         dev_root: Path = Path("/dev"),
@@ -51,12 +52,13 @@ class RealMachine:
             timeout: seconds that one drive may take to answer.
             only: watch these and no others; a serial, world-wide name or device each; none means all.
             ignore: leave these alone.
+            ways: what earlier passes found out of USB adapters, see `diskwatch.records.Pass.way`.
             sys_root: where sysfs is mounted.
             proc_root: where procfs is mounted.
             dev_root: where device nodes are.
             now: UTC seconds since 1970.
         """
-        self._smartctl = Smartctl(command, timeout, now)
+        self._smartctl = Smartctl(command, timeout, now, kept=ways)
         self._only, self._ignore = only, ignore
         self._sys, self._proc, self._dev = sys_root, proc_root, dev_root
         self._now = now

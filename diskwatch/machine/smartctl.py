@@ -3,35 +3,26 @@
 import logging
 import re
 import time
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass, replace
 
 from diskwatch.machine import outcomes, ways
-from diskwatch.machine.command import Answer, Door, Ending
+from diskwatch.machine.command import Answer, Door
+from diskwatch.machine.dialect import Knows, complaint_of, lesser
 from diskwatch.machine.document import Document, document_of, messages, plain_lines, text_at
-from diskwatch.machine.optional import BACKGROUND, STATISTICS, TEMPERATURE, OptionalLogs
+from diskwatch.machine.optional import OptionalLogs
 from diskwatch.machine.outcomes import ASLEEP_STATUS, Verdict, quoted
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import Understood, understood
 from diskwatch.machine.rest import Completed, Rest
 from diskwatch.machine.text import decoded, lines_of, names_version
 from diskwatch.machine.told import merged
-from diskwatch.machine.ways import Ways
-from diskwatch.records import Outcome, Pass
+from diskwatch.machine.ways import TYPE, Ways
+from diskwatch.records import Outcome, Pass, Way
 
 _log = logging.getLogger(__name__)
 
 _SCANNED = re.compile(r"(?P<node>/[^\s#]+)(?:\s+-d\s+(?P<type>[^\s#]+))?\s*(?:#.*)?")
-_TYPE = re.compile(r"[A-Za-z0-9][A-Za-z0-9,+/_-]{0,60}")
-_USAGE = re.compile(
-    r"(?:unrecogni[sz]ed|unknown|invalid|illegal|bad|unexpected|unsupported)\s+(?:command[- ]line\s+)?"
-    r"(?:option|argument|flag|parameter|switch)"
-    r"|argument required for option|usage:",
-    re.IGNORECASE,
-)
-_NAMES_STANDBY = re.compile(r"(?:to|option:?|argument:?)\s+['\"]?-?-?n(?:ocheck)?\b|standby", re.IGNORECASE)
-_NAMES_LOG = re.compile(r"argument to -l\b", re.IGNORECASE)
-_NAMES_TYPE = re.compile(r"argument to -d\b", re.IGNORECASE)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -45,15 +36,6 @@ class Scan:
 
     entries: tuple[Address, ...]
     trouble: str | None = None
-
-
-@dataclass(frozen=True, slots=True)
-class _Knows:
-    """What a smartctl understands; old ones know less."""
-
-    json: bool = True
-    status: bool = True
-    logs: frozenset[str] = frozenset({STATISTICS, TEMPERATURE, BACKGROUND})
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,7 +62,13 @@ class Smartctl:
     """A smartctl command, asked from any number of threads, one a drive."""
 
     def __init__(
-        self, command: str, timeout: float, now: Callable[[], int], *, door: Door | None = None
+        self,
+        command: str,
+        timeout: float,
+        now: Callable[[], int],
+        *,
+        kept: Iterable[Way] = (),
+        door: Door | None = None,
     ) -> None:
         """Take a command; nothing is run yet.
 
@@ -88,6 +76,7 @@ class Smartctl:
             command: a path, or a name on PATH.
             timeout: seconds that one drive may take to answer.
             now: the clock, UTC seconds since 1970.
+            kept: what earlier passes found out of USB adapters, see `diskwatch.records.Pass.way`.
             door: what runs it; by default a door of its own.
         """
         self._command = command
@@ -96,9 +85,9 @@ class Smartctl:
         self._door = door if door is not None else Door()
         # Both are replaced whole, so that a thread sees either the old or the new; the worst that a race costs
         # is one more process.
-        self._knows = _Knows()
+        self._knows = Knows()
         self._genuine = False
-        self._ways = Ways()
+        self._ways = Ways(kept)
         self._rest = Rest()
         self._optional = OptionalLogs()
 
@@ -120,7 +109,7 @@ class Smartctl:
         found: dict[Address, None] = {}
         for line in decoded(answer.out).splitlines():
             entry = _SCANNED.fullmatch(line.strip())
-            if entry is not None and (entry["type"] is None or _TYPE.fullmatch(entry["type"])):
+            if entry is not None and (entry["type"] is None or TYPE.fullmatch(entry["type"])):
                 found[Address(node=entry["node"], type=entry["type"])] = None
         self._genuine = self._genuine or any(one.type is not None for one in found)
         if not self._genuine and not self._names_itself():
@@ -154,13 +143,18 @@ class Smartctl:
                 explanation="It answered, but the answer could not be taken in: please report this as a fault "
                 f"of diskwatch ({type(error).__name__}).",
             )
-        return replace(answer, at=self._now(), took_ms=int((time.monotonic() - begun) * 1000))
+        took = int((time.monotonic() - begun) * 1000)
+        return replace(answer, at=self._now(), took_ms=took, way=self._ways.news(found))
 
     def _asked(self, found: Found) -> "_Told":
         """Ask with the type that is known, and where that brings nothing with those that may do better."""
         deadline = time.monotonic() + self._timeout
         type_ = self._ways.known(found) or found.address.type
         told = self._told(found, type_, self._timeout, self._optional.wanted(found, self._now()))
+        if self._is_outdated(found, told):
+            self._ways.failed(found)
+            left = deadline - time.monotonic()
+            told = self._told(found, found.address.type, left) if left > 0 else told
         others = self._others(found, told)
         if found.address.type is None and told.what is not None:
             self._remember(found, told)
@@ -180,6 +174,14 @@ class Smartctl:
         if silent and self._ways.closed(found):
             return replace(told, verdict=outcomes.through_no_type(ways.usb_types(found)))
         return told
+
+    def _is_outdated(self, found: Found, told: "_Told") -> bool:
+        """Whether a type that was handed down does not reach the drive that is behind the adapter now."""
+        if told.what is None or not self._ways.handed_down(found):
+            return False
+        # A device that stayed where it was while the watch began anew may be silent for reasons of its own.
+        silent = told.verdict.unproved and self._ways.proved(found)
+        return not silent and ways.unanswered(told.verdict, told.what)
 
     def _others(self, found: Found, told: "_Told") -> tuple[str, ...]:
         if told.what is None or self._ways.tried(found):
@@ -231,15 +233,16 @@ class Smartctl:
             argv = self._argv(found.address.node, type_, logs, knows)
             # By drive, whatever the type: where one question is stuck in the kernel, the next would be as well.
             answer = self._door.run(argv, timeout=timeout, owner=found.place.device)
-            complaint = _complaint(answer)
-            lesser = _lesser(knows, complaint) if complaint is not None else None
+            complaint = complaint_of(answer)
             if complaint is None:
                 self._knows = knows
-            if lesser is None:
                 return answer
-            knows = lesser
+            less = lesser(knows, complaint)
+            if less is None:
+                return answer
+            knows = less
 
-    def _argv(self, node: str, type_: str | None, logs: tuple[str, ...], knows: _Knows) -> list[str]:
+    def _argv(self, node: str, type_: str | None, logs: tuple[str, ...], knows: Knows) -> list[str]:
         return [
             self._command,
             "-n",
@@ -253,31 +256,11 @@ class Smartctl:
 
     def _remember(self, found: Found, told: "_Told") -> None:
         """Keep the type that worked, since finding out may wake a drive; forget one that failed."""
-        worked = text_at(told.document, "device", "type")
-        if told.verdict.outcome is Outcome.READ and worked is not None and _TYPE.fullmatch(worked):
+        worked = told.type or text_at(told.document, "device", "type")
+        if ways.reaches(told.verdict) and worked is not None and TYPE.fullmatch(worked):
             self._ways.found_by_itself(found, worked)
         elif told.verdict.outcome in {Outcome.GARBLED, Outcome.NO_SMART}:
             self._ways.failed(found)
-
-
-def _complaint(answer: Answer) -> str | None:
-    """The line that says which option was not understood; None where the question was."""
-    if answer.ending is not Ending.ENDED or answer.status == 0:
-        return None
-    said = f"{decoded(answer.out)}\n{decoded(answer.err)}"
-    if "=== START OF" in said or _NAMES_TYPE.search(said) is not None:
-        return None
-    return next((line for line in said.splitlines() if _USAGE.search(line) is not None), None)
-
-
-def _lesser(knows: _Knows, complaint: str) -> _Knows | None:
-    """What to try next after a complaint; None where nothing is left."""
-    unknown = {log for log in knows.logs if _NAMES_LOG.search(complaint) and log in complaint}
-    if unknown:
-        return replace(knows, logs=knows.logs - unknown)
-    if knows.status and (_NAMES_STANDBY.search(complaint) is not None or not knows.json):
-        return replace(knows, status=False)
-    return replace(knows, json=False) if knows.json else None
 
 
 def _pass(told: _Told, found: Found) -> Pass:

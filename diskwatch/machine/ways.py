@@ -2,16 +2,19 @@
 
 smartctl finds the type out by itself for most drives, but not behind a USB adapter that its table lacks, and a
 scan that opens nothing calls every disk a SCSI one. Finding out costs several questions, and some types send an
-adapter commands of another maker; so it is done once, and no more while the device stays plugged in.
+adapter commands of another maker; so it is done once, and no more while the device stays plugged in. What holds
+for an adapter outlives the watch: whoever keeps it hands it back at the next start.
 """
 
+import re
+from collections.abc import Iterable
 from dataclasses import dataclass, replace
 
 from diskwatch.machine.held import Family
 from diskwatch.machine.outcomes import Verdict
 from diskwatch.machine.protocol import Found
 from diskwatch.machine.reading import Support, Understood
-from diskwatch.records import Kind, Outcome
+from diskwatch.records import Kind, Outcome, Way
 
 USB_TYPES = ("sat", "scsi", "sntasmedia", "sntjmicron", "sntrealtek")
 """What can be behind a USB adapter, in the order in which it is tried: the types of smartctl 7.3 that are no
@@ -20,6 +23,9 @@ to smartctl's table."""
 
 _OWN = {"174c": "sntasmedia", "152d": "sntjmicron", "0bda": "sntrealtek"}
 """USB vendor ids (memory) of the three makers whose adapters these types speak to."""
+
+TYPE = re.compile(r"[A-Za-z0-9][A-Za-z0-9,+/_-]{0,60}")
+"""What a device type looks like; anything else is none and is never handed to a command."""
 
 _BEHIND_SAT = "probable ata device behind a sat layer"
 _OVER_SAT = ("megaraid,", "sssraid,", "cciss,")
@@ -46,12 +52,17 @@ def others(
         if better is not None:
             return (better,)
     usb = found.drive.kind is Kind.USB or any("unknown usb bridge" in line for line in lower)
-    unanswered = verdict.outcome in {Outcome.GARBLED, Outcome.NO_SMART} or verdict.unproved
-    # Every SCSI device says who it is, an adapter too; one that says it as ATA or NVMe is the drive itself.
-    itself = what.support is Support.OFF or (what.drive is not None and what.family is not Family.SCSI)
-    if usb and unanswered and not itself:
+    if usb and unanswered(verdict, what):
         return tuple(one for one in usb_types(found) if one != type_)
     return ()
+
+
+def unanswered(verdict: Verdict, what: Understood) -> bool:
+    """Whether another type may bring what this one did not."""
+    # Every SCSI device says who it is, an adapter too; one that says it as ATA or NVMe is the drive itself.
+    itself = what.support is Support.OFF or (what.drive is not None and what.family is not Family.SCSI)
+    silent = verdict.outcome in {Outcome.GARBLED, Outcome.NO_SMART} or verdict.unproved
+    return silent and not itself
 
 
 def usb_types(found: Found) -> tuple[str, ...]:
@@ -80,16 +91,27 @@ class _Way:
 class Ways:
     """Remembers types: by instance of the device, and for a device's next coming by its adapter."""
 
-    def __init__(self) -> None:
+    def __init__(self, kept: Iterable[Way] = ()) -> None:
+        """Begin with what an earlier watch found out.
+
+        Args:
+            kept: one an adapter.
+        """
         self._ways: dict[str, _Way] = {}
-        self._adapters: dict[str, str] = {}
+        self._adapters = {one.adapter: one for one in kept if one.type is None or TYPE.fullmatch(one.type)}
+        self._news: dict[str, Way] = {}
 
     def known(self, found: Found) -> str | None:
         """The type that reached this drive before, or one behind the same adapter; None where none is known."""
         way = self._way(found)
-        if way.type is None and not way.tried and found.adapter is not None:
-            return self._adapters.get(found.adapter)
+        if way.type is None and not way.tried:
+            kept = self._kept(found)
+            return kept.type if kept is not None else None
         return way.type
+
+    def handed_down(self, found: Found) -> bool:
+        """Whether the type that is known is only that of an earlier coming, or of an earlier watch."""
+        return self._own(found) is None and self.known(found) is not None
 
     def tried(self, found: Found) -> bool:
         """Whether the types were tried out on this instance already."""
@@ -106,24 +128,48 @@ class Ways:
 
     def found_by_itself(self, found: Found, type_: str) -> None:
         """Keep the type that smartctl found, since finding out again may wake the drive."""
-        self._ways[_key(found)] = replace(self._way(found), type=type_)
+        self._keep(found, replace(self._way(found), type=type_))
 
     def settled(self, found: Found, type_: str | None) -> None:
         """Keep what trying out came to; None where no type reaches the drive."""
-        self._ways[_key(found)] = _Way(_instance(found), type_, tried=True)
-        if type_ is not None and found.adapter is not None:
-            self._adapters[found.adapter] = type_
+        self._keep(found, _Way(_instance(found), type_, tried=True))
 
     def failed(self, found: Found) -> None:
-        """Forget a type that smartctl found and that no longer works; what was tried out stays."""
+        """Forget a type that was handed down or found by smartctl and fails; what was tried out stays."""
         if not self._way(found).tried:
             self._ways.pop(_key(found), None)
+            if found.adapter is not None:
+                self._adapters.pop(found.adapter, None)
+
+    def news(self, found: Found) -> Way | None:
+        """What was found out of a drive's adapter since this was asked last, to be kept; None for nothing."""
+        return self._news.pop(_key(found), None)
+
+    def _keep(self, found: Found, way: _Way) -> None:
+        self._ways[_key(found)] = way
+        if found.adapter is None:
+            return
+        new = Way(adapter=found.adapter, instance=way.instance, type=way.type)
+        if self._kept(found) != new:
+            self._adapters[found.adapter] = new
+            self._news[_key(found)] = new
 
     def _way(self, found: Found) -> _Way:
+        own, instance, kept = self._own(found), _instance(found), self._kept(found)
+        if own is not None:
+            return own
+        if kept is None or kept.instance != instance:
+            return _Way(instance)
+        # The same device as before the watch began anew. Where its type fails, others may be tried once more.
+        return _Way(instance, kept.type, tried=kept.type is None)
+
+    def _own(self, found: Found) -> _Way | None:
         """By address, so that what is kept does not grow with every plugging in."""
-        instance = _instance(found)
         way = self._ways.get(_key(found))
-        return way if way is not None and way.instance == instance else _Way(instance)
+        return way if way is not None and way.instance == _instance(found) else None
+
+    def _kept(self, found: Found) -> Way | None:
+        return None if found.adapter is None else self._adapters.get(found.adapter)
 
 
 def _over_sat(type_: str) -> str | None:

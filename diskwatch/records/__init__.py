@@ -25,6 +25,7 @@ from diskwatch.records.reading import (
 from diskwatch.records.replayed import Drift, ReplayedDrive, ReplaySummary, summed
 from diskwatch.records.round import DriveRound, KnownDrive, Learnt, Round
 from diskwatch.records.settled import Settled
+from diskwatch.records.way import Way
 
 __all__ = [
     "Attribute",
@@ -68,5 +69,6 @@ __all__ = [
     "SignalKind",
     "SignalNow",
     "Value",
+    "Way",
     "summed",
 ]

@@ -5,6 +5,7 @@ from dataclasses import dataclass, field
 from enum import StrEnum
 
 from diskwatch.records.drive import Drive
+from diskwatch.records.way import Way
 
 
 class Outcome(StrEnum):
@@ -55,6 +56,13 @@ class Value:
     kind: SignalKind
     source: str
     reason: str | None = None
+
+
+KERNEL_LOG = "kernel log"
+FILE_SYSTEMS = "file systems"
+ARRAYS = "arrays"
+SENSES = frozenset({KERNEL_LOG, FILE_SYSTEMS, ARRAYS})
+"""Sources of what is not the drive's own word; such values come with any outcome."""
 
 
 class Failing(StrEnum):
@@ -158,6 +166,9 @@ class Pass:
         reading: what it brought; None unless the outcome is ``read`` (a drive without SMART brings none).
         exit_bits: smartctl's exit status, or None where it did not end by itself.
         took_ms: how long the answer took, milliseconds.
+        heard: what the machine's other senses count of it (the kernel's log, file systems, arrays), whatever
+            the outcome; empty where nothing listens.
+        way: what it found out of the USB adapter before the drive; None where that is no news.
     """
 
     at: int
@@ -167,6 +178,8 @@ class Pass:
     reading: Reading | None = field(default=None, repr=False)
     exit_bits: int | None = None
     took_ms: int = 0
+    heard: tuple[Value, ...] = ()
+    way: Way | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

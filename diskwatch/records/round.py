@@ -7,6 +7,7 @@ from diskwatch.records.daybook import Entry
 from diskwatch.records.drive import Drive, Place
 from diskwatch.records.judgement import Call, Finding
 from diskwatch.records.reading import Pass, Value
+from diskwatch.records.way import Way
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -72,8 +73,10 @@ class Round:
         at: when it was judged, UTC seconds since 1970.
         drives: one a drive asked.
         entries: what happened, for the day book.
+        ways: what was found out of USB adapters; it belongs to the machine and to no drive.
     """
 
     at: int
     drives: tuple[DriveRound, ...]
     entries: tuple[Entry, ...] = ()
+    ways: tuple[Way, ...] = ()

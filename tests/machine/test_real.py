@@ -8,7 +8,7 @@ from diskwatch.machine import real
 from diskwatch.machine.protocol import Address, Counted, Found
 from diskwatch.machine.real import RealMachine
 from diskwatch.machine.smartctl import Scan
-from diskwatch.records import Drive, Identity, IoCounts, Kind, Mount, Outcome, Pass, Reading
+from diskwatch.records import Drive, Identity, IoCounts, Kind, Mount, Outcome, Pass, Reading, Way
 from tests.machine.recordings import FIXTURES
 from tests.machine.trees import Tree
 
@@ -31,8 +31,9 @@ class Asked:
         self.stopped = False
         self.made_with: tuple[str, float] | None = None
 
-    def make(self, command: str, timeout: float, now: Callable[[], int]) -> "Asked":
+    def make(self, command: str, timeout: float, now: Callable[[], int], *, kept: object) -> "Asked":
         assert now() == AT
+        assert kept == ()
         self.made_with = (command, timeout)
         return self
 
@@ -273,3 +274,44 @@ def test_an_ata_drive_that_only_the_scan_knows_as_scsi_is_read_through_sat_in_on
         assert watched.ask(found).outcome is Outcome.READ
     types = [line.split()[3] for line in log.read_text().splitlines() if "--scan" not in line]
     assert types == ["scsi", "sat", "sat"]
+
+
+def test_after_a_restart_a_drive_behind_an_unknown_usb_adapter_costs_exactly_one_process(
+    tree: Tree, tmp_path: Path
+):
+    unknown = FIXTURES / "invented_usb_bridge_unknown" / "all.txt"
+    read = FIXTURES / "nvme_usb_asmedia_issue_97" / "all.txt"
+    command, log = tmp_path / "smartctl", tmp_path / "asked"
+    command.write_text(
+        "#!/bin/sh\n"
+        'case "$*" in *--scan*) exit 0;; esac\n'
+        f'echo "$*" >> {log}\n'
+        'case "$*" in\n'
+        f"*'-d sntasmedia'*) cat {read};;\n"
+        f"*--version*) head -1 {read};;\n"
+        f"*) cat {unknown}; exit 1;;\n"
+        "esac\n"
+    )
+    command.chmod(0o755)
+    tree.usb()
+    bridge = tree.sys / "devices/pci0000:00/0000:00:14.0/usb1/1-4"
+    for name, text in (("idVendor", "174c"), ("idProduct", "2364"), ("bcdDevice", "0100")):
+        tree.put(bridge / name, text)
+    ways: tuple[Way, ...] = ()
+    asked = []
+    for _ in range(3):  # each time a program that has just been started
+        log.write_text("")
+        watched = RealMachine(
+            command=str(command),
+            ways=ways,
+            sys_root=tree.sys,
+            proc_root=tree.proc,
+            dev_root=tree.dev,
+            now=lambda: AT,
+        )
+        (found,) = watched.survey().found
+        answer = watched.ask(found)
+        assert answer.outcome is Outcome.READ
+        ways = ways if answer.way is None else (answer.way,)
+        asked.append(sum("--all" in line for line in log.read_text().splitlines()))
+    assert asked == [4, 1, 1]

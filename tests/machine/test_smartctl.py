@@ -10,7 +10,7 @@ import pytest
 from diskwatch.machine.command import Answer, Door, Ending
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.smartctl import Scan, Smartctl
-from diskwatch.records import Drive, Identity, Kind, Outcome, Place
+from diskwatch.records import Drive, Identity, Kind, Outcome, Place, Way
 from tests.machine.recordings import FIXTURES
 from tests.player import calls, lay
 
@@ -60,9 +60,9 @@ def asked(
     )
 
 
-def smartctl(*answers: Answer | Exception) -> tuple[Smartctl, Told]:
+def smartctl(*answers: Answer | Exception, kept: tuple[Way, ...] = ()) -> tuple[Smartctl, Told]:
     door = Told(*answers)
-    return Smartctl("smartctl", 60, lambda: NOW, door=door), door
+    return Smartctl("smartctl", 60, lambda: NOW, kept=kept, door=door), door
 
 
 def test_a_pass_is_one_process_that_wakes_no_drive():
@@ -184,6 +184,69 @@ def test_a_usb_drive_that_answered_before_and_is_silent_now_is_asked_no_other_wa
     assert tool.ask(asked(type_=None, usb=True)).outcome is Outcome.READ
     assert tool.ask(asked(type_=None, usb=True)).outcome is Outcome.ASLEEP
     assert types(door) == [None, "nvme"]
+
+
+ADAPTER = "1f75:0621:0100 INV"
+BEHIND_ADAPTER = replace(asked(type_=None, usb=True), adapter=ADAPTER, instance="boot 1, disk 7")
+
+
+def kept(type_: str | None, *, instance: str = "boot 1, disk 7") -> Way:
+    return Way(adapter=ADAPTER, instance=instance, type=type_)
+
+
+def test_after_a_restart_a_usb_drive_is_asked_once_with_the_type_that_was_found_before():
+    tool, door = smartctl(said(UNKNOWN_BRIDGE, 1), said(SLEEP, 3), said(NVME_JSON.read_bytes()))
+    found = tool.ask(BEHIND_ADAPTER)
+    assert types(door) == [None, "sat", "scsi"]
+    assert found.way == kept("scsi")
+    assert tool.ask(BEHIND_ADAPTER).way is None
+    later, door = smartctl(said(NVME_JSON.read_bytes()), kept=(found.way,))
+    assert later.ask(BEHIND_ADAPTER).outcome is Outcome.READ
+    assert types(door) == ["scsi"]
+
+
+@pytest.mark.parametrize("wrong", [said("noise", 2), said(UNKNOWN_BRIDGE, 1), said(f"{HEAD}{SLEEP}", 3)])
+def test_a_type_from_before_that_reaches_another_drive_no_more_is_forgotten_and_tried_anew(wrong: Answer):
+    tool, door = smartctl(
+        said("/dev/sda -d sat # ATA device\n"),
+        wrong,
+        said(UNKNOWN_BRIDGE, 1),
+        said(NVME_JSON.read_bytes()),
+        kept=(kept("sntasmedia", instance="boot 0, disk 3"),),
+    )
+    tool.scan()
+    found = tool.ask(BEHIND_ADAPTER)
+    assert (found.outcome, found.way) == (Outcome.READ, kept("sat"))
+    assert types(door)[1:] == ["sntasmedia", None, "sat"]
+    tool.ask(BEHIND_ADAPTER)
+    assert types(door)[4:] == ["sat"]
+
+
+def test_a_usb_drive_that_stayed_plugged_in_and_rests_over_a_restart_is_asked_once_and_no_other_way():
+    tool, door = smartctl(said(f"{HEAD}{SLEEP}", 3), kept=(kept("scsi"),))
+    assert [tool.ask(BEHIND_ADAPTER).outcome for _ in range(2)] == [Outcome.ASLEEP, Outcome.ASLEEP]
+    assert types(door) == ["scsi", "scsi"]
+
+
+def test_a_usb_drive_that_no_type_reached_costs_no_questions_again_after_a_restart():
+    tool, door = smartctl(said(UNKNOWN_BRIDGE, 1))
+    way = tool.ask(BEHIND_ADAPTER).way
+    assert (len(door.asked), way) == (6, kept(None))
+    later, door = smartctl(said(UNKNOWN_BRIDGE, 1), kept=(kept(None),))
+    assert "none of smartctl's types" in (later.ask(BEHIND_ADAPTER).explanation or "")
+    assert types(door) == [None]
+
+
+def test_a_type_that_smartctl_finds_by_itself_behind_an_adapter_is_kept_for_the_next_start_too():
+    tool, door = smartctl(said(NVME_JSON.read_bytes()))
+    assert tool.ask(BEHIND_ADAPTER).way == kept("nvme")
+    assert types(door) == [None]
+
+
+def test_a_type_from_before_that_hangs_is_kept_and_nothing_else_is_tried():
+    tool, door = smartctl(Answer(ending=Ending.TIMED_OUT), kept=(kept("sat"),))
+    assert [tool.ask(BEHIND_ADAPTER).outcome for _ in range(2)] == [Outcome.TIMED_OUT, Outcome.TIMED_OUT]
+    assert types(door) == ["sat", "sat"]
 
 
 def test_a_drive_that_is_silent_though_it_is_in_use_does_not_sleep():

@@ -6,7 +6,7 @@ from diskwatch.machine.outcomes import Verdict, of_words
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import understood
 from diskwatch.machine.ways import USB_TYPES, Ways, others, reaches
-from diskwatch.records import Drive, Identity, Kind, Outcome, Place
+from diskwatch.records import Drive, Identity, Kind, Outcome, Place, Way
 from tests.machine.recordings import FIXTURES, text_of
 
 BEHIND_SAT = "Probable ATA device behind a SAT layer\nTry an additional '-d ata' or '-d sat' argument."
@@ -125,3 +125,55 @@ def test_drives_behind_one_node_are_kept_apart():
     seven, eight = device("megaraid,7", adapter=None), device("megaraid,8", adapter=None)
     ways.settled(replace(seven, blocks=()), "sat+megaraid,7")
     assert ways.known(eight) is None
+
+
+def kept(type_: str | None, *, instance: str = "1") -> Way:
+    return Way(adapter="1f75:0621", instance=instance, type=type_)
+
+
+def test_the_same_device_as_before_a_restart_is_known_to_answer_to_its_type_and_may_be_tried_out_again():
+    ways = Ways([kept("sat")])
+    assert (ways.known(device()), ways.proved(device()), ways.tried(device())) == ("sat", True, False)
+    assert ways.handed_down(device())
+    ways.failed(device())
+    assert (ways.known(device()), ways.proved(device()), ways.handed_down(device())) == (None, False, False)
+
+
+def test_another_device_behind_the_same_adapter_has_its_type_proved_by_no_restart():
+    ways = Ways([kept("sat", instance="0")])
+    assert (ways.known(device()), ways.proved(device()), ways.handed_down(device())) == ("sat", False, True)
+
+
+def test_a_device_that_no_type_reaches_stays_closed_over_a_restart_and_only_while_it_stays_plugged_in():
+    ways = Ways([kept(None)])
+    assert ways.closed(device())
+    assert not ways.closed(device(instance="2"))
+    assert ways.known(device(instance="2")) is None
+
+
+def test_what_is_kept_but_is_no_type_is_not_believed():
+    assert Ways([kept("sat; reboot"), kept("-s")]).known(device()) is None
+
+
+def test_what_was_found_out_is_news_once_and_only_where_it_changes_something():
+    ways = Ways()
+    assert ways.news(device()) is None
+    ways.found_by_itself(device(), "sat")
+    assert (ways.news(device()), ways.news(device())) == (kept("sat"), None)
+    ways.found_by_itself(device(), "sat")
+    assert ways.news(device()) is None
+    ways.settled(device(), None)
+    assert ways.news(device()) == kept(None)
+    ways.settled(device(adapter=None), "sat")
+    assert ways.news(device(adapter=None)) is None
+
+
+def test_what_is_news_brings_a_later_watch_to_the_same_knowledge():
+    first = Ways()
+    first.settled(device(), "sntrealtek")
+    news = first.news(device())
+    assert news is not None
+    later = Ways([news])
+    for found in (device(), device(instance="2")):
+        assert later.known(found) == first.known(found)
+        assert later.proved(found) == first.proved(found)
