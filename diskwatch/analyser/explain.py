@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.state import DriveState
-from diskwatch.judge import rules, sentences
+from diskwatch.judge import changes, rules
 from diskwatch.records import Call, CallWord, Finding
 from diskwatch.trends import ledger, spots
 from diskwatch.trends.episodes import ABSORBED, Stream
@@ -158,26 +158,24 @@ def _damage(state: DriveState) -> Damage | None:
 def _would_change(state: DriveState, evidence: tuple[Evidence, ...]) -> tuple[str, ...]:
     call = state.call
     if call is None:
-        return (sentences.needs_reading(),)
+        return (changes.needs_reading(),)
     if state.first_at is None and call.word is CallWord.KEEP:
-        return (sentences.virtual_stays(),)
-    told = (
-        [sentences.stands() if _lasts(state) else sentences.passes()] if call.word is not CallWord.KEEP else []
-    )
+        return (changes.virtual_stays(),)
+    told = [changes.stands() if _lasts(state) else changes.passes()] if call.word is not CallWord.KEEP else []
     if call.word is CallWord.KEEP:
-        told.append(sentences.first_defect_would())
+        told.append(changes.first_defect_would())
         told += [
-            sentences.one_more_would(one.stream, one.days, one.after_one_more, one.alarms_at, ABSORBED)
+            changes.one_more_would(one.stream, one.days, one.after_one_more, one.alarms_at, ABSORBED)
             for one in evidence
         ]
-        told.append(sentences.unread_would(UNREAD_LIMIT))
+        told.append(changes.unread_would(UNREAD_LIMIT))
     if call.word.rank < CallWord.COPY.rank and _damage(state) is not None:
-        told.append(sentences.damage_would("copy", spots.COPY / 4, spots.WINDOW))
+        told.append(changes.damage_would("copy", spots.COPY / 4, spots.WINDOW))
     if call.word.rank < CallWord.RETIRE.rank:
         if _damage(state) is not None:
-            told.append(sentences.damage_would("retire", spots.RETIRE / 4, spots.WINDOW))
-        told.append(sentences.verdict_would())
-    told.append(sentences.budget(BUDGET))
+            told.append(changes.damage_would("retire", spots.RETIRE / 4, spots.WINDOW))
+        told.append(changes.verdict_would())
+    told.append(changes.budget(BUDGET))
     return tuple(told)
 
 

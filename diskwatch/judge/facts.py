@@ -6,16 +6,17 @@ A fact calls at once, also on the first reading. Everything else on a first read
 from collections.abc import Iterator
 
 from diskwatch.judge import sentences
+from diskwatch.judge.language import _, marked
 from diskwatch.records import Attribute, CallWord, Cause, Failing, Finding, FindingKind, Reading
 from diskwatch.trends.norms import STREAM_OF
 
 WARNINGS = (
-    (1, "spare blocks below their limit", Cause.SPARE),
-    (2, "a temperature outside its limits", Cause.HEAT),
-    (4, "degraded reliability", Cause.MEDIA),
-    (8, "media that can only be read", Cause.WEAR_OUT),
-    (16, "a failed backup of its volatile memory", Cause.CONTROLLER),
-    (32, "persistent memory that can only be read", Cause.WEAR_OUT),
+    (1, marked("spare blocks below their limit"), Cause.SPARE),
+    (2, marked("a temperature outside its limits"), Cause.HEAT),
+    (4, marked("degraded reliability"), Cause.MEDIA),
+    (8, marked("media that can only be read"), Cause.WEAR_OUT),
+    (16, marked("a failed backup of its volatile memory"), Cause.CONTROLLER),
+    (32, marked("persistent memory that can only be read"), Cause.WEAR_OUT),
 )
 """Bits of the critical warning: NVM Express, SMART / Health log 02h, byte 0 (names ours)."""
 
@@ -72,7 +73,7 @@ def _verdict(reading: Reading, at: int) -> Iterator[Finding]:
         )
     elif failed or warning:
         meant = [(name, cause) for bit, name, cause in WARNINGS if warning & bit]
-        names = sentences.critical_warning(", ".join(name for name, _ in meant)) if meant else ""
+        names = ", ".join(_(name) for name, _cause in meant)
         yield _fact(
             "self-assessment",
             at,
