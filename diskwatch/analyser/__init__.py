@@ -9,16 +9,30 @@ from diskwatch.analyser.explain import Explanation, explain
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.settle import settle
 from diskwatch.analyser.state import DriveState, dump, load, start
+from diskwatch.analyser.traffic import (
+    TrafficStep,
+    dump_latency,
+    load_latency,
+    measured,
+    no_latency,
+    take_in_traffic,
+)
 
 __all__ = [
     "UNREAD_LIMIT",
     "DriveState",
     "Explanation",
     "Step",
+    "TrafficStep",
     "advance",
     "dump",
+    "dump_latency",
     "explain",
     "load",
+    "load_latency",
+    "measured",
+    "no_latency",
     "settle",
     "start",
+    "take_in_traffic",
 ]

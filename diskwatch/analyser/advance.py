@@ -8,6 +8,7 @@ from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
 from diskwatch.records import Call, CallWord, Entry, Finding, FindingKind, Kind, Outcome, Pass, Reading
+from diskwatch.trends import warmth
 from diskwatch.trends.norms import NORMS
 from diskwatch.units import day_number
 
@@ -37,13 +38,15 @@ class Step:
     @property
     def evidence(self) -> Mapping[str, float]:
         """M in days by signal: a stream's evidence belongs to each of its signals that the drive has."""
-        return {
+        counted = {
             signal: self.state.streams[norm.stream].ledger.evidence
             for norm in NORMS
             if norm.stream in self.state.streams
             for signal in norm.signals
             if signal in self.state.latest
         }
+        timed = {signal: now.evidence for signal, now in self.state.latency.items() if now.evidence is not None}
+        return {**counted, **timed}
 
 
 def advance(state: DriveState, pass_: Pass) -> Step:
@@ -95,6 +98,9 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         spots=counters.damage(state, pass_, reading),
         settled=state.settled,
         word=state.word,
+        warmth=warmth.felt(state.warmth, day=day_number(pass_.at), celsius=reading.number("temperature"))[0],
+        latency=state.latency,
+        traffic_through=state.traffic_through,
         standing=state.standing,
         call=state.call,
     )

@@ -5,6 +5,7 @@ from dataclasses import replace
 
 from diskwatch.analyser.advance import Step, quiet, told_call
 from diskwatch.analyser.state import DriveState
+from diskwatch.analyser.traffic import noted
 from diskwatch.judge import rules, sentences
 from diskwatch.records import Entry, Finding, Settled
 from diskwatch.trends import episodes
@@ -45,6 +46,7 @@ def settle(state: DriveState, word: Settled) -> Step:
         rose={stream: powered for stream, powered in state.rose.items() if stream not in anew},
         risen={signal: when for signal, when in state.risen.items() if signal not in signals},
         spots=_undisturbed(state.spots, signals),
+        latency=noted(state.latency, [signal for signal in state.latency if word.about((signal,))]),
         settled={**state.settled, **dict.fromkeys(anew, word)},
         word=word,
         unread=0 if not word.signals else state.unread,

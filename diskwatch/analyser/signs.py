@@ -5,7 +5,7 @@ from collections.abc import Mapping
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import causes
 from diskwatch.judge.causes import Explained
-from diskwatch.records import Finding, FindingKind, Reading
+from diskwatch.records import Cause, Finding, FindingKind, Reading
 from diskwatch.trends.norms import STREAM_OF, YEAR
 
 LATELY = 30
@@ -47,6 +47,8 @@ _BY_FACT: Mapping[str, str] = {
 }
 """Signs that a fact is, also on a first reading."""
 
+_SLOWER: Mapping[str, str] = {"reads slower": "read-latency", "writes slower": "write-latency"}
+
 _WORN = 90
 _TOLD_BY_ITSELF = ("fact:hot", "fact:warns-of-heat", "fact:spare", "fact:worn", "fact:worn-out")
 """Facts that name their cause themselves, so that no table is asked."""
@@ -62,10 +64,13 @@ def explained(state: DriveState, reading: Reading, day: int, lead: Finding) -> E
         lead: the finding that decides the call.
 
     Returns:
-        The cause; None where the leading fact tells it by itself.
+        The cause; None where the leading fact tells it by itself. Slowness that follows the temperature is
+        heat, whatever the table holds likelier.
     """
     if lead.name in _TOLD_BY_ITSELF or (lead.kind is FindingKind.FACT and lead.data.get("critical_warning")):
         return None
+    if lead.data.get("follows_heat"):
+        return Explained(cause=Cause.HEAT, probability=None, second=None)
     shown = {sign: _shows(state, day, sign) for sign in (*_DEFECTS, *_ORDINARY)}
     used = reading.number("percentage-used")
     told: dict[str, bool | None] = {
@@ -73,6 +78,7 @@ def explained(state: DriveState, reading: Reading, day: int, lead: Finding) -> E
         "worn": None if used is None else used >= _WORN,
         "spare low": None if reading.number("available-spare") is None else False,
         "hot": None if _limit(reading) is None else False,
+        **_slowness(state, day),
     }
     for name, sign in _BY_FACT.items():
         if name in state.standing:
@@ -99,6 +105,21 @@ def _shows(state: DriveState, day: int, sign: str) -> bool | None:
         for signal in signals
         if signal in state.risen
     )
+
+
+def _slowness(state: DriveState, day: int) -> Mapping[str, bool | None]:
+    """The signs of latency; one that is still being learnt, or that was not scored lately, says nothing."""
+    told: dict[str, bool | None] = {}
+    for sign, signal in _SLOWER.items():
+        now = state.latency.get(signal)
+        lately = now is not None and now.seen_on is not None and day - now.seen_on < LATELY
+        if now is not None and now.evidence is not None and lately:
+            told[sign] = now.evidence >= _NOTICEABLE
+    heat = [one.follows_heat for one in state.latency.values() if one.follows_heat is not None]
+    # A season couples a sound drive's days too: only where something is slower, it is a sign.
+    if heat and (any(told.values()) or not any(heat)):
+        told["slow when hot"] = any(heat)
+    return told
 
 
 def _limit(reading: Reading) -> int | None:

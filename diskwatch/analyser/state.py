@@ -8,7 +8,9 @@ import msgspec
 from diskwatch.errors import HistoryTooNew
 from diskwatch.records import Call, Finding, Outcome, Settled
 from diskwatch.trends.episodes import Stream
+from diskwatch.trends.latency_now import LatencyNow
 from diskwatch.trends.spots import Spots
+from diskwatch.trends.warmth import Warmth
 
 PARAMETERS = 1
 """Version of the norms, thresholds and recursions that a state was built with."""
@@ -35,6 +37,9 @@ class DriveState:
         spots: damage for the odds rule.
         settled: the owner's last word about each stream.
         word: the owner's last word, or None.
+        warmth: how warm it was on its latest days, oldest first.
+        latency: what its latency has come to, by signal; what that was learnt from is kept apart.
+        traffic_through: UTC day number of the last day whose traffic was taken in, or None.
         standing: findings that stand, by name.
         call: the call that stands, or None.
     """
@@ -55,6 +60,9 @@ class DriveState:
     spots: Spots = field(default_factory=Spots)
     settled: Mapping[str, Settled] = field(default_factory=dict)
     word: Settled | None = None
+    warmth: tuple[Warmth, ...] = ()
+    latency: Mapping[str, LatencyNow] = field(default_factory=dict)
+    traffic_through: int | None = None
     standing: Mapping[str, Finding] = field(default_factory=dict)
     call: Call | None = None
 

@@ -18,9 +18,7 @@ from diskwatch.trends.shift import Silence
 from diskwatch.trends.slowness import KEPT, threshold
 from diskwatch.trends.today import unpacked
 from diskwatch.units import DAY
-from tests.trends.traffic import a_day, rollup
-
-SIZES = (4096, 16384, 65536)
+from tests.trends.traffic import a_day, invented_days, rollup
 
 
 def lived(state, days, temperatures=None):
@@ -35,23 +33,6 @@ def lived(state, days, temperatures=None):
         state, held = latency.close_day(state, temperature=(temperatures or {}).get(number))
         shifts += [held[0].shift] if held else []
     return state, shifts
-
-
-def invented_days(seed, count, *, slower_from=None, first_day=100):
-    """Days of an invented drive: three sizes of work, each with noise of its own, some days off."""
-    noise = Random(seed)  # noqa: S311  # invented noise
-    days = []
-    for day in range(first_day, first_day + count):
-        factor = 2.0 if slower_from is not None and day >= first_day + slower_from else 1.0
-        factor *= exp(noise.gauss(0, 0.04))
-        times = {
-            size: [
-                (3 + place * 2) * factor * exp(noise.gauss(0, 0.1)) for _ in range(noise.choice((0, 2, 5, 14)))
-            ]
-            for place, size in enumerate(SIZES)
-        }
-        days.append(a_day(day, times))
-    return days
 
 
 def batch_shifts(days):

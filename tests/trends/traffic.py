@@ -1,7 +1,12 @@
 """Roll-ups for tests, invented."""
 
+from math import exp
+from random import Random
+
 from diskwatch.records import IoCounts, IoRollup
 from diskwatch.units import DAY
+
+SIZES = (4096, 16384, 65536)
 
 
 def rollup(
@@ -63,3 +68,20 @@ def a_day(day, times, *, reads=3000, writes=300):
         )
         for place, (size, one) in enumerate(work)
     ]
+
+
+def invented_days(seed, count, *, slower_from=None, first_day=100):
+    """Days of an invented drive: three sizes of work, each with noise of its own, some days off."""
+    noise = Random(seed)  # noqa: S311  # invented noise
+    days = []
+    for day in range(first_day, first_day + count):
+        factor = 2.0 if slower_from is not None and day >= first_day + slower_from else 1.0
+        factor *= exp(noise.gauss(0, 0.04))
+        times = {
+            size: [
+                (3 + place * 2) * factor * exp(noise.gauss(0, 0.1)) for _ in range(noise.choice((0, 2, 5, 14)))
+            ]
+            for place, size in enumerate(SIZES)
+        }
+        days.append(a_day(day, times))
+    return days
