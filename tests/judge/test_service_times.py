@@ -20,7 +20,8 @@ def told(**other):
 def test_slowness_is_told_with_its_numbers_its_norm_and_its_evidence():
     assert told() == (
         "Reads take 1.6 times as long at the same load as in its first weeks (8.2 ms, usually 5.0 ms); "
-        "the norm is at most 1.15 times. A drive within the norm would show this at most once in 84 years of watching."
+        "the norm is at most 1.15 times. "
+        "A drive within the norm would show this at most once in 84 years of watching."
     )
 
 
