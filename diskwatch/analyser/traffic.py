@@ -94,8 +94,8 @@ def _drift(direction: Direction, now: LatencyNow, at: int) -> Finding:
         sentence=service_times.slower(
             signal,
             times=now.times or 1.0,
-            now_us=now.now_us,
-            usual_us=now.usual_us,
+            now_us=now.now_us or 0,
+            usual_us=now.usual_us or 0,
             tolerance=now.tolerance,
             evidence=now.evidence or 0.0,
             follows_heat=bool(now.follows_heat),

@@ -29,10 +29,6 @@ def test_slowness_that_follows_the_temperature_asks_for_cooling_first():
     assert told(follows_heat=True).endswith("see to its cooling first.")
 
 
-def test_times_that_are_not_known_are_left_out():
-    assert "(" not in told(usual_us=None)
-
-
 @pytest.mark.parametrize(
     ("microseconds", "words"), [(180, "0.18 ms"), (999, "1 ms"), (8_240, "8.2 ms"), (120_400, "120 ms")]
 )
