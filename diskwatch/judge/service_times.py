@@ -12,8 +12,8 @@ _MEASURED: Mapping[str, str] = {
         "norm is at most {norm} times. A drive within the norm would show this at most {once} of watching."
     ),
     "write-latency": marked(
-        "Writes take {times} times as long at the same load as in its first weeks ({now}, usually {usual}); the "
-        "norm is at most {norm} times. A drive within the norm would show this at most {once} of watching."
+        "Writes take {times} times as long at the same load as in its first weeks ({now}, usually {usual}); "
+        "the norm is at most {norm} times. A drive within the norm would show this at most {once} of watching."
     ),
 }
 
