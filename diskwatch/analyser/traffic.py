@@ -5,8 +5,9 @@ from dataclasses import dataclass, replace
 
 import msgspec
 
+from diskwatch.analyser.advance import quiet, told_call
 from diskwatch.analyser.state import DriveState
-from diskwatch.judge import service_times
+from diskwatch.judge import rules, service_times
 from diskwatch.records import (
     CallWord,
     Cause,
@@ -32,7 +33,7 @@ class TrafficStep:
     """What one day of traffic led to.
 
     Attributes:
-        state: the drive's state after it; the next pass makes the call that follows.
+        state: the drive's state after it.
         latency: all that its latency was learnt from.
         happened: what the day book should hold; without the drive's number, which is not known here.
     """
@@ -78,6 +79,12 @@ def take_in_traffic(
                 data = {"evidence": found.evidence, **found.data}
                 happened.append(Entry(at=at, drive=None, kind="drift", text=found.sentence, data=data))
     after = replace(state, latency=now, traffic_through=day, standing=standing)
+    if standing.keys() != state.standing.keys():
+        # The next reading brings the signs that name a cause; a drive that gives none is called all the same.
+        call = rules.decide(standing.values(), before=state.call, at=at, quiet=quiet(after, at))
+        if state.call is None or call.word is not state.call.word:
+            happened += told_call(state.call, call)
+        after = replace(after, call=call)
     return TrafficStep(state=after, latency=latency, happened=tuple(happened))
 
 

@@ -51,10 +51,14 @@ def test_slower_reads_at_equal_load_are_a_drift_that_stands(slowed):
     ]
 
 
-def test_the_next_pass_makes_the_call_also_where_it_brings_no_reading(slowed):
-    step = analyser.advance(slowed[0], missed(300 * DAY, Outcome.REFUSED))
+def test_traffic_alone_leads_to_a_call_and_a_pass_without_a_reading_leaves_it(slowed):
+    state, _, happened = slowed
+    assert state.call.word is CallWord.LOOK
+    assert state.call.rule in {"drift:read-latency", "drift:write-latency"}
+    assert [entry.data["call"] for entry in happened if entry.kind == "call"] == ["look"]
+    step = analyser.advance(state, missed(300 * DAY, Outcome.REFUSED))
     assert step.call.word is CallWord.LOOK
-    assert step.call.rule in {"drift:read-latency", "drift:write-latency"}
+    assert step.call.at == state.call.at
     assert step.call.evidence == step.findings[0].evidence
 
 
