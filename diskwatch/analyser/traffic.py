@@ -56,12 +56,7 @@ def take_in_traffic(
         at: now, UTC seconds since 1970.
         key: names the circumstances that usual times hold for, see `diskwatch.trends.latency.moved`.
     """
-    happened: list[Entry] = []
-    if key != latency.key:
-        if latency.key and (latency.reads.references or latency.writes.references):
-            known = any(one.key == key for one in latency.aside)
-            happened.append(Entry(at=at, drive=None, kind="moved", text=service_times.times_anew(known=known)))
-        latency = latencies.moved(latency, key)
+    latency, happened = _here(latency, key, at)
     for direction, signal in SIGNALS.items():
         if signal in state.latency and state.latency[signal].noted:
             latency = latencies.acknowledged(latency, direction)
@@ -86,6 +81,18 @@ def take_in_traffic(
             happened += told_call(state.call, call)
         after = replace(after, call=call)
     return TrafficStep(state=after, latency=latency, happened=tuple(happened))
+
+
+def _here(latency: Latency, key: str, at: int) -> tuple[Latency, list[Entry]]:
+    """Latency under the present circumstances, and what is to be told where these are new."""
+    if key == latency.key:
+        return latency, []
+    learnt = latency.key and (latency.reads.references or latency.writes.references)
+    known = any(one.key == key for one in latency.aside)
+    told = (
+        [Entry(at=at, drive=None, kind="moved", text=service_times.times_anew(known=known))] if learnt else []
+    )
+    return latencies.moved(latency, key), told
 
 
 def _drift(direction: Direction, now: LatencyNow, at: int) -> Finding:
