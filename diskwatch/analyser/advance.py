@@ -3,7 +3,7 @@
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 
-from diskwatch.analyser import counters, endings, findings, outcomes, signs
+from diskwatch.analyser import counters, endings, findings, heard, outcomes, signs
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
@@ -65,7 +65,8 @@ def advance(state: DriveState, pass_: Pass) -> Step:
         now, more = _taken_in(state, pass_, pass_.reading)
         happened += more
     else:
-        now = outcomes.without_reading(state, pass_)
+        now, told = heard.without_reading(outcomes.without_reading(state, pass_), pass_)
+        happened += told
     call = _called(now, pass_)
     if call is not None and (state.call is None or call.word is not state.call.word):
         happened += told_call(state.call, call)
@@ -76,8 +77,10 @@ def advance(state: DriveState, pass_: Pass) -> Step:
 
 def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveState, list[Entry]]:
     """A reading: levels, rises, ledgers, damage, facts."""
-    counts = counters.followed(reading)
+    listened = heard.followed(pass_)
+    counts = {**counters.followed(reading), **listened}
     risen, happened = counters.rises(state, pass_, counts)
+    happened = heard.news(happened, pass_)
     hours = reading.number("power-on-hours")
     streams = counters.streams(state, pass_, counts, risen, hours)
     # Written out: replace() takes three times as long, and a replay of years comes by here for every day.
@@ -89,11 +92,11 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         slept=state.slept,
         unread=0,
         hours=state.hours if hours is None else hours,
-        firsts=_firsts(state, reading, counts),
+        firsts=_firsts(state, reading, {**counts, **heard.firsts(listened)}),
         latest={**state.latest, **counts},
         base=state.base,
         risen={**state.risen, **dict.fromkeys(risen, day_number(pass_.at))} if risen else state.risen,
-        rose=counters.rose(state.rose, streams, risen) if risen else state.rose,
+        rose=counters.rose(state.rose, streams, heard.in_streams(risen)) if risen else state.rose,
         streams=streams,
         spots=counters.damage(state, pass_, reading),
         settled=state.settled,
@@ -110,6 +113,7 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         *findings.drifts(now, pass_),
         *findings.back(now, pass_, risen),
         *findings.rule(now, pass_),
+        *heard.shown(now, pass_),
     )
     alarms = [
         entry(pass_, "drift", one.sentence, evidence=one.evidence, **dict(one.data))

@@ -21,6 +21,7 @@ _DEFECTS: Mapping[str, tuple[str, ...]] = {
         "offline-uncorrectable",
         "uncorrected-reads",
         "uncorrected-writes",
+        "unreadable-sectors",
     ),
     "flash media errors": ("media-errors",),
 }
@@ -29,7 +30,7 @@ _DEFECTS: Mapping[str, tuple[str, ...]] = {
 _ORDINARY: Mapping[str, tuple[str, ...]] = {
     "CRC counter": ("crc-errors",),
     "link reset": ("link-resets",),
-    "command timeout": ("command-timeouts",),
+    "command timeout": ("command-timeouts", "kernel-timeouts"),
     "unsafe power-off": ("unsafe-power-offs",),
 }
 """Signs that ask for more than the norm."""
@@ -41,6 +42,7 @@ _BY_FACT: Mapping[str, str] = {
     "fact:attribute-187": "uncorrectable event",
     "fact:attribute-198": "uncorrectable event",
     "fact:self-test-unreadable": "uncorrectable event",
+    "fact:unreadable-sector": "uncorrectable event",
     "fact:hot": "hot",
     "fact:warns-of-heat": "hot",
     "fact:spare": "spare low",

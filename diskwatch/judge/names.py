@@ -45,6 +45,20 @@ _NAMES: Mapping[str, tuple[str, str]] = {
         "commands that it did not answer in time (command timeouts)",
     ),
     "kernel-io-errors": marked_plural("request that the kernel saw fail", "requests that the kernel saw fail"),
+    "kernel-timeouts": marked_plural(
+        "command that the kernel saw unanswered in time", "commands that the kernel saw unanswered in time"
+    ),
+    "unreadable-sectors": marked_plural(
+        "place that the kernel could not read", "places that the kernel could not read"
+    ),
+    "failed-writes": marked_plural("write that the kernel saw fail", "writes that the kernel saw fail"),
+    "dropouts": marked_plural("time that the kernel gave it up", "times that the kernel gave it up"),
+    "file-system-errors": marked_plural(
+        "error that a file system on it met", "errors that file systems on it met"
+    ),
+    "array-dropouts": marked_plural(
+        "time that an array dropped or mended it", "times that an array dropped or mended it"
+    ),
     "unsafe-power-offs": marked_plural(
         "time that power went away without notice (unsafe power-offs)",
         "times that power went away without notice (unsafe power-offs)",

@@ -14,6 +14,10 @@ from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingK
 from diskwatch.records.margin import Margin
 from diskwatch.records.odds import Odds
 from diskwatch.records.reading import (
+    ARRAYS,
+    FILE_SYSTEMS,
+    KERNEL_LOG,
+    SENSES,
     Attribute,
     Failing,
     Outcome,
@@ -30,6 +34,10 @@ from diskwatch.records.settled import Settled
 from diskwatch.records.way import Way
 
 __all__ = [
+    "ARRAYS",
+    "FILE_SYSTEMS",
+    "KERNEL_LOG",
+    "SENSES",
     "Attribute",
     "Bays",
     "Call",

@@ -70,7 +70,7 @@ NORMS = (
     ),
     Norm(stream="kernel-errors", signals=("kernel-io-errors",), per_year=0.5, share=0.12),
     Norm(stream="link", signals=("crc-errors", "link-resets"), per_year=2.0, share=0.10),
-    Norm(stream="timeouts", signals=("command-timeouts",), per_year=1.0, share=0.08),
+    Norm(stream="timeouts", signals=("command-timeouts", "kernel-timeouts"), per_year=1.0, share=0.08),
     Norm(stream="flash-media", signals=("media-errors",), per_year=0.5, share=0.08),
     Norm(stream="power", signals=("unsafe-power-offs",), per_year=12.0, share=0.04),
 )
