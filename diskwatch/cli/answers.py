@@ -48,6 +48,7 @@ def drive_answer(line: DriveLine) -> dict[str, object]:
         "last_pass": None
         if last is None
         else {"at": rfc3339(last.at), "outcome": last.outcome.value, "explanation": last.explanation},
+        "left_out": line.left_out,
         "call": call.word.value if call else None,
         "call_since": _at(call.at if call else None),
         "cause": call.cause.value if call and call.cause else None,

@@ -91,6 +91,8 @@ def _band(line: DriveLine, at: int, width: int) -> list[str]:
         # An explanation is a whole sentence already.
         how = "read." if last.explanation is None else f"{last.outcome.value}: {last.explanation}"
         told.append(f"Last pass {ago} ago: {how}")
+    if line.left_out is not None:
+        told.append(line.left_out)
     if (words := said(line, at)) is not None:
         told.append(words)
     body = textwrap.wrap(plain(" ".join(told)), max(20, width - 8), break_long_words=True)

@@ -3,9 +3,11 @@
 The file lies in the first of `diskwatch.places.live_folders` that can be written. The last of them is the state
 folder, on a real disk: there it is written at most once a minute.
 
-    {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 2048, 2048, 3, 9, 11]], "troubles": []}
+    {"at": 1796126400, "spans": [[1, 1796126400, 10.0, 5, 7, 2048, 2048, 3, 9, 11]], "troubles": [],
+     "left_out": {"1": "It is asked less often, since ..."}}
 
-What troubles the watch goes this way too: a history that cannot be written cannot hold why.
+What troubles the watch goes this way too: a history that cannot be written cannot hold why. So does why a drive
+was not asked in the last round: it is no event of the drive, and the next round may change it.
 """
 
 import contextlib
@@ -16,9 +18,10 @@ import os
 import re
 import stat
 import time
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
 from pathlib import Path
+from types import MappingProxyType
 from typing import Any
 
 from diskwatch import places
@@ -48,10 +51,12 @@ class Live:
     Attributes:
         spans: the last span of every drive.
         troubles: what keeps the watch from doing its work, one sentence each.
+        left_out: why drives were not asked in the last round, by the drive's number, one sentence each.
     """
 
     spans: tuple[IoSpan, ...] = ()
     troubles: tuple[str, ...] = ()
+    left_out: Mapping[int, str] = field(default_factory=dict)
 
 
 class LiveWriter:
@@ -71,20 +76,32 @@ class LiveWriter:
         self._path: Path | None = None
         self._written_at: int | None = None
 
-    def write(self, spans: Sequence[IoSpan], at: int, troubles: Sequence[str] = ()) -> bool:
-        """Share the last span of every drive, and what troubles the watch.
+    def write(
+        self,
+        spans: Sequence[IoSpan],
+        at: int,
+        troubles: Sequence[str] = (),
+        left_out: Mapping[int, str] = MappingProxyType({}),
+    ) -> bool:
+        """Share the last span of every drive, what troubles the watch, and which drives it left out.
 
         Args:
             spans: one a drive.
             at: now, UTC seconds since 1970.
             troubles: one sentence each.
+            left_out: by the drive's number, one sentence each.
 
         Returns:
             Whether these figures were shared; False also where it is too early for a real disk.
         """
         if self._path is not None and self._path.parent == self._state and not self._due(at):
             return False
-        told = {"at": at, "spans": [_row(span) for span in spans], "troubles": list(troubles)}
+        told = {
+            "at": at,
+            "spans": [_row(span) for span in spans],
+            "troubles": list(troubles),
+            "left_out": {str(number): why for number, why in left_out.items()},
+        }
         text = json.dumps(told, separators=(",", ":"))
         for folder in places.live_folders(self._state):
             path = folder / self._name
@@ -207,8 +224,11 @@ def _believed(path: Path, owners: frozenset[int]) -> tuple[int, Live] | None:
         try:
             found = json.loads(file.read(_LARGEST_FILE))
             spans = tuple(_span(row) for row in found["spans"])
-            return int(found["at"]), Live(spans=spans, troubles=tuple(map(str, found["troubles"])))
-        except (OSError, ValueError, KeyError, TypeError, OverflowError):
+            # A watch of an older version, still running, tells nothing of those that it left out.
+            left_out = {int(number): str(why) for number, why in found.get("left_out", {}).items()}
+            troubles = tuple(map(str, found["troubles"]))
+            return int(found["at"]), Live(spans=spans, troubles=troubles, left_out=left_out)
+        except (OSError, ValueError, KeyError, TypeError, OverflowError, AttributeError):
             return None
 
 

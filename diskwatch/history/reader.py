@@ -91,7 +91,10 @@ class Past:
         # What a watch that has ended left behind is nobody's present.
         live = Live() if who is None else read_live(self._folder, now)
         spans = {span.drive: span for span in live.spans}
-        shown = [replace(line, traffic=spans.get(line.number)) for line in lines]
+        shown = [
+            replace(line, traffic=spans.get(line.number), left_out=live.left_out.get(line.number))
+            for line in lines
+        ]
         return Bays(
             at=now,
             watcher=who,

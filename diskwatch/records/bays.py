@@ -58,6 +58,8 @@ class DriveLine:
         findings: what stands now, leading one first.
         signals: its signals as last read, by name.
         traffic: its traffic over the last span, or None where nobody measures it now.
+        left_out: why the watch did not ask it in its last round, one sentence; None where it did, or
+            where nobody watches.
         owner: what the owner has said of it besides.
     """
 
@@ -71,6 +73,7 @@ class DriveLine:
     findings: tuple[Finding, ...] = ()
     signals: tuple[SignalNow, ...] = ()
     traffic: IoSpan | None = None
+    left_out: str | None = None
     owner: OwnerFacts = field(default_factory=OwnerFacts)
 
     @property

@@ -40,6 +40,18 @@ class Why(StrEnum):
         """Whether it is asked."""
         return self in {Why.FIRST, Why.WANTED, Why.DUE}
 
+    @property
+    def told(self) -> str | None:
+        """Why it was left out, one sentence about "it"; None where it was not, or where its pass says why."""
+        return _TOLD.get(self)
+
+
+_TOLD = {
+    Why.HUNG: "It is not asked, since its requests do not move and one more would hang as well.",
+    Why.SILENT: "It is asked less often, since it gave no answer when it was asked last.",
+    Why.IDLE: "It is asked again later, since it did nothing since it was asked last and may fall asleep.",
+}
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Asked:

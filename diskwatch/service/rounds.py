@@ -1,7 +1,7 @@
 """One round: list the drives, ask each whose turn it is, recognise it, judge it, keep it."""
 
 import threading
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from contextlib import AbstractContextManager, nullcontext
 from dataclasses import replace
 
@@ -64,6 +64,8 @@ class Rounds:
         self._ending = threading.Event()
         self.blocks: dict[int, tuple[str, ...]] = {}
         """Kernel names of the block devices of each drive of the last round, by the drive's number."""
+        self.left_out: Mapping[int, Why] = {}
+        """Why drives that are here were not asked in the last round, by the drive's number."""
 
     def run(
         self,
@@ -99,8 +101,11 @@ class Rounds:
                 if asking.waiting == 0 and not survey.troubles and not ending:
                     away, gone = self._gone(taken)
                     part, more = part + away, more + gone
-                if part or entries or more:
-                    self._keeper.record(Round(at=self._now(), drives=part, entries=(*entries, *more)))
+                ways = tuple(one.pass_.way for one in batch if one.pass_.way is not None)
+                if part or entries or more or ways:
+                    self._keeper.record(
+                        Round(at=self._now(), drives=part, entries=(*entries, *more), ways=ways)
+                    )
             entries = ()
             done += part
             if told is not None and part:
@@ -138,7 +143,9 @@ class Rounds:
         turns = self._turns.plan(keyed, totals, at=self._now(), everyone=everyone)
         # The machine answers for a drive that the kernel has suspended, without asking it.
         asked = {key: found for key, found in keyed.items() if turns[key].ask or turns[key] is Why.ASLEEP}
-        return tuple(asked.values()), {self._here[key] for key in keyed.keys() - asked if key in self._here}
+        left_out = {self._here[key]: turns[key] for key in keyed.keys() - asked if key in self._here}
+        self.left_out = left_out
+        return tuple(asked.values()), set(left_out)
 
     def _new_troubles(self, troubles: tuple[str, ...]) -> tuple[Entry, ...]:
         """Troubles of the machine as a whole, said when they begin and when they are over."""

@@ -145,7 +145,8 @@ class Watch:
         self._look_for_requests()
         look = self._traffic.look(dict(self._rounds.blocks))
         # First of all what needs no disk: the one that hangs may be the one that the history lies on.
-        self._live.write(look.spans, now(), self._troubles())
+        left_out = {number: why.told for number, why in self._rounds.left_out.items() if why.told is not None}
+        self._live.write(look.spans, now(), self._troubles(), left_out)
         self._gathered += look.spans
         if look.entries:
             with self._lock:

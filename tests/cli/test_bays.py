@@ -1,5 +1,8 @@
+from dataclasses import replace
+
 import pytest
 
+from diskwatch.cli.answers import drive_answer
 from diskwatch.cli.bays import listed, worst
 from diskwatch.records import Bays, Call, CallWord, DriveLine, LastPass, Mount, Outcome, Place
 from tests.cli.run import run, settings_for
@@ -109,3 +112,12 @@ def test_the_list_fits_its_width_and_names_what_lives_there(width):
     assert "copy" in told
     assert "/srv/photos" in " ".join(told.split())
     assert "4 minutes ago" in " ".join(told.split())
+
+
+def test_why_a_drive_was_left_out_stands_behind_its_last_pass():
+    last = LastPass(at=NOON - 7200, outcome=Outcome.READ, explanation=None)
+    silent = replace(line(), last_pass=last, left_out="It is asked again later.")
+    told = listed(Bays(at=NOON, watcher=7, drives=(silent,)), 200)
+    assert "Last pass 2 hours ago: read. It is asked again later." in told
+    assert drive_answer(silent)["left_out"] == "It is asked again later."
+    assert drive_answer(line())["left_out"] is None

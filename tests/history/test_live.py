@@ -202,3 +202,17 @@ def test_figures_in_a_strangers_folder_or_of_a_stranger_are_left_alone_and_none_
     assert LiveWriter(state).write(SPANS, NOON)
     assert [path.name for path in memory.iterdir()] == ["live-0123456789abcdef.json"]
     assert (state / live_name(state)).exists()
+
+
+def test_what_a_round_left_out_is_shared_and_a_watch_that_tells_nothing_of_it_is_understood_too(state, memory):
+    writer = LiveWriter(state)
+    writer.write(SPANS, NOON, left_out={7: "It is asked less often."})
+    assert read_live(state, NOON).left_out == {7: "It is asked less often."}
+    path = memory / live_name(state)
+    told = json.loads(path.read_text())
+    for value, spans in (({}, SPANS), ([], ()), (None, ())):
+        path.write_text(json.dumps({**told, "left_out": value}))
+        assert read_live(state, NOON) == Live(spans=spans)
+    del told["left_out"]
+    path.write_text(json.dumps(told))
+    assert read_live(state, NOON) == Live(spans=SPANS)

@@ -68,14 +68,15 @@ def test_traffic_of_now_is_shown_while_its_watch_lives(folder):
     with History.open(folder) as history:
         history.admit(a_drive(), a_place(), NOON)
         live = LiveWriter(folder)
-        live.write([a_span(1), a_span(2)], NOON)
+        live.write([a_span(1), a_span(2)], NOON, left_out={1: "It is asked less often."})
         with Past.open(folder) as past:
             bays = past.bays(NOON + 5)
             assert bays.watcher == os.getpid()
-            assert bays.drives[0].traffic == a_span(1)
+            assert (bays.drives[0].traffic, bays.drives[0].left_out) == (a_span(1), "It is asked less often.")
             assert past.bays(NOON + 3600).drives[0].traffic is None
     with Past.open(folder) as past:
-        assert past.bays(NOON + 5).drives[0].traffic is None
+        later = past.bays(NOON + 5).drives[0]
+        assert (later.traffic, later.left_out) == (None, None)
     live.close()
 
 

@@ -141,3 +141,10 @@ def test_whatever_its_own_timer_a_drive_that_does_nothing_falls_asleep(timer: in
             assert asked is not None
             asked = left_out(asked)
     raise AssertionError
+
+
+def test_whoever_is_left_out_without_a_pass_has_a_sentence_that_says_why_and_nobody_else():
+    assert {why for why in Why if why.told is not None} == {Why.HUNG, Why.SILENT, Why.IDLE}
+    for why in Why:
+        assert why.told is None or (why.told.startswith("It is ") and why.told.endswith("."))
+        assert why.told is None or not why.ask

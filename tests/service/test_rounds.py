@@ -6,6 +6,7 @@ import pytest
 from diskwatch.history.reader import Past
 from diskwatch.records import CallWord, Identity, Kind, Outcome, Place
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.pace import Why
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.turns import Turns
 from tests.samples import DAY, HDD, NOON, NVME, missed, read, with_serial
@@ -245,7 +246,9 @@ def test_a_drive_that_is_left_out_of_a_round_gets_no_pass_and_is_not_gone(tmp_pa
     passes = [[one.known.drive.identity.serial for one in running.run()] for _ in range(3)]
     assert sorted(passes[0]) == ["INV0001", "INV0003"]
     assert passes[1:] == [["INV0003"], ["INV0003"]]
+    assert list(running.left_out.values()) == [Why.IDLE]
     assert sorted(one.known.drive.identity.serial for one in running.run(everyone=True)) == sorted(passes[0])
+    assert running.left_out == {}
     assert {kind for kind, *_ in book(tmp_path)} == {"first-seen"}
 
 
