@@ -11,8 +11,12 @@ from dataclasses import dataclass
 from typing import Any
 
 from diskwatch.history import packing, rows
+from diskwatch.history.counting import counted_before, set_counted
 from diskwatch.history.exchange import Line
+from diskwatch.history.fields import count, data, measure, text, whole, words
+from diskwatch.history.moments import Dated, turn_at
 from diskwatch.history.round import sentence_number
+from diskwatch.history.settling import Made, settle_calls, settle_counts, settle_last_pass, settle_signals
 from diskwatch.records import (
     Call,
     Direction,
@@ -52,20 +56,20 @@ def described(line: Line) -> Described:
     of = line.fields
     try:
         identity = Identity(
-            wwn=_words(of["wwn"]),
-            model=_words(of["model"]),
-            serial=_words(of["serial"]),
-            path=_text(of["path"]),
+            wwn=words(of["wwn"]),
+            model=words(of["model"]),
+            serial=words(of["serial"]),
+            path=text(of["path"]),
         )
         return Described(
             drive=Drive(
                 identity=identity,
                 kind=Kind(of["kind"]),
-                firmware=_words(of["firmware"]),
-                capacity_bytes=_count(of["capacity_bytes"]),
-                rotation_rpm=_count(of["rotation_rpm"]),
+                firmware=words(of["firmware"]),
+                capacity_bytes=count(of["capacity_bytes"]),
+                rotation_rpm=count(of["rotation_rpm"]),
             ),
-            place=Place(device=_text(of["device"]), bay=_words(of["bay"])),
+            place=Place(device=text(of["device"]), bay=words(of["bay"])),
             first_seen=line.at,
         )
     except KeyError as error:
@@ -80,13 +84,13 @@ class Arrived:
         wrong: what is wrong with rows that were left out.
         new_from: time of the first pass that was not known here; None where all were.
         own_from: time of the first pass that only this history had; None where there was none.
-        states: the file's dated states of the analyser as ``(time of the last pass, state)``, oldest first.
+        states: the file's dated states of the analyser, oldest first.
     """
 
     wrong: tuple[str, ...]
     new_from: int | None
     own_from: int | None
-    states: tuple[tuple[int, str], ...]
+    states: tuple[Dated, ...]
 
 
 def take_in(connection: sqlite3.Connection, drive: int, lines: Iterable[Line]) -> Arrived:
@@ -114,45 +118,10 @@ def take_in(connection: sqlite3.Connection, drive: int, lines: Iterable[Line]) -
     arrival.settle()
     return Arrived(
         wrong=tuple(wrong),
-        new_from=min(arrival.arrived - arrival.before, default=None),
-        own_from=min(arrival.before - arrival.arrived, default=None),
+        new_from=min((at for at, _ in arrival.arrived - arrival.before), default=None),
+        own_from=min((at for at, _ in arrival.before - arrival.arrived), default=None),
         states=tuple(sorted(arrival.states)),
     )
-
-
-def _words(thing: Any) -> str | None:
-    return None if thing is None else _text(thing)
-
-
-def _text(thing: Any) -> str:
-    if not isinstance(thing, str):
-        raise ValueError(f"no text: {thing!r}")  # noqa: TRY004  # the file is wrong, not our caller
-    return rows.text(thing)
-
-
-def _count(thing: Any) -> int | None:
-    if thing is not None and (isinstance(thing, bool) or not isinstance(thing, int)):
-        raise ValueError(f"no whole number: {thing!r}")  # likewise
-    return thing
-
-
-def _whole(thing: Any) -> int:
-    found = _count(thing)
-    if found is None:
-        raise ValueError("a number is missing")
-    return found
-
-
-def _data(thing: Any) -> dict[str, object]:
-    if not isinstance(thing, dict):
-        raise ValueError("its data are no object")  # noqa: TRY004  # likewise
-    return thing
-
-
-def _measure(thing: Any) -> float | None:
-    if thing is None or (isinstance(thing, int | float) and not isinstance(thing, bool)):
-        return None if thing is None else float(thing)
-    raise ValueError(f"no number: {thing!r}")
 
 
 class _Arrival:
@@ -162,13 +131,14 @@ class _Arrival:
         self._db = connection
         self._drive = drive
         self._calls: list[Call] = []
-        self._counted: set[int] = set()
-        self._mark = self._own_mark = self._thinned()
-        self.before = {
-            at for (at,) in connection.execute("SELECT at FROM pass WHERE drive = ?", (drive,)).fetchall()
-        }
-        self.arrived: set[int] = set()
-        self.states: list[tuple[int, str]] = []
+        self._counted: set[Made] = set()
+        self._mark = self._own_mark = counted_before(connection, drive)
+        self.before: set[Made] = set(
+            connection.execute("SELECT at, nth FROM pass WHERE drive = ?", (drive,)).fetchall()
+        )
+        (self._own_turn,) = connection.execute("SELECT turn FROM drive WHERE number = ?", (drive,)).fetchone()
+        self.arrived: set[Made] = set()
+        self.states: list[Dated] = []
         self.takes: dict[str, Callable[[int, Mapping[str, Any]], object]] = {
             "owner": self._owner,
             "place": self._place,
@@ -185,12 +155,6 @@ class _Arrival:
             "state": self._state,
         }
 
-    def _thinned(self) -> int:
-        found = self._db.execute(
-            "SELECT before FROM thinned WHERE what = 'pass' AND number = ?", (self._drive,)
-        ).fetchone()
-        return -(2**63) if found is None else int(found[0])
-
     def _insert(
         self, table: str, columns: Sequence[str], cells: Sequence[rows.Cell], *, drive: bool = True
     ) -> int:
@@ -204,20 +168,20 @@ class _Arrival:
         self._db.execute(
             "INSERT INTO owner_fact (drive, fact, value, at) VALUES (?, ?, ?, ?) ON CONFLICT (drive, fact)"
             " DO UPDATE SET value = excluded.value, at = excluded.at WHERE excluded.at > at",
-            (self._drive, _text(of["fact"]), _text(of["value"]), at),
+            (self._drive, text(of["fact"]), text(of["value"]), at),
         )
 
     def _place(self, at: int, of: Mapping[str, Any]) -> None:
-        self._insert("plugged", ("since", "device", "bay"), (at, _text(of["device"]), _words(of["bay"])))
+        self._insert("plugged", ("since", "device", "bay"), (at, text(of["device"]), words(of["bay"])))
 
     def _passes(self, at: int, of: Mapping[str, Any]) -> None:
-        outcome, last = Outcome(of["outcome"]).value, _whole(of["last"])
+        outcome, last = Outcome(of["outcome"]).value, whole(of["last"])
         # The same drive's passes of the same day were made by one machine: both tell of the same ones.
         self._db.execute(
             "INSERT INTO pass_day (drive, day, outcome, passes, first, last) VALUES (?, ?, ?, ?, ?, ?)"
             " ON CONFLICT (drive, day, outcome) DO UPDATE SET passes = max(passes, excluded.passes),"
             " first = min(first, excluded.first), last = max(last, excluded.last)",
-            (self._drive, day_number(at), outcome, _whole(of["passes"]), at, last),
+            (self._drive, day_number(at), outcome, whole(of["passes"]), at, last),
         )
         self._mark = max(self._mark, last + 1)
 
@@ -225,19 +189,33 @@ class _Arrival:
         told = Pass(
             at=at,
             outcome=Outcome(of["outcome"]),
-            exit_bits=_count(of["exit_bits"]),
-            took_ms=_whole(of["took_ms"]),
-            explanation=_words(of["explanation"]),
+            exit_bits=count(of["exit_bits"]),
+            took_ms=whole(of["took_ms"]),
+            explanation=words(of["explanation"]),
         )
         explanation = sentence_number(self._db, told.explanation)
-        # Not told where it was written before passes of one second were kept apart.
-        nth = _whole(of.get("nth", 0))
-        columns = ("at", "nth", "outcome", "exit_bits", "took_ms", "explanation")
-        cells = (at, nth, told.outcome.value, told.exit_bits, told.took_ms, explanation)
+        nth = _nth(of)
+        columns = ("at", "nth", "turn", "outcome", "exit_bits", "took_ms", "explanation")
+        cells = (
+            at,
+            nth,
+            self._turn(at, of),
+            told.outcome.value,
+            told.exit_bits,
+            told.took_ms,
+            explanation,
+        )
         self._insert("pass", columns, cells)
-        self.arrived.add(at)
+        self.arrived.add((at, nth))
         if of.get("counted"):
-            self._counted.add(at)
+            self._counted.add((at, nth))
+
+    def _turn(self, at: int, of: Mapping[str, Any]) -> int:
+        """Its turn, as the file tells it; where there are own passes, the one that these had then."""
+        told = whole(of.get("turn", 0))
+        if not self.before:
+            return told
+        return turn_at(self._db, self._drive, at) if self._own_turn else 0
 
     def _series(self, signal: str, about: tuple[str, str, str] | None) -> int:
         if about is None:
@@ -272,21 +250,25 @@ class _Arrival:
     def _value(self, at: int, of: Mapping[str, Any]) -> None:
         found = of["value"]
         if not isinstance(found, str):
-            found = _count(found)
-        about = (_text(of["unit"]), SignalKind(of["kind"]).value, _text(of["source"]))
-        series = self._series(_text(of["signal"]), about)
-        there = self._db.execute("SELECT 1 FROM fresh WHERE at = ? AND series = ?", (at, series)).fetchone()
+            found = count(found)
+        about = (text(of["unit"]), SignalKind(of["kind"]).value, text(of["source"]))
+        series = self._series(text(of["signal"]), about)
+        nth = _nth(of)
+        there = self._db.execute(
+            "SELECT 1 FROM fresh WHERE at = ? AND series = ? AND nth = ?", (at, series, nth)
+        ).fetchone()
         if there is None:
-            cells = (series, at, rows.cell(found), _words(of["reason"]))
-            self._insert("value", ("series", "at", "value", "reason"), cells, drive=False)
+            columns = ("series", "at", "nth", "turn", "value", "reason")
+            cells = (series, at, nth, self._turn(at, of), rows.cell(found), words(of["reason"]))
+            self._insert("value", columns, cells, drive=False)
 
     def _beside(self, at: int, of: Mapping[str, Any]) -> None:
         packed = json.dumps(of["reading"], separators=(",", ":")).encode()
         packing.beside(packed)  # refuses what is no reading
-        self._insert("beside", ("at", "packed"), (at, packed))
+        self._insert("beside", ("at", "nth", "turn", "packed"), (at, _nth(of), self._turn(at, of), packed))
 
     def _evidence(self, at: int, of: Mapping[str, Any]) -> None:
-        series = self._series(_text(of["signal"]), None)
+        series = self._series(text(of["signal"]), None)
         self._insert(
             "evidence",
             ("series", "day", "evidence"),
@@ -295,28 +277,28 @@ class _Arrival:
         )
 
     def _load(self, at: int, of: Mapping[str, Any]) -> None:
-        histogram = {_whole(bin_): _whole(count) for bin_, count in of["histogram"]}
+        histogram = {whole(bin_): whole(count) for bin_, count in of["histogram"]}
         self._insert(
             "io_day",
             ("day", "load_class", "direction", "rollups", "operations", "histogram"),
             (
                 day_number(at),
-                _whole(of["load_class"]),
+                whole(of["load_class"]),
                 int(Direction(of["direction"])),
-                _whole(of["rollups"]),
-                _whole(of["operations"]),
+                whole(of["rollups"]),
+                whole(of["operations"]),
                 packing.histogram_packed(histogram),
             ),
         )
 
     def _finding(self, at: int, of: Mapping[str, Any]) -> None:
-        signals, data = [_text(one) for one in of["signals"]], _data(of["data"])
+        signals = [text(one) for one in of["signals"]]
         row = (
-            _text(of["name"]), of["kind"], json.dumps(signals), at, of["calls"], of["cause"],
-            _measure(of["evidence"]), _text(of["sentence"]), json.dumps(data),
+            text(of["name"]), of["kind"], json.dumps(signals), at, of["calls"], of["cause"],
+            measure(of["evidence"]), text(of["sentence"]), json.dumps(data(of["data"])),
         )  # fmt: skip  # one row, as its columns stand
         cells = rows.finding_row(rows.finding(row))
-        closed = _count(of["closed"])
+        closed = count(of["closed"])
         there = self._db.execute(
             "SELECT 1 FROM finding WHERE drive = ? AND name = ?"
             " AND (since = ? OR (closed IS NULL AND ? IS NULL))",
@@ -339,14 +321,14 @@ class _Arrival:
 
     def _call(self, at: int, of: Mapping[str, Any]) -> None:
         row = (
-            at, of["word"], of["cause"], _measure(of["cause_probability"]), of["cause_second"],
-            _text(of["reason"]), _text(of["rule"]), _measure(of["evidence"]),
+            at, of["word"], of["cause"], measure(of["cause_probability"]), of["cause_second"],
+            text(of["reason"]), text(of["rule"]), measure(of["evidence"]),
         )  # fmt: skip  # one row, as its columns stand
         self._calls.append(rows.call(row))
 
     def _event(self, at: int, of: Mapping[str, Any]) -> None:
         entry = Entry(
-            at=at, drive=self._drive, kind=_text(of["kind"]), text=_text(of["text"]), data=_data(of["data"])
+            at=at, drive=self._drive, kind=text(of["kind"]), text=text(of["text"]), data=data(of["data"])
         )
         cells = rows.entry_row(entry)
         there = self._db.execute(
@@ -357,90 +339,32 @@ class _Arrival:
             self._insert("day_book", ("at", "drive", "kind", "text", "data"), cells, drive=False)
 
     def _copy(self, at: int, of: Mapping[str, Any]) -> None:
-        self._insert("kept_state", ("at", "packed"), (at, packing.packed(_text(of["state"]))))
+        packed = packing.packed(text(of["state"]))
+        self._insert("kept_state", ("at", "turn", "packed"), (at, self._turn(at, of), packed))
         self._state(at, of)
 
     def _state(self, at: int, of: Mapping[str, Any]) -> None:
         # Whether it may stand as it is, only he who knows the analyser can tell.
-        self.states.append((at, _text(of["state"])))
+        self.states.append(Dated(turn=self._turn(at, of), at=at, state=text(of["state"])))
 
     def settle(self) -> None:
-        """Put in order what depends on all rows: counts of passes, calls, what is now."""
-        self._settle_counts()
-        self._settle_calls()
-        self._settle_latest()
-        self._db.execute(
-            "UPDATE drive SET (passed_at, outcome, explanation) ="
-            " (SELECT at, outcome, explanation FROM pass WHERE drive = number"
-            " ORDER BY at DESC, nth DESC LIMIT 1)"
-            " WHERE number = ? AND EXISTS (SELECT 1 FROM pass WHERE drive = number)",
-            (self._drive,),
-        )
-
-    def _settle_counts(self) -> None:
-        """Count the passes that fall behind the mark now and that neither side has counted."""
-        if self._mark == self._own_mark:
-            return
-        uncounted = (self.before | self.arrived) - self._counted
-        here = [at for at in uncounted if at < self._mark and not (at in self.before and at < self._own_mark)]
-        self._db.executemany(
-            "INSERT INTO pass_day (drive, day, outcome, passes, first, last)"
-            " SELECT drive, at / 86400, outcome, 1, at, at FROM pass WHERE drive = ? AND at = ?"
-            " ON CONFLICT (drive, day, outcome) DO UPDATE SET passes = passes + 1,"
-            " first = min(first, excluded.first), last = max(last, excluded.last)",
-            [(self._drive, at) for at in here],
-        )
-        self._db.execute(
-            "INSERT OR REPLACE INTO thinned (what, number, before) VALUES ('pass', ?, ?)",
-            (self._drive, self._mark),
-        )
-
-    def _settle_calls(self) -> None:
-        """All calls in order of time: the last one stands."""
-        kept = self._db.execute(
-            "SELECT at, word, cause, cause_probability, cause_second, reason, rule, evidence FROM call"
-            " WHERE drive = ? ORDER BY number",
-            (self._drive,),
-        ).fetchall()
-        here = [rows.call(row) for row in kept]
-        known = {(call.at, call.word) for call in here}
-        arrived = [call for call in self._calls if (call.at, call.word) not in known]
-        if not arrived:
-            return
-        self._db.execute("DELETE FROM call WHERE drive = ?", (self._drive,))
-        columns = ("at", "word", "cause", "cause_probability", "cause_second", "reason", "rule", "evidence")
-        for call in sorted((*here, *arrived), key=lambda call: call.at):
-            self._insert("call", columns, rows.call_row(call))
-
-    def _settle_latest(self) -> None:
-        """What every signal is now, by its newest value; the series that has it is the current one."""
-        newest: dict[str, tuple[int, int]] = {}
-        series = self._db.execute(
-            "SELECT number, signal FROM series WHERE drive = ? AND kind IS NOT NULL", (self._drive,)
-        ).fetchall()
-        for number, signal in series:
-            found = self._db.execute(
-                "SELECT at, value, reason FROM (SELECT at, value, reason FROM value WHERE series = ?1"
-                " UNION ALL SELECT at, value, reason FROM fresh WHERE series = ?1) ORDER BY at DESC LIMIT 1",
-                (number,),
-            ).fetchone()
-            if found is None:
-                continue
-            self._db.execute(
-                "INSERT INTO latest (since, value, reason, series) VALUES (?, ?, ?, ?) ON CONFLICT (series)"
-                " DO UPDATE SET since = excluded.since, value = excluded.value, reason = excluded.reason",
-                (*found, number),
+        """Put in order what depends on all rows."""
+        if self._mark != self._own_mark:
+            uncounted = (self.before | self.arrived) - self._counted
+            settle_counts(
+                self._db,
+                self._drive,
+                [one for one in uncounted if one[0] < self._mark and not self._counted_here(one)],
             )
-            newest[signal] = max(newest.get(signal, (found[0], number)), (found[0], number))
-        self._db.execute(
-            "INSERT INTO latest (series, day, evidence) SELECT series, max(day), evidence FROM evidence"
-            " WHERE series IN (SELECT number FROM series WHERE drive = ?) GROUP BY series ON CONFLICT (series)"
-            " DO UPDATE SET day = excluded.day, evidence = excluded.evidence"
-            " WHERE excluded.day > coalesce(day, -1)",
-            (self._drive,),
-        )
-        for signal, (_, number) in newest.items():
-            self._db.execute(
-                "UPDATE series SET current = 0 WHERE drive = ? AND signal = ?", (self._drive, signal)
-            )
-            self._db.execute("UPDATE series SET current = 1 WHERE number = ?", (number,))
+            set_counted(self._db, self._drive, self._mark)
+        settle_calls(self._db, self._drive, self._calls)
+        settle_signals(self._db, self._drive)
+        settle_last_pass(self._db, self._drive)
+
+    def _counted_here(self, one: Made) -> bool:
+        return one in self.before and one[0] < self._own_mark
+
+
+def _nth(of: Mapping[str, Any]) -> int:
+    # Not told where it was written before passes of one second were kept apart.
+    return whole(of.get("nth", 0))

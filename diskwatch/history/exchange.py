@@ -8,7 +8,7 @@ Both hold the same rows. A row has a ``record`` (what it is), a ``drive`` (which
 | drive | wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm, device, bay; at: first seen |
 | owner | fact, value |
 | place | device, bay |
-| pass | nth (of those of its second, from 0), outcome, exit_bits, took_ms, explanation |
+| pass | outcome, exit_bits, took_ms, explanation |
 | passes | outcome, passes, last: of passes thinned, how many of a day ended so; at: the first |
 | value | signal, value, unit, kind, source, reason: on change |
 | beside | reading: failing attributes, self-tests and limits, on change |
@@ -19,6 +19,9 @@ Both hold the same rows. A row has a ``record`` (what it is), a ``drive`` (which
 | load | class, direction, rollups, operations, histogram: of the day |
 | copy | state: the analyser's, as it was then |
 | state | state: the analyser's, as it is |
+
+Where a row belongs to a pass, ``nth`` tells which of those of its second it was, from 0, and ``turn`` how often
+the clock had been set back before: by turn, time and nth passes stand in the order in which they were made.
 
 In JSON each row is an object, times are RFC 3339, and whole numbers beyond 2^53 are written
 ``{"digits": "..."}``. In CSV the columns are ``record, drive, at, fields``, the last one a JSON object. Traffic

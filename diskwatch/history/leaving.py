@@ -44,11 +44,12 @@ def _value(row: dict[str, Any]) -> dict[str, Any]:
 
 
 def _unpacked(row: dict[str, Any]) -> dict[str, Any]:
-    return {"at": row["at"], "state": packing.unpacked(row["packed"])}
+    return {"at": row["at"], "turn": row["turn"], "state": packing.unpacked(row["packed"])}
 
 
 def _beside(row: dict[str, Any]) -> dict[str, Any]:
-    return {"at": row["at"], "reading": json.loads(row["packed"])}
+    packed = row.pop("packed")
+    return {**row, "reading": json.loads(packed)}
 
 
 def _load(row: dict[str, Any]) -> dict[str, Any]:
@@ -69,16 +70,18 @@ _QUERIES = {
     "owner": "SELECT at, fact, value FROM owner_fact WHERE drive = :drive",
     "place": "SELECT since AS at, device, bay FROM plugged WHERE drive = :drive",
     "passes": "SELECT first AS at, outcome, passes, last FROM pass_day WHERE drive = :drive",
-    "pass": "SELECT at, nth, outcome, exit_bits, took_ms, text AS explanation, at < coalesce((SELECT before"
-    " FROM thinned WHERE what = 'pass' AND number = :drive), at) AS counted FROM pass"
+    "pass": "SELECT at, nth, turn, outcome, exit_bits, took_ms, text AS explanation, at < coalesce("
+    "(SELECT before FROM thinned WHERE what = 'pass' AND number = :drive), at) AS counted FROM pass"
     " LEFT JOIN sentence ON sentence.number = explanation WHERE drive = :drive ORDER BY at, nth",
-    "value": "SELECT at, signal, value, unit, kind, source, reason FROM series"
-    " JOIN (SELECT at, value, reason, series FROM value UNION ALL SELECT at, value, reason, series FROM fresh)"
+    "value": "SELECT at, nth, stated.turn AS turn, signal, value, unit, kind, source, reason FROM series"
+    " JOIN (SELECT at, nth, turn, value, reason, series FROM value"
+    " UNION ALL SELECT at, nth, turn, value, reason, series FROM fresh)"
     " AS stated ON stated.series = series.number"
-    " WHERE drive = :drive AND kind IS NOT NULL ORDER BY series.number, at",
-    "beside": "SELECT at, packed FROM beside WHERE drive = :drive",
+    " WHERE drive = :drive AND kind IS NOT NULL ORDER BY series.number, at, nth",
+    "beside": "SELECT at, nth, turn, packed FROM beside WHERE drive = :drive",
     "evidence": "SELECT day * 86400 AS at, signal, evidence.evidence AS evidence FROM evidence"
-    " JOIN series ON series.number = series WHERE drive = :drive"
+    " JOIN series ON series.number = series WHERE drive = :drive AND day IS NOT"
+    " (SELECT latest.day FROM latest WHERE latest.series = evidence.series)"
     " UNION SELECT day * 86400, signal, latest.evidence FROM latest"
     " JOIN series ON series.number = series WHERE drive = :drive AND latest.evidence IS NOT NULL",
     "load": "SELECT day * 86400 AS at, load_class, direction, rollups, operations, histogram FROM io_day"
@@ -88,8 +91,8 @@ _QUERIES = {
     "call": "SELECT at, word, cause, cause_probability, cause_second, reason, rule, evidence FROM call"
     " WHERE drive = :drive ORDER BY number",
     "event": "SELECT at, kind, text, data FROM day_book WHERE drive = :drive ORDER BY number",
-    "copy": "SELECT at, packed FROM kept_state WHERE drive = :drive ORDER BY at",
-    "state": "SELECT at, packed FROM analyser_state WHERE drive = :drive",
+    "copy": "SELECT at, turn, packed FROM kept_state WHERE drive = :drive ORDER BY at",
+    "state": "SELECT at, turn, packed FROM analyser_state WHERE drive = :drive",
 }
 _FIELDS = {
     "drive": _drive,

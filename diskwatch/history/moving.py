@@ -7,11 +7,11 @@ from dataclasses import dataclass
 from diskwatch.history import packing
 from diskwatch.history.arriving import Arrived, Described, take_in
 from diskwatch.history.exchange import Line
+from diskwatch.history.judgement import write_judgement
+from diskwatch.history.moments import Dated
 from diskwatch.history.readings import passes_with_readings
-from diskwatch.history.round import admit, write_judgement
+from diskwatch.history.round import admit
 from diskwatch.records import DriveRound, KnownDrive, Pass
-
-_Dated = tuple[int, str]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -37,13 +37,13 @@ class Case:
         known: the drive.
         copies: dated states that stood here before, oldest first.
         arrived: what came with the file.
-        passes: the drive's passes behind a time (None: all), oldest first, with their readings.
+        passes: the drive's passes behind a state (None: all) with their turns and readings, in their order.
     """
 
     known: KnownDrive
-    copies: tuple[_Dated, ...]
+    copies: tuple[Dated, ...]
     arrived: Arrived
-    passes: Callable[[int | None], Iterator[Pass]]
+    passes: Callable[[Dated | None], Iterator[tuple[int, Pass]]]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -52,13 +52,13 @@ class Judged:
 
     Attributes:
         part: findings, evidence, call and state; its pass is the last one.
-        since: all dated states behind this time are no longer right; None for none of them.
+        since: all dated states behind this one are no longer right; None for none of them.
         copies: those that take their place.
     """
 
     part: DriveRound
-    since: int | None
-    copies: tuple[_Dated, ...]
+    since: Dated | None
+    copies: tuple[Dated, ...]
 
 
 Judge = Callable[[Case], Judged | None]
@@ -77,7 +77,7 @@ def arrive(connection: sqlite3.Connection, part: Part, judge: Judge) -> Arrived:
     """
     there = part.described
     known = part.known or admit(connection, there.drive, there.place, there.first_seen)
-    copies = _copies(connection, known.number)
+    copies = dated_states(connection, known.number)
     arrived = take_in(connection, known.number, part.lines)
     judged = judge(
         Case(
@@ -90,20 +90,27 @@ def arrive(connection: sqlite3.Connection, part: Part, judge: Judge) -> Arrived:
     if judged is not None:
         if judged.since is not None:
             connection.execute(
-                "DELETE FROM kept_state WHERE drive = ? AND at > ?", (known.number, judged.since)
+                "DELETE FROM kept_state WHERE drive = ? AND (turn, at) > (?, ?)",
+                (known.number, judged.since.turn, judged.since.at),
             )
         connection.executemany(
-            "INSERT OR REPLACE INTO kept_state (drive, at, packed) VALUES (?, ?, ?)",
-            [(known.number, at, packing.packed(state)) for at, state in judged.copies],
+            "INSERT OR REPLACE INTO kept_state (drive, at, packed, turn) VALUES (?, ?, ?, ?)",
+            [(known.number, one.at, packing.packed(one.state), one.turn) for one in judged.copies],
         )
         write_judgement(connection, judged.part, judged.part.pass_.at)
     return arrived
 
 
-def _copies(connection: sqlite3.Connection, drive: int) -> tuple[_Dated, ...]:
+def dated_states(connection: sqlite3.Connection, drive: int) -> tuple[Dated, ...]:
+    """States of the analyser from which a drive's present one can be worked out again, oldest first.
+
+    Raises:
+        sqlite3.Error: the history cannot be read.
+        ValueError: it holds what cannot be right.
+    """
     found = connection.execute(
-        "SELECT at, packed FROM kept_state WHERE drive = ?1 UNION SELECT at, packed FROM analyser_state"
-        " WHERE drive = ?1 ORDER BY at",
+        "SELECT turn, at, packed FROM kept_state WHERE drive = ?1 UNION ALL"
+        " SELECT turn, at, packed FROM analyser_state WHERE drive = ?1 ORDER BY turn, at",
         (drive,),
     ).fetchall()
-    return tuple((at, packing.unpacked(packed)) for at, packed in found)
+    return tuple(Dated(turn=turn, at=at, state=packing.unpacked(packed)) for turn, at, packed in found)

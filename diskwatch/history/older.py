@@ -15,6 +15,11 @@ def _nothing(name: str, columns: str) -> str:
     return f"CREATE TEMP VIEW {name} AS SELECT {nulls} WHERE 0"
 
 
+def _with(name: str, columns: str) -> str:
+    # Where the file lacks an older step too, the view for that one has these columns already.
+    return f"CREATE TEMP VIEW IF NOT EXISTS {name} AS SELECT *, {columns} FROM main.{name}"  # noqa: S608  # our own
+
+
 # As the step itself makes it of the minutes.
 _FIVES = """
     CREATE TEMP VIEW io_five AS
@@ -28,7 +33,7 @@ _FIVES = """
 
 _PASSES = """
     CREATE TEMP VIEW pass AS
-    SELECT drive, at, 0 AS nth, outcome, exit_bits, took_ms, explanation FROM main.pass
+    SELECT drive, at, 0 AS nth, outcome, exit_bits, took_ms, explanation, 0 AS turn FROM main.pass
 """
 
 _VIEWS = {
@@ -36,11 +41,17 @@ _VIEWS = {
         _FIVES,
         _nothing("io_day", "drive day load_class direction rollups operations histogram"),
         _nothing("pass_day", "drive day outcome passes first last"),
-        _nothing("kept_state", "number drive at packed"),
-        _nothing("beside", "drive at packed"),
+        _nothing("kept_state", "number drive at packed turn"),
+        _nothing("beside", "drive at nth packed turn"),
         _nothing("thinned", "what number before"),
     ),
     "0003_every_pass": (_PASSES,),
+    "0004_in_order": (
+        _with("value", "0 AS nth, 0 AS turn"),
+        _with("fresh", "0 AS nth, 0 AS turn"),
+        _with("beside", "0 AS nth, 0 AS turn"),
+        *(_with(name, "0 AS turn") for name in ("drive", "pass", "analyser_state", "kept_state")),
+    ),
 }
 """What stands in for a step that a file may lack; one without a line here must be taken before it is read."""
 

@@ -44,12 +44,14 @@ _HELD = (
     " UNION ALL SELECT max(at) FROM fresh WHERE series = :series AND at <= :since)"
 )
 _VALUES = (
-    "SELECT at, value FROM value WHERE series = :series AND at >= :since"
-    " UNION SELECT at, value FROM fresh WHERE at >= :since AND series = :series ORDER BY at"
+    "SELECT at, nth, value FROM value WHERE series = :series AND at >= :since"
+    " UNION SELECT at, nth, value FROM fresh WHERE at >= :since AND series = :series ORDER BY at, nth"
 )
+# Where the clock was set back, the day that goes on stands in both; the one in latest is the later one.
 _EVIDENCE = (
-    "SELECT day, evidence FROM evidence WHERE series = :series AND day >= :day"
-    " UNION SELECT day, evidence FROM latest WHERE series = :series AND day >= :day AND evidence IS NOT NULL"
+    "SELECT day, evidence, 0 AS goes_on FROM evidence WHERE series = :series AND day >= :day"
+    " UNION ALL SELECT day, evidence, 1 FROM latest"
+    " WHERE series = :series AND day >= :day AND evidence IS NOT NULL ORDER BY goes_on"
 )
 _TRAFFIC = (
     "SELECT drive, at + 60, span_ms, reads, writes, read_bytes, write_bytes, read_ms, write_ms, busy_ms"
@@ -109,7 +111,7 @@ def series(
     found = connection.execute(
         _VALUES, {"series": number[0], "since": first if held is None else held}
     ).fetchall()
-    return tuple((at, rows.value(kept)) for at, kept in found)
+    return tuple((at, rows.value(kept)) for at, _, kept in found)
 
 
 def evidence(
@@ -119,7 +121,8 @@ def evidence(
     days: dict[int, float] = {}
     for (number,) in connection.execute(_SERIES_EVER, (drive, rows.text(signal))).fetchall():
         first = _EVER if since is None else day_number(since)
-        days.update(connection.execute(_EVIDENCE, {"series": number, "day": first}))
+        found = connection.execute(_EVIDENCE, {"series": number, "day": first}).fetchall()
+        days.update({day: worth for day, worth, _ in found})
     return tuple(sorted(days.items()))
 
 

@@ -9,6 +9,7 @@ from collections.abc import Callable, Iterable
 from typing import Literal
 
 from diskwatch.history import rows
+from diskwatch.history.counting import NOTHING_YET, count, counted_before, set_counted
 from diskwatch.history.keeping import DETAIL_COPIES, DETAIL_DAYS, MINUTE_DAYS, Daily, daily
 from diskwatch.history.traffic import FIVE, MINUTE, stored_days
 from diskwatch.units import DAY, day_number
@@ -16,8 +17,7 @@ from diskwatch.units import DAY, day_number
 BITE = 200
 """Rows that a bite looks at, at most: under 10 ms of work on a slow core, and a few pages to write."""
 
-_EVER = -(2**63)
-_Dated = tuple[int, rows.Cell]
+_Dated = tuple[int, int, rows.Cell]
 
 
 def thin(connection: sqlite3.Connection, now: int) -> bool:
@@ -67,8 +67,8 @@ def _traffic_horizon(
     connection: sqlite3.Connection, table: Literal["io_minute", "io_five"], days: int, now: int
 ) -> int | None:
     """Before when traffic goes: so many days with traffic stay, and by the clock; None where all stays."""
-    for count, day in enumerate(stored_days(connection, table), start=1):
-        if count > days:
+    for place, day in enumerate(stored_days(connection, table), start=1):
+        if place > days:
             return min((day + 1) * DAY, (day_number(now) - days) * DAY)
     return None
 
@@ -126,7 +126,7 @@ def _mark(connection: sqlite3.Connection, what: str, number: int) -> int:
     found = connection.execute(
         "SELECT before FROM thinned WHERE what = ? AND number = ?", (what, number)
     ).fetchone()
-    return _EVER if found is None else int(found[0])
+    return NOTHING_YET if found is None else int(found[0])
 
 
 def _set_mark(connection: sqlite3.Connection, what: str, number: int, before: int) -> None:
@@ -137,34 +137,42 @@ def _set_mark(connection: sqlite3.Connection, what: str, number: int, before: in
 
 def _values(connection: sqlite3.Connection, series: int, which: Daily, before: int) -> bool:
     """One value a day of a series."""
-    # The day in which the copy stands is left whole: what came after the copy is still needed.
-    before = before // DAY * DAY
     mark = _mark(connection, "value", series)
-    found = connection.execute(
-        "SELECT at, value FROM value WHERE series = ? AND at >= ? AND at < ? ORDER BY at LIMIT ?",
-        (series, mark, before, BITE),
-    ).fetchall()
-    if not found:
-        return False
-    surplus = [at for day in _by_day(found) for at in _surplus(day, which)]
-    connection.executemany("DELETE FROM value WHERE series = ? AND at = ?", [(series, at) for at in surplus])
-    _set_mark(connection, "value", series, _reached(found, before))
-    return True
+    found, reached = _bite(connection, _VALUES, (series, mark, before))
+    surplus = [(series, *row[:2]) for day in _by_day(found) for row in _surplus(day, which)]
+    connection.executemany("DELETE FROM value WHERE series = ? AND at = ? AND nth = ?", surplus)
+    if found:
+        _set_mark(connection, "value", series, reached)
+    return bool(found)
 
 
 def _beside(connection: sqlite3.Connection, drive: int, before: int) -> bool:
     """One row a day of what stands beside the values."""
+    mark = _mark(connection, "beside", drive)
+    found, reached = _bite(connection, _BESIDE, (drive, mark, before))
+    surplus = [(drive, *row[:2]) for day in _by_day(found) for row in _surplus(day, Daily.LAST)]
+    connection.executemany("DELETE FROM beside WHERE drive = ? AND at = ? AND nth = ?", surplus)
+    if found:
+        _set_mark(connection, "beside", drive, reached)
+    return bool(found)
+
+
+_VALUES = "SELECT at, nth, value FROM value WHERE series = ? AND at >= ? AND at < ? ORDER BY at, nth LIMIT ?"
+_BESIDE = "SELECT at, nth, NULL FROM beside WHERE drive = ? AND at >= ? AND at < ? ORDER BY at, nth LIMIT ?"
+
+
+def _bite(connection: sqlite3.Connection, asked: str, place: tuple[int, int, int]) -> tuple[list[_Dated], int]:
+    """Rows of a bite, and where the next one begins: behind all, or with a day that may have been cut in two.
+
+    Of a day at most two rows stay. So three are the fewest of which one goes, or which reach into another day;
+    with fewer, what one bite left for the next could be the same for ever.
+    """
+    number, mark, before = place
+    # The day in which the copy stands is left whole: what came after the copy is still needed.
     before = before // DAY * DAY
-    found = connection.execute(
-        "SELECT at, NULL FROM beside WHERE drive = ? AND at >= ? AND at < ? ORDER BY at LIMIT ?",
-        (drive, _mark(connection, "beside", drive), before, BITE),
-    ).fetchall()
-    if not found:
-        return False
-    surplus = [at for day in _by_day(found) for at in _surplus(day, Daily.LAST)]
-    connection.executemany("DELETE FROM beside WHERE drive = ? AND at = ?", [(drive, at) for at in surplus])
-    _set_mark(connection, "beside", drive, _reached(found, before))
-    return True
+    size = max(BITE, 3)
+    found = connection.execute(asked, (number, mark, before, size)).fetchall()
+    return found, before if len(found) < size else found[-1][0] // DAY * DAY
 
 
 def _by_day(found: Iterable[_Dated]) -> Iterable[list[_Dated]]:
@@ -174,28 +182,18 @@ def _by_day(found: Iterable[_Dated]) -> Iterable[list[_Dated]]:
     return days.values()
 
 
-def _surplus(day: list[_Dated], which: Daily) -> list[int]:
-    """Times of the rows of one day that do not stand for it."""
-    kept = {day[-1][0]}
-    numbers = [(value, at) for at, value in day if isinstance(value, int)]
+def _surplus(day: list[_Dated], which: Daily) -> list[_Dated]:
+    """The rows of one day that do not stand for it."""
+    kept = {day[-1][:2]}
+    numbers = [(value, at, nth) for at, nth, value in day if isinstance(value, int)]
     if which is Daily.HIGHEST and numbers:
-        kept.add(max(numbers)[1])
-    return [at for at, _ in day if at not in kept]
-
-
-def _reached(found: list[_Dated], before: int) -> int:
-    """How far a bite came: all the way, or to the beginning of the day that it may have cut in two."""
-    if len(found) < BITE:
-        return before
-    last = found[-1][0]
-    begun = last // DAY * DAY
-    # One day of more rows than a bite holds shrinks by bites, and its last row competes with what follows.
-    return begun if begun > found[0][0] else last
+        kept.add(max(numbers)[1:])
+    return [row for row in day if row[:2] not in kept]
 
 
 def _passes(connection: sqlite3.Connection, drive: int, before: int) -> bool:
     """Passes of one outcome in a row become the first of them, and a count a day."""
-    mark = _mark(connection, "pass", drive)
+    mark = counted_before(connection, drive)
     found = connection.execute(
         "SELECT at, nth, outcome FROM pass WHERE drive = ? AND at >= ? AND at < ? ORDER BY at, nth LIMIT ?",
         (drive, mark, before, BITE),
@@ -216,12 +214,7 @@ def _passes(connection: sqlite3.Connection, drive: int, before: int) -> bool:
         if now == outcome:
             surplus.append((drive, at, nth))
         outcome = now
-    connection.executemany(
-        "INSERT INTO pass_day (drive, day, outcome, passes, first, last) VALUES (?, ?, ?, 1, ?, ?)"
-        " ON CONFLICT (drive, day, outcome) DO UPDATE SET passes = passes + 1,"
-        " first = min(first, excluded.first), last = max(last, excluded.last)",
-        [(drive, day_number(at), how, at, at) for at, _, how in found],
-    )
+    count(connection, drive, [(at, str(how)) for at, _, how in found])
     connection.executemany("DELETE FROM pass WHERE drive = ? AND at = ? AND nth = ?", surplus)
-    _set_mark(connection, "pass", drive, found[-1][0] + 1)
+    set_counted(connection, drive, found[-1][0] + 1)
     return True

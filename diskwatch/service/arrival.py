@@ -8,8 +8,9 @@ from diskwatch import analyser
 from diskwatch.errors import HistoryTooNew
 from diskwatch.history.arriving import Described, described
 from diskwatch.history.exchange import Line
+from diskwatch.history.judgement import WEEK
+from diskwatch.history.moments import Dated
 from diskwatch.history.moving import Case, Judged, Part
-from diskwatch.history.round import WEEK
 from diskwatch.history.writer import History
 from diskwatch.machine import identity
 from diskwatch.records import DriveRound, Entry, Outcome, Pass
@@ -93,29 +94,29 @@ def judged(case: Case) -> Judged | None:
     if case.arrived.new_from is None:
         return None
     states = [
-        *(one for one in case.copies if one[0] < case.arrived.new_from),
+        *(one for one in case.copies if one.at < case.arrived.new_from),
         *(
             one
             for one in case.arrived.states
-            if case.arrived.own_from is None or one[0] < case.arrived.own_from
+            if case.arrived.own_from is None or one.at < case.arrived.own_from
         ),
     ]
-    for at, text in sorted(states, reverse=True):
+    for dated in sorted(states, reverse=True):
         # One that a newer version wrote, or that is no state at all, is no beginning.
         with suppress(ValueError, HistoryTooNew):
-            return _from(case, at, analyser.load(text))
+            return _from(case, dated, analyser.load(dated.state))
     return _from(case, None, analyser.start())
 
 
-def _from(case: Case, at: int | None, state: analyser.DriveState) -> Judged | None:
-    copies: list[tuple[int, str]] = []
+def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged | None:
+    copies: list[Dated] = []
     outcome = state.outcome
-    last = at
-    for told in case.passes(at):
+    turn, last = (0, None) if since is None else (since.turn, since.at)
+    for now, told in case.passes(since):
         if last is not None and last // WEEK != told.at // WEEK:
-            copies.append((last, analyser.dump(state)))
+            copies.append(Dated(turn=turn, at=last, state=analyser.dump(state)))
         state = analyser.advance(state, replace(told, drive=case.known.drive)).state
-        last, outcome = told.at, told.outcome
+        turn, last, outcome = now, told.at, told.outcome
     if last is None:
         return None
     step = analyser.Step(state=state, happened=())
@@ -127,4 +128,4 @@ def _from(case: Case, at: int | None, state: analyser.DriveState) -> Judged | No
         evidence=step.evidence,
         call=step.call,
     )
-    return Judged(part=part, since=at, copies=tuple(copies))
+    return Judged(part=part, since=since, copies=tuple(copies))

@@ -8,6 +8,7 @@ import pytest
 
 from diskwatch import places
 from diskwatch.history.writer import History
+from tests.history.examples import NOON, a_drive, a_place
 
 
 @pytest.fixture(autouse=True)
@@ -30,3 +31,13 @@ def folder(tmp_path):
 def history():
     with History.in_memory() as found:
         yield found
+
+
+@pytest.fixture
+def known(history):
+    return history.admit(a_drive(), a_place(), NOON)
+
+
+@pytest.fixture
+def rows(history):
+    return lambda sql: history._db.conn.execute(sql).fetchall()

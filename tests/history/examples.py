@@ -5,6 +5,7 @@ from typing import Any
 
 from hypothesis import strategies as st
 
+from diskwatch.history.writer import History
 from diskwatch.records import (
     Attribute,
     Call,
@@ -238,3 +239,8 @@ def full_round(known: KnownDrive, at: int = NOON, number: int = 1) -> Round:
     )
     entry = Entry(at=at, drive=known.number, kind="rise", text=f"entry {number}", data={"n": number})
     return a_round(part, at=at, entries=(entry,))
+
+
+def keep(history: History, known: KnownDrive, at: int, *values: Value, **part: Any) -> None:
+    """Record one pass that read these values."""
+    history.record(a_round(a_part(known, a_pass(at, *values), **part), at=at))

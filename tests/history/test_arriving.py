@@ -6,6 +6,7 @@ from hypothesis import given, strategies as st
 from diskwatch.history.arriving import described, take_in
 from diskwatch.history.exchange import Line
 from diskwatch.history.leaving import lines_of
+from diskwatch.history.moments import Dated
 from diskwatch.history.writer import History
 from tests.history.examples import NOON, a_drive, a_part, a_pass, a_place, a_round, full_round
 
@@ -42,7 +43,7 @@ def test_the_first_passes_of_either_side_are_told(history):
         again = take_in(connection, 1, LINES[1:])
     assert (arrived.wrong, arrived.new_from, arrived.own_from) == ((), NOON, None)
     assert (again.wrong, again.new_from, again.own_from) == ((), None, None)
-    assert arrived.states == ((NOON + 120, "state 2"),)
+    assert arrived.states == (Dated(turn=0, at=NOON + 120, state="state 2"),)
 
 
 def test_passes_of_one_second_arrive_all_and_none_of_them_twice(history):

@@ -16,7 +16,7 @@ from pathlib import Path
 import pytest
 
 from diskwatch.history.reader import Past
-from diskwatch.history.round import file_past_days
+from diskwatch.history.stating import file_past_days
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
 from tests.history.examples import DAY

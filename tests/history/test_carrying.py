@@ -33,14 +33,14 @@ def test_all_rows_come_over_once_however_often_they_are_carried(old, new):
 
 
 def test_what_the_new_file_has_already_stays(old, new):
-    new.execute("INSERT INTO analyser_state VALUES (1, 0, x'00')")
+    new.execute("INSERT INTO analyser_state (drive, at, packed) VALUES (1, 0, x'00')")
     carry(old, new)
     assert new.execute("SELECT at FROM analyser_state").fetchone() == (0,)
 
 
 def test_a_pass_whose_explanation_is_lost_stays(old, new):
     old.execute("INSERT INTO sentence VALUES (9, 'It sleeps.')")
-    old.execute("INSERT INTO pass VALUES (1, 5, 0, 'asleep', 2, 0, 9)")
+    old.execute("INSERT INTO pass VALUES (1, 5, 0, 'asleep', 2, 0, 9, 0)")
     carry(old, new)
     new.execute("DELETE FROM sentence")
     assert let_go_of_orphans(new) == 0

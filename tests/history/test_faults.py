@@ -22,7 +22,7 @@ from diskwatch.history.keeping import DETAIL_COPIES
 from diskwatch.history.live import LiveWriter
 from diskwatch.history.lock import WatchLock, watcher
 from diskwatch.history.reader import Past
-from diskwatch.history.round import file_past_days
+from diskwatch.history.stating import file_past_days
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
 from diskwatch.records import ClassDay, Direction, DriveRound, Round

@@ -1,9 +1,12 @@
 from diskwatch.history.arriving import described
 from diskwatch.history.leaving import lines_of
+from diskwatch.history.moments import Dated
 from diskwatch.history.moving import Judged, Part
 from diskwatch.history.packing import packed
 from diskwatch.history.writer import History
 from tests.history.examples import NOON, a_call, a_drive, a_part, a_pass, a_place, full_round
+
+BEGUN = Dated(turn=0, at=NOON, state="begun")
 
 
 def _part():
@@ -20,11 +23,11 @@ def test_who_judges_sees_the_passes_and_the_states_of_both_sides(history):
 
     def judge(case):
         cases.append(
-            (case.known.number, case.copies, case.arrived.states, [one.at for one in case.passes(NOON)])
+            (case.known.number, case.copies, case.arrived.states, [one.at for _, one in case.passes(BEGUN)])
         )
 
     history.arrive([_part()], judge)
-    assert cases == [(1, (), ((NOON + 120, "state 2"),), [NOON + 60, NOON + 120])]
+    assert cases == [(1, (), (Dated(turn=0, at=NOON + 120, state="state 2"),), [NOON + 60, NOON + 120])]
 
 
 def test_what_is_judged_is_kept_and_copies_that_are_no_longer_right_give_way(history):
@@ -38,7 +41,7 @@ def test_what_is_judged_is_kept_and_copies_that_are_no_longer_right_give_way(his
     part = a_part(known, a_pass(NOON + 120), state="anew", call=call)
     history.arrive(
         [Part(known=known, described=_part().described, lines=())],
-        lambda _: Judged(part=part, since=NOON, copies=((NOON + 5, "copy"),)),
+        lambda _: Judged(part=part, since=BEGUN, copies=(Dated(turn=0, at=NOON + 5, state="copy"),)),
     )
     assert history.copies(1) == ((NOON + 5, "copy"),)
     assert history.states() == {1: "anew"}

@@ -6,7 +6,8 @@ import pytest
 from hypothesis import given, settings, strategies as st
 
 from diskwatch.history import bays, questions
-from diskwatch.history.round import file_past_days
+from diskwatch.history.leaving import lines_of
+from diskwatch.history.stating import file_past_days
 from diskwatch.history.writer import History
 from diskwatch.records import Entry, KnownDrive, Outcome, Pass, Value
 from tests.history.examples import (
@@ -215,3 +216,18 @@ def test_what_was_last_read_beside_the_values_is_there_whole(history, known, con
     assert found is not None
     assert found.attributes == reading.attributes
     assert questions.state(connection, known.number) == "state 5"
+
+
+def test_evidence_of_a_day_that_was_lived_twice_is_told_once_as_it_was_last(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    for at, days in ((NOON, 5.0), (NOON + DAY, 9.0), (NOON + 60, 2.0)):
+        part = a_part(known, a_pass(at, a_value()), evidence={"pending-sectors": days})
+        history.record(a_round(part, at=at))
+    today = NOON // DAY
+    assert questions.evidence(history._db.conn, 1, "pending-sectors", None) == ((today, 2.0), (today + 1, 9.0))
+    told = [
+        (one.at // DAY, one.fields["evidence"])
+        for one in lines_of(history._db.conn, 1)
+        if one.record == "evidence"
+    ]
+    assert sorted(told) == [(today, 2.0), (today + 1, 9.0)]

@@ -105,14 +105,15 @@ def test_a_history_of_the_first_version_comes_over_whole(old):
         assert reading.warning_celsius == 60
 
 
-def test_whichever_statement_of_a_step_fails_the_old_file_stays_as_it_was(old, monkeypatch):
+@pytest.mark.parametrize("step", versions.MIGRATIONS[1:])
+def test_whichever_statement_of_a_step_fails_the_old_file_stays_as_it_was(old, monkeypatch, step):
     path = old / HISTORY
     with closing(sqlite3.connect(path)) as before:
         dump = list(before.iterdump())
-    for count in range(1, len(schema._TEN_YEARS) + 1):
-        broken = (*schema._TEN_YEARS[: count - 1], "CREATE TABLE no words")
+    sound = schema.STATEMENTS[step]
+    for count in range(len(sound)):
         with monkeypatch.context() as patch:
-            patch.setattr(schema, "_TEN_YEARS", broken)
+            patch.setitem(schema.STATEMENTS, step, (*sound[:count], "CREATE TABLE no words"))
             with pytest.raises(HistoryError):
                 History.open(old)
         with closing(sqlite3.connect(path)) as after:

@@ -6,7 +6,7 @@ from hypothesis import given, settings, strategies as st
 from diskwatch.history import thinning
 from diskwatch.history.keeping import DETAIL_COPIES
 from diskwatch.history.questions import pass_days, passes, series
-from diskwatch.history.round import file_past_days
+from diskwatch.history.stating import file_past_days
 from diskwatch.history.writer import History
 from diskwatch.records import KnownDrive, Outcome, SignalKind
 from tests.history.examples import DAY, NOON, a_drive, a_part, a_pass, a_place, a_round, a_span, a_value
@@ -122,7 +122,7 @@ def test_passes_become_changes_of_outcome_and_the_counts_of_every_day_stay_exact
     assert thin == changes
 
 
-@pytest.mark.parametrize("bite", [2, 3, 7, 200])
+@pytest.mark.parametrize("bite", [1, 2, 3, 7, 200])
 def test_passes_of_one_second_are_all_counted_wherever_a_bite_ends(
     history, known, connection, monkeypatch, bite
 ):
@@ -212,7 +212,7 @@ def test_minutes_stay_seven_days_and_five_minutes_ninety_once_they_are_condensed
     _all_of_it(history, now)
 
     def kept(table: str) -> set[int]:
-        return {day for (day,) in connection.execute(f"SELECT at / 86400 FROM {table}")}  # noqa: S608
+        return {day for (day,) in connection.execute(f"SELECT at / 86400 FROM {table}")}  # noqa: S608  # our own names
 
     first = BEGIN // DAY
     assert kept("io_minute") == set(range(first + days - 7, first + days))
@@ -240,3 +240,31 @@ def test_a_bite_is_small(history, known, connection):
             break
         # Each row that it looks at is at most deleted once and counted once.
         assert connection.total_changes - before <= 2 * thinning.BITE + 2
+
+
+@pytest.mark.parametrize("clock", ["steady", "thrice a second", "set back"])
+def test_however_small_a_bite_is_thinning_ends_with_the_same_rows(monkeypatch, clock):
+    def thinned(bite):
+        monkeypatch.setattr(thinning, "BITE", bite)
+        noise = random.Random(5)  # noqa: S311  # a life, not a secret
+        with History.in_memory() as history:
+            known = history.admit(a_drive(), a_place(), BEGIN)
+            for number in range(WEEKS * 7 * 4):
+                at = BEGIN + number * DAY // 4
+                if clock == "thrice a second":
+                    at -= at % DAY % (DAY // 2)
+                elif clock == "set back" and number >= 200:
+                    at -= 9 * DAY
+                _read(history, known, at, noise.randrange(1_000), noise.choice([*Outcome]))
+            with history._writing() as connection:
+                file_past_days(connection, END // DAY + 1)
+            for _ in range(20_000):
+                if not history.thin(END):
+                    break
+            else:
+                raise AssertionError("thinning does not end")
+            tables = ("value", "beside", "pass", "pass_day", "thinned")
+            return {name: history._db.execute(f"SELECT * FROM {name}").fetchall() for name in tables}  # noqa: S608  # our own names
+
+    whole = thinned(10**6)
+    assert [thinned(bite) == whole for bite in (1, 2, 3, 200)] == [True] * 4

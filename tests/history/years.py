@@ -123,7 +123,7 @@ def a_week(
             ((known.number, at) for known in drives for at in range(begin, begin + WEEK, 1800)),
         )
         connection.executemany(
-            "INSERT OR IGNORE INTO value VALUES (?, ?, ?, NULL)",
+            "INSERT OR IGNORE INTO value (series, at, value) VALUES (?, ?, ?)",
             (
                 (series[f"{known.number}{name}"], at, moving_value(name, noise).value)
                 for known in drives

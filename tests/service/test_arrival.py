@@ -7,9 +7,10 @@ import pytest
 
 from diskwatch import analyser
 from diskwatch.history.exchange import read, written
+from diskwatch.history.moving import dated_states
 from diskwatch.history.reader import Past
 from diskwatch.history.readings import passes_with_readings
-from diskwatch.history.round import file_past_days
+from diskwatch.history.stating import file_past_days
 from diskwatch.history.writer import History
 from diskwatch.records import Drive, DriveRound, Failing, Outcome, Place, Round
 from diskwatch.service.arrival import take_in
@@ -102,7 +103,7 @@ def test_readings_put_together_again_lead_to_the_same_state(tmp_path):
     with kept(tmp_path) as history:
         state = live(history, passes)
         again = analyser.start()
-        for pass_ in passes_with_readings(history._db.conn, 1, None):
+        for _, pass_ in passes_with_readings(history._db.conn, 1, None):
             again = analyser.advance(again, replace(pass_, drive=HDD)).state
     assert analyser.dump(again) == state
 
@@ -261,3 +262,52 @@ def test_what_fails_under_way_leaves_all_as_it_was(tmp_path, monkeypatch):
         with pytest.raises(TypeError):
             take_in(history, lines, NOON)
         assert list(history._db.conn.iterdump()) == before
+
+
+def _with_an_odd_clock(passes):
+    """The same passes, three of one second now and then, and the clock set back to seconds that were used."""
+    back, last = 0, None
+    for step, pass_ in enumerate(passes):
+        if step in {30, 90}:
+            back += DAY if step == 30 else 3 * DAY
+        if last is None or step % 7 > 1:
+            last = pass_.at - back
+        yield replace(pass_, at=last)
+
+
+@pytest.mark.parametrize("drop", [(), ("state",), ("state", "copy")], ids=["whole", "no state", "nor copies"])
+def test_what_an_odd_clock_brought_leads_to_the_same_state_here_and_elsewhere(tmp_path, drop):
+    here, there = tmp_path / "here", tmp_path / "there"
+    passes = list(_with_an_odd_clock(a_life(40)))
+    assert len({one.at for one in passes}) < len(passes) - 40
+    with kept(here) as history:
+        state = live(history, passes)
+        again = analyser.start()
+        for _, pass_ in passes_with_readings(history._db.conn, 1, None):
+            again = analyser.advance(again, replace(pass_, drive=HDD)).state
+        assert analyser.dump(again) == state
+        for copy in dated_states(history._db.conn, 1):
+            again = analyser.load(copy.state)
+            for _, pass_ in passes_with_readings(history._db.conn, 1, copy):
+                again = analyser.advance(again, replace(pass_, drive=HDD)).state
+            assert analyser.dump(again) == state
+    whole = json.loads(exported(here))
+    whole["rows"] = [row for row in whole["rows"] if row["record"] not in drop]
+    before = told(here)
+    taken(there, json.dumps(whole))
+    assert told(there) == before
+    taken(there, json.dumps(whole))
+    assert told(there) == before
+
+
+def test_a_drive_whose_clock_was_odd_elsewhere_goes_on_here_as_if_it_had_never_moved(tmp_path):
+    here, there, all_ = tmp_path / "here", tmp_path / "there", tmp_path / "all"
+    passes = list(_with_an_odd_clock(a_life(40)))
+    with kept(all_) as history:
+        state = live(history, passes)
+    with kept(here) as history:
+        live(history, passes[:100])
+    taken(there, exported(here))
+    with kept(there) as history:
+        assert live(history, passes[100:]) == state
+    assert told(there) == told(all_)

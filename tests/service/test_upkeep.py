@@ -6,7 +6,7 @@ from diskwatch.history import care, keeping
 from diskwatch.history.care import copies
 from diskwatch.history.reader import Past
 from diskwatch.history.rescue import rescue
-from diskwatch.history.round import file_past_days
+from diskwatch.history.stating import file_past_days
 from diskwatch.places import HISTORY
 from diskwatch.records import Direction, DriveRound, IoCounts, IoSpan, Round
 from diskwatch.service import upkeep
