@@ -126,7 +126,7 @@ class Disk(InventedDrive):
             unit = self.surface.layout.anywhere(self.rng, self.head.number, begin, end)
             self.surface.give_up(unit)
             self.timeouts += poisson(self.rng, _HANGS)
-        self.worst_celsius = max(self.worst_celsius, round(self.warmth.celsius))
+        self.worst_celsius = max(self.worst_celsius, self.celsius)
 
     def _touched(self, mix: Mix, amount: float) -> Touched:
         begin, end = mix.reach
@@ -139,7 +139,7 @@ class Disk(InventedDrive):
 
     def told(self) -> Told:
         """The attribute table of a plain drive."""
-        surface, celsius = self.surface, round(self.warmth.celsius)
+        surface, celsius = self.surface, self.celsius
         left = max(1, round(100 * surface.spare_share))
         rows = (
             Row(number=4, name="Start_Stop_Count", raw=self.cycles),

@@ -76,6 +76,11 @@ class InventedDrive(ABC):
         return int(self.seconds_on // 3_600)
 
     @property
+    def celsius(self) -> int:
+        """Temperature in whole degrees, as far as its sensor goes: 0 to 125 (practice)."""
+        return min(125, max(0, round(self.warmth.celsius)))
+
+    @property
     def drive(self) -> Drive:
         """Who it is."""
         spec = self.spec

@@ -118,6 +118,7 @@ class InventedMachine:
     def take_away(self, serial: str, days: float) -> None:
         """A drive is no longer there, for so many days or, with 0, for ever."""
         self.drives[serial].reachable = False
+        self._returns.pop(serial, None)
         if days > 0:
             self._returns[serial] = self.clock.days() + days
 

@@ -9,13 +9,20 @@ from typing import Annotated, Literal
 import msgspec
 
 from diskwatch.records import CallWord, Cause
-from diskwatch.rehearsal.happenings import Event, NotNegative, Positive, Table, Text
+from diskwatch.rehearsal.happenings import MOST_DAYS, Day, Days, Degrees, Event, Table, Text
 from diskwatch.rehearsal.workload import Habit
 
 MARK = "INVENTED"
 """Stands in every model and begins every serial, so that no output can be taken for one of real drives."""
 
-_Count = Annotated[int, msgspec.Meta(ge=0)]
+_Count = Annotated[int, msgspec.Meta(ge=0, le=1_000_000)]
+_Terabytes = Annotated[float, msgspec.Meta(ge=0, le=1_000_000)]
+_Swing = Annotated[float, msgspec.Meta(ge=0, le=30)]
+
+MOST_SEED = 2**63 - 1
+"""TOML's own bound of whole numbers."""
+
+Seed = Annotated[int, msgspec.Meta(ge=-MOST_SEED, le=MOST_SEED)]
 
 _GB, _TB = 10**9, 10**12
 
@@ -38,7 +45,7 @@ class DriveSpec(Table, frozen=True, kw_only=True):
         written_tb: written by the computer so far, in units of 10^12 bytes.
         read_tb: read so far, likewise.
         reallocated: sectors replaced so far.
-        pending: sectors that wait.
+        pending: sectors that wait; eight lie in a physical sector and wait together.
         bad_blocks: flash blocks replaced so far, of 400.
         crc: transfers damaged on the way so far.
         unsafe: power losses so far.
@@ -55,29 +62,29 @@ class DriveSpec(Table, frozen=True, kw_only=True):
     serial: Text
     model: Text
     kind: Literal["hdd", "ssd", "nvme"]
-    device: Annotated[str, msgspec.Meta(pattern=r"^/dev/[a-z0-9]+$")]
+    device: Annotated[str, msgspec.Meta(pattern=r"\A/dev/(sd[a-z]{1,3}|nvme[0-9]{1,3})\Z", max_length=20)]
     bay: Text
-    capacity_gb: Annotated[int, msgspec.Meta(gt=0)]
+    capacity_gb: Annotated[int, msgspec.Meta(ge=1, le=1_000_000)]
     firmware: Text = "I1.0"
     rpm: Annotated[int, msgspec.Meta(ge=3_600, le=15_000)] = 7_200
-    lives_here: tuple[str, ...] = ()
+    lives_here: Annotated[tuple[Text, ...], msgspec.Meta(max_length=64)] = ()
     age_hours: _Count = 0
-    cycles: Annotated[int, msgspec.Meta(ge=1)] = 1
-    written_tb: NotNegative = 0.0
-    read_tb: NotNegative = 0.0
+    cycles: Annotated[int, msgspec.Meta(ge=1, le=1_000_000)] = 1
+    written_tb: _Terabytes = 0.0
+    read_tb: _Terabytes = 0.0
     reallocated: _Count = 0
-    pending: _Count = 0
+    pending: Annotated[int, msgspec.Meta(ge=0, le=32_000, multiple_of=8)] = 0
     bad_blocks: Annotated[int, msgspec.Meta(ge=0, le=400)] = 0
     crc: _Count = 0
     unsafe: _Count = 0
-    rated_turns: Positive = 1_000.0
-    amplification: Annotated[float, msgspec.Meta(ge=1)] = 2.0
-    load: NotNegative = 1.0
+    rated_turns: Annotated[float, msgspec.Meta(ge=1, le=1_000_000)] = 1_000.0
+    amplification: Annotated[float, msgspec.Meta(ge=1, le=100)] = 2.0
+    load: Annotated[float, msgspec.Meta(ge=0, le=1_000)] = 1.0
     sleeps: bool = False
     backup: Literal["none", "source", "target"] = "none"
-    self_tests_days: _Count = 0
+    self_tests_days: Annotated[int, msgspec.Meta(ge=0, le=MOST_DAYS)] = 0
     as_text: bool = False
-    joins_day: NotNegative = 0.0
+    joins_day: Day = 0.0
 
     @property
     def capacity(self) -> int:
@@ -110,37 +117,37 @@ class Expectation(Table, frozen=True, kw_only=True):
         because: one sentence of why.
     """
 
-    drive: str = ""
+    drive: Annotated[str, msgspec.Meta(max_length=120)] = ""
     call: CallWord | None = None
     cause: Cause | None = None
-    from_day: NotNegative = 0.0
-    by_day: NotNegative | None = None
+    from_day: Day = 0.0
+    by_day: Day | None = None
     stays: CallWord | None = None
-    never_cause: tuple[Cause, ...] = ()
-    needs: tuple[str, ...] = ()
+    never_cause: Annotated[tuple[Cause, ...], msgspec.Meta(max_length=20)] = ()
+    needs: Annotated[tuple[Text, ...], msgspec.Meta(max_length=20)] = ()
     because: Text
 
 
 class RoomSpec(Table, frozen=True, kw_only=True):
     """Where the machine stands; degrees Celsius."""
 
-    celsius: float = 21.0
-    season: NotNegative = 2.5
-    daily: NotNegative = 1.0
+    celsius: Degrees = 21.0
+    season: _Swing = 2.5
+    daily: _Swing = 1.0
 
 
 class BaySpec(Table, frozen=True, kw_only=True):
     """A place for a drive, and the power strip that feeds it."""
 
     name: Text
-    strip: str = "wall"
+    strip: Text = "wall"
 
 
 class Holiday(Table, frozen=True, kw_only=True):
     """Days on which nobody is there."""
 
-    day: NotNegative
-    days: Positive
+    day: Day
+    days: Days
 
 
 class Scenario(Table, frozen=True, kw_only=True):
@@ -166,18 +173,18 @@ class Scenario(Table, frozen=True, kw_only=True):
     """
 
     title: Text
-    about: str
+    about: Annotated[str, msgspec.Meta(max_length=4_000)]
     place: Text = "an invented place"
-    days: Annotated[int, msgspec.Meta(gt=0, le=36_525)]
-    seed: int = 1
+    days: Annotated[int, msgspec.Meta(ge=1, le=MOST_DAYS)]
+    seed: Seed = 1
     habit: Habit = "studio"
     step_minutes: Annotated[int, msgspec.Meta(ge=1, le=360)] = 60
     every_hours: Annotated[int, msgspec.Meta(ge=1, le=24)] = 6
     backup_hour: Annotated[int, msgspec.Meta(ge=0, le=23)] = 13
     strip: Text = "wall"
     room: RoomSpec = RoomSpec()
-    bay: tuple[BaySpec, ...] = ()
-    holiday: tuple[Holiday, ...] = ()
+    bay: Annotated[tuple[BaySpec, ...], msgspec.Meta(max_length=64)] = ()
+    holiday: Annotated[tuple[Holiday, ...], msgspec.Meta(max_length=1_000)] = ()
     drive: Annotated[tuple[DriveSpec, ...], msgspec.Meta(min_length=1, max_length=64)]
-    event: tuple[Event, ...] = ()
-    expect: tuple[Expectation, ...] = ()
+    event: Annotated[tuple[Event, ...], msgspec.Meta(max_length=1_000)] = ()
+    expect: Annotated[tuple[Expectation, ...], msgspec.Meta(max_length=1_000)] = ()

@@ -5,18 +5,24 @@ In the repository they lie in ``fixtures/scenarios/``; the installed package car
 """
 
 import difflib
-from collections.abc import Iterator, Mapping
+import re
+import tomllib
+from collections.abc import Collection, Iterator, Mapping
 from pathlib import Path
 
 import msgspec
 
 from diskwatch.errors import UsageError
+from diskwatch.rehearsal import checked
 from diskwatch.rehearsal.happenings import BlocksFail, HeadWeakens, Scratch
-from diskwatch.rehearsal.scenario import MARK, Scenario
+from diskwatch.rehearsal.scenario import MARK, Expectation, Scenario
 from diskwatch.units import plain
 
 DEFAULT = "scratched-media"
 """The scenario where none is named."""
+
+_LARGEST_FILE = 1_000_000
+_HINT = "README.md beside the scenarios tells every key"
 
 _PACKAGED = Path(__file__).parent / "scenarios"
 _IN_REPOSITORY = Path(__file__).parents[2] / "fixtures" / "scenarios"
@@ -58,16 +64,35 @@ def load(name: str) -> Scenario:
 
 def _read(path: Path) -> Scenario:
     try:
-        scenario = msgspec.toml.decode(path.read_bytes(), type=Scenario)
+        if not path.is_file() and path.exists():
+            raise UsageError(f"{path}: is no file")
+        with path.open("rb") as opened:
+            text = opened.read(_LARGEST_FILE + 1)
+        if len(text) > _LARGEST_FILE:
+            raise UsageError(f"{path}: is larger than a scenario can be ({_LARGEST_FILE} bytes)")
+        tables = tomllib.loads(text.decode())
     except OSError as error:
         raise UsageError(f"{path}: cannot be read: {error.strerror}") from error
-    except msgspec.ValidationError as error:
-        raise UsageError(f"{path}: {error}", hint="README.md beside the scenarios tells every key") from error
-    except (msgspec.DecodeError, UnicodeDecodeError) as error:
-        raise UsageError(f"{path}: is no TOML: {error}") from error
+    except UnicodeDecodeError as error:
+        raise UsageError(f"{path}: is no TOML: byte {error.start + 1} is no UTF-8") from error
+    except (ValueError, RecursionError) as error:  # TOML's own errors are among the first sort
+        raise UsageError(f"{path}: is no TOML: {_reason(error)}") from error
+    wrong = checked.fault(tables, Scenario)
+    if wrong is not None:
+        raise UsageError(f"{path}: {wrong}", hint=_HINT)
+    scenario = msgspec.convert(tables, Scenario)
     for fault in faults(scenario):
-        raise UsageError(f"{path}: {fault}")
+        raise UsageError(f"{path}: {fault}", hint=_HINT)
     return scenario
+
+
+def _reason(error: Exception) -> str:
+    """Why a text is no TOML, the place first."""
+    told = re.fullmatch(r"(?P<why>.*) \(at (?P<where>.*)\)", str(error), re.DOTALL)
+    if told is None:
+        return "something in it is too long or too deep"
+    why = told["why"]
+    return f"{told['where']}: {why[:1].lower()}{why[1:]}"
 
 
 def faults(scenario: Scenario) -> Iterator[str]:
@@ -75,13 +100,25 @@ def faults(scenario: Scenario) -> Iterator[str]:
     yield from _names(scenario)
     yield from _events(scenario)
     serials = {drive.serial for drive in scenario.drive}
-    for wish in scenario.expect:
-        if wish.drive and wish.drive not in serials:
-            yield f"an expectation names the drive {plain(wish.drive)}, which is not there"
-        if wish.call is None and wish.stays is None and not wish.never_cause:
-            yield "an expectation asks for nothing: give it a call, stays or never_cause"
-        if wish.call is not None and wish.by_day is None:
-            yield f"an expectation of the call {wish.call.value} needs by_day"
+    for place, wish in enumerate(scenario.expect, 1):
+        for fault in _wishes(wish, serials):
+            yield f"[[expect]] {place}{fault}"
+
+
+def _wishes(wish: Expectation, serials: Collection[str]) -> Iterator[str]:
+    """What is wrong with an expectation, behind its place in the file."""
+    if wish.drive and wish.drive not in serials:
+        yield f", drive: there is no {plain(wish.drive)}"
+    if wish.call is None and wish.stays is None and not wish.never_cause:
+        yield ": asks for nothing; give it a call, stays or never_cause"
+    if wish.call is None and wish.cause is not None:
+        yield ", cause: goes with a call; give it one"
+    if wish.call is not None and wish.by_day is None:
+        yield f", by_day: is missing; the call {wish.call.value} should be reached by then"
+    if wish.by_day is not None and wish.by_day < wish.from_day:
+        yield f", by_day: {wish.by_day:g} lies before from_day, {wish.from_day:g}"
+    if wish.call is not None and wish.stays is not None and wish.stays.rank < wish.call.rank:
+        yield f", stays: {wish.stays.value} rules out the call {wish.call.value} that is asked for"
 
 
 def _names(scenario: Scenario) -> Iterator[str]:
@@ -95,14 +132,20 @@ def _names(scenario: Scenario) -> Iterator[str]:
             yield f"the serial {plain(drive.serial)} does not begin with {MARK}, as every invented one must"
         if MARK not in drive.model:
             yield f"the model {plain(drive.model)} does not contain {MARK}, as every invented one must"
+        if ("nvme" in drive.device) is not (drive.kind == "nvme"):
+            named = "/dev/nvme0" if drive.kind == "nvme" else "/dev/sda"
+            yield f"the device {plain(drive.device)} is none of kind {drive.kind}, as {named} would be"
+    if MARK.lower() not in scenario.place.lower():
+        yield f"the place {plain(scenario.place)} does not say that it is {MARK.lower()}"
 
 
 def _events(scenario: Scenario) -> Iterator[str]:
     """Events of what is not there, or of a drive of another sort."""
     bays = {drive.bay for drive in scenario.drive} | {bay.name for bay in scenario.bay}
-    strips = {"wall"} | {bay.strip for bay in scenario.bay}
+    strips = {"wall", scenario.strip} | {bay.strip for bay in scenario.bay}
     turning = {drive.serial for drive in scenario.drive if drive.kind == "hdd"}
     every = {drive.serial for drive in scenario.drive}
+    joins = {drive.serial: drive.joins_day for drive in scenario.drive}
     for event in scenario.event:
         for key, known in (("drive", every), ("bay", bays), ("to", bays), ("strip", strips)):
             named = getattr(event, key, None)
@@ -111,6 +154,9 @@ def _events(scenario: Scenario) -> Iterator[str]:
                     f"an event of day {event.day:g} names the {key} {plain(named)}; "
                     f"known are: {plain(', '.join(sorted(known)))}"
                 )
+        serial = getattr(event, "drive", "")
+        if event.day < joins.get(serial, 0.0):
+            yield f"an event of day {event.day:g} befalls {plain(serial)} before it joins"
         if isinstance(event, Scratch | HeadWeakens) and event.drive not in turning:
             yield f"an event of day {event.day:g} needs a hard disk, and {plain(event.drive)} is none"
         if isinstance(event, BlocksFail) and event.drive in turning:

@@ -120,7 +120,7 @@ class Solid(InventedDrive):
     def told(self) -> Told:
         """The health log, or an attribute table."""
         spare = self.cells.spare_percent(self.chips)
-        celsius = round(self.warmth.celsius)
+        celsius = self.celsius
         low = spare < _THRESHOLD
         return Told(
             model=self.spec.model,
