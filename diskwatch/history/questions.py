@@ -9,6 +9,7 @@ import sqlite3
 from collections.abc import Collection
 
 from diskwatch.history import packing, rows
+from diskwatch.history.counting import counted_before
 from diskwatch.records import Entry, IoSpan, Outcome, Pass, PassDay, Reading
 from diskwatch.units import DAY, day_number
 
@@ -29,13 +30,12 @@ _PASSES = (
     " LEFT JOIN sentence ON sentence.number = pass.explanation"
     " WHERE drive = ? AND at >= ? ORDER BY at DESC, nth DESC LIMIT ?"
 )
-# Passes before the mark are in pass_day already, also those few that still stand by themselves.
-_BY_DAY = (
-    "SELECT day, outcome, sum(passes), min(first), max(last) FROM ("
-    "SELECT day, outcome, passes, first, last FROM pass_day WHERE drive = :drive AND day >= :day"
-    " UNION ALL SELECT at / :length, outcome, 1, at, at FROM pass WHERE drive = :drive AND at >= :since"
-    " AND at >= coalesce((SELECT before FROM thinned WHERE what = 'pass' AND number = :drive), :since)"
-    ") GROUP BY day, outcome ORDER BY day, outcome"
+_COUNTED = (
+    "SELECT day, outcome, passes, first, last FROM pass_day WHERE drive = ? AND day >= ? ORDER BY day, outcome"
+)
+_UNCOUNTED = (
+    "SELECT at / ?1 AS day, outcome, count(*), min(at), max(at) FROM pass WHERE drive = ?2 AND at >= ?3"
+    " GROUP BY day, outcome ORDER BY day, outcome"
 )
 _SERIES = "SELECT number FROM series WHERE drive = ? AND signal = ? AND current"
 _SERIES_EVER = "SELECT number FROM series WHERE drive = ? AND signal = ? ORDER BY number"
@@ -90,13 +90,27 @@ def passes(
 def pass_days(connection: sqlite3.Connection, drive: int, since: int | None) -> tuple[PassDay, ...]:
     """How many passes of each day ended how, oldest first, thinned or not."""
     day = _EVER if since is None else day_number(since)
-    found = connection.execute(
-        _BY_DAY, {"drive": drive, "day": day, "since": _EVER if since is None else day * DAY, "length": DAY}
-    ).fetchall()
+    counted = connection.execute(_COUNTED, (drive, day)).fetchall()
+    # Passes before the mark are in pass_day already, also those few that still stand by themselves.
+    begin = max(counted_before(connection, drive), day * DAY if since is not None else _EVER)
+    found = connection.execute(_UNCOUNTED, (DAY, drive, begin)).fetchall()
+    days = {row[:2]: row for row in counted}
+    for row in found:
+        days[row[:2]] = _added(days.get(row[:2]), row)
+    if counted and found and found[0][0] <= counted[-1][0]:
+        days = dict(sorted(days.items()))
+    outcomes = {outcome: Outcome(outcome) for outcome in {outcome for _, outcome in days}}
     return tuple(
-        PassDay(day=day, outcome=Outcome(outcome), passes=passes, first=first, last=last)
-        for day, outcome, passes, first, last in found
+        PassDay(day=day, outcome=outcomes[outcome], passes=passes, first=first, last=last)
+        for day, outcome, passes, first, last in days.values()
     )
+
+
+def _added(one: rows.Row | None, other: rows.Row) -> rows.Row:
+    """The day in which the mark stands, of which a part is counted and a part is not."""
+    if one is None:
+        return other
+    return (*other[:2], one[2] + other[2], min(one[3], other[3]), max(one[4], other[4]))
 
 
 def series(
