@@ -7,7 +7,7 @@ from diskwatch.analyser import counters, findings
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import heard as judge
-from diskwatch.records import Entry, Finding, FindingKind, Outcome, Pass
+from diskwatch.records import Entry, Finding, FindingKind, Outcome, Pass, SignalKind
 from diskwatch.trends.norms import STREAM_OF
 from diskwatch.units import day_number
 
@@ -21,8 +21,8 @@ def counts(pass_: Pass) -> Mapping[str, int]:
 
 def followed(pass_: Pass) -> Mapping[str, int]:
     """Of these the counts that only grow."""
-    shown = counts(pass_)
-    return {name: count for name, count in shown.items() if name not in {judge.LAST_SECTOR, judge.DEGRADED}}
+    grow = {value.signal for value in pass_.heard if value.kind is SignalKind.COUNT}
+    return {name: count for name, count in counts(pass_).items() if name in grow}
 
 
 def firsts(counted: Mapping[str, int]) -> Mapping[str, int]:

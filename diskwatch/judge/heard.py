@@ -21,19 +21,24 @@ DEGRADED = "degraded-arrays"
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Fact:
-    """What a count above its base asks for."""
+    """What counts above their base ask for; several tell of one thing where they are several sources of it."""
 
     name: str
     cause: Cause
+    signals: tuple[str, ...]
 
 
-_FACTS: Mapping[str, _Fact] = {
-    "unreadable-sectors": _Fact(name="fact:unreadable-sector", cause=Cause.MEDIA),
-    "failed-writes": _Fact(name="fact:failed-writes", cause=Cause.UNCLEAR),
-    "dropouts": _Fact(name="fact:dropped-out", cause=Cause.CONTROLLER),
-    "array-dropouts": _Fact(name="fact:array-dropped-it", cause=Cause.UNCLEAR),
-    "file-system-errors": _Fact(name="fact:file-system", cause=Cause.UNCLEAR),
-}
+_FACTS = (
+    _Fact(name="fact:unreadable-sector", cause=Cause.MEDIA, signals=("unreadable-sectors",)),
+    _Fact(name="fact:failed-writes", cause=Cause.UNCLEAR, signals=("failed-writes",)),
+    _Fact(name="fact:dropped-out", cause=Cause.CONTROLLER, signals=("dropouts",)),
+    _Fact(name="fact:array-dropped-it", cause=Cause.UNCLEAR, signals=("array-dropouts", "array-read-errors")),
+    _Fact(
+        name="fact:file-system",
+        cause=Cause.UNCLEAR,
+        signals=("file-system-errors", "ext4-errors", "btrfs-errors"),
+    ),
+)
 
 
 def facts(counts: Mapping[str, int], base: Mapping[str, int], *, at: int) -> Iterator[Finding]:
@@ -41,14 +46,20 @@ def facts(counts: Mapping[str, int], base: Mapping[str, int], *, at: int) -> Ite
 
     Args:
         counts: what they count now, by signal.
-        base: what each count is held against; missing ones against 0.
+        base: what each count is held against.
         at: when, UTC seconds since 1970.
     """
-    for signal, fact in _FACTS.items():
-        times = counts.get(signal, 0) - base.get(signal, 0)
-        if times > 0:
-            last = counts.get(LAST_SECTOR) if signal == "unreadable-sectors" else None
-            yield _finding(fact, signal, times, last, at)
+    for fact in _FACTS:
+        # What is seen for the first time, and did not begin with the watch, may be years old: a level.
+        above = {
+            signal: counts[signal] - base.get(signal, 0 if signal in FROM_NOTHING else counts[signal])
+            for signal in fact.signals
+            if signal in counts
+        }
+        above = {signal: times for signal, times in above.items() if times > 0}
+        if above:
+            last = counts.get(LAST_SECTOR) if "unreadable-sectors" in above else None
+            yield _finding(fact, above, last, at)
     degraded = counts.get(DEGRADED, 0)
     if degraded > 0:
         yield Finding(
@@ -64,15 +75,17 @@ def facts(counts: Mapping[str, int], base: Mapping[str, int], *, at: int) -> Ite
         )
 
 
-def _finding(fact: _Fact, signal: str, times: int, last: int | None, at: int) -> Finding:
+def _finding(fact: _Fact, above: Mapping[str, int], last: int | None, at: int) -> Finding:
+    # Several sources see the same errors, so that a sum would count them twice.
+    times = max(above.values())
     return Finding(
         name=fact.name,
         kind=FindingKind.FACT,
-        signals=(signal,),
+        signals=tuple(above),
         since=at,
         calls=CallWord.LOOK,
         cause=fact.cause,
         evidence=None,
-        sentence=heard_told.counted(signal, times, last),
+        sentence=heard_told.counted(fact.signals[0], times, last),
         data={"times": times} if last is None else {"times": times, "last_sector": last},
     )

@@ -16,11 +16,16 @@ _GIVEN = re.compile(r"zfs-[0-9a-f]{16}")
 _ANSWERS = frozenset({"ONLINE", "DEGRADED"})
 
 
+def states(proc_root: Path = Path("/proc")) -> dict[str, str]:
+    """The imported pools and the state of each, as the module writes it: ``ONLINE``, ``DEGRADED``, ..."""
+    folder = proc_root / "spl" / "kstat" / "zfs"
+    found = {name: text_of(folder / name / "state") for name in names_in(folder)}
+    return {name: state for name, state in found.items() if state is not None}
+
+
 def pools(proc_root: Path = Path("/proc")) -> dict[str, bool]:
     """The imported pools, and of each whether it answers; one that is suspended hangs whoever asks it."""
-    folder = proc_root / "spl" / "kstat" / "zfs"
-    states = {name: text_of(folder / name / "state") for name in names_in(folder)}
-    return {name: state in _ANSWERS for name, state in states.items() if state is not None}
+    return {name: state in _ANSWERS for name, state in states(proc_root).items()}
 
 
 def pool_on(stack: Stack, pools: Mapping[str, bool]) -> str | None:

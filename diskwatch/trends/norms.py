@@ -75,8 +75,11 @@ NORMS = (
     Norm(stream="power", signals=("unsafe-power-offs",), per_year=12.0, share=0.04),
 )
 
-MAY_FALL = frozenset({"pending-sectors", "offline-uncorrectable"})
-"""Counts that fall by nature: a sector leaves them when it is rewritten or replaced."""
+MAY_FALL = frozenset(
+    {"pending-sectors", "offline-uncorrectable", "ext4-errors", "btrfs-errors", "array-read-errors"}
+)
+"""Counts that fall by nature: a sector leaves them when it is rewritten or replaced, and what file systems and
+arrays count begins anew when they are checked, reset or made anew."""
 
 STREAM_OF = {signal: norm for norm in NORMS for signal in norm.signals}
 """The stream that a counter belongs to."""

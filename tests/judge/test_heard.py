@@ -30,3 +30,16 @@ def test_an_array_that_lacks_a_member_is_told_without_blaming_this_drive():
     (one,) = facts({"degraded-arrays": 2}, {}, at=NOON)
     assert one.cause is Cause.UNCLEAR
     assert "2 arrays" in one.sentence
+
+
+def test_what_a_file_system_counted_before_the_watch_is_a_level():
+    assert not list(facts({"ext4-errors": 12}, {}, at=NOON))
+    (one,) = facts({"ext4-errors": 14}, {"ext4-errors": 12}, at=NOON)
+    assert one.name == "fact:file-system"
+    assert one.signals == ("ext4-errors",)
+
+
+def test_errors_that_two_sources_saw_are_not_counted_twice():
+    (one,) = facts({"file-system-errors": 2, "ext4-errors": 15}, {"ext4-errors": 12}, at=NOON)
+    assert one.signals == ("file-system-errors", "ext4-errors")
+    assert one.data == {"times": 3}

@@ -3,7 +3,7 @@ from dataclasses import replace
 import pytest
 
 from diskwatch.machine.stacks import Stack
-from diskwatch.machine.zfs import pool_on, pools
+from diskwatch.machine.zfs import pool_on, pools, states
 from tests.machine.trees import Tree
 
 GIVEN = Stack(names=frozenset({"sda"}), numbers=frozenset({"8:0"}), labels=frozenset({"zfs-00c0ffee00c0ffee"}))
@@ -15,6 +15,12 @@ def test_pools_are_those_that_have_a_state_and_only_a_working_one_answers(tree: 
     tree.zfs("stuck", "SUSPENDED")
     (tree.proc / "spl/kstat/zfs/arcstats").write_text("no pool")
     assert pools(tree.proc) == {"half": True, "stuck": False, "tank": True}
+
+
+def test_the_state_of_each_pool_is_told_in_the_modules_word(tree: Tree):
+    tree.zfs("tank")
+    tree.zfs("half", "DEGRADED")
+    assert states(tree.proc) == {"half": "DEGRADED", "tank": "ONLINE"}
 
 
 def test_a_machine_without_zfs_has_no_pool(tree: Tree):
