@@ -52,6 +52,7 @@ _VIEWS = {
         _with("beside", "0 AS nth, 0 AS turn"),
         *(_with(name, "0 AS turn") for name in ("drive", "pass", "analyser_state", "kept_state")),
     ),
+    "0005_ways": (_nothing("way", "adapter instance type at"),),
 }
 """What stands in for a step that a file may lack; one without a line here must be taken before it is read."""
 

@@ -12,8 +12,9 @@ from pathlib import Path
 from typing import Self, TypeVar
 
 from diskwatch.errors import HistoryError
-from diskwatch.history import questions
+from diskwatch.history import proof, questions
 from diskwatch.history.bays import drive_lines
+from diskwatch.history.counting import counted_before
 from diskwatch.history.exchange import Line
 from diskwatch.history.leaving import lines_of
 from diskwatch.history.live import Live, read_live
@@ -21,7 +22,9 @@ from diskwatch.history.lock import watcher
 from diskwatch.history.mishaps import told, unreadable
 from diskwatch.history.naming import choose
 from diskwatch.history.opening import Opened, open_to_read
+from diskwatch.history.proof import Copy, Plugged, Printed, SignalPast
 from diskwatch.history.traffic import class_days, rollups
+from diskwatch.history.ways import ways
 from diskwatch.places import HISTORY
 from diskwatch.records import (
     Attribute,
@@ -34,6 +37,7 @@ from diskwatch.records import (
     Pass,
     PassDay,
     Reading,
+    Way,
 )
 from diskwatch.units import plain
 
@@ -220,6 +224,41 @@ class Past:
     def state(self, drive: int) -> str | None:
         """The analyser's state of a drive as last recorded, or None."""
         return self._ask(lambda connection: questions.state(connection, drive))
+
+    def ways(self) -> tuple[Way, ...]:
+        """What was found out of USB adapters on this machine, one an adapter."""
+        return self._ask(ways)
+
+    def signal_pasts(self, drive: int) -> tuple[SignalPast, ...]:
+        """Every signal of a drive from its first value on, by name."""
+        return self._ask(lambda connection: proof.signal_pasts(connection, drive))
+
+    def places(self, drive: int) -> tuple[Plugged, ...]:
+        """Where a drive has been plugged in, oldest first."""
+        return self._ask(lambda connection: proof.places(connection, drive))
+
+    def copies(self, drive: int) -> tuple[Copy, ...]:
+        """The dated exact copies of a drive's state, oldest first."""
+        return self._ask(lambda connection: proof.copies(connection, drive))
+
+    def state_of(self, drive: int, of: Copy) -> str | None:
+        """The analyser's state that a copy holds; None where there is no such copy."""
+        return self._ask(lambda connection: proof.state_of(connection, drive, of))
+
+    def followed(self, drive: int, signals: Collection[str], after: Copy | None) -> tuple[Pass, ...]:
+        """Passes that read a drive after a copy of its state, with these signals alone, oldest first.
+
+        Of passes that were thinned those stand in their place that a day's ledger asks for.
+        """
+        return self._ask(lambda connection: proof.followed(connection, drive, signals, after))
+
+    def exact_from(self, drive: int) -> int:
+        """From when on all passes of a drive are kept, UTC seconds since 1970."""
+        return self._ask(lambda connection: counted_before(connection, drive))
+
+    def printed(self, drive: int) -> Printed | None:
+        """What smartctl last printed of a drive, as far as it was kept; None where nothing was."""
+        return self._ask(lambda connection: proof.printed(connection, drive))
 
     def _ask(self, question: Callable[[sqlite3.Connection], _Answer]) -> _Answer:
         with self._turn:

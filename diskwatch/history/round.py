@@ -9,6 +9,7 @@ from diskwatch.history.counting import count, counted_before
 from diskwatch.history.judgement import keep_copy, write_judgement
 from diskwatch.history.moments import Moment
 from diskwatch.history.stating import file_past_days, says_nothing_new, write_reading
+from diskwatch.history.ways import write_ways
 from diskwatch.records import Drive, DriveRound, Entry, KnownDrive, Pass, Place, Round
 from diskwatch.units import day_number
 
@@ -38,6 +39,7 @@ def write_round(connection: sqlite3.Connection, round_: Round) -> None:
     for part in round_.drives:
         _write_part(connection, part, round_.at)
     write_entries(connection, round_.entries)
+    write_ways(connection, round_.ways, round_.at)
 
 
 def write_entries(connection: sqlite3.Connection, entries: Iterable[Entry]) -> None:

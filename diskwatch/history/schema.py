@@ -20,7 +20,7 @@ must be answered quickly.
 from collections.abc import Callable
 
 from diskwatch.history.library import Database, Migrations
-from diskwatch.history.steps import base, every_pass, in_order, ten_years
+from diskwatch.history.steps import base, every_pass, in_order, ten_years, ways
 from diskwatch.history.versions import MIGRATION_SET, MIGRATIONS
 
 STATEMENTS = {
@@ -28,6 +28,7 @@ STATEMENTS = {
     "0002_ten_years": ten_years.STATEMENTS,
     "0003_every_pass": every_pass.STATEMENTS,
     "0004_in_order": in_order.STATEMENTS,
+    "0005_ways": ways.STATEMENTS,
 }
 """What each step does, by its name in `diskwatch.history.versions`."""
 
