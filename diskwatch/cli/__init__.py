@@ -22,6 +22,7 @@ COMMANDS = {
     "watch": "watch the drives in the foreground; with --once one full pass, then end",
     "bays": "the drives, where they are, what to do with each, and why",
     "why": "the chain from a drive's readings to its call, and what would change it",
+    "copy-plan": "what is at stake on a drive, and how to get it off: how long, in which order",
     "daybook": "what happened to the drives, in order",
     "replay": "recorded readings through the same analyser: what it would have said, and when",
     "rehearse": "an invented machine whose drives live through years in seconds, judged like a real one",

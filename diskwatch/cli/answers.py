@@ -1,5 +1,6 @@
 """The JSON answers of the commands: names and shapes that scripts rely on; only ever added to."""
 
+from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from diskwatch.records import Bays, DriveLine, Entry, Finding, ReplayedDrive, ReplaySummary, SignalNow
@@ -7,6 +8,7 @@ from diskwatch.units import rfc3339
 
 if TYPE_CHECKING:  # the analyser takes as long to load as all that ``bays`` needs together
     from diskwatch.analyser import Explanation
+    from diskwatch.judge.copy_plan import CopyPlan
 
 
 def _at(at: int | None) -> str | None:
@@ -131,6 +133,75 @@ def why_answer(line: DriveLine, why: "Explanation") -> dict[str, object]:
         "findings": [_finding(one) for one in why.findings],
         "would_change": list(why.would_change),
     }
+
+
+def copy_plan_answer(
+    line: DriveLine, plan: "CopyPlan", told: Mapping[str, Sequence[str]], at: int
+) -> dict[str, object]:
+    """What ``copy-plan --json`` prints: the drive as in ``bays``, the numbers, and the same in words.
+
+    Args:
+        line: the drive.
+        plan: its plan.
+        told: the sentences by part of the plan.
+        at: now, UTC seconds since 1970.
+    """
+    likely = plan.unreadable
+    return {
+        "schema": "diskwatch/copy-plan/1",
+        "at": rfc3339(at),
+        "drive": drive_answer(line),
+        "holds": [
+            {
+                "point": held.mount.point,
+                "used_bytes": held.mount.used_bytes,
+                "total_bytes": held.mount.total_bytes,
+                "what": [one.value for one in held.holds],
+                "hours": _between(held.hours),
+            }
+            for held in plan.held
+        ],
+        "arrays": None
+        if plan.arrays is None
+        else [
+            {
+                "kind": array.kind,
+                "name": array.name,
+                "level": array.level,
+                "members": array.members,
+                "missing": array.missing,
+                "rebuilding": array.rebuilding,
+                "elsewhere": array.elsewhere,
+            }
+            for array in plan.arrays
+        ],
+        "used_bytes": plan.used_bytes,
+        "used_is_incomplete": plan.incomplete,
+        "read_rate": {
+            "low": round(plan.rate.low),
+            "high": round(plan.rate.high),
+            "unit": "bytes per second",
+            "source": "measured" if plan.rate.stretches else "usual for its sort",
+            "stretches": plan.rate.stretches,
+        },
+        "hours": _between(plan.hours),
+        "whole_drive_hours": _between(plan.whole_hours),
+        "unreadable": None
+        if likely is None
+        else {
+            "bits": likely.bits,
+            "rate": {"low": likely.rates[0], "high": likely.rates[1]},
+            "chance": {"low": likely.chances[0], "high": likely.chances[1]},
+            "source": "what makers of its class allow at most; no forecast for this drive",
+        },
+        "pending_sectors": plan.pending,
+        "backed_up": plan.backed_up,
+        "told": {part: list(sentences) for part, sentences in told.items()},
+    }
+
+
+def _between(hours: tuple[float, float] | None) -> dict[str, float] | None:
+    return None if hours is None else {"low": hours[0], "high": hours[1]}
 
 
 def replay_answer(drives: tuple[ReplayedDrive, ...], summary: ReplaySummary) -> dict[str, object]:
