@@ -12,8 +12,8 @@ import json
 import os
 import stat
 import time
-from collections.abc import Callable, Mapping
-from contextlib import suppress
+from collections.abc import Callable, Iterator, Mapping
+from contextlib import contextmanager, suppress
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
@@ -67,11 +67,11 @@ def leave(state: Path, deed: str, words: Mapping[str, Any]) -> Path:
     """
     folder = state / FOLDER
     name = f"{int(time.time())}-{os.getpid()}-{time.monotonic_ns()}.json"
-    making = folder / f".{name}"
     try:
-        _owner_only(state, folder)
-        _write(making, json.dumps({"deed": deed, "words": words}))
-        making.rename(folder / name)
+        owner = state.stat()
+        with _opened(folder, owner) as inside:
+            _write(f".{name}", json.dumps({"deed": deed, "words": words}), inside, owner)
+            os.rename(f".{name}", name, src_dir_fd=inside, dst_dir_fd=inside)
     except OSError as error:
         raise HistoryError(
             f"the watch cannot be asked: {plain(str(folder))}: {error.strerror}",
@@ -173,7 +173,7 @@ def _answer(request: Path, owners: frozenset[int], deeds: Mapping[str, Deed]) ->
         request.unlink()  # first, so that a request that ends the watch is not taken up again by the next one
     making = request.with_name(f".{request.stem}{_ANSWER}")
     with suppress(OSError):
-        _write(making, json.dumps(told))
+        _write(str(making), json.dumps(told))
         making.rename(request.with_name(request.stem + _ANSWER))
 
 
@@ -193,16 +193,36 @@ def _believed(about: os.stat_result, owners: frozenset[int], sort: Callable[[int
     return sort(about.st_mode) and about.st_uid in owners and not about.st_mode & 0o022
 
 
-def _owner_only(state: Path, folder: Path) -> None:
+@contextmanager
+def _opened(folder: Path, owner: os.stat_result) -> Iterator[int]:
+    """The folder of requests, made where there is none; a descriptor of it.
+
+    Root asks the watch of another user in a folder where that user may change what lies there at any moment. So
+    all is done inside the folder that was opened and looked at, and no link is followed.
+    """
     with suppress(FileExistsError):
         folder.mkdir(mode=0o755)
-        about = state.stat()
-        if os.geteuid() == 0 and about.st_uid != 0:
-            os.chown(folder, about.st_uid, about.st_gid)
+    inside = os.open(folder, os.O_RDONLY | os.O_DIRECTORY | os.O_NOFOLLOW | os.O_CLOEXEC)
+    try:
+        about = os.fstat(inside)
+        if about.st_uid == os.geteuid() != owner.st_uid:
+            os.fchown(inside, owner.st_uid, owner.st_gid)
+        elif about.st_uid not in {owner.st_uid, 0}:
+            raise HistoryError(
+                f"{plain(str(folder))} is not the history owner's; nothing is asked for there",
+                hint="take it away",
+            )
+        yield inside
+    finally:
+        os.close(inside)
 
 
-def _write(path: Path, text: str) -> None:
+def _write(name: str, text: str, inside: int | None = None, owner: os.stat_result | None = None) -> None:
     # A past names drives and folders: nobody but its owner and the watch need read it.
-    descriptor = os.open(path, os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_NOFOLLOW | os.O_CLOEXEC, 0o600)
+    flags = os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_NOFOLLOW | os.O_CLOEXEC
+    descriptor = os.open(name, flags, 0o600, dir_fd=inside)
     with os.fdopen(descriptor, "w", encoding="utf-8") as file:
+        if owner is not None and owner.st_uid != os.geteuid():
+            # Else the watch of that user could not read what root asks.
+            os.fchown(descriptor, owner.st_uid, owner.st_gid)
         file.write(text)

@@ -9,6 +9,8 @@ from diskwatch.history.writer import History
 from diskwatch.service import requests
 from diskwatch.service.requests import Answer, leave, take_up, wait, waiting
 
+OTHER = 65534
+
 
 @pytest.fixture
 def state(tmp_path):
@@ -140,3 +142,50 @@ def test_a_request_says_what_to_do_in_plain_json(state):
     assert json.loads(request.read_text()) == {"deed": "do", "words": {"what": "it"}}
     assert request.stat().st_mode & 0o777 == 0o600
     assert requests.EVERY <= 10
+
+
+needs_root = pytest.mark.skipif(os.geteuid() != 0, reason="needs root to become another user")
+
+
+@pytest.fixture
+def theirs(state):
+    """A state folder that is another user's, where that user's watch runs."""
+    for path in (state, *state.iterdir()):
+        os.chown(path, OTHER, OTHER)
+    # pytest's own folders are closed to others.
+    for above in list(state.parents)[:3]:
+        above.chmod(0o755)
+    return state
+
+
+@needs_root
+def test_the_watch_of_another_user_reads_what_root_asks_of_it(theirs):
+    request = leave(theirs, "do", {"what": "it"})
+    assert {one.stat().st_uid for one in (request, request.parent)} == {OTHER}
+    child = os.fork()
+    if child == 0:
+        os.setgid(OTHER)
+        os.setuid(OTHER)
+        os._exit(take_up(theirs, {"do": done}))
+    assert os.waitstatus_to_exitcode(os.waitpid(child, 0)[1]) == 1
+    assert wait(request).done == ("did it",)
+
+
+@needs_root
+def test_root_gives_away_and_writes_nothing_behind_a_link_in_the_place_of_the_folder(theirs, tmp_path_factory):
+    target = tmp_path_factory.mktemp("roots")
+    (theirs / requests.FOLDER).symlink_to(target)
+    with pytest.raises(HistoryError, match="cannot be asked"):
+        leave(theirs, "do", {"what": "it"})
+    assert list(target.iterdir()) == []
+    assert target.stat().st_uid == 0
+
+
+@needs_root
+def test_a_strangers_folder_in_its_place_is_refused(state):
+    folder = state / requests.FOLDER
+    folder.mkdir()
+    os.chown(folder, OTHER, OTHER)
+    with pytest.raises(HistoryError, match="not the history owner's"):
+        leave(state, "do", {"what": "it"})
+    assert list(folder.iterdir()) == []
