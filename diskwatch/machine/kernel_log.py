@@ -9,30 +9,17 @@ import errno
 import os
 import stat
 from collections.abc import Callable
-from dataclasses import dataclass
 from pathlib import Path
 
 from diskwatch.errors import DiskwatchError
 from diskwatch.machine.kernel_files import text_of
 from diskwatch.machine.kernel_line import Line, line_of
+from diskwatch.records.listened import LeftOff
 from diskwatch.units import plain
 
 _RECORD = 8_192  # the kernel's own bound of one record
 _CHUNK = 262_144
 _LONGEST = 65_536  # of a line in a file; what is longer is no record
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class LeftOff:
-    """How far a log was read.
-
-    Attributes:
-        log: which log: the boot that it belongs to, or the head of the file's first record.
-        sequence: number of the last record that was read; -1 for none.
-    """
-
-    log: str
-    sequence: int = -1
 
 
 class KernelLog:

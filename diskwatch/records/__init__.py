@@ -11,6 +11,7 @@ from diskwatch.records.event import Event, EventKind
 from diskwatch.records.forecast import Forecast, LimitSource
 from diskwatch.records.io import ClassDay, Direction, IoCounts, IoRollup, IoSpan
 from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingKind
+from diskwatch.records.listened import LeftOff, Listened
 from diskwatch.records.margin import Margin
 from diskwatch.records.odds import Odds
 from diskwatch.records.reading import (
@@ -64,7 +65,9 @@ __all__ = [
     "KnownDrive",
     "LastPass",
     "Learnt",
+    "LeftOff",
     "LimitSource",
+    "Listened",
     "Margin",
     "Mount",
     "Odds",

@@ -4,7 +4,8 @@ from pathlib import Path
 import pytest
 
 from diskwatch.errors import DiskwatchError
-from diskwatch.machine.kernel_log import KernelLog, LeftOff
+from diskwatch.machine.kernel_log import KernelLog
+from diskwatch.records.listened import LeftOff
 
 
 def record(sequence, text="said"):
