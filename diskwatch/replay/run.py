@@ -8,9 +8,13 @@ from multiprocessing import get_context
 from pathlib import Path
 
 from diskwatch import analyser
-from diskwatch.records import Call, Drift, ReplayedDrive
-from diskwatch.replay.table import Row, Table
-from diskwatch.units import rfc3339
+from diskwatch.records import Call, Drift, Entry, IoRollup, ReplayedDrive
+from diskwatch.replay.daily import Row
+from diskwatch.replay.fives import Fives
+from diskwatch.replay.stretches import Stretch
+from diskwatch.replay.table import Table
+from diskwatch.trends.latency import Latency
+from diskwatch.units import DAY, rfc3339
 
 Progress = Callable[[int, int], None]
 """Told now and then how many bytes of how many have been read."""
@@ -28,6 +32,9 @@ class _Life:
     first: int
     last: int
     state: analyser.DriveState = field(default_factory=analyser.start)
+    read: int | None = None
+    traffic: Fives = field(default_factory=Fives)
+    latency: Latency = field(default_factory=analyser.no_latency)
     failed: bool = False
     rows: int = 0
     calls: list[Call] = field(default_factory=list)
@@ -83,34 +90,51 @@ def _share(paths: Sequence[Path], share: int, of: int, progress: Progress | None
     skipped = 0
     total = sum(path.stat().st_size for path in paths if path.is_file())
     before = 0
+
+    def mine(serial: str) -> bool:
+        return of == 1 or zlib.crc32(serial.encode()) % of == share
+
+    def shown(read: int) -> None:
+        if progress is not None:
+            progress(before + read, total)
+
     for path in paths:
-        table = Table(path)
-        named = 0
-
-        def bad(sentence: str) -> None:
-            nonlocal skipped, named
-            skipped += 1
-            named += 1
-            if named <= _MOST_TOLD:
-                told.append(sentence)
-
-        def mine(serial: str) -> bool:
-            return of == 1 or zlib.crc32(serial.encode()) % of == share
-
-        try:
-            for number, row in enumerate(table.rows(mine, bad)):
-                _live(lives, row, bad, path)
-                if progress is not None and number % _EVERY == 0:
-                    progress(before + table.read_bytes, total)
-        finally:
-            table.close()
-        if named > _MOST_TOLD:
-            told.append(f"{path}: {named - _MOST_TOLD} more rows were skipped")
+        bad = _read(path, lives, mine, shown)
+        skipped += len(bad)
+        told += bad[:_MOST_TOLD]
+        if len(bad) > _MOST_TOLD:
+            told.append(f"{path}: {len(bad) - _MOST_TOLD} more rows were skipped")
         before += path.stat().st_size
-    if progress is not None:
-        progress(total, total)
+    shown(0)
+    for life in lives.values():
+        for day, rollups in life.traffic.rest():
+            _take_day(life, day, rollups)
     drives = _ended(lives.items())
     return Part(drives=tuple(sorted(drives, key=lambda drive: drive.serial)), skipped=skipped, told=tuple(told))
+
+
+def _read(
+    path: Path, lives: dict[str, _Life], mine: Callable[[str], bool], shown: Callable[[int], None]
+) -> list[str]:
+    """Take one file in; gives a sentence for every row that was skipped, an empty one beyond the first many."""
+    table = Table(path)
+    skipped: list[str] = []
+
+    def bad(sentence: str) -> None:
+        # A file of a million bad rows must not fill the memory with words that nobody is told.
+        skipped.append(sentence if len(skipped) < _MOST_TOLD else "")
+
+    try:
+        for number, row in enumerate(table.rows(mine, bad)):
+            if isinstance(row, Stretch):
+                _work(lives, row, bad, path)
+            else:
+                _live(lives, row, bad, path)
+            if number % _EVERY == 0:
+                shown(table.read_bytes)
+    finally:
+        table.close()
+    return skipped
 
 
 def _live(lives: dict[str, _Life], row: Row, bad: Callable[[str], None], path: Path) -> None:
@@ -118,24 +142,59 @@ def _live(lives: dict[str, _Life], row: Row, bad: Callable[[str], None], path: P
     at = row.pass_.at
     life = lives.get(row.serial)
     if life is None:
+        life = lives[row.serial] = _Life(model=None, first=at, last=at)
+    if life.read is None:
         drive = row.pass_.drive
-        life = lives[row.serial] = _Life(model=drive.identity.model if drive else None, first=at, last=at)
-    elif at <= life.last:
-        when = "the same day" if at == life.last else "a later day"
+        life.model = drive.identity.model if drive else None
+    elif at <= life.read:
+        when = "the same day" if at == life.read else "a later day"
         bad(f"{path}: {row.serial} on {rfc3339(at)[:10]} stands behind {when}; the row was skipped")
         life.failed = life.failed or row.failed
         return
     step = analyser.advance(life.state, row.pass_)
-    if step.call is not None and (life.state.call is None or step.call.word is not life.state.call.word):
-        life.calls.append(step.call)
-    for entry in step.happened:
-        if entry.kind == "drift":
-            evidence = entry.data["evidence"]
-            life.drifts.append(Drift(at=at, signal=str(entry.data["signal"]), evidence=float(str(evidence))))
-    life.state = step.state
-    life.last = at
-    life.rows += 1
+    _follow(life, step.state, step.happened)
+    life.read = at
+    _used(life, at, at)
     life.failed = life.failed or row.failed
+
+
+def _work(lives: dict[str, _Life], stretch: Stretch, bad: Callable[[str], None], path: Path) -> None:
+    """Take one row of a drive's traffic in; a day of it is judged once the next one begins."""
+    begins = int(stretch.at - stretch.seconds)
+    life = lives.get(stretch.serial)
+    if life is None:
+        life = lives[stretch.serial] = _Life(model=None, first=begins, last=stretch.at)
+    # A second to either side: times are whole seconds, intervals are not.
+    elif life.traffic.until is not None and begins < life.traffic.until - 1:
+        when = f"{stretch.serial} at {rfc3339(stretch.at)}"
+        bad(f"{path}: {when} overlaps traffic before it or stands behind it; the row was skipped")
+        return
+    for day, rollups in life.traffic.add(stretch):
+        _take_day(life, day, rollups)
+    _used(life, begins, stretch.at)
+
+
+def _take_day(life: _Life, day: int, rollups: Sequence[IoRollup]) -> None:
+    step = analyser.take_in_traffic(life.state, life.latency, rollups, day=day, at=(day + 1) * DAY, key="")
+    life.latency = step.latency
+    _follow(life, step.state, step.happened)
+
+
+def _follow(life: _Life, state: analyser.DriveState, happened: Iterable[Entry]) -> None:
+    """Note what a step changed."""
+    before, call = life.state.call, state.call
+    if call is not None and (before is None or call.word is not before.word):
+        life.calls.append(call)
+    for entry in happened:
+        if entry.kind == "drift":
+            evidence = float(str(entry.data["evidence"]))
+            life.drifts.append(Drift(at=entry.at, signal=str(entry.data["signal"]), evidence=evidence))
+    life.state = state
+
+
+def _used(life: _Life, first: int, last: int) -> None:
+    life.rows += 1
+    life.first, life.last = min(life.first, first), max(life.last, last)
 
 
 def _ended(lives: Iterable[tuple[str, _Life]]) -> list[ReplayedDrive]:

@@ -5,6 +5,7 @@ from diskwatch import analyser
 from diskwatch.records import CallWord, summed
 from diskwatch.replay import replay
 from tests.samples import DAY, read
+from tests.trends.traffic import invented_days
 
 HEADER = "day,serial,model,a5_raw,a197_raw,a9_raw,failed\n"
 
@@ -91,3 +92,75 @@ def test_the_open_daily_drive_data_are_judged_as_the_rule_promises(shared):
     summary = summed(part.drives, skipped=part.skipped)
     assert (summary.drives, summary.drive_days, summary.failed, summary.skipped) == (11_446, 433_340, 60, 0)
     assert (summary.warned_failed, summary.warned_sound, summary.median_lead_days) == (30, 103, 10.5)
+
+
+TRAFFIC = "time,serial,interval_s,reads,writes,read_bytes,write_bytes,read_ms,write_ms,busy_ms\n"
+
+
+def traffic_rows(serial, days):
+    """Days of roll-ups as rows of a table."""
+    for rollups in days:
+        for one in rollups:
+            counts = one.counts
+            cells = (
+                one.at,
+                serial,
+                one.wall_seconds,
+                counts.reads,
+                counts.writes,
+                counts.read_bytes,
+                counts.write_bytes,
+                counts.read_ms,
+                counts.write_ms,
+                counts.busy_ms,
+            )
+            yield ",".join(map(str, cells))
+
+
+def lay_traffic(tmp_path, *rows, name="traffic.csv"):
+    path = tmp_path / name
+    path.write_text(TRAFFIC + "".join(f"{row}\n" for row in rows), encoding="utf-8")
+    return path
+
+
+def test_slower_reads_in_recorded_traffic_are_a_drift_and_a_call(tmp_path):
+    slow = traffic_rows("INV1", invented_days(3, 110, slower_from=90))
+    even = traffic_rows("INV2", invented_days(4, 110))
+    path = lay_traffic(tmp_path, *slow, *even)
+    one, other = replay([path]).drives
+    assert [drift.signal for drift in one.drifts] == ["read-latency", "write-latency"]
+    assert 190 <= one.drifts[0].at // DAY <= 200
+    assert [call.word for call in one.calls] == [CallWord.LOOK]
+    assert other.drifts == ()
+    assert replay([path], jobs=2).drives == (one, other)
+
+
+def test_traffic_may_lie_in_several_files_and_beside_readings_of_the_same_drive(tmp_path):
+    rows = list(traffic_rows("INV1", invented_days(3, 110, slower_from=90)))
+    halves = [
+        lay_traffic(tmp_path, *rows[:900], name="a.csv"),
+        lay_traffic(tmp_path, *rows[900:], name="b.csv"),
+    ]
+    readings = lay(tmp_path, *(f"{day},INV1,m,0,0,{day * 24},0" for day in range(100, 210)))
+    (whole,) = replay([lay_traffic(tmp_path, *rows)]).drives
+    (alone,) = replay(halves).drives
+    (both,) = replay([readings, *halves]).drives
+    assert alone == whole
+    assert both.drifts == whole.drifts
+    assert both.model == "m"
+    assert both.rows == whole.rows + 110
+
+
+def test_traffic_that_overlaps_or_runs_backwards_is_skipped_and_named(tmp_path):
+    path = lay_traffic(
+        tmp_path,
+        "1000,INV1,300,1,1,4096,4096,5,5,10",
+        "1200,INV1,300,1,1,4096,4096,5,5,10",
+        "400,INV1,300,1,1,4096,4096,5,5,10",
+        "1300,INV1,300,1,1,4096,4096,5,x,10",
+        "1300,INV1,300,1,1,4096,4096,5,5,10",
+    )
+    part = replay([path])
+    assert (part.skipped, part.drives[0].rows) == (3, 2)
+    assert "overlaps traffic before it" in part.told[0]
+    assert "traffic.csv:5: write_ms" in part.told[2]
