@@ -28,7 +28,7 @@ def run(args: argparse.Namespace) -> int:
     """Look at everything that a watch needs; 0 where nothing is missing, 4 where something is."""
     owner = settings(args)
     folder = state_folder(args)
-    this = machine(owner)
+    this = machine(owner, folder)
     survey = this.survey()
     passes = _asked(this, survey.found)
     found = checks(

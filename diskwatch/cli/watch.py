@@ -4,11 +4,13 @@ import argparse
 import os
 import sys
 import threading
+from pathlib import Path
 
 from diskwatch.cli.common import settings, state_folder, talk
-from diskwatch.errors import NothingToWorkOn
+from diskwatch.errors import DiskwatchError, NothingToWorkOn
+from diskwatch.history.reader import Past
 from diskwatch.machine.real import RealMachine
-from diskwatch.records import DriveRound
+from diskwatch.records import DriveRound, Way
 from diskwatch.service.watch import Watch, now
 from diskwatch.settings import Settings
 from diskwatch.units import plain
@@ -25,7 +27,8 @@ def options(parser: argparse.ArgumentParser) -> None:
 def run(args: argparse.Namespace) -> int:
     """Watch; 0 when all was recorded, 3 without any drive, 4 when the history could not be written."""
     owner = settings(args)
-    watch = Watch(machine(owner), owner, state_folder(args), told=None if args.tied else Voice().say)
+    folder = state_folder(args)
+    watch = Watch(machine(owner, folder), owner, folder, told=None if args.tied else Voice().say)
     if watch.trouble:
         talk(f"diskwatch: {watch.trouble}; watching goes on without it")
     if args.once:
@@ -47,15 +50,25 @@ def run(args: argparse.Namespace) -> int:
     return 0
 
 
-def machine(owner: Settings) -> RealMachine:
-    """This machine, as the owner wants it watched."""
+def machine(owner: Settings, folder: Path) -> RealMachine:
+    """This machine, as the owner wants it watched, with what the history in a folder knows of its adapters."""
     return RealMachine(
         command=owner.smart.command,
         timeout=float(owner.smart.timeout),
         only=owner.watch.only,
         ignore=owner.watch.ignore,
+        ways=_ways(folder),
         now=now,
     )
+
+
+def _ways(folder: Path) -> tuple[Way, ...]:
+    """What was found out of USB adapters; without a history that can be read, it is found out anew."""
+    try:
+        with Past.open(folder) as past:
+            return past.ways()
+    except DiskwatchError:
+        return ()
 
 
 def _end_with_parent(watch: Watch) -> None:

@@ -8,9 +8,12 @@ import time
 import pytest
 
 from diskwatch.analyser import UNREAD_LIMIT
-from diskwatch.cli.watch import Voice
+from diskwatch.cli.watch import Voice, machine
 from diskwatch.history.lock import watcher
-from diskwatch.records import DriveRound, KnownDrive
+from diskwatch.history.writer import History
+from diskwatch.places import HISTORY
+from diskwatch.records import DriveRound, KnownDrive, Round, Way
+from diskwatch.settings import Settings
 from tests.cli.run import COMMAND, ROOT, run, settings_for
 from tests.player import calls, lay, lay_plan, set_day
 from tests.samples import HDD, HERE, NOON, read
@@ -152,6 +155,19 @@ def test_a_command_that_is_no_smartctl_is_said_and_moves_no_call(tmp_path, stran
     ready = run("preflight", "--json", "--state", tmp_path / "state", "--settings", settings)
     assert ready.code == 4
     assert [one["name"] for one in ready.json["checks"] if "does not answer" in one["text"]] == ["drives"]
+
+
+def test_the_machine_begins_with_what_the_history_knows_of_its_adapters(tmp_path, monkeypatch):
+    way = Way(adapter="1f75:0621", instance="boot 1, disk 7", type="sat")
+    begun = []
+    monkeypatch.setattr("diskwatch.cli.watch.RealMachine", lambda **words: begun.append(words["ways"]))
+    machine(Settings(), tmp_path)
+    with History.open(tmp_path) as history:
+        history.record(Round(at=NOON, drives=(), ways=(way,)))
+    machine(Settings(), tmp_path)
+    (tmp_path / HISTORY).write_text("no history")
+    machine(Settings(), tmp_path)
+    assert begun == [(), (way,), ()]
 
 
 def test_an_old_tool_that_knows_no_json_is_read_by_its_text(tmp_path):

@@ -4,7 +4,7 @@ from dataclasses import replace
 import pytest
 
 from diskwatch.history.reader import Past
-from diskwatch.records import CallWord, Identity, Kind, Outcome, Place
+from diskwatch.records import CallWord, Identity, Kind, Outcome, Place, Way
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.pace import Why
 from diskwatch.service.rounds import Rounds
@@ -298,3 +298,13 @@ def test_no_drive_that_was_left_out_is_taken_for_gone_when_a_history_comes_into_
     outcomes = [one.pass_.outcome for _ in range(3) for one in running.run()]
     keeper.close()
     assert outcomes == [Outcome.READ]
+
+
+def test_what_asking_found_out_of_an_adapter_is_kept_also_where_its_drive_is_not_watched(tmp_path, keeper):
+    way = Way(adapter="1f75:0621", instance="boot 1, disk 7", type="sat")
+    machine = ScriptedMachine(found(HDD))
+    machine.answers = {"/dev/sda": [replace(read(NOON), way=way)]}
+    assert rounds(machine, keeper, wanted=lambda *_: False).run() == ()
+    with Past.open(tmp_path) as past:
+        assert past.ways() == (way,)
+        assert past.bays(NOON).drives == ()
