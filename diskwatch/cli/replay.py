@@ -1,9 +1,12 @@
 """Recorded readings through the same analyser: what it would have said, and when.
 
-FILE is a table in CSV, also packed (.csv.gz), one row a drive and day. Two layouts, known by their first line:
+FILE is a table in CSV, also packed (.csv.gz), in one of three layouts, known by its first line. One row a day:
   day, serial, model, bytes, a<id>_raw, a<id>_norm, and where there are any: failed, percentage_used,
       available_spare, media_errors, data_written (bytes), unsafe_power_offs, critical_warning, temperature
   date, serial_number, model, capacity_bytes, failure, smart_<id>_raw, smart_<id>_normalized
+or one row a drive and interval, with what the kernel counted in it, from which slower reads and writes show:
+  time (RFC 3339 or seconds since 1970; the interval's end), serial, interval_s, reads, writes, read_bytes,
+      write_bytes, read_ms, write_ms, busy_ms
 A drive failed when any of its rows says so. Rows that cannot be understood are named and left out.
 """
 
@@ -21,7 +24,7 @@ from diskwatch.units import plain, rfc3339
 
 def options(parser: argparse.ArgumentParser) -> None:
     """Options of this command."""
-    parser.add_argument("files", metavar="FILE", nargs="+", type=Path, help="tables of recorded readings")
+    parser.add_argument("files", metavar="FILE", nargs="+", type=Path, help="tables of recorded readings or traffic")
     parser.add_argument("--json", action="store_true", help="one JSON object")
     parser.add_argument("--jobs", metavar="N", type=int, default=1, help="processes to share the drives out to")
 
