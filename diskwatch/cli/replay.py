@@ -24,7 +24,7 @@ from diskwatch.units import plain, rfc3339
 
 def options(parser: argparse.ArgumentParser) -> None:
     """Options of this command."""
-    parser.add_argument("files", metavar="FILE", nargs="+", type=Path, help="tables of recorded readings or traffic")
+    parser.add_argument("files", metavar="FILE", nargs="+", type=Path, help="tables of readings or traffic")
     parser.add_argument("--json", action="store_true", help="one JSON object")
     parser.add_argument("--jobs", metavar="N", type=int, default=1, help="processes to share the drives out to")
 
