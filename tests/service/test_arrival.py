@@ -311,3 +311,25 @@ def test_a_drive_whose_clock_was_odd_elsewhere_goes_on_here_as_if_it_had_never_m
     with kept(there) as history:
         assert live(history, passes[100:]) == state
     assert told(there) == told(all_)
+
+
+def test_what_the_owner_said_travels_and_the_word_said_last_stands(tmp_path):
+    here, there = tmp_path / "here", tmp_path / "there"
+    with kept(here) as history:
+        live(history, a_life(3))
+        history.tell(1, {"label": "attic", "asset": "A-1"}, NOON)
+        history.tell(1, {"backed-up": ""}, NOON + 9)
+    with kept(there) as history:
+        live(history, a_life(3, begin=NOON + 9 * DAY), place=ELSEWHERE)
+        history.tell(1, {"asset": "B-2"}, NOON + DAY)
+        history.tell(1, {"label": "cellar", "backed-up": "2026-11-30"}, NOON - DAY)
+    taken(there, exported(here))
+    taken(here, exported(there))
+    for folder in (here, there):
+        with History.open(folder) as history:
+            said = history._db.execute("SELECT fact, value, at FROM owner_fact ORDER BY fact").fetchall()
+        assert said == [
+            ("asset", "B-2", NOON + DAY),
+            ("backed-up", "", NOON + 9),
+            ("label", "attic", NOON),
+        ]
