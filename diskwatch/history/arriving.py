@@ -147,6 +147,7 @@ class _Arrival:
             "value": self._value,
             "beside": self._beside,
             "evidence": self._evidence,
+            "answer": self._answer,
             "load": self._load,
             "finding": self._finding,
             "call": self._call,
@@ -274,6 +275,14 @@ class _Arrival:
             ("series", "day", "evidence"),
             (series, day_number(at), float(of["evidence"])),
             drive=False,
+        )
+
+    def _answer(self, at: int, of: Mapping[str, Any]) -> None:
+        self._db.execute(
+            "INSERT INTO answer (drive, at, call, packed) VALUES (?, ?, ?, ?) ON CONFLICT (drive)"
+            " DO UPDATE SET at = excluded.at, call = excluded.call, packed = excluded.packed"
+            " WHERE excluded.at > at",
+            (self._drive, at, words(of["call"]), packing.packed(text(of["text"]))),
         )
 
     def _load(self, at: int, of: Mapping[str, Any]) -> None:

@@ -12,6 +12,7 @@ Both hold the same rows. A row has a ``record`` (what it is), a ``drive`` (which
 | passes | outcome, passes, last: of passes thinned, how many of a day ended so; at: the first |
 | value | signal, value, unit, kind, source, reason: on change |
 | beside | reading: failing attributes, self-tests and limits, on change |
+| answer | text, call: what smartctl last printed of the drive, and the call after it |
 | evidence | signal, evidence: M in days at the end of the day |
 | finding | as it stands or stood; closed: since when no longer |
 | call | as it was |

@@ -52,6 +52,10 @@ def _beside(row: dict[str, Any]) -> dict[str, Any]:
     return {**row, "reading": json.loads(packed)}
 
 
+def _answer(row: dict[str, Any]) -> dict[str, Any]:
+    return {"at": row["at"], "call": row["call"], "text": rows.text(packing.unpacked(row["packed"]))}
+
+
 def _load(row: dict[str, Any]) -> dict[str, Any]:
     return {**row, "histogram": sorted(packing.histogram(row["histogram"]).items())}
 
@@ -84,6 +88,7 @@ _QUERIES = {
     " (SELECT latest.day FROM latest WHERE latest.series = evidence.series)"
     " UNION SELECT day * 86400, signal, latest.evidence FROM latest"
     " JOIN series ON series.number = series WHERE drive = :drive AND latest.evidence IS NOT NULL",
+    "answer": "SELECT at, call, packed FROM answer WHERE drive = :drive",
     "load": "SELECT day * 86400 AS at, load_class, direction, rollups, operations, histogram FROM io_day"
     " WHERE drive = :drive",
     "finding": "SELECT since AS at, name, kind, signals, calls, cause, evidence, sentence, data, closed"
@@ -98,6 +103,7 @@ _FIELDS = {
     "drive": _drive,
     "value": _value,
     "beside": _beside,
+    "answer": _answer,
     "load": _load,
     "finding": _finding,
     "event": _data,

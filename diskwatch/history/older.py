@@ -53,6 +53,7 @@ _VIEWS = {
         *(_with(name, "0 AS turn") for name in ("drive", "pass", "analyser_state", "kept_state")),
     ),
     "0005_ways": (_nothing("way", "adapter instance type at"),),
+    "0006_answer": (_nothing("answer", "drive at call packed"),),
 }
 """What stands in for a step that a file may lack; one without a line here must be taken before it is read."""
 

@@ -5,6 +5,7 @@ from collections.abc import Iterable
 
 from diskwatch.errors import HistoryError
 from diskwatch.history import packing, rows
+from diskwatch.history.answers import write_answer
 from diskwatch.history.counting import count, counted_before
 from diskwatch.history.judgement import keep_copy, write_judgement
 from diskwatch.history.moments import Moment
@@ -110,6 +111,9 @@ def _write_part(connection: sqlite3.Connection, part: DriveRound, at: int) -> No
     moment = _write_pass(connection, number, part.pass_, explanation, turn)
     if part.pass_.reading is not None:
         write_reading(connection, number, moment, part.pass_.reading)
+    if part.pass_.answer is not None:
+        call = None if part.call is None else part.call.word.value
+        write_answer(connection, number, part.pass_.at, part.pass_.answer, call)
     if part.state is not None:
         keep_copy(connection, number, part.pass_.at)
     write_judgement(connection, part, at)

@@ -20,7 +20,7 @@ must be answered quickly.
 from collections.abc import Callable
 
 from diskwatch.history.library import Database, Migrations
-from diskwatch.history.steps import base, every_pass, in_order, ten_years, ways
+from diskwatch.history.steps import answer, base, every_pass, in_order, ten_years, ways
 from diskwatch.history.versions import MIGRATION_SET, MIGRATIONS
 
 STATEMENTS = {
@@ -29,6 +29,7 @@ STATEMENTS = {
     "0003_every_pass": every_pass.STATEMENTS,
     "0004_in_order": in_order.STATEMENTS,
     "0005_ways": ways.STATEMENTS,
+    "0006_answer": answer.STATEMENTS,
 }
 """What each step does, by its name in `diskwatch.history.versions`."""
 

@@ -22,6 +22,9 @@ from diskwatch.records import Outcome, Pass, Way
 
 _log = logging.getLogger(__name__)
 
+LONGEST_ANSWER = 256 * 1024
+"""Letters of an answer that is handed on word for word, at most: a full one has some 100,000."""
+
 _SCANNED = re.compile(r"(?P<node>/[^\s#]+)(?:\s+-d\s+(?P<type>[^\s#]+))?\s*(?:#.*)?")
 
 
@@ -51,6 +54,7 @@ class _Told:
     said: tuple[str, ...] = ()
     document: Document | None = None
     status: int | None = None
+    text: str = ""
 
 
 def _uncounted() -> int | None:
@@ -220,7 +224,7 @@ class Smartctl:
         if verdict.outcome is Outcome.READ:
             reading = self._optional.learn(found, logs, what, lines, document, at=self._now())
             what = replace(what, reading=reading)
-        return _Told(type_, verdict, what, said, document, answer.status)
+        return _Told(type_, verdict, what, said, document, answer.status, text)
 
     def _of_whom(self, verdict: Verdict) -> Verdict:
         """The verdict, where the command never listed or answered anything as smartctl does: on the command."""
@@ -273,4 +277,5 @@ def _pass(told: _Told, found: Found) -> Pass:
         drive=merged(found.drive, what.drive) if what is not None and what.drive is not None else None,
         reading=what.reading if what is not None and outcome is Outcome.READ else None,
         exit_bits=told.status,
+        answer=told.text if outcome is Outcome.READ and len(told.text) <= LONGEST_ANSWER else None,
     )

@@ -169,6 +169,7 @@ class Pass:
         heard: what the machine's other senses count of it (the kernel's log, file systems, arrays), whatever
             the outcome; empty where nothing listens.
         way: what it found out of the USB adapter before the drive; None where that is no news.
+        answer: what smartctl printed, word for word; None where it was not read, or is too long to be kept.
     """
 
     at: int
@@ -180,6 +181,7 @@ class Pass:
     took_ms: int = 0
     heard: tuple[Value, ...] = ()
     way: Way | None = None
+    answer: str | None = field(default=None, repr=False, compare=False)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -7,6 +7,7 @@ here, bounded, and is written when the trouble is over; what the trouble is can 
 from collections import deque
 from collections.abc import Callable, Sequence
 from contextlib import suppress
+from dataclasses import replace
 from pathlib import Path
 from typing import TypeVar
 
@@ -124,7 +125,9 @@ class Keeper:
             self._known[one.known.number] = one.known
             if one.state is not None:
                 self._states[one.known.number] = one.state
-        self._write(lambda history: history.record(finished))
+        # Answers in full would fill the memory while the history is out of reach: they are worth no waiting.
+        kept = finished if self._history is not None and not self._waiting else _without_answers(finished)
+        self._write(lambda history: history.record(kept))
 
     def add_traffic(self, spans: Sequence[IoSpan]) -> None:
         """Keep traffic."""
@@ -225,6 +228,13 @@ class Keeper:
             self._waiting.popleft()
             raise
         self._waiting.popleft()
+
+
+def _without_answers(finished: Round) -> Round:
+    return replace(
+        finished,
+        drives=tuple(replace(one, pass_=replace(one.pass_, answer=None)) for one in finished.drives),
+    )
 
 
 def _known(line: DriveLine) -> KnownDrive:

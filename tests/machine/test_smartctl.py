@@ -489,3 +489,21 @@ def test_a_command_that_turns_out_to_be_smartctl_after_all_is_no_trouble_any_mor
 def test_a_missing_command_is_no_tool(tmp_path: Path):
     found = Smartctl(str(tmp_path / "none"), 30, lambda: NOW).ask(asked())
     assert (found.outcome, found.exit_bits) == (Outcome.NO_TOOL, None)
+
+
+@pytest.mark.parametrize("recording", [HDD, NVME_JSON], ids=["text", "document"])
+def test_what_was_printed_is_handed_on_word_for_word(recording):
+    words = recording.read_text(encoding="utf-8")
+    found = Smartctl("smartctl", 60, lambda: NOW, door=Told(said(words))).ask(asked())
+    assert (found.outcome, found.answer) == (Outcome.READ, words)
+
+
+def test_an_answer_too_long_to_be_kept_is_read_and_not_handed_on():
+    words = HDD.read_text(encoding="utf-8") + "\n" * 300_000
+    found = Smartctl("smartctl", 60, lambda: NOW, door=Told(said(words))).ask(asked())
+    assert (found.outcome, found.answer) == (Outcome.READ, None)
+
+
+def test_what_brought_no_reading_is_not_handed_on():
+    found = Smartctl("smartctl", 60, lambda: NOW, door=Told(said("<html>"))).ask(asked())
+    assert (found.outcome is Outcome.READ, found.answer) == (False, None)

@@ -1,10 +1,12 @@
 import os
 import sqlite3
 import subprocess
+from dataclasses import replace
 
 import pytest
 
 from diskwatch.errors import HistoryError, HistoryHeld, HistoryTooNew
+from diskwatch.history.proof import Printed
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
 from diskwatch.records import DriveRound, Entry, Round
@@ -198,3 +200,20 @@ def test_a_change_is_refused_where_the_history_cannot_be_written(tmp_path):
     with pytest.raises(HistoryError, match="cannot be written now"):
         keeper.change(lambda history: history.known())
     keeper.close()
+
+
+def test_answers_in_full_are_kept_but_wait_for_nothing(tmp_path):
+    def answered(keeper, at):
+        finished = a_round(keeper, at)
+        (part,) = finished.drives
+        return replace(finished, drives=(replace(part, pass_=replace(part.pass_, answer=f"all of {at}")),))
+
+    keeper = Keeper(tmp_path)
+    keeper.record(answered(keeper, NOON))
+    keeper.let_go("it is away")
+    keeper.record(answered(keeper, NOON + 86_400))
+    keeper.come_back()
+    keeper.close()
+    with Past.open(tmp_path) as past:
+        assert len(past.passes(1)) == 2
+        assert past.printed(1) == Printed(at=NOON, text=f"all of {NOON}")
