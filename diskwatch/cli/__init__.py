@@ -35,6 +35,9 @@ COMMANDS = {
 }
 """Every command with what it does; its module in this room bears its name."""
 
+_STATE = "folder of the history (default: the system's, else your own state folder)"
+"""What --state means; a command for which it means something else says so in a `STATE` of its own."""
+
 _ALONE = "dashboard"
 """The module of the bare command."""
 
@@ -54,7 +57,7 @@ def main(argv: Sequence[str] | None = None) -> int:
     try:
         name, words = _chosen(words)
         module = importlib.import_module(f"diskwatch.cli.{name.replace('-', '_')}")
-        parser = _parser(name, module.__doc__ or "")
+        parser = _parser(name, module.__doc__ or "", state=getattr(module, "STATE", _STATE))
         module.options(parser)
         code = int(module.run(parser.parse_args(words)))
         sys.stdout.flush()
@@ -109,7 +112,7 @@ class _Parser(argparse.ArgumentParser):
         raise UsageError(message, hint=f"see '{self.prog} --help'")
 
 
-def _parser(name: str, about: str) -> argparse.ArgumentParser:
+def _parser(name: str, about: str, *, state: str) -> argparse.ArgumentParser:
     alone = name == _ALONE
     parser = _Parser(
         prog="diskwatch" if alone else f"diskwatch {name}",
@@ -118,11 +121,7 @@ def _parser(name: str, about: str) -> argparse.ArgumentParser:
         epilog=_listed() if alone else None,
         allow_abbrev=False,
     )
-    parser.add_argument(
-        "--state",
-        metavar="DIR",
-        help="folder of the history (default: the system's, else your own state folder)",
-    )
+    parser.add_argument("--state", metavar="DIR", help=state)
     parser.add_argument("--settings", metavar="FILE", help="settings file (TOML)")
     if alone:
         parser.add_argument("--version", action="version", version=f"diskwatch {__version__}")

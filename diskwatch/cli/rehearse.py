@@ -8,6 +8,7 @@ import argparse
 import contextlib
 import math
 import os
+import re
 import sys
 import tempfile
 import time
@@ -20,6 +21,8 @@ from diskwatch.places import state_folder
 from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, summed
 from diskwatch.rehearsal import scenarios, state
 from diskwatch.rehearsal.course import Course, Ended
+from diskwatch.rehearsal.happenings import MOST_DAYS
+from diskwatch.rehearsal.scenario import MARK, MOST_SEED
 from diskwatch.rehearsal.story import Story
 from diskwatch.rehearsal.verdict import Outcome, Verdict
 from diskwatch.service.asking import InTurn
@@ -29,7 +32,6 @@ from diskwatch.service.traffic import Traffic
 from diskwatch.units import DAY, plain, rfc3339, say_count
 
 _MEMORY = Path("/dev/shm")  # noqa: S108 - a folder of a name of its own is made in it
-_MOST_DAYS = 36_525
 
 
 def options(parser: argparse.ArgumentParser) -> None:
@@ -46,14 +48,24 @@ def options(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--speed", type=_speed, metavar="X", help="days of the invented machine a second (default: no limit)"
     )
-    parser.add_argument("--seed", type=int, metavar="N", help="of chance (default: the scenario's)")
+    parser.add_argument("--seed", type=_seed, metavar="N", help="of chance (default: the scenario's)")
     parser.add_argument("--headless", action="store_true", help="without the dashboard")
     parser.add_argument("--json", action="store_true", help="one JSON object")
 
 
+STATE = "folder that keeps the rehearsal's history (default: a temporary one in memory, gone afterwards)"
+"""What --state means here; it says otherwise for every other command."""
+
+
 def _days(text: str) -> int:
-    if not text.isdecimal() or not 1 <= int(text) <= _MOST_DAYS:
-        raise argparse.ArgumentTypeError(f"expected a number of days from 1 to {_MOST_DAYS}, not {text!r}")
+    if not re.fullmatch(r"[0-9]{1,6}", text) or not 1 <= int(text) <= MOST_DAYS:
+        raise argparse.ArgumentTypeError(f"expected a number of days from 1 to {MOST_DAYS}, not {text!r}")
+    return int(text)
+
+
+def _seed(text: str) -> int:
+    if not re.fullmatch(r"[+-]?[0-9]{1,19}", text) or abs(int(text)) > MOST_SEED:
+        raise argparse.ArgumentTypeError(f"expected a whole number below 2^63, not {text!r}")
     return int(text)
 
 
@@ -144,13 +156,16 @@ def _list(*, as_json: bool) -> None:
         print_json(
             {
                 "schema": "diskwatch/scenarios/1",
+                "invented": True,
                 "scenarios": [
                     {
                         "name": name,
                         "title": one.title,
                         "about": " ".join(one.about.split()),
+                        "place": one.place,
                         "days": one.days,
                         "drives": len(one.drive),
+                        "serials": [drive.serial for drive in one.drive],
                         "expected": [wish.because for wish in one.expect],
                     }
                     for name, one in known.items()
@@ -158,10 +173,11 @@ def _list(*, as_json: bool) -> None:
             }
         )
         return
+    print(f"Machines, drives, makers and places of these scenarios are all {MARK}.")
     width = max(map(len, known), default=0)
     for name, one in known.items():
         drives = "1 INVENTED drive" if len(one.drive) == 1 else f"{len(one.drive)} INVENTED drives"
-        print(plain(f"{name:<{width}}  {one.days:>4} days, {drives}: {one.title}"))
+        print(plain(f"{name:<{width}}  {one.days:>4} days, {drives} in {one.place}: {one.title}"))
         for wish in one.expect:
             print(plain(f"    {' '.join(wish.because.split())}"))
 
@@ -216,9 +232,14 @@ def told(ended: Ended) -> str:
     lines += ["", "Expected:"]
     for one in ended.outcomes:
         when = f" on day {one.day:g}" if one.day is not None else ""
-        lines.append(f"  {one.verdict.value + when:<24} {one.serial}: {_wished(one)}")
+        word = _SAID.get(one.verdict, one.verdict.value)
+        lines.append(f"  {word + when:<24} {one.serial}: {_wished(one)}")
         lines.append(f"  {'':<24} ({one.wish.because})")
     return "\n".join(plain(line) for line in lines) + "\n"
+
+
+_SAID = {Verdict.OPEN: "not yet"}
+"""Verdicts that are told to a person in other words."""
 
 
 def _told_story(story: Story, start: int) -> Iterator[str]:

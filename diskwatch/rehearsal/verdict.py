@@ -13,8 +13,9 @@ from diskwatch.units import DAY
 class Verdict(StrEnum):
     """What became of an expectation.
 
-    NOT_YET_JUDGED needs parts of the judgement that are not there yet; it is never reached. OPEN: the run ended
-    before the day by which it should be.
+    NOT_YET_JUDGED needs parts of the judgement that are not there yet; it is never reached. Where the run ended
+    before it could be settled: OPEN if the day by which it should be had not come, KEPT_SO_FAR if what must
+    never be was not so far, and the scenario goes on.
     """
 
     REACHED = "reached"
@@ -23,6 +24,7 @@ class Verdict(StrEnum):
     WRONG_CAUSE = "wrong cause"
     BROKEN = "broken"
     OPEN = "open"
+    KEPT_SO_FAR = "kept so far"
     NOT_YET_JUDGED = "not yet judged"
 
 
@@ -56,27 +58,39 @@ def outcomes(scenario: Scenario, stories: Mapping[str, Story], *, start: int, en
     """
     named = {wish.drive for wish in scenario.expect if wish.drive}
     return tuple(
-        _outcome(wish, stories[serial], start, end)
+        _outcome(wish, stories[serial], start=start, end=end, whole=start + scenario.days * DAY)
         for wish in scenario.expect
         for serial in ([wish.drive] if wish.drive else [one for one in stories if one not in named])
     )
 
 
-def _outcome(wish: Expectation, story: Story, start: int, end: int) -> Outcome:
-    verdict, at = _judged(wish, story, start, end)
+def _outcome(wish: Expectation, story: Story, *, start: int, end: int, whole: int) -> Outcome:
+    verdict, at = _judged(wish, story, start, end, whole=end >= whole)
     day = None if at is None else round((at - start) / DAY, 2)
     return Outcome(serial=story.serial, wish=wish, verdict=verdict, at=at, day=day)
 
 
-def _judged(wish: Expectation, story: Story, start: int, end: int) -> tuple[Verdict, int | None]:
+def _judged(
+    wish: Expectation, story: Story, start: int, end: int, *, whole: bool
+) -> tuple[Verdict, int | None]:
     broken = next((one for one in story.said if _breaks(wish, one)), None)
     if broken is not None:
         return Verdict.BROKEN, broken.at
     if wish.needs:
         return Verdict.NOT_YET_JUDGED, None
+    if not story.said:
+        return Verdict.OPEN if wish.call is None or end < _latest(wish, start) else Verdict.MISSED, None
+    kept = wish.stays is not None or bool(wish.never_cause)
     if wish.call is None:
-        return (Verdict.REACHED, None) if story.said else (Verdict.OPEN, None)
-    return _reached(wish, wish.call, story, start, end)
+        return Verdict.REACHED if whole else Verdict.KEPT_SO_FAR, None
+    verdict, at = _reached(wish, wish.call, story, start, end)
+    if verdict is Verdict.REACHED and kept and not whole:
+        return Verdict.KEPT_SO_FAR, at
+    return verdict, at
+
+
+def _latest(wish: Expectation, start: int) -> float:
+    return start + (wish.by_day or 0) * DAY
 
 
 def _breaks(wish: Expectation, one: Said) -> bool:
@@ -88,7 +102,7 @@ def _reached(
     wish: Expectation, call: CallWord, story: Story, start: int, end: int
 ) -> tuple[Verdict, int | None]:
     reached = [one for one in story.said if one.call.word.rank >= call.rank]
-    earliest, latest = start + wish.from_day * DAY, start + (wish.by_day or 0) * DAY
+    earliest, latest = start + wish.from_day * DAY, _latest(wish, start)
     if not reached:
         return (Verdict.OPEN, None) if end < latest else (Verdict.MISSED, None)
     if reached[0].at < earliest:

@@ -119,15 +119,48 @@ def test_a_person_is_told_the_story_and_that_it_is_invented(small):
 
 def test_a_death_without_warning_is_told_as_what_it_is(tmp_path):
     path = tmp_path / "dead.toml"
-    path.write_text(SMALL.replace("day = 5\n", "day = 23\n"), encoding="utf-8")
+    path.write_text(SMALL.replace("\nday = 5\n", "\nday = 23\n"), encoding="utf-8")
     told = run("rehearse", path, "--headless").out
     assert "nothing had told to copy it off: no error counter had moved" in told
 
 
 def test_a_shorter_run_leaves_open_what_was_expected_later(small):
     told = run("rehearse", small, "--json", "--days", 3).json
-    assert [one["verdict"] for one in told["expected"]] == ["open", "not yet judged", "reached"]
+    assert [one["verdict"] for one in told["expected"]] == ["open", "not yet judged", "kept so far"]
     assert told["to"] == "2025-01-04T00:00:00Z"
+    text = run("rehearse", small, "--headless", "--days", 3).out
+    assert "not yet " in text
+    assert "kept so far" in text
+    assert "reached" not in text
+
+
+def test_everything_that_is_told_says_that_it_is_invented(small):
+    for words in (("--headless",), ("--list",)):
+        assert "INVENTED" in run("rehearse", small, *words, "--days", 1).out.splitlines()[0]
+    lived, listed = (
+        run("rehearse", small, more, "--days", 1, "--json").json for more in ("--headless", "--list")
+    )
+    assert lived["invented"] is listed["invented"] is True
+    assert "invented" in lived["place"]
+    assert all("INVENTED" in drive["model"] for drive in lived["drives"])
+    for scenario in listed["scenarios"]:
+        assert "invented" in scenario["place"]
+        assert all(serial.startswith("INVENTED") for serial in scenario["serials"])
+
+
+def test_the_help_says_that_a_rehearsal_keeps_nothing_by_itself():
+    told = " ".join(run("rehearse", "--help").out.split())
+    assert "temporary" in told
+    assert "system's" not in told
+    assert "the system's" in " ".join(run("bays", "--help").out.split())
+
+
+def test_a_wrong_number_in_a_file_exits_2_with_one_line(small):
+    for wrong, named in (("day = nan", "[[event]] 1, day"), ("day = inf", "[[event]] 1, day")):
+        small.write_text(SMALL.replace("day = 5\n", f"{wrong}\n"), encoding="utf-8")
+        ended = run("rehearse", small, "--headless")
+        assert (ended.code, ended.out, ended.err.count("\n")) == (2, "", 1)
+        assert f"small.toml: {named}: expected a number from 0 to 36525" in ended.err
 
 
 def test_the_list_names_every_scenario():
@@ -145,6 +178,8 @@ def test_the_list_names_every_scenario():
         (("--days", "0"), "1 to 36525"),
         (("--speed", "0"), "above 0"),
         (("--seed", "x"), "--seed"),
+        (("--seed", "9" * 30), "below 2^63"),
+        (("--days", "٣"), "1 to 36525"),
     ],
 )
 def test_wrong_usage_exits_2_with_one_line(words, told):

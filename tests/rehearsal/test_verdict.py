@@ -33,6 +33,10 @@ def judged(wish: dict[str, Any], *told: Said, end: float = 100) -> Verdict:
     return one.verdict
 
 
+def kept(wish: dict[str, Any], *told: Said, end: float = 100) -> str:
+    return judged(wish, *told, end=end).value
+
+
 LOOK = {"call": CallWord.LOOK, "cause": Cause.MEDIA, "from_day": 10, "by_day": 20}
 
 
@@ -63,6 +67,38 @@ def test_what_must_not_be_is_broken_once_it_was_whatever_is_needed_elsewhere():
     assert judged(wish, said(5, "copy", "media"), said(6, "keep")) is Verdict.BROKEN
     assert judged(wish, said(5, "look", "link")) is Verdict.BROKEN
     assert judged({**wish, "needs": ("latency",)}, said(5, "look", "link")) is Verdict.BROKEN
+
+
+def test_what_must_never_be_is_kept_only_when_the_whole_scenario_is_over():
+    # The scenario of these tests lasts 30 days.
+    wish = {"stays": CallWord.LOOK, "never_cause": (Cause.LINK,)}
+    assert [kept(wish, said(2, "look", "media"), end=end) for end in (5, 29, 30, 31)] == [
+        "kept so far",
+        "kept so far",
+        "reached",
+        "reached",
+    ]
+    assert kept(wish, said(2, "copy", "media"), end=5) == "broken", "what was broken stays so"
+
+
+def test_a_call_that_must_never_be_exceeded_is_settled_only_at_the_end():
+    wish = {**LOOK, "stays": CallWord.LOOK}
+    assert kept(wish, said(12, "look", "media"), end=15) == "kept so far"
+    assert kept(wish, said(12, "look", "media"), end=30) == "reached"
+    assert kept(wish, end=15) == "open"
+
+
+def test_nothing_is_settled_of_a_drive_that_was_never_asked():
+    story = Story(serial=HDD, model="x")
+    cases: tuple[tuple[dict[str, Any], int, Verdict], ...] = (
+        (LOOK, 15, Verdict.OPEN),
+        (LOOK, 30, Verdict.MISSED),
+        ({"stays": CallWord.KEEP}, 30, Verdict.OPEN),
+    )
+    for wish, end, verdict in cases:
+        expectation = Expectation(**{"drive": HDD, "because": "x", **wish})
+        told = outcomes(scenario(expect=(expectation,)), {HDD: story}, start=0, end=end * DAY)
+        assert [one.verdict for one in told] == [verdict]
 
 
 def test_an_expectation_without_a_drive_is_of_all_that_no_other_names():
