@@ -5,6 +5,7 @@ readings, replay of recorded ones and rehearsal of a failure run the very same c
 """
 
 from diskwatch.analyser.advance import Step, advance
+from diskwatch.analyser.around import Around
 from diskwatch.analyser.explain import Explanation, explain
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.settle import settle
@@ -20,6 +21,7 @@ from diskwatch.analyser.traffic import (
 
 __all__ = [
     "UNREAD_LIMIT",
+    "Around",
     "DriveState",
     "Explanation",
     "Step",

@@ -4,6 +4,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 
 from diskwatch.analyser import counters, endings, findings, heard, outcomes, signs
+from diskwatch.analyser.around import ALONE, RETRACTS, Around, bays, power_shared, troubles, witness
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
@@ -49,12 +50,13 @@ class Step:
         return {**counted, **timed}
 
 
-def advance(state: DriveState, pass_: Pass) -> Step:
+def advance(state: DriveState, pass_: Pass, around: Around = ALONE) -> Step:
     """Take in one pass.
 
     Args:
         state: the drive's state before it.
         pass_: how asking the drive went and what it brought.
+        around: its bay and the other drives of the machine, where these are known.
 
     Returns:
         The new state and what follows from it. The same passes in the same order always give the same steps,
@@ -62,12 +64,13 @@ def advance(state: DriveState, pass_: Pass) -> Step:
     """
     happened = list(outcomes.told(state, pass_))
     if pass_.outcome is Outcome.READ and pass_.reading is not None:
-        now, more = _taken_in(state, pass_, pass_.reading)
+        now, more = _taken_in(state, pass_, pass_.reading, around)
         happened += more
     else:
         now, told = heard.without_reading(outcomes.without_reading(state, pass_), pass_)
         happened += told
-    call = _called(now, pass_)
+        now = _missed(now, pass_, around)
+    call = _called(now, pass_, around)
     if call is not None and (state.call is None or call.word is not state.call.word):
         happened += told_call(state.call, call)
     if call is not state.call:
@@ -75,7 +78,20 @@ def advance(state: DriveState, pass_: Pass) -> Step:
     return Step(state=now, happened=tuple(happened))
 
 
-def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveState, list[Entry]]:
+def _missed(state: DriveState, pass_: Pass, around: Around) -> DriveState:
+    """A pass that brought nothing may still be trouble that others share."""
+    day = day_number(pass_.at)
+    heard_today = [signal for signal, when in state.risen.items() if when == day]
+    absent = [name for name in ("fact:unreadable",) if name in state.standing and state.unread]
+    days = troubles(state, heard_today, absent, day)
+    return (
+        state if days is state.troubles else replace(state, troubles=days, bays=bays(state, days, around, day))
+    )
+
+
+def _taken_in(
+    state: DriveState, pass_: Pass, reading: Reading, around: Around
+) -> tuple[DriveState, list[Entry]]:
     """A reading: levels, rises, ledgers, damage, facts."""
     listened = heard.followed(pass_)
     counts = {**counters.followed(reading), **listened}
@@ -83,6 +99,12 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
     happened = heard.news(happened, pass_)
     hours = reading.number("power-on-hours")
     streams = counters.streams(state, pass_, counts, risen, hours)
+    firsts = _firsts(state, reading, {**counts, **heard.firsts(listened)})
+    damage = counters.damage(state, pass_, reading)
+    retracts, retracted = witness(state, reading)
+    stated = tuple(facts.facts(reading, at=pass_.at, first_spare=firsts.get("available-spare")))
+    day = day_number(pass_.at)
+    days = troubles(state, (*risen, RETRACTS) if retracted else risen, [one.name for one in stated], day)
     # Written out: replace() takes three times as long, and a replay of years comes by here for every day.
     now = DriveState(
         parameters=state.parameters,
@@ -92,13 +114,17 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         slept=state.slept,
         unread=0,
         hours=state.hours if hours is None else hours,
-        firsts=_firsts(state, reading, {**counts, **heard.firsts(listened)}),
+        firsts=firsts,
         latest={**state.latest, **counts},
         base=state.base,
         risen={**state.risen, **dict.fromkeys(risen, day_number(pass_.at))} if risen else state.risen,
         rose=counters.rose(state.rose, streams, heard.in_streams(risen)) if risen else state.rose,
         streams=streams,
-        spots=counters.damage(state, pass_, reading),
+        spots=damage,
+        showed=findings.showed(state, pass_, damage, risen, firsts),
+        troubles=days,
+        bays=bays(state, days, around, day),
+        retracts=retracts,
         settled=state.settled,
         word=state.word,
         warmth=warmth.felt(state.warmth, day=day_number(pass_.at), celsius=reading.number("temperature"))[0],
@@ -108,12 +134,14 @@ def _taken_in(state: DriveState, pass_: Pass, reading: Reading) -> tuple[DriveSt
         call=state.call,
     )
     shown = (
-        *facts.facts(reading, at=pass_.at, first_spare=now.firsts.get("available-spare")),
+        *stated,
         *findings.fresh_defects(now, pass_, reading, risen),
         *findings.drifts(now, pass_),
         *findings.back(now, pass_, risen),
         *findings.rule(now, pass_),
         *heard.shown(now, pass_),
+        *power_shared(now, pass_, around),
+        *findings.levels(now, pass_),
     )
     alarms = [
         entry(pass_, "drift", one.sentence, evidence=one.evidence, **dict(one.data))
@@ -143,17 +171,14 @@ def _standing(before: Mapping[str, Finding], shown: tuple[Finding, ...], at: int
     return after
 
 
-def _called(state: DriveState, pass_: Pass) -> Call | None:
+def _called(state: DriveState, pass_: Pass, around: Around) -> Call | None:
     """The call, or None as long as nothing is known of the drive."""
     if state.first_at is None and not state.standing:
         if pass_.outcome is Outcome.NO_SMART and pass_.drive is not None and pass_.drive.kind is Kind.VIRTUAL:
             return rules.decide((), before=state.call, at=pass_.at, quiet=sentences.no_smart())
         return state.call
     lead = rules.leading(state.standing.values())
-    if lead is None or pass_.reading is None:
-        explained = None
-    else:
-        explained = signs.explained(state, pass_.reading, day_number(pass_.at), lead)
+    explained = None if lead is None else signs.explained(state, pass_, lead, around)
     return rules.decide(
         state.standing.values(),
         before=state.call,

@@ -4,8 +4,9 @@ from collections.abc import Iterator, Mapping
 
 from diskwatch.analyser.counters import turns
 from diskwatch.analyser.state import DriveState
-from diskwatch.judge import rules, sentences
-from diskwatch.records import CallWord, Cause, Finding, FindingKind, Pass, Reading
+from diskwatch.judge import odds, rules, sentences
+from diskwatch.judge.odds_told import odds_told
+from diskwatch.records import CallWord, Cause, Finding, FindingKind, Odds, Pass, Reading
 from diskwatch.trends import spots
 from diskwatch.trends.episodes import Stream
 from diskwatch.trends.norms import NORMS, Norm
@@ -93,6 +94,7 @@ def fresh_defects(
         for signal in telling
         if signal in risen
     }
+    found = told_odds(state, pass_)
     yield Finding(
         name="fact:first-defect",
         kind=FindingKind.FACT,
@@ -101,7 +103,7 @@ def fresh_defects(
         calls=CallWord.LOOK,
         cause=Cause.MEDIA,
         evidence=None,
-        sentence=sentences.fresh_defects(shown),
+        sentence=sentences.fresh_defects(shown, odds_told(found)),
         data={signal: {"first": first, "now": now} for signal, (first, now) in shown.items()},
     )
 
@@ -126,6 +128,65 @@ def back(state: DriveState, pass_: Pass, risen: Mapping[str, int]) -> Iterator[F
         evidence=None,
         sentence=sentences.link_again(again, word),
         data=dict(again),
+    )
+
+
+def showed(
+    before: DriveState, pass_: Pass, damage: spots.Spots, risen: Mapping[str, int], firsts: Mapping[str, int]
+) -> Mapping[str, int]:
+    """What the drive has shown so far of the conditions that there are odds for.
+
+    Args:
+        before: the drive before the pass.
+        pass_: the pass.
+        damage: its damage after it.
+        risen: how far counters rose with it.
+        firsts: counters as first read.
+    """
+    if not damage.rises or pass_.drive is None or not odds.known_for(pass_.drive.kind):
+        return before.showed
+    day = day_number(pass_.at)
+    return odds.shown(
+        before.showed,
+        day=day,
+        fourfold=spots.fourfold(damage, day),
+        risen=("reallocated-sectors" in risen, "pending-sectors" in risen),
+        from_zero=firsts.get("reallocated-sectors") == firsts.get("pending-sectors") == 0,
+        watched=day - day_number(pass_.at if before.first_at is None else before.first_at),
+    )
+
+
+def told_odds(state: DriveState, pass_: Pass) -> Odds | None:
+    """What became of other drives that showed the same; None where there are no figures."""
+    return odds.odds(state.showed, day=day_number(pass_.at)) if state.showed else None
+
+
+def levels(state: DriveState, pass_: Pass) -> Iterator[Finding]:
+    """What is worth knowing but calls nothing: the odds."""
+    found = told_odds(state, pass_)
+    if found is None:
+        return
+    yield Finding(
+        name="level:odds",
+        kind=FindingKind.LEVEL,
+        signals=("reallocated-sectors", "pending-sectors"),
+        since=pass_.at,
+        calls=None,
+        cause=None,
+        evidence=None,
+        sentence=odds_told(found),
+        data={
+            "condition": found.condition,
+            "days": found.days,
+            "share": found.share,
+            "low": found.low,
+            "high": found.high,
+            "level": found.level,
+            "drives": found.drives,
+            "failed": found.failed,
+            "source": found.source,
+            "since_day": found.since_day,
+        },
     )
 
 
@@ -155,6 +216,7 @@ def rule(state: DriveState, pass_: Pass) -> Iterator[Finding]:
             score=score / 4,
             limit=limit / 4,
             days=spots.WINDOW,
+            odds=odds_told(told_odds(state, pass_)),
         ),
         data={"score": score / 4, "fresh": fresh, "limit": limit / 4},
     )

@@ -2,11 +2,14 @@
 
 from collections.abc import Mapping
 
+from diskwatch.analyser.around import Around
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import causes
 from diskwatch.judge.causes import Explained
-from diskwatch.records import Cause, Finding, FindingKind, Reading
+from diskwatch.judge.neighbours import Trouble
+from diskwatch.records import Cause, Finding, FindingKind, Kind, Pass, Reading
 from diskwatch.trends.norms import STREAM_OF, YEAR
+from diskwatch.units import day_number
 
 LATELY = 30
 """Days that a sign counts."""
@@ -52,18 +55,28 @@ _BY_FACT: Mapping[str, str] = {
 _SLOWER: Mapping[str, str] = {"reads slower": "read-latency", "writes slower": "write-latency"}
 
 _WORN = 90
-_TOLD_BY_ITSELF = ("fact:hot", "fact:warns-of-heat", "fact:spare", "fact:worn", "fact:worn-out")
+_TOLD_BY_ITSELF = (
+    "fact:hot",
+    "fact:warns-of-heat",
+    "fact:spare",
+    "fact:worn",
+    "fact:worn-out",
+    "fact:power-shared",
+)
 """Facts that name their cause themselves, so that no table is asked."""
 
+_BEYOND_NORM = frozenset({"fact:unreadable", "fact:link-again"})
+"""Facts that no drive within its norms shows, so that a sound one is no explanation."""
 
-def explained(state: DriveState, reading: Reading, day: int, lead: Finding) -> Explained | None:
+
+def explained(state: DriveState, pass_: Pass, lead: Finding, around: Around) -> Explained | None:
     """What the drive's signs together point to.
 
     Args:
-        state: the drive after the reading.
-        reading: the reading.
-        day: UTC day number of the reading.
+        state: the drive after the pass.
+        pass_: the pass; one that brought no reading is silent of what only a reading tells.
         lead: the finding that decides the call.
+        around: its bay and the other drives of the machine.
 
     Returns:
         The cause; None where the leading fact tells it by itself. Slowness that follows the temperature is
@@ -73,25 +86,37 @@ def explained(state: DriveState, reading: Reading, day: int, lead: Finding) -> E
         return None
     if lead.data.get("follows_heat"):
         return Explained(cause=Cause.HEAT, probability=None, second=None)
-    shown = {sign: _shows(state, day, sign) for sign in (*_DEFECTS, *_ORDINARY)}
+    told = shown(state, pass_, around)
+    return causes.explain(
+        [sign for sign, showing in told.items() if showing],
+        [sign for sign, showing in told.items() if showing is False],
+        drifting=lead.kind is FindingKind.DRIFT or lead.name in _BEYOND_NORM,
+    )
+
+
+def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool | None]:
+    """Every sign of the table: True where it showed lately, False where it could have, None where not."""
+    reading, day = pass_.reading or Reading(), day_number(pass_.at)
     used = reading.number("percentage-used")
     told: dict[str, bool | None] = {
-        **shown,
+        **{sign: _shows(state, day, sign) for sign in (*_DEFECTS, *_ORDINARY)},
         "worn": None if used is None else used >= _WORN,
         "spare low": None if reading.number("available-spare") is None else False,
         "hot": None if _limit(reading) is None else False,
         **_slowness(state, day),
+        **around.signs(state, day),
     }
     for name, sign in _BY_FACT.items():
         if name in state.standing:
             told[sign] = True
     if "fact:self-assessment" in state.standing and (reading.number("grown-defects") or 0) > 0:
         told["media counter"] = True
-    return causes.explain(
-        [sign for sign, showing in told.items() if showing],
-        [sign for sign, showing in told.items() if showing is False],
-        drifting=lead.kind is FindingKind.DRIFT,
-    )
+    gone = any(0 <= day - one < LATELY for one in state.troubles.get(Trouble.GONE.value, ()))
+    harmed = any(told.get(sign) for sign in _DEFECTS)
+    told["vanished without media error"] = None if harmed else gone
+    if pass_.drive is not None and pass_.drive.kind is Kind.NVME:
+        told["no cable"] = True
+    return told
 
 
 def _shows(state: DriveState, day: int, sign: str) -> bool | None:

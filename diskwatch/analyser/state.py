@@ -35,6 +35,10 @@ class DriveState:
         rose: powered days that a stream had seen when one of its counters last rose.
         streams: ledgers by stream.
         spots: damage for the odds rule.
+        showed: UTC day number on which it first showed each condition of the table of odds.
+        troubles: recent UTC day numbers of trouble that drives may share, by kind.
+        bays: UTC day number of its latest link trouble by bay.
+        retracts: emergency retracts as last read, or None.
         settled: the owner's last word about each stream.
         word: the owner's last word, or None.
         warmth: how warm it was on its latest days, oldest first.
@@ -58,6 +62,10 @@ class DriveState:
     rose: Mapping[str, float] = field(default_factory=dict)
     streams: Mapping[str, Stream] = field(default_factory=dict)
     spots: Spots = field(default_factory=Spots)
+    showed: Mapping[str, int] = field(default_factory=dict)
+    troubles: Mapping[str, tuple[int, ...]] = field(default_factory=dict)
+    bays: Mapping[str, int] = field(default_factory=dict)
+    retracts: int | None = None
     settled: Mapping[str, Settled] = field(default_factory=dict)
     word: Settled | None = None
     warmth: tuple[Warmth, ...] = ()

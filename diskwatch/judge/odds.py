@@ -101,7 +101,6 @@ def shown(
     day: int,
     fourfold: int,
     risen: tuple[bool, bool],
-    ever: tuple[bool, bool],
     from_zero: bool,
     watched: int,
 ) -> Mapping[str, int]:
@@ -112,7 +111,6 @@ def shown(
         day: UTC day number of the reading.
         fourfold: four times the damage measure.
         risen: whether replaced and whether pending sectors rose with this reading.
-        ever: whether either has risen since the drive has been watched, this reading included.
         from_zero: whether both were zero when first read.
         watched: days from the first reading to this one.
     """
@@ -128,7 +126,7 @@ def shown(
     for name, rose in zip(("reallocated-rose", "pending-rose"), risen, strict=True):
         if rose:
             now.setdefault(name, day)
-    if all(ever):
+    if {"pending-rose", "reallocated-rose"} <= now.keys():
         now.setdefault("both-rose", day)
     return now
 

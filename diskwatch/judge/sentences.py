@@ -251,6 +251,17 @@ def link_again(risen: Mapping[str, int], word: Settled) -> str:
     ).format(counts=counted(risen), day=rfc3339(word.at)[:10])
 
 
+def power_shared(days: int, drives: int) -> str:
+    """Heads retracted in an emergency whenever power went away on other drives."""
+    return ngettext(
+        "Its heads retracted in an emergency on {days} of the last 30 days, and on the same days power went "
+        "away on {count} other drive: see to the power strip, the supply and their plugs.",
+        "Its heads retracted in an emergency on {days} of the last 30 days, and on the same days power went "
+        "away on {count} other drives: see to the power strip, the supply and their plugs.",
+        drives,
+    ).format(days=days, count=drives)
+
+
 def link_is_quiet(days: int) -> str:
     """A link finding ends on evidence."""
     return _("No transfer was damaged in {days} of powered time: the link is taken for mended.").format(

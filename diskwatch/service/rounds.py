@@ -184,7 +184,10 @@ class Rounds:
 
     def _judge(self, known: KnownDrive, pass_: Pass) -> tuple[DriveRound, list[Entry]]:
         number = known.number
-        step = analyser.advance(self._state(number), pass_)
+        # Also what is no longer here speaks: a bay keeps the trouble that a drive had in it.
+        others = tuple(self._state(one.number) for one in self._keeper.known if one.number != number)
+        around = analyser.Around(bay=known.place.bay, others=others)
+        step = analyser.advance(self._state(number), pass_, around)
         self._states[number] = step.state
         drive = DriveRound(
             known=known,

@@ -58,7 +58,7 @@ def test_a_word_about_the_cable_ends_no_finding_about_the_media():
     before = lived(*passes)[-1]
     step = settled(before.state, word(NOON + 40 * DAY, "crc-errors", "link-resets"))
     assert step.call.word is CallWord.LOOK
-    assert [one.name for one in step.findings] == ["fact:first-defect"]
+    assert [one.name for one in step.findings] == ["fact:first-defect", "level:odds"]
 
 
 def test_defects_are_counted_from_the_word_on():

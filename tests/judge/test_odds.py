@@ -13,7 +13,6 @@ BEGIN = {
     "day": 100,
     "fourfold": 8,
     "risen": (False, True),
-    "ever": (False, True),
     "from_zero": False,
     "watched": 3,
 }
@@ -106,14 +105,12 @@ def test_the_first_rise_is_told_from_later_ones_and_new_trouble_from_old():
     assert shown() == {"pending-rose": 100}
     assert shown(from_zero=True) == {"pending-rose": 100, "first-rise-from-zero": 100}
     assert shown(watched=14) == {"pending-rose": 100, "first-rise-after-14-days": 100}
-    later = shown({"pending-rose": 90}, risen=(True, False), ever=(True, True), watched=50, from_zero=True)
+    later = shown({"pending-rose": 90}, risen=(True, False), watched=50, from_zero=True)
     assert later == {"pending-rose": 90, "reallocated-rose": 100, "both-rose": 100}
 
 
 @given(st.integers(0, 80), st.tuples(st.booleans(), st.booleans()), st.booleans(), st.integers(0, 40))
 def test_a_condition_keeps_the_day_on_which_it_first_showed(fourfold, risen, from_zero, watched):
-    first = shown(fourfold=fourfold, risen=risen, ever=risen, from_zero=from_zero, watched=watched)
-    again = shown(
-        first, day=120, fourfold=fourfold, risen=risen, ever=risen, from_zero=from_zero, watched=watched
-    )
+    first = shown(fourfold=fourfold, risen=risen, from_zero=from_zero, watched=watched)
+    again = shown(first, day=120, fourfold=fourfold, risen=risen, from_zero=from_zero, watched=watched)
     assert {name: again[name] for name in first} == first
