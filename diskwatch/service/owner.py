@@ -11,6 +11,7 @@ from typing import Any
 from diskwatch import analyser
 from diskwatch.errors import HistoryError, UsageError
 from diskwatch.history.arriving import Described
+from diskwatch.history.moments import Dated
 from diskwatch.history.moving import Case, Judged, Part
 from diskwatch.history.writer import History
 from diskwatch.judge import sentences
@@ -141,7 +142,8 @@ def _judged(case: Case, step: analyser.Step) -> Judged:
         evidence=step.evidence,
         call=step.call,
     )
-    return Judged(part=part, since=None, copies=((last, kept),))
+    turn = max((one.turn for one in case.copies), default=0)
+    return Judged(part=part, since=None, copies=(Dated(turn=turn, at=last, state=kept),))
 
 
 def _stands(before: str, now: str) -> str:
