@@ -31,6 +31,9 @@ from diskwatch.records import (
 )
 from diskwatch.units import day_number, plain
 
+_MOST = 1 << 31
+"""More passes of one second, or clocks set back, than any drive lives to see."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Described:
@@ -147,6 +150,7 @@ class _Arrival:
             "value": self._value,
             "beside": self._beside,
             "evidence": self._evidence,
+            "heard": self._heard,
             "answer": self._answer,
             "load": self._load,
             "finding": self._finding,
@@ -195,7 +199,7 @@ class _Arrival:
             explanation=words(of["explanation"]),
         )
         explanation = sentence_number(self._db, told.explanation)
-        nth = _nth(of)
+        nth = _small(of, "nth")
         columns = ("at", "nth", "turn", "outcome", "exit_bits", "took_ms", "explanation")
         cells = (
             at,
@@ -213,7 +217,7 @@ class _Arrival:
 
     def _turn(self, at: int, of: Mapping[str, Any]) -> int:
         """Its turn, as the file tells it; where there are own passes, the one that these had then."""
-        told = whole(of.get("turn", 0))
+        told = _small(of, "turn")
         if not self.before:
             return told
         return turn_at(self._db, self._drive, at) if self._own_turn else 0
@@ -254,7 +258,7 @@ class _Arrival:
             found = count(found)
         about = (text(of["unit"]), SignalKind(of["kind"]).value, text(of["source"]))
         series = self._series(text(of["signal"]), about)
-        nth = _nth(of)
+        nth = _small(of, "nth")
         there = self._db.execute(
             "SELECT 1 FROM fresh WHERE at = ? AND series = ? AND nth = ?", (at, series, nth)
         ).fetchone()
@@ -266,7 +270,9 @@ class _Arrival:
     def _beside(self, at: int, of: Mapping[str, Any]) -> None:
         packed = json.dumps(of["reading"], separators=(",", ":")).encode()
         packing.beside(packed)  # refuses what is no reading
-        self._insert("beside", ("at", "nth", "turn", "packed"), (at, _nth(of), self._turn(at, of), packed))
+        self._insert(
+            "beside", ("at", "nth", "turn", "packed"), (at, _small(of, "nth"), self._turn(at, of), packed)
+        )
 
     def _evidence(self, at: int, of: Mapping[str, Any]) -> None:
         series = self._series(text(of["signal"]), None)
@@ -275,6 +281,15 @@ class _Arrival:
             ("series", "day", "evidence"),
             (series, day_number(at), float(of["evidence"])),
             drive=False,
+        )
+
+    def _heard(self, at: int, of: Mapping[str, Any]) -> None:
+        del at
+        # What was counted there is counted on here: a count that fell would look like another drive's.
+        self._db.execute(
+            "INSERT INTO heard (drive, signal, total) VALUES (?, ?, ?) ON CONFLICT (drive, signal)"
+            " DO UPDATE SET total = max(total, excluded.total)",
+            (self._drive, text(of["signal"]), whole(of["total"])),
         )
 
     def _answer(self, at: int, of: Mapping[str, Any]) -> None:
@@ -374,6 +389,10 @@ class _Arrival:
         return one in self.before and one[0] < self._own_mark
 
 
-def _nth(of: Mapping[str, Any]) -> int:
-    # Not told where it was written before passes of one second were kept apart.
-    return whole(of.get("nth", 0))
+def _small(of: Mapping[str, Any], name: str) -> int:
+    # Not told where it was written before passes were told apart so.
+    found = whole(of.get(name, 0))
+    # Own passes are counted on from here: there must be room.
+    if not 0 <= found < _MOST:
+        raise ValueError(f"{name} cannot be right: {found}")
+    return found

@@ -94,3 +94,15 @@ def test_whatever_stands_in_a_row_it_is_taken_in_or_named_and_nothing_else_happe
         assert history._db.execute("PRAGMA integrity_check").fetchone() == ("ok",)
         # What was taken in can be told again.
         assert tuple(lines_of(history._db.conn, 1))
+
+
+@pytest.mark.parametrize("name", ["nth", "turn"])
+@pytest.mark.parametrize("number", [-1, 2**63 - 1, 2**70, 1.0])
+def test_a_place_among_the_passes_that_leaves_no_room_for_own_ones_is_refused(history, name, number):
+    history.admit(a_drive(), a_place(), NOON)
+    line = next(one for one in LINES if one.record == "pass")
+    spoilt = Line(record="pass", drive=1, at=line.at, fields={**line.fields, name: number}, number=7)
+    with history._writing() as connection:
+        (told,) = take_in(connection, 1, [spoilt]).wrong
+        assert told.startswith("row 7 is left out: ")
+        assert connection.execute("SELECT count(*) FROM pass").fetchone() == (0,)
