@@ -2,12 +2,14 @@
 
 A drive that is dying can hold whoever asks it for minutes, in a state in which not even SIGKILL is obeyed. So
 nothing here waits without a limit: a child that does not die is left behind, counted, and reaped when the
-kernel lets go of it. Until then no other is run for the same owner, so that they do not pile up.
+kernel lets go of it. Until then no other is run for the same owner, so that they do not pile up. Even starting
+one may take for ever, where the command itself lies on the disk that hangs.
 """
 
 import contextlib
 import errno
 import os
+import queue
 import selectors
 import signal
 import subprocess
@@ -81,6 +83,7 @@ class Door:
         self._lock = threading.Lock()
         self._running: set[subprocess.Popen[bytes]] = set()
         self._left_behind: list[tuple[str, subprocess.Popen[bytes]]] = []
+        self._late: list[tuple[str, _Start]] = []
         self._stopped = False
 
     @property
@@ -88,7 +91,7 @@ class Door:
         """How many children were killed but are still held by the kernel."""
         with self._lock:
             self._reap()
-            return len(self._left_behind)
+            return len(self._left_behind) + len(self._late)
 
     def run(self, argv: Sequence[str], *, timeout: float, owner: str = "") -> Answer:
         """Run a command without a shell, in the C locale, with nothing on its standard input.
@@ -108,20 +111,12 @@ class Door:
             if self._stopped:
                 return Answer(ending=Ending.STOPPED)
             self._reap()
-            if any(owner and owner == held for held, _child in self._left_behind):
+            if owner and owner in {held for held, _ in (*self._left_behind, *self._late)}:
                 return Answer(ending=Ending.HELD)
-            try:
-                child = subprocess.Popen(
-                    list(argv),
-                    stdin=subprocess.DEVNULL,
-                    stdout=subprocess.PIPE,
-                    stderr=subprocess.PIPE,
-                    env=_environment(os.environ),
-                    start_new_session=True,  # its own group, so that it can be killed with its children
-                )
-            except (OSError, ValueError) as error:
-                return _not_started(error)
-            self._running.add(child)
+        child = self._begun(argv, deadline, owner)
+        if isinstance(child, Answer):
+            return child
+        self._enter(child)
         try:
             return self._hear(child, deadline, owner)
         finally:
@@ -136,8 +131,44 @@ class Door:
                 if child.poll() is None:
                     _kill(child)
 
+    def _enter(self, child: subprocess.Popen[bytes]) -> None:
+        """Let a child be stopped; it may have been started while all was being stopped."""
+        with self._lock:
+            self._running.add(child)
+            if self._stopped:
+                _kill(child)
+
+    def _begun(self, argv: Sequence[str], deadline: float, owner: str) -> subprocess.Popen[bytes] | Answer:
+        """Start a child in a thread of its own, and do without it where that does not come to an end."""
+        start: _Start = queue.SimpleQueue()
+
+        def begin() -> None:
+            try:
+                start.put(_child(argv))
+            except (OSError, ValueError) as error:
+                start.put(error)
+
+        threading.Thread(target=begin, name="starts a command", daemon=True).start()
+        try:
+            begun = start.get(timeout=max(0.0, deadline - time.monotonic()))
+        except queue.Empty:
+            with self._lock:
+                self._late.append((owner, start))
+            return Answer(ending=Ending.TIMED_OUT)
+        return begun if isinstance(begun, subprocess.Popen) else _not_started(begun)
+
     def _reap(self) -> None:
         """Take up those whom the kernel has let go of; the lock is held."""
+        waiting, self._late = self._late, []
+        for owner, start in waiting:
+            if start.empty():
+                self._late.append((owner, start))
+            elif isinstance(child := start.get(), subprocess.Popen):
+                _kill(child)
+                for pipe in (child.stdout, child.stderr):
+                    if pipe is not None:
+                        pipe.close()
+                self._left_behind.append((owner, child))
         self._left_behind = [(owner, child) for owner, child in self._left_behind if child.poll() is None]
 
     def _hear(self, child: subprocess.Popen[bytes], deadline: float, owner: str) -> Answer:
@@ -167,6 +198,21 @@ class Door:
         except subprocess.TimeoutExpired:
             with self._lock:
                 self._left_behind.append((owner, child))
+
+
+_Start = queue.SimpleQueue[subprocess.Popen[bytes] | OSError | ValueError]
+"""What starting a child comes to, once it does."""
+
+
+def _child(argv: Sequence[str]) -> subprocess.Popen[bytes]:
+    return subprocess.Popen(
+        list(argv),
+        stdin=subprocess.DEVNULL,
+        stdout=subprocess.PIPE,
+        stderr=subprocess.PIPE,
+        env=_environment(os.environ),
+        start_new_session=True,  # its own group, so that it can be killed with its children
+    )
 
 
 def _listen(

@@ -1,3 +1,5 @@
+import contextlib
+import fcntl
 import os
 import signal
 import sys
@@ -153,6 +155,42 @@ def test_a_child_that_even_sigkill_does_not_end_is_left_behind_and_counted_until
         time.sleep(0.05)
     assert door.abandoned == 0
     assert door.run([script(tmp_path, "exit 0", "again")], timeout=5, owner="this drive").status == 0
+
+
+@pytest.fixture
+def held_tool(tmp_path: Path):
+    """A command whose start takes as long as on a disk that hangs: a lease keeps the kernel from opening it."""
+    tool = script(tmp_path, "echo begun", "held")
+    before = signal.signal(signal.SIGIO, signal.SIG_IGN)
+    held = os.open(tool, os.O_RDWR)
+    try:
+        try:
+            fcntl.fcntl(held, fcntl.F_SETLEASE, fcntl.F_WRLCK)
+        except OSError:
+            pytest.skip("this file system grants no leases")
+        yield tool, held
+    finally:
+        with contextlib.suppress(OSError):  # the test lets go of it
+            os.close(held)
+        signal.signal(signal.SIGIO, before)
+
+
+def test_a_command_that_cannot_even_be_started_holds_nobody_and_is_counted_until_it_can(
+    tmp_path: Path, held_tool: tuple[str, int]
+):
+    tool, held = held_tool
+    door = Door()
+    begun = time.monotonic()
+    assert door.run([tool], timeout=0.2, owner="this drive").ending is Ending.TIMED_OUT
+    assert time.monotonic() - begun < 2
+    assert door.abandoned == 1
+    assert door.run([tool], timeout=0.2, owner="this drive").ending is Ending.HELD
+    assert door.run([script(tmp_path, "exit 0", "other")], timeout=5, owner="another").status == 0
+    os.close(held)
+    deadline = time.monotonic() + 10
+    while door.abandoned and time.monotonic() < deadline:
+        time.sleep(0.05)
+    assert door.abandoned == 0
 
 
 def test_a_missing_command_is_told_from_one_that_may_not_be_run_and_from_one_that_fails(tmp_path: Path):
