@@ -7,6 +7,7 @@ readings, replay of recorded ones and rehearsal of a failure run the very same c
 from diskwatch.analyser.advance import Step, advance
 from diskwatch.analyser.around import Around
 from diskwatch.analyser.explain import Explanation, explain
+from diskwatch.analyser.forecasts import forecasts
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.settle import settle
 from diskwatch.analyser.state import DriveState, dump, load, start
@@ -30,6 +31,7 @@ __all__ = [
     "dump",
     "dump_latency",
     "explain",
+    "forecasts",
     "load",
     "load_latency",
     "measured",

@@ -3,13 +3,12 @@
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 
-from diskwatch.analyser import counters, endings, findings, heard, outcomes, signs
+from diskwatch.analyser import counters, endings, findings, heard, heat, outcomes, signs, wearing
 from diskwatch.analyser.around import ALONE, RETRACTS, Around, bays, power_shared, troubles, witness
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
 from diskwatch.records import Call, CallWord, Entry, Finding, FindingKind, Kind, Outcome, Pass, Reading
-from diskwatch.trends import warmth
 from diskwatch.trends.norms import NORMS
 from diskwatch.units import day_number
 
@@ -47,7 +46,12 @@ class Step:
             if signal in self.state.latest
         }
         timed = {signal: now.evidence for signal, now in self.state.latency.items() if now.evidence is not None}
-        return {**counted, **timed}
+        felt = (
+            {}
+            if self.state.temperature.usual is None
+            else {"temperature": self.state.temperature.ledger.evidence}
+        )
+        return {**counted, **timed, **felt}
 
 
 def advance(state: DriveState, pass_: Pass, around: Around = ALONE) -> Step:
@@ -105,6 +109,7 @@ def _taken_in(
     stated = tuple(facts.facts(reading, at=pass_.at, first_spare=firsts.get("available-spare")))
     day = day_number(pass_.at)
     days = troubles(state, (*risen, RETRACTS) if retracted else risen, [one.name for one in stated], day)
+    days_felt, temperature = heat.carried(state, pass_, reading)
     # Written out: replace() takes three times as long, and a replay of years comes by here for every day.
     now = DriveState(
         parameters=state.parameters,
@@ -127,7 +132,9 @@ def _taken_in(
         retracts=retracts,
         settled=state.settled,
         word=state.word,
-        warmth=warmth.felt(state.warmth, day=day_number(pass_.at), celsius=reading.number("temperature"))[0],
+        wearing=wearing.carried(state.wearing, reading, at=pass_.at, hours=_powered(state, hours)),
+        warmth=days_felt,
+        temperature=temperature,
         latency=state.latency,
         traffic_through=state.traffic_through,
         standing=state.standing,
@@ -137,6 +144,7 @@ def _taken_in(
         *stated,
         *findings.fresh_defects(now, pass_, reading, risen),
         *findings.drifts(now, pass_),
+        *heat.drift(now, pass_, reading),
         *findings.back(now, pass_, risen),
         *findings.rule(now, pass_),
         *heard.shown(now, pass_),
@@ -152,6 +160,11 @@ def _taken_in(
         now, ended = endings.ended(replace(now, standing=_standing(state.standing, shown, pass_.at)), pass_)
         alarms += ended
     return now, [*happened, *alarms]
+
+
+def _powered(state: DriveState, hours: int | None) -> int | None:
+    """Powered hours since the reading before, or None where they are not known."""
+    return None if hours is None or state.hours is None else hours - state.hours
 
 
 def _firsts(state: DriveState, reading: Reading, counts: Mapping[str, int]) -> Mapping[str, int]:

@@ -11,6 +11,7 @@ from diskwatch.records import Entry, Finding, Settled
 from diskwatch.trends import episodes
 from diskwatch.trends.norms import NORMS
 from diskwatch.trends.spots import Spots
+from diskwatch.trends.temperature import accepted
 from diskwatch.units import day_number
 
 _DAMAGE = ("reallocated-sectors", "pending-sectors", "grown-defects")
@@ -46,6 +47,7 @@ def settle(state: DriveState, word: Settled) -> Step:
         rose={stream: powered for stream, powered in state.rose.items() if stream not in anew},
         risen={signal: when for signal, when in state.risen.items() if signal not in signals},
         spots=_undisturbed(state.spots, signals),
+        temperature=accepted(state.temperature) if word.about(("temperature",)) else state.temperature,
         latency=noted(state.latency, [signal for signal in state.latency if word.about((signal,))]),
         settled={**state.settled, **dict.fromkeys(anew, word)},
         word=word,

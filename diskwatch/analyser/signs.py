@@ -3,6 +3,7 @@
 from collections.abc import Mapping
 
 from diskwatch.analyser.around import Around
+from diskwatch.analyser.heat import limit_of
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import causes
 from diskwatch.judge.causes import Explained
@@ -48,6 +49,7 @@ _BY_FACT: Mapping[str, str] = {
     "fact:unreadable-sector": "uncorrectable event",
     "fact:hot": "hot",
     "fact:warns-of-heat": "hot",
+    "drift:temperature": "hot",
     "fact:spare": "spare low",
 }
 """Signs that a fact is, also on a first reading."""
@@ -62,8 +64,9 @@ _TOLD_BY_ITSELF = (
     "fact:worn",
     "fact:worn-out",
     "fact:power-shared",
+    "drift:temperature",
 )
-"""Facts that name their cause themselves, so that no table is asked."""
+"""Findings that name their cause themselves, so that no table is asked."""
 
 _BEYOND_NORM = frozenset({"fact:unreadable", "fact:link-again"})
 """Facts that no drive within its norms shows, so that a sound one is no explanation."""
@@ -102,7 +105,7 @@ def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool |
         **{sign: _shows(state, day, sign) for sign in (*_DEFECTS, *_ORDINARY)},
         "worn": None if used is None else used >= _WORN,
         "spare low": None if reading.number("available-spare") is None else False,
-        "hot": None if _limit(reading) is None else False,
+        "hot": None if limit_of(reading) is None else False,
         **_slowness(state, day),
         **around.signs(state, day),
     }
@@ -147,7 +150,3 @@ def _slowness(state: DriveState, day: int) -> Mapping[str, bool | None]:
     if heat and (any(told.values()) or not any(heat)):
         told["slow when hot"] = any(heat)
     return told
-
-
-def _limit(reading: Reading) -> int | None:
-    return reading.warning_celsius if reading.warning_celsius is not None else reading.critical_celsius

@@ -5,11 +5,13 @@ from dataclasses import dataclass, field
 
 import msgspec
 
+from diskwatch.analyser.wearing import Wearing
 from diskwatch.errors import HistoryTooNew
 from diskwatch.records import Call, Finding, Outcome, Settled
 from diskwatch.trends.episodes import Stream
 from diskwatch.trends.latency_now import LatencyNow
 from diskwatch.trends.spots import Spots
+from diskwatch.trends.temperature import Temperature
 from diskwatch.trends.warmth import Warmth
 
 PARAMETERS = 1
@@ -41,7 +43,9 @@ class DriveState:
         retracts: emergency retracts as last read, or None.
         settled: the owner's last word about each stream.
         word: the owner's last word, or None.
+        wearing: what it uses up of its endurance and its spare blocks.
         warmth: how warm it was on its latest days, oldest first.
+        temperature: ledger of its days' highest temperatures.
         latency: what its latency has come to, by signal; what that was learnt from is kept apart.
         traffic_through: UTC day number of the last day whose traffic was taken in, or None.
         standing: findings that stand, by name.
@@ -68,7 +72,9 @@ class DriveState:
     retracts: int | None = None
     settled: Mapping[str, Settled] = field(default_factory=dict)
     word: Settled | None = None
+    wearing: Wearing = field(default_factory=Wearing)
     warmth: tuple[Warmth, ...] = ()
+    temperature: Temperature = field(default_factory=Temperature)
     latency: Mapping[str, LatencyNow] = field(default_factory=dict)
     traffic_through: int | None = None
     standing: Mapping[str, Finding] = field(default_factory=dict)

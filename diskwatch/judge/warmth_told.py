@@ -1,0 +1,20 @@
+"""Sentences about how warm a drive runs; a limit that is exceeded is a fact (`diskwatch.judge.sentences`)."""
+
+from diskwatch.judge.language import _
+from diskwatch.units import once_in
+
+
+def hotter(*, highest: int, usual: float, line: float, evidence: float) -> str:
+    """The ledger of temperature alarmed.
+
+    Args:
+        highest: of the day before, degrees Celsius.
+        usual: highest of a usual day in its first weeks.
+        line: where the norm ends.
+        evidence: M in days.
+    """
+    return _(
+        "It runs hotter than it used to: up to {highest} °C a day, usually {usual} °C in its first weeks; the "
+        "norm ends at {line} °C. A drive within the norm would show this at most {once} of watching: see to "
+        "its cooling."
+    ).format(highest=highest, usual=f"{usual:g}", line=f"{line:g}", once=once_in(evidence))
