@@ -2,6 +2,7 @@
 
 import contextlib
 import os
+import stat
 from pathlib import Path
 
 from diskwatch.errors import UsageError
@@ -12,6 +13,11 @@ SYSTEM_RUN = Path("/run/diskwatch")
 HISTORY = "history.db"
 WATCH_LOCK = "watch.lock"
 WRITE_LOCK = "write.lock"
+POINTER = "moved-to"
+"""A file that lies where a history lay, and holds the folder that it was moved to."""
+
+_LONGEST_PATH = 4096
+_MOST_MOVES = 16
 
 
 def _xdg(variable: str, fallback: str) -> Path:
@@ -48,18 +54,62 @@ def user_state() -> Path:
 def state_folder(named: str | None) -> Path:
     """Where the history lies: the folder named, else the system's where it can be read, else this user's.
 
+    Where a history was moved away from there, it is the folder that it was moved to; but where nothing is found
+    behind the last of such pointers, say because a drive is not mounted, it is the folder that it was moved
+    from: whoever opens that says so, and no new history is begun in the other's place.
+
     Raises:
         UsageError: the name is empty, or this user has no home folder.
     """
     if named == "":
         raise UsageError("--state names no folder", hint="leave it out for the default")
     if named is not None:
-        return Path(named)
-    if is_there(SYSTEM_STATE / HISTORY) and os.access(SYSTEM_STATE, os.R_OK | os.X_OK):
-        return SYSTEM_STATE
-    if os.geteuid() == 0:
-        return SYSTEM_STATE
-    return user_state()
+        return _followed(Path(named))
+    begun = is_there(SYSTEM_STATE / HISTORY) or moved_to(SYSTEM_STATE) is not None
+    if os.geteuid() == 0 or (begun and os.access(SYSTEM_STATE, os.R_OK | os.X_OK)):
+        return _followed(SYSTEM_STATE)
+    return _followed(user_state())
+
+
+def _followed(folder: Path) -> Path:
+    here = folder
+    for _ in range(_MOST_MOVES):
+        if is_there(here / HISTORY):
+            return here
+        there = moved_to(here)
+        if there is None:
+            break
+        here = there
+    return folder
+
+
+def moved_to(folder: Path) -> Path | None:
+    """The folder that a history was moved to from here, or None.
+
+    Only a plain file is believed, of this user or root. An ordinary user, who can harm nobody but themselves,
+    also believes the owner of the folder.
+    """
+    try:
+        descriptor = os.open(folder / POINTER, os.O_RDONLY | os.O_NOFOLLOW | os.O_NONBLOCK | os.O_CLOEXEC)
+    except OSError:
+        return None
+    with os.fdopen(descriptor, "rb") as file:
+        about = os.fstat(descriptor)
+        if not stat.S_ISREG(about.st_mode) or about.st_uid not in _believed(folder):
+            return None
+        written = file.read(_LONGEST_PATH + 1)
+    path = written.removesuffix(b"\n")
+    if not path.startswith(b"/") or len(path) > _LONGEST_PATH or b"\0" in path or b"\n" in path:
+        return None
+    return Path(os.fsdecode(path))
+
+
+def _believed(folder: Path) -> set[int]:
+    owners = {0, os.geteuid()}
+    if os.geteuid() != 0:
+        with contextlib.suppress(OSError):
+            owners.add(folder.stat().st_uid)
+    return owners
 
 
 def settings_file(named: str | None) -> Path | None:

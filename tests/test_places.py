@@ -84,3 +84,59 @@ def test_what_may_not_be_seen_is_not_there(monkeypatch):
 
     monkeypatch.setattr(Path, "stat", refuse)
     assert not places.is_there(Path("/nowhere/x"))
+
+
+def test_where_a_history_was_moved_to_is_followed_from_every_default_too(system, tmp_path):
+    (system / "system").mkdir()
+    new = tmp_path / "new"
+    new.mkdir()
+    (new / places.HISTORY).touch()
+    (system / "system" / places.POINTER).write_text(f"{new}\n")
+    assert places.state_folder(None) == new
+    assert places.state_folder(str(system / "system")) == new
+    (system / "system" / places.HISTORY).touch()
+    assert places.state_folder(None) == system / "system", "what lies there goes before any pointer"
+
+
+def test_a_pointer_that_leads_nowhere_or_in_a_circle_is_left_alone(tmp_path):
+    one, two = tmp_path / "one", tmp_path / "two"
+    for here, there in ((one, two), (two, one)):
+        here.mkdir()
+        (here / places.POINTER).write_text(f"{there}\n")
+    assert places.state_folder(str(one)) == one
+    (two / places.POINTER).unlink()
+    assert places.state_folder(str(one)) == one
+
+
+@pytest.mark.parametrize("odd", [b"", b"relative\n", b"/a\n/b\n", b"/a\0b", b"/" + b"x" * 5000, b"\xff\xfe"])
+def test_a_pointer_that_is_no_path_is_none(tmp_path, odd):
+    (tmp_path / places.POINTER).write_bytes(odd)
+    assert places.moved_to(tmp_path) is None
+
+
+def test_a_pointer_is_a_plain_file_of_the_right_owner_or_none(tmp_path, monkeypatch):
+    target = tmp_path / "target"
+    target.write_text("/elsewhere\n")
+    pointer = tmp_path / places.POINTER
+    pointer.symlink_to(target)
+    assert places.moved_to(tmp_path) is None
+    pointer.unlink()
+    os.mkfifo(pointer)
+    assert places.moved_to(tmp_path) is None
+    pointer.unlink()
+    pointer.write_text("/elsewhere\n")
+    owner = pointer.stat().st_uid
+    monkeypatch.setattr(os, "geteuid", lambda: owner)
+    assert places.moved_to(tmp_path) == Path("/elsewhere")
+
+
+@pytest.mark.skipif(os.getuid() != 0, reason="needs root to give a file away")
+def test_root_is_led_by_nobody_else(tmp_path, monkeypatch):
+    pointer = tmp_path / places.POINTER
+    pointer.write_text("/elsewhere\n")
+    os.chown(pointer, 65534, 65534)
+    os.chown(tmp_path, 65534, 65534)
+    monkeypatch.setattr(os, "geteuid", lambda: 0)
+    assert places.moved_to(tmp_path) is None
+    monkeypatch.setattr(os, "geteuid", lambda: 1000)
+    assert places.moved_to(tmp_path) == Path("/elsewhere"), "an ordinary user believes the folder's owner"

@@ -30,6 +30,9 @@ _PAUSE = 0.02
 """A copy is made by the mebibyte, with a breath in between: the disk has other work."""
 
 _STEPS = 100_000
+_OF_THE_COPY = frozenset({sqlite3.SQLITE_FULL, sqlite3.SQLITE_READONLY})
+"""What can only be the fault of where a copy is written."""
+
 _COPY = re.compile(r"history-([0-9]{4}-[0-9]{2}-[0-9]{2})\.db")
 _DAYS = {"daily": 1, "weekly": 7}
 
@@ -123,7 +126,7 @@ def make_copy(folder: Path, at: int, *, stop: Stop) -> Path | None:
     making = folder / f".{made.name}.making"
     try:
         making.unlink(missing_ok=True)
-        if not _copied(source, making, stop):
+        if not lay_copy(source, making, stop):
             return None
         looked = check(making, thorough=False, stop=stop)
         if looked.damage:
@@ -133,7 +136,7 @@ def make_copy(folder: Path, at: int, *, stop: Stop) -> Path | None:
             )
         if not looked.finished:
             return None
-        _settle(making, made)
+        give_name(making, made)
     except OSError as error:
         raise told(error, made) from error
     finally:
@@ -145,7 +148,21 @@ def make_copy(folder: Path, at: int, *, stop: Stop) -> Path | None:
     return made
 
 
-def _copied(source: Path, making: Path, stop: Stop) -> bool:
+def lay_copy(source: Path, making: Path, stop: Stop) -> bool:
+    """Copy a history as it is at one moment into a file that is not there yet.
+
+    Args:
+        source: the history.
+        making: the copy: one file, which needs no log beside it.
+        stop: asked now and then; making ends when it says True.
+
+    Returns:
+        Whether it came to its end; whoever calls takes away what is left where it did not.
+
+    Raises:
+        HistoryError: SQLite could not read or write.
+        OSError: the file cannot be made.
+    """
     os.close(os.open(making, os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_CLOEXEC, 0o644))
     try:
         with _reading(source) as reading, closing(sqlite3.connect(making)) as writing:
@@ -160,7 +177,7 @@ def _copied(source: Path, making: Path, stop: Stop) -> bool:
     except _StoppedError:
         return False
     except sqlite3.Error as error:
-        raise told(error, source) from error
+        raise told(error, making if primary(error) in _OF_THE_COPY else source) from error
     return True
 
 
@@ -174,7 +191,7 @@ def _breathe(stop: Stop) -> None:
     time.sleep(_PAUSE)  # the library itself sleeps only where it meets a lock
 
 
-def _settle(making: Path, made: Path) -> None:
+def give_name(making: Path, made: Path) -> None:
     """Give a finished file its name, so that it is there whole even after a power cut."""
     making.chmod(0o644)
     for path in (making, made.parent):

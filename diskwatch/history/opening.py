@@ -20,7 +20,7 @@ from diskwatch.history.guarding import refuse_odd_database
 from diskwatch.history.mishaps import foreign, no_database, primary, told
 from diskwatch.history.older import read_as_current
 from diskwatch.history.versions import APPLICATION_ID
-from diskwatch.places import WATCH_LOCK, WRITE_LOCK
+from diskwatch.places import POINTER, WATCH_LOCK, WRITE_LOCK, moved_to
 from diskwatch.units import plain
 
 BUSY_MS = 5_000
@@ -120,6 +120,7 @@ def open_to_read(path: Path) -> Opened:
     try:
         mark = _mark(path)
     except FileNotFoundError:
+        _refuse_moved(path)
         raise _nothing_yet(path) from None
     except OSError as error:
         raise told(error, path) from error
@@ -167,6 +168,7 @@ def refuse_foreign(path: Path) -> None:
     try:
         mark = _mark(path)
     except FileNotFoundError:
+        _refuse_moved(path)
         return
     except OSError as error:
         raise told(error, path) from error
@@ -199,6 +201,17 @@ def _beginning(path: Path) -> bytes:
     descriptor = os.open(path, os.O_RDONLY | os.O_NOFOLLOW | os.O_NONBLOCK | os.O_CLOEXEC)
     with os.fdopen(descriptor, "rb") as file:
         return file.read(_SMALLEST_PAGE)
+
+
+def _refuse_moved(path: Path) -> None:
+    """Where a history was moved away from, none must be begun in its place as if it had never been."""
+    there = moved_to(path.parent)
+    if there is not None:
+        here, pointer = plain(str(path.parent)), plain(str(path.parent / POINTER))
+        raise HistoryError(
+            f"the history of {here} was moved to {plain(str(there))}, and is not found there",
+            hint=f"mount the drive that it lies on; or, to begin anew here, take {pointer} away",
+        )
 
 
 def _nothing_yet(path: Path) -> NothingToWorkOn:

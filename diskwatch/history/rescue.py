@@ -87,7 +87,7 @@ def rescue(folder: Path, at: int) -> Rescued:
             _remove(left)
         source = _with_a_header(path, mended)
         found = _carried_over(source, making, folder)
-        aside = _aside(folder, at)
+        aside = aside_name(folder, "damaged", at)
         rescued = Rescued(
             aside=aside,
             carried=found.first.rows,
@@ -176,12 +176,19 @@ def _refuse_newer(old: sqlite3.Connection, source: Path) -> None:
         return  # that the list of its steps is lost is a part of the damage
 
 
-def _aside(folder: Path, at: int) -> Path:
+def aside_name(folder: Path, why: str, at: int) -> Path:
+    """A free name for a history that is kept aside.
+
+    Args:
+        folder: where.
+        why: one word of why, for its name.
+        at: when, UTC seconds since 1970, for its name too.
+    """
     when = datetime.fromtimestamp(at, UTC).strftime("%Y-%m-%dT%H%M%SZ")
-    number, name = 1, f"history-damaged-{when}.db"
+    number, name = 1, f"history-{why}-{when}.db"
     while (folder / name).exists():
         number += 1
-        name = f"history-damaged-{when}-{number}.db"
+        name = f"history-{why}-{when}-{number}.db"
     return folder / name
 
 
