@@ -69,6 +69,11 @@ def _ata_state(told: Told) -> tuple[str, ...]:
         "",
         *tests,
         "",
+        "SCT Status Version:                  3",
+        "Device State:                        Active (0)",
+        f"Current Temperature:                   {told.celsius:3} Celsius",
+        f"Specified Max Operating Temperature:   {told.limit:3} Celsius",
+        "",
     )
 
 

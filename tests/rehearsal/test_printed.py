@@ -27,6 +27,7 @@ def test_the_text_and_the_document_are_read_as_the_same_drive_and_values(spec):
     values = [{value.signal: value.value for value in two.reading.values} for two in (by_text, by_document)]
     assert values[0] == values[1]
     assert len(values[0]) > 8
+    assert by_text.reading.warning_celsius == by_document.reading.warning_celsius == one.limit
 
 
 def test_failing_attributes_and_failed_tests_are_printed_as_such():
