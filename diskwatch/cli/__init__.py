@@ -24,6 +24,8 @@ COMMANDS = {
     "why": "the chain from a drive's readings to its call, and what would change it",
     "copy-plan": "what is at stake on a drive, and how to get it off: how long, in which order",
     "daybook": "what happened to the drives, in order",
+    "ticket": "what a help desk or a warranty desk needs to act on a drive without asking back",
+    "ticket-check": "whether a ticket is whole and unchanged; every fault is named",
     "replay": "recorded readings through the same analyser: what it would have said, and when",
     "rehearse": "an invented machine whose drives live through years in seconds, judged like a real one",
     "preflight": "what is missing on this machine for a full watch, each with its cure",
