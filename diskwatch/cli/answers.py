@@ -3,8 +3,19 @@
 from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING
 
-from diskwatch.records import Bays, DriveLine, Entry, Finding, ReplayedDrive, ReplaySummary, SignalNow
-from diskwatch.units import rfc3339
+from diskwatch.judge.stakes import margin_of, no_odds_of, odds_of, replace_by_of
+from diskwatch.records import (
+    Bays,
+    DriveLine,
+    Entry,
+    Finding,
+    Margin,
+    Odds,
+    ReplayedDrive,
+    ReplaySummary,
+    SignalNow,
+)
+from diskwatch.units import DAY, rfc3339
 
 if TYPE_CHECKING:  # the analyser takes as long to load as all that ``bays`` needs together
     from diskwatch.analyser import Explanation
@@ -22,14 +33,22 @@ def bays_answer(bays: Bays) -> dict[str, object]:
         "at": rfc3339(bays.at),
         "watched": bays.watcher is not None,
         "trouble": list(bays.trouble),
-        "drives": [drive_answer(line) for line in bays.drives],
-        "departed": [drive_answer(line) for line in bays.departed],
+        "drives": [drive_answer(line, bays.at) for line in bays.drives],
+        "departed": [drive_answer(line, bays.at) for line in bays.departed],
     }
 
 
-def drive_answer(line: DriveLine) -> dict[str, object]:
-    """One drive of ``bays --json``."""
+def drive_answer(line: DriveLine, at: int | None = None) -> dict[str, object]:
+    """One drive of ``bays --json``.
+
+    Args:
+        line: the drive.
+        at: the moment, UTC seconds since 1970; None for that of its last pass.
+    """
     drive, call, last = line.drive, line.call, line.last_pass
+    if at is None:
+        at = line.first_seen if last is None else last.at
+    left = margin_of(line, at)
     return {
         "serial": drive.identity.serial,
         "model": drive.identity.model,
@@ -57,10 +76,46 @@ def drive_answer(line: DriveLine) -> dict[str, object]:
         "cause_probability": call.cause_probability if call else None,
         "cause_second": call.cause_second.value if call and call.cause_second else None,
         "reason": call.reason if call else None,
-        "margin_days": None,
-        "odds": None,
+        "margin_days": _margin(left),
+        "margin_reason": left.reason,
+        "replace_by": _day(replace_by_of(line, at)),
+        "odds": _odds(odds_of(line, at)),
+        "odds_reason": no_odds_of(line, at),
         "signals": {signal.name: _signal(signal) for signal in line.signals},
     }
+
+
+def _margin(left: Margin) -> dict[str, object] | None:
+    if not left.known:
+        return None
+    return {
+        "low": left.low,
+        "high": left.high,
+        "probability": left.probability,
+        "signal": left.signal,
+        "limit": left.limit,
+    }
+
+
+def _odds(odds: Odds | None) -> dict[str, object] | None:
+    if odds is None:
+        return None
+    return {
+        "days": odds.days,
+        "share": odds.share,
+        "low": odds.low,
+        "high": odds.high,
+        "probability": odds.level,
+        "condition": odds.condition,
+        "drives": odds.drives,
+        "failed": odds.failed,
+        "since": _day(odds.since_day),
+        "source": odds.source,
+    }
+
+
+def _day(day: int | None) -> str | None:
+    return None if day is None else rfc3339(day * DAY)[:10]
 
 
 def _signal(signal: SignalNow) -> dict[str, object]:

@@ -3,6 +3,7 @@
 from dataclasses import dataclass, field
 
 from diskwatch.records.drive import Drive, Place
+from diskwatch.records.forecast import Forecast
 from diskwatch.records.io import IoSpan
 from diskwatch.records.judgement import Call, Finding
 from diskwatch.records.owner import OwnerFacts
@@ -61,6 +62,7 @@ class DriveLine:
         left_out: why the watch did not ask it in its last round, one sentence; None where it did, or
             where nobody watches.
         owner: what the owner has said of it besides.
+        forecasts: the latest forecast of each of its signals that moves towards a limit.
     """
 
     number: int
@@ -75,6 +77,7 @@ class DriveLine:
     traffic: IoSpan | None = None
     left_out: str | None = None
     owner: OwnerFacts = field(default_factory=OwnerFacts)
+    forecasts: tuple[Forecast, ...] = ()
 
     @property
     def departed(self) -> bool:
