@@ -88,6 +88,8 @@ _QUERIES = {
     " (SELECT latest.day FROM latest WHERE latest.series = evidence.series)"
     " UNION SELECT day * 86400, signal, latest.evidence FROM latest"
     " JOIN series ON series.number = series WHERE drive = :drive AND latest.evidence IS NOT NULL",
+    "heard": "SELECT first_seen AS at, signal, total FROM heard JOIN drive ON drive.number = heard.drive"
+    " WHERE heard.drive = :drive",
     "answer": "SELECT at, call, packed FROM answer WHERE drive = :drive",
     "load": "SELECT day * 86400 AS at, load_class, direction, rollups, operations, histogram FROM io_day"
     " WHERE drive = :drive",

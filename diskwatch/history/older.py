@@ -54,6 +54,10 @@ _VIEWS = {
     ),
     "0005_ways": (_nothing("way", "adapter instance type at"),),
     "0006_answer": (_nothing("answer", "drive at call packed"),),
+    "0007_listening": (
+        _nothing("left_off", "source log sequence gathered"),
+        _nothing("heard", "drive signal total"),
+    ),
 }
 """What stands in for a step that a file may lack; one without a line here must be taken before it is read."""
 

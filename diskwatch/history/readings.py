@@ -8,7 +8,7 @@ from dataclasses import replace
 from diskwatch.history import packing, rows
 from diskwatch.history.moments import Dated
 from diskwatch.history.stating import NOT_THERE
-from diskwatch.records import Outcome, Pass, Reading, SignalKind, Value
+from diskwatch.records import SENSES, Outcome, Pass, Reading, SignalKind, Value
 
 _EVER = -(2**63)
 _CHANGES = (
@@ -63,9 +63,13 @@ def passes_with_readings(
             )
         while beside and beside[0][:3] <= moment:
             reading = packing.beside(beside.popleft()[3])
+        there = [value for value in held.values() if value.reason != NOT_THERE]
+        heard = tuple(value for value in there if value.source in SENSES)
+        if heard:
+            pass_ = replace(pass_, heard=heard)
         if pass_.outcome is Outcome.READ:
-            there = tuple(value for value in held.values() if value.reason != NOT_THERE)
-            pass_ = replace(pass_, reading=replace(reading, values=there))
+            read = tuple(value for value in there if value.source not in SENSES)
+            pass_ = replace(pass_, reading=replace(reading, values=read))
         yield turn, pass_
 
 

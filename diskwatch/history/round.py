@@ -9,7 +9,7 @@ from diskwatch.history.answers import write_answer
 from diskwatch.history.counting import count, counted_before
 from diskwatch.history.judgement import keep_copy, write_judgement
 from diskwatch.history.moments import Moment
-from diskwatch.history.stating import file_past_days, says_nothing_new, write_reading
+from diskwatch.history.stating import file_past_days, says_nothing_new, write_values
 from diskwatch.history.ways import write_ways
 from diskwatch.records import Drive, DriveRound, Entry, KnownDrive, Pass, Place, Round
 from diskwatch.units import day_number
@@ -98,7 +98,7 @@ def _stands(connection: sqlite3.Connection, part: DriveRound) -> bool:
         return False
     return pass_.reading is None or (
         latest[6] == packing.reading_packed(pass_.reading)
-        and says_nothing_new(connection, number, pass_.reading)
+        and says_nothing_new(connection, number, pass_.reading, pass_.heard)
     )
 
 
@@ -109,8 +109,7 @@ def _write_part(connection: sqlite3.Connection, part: DriveRound, at: int) -> No
     _write_drive(connection, part.known, part.pass_, explanation, turn)
     write_place(connection, number, part.known.place, at)
     moment = _write_pass(connection, number, part.pass_, explanation, turn)
-    if part.pass_.reading is not None:
-        write_reading(connection, number, moment, part.pass_.reading)
+    write_values(connection, number, moment, part.pass_.reading, part.pass_.heard)
     if part.pass_.answer is not None:
         call = None if part.call is None else part.call.word.value
         write_answer(connection, number, part.pass_.at, part.pass_.answer, call)

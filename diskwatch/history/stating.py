@@ -1,10 +1,11 @@
 """What a pass read, stated on change: a value holds until the next one, in the order of the passes."""
 
 import sqlite3
+from collections.abc import Sequence
 
 from diskwatch.history import packing, rows
 from diskwatch.history.moments import Moment
-from diskwatch.records import Reading, Value
+from diskwatch.records import SENSES, Reading, Value
 from diskwatch.units import DAY
 
 NOT_THERE = "it was not in this reading"
@@ -23,8 +24,10 @@ def file_past_days(connection: sqlite3.Connection, today: int) -> None:
         connection.execute("DELETE FROM fresh WHERE at < ?", (midnight,))
 
 
-def says_nothing_new(connection: sqlite3.Connection, number: int, reading: Reading) -> bool:
-    """Whether every signal is what a reading says of it, and no known one is missing from it.
+def says_nothing_new(
+    connection: sqlite3.Connection, number: int, reading: Reading, heard: Sequence[Value] = ()
+) -> bool:
+    """Whether every signal is what a pass says of it, and no known one is missing from it.
 
     Raises:
         sqlite3.Error: the history cannot be read.
@@ -38,25 +41,34 @@ def says_nothing_new(connection: sqlite3.Connection, number: int, reading: Readi
         )
     }
     said = {
-        rows.text(one.signal): (rows.cell(one.value), rows.text_or_none(one.reason)) for one in reading.values
+        rows.text(one.signal): (rows.cell(one.value), rows.text_or_none(one.reason))
+        for one in (*reading.values, *heard)
     }
     return all(now.get(signal) == cells for signal, cells in said.items()) and all(
         signal in said or value is None for signal, (value, _) in now.items()
     )
 
 
-def write_reading(connection: sqlite3.Connection, number: int, moment: Moment, reading: Reading) -> None:
-    """Write what a pass read, where it is news.
+def write_values(
+    connection: sqlite3.Connection,
+    number: int,
+    moment: Moment,
+    reading: Reading | None,
+    heard: Sequence[Value] = (),
+) -> None:
+    """Write what a pass read, and what was heard of the drive by then, where it is news.
 
     Args:
         connection: within a transaction.
         number: the drive's number.
         moment: which of its passes it was.
-        reading: what it read.
+        reading: what it read; None where it brought none, so that what was read before still stands.
+        heard: what the machine's other senses count of it.
 
     Raises:
         sqlite3.Error: it could not be written; the caller undoes the transaction.
     """
+    values = {value.signal: value for value in (*(() if reading is None else reading.values), *heard)}
     before = {
         signal: (series, unit, kind, source, since, (value, reason))
         for series, signal, unit, kind, source, since, value, reason in connection.execute(
@@ -67,7 +79,7 @@ def write_reading(connection: sqlite3.Connection, number: int, moment: Moment, r
     }
     changed: list[tuple[int, int, rows.Cell, str | None]] = []
     # By name, so that a doubled one cannot cost the whole round.
-    for value in {value.signal: value for value in reading.values}.values():
+    for value in values.values():
         now = (rows.cell(value.value), rows.text_or_none(value.reason))
         about = (rows.text(value.unit), value.kind.value, rows.text(value.source))
         found = before.get(rows.text(value.signal))
@@ -75,8 +87,10 @@ def write_reading(connection: sqlite3.Connection, number: int, moment: Moment, r
         same_series = found is not None and found[0] == series
         if not (same_series and found is not None and _unchanged(found[4], found[5], now)):
             changed.append((moment.at, series, *now))
-    read = {rows.text(value.signal) for value in reading.values}
-    for signal, (series, *_, since, known) in before.items():
+    read = {rows.text(signal) for signal in values}
+    for signal, (series, _, _, source, since, known) in before.items():
+        if reading is None and source not in SENSES:
+            continue
         # What is no longer read is no longer known; since is None for what only ledgers follow.
         if signal not in read and since is not None and known[0] is not None:
             changed.append((moment.at, series, None, NOT_THERE))
@@ -90,8 +104,9 @@ def write_reading(connection: sqlite3.Connection, number: int, moment: Moment, r
         " SET since = excluded.since, value = excluded.value, reason = excluded.reason",
         changed,
     )
-    _write_last(connection, number, moment.at, packing.reading_packed(reading))
-    _write_beside(connection, number, moment, packing.beside_bytes(reading))
+    if reading is not None:
+        _write_last(connection, number, moment.at, packing.reading_packed(reading))
+        _write_beside(connection, number, moment, packing.beside_bytes(reading))
 
 
 def _write_last(connection: sqlite3.Connection, number: int, at: int, packed: bytes) -> None:

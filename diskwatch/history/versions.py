@@ -11,7 +11,15 @@ from diskwatch.errors import HistoryError, HistoryTooNew
 from diskwatch.units import plain
 
 MIGRATION_SET = "diskwatch"
-MIGRATIONS = ("0001_base", "0002_ten_years", "0003_every_pass", "0004_in_order", "0005_ways", "0006_answer")
+MIGRATIONS = (
+    "0001_base",
+    "0002_ten_years",
+    "0003_every_pass",
+    "0004_in_order",
+    "0005_ways",
+    "0006_answer",
+    "0007_listening",
+)
 """Names of all steps of the schema, oldest first; a step is never renamed, changed or taken out."""
 
 APPLICATION_ID = int.from_bytes(b"dskw", "big")

@@ -12,6 +12,7 @@ from diskwatch.history import packing, rows
 from diskwatch.history.arriving import Arrived
 from diskwatch.history.bays import standing_calls
 from diskwatch.history.library import Database
+from diskwatch.history.listening import left_off, totals, write_listened
 from diskwatch.history.lock import WatchLock
 from diskwatch.history.mishaps import taken_away, told, unreadable
 from diskwatch.history.moving import Judge, Part, arrive
@@ -21,7 +22,19 @@ from diskwatch.history.schema import bring_up_to_date
 from diskwatch.history.thinning import thin
 from diskwatch.history.traffic import rollups, uncondensed_day, write_class_days, write_spans
 from diskwatch.places import HISTORY
-from diskwatch.records import Call, ClassDay, Drive, Entry, IoRollup, IoSpan, KnownDrive, Place, Round
+from diskwatch.records import (
+    Call,
+    ClassDay,
+    Drive,
+    Entry,
+    IoRollup,
+    IoSpan,
+    KnownDrive,
+    LeftOff,
+    Listened,
+    Place,
+    Round,
+)
 from diskwatch.units import DAY
 
 _LOG_BYTES = 4 << 20
@@ -40,6 +53,7 @@ class History:
         self._file = None if path is None else _identity(path)
         self._lock = lock
         self._turn = threading.RLock()
+        self._lasting = True
 
     @classmethod
     def open(cls, folder: Path) -> "History":
@@ -136,6 +150,21 @@ class History:
         with self._writing() as connection:
             write_round(connection, round_)
 
+    def listen(self, listened: Listened) -> None:
+        """Keep what was heard in the kernel's log, with the place up to which it was read."""
+        with self._writing() as connection:
+            write_listened(connection, listened)
+
+    def left_off(self, source: str) -> tuple[LeftOff, str] | None:
+        """How far a log was read, and what was gathered of troubles under way; None for never."""
+        with self._using() as connection:
+            return left_off(connection, source)
+
+    def heard_totals(self) -> dict[int, dict[str, int]]:
+        """What is counted of each drive besides its own word, by its number and by signal."""
+        with self._using() as connection:
+            return totals(connection)
+
     def note(self, *entries: Entry) -> None:
         """Add to the day book outside of a round."""
         with self._writing() as connection:
@@ -194,7 +223,8 @@ class History:
         Returns:
             Whether there may be more to thin.
         """
-        with self._writing() as connection:
+        # What a power cut undoes of it is thinned again: no bite need wait for the disk.
+        with self._writing(lasting=False) as connection:
             return thin(connection, now)
 
     def arrive(self, parts: Sequence[Part], judge: Judge, *entries: Entry) -> tuple[Arrived, ...]:
@@ -237,7 +267,12 @@ class History:
                 raise unreadable(self._path) from error
 
     @contextmanager
-    def _writing(self) -> Iterator[sqlite3.Connection]:
+    def _writing(self, *, lasting: bool = True) -> Iterator[sqlite3.Connection]:
+        """A transaction; a lasting one has reached the disk when it ends, and with it all before it.
+
+        Of the others a power cut may undo the last ones: the log is read up to its first gap (SQLite, Write-Ahead
+        Logging, 2.2; PRAGMA synchronous).
+        """
         with self._turn:
             # SQLite goes on writing into a file that has lost its name, and all of it would be lost in silence.
             if self._path is not None and _identity(self._path) != self._file:
@@ -245,6 +280,9 @@ class History:
             try:
                 # What a failure left open, where even undoing it failed, must not swallow what comes now.
                 self._db.rollback()
+                if lasting is not self._lasting:
+                    self._db.conn.execute(f"PRAGMA synchronous = {'FULL' if lasting else 'NORMAL'}")
+                    self._lasting = lasting
                 with self._db.atomic():
                     yield self._db.conn
             except sqlite3.Error as error:

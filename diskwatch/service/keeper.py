@@ -22,7 +22,17 @@ from diskwatch.errors import (
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
-from diskwatch.records import Drive, DriveLine, Entry, IoSpan, KnownDrive, Place, Round
+from diskwatch.records import (
+    Drive,
+    DriveLine,
+    Entry,
+    IoSpan,
+    KnownDrive,
+    LeftOff,
+    Listened,
+    Place,
+    Round,
+)
 
 MOST_WAITING = 2_000
 """Writes that wait at most; half-hourly rounds of a whole month fit."""
@@ -133,6 +143,22 @@ class Keeper:
         """Keep traffic."""
         if spans:
             self._write(lambda history: history.add_traffic(spans))
+
+    def listen(self, listened: Listened) -> None:
+        """Keep what was heard in the kernel's log."""
+        self._write(lambda history: history.listen(listened))
+
+    def left_off(self, source: str) -> tuple[LeftOff, str] | None:
+        """How far a log was read, and what was gathered of troubles under way; None where that is not known."""
+        with suppress(HistoryError):
+            return self.ask(lambda history: history.left_off(source))
+        return None
+
+    def heard_totals(self) -> dict[int, dict[str, int]]:
+        """What is counted of each drive besides its own word; nothing where no history is in reach."""
+        with suppress(HistoryError):
+            return self.ask(lambda history: history.heard_totals()) or {}
+        return {}
 
     def note(self, *entries: Entry) -> None:
         """Keep day-book entries that belong to no round."""

@@ -18,11 +18,12 @@ def test_every_kind_of_row_of_a_drive_leaves_and_none_of_another(history):
     connection = history._db.conn
     connection.execute("INSERT INTO owner_fact VALUES (1, 'label', 'attic', ?)", (NOON,))
     connection.execute("INSERT INTO pass_day VALUES (1, 20000, 'read', 48, 1, 2)")
+    connection.execute("INSERT INTO heard VALUES (1, 'link-resets', 3)")
     connection.execute("INSERT INTO answer VALUES (1, ?, 'keep', ?)", (NOON, packing.packed("all of it")))
     found = Counter(line.record for line in lines_of(connection, 1))
     assert found == {
         "drive": 1, "owner": 1, "place": 1, "passes": 1, "pass": 3, "value": 9, "beside": 1, "evidence": 6,
-        "answer": 1, "load": 1, "finding": 4, "call": 3, "event": 3, "copy": 2, "state": 1,
+        "heard": 1, "answer": 1, "load": 1, "finding": 4, "call": 3, "event": 3, "copy": 2, "state": 1,
     }  # fmt: skip  # a table reads better in rows
     assert {line.drive for line in lines_of(connection, 1)} == {1}
 
