@@ -351,3 +351,25 @@ def test_what_an_owner_tells_of_a_drive_that_nobody_knows_is_refused_whole(histo
     kept = history._db.conn.execute("SELECT drive, fact, value FROM owner_fact ORDER BY fact").fetchall()
     assert kept == [(1, "asset", "A"), (1, "label", "left")]
     assert history._db.conn.execute("SELECT count(*) FROM day_book").fetchone() == (1,)
+
+
+def test_only_thinning_does_not_wait_for_the_disk_and_what_comes_after_it_does(history, monkeypatch):
+    seen = []
+
+    def note(connection, *_):
+        seen.append(connection.execute("PRAGMA synchronous").fetchone()[0])
+
+    def fails(connection, *_):
+        note(connection)
+        raise sqlite3.OperationalError("invented")
+
+    monkeypatch.setattr(writer, "thin", note)
+    monkeypatch.setattr(writer, "write_round", note)
+    history.thin(NOON)
+    history.record(a_round())
+    monkeypatch.setattr(writer, "thin", fails)
+    with pytest.raises(HistoryError):
+        history.thin(NOON)
+    history.record(a_round())
+    normal, full = 1, 2
+    assert seen == [normal, full, normal, full]
