@@ -270,8 +270,8 @@ class History:
     def _writing(self, *, lasting: bool = True) -> Iterator[sqlite3.Connection]:
         """A transaction; a lasting one has reached the disk when it ends, and with it all before it.
 
-        Of the others a power cut may undo the last ones: the log is read up to its first gap (SQLite, Write-Ahead
-        Logging, 2.2; PRAGMA synchronous).
+        Of the others a power cut may undo the last ones: the log is read up to its first gap (SQLite,
+        Write-Ahead Logging, 2.2; PRAGMA synchronous).
         """
         with self._turn:
             # SQLite goes on writing into a file that has lost its name, and all of it would be lost in silence.
