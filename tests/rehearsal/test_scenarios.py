@@ -1,10 +1,24 @@
+import textwrap
+from typing import get_args
+
+import msgspec
 import pytest
 
 from diskwatch.errors import UsageError
 from diskwatch.records import CallWord
-from diskwatch.rehearsal import scenarios
+from diskwatch.rehearsal import happenings, scenarios
 from diskwatch.rehearsal.happenings import CableLoosens, Scratch
-from diskwatch.rehearsal.scenario import MARK
+from diskwatch.rehearsal.scenario import (
+    MARK,
+    BaySpec,
+    DriveSpec,
+    Expectation,
+    Holiday,
+    RoomSpec,
+    Scenario,
+)
+from diskwatch.rehearsal.verdict import Verdict
+from tests.rehearsal.test_conclusions import lived
 
 SMALL = """
 title = "small"
@@ -86,6 +100,53 @@ def test_a_wrong_file_is_refused_in_one_line_that_names_it_and_the_fault(tmp_pat
     assert told in str(caught.value)
     assert "mine.toml" in str(caught.value)
     assert "\n" not in str(caught.value)
+
+
+def keys(kind: type) -> set[str]:
+    return {field.name for field in msgspec.structs.fields(kind)}
+
+
+def test_the_owners_guide_names_every_key_and_every_event():
+    guide = (scenarios.folder() / "README.md").read_text(encoding="utf-8")
+    events = get_args(happenings.Event)
+    wanted = set().union(
+        *(keys(one) for one in (Scenario, DriveSpec, RoomSpec, BaySpec, Holiday, Expectation, *events))
+    )
+    wanted |= {str(one.__struct_config__.tag) for one in events}
+    assert {one for one in wanted if one not in guide} == set()
+
+
+def test_the_example_of_the_owners_guide_comes_out_as_it_says(tmp_path):
+    guide = (scenarios.folder() / "README.md").read_text(encoding="utf-8")
+    example = textwrap.dedent(guide.partition("```toml\n")[2].partition("```")[0])
+    ended = lived(written(tmp_path, example))
+    assert [one.verdict for one in ended.outcomes] == [Verdict.REACHED]
+
+
+@pytest.mark.parametrize(
+    ("text", "told"),
+    [
+        (
+            SMALL + '[[expect]]\ncall = "look"\nfrom_day = 9\nby_day = 4\nbecause = "x"\n',
+            "[[expect]] 1, by_day: 4 lies before from_day, 9",
+        ),
+        (SMALL + '[[expect]]\nstays = "keep"\ncause = "media"\nbecause = "x"\n', "cause: goes with a call"),
+        (
+            SMALL + '[[expect]]\ncall = "copy"\nby_day = 4\nstays = "look"\nbecause = "x"\n',
+            "rules out the call copy",
+        ),
+        (SMALL.replace("days = 10", 'days = 10\nplace = "a home"'), "does not say that it is invented"),
+        (SMALL.replace("/dev/sda", "/dev/nvme0"), "as /dev/sda would be"),
+        (
+            SMALL + 'joins_day = 5\n[[event]]\nwhat = "dies"\nday = 1\ndrive = "INVENTED-1"\n',
+            "before it joins",
+        ),
+    ],
+)
+def test_what_contradicts_itself_is_refused(tmp_path, text, told):
+    with pytest.raises(UsageError) as caught:
+        scenarios.load(written(tmp_path, text))
+    assert told in str(caught.value)
 
 
 def test_a_name_that_is_not_known_gets_the_nearest_one():
