@@ -73,7 +73,7 @@ def batch_evidence(shifts):
     _, sigma = centre_and_spread(shifts[:20])
     sums = [0.0] * 4
     for shift in shifts[20:]:
-        z = min(max((shift - log(1.15)) / sigma, -2.5), 2.5)
+        z = min(max((shift - log(1.20)) / sigma, -2.5), 2.5)
         sums = [
             min(1e15, (one + 1) * exp(rate * z - 0.75 * rate**2))
             for one, rate in zip(sums, (0.3, 0.6, 1.0, 1.5), strict=True)
