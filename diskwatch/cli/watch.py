@@ -28,7 +28,8 @@ def run(args: argparse.Namespace) -> int:
     """Watch; 0 when all was recorded, 3 without any drive, 4 when the history could not be written."""
     owner = settings(args)
     folder = state_folder(args)
-    watch = Watch(machine(owner, folder), owner, folder, told=None if args.tied else Voice().say)
+    told = None if args.tied else Voice().say
+    watch = Watch(machine(owner, folder), owner, folder, told=told)
     if watch.trouble:
         talk(f"diskwatch: {watch.trouble}; watching goes on without it")
     if args.once:
@@ -41,9 +42,15 @@ def run(args: argparse.Namespace) -> int:
         if not rounds:
             raise NothingToWorkOn("this machine shows no drive at all", hint="see 'diskwatch preflight'")
         return 0
+    at_work = [watch]
     if args.tied:
-        threading.Thread(target=_end_with_parent, args=(watch,), daemon=True).start()
-    watch.run()
+        threading.Thread(target=_end_with_parent, args=(at_work,), daemon=True).start()
+    while (there := watch.run()) is not None:
+        # The history lies there now, and a watch that begins anew knows of no other place.
+        watch = Watch(machine(owner, there), owner, there, told=told)
+        before, at_work[0] = at_work[0], watch
+        if before.ended:
+            watch.end()
     if watch.trouble:
         talk(f"diskwatch: not stored: {watch.trouble}")
         return 4
@@ -71,10 +78,10 @@ def _ways(folder: Path) -> tuple[Way, ...]:
         return ()
 
 
-def _end_with_parent(watch: Watch) -> None:
+def _end_with_parent(at_work: list[Watch]) -> None:
     while os.read(sys.stdin.fileno(), 4096):
         pass
-    watch.end()
+    at_work[0].end()
 
 
 class Voice:

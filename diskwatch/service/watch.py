@@ -6,8 +6,10 @@ import time
 from collections.abc import Callable, Mapping
 from functools import partial
 from pathlib import Path
+from queue import SimpleQueue
 from typing import Any
 
+from diskwatch.errors import DiskwatchError, HistoryError
 from diskwatch.history.exchange import read
 from diskwatch.history.live import LiveWriter
 from diskwatch.history.writer import History
@@ -18,6 +20,7 @@ from diskwatch.service import requests
 from diskwatch.service.arrival import take_in
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.owner import DEEDS
+from diskwatch.service.removal import MOVE, move_house
 from diskwatch.service.requests import Answer
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.schedule import Schedule
@@ -74,6 +77,9 @@ class Watch:
         self._rounding = threading.Lock()
         self._stop = threading.Event()
         self._asked = threading.Thread()
+        self._ended = False
+        self._wanted: Path | None = None
+        self._outcome: SimpleQueue[Answer | DiskwatchError] = SimpleQueue()
         self._upkeep = Upkeep(
             self._keeper,
             folder,
@@ -101,8 +107,13 @@ class Watch:
         finally:
             self._end()
 
-    def run(self) -> None:
-        """Watch until SIGTERM, SIGINT or `end`; everything is stored before it returns."""
+    def run(self) -> Path | None:
+        """Watch until SIGTERM, SIGINT or `end`; everything is stored before it returns.
+
+        Returns:
+            The state folder in which another watch is to go on, where this one ended for the history to be
+            moved; else None.
+        """
         for number in (signal.SIGTERM, signal.SIGINT):
             signal.signal(number, lambda *_: self.end())
         schedule = Schedule(self._mishap)
@@ -118,9 +129,16 @@ class Watch:
         finally:
             schedule.stop()
             self._end("Watching ended.")
+        return self._after_moving()
+
+    @property
+    def ended(self) -> bool:
+        """Whether somebody wants no more watching."""
+        return self._ended
 
     def end(self) -> None:
         """Let `run` come to its end; may be called from any thread or signal handler."""
+        self._ended = True
         self._stop.set()
 
     def _guard(self, schedule: Schedule) -> None:
@@ -161,7 +179,7 @@ class Watch:
             self._asked.start()
 
     def _take_up(self) -> None:
-        deeds = {"import-history": self._import}
+        deeds = {"import-history": self._import, MOVE: self._move}
         requests.take_up(
             self._folder, deeds | {name: partial(self._owner, deed) for name, deed in DEEDS.items()}
         )
@@ -179,6 +197,31 @@ class Watch:
         # Between two rounds, for the same reason.
         with self._rounding, self._lock:
             return self._keeper.change(lambda history: deed(history, words, now()))
+
+    def _move(self, words: Mapping[str, Any]) -> Answer:
+        """End for the history to be moved: only when all is stored and nobody writes can it be whole."""
+        self._wanted = Path(str(words["to"]))
+        self._stop.set()
+        told = self._outcome.get()
+        if isinstance(told, DiskwatchError):
+            raise HistoryError(
+                f"the watch has not moved it and goes on where it was: {told}",
+                hint="or end the watch, run this again with the right to write there, and start the watch anew",
+            )
+        return told
+
+    def _after_moving(self) -> Path | None:
+        if self._wanted is None:
+            return None
+        folder = self._folder
+        try:
+            moved, told = move_house(folder, self._wanted, now())
+            folder = moved.to
+            self._outcome.put(told)
+        except DiskwatchError as error:
+            self._outcome.put(error)
+        self._asked.join(HAND)
+        return None if self._ended else folder
 
     def _troubles(self) -> tuple[str, ...]:
         kept = self._keeper.trouble
