@@ -209,6 +209,7 @@ def _expected(one: Outcome) -> dict[str, object]:
         "cause": wish.cause.value if wish.cause else None,
         "from_day": wish.from_day,
         "by_day": wish.by_day,
+        "foretells": wish.foretells,
         "stays": wish.stays.value if wish.stays else None,
         "never_cause": [cause.value for cause in wish.never_cause],
         "needs": list(wish.needs),
@@ -267,6 +268,8 @@ def _wished(one: Outcome) -> str:
     if wish.call is not None:
         cause = f" for {wish.cause.value}" if wish.cause else ""
         parts.append(f"{wish.call.value}{cause} from day {wish.from_day:g} to {wish.by_day or 0:g}")
+    if wish.foretells is not None:
+        parts.append(f"foretold by day {wish.by_day or 0:g} when its {wish.foretells} reaches the limit")
     if wish.stays is not None:
         parts.append(f"never more than {wish.stays.value}")
     if wish.never_cause:

@@ -111,6 +111,8 @@ class Expectation(Table, frozen=True, kw_only=True):
         cause: the cause that should be named with it.
         from_day: earliest day on which that would be right.
         by_day: latest day.
+        foretells: the signal of which it should be said, by the latest day, when it reaches its limit, so that
+            this comes true.
         stays: the strongest call that it may ever have.
         never_cause: causes that must never be named.
         needs: parts of the judgement that are not there yet and without which this cannot be concluded.
@@ -122,6 +124,7 @@ class Expectation(Table, frozen=True, kw_only=True):
     cause: Cause | None = None
     from_day: Day = 0.0
     by_day: Day | None = None
+    foretells: Annotated[str, msgspec.Meta(min_length=1, max_length=120)] | None = None
     stays: CallWord | None = None
     never_cause: Annotated[tuple[Cause, ...], msgspec.Meta(max_length=20)] = ()
     needs: Annotated[tuple[Text, ...], msgspec.Meta(max_length=20)] = ()

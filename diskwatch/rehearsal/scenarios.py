@@ -109,8 +109,12 @@ def _wishes(wish: Expectation, serials: Collection[str]) -> Iterator[str]:
     """What is wrong with an expectation, behind its place in the file."""
     if wish.drive and wish.drive not in serials:
         yield f", drive: there is no {plain(wish.drive)}"
-    if wish.call is None and wish.stays is None and not wish.never_cause:
-        yield ": asks for nothing; give it a call, stays or never_cause"
+    if wish.call is None and wish.stays is None and wish.foretells is None and not wish.never_cause:
+        yield ": asks for nothing; give it a call, foretells, stays or never_cause"
+    if wish.foretells is not None and wish.call is not None:
+        yield ", foretells: goes without a call; give each an expectation of its own"
+    if wish.foretells is not None and wish.by_day is None:
+        yield ", by_day: is missing; what is foretold should be said by then"
     if wish.call is None and wish.cause is not None:
         yield ", cause: goes with a call; give it one"
     if wish.call is not None and wish.by_day is None:

@@ -2,7 +2,7 @@
 
 from dataclasses import dataclass, field
 
-from diskwatch.records import Call, Drift, DriveRound, FindingKind, Outcome, Reading, ReplayedDrive
+from diskwatch.records import Call, Drift, DriveRound, FindingKind, Forecast, Outcome, Reading, ReplayedDrive
 from diskwatch.trends.norms import STREAM_OF
 from diskwatch.units import day_number
 
@@ -37,6 +37,8 @@ class Story:
         said: changes of call and cause, oldest first.
         drifts: ledger alarms, oldest first.
         moved: error counters that ever rose, with their last value.
+        forecasts: every forecast that said when, oldest first.
+        reached: UTC day number on which each signal was first said to have reached its limit.
     """
 
     serial: str
@@ -49,6 +51,8 @@ class Story:
     said: list[Said] = field(default_factory=list)
     drifts: list[Drift] = field(default_factory=list)
     moved: dict[str, int] = field(default_factory=dict)
+    forecasts: list[Forecast] = field(default_factory=list)
+    reached: dict[str, int] = field(default_factory=dict)
     _latest: dict[str, int] = field(default_factory=dict)
     _alarmed: set[str] = field(default_factory=set)
 
@@ -67,8 +71,17 @@ class Story:
                 self._alarmed.add(finding.name)
                 signal = str(finding.data["signal"])
                 self.drifts.append(Drift(at=at, signal=signal, evidence=finding.evidence or 0.0))
+        for made in one.forecasts:
+            self._foretell(made)
         if one.call is not None:
             self._say(at, one.call)
+
+    def _foretell(self, made: Forecast) -> None:
+        if not made.known:
+            return
+        self.forecasts.append(made)
+        if made.high == 0:
+            self.reached.setdefault(made.signal, made.made_on_day)
 
     def _counters(self, reading: Reading) -> None:
         for value in reading.values:

@@ -7,7 +7,7 @@ from enum import StrEnum
 from diskwatch.records import CallWord
 from diskwatch.rehearsal.scenario import Expectation, Scenario
 from diskwatch.rehearsal.story import Said, Story
-from diskwatch.units import DAY
+from diskwatch.units import DAY, day_number
 
 
 class Verdict(StrEnum):
@@ -81,6 +81,8 @@ def _judged(
     if not story.said:
         return Verdict.OPEN if wish.call is None or end < _latest(wish, start) else Verdict.MISSED, None
     kept = wish.stays is not None or bool(wish.never_cause)
+    if wish.foretells is not None:
+        return _foretold(wish, wish.foretells, story, start, end)
     if wish.call is None:
         return Verdict.REACHED if whole else Verdict.KEPT_SO_FAR, None
     verdict, at = _reached(wish, wish.call, story, start, end)
@@ -96,6 +98,23 @@ def _latest(wish: Expectation, start: int) -> float:
 def _breaks(wish: Expectation, one: Said) -> bool:
     too_strong = wish.stays is not None and one.call.word.rank > wish.stays.rank
     return too_strong or one.call.cause in wish.never_cause
+
+
+def _foretold(wish: Expectation, signal: str, story: Story, start: int, end: int) -> tuple[Verdict, int | None]:
+    """Whether the last forecast up to the day says when, and comes true."""
+    if end < _latest(wish, start):
+        return Verdict.OPEN, None
+    earliest, latest = start + wish.from_day * DAY, _latest(wish, start)
+    made = [
+        one
+        for one in story.forecasts
+        if one.signal == signal and one.high != 0 and earliest <= one.made_on_day * DAY <= latest
+    ]
+    if not made:
+        return Verdict.MISSED, None
+    held = made[-1].held(reached=story.reached.get(signal), seen_until=day_number(end))
+    verdict = {True: Verdict.REACHED, False: Verdict.MISSED, None: Verdict.OPEN}[held]
+    return verdict, made[-1].made_on_day * DAY
 
 
 def _reached(

@@ -102,7 +102,7 @@ def test_reads_and_writes_wait_as_pollaczek_and_khinchine_have_it():
 def test_requests_under_way_are_as_many_as_a_queue_of_single_requests_has():
     # Little: the mean number under way is arrivals times the time of each, here by two ways apart.
     one, count, hours = disk(hdd()), 150_000, 8
-    _, alone = served_alone(stream(2, "little"), one, count, SPAN_MS)
+    times, alone = served_alone(stream(2, "little"), one, count, SPAN_MS)
     for _ in range(hours):
         one.live(hour(), reads(count, OFFICE, direct=False))
     counts = one.counts
@@ -110,13 +110,8 @@ def test_requests_under_way_are_as_many_as_a_queue_of_single_requests_has():
     under_way, used = counts.read_ms / span, counts.busy_ms / span
     assert under_way == pytest.approx(alone / SPAN_MS, rel=0.05)
     # U = l S, and who is served is one of those under way.
-    assert used == pytest.approx(count / SPAN_MS * (counts.read_ms / counts.reads - _wait(counts)), rel=0.05)
+    assert used == pytest.approx(count / SPAN_MS * fmean(times), rel=0.02)
     assert used < under_way
-
-
-def _wait(counts) -> float:
-    """Mean time before service, by the totals: what is under way beside what is served."""
-    return float((counts.read_ms - counts.busy_ms) / counts.reads)
 
 
 def test_exponential_service_waits_as_m_m_1_has_it():

@@ -1,7 +1,7 @@
 from dataclasses import replace
 
 from diskwatch import analyser
-from diskwatch.records import CallWord, Cause, DriveRound, KnownDrive, Outcome, ReplayedDrive
+from diskwatch.records import CallWord, Cause, DriveRound, Forecast, KnownDrive, Outcome, ReplayedDrive
 from diskwatch.rehearsal.story import Story
 from tests.samples import DAY, HDD, HERE, NOON, missed, read
 
@@ -66,6 +66,24 @@ def test_a_new_cause_behind_the_same_call_is_remembered_but_is_no_new_call():
     passes.append(read(NOON + DAY, pending_sectors=8, temperature=30, warning_celsius=60))
     one = story(*passes)
     assert [(said.call.cause, said.changed) for said in one.said] == [(Cause.HEAT, True), (Cause.MEDIA, False)]
+
+
+def test_forecasts_that_say_when_are_remembered_and_the_day_on_which_a_limit_was_reached():
+    one = Story(serial="INV0001", model="x")
+    for day, low, high in ((1, None, None), (2, 5.0, 9.0), (8, 0.0, 0.0), (9, 0.0, 0.0)):
+        made = Forecast(
+            signal="available-spare",
+            limit=10,
+            made_on_day=day,
+            low=low,
+            high=high,
+            probability=0.8,
+            reason=None if low is not None else "too little to say",
+        )
+        pass_ = replace(read(NOON + day * DAY), drive=HDD)
+        one.take(DriveRound(known=KNOWN, pass_=pass_, state=None, forecasts=(made,)))
+    assert [made.made_on_day for made in one.forecasts] == [2, 8, 9]
+    assert one.reached == {"available-spare": 8}
 
 
 def test_copy_and_retire_are_warnings():

@@ -2,7 +2,7 @@ from typing import Any
 
 import pytest
 
-from diskwatch.records import Call, CallWord, Cause
+from diskwatch.records import Call, CallWord, Cause, Forecast
 from diskwatch.rehearsal.scenario import Expectation
 from diskwatch.rehearsal.story import Said, Story
 from diskwatch.rehearsal.verdict import Verdict, outcomes
@@ -86,6 +86,30 @@ def test_a_call_that_must_never_be_exceeded_is_settled_only_at_the_end():
     assert kept(wish, said(12, "look", "media"), end=15) == "kept so far"
     assert kept(wish, said(12, "look", "media"), end=30) == "reached"
     assert kept(wish, end=15) == "open"
+
+
+def foretold(*made: Forecast, reached: int | None, end: int = 30) -> Verdict:
+    wish = Expectation(drive=HDD, foretells="available-spare", by_day=10, because="x")
+    story = Story(serial=HDD, model="x", said=[said(0, "keep")], forecasts=list(made))
+    if reached is not None:
+        story.reached["available-spare"] = reached
+    (one,) = outcomes(scenario(expect=(wish,)), {HDD: story}, start=0, end=end * DAY)
+    return one.verdict
+
+
+def forecast(day: int, low: float, high: float | None, signal: str = "available-spare") -> Forecast:
+    return Forecast(signal=signal, limit=10, made_on_day=day, low=low, high=high, probability=0.8, reason=None)
+
+
+def test_what_is_foretold_in_time_and_comes_true_is_reached():
+    early, late = forecast(3, 90, 99), forecast(9, 10, 15)
+    assert foretold(early, late, reached=21) is Verdict.REACHED, "the last one up to the day counts"
+    assert foretold(early, late, forecast(11, 1, 2), reached=25) is Verdict.MISSED
+    assert foretold(early, late, reached=None) is Verdict.MISSED, "its interval is over"
+    assert foretold(forecast(9, 10, 40), reached=None) is Verdict.OPEN
+    assert foretold(forecast(11, 10, 15), reached=21) is Verdict.MISSED, "too late"
+    assert foretold(forecast(9, 10, 15, "percentage-used"), reached=21) is Verdict.MISSED
+    assert foretold(late, reached=None, end=9) is Verdict.OPEN
 
 
 def test_nothing_is_settled_of_a_drive_that_was_never_asked():
