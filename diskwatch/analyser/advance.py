@@ -8,6 +8,7 @@ from diskwatch.analyser.around import ALONE, RETRACTS, Around, bays, power_share
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import facts, rules, sentences
+from diskwatch.judge.causes import Explained
 from diskwatch.records import Call, CallWord, Entry, Finding, FindingKind, Kind, Outcome, Pass, Reading
 from diskwatch.trends.norms import NORMS
 from diskwatch.units import day_number
@@ -74,11 +75,13 @@ def advance(state: DriveState, pass_: Pass, around: Around = ALONE) -> Step:
         now, told = heard.without_reading(outcomes.without_reading(state, pass_), pass_)
         happened += told
         now = _missed(now, pass_, around)
-    call = _called(now, pass_, around)
+    lead = rules.leading(now.standing.values())
+    told_signs = signs.put(now, pass_, lead, around)
+    call = _called(now, pass_, signs.explained(told_signs, lead))
     if call is not None and (state.call is None or call.word is not state.call.word):
         happened += told_call(state.call, call)
-    if call is not state.call:
-        now = replace(now, call=call)
+    if call is not state.call or told_signs != state.signs:
+        now = replace(now, call=call, signs=told_signs)
     return Step(state=now, happened=tuple(happened))
 
 
@@ -137,6 +140,7 @@ def _taken_in(
         temperature=temperature,
         latency=state.latency,
         traffic_through=state.traffic_through,
+        signs=state.signs,
         standing=state.standing,
         call=state.call,
     )
@@ -184,14 +188,12 @@ def _standing(before: Mapping[str, Finding], shown: tuple[Finding, ...], at: int
     return after
 
 
-def _called(state: DriveState, pass_: Pass, around: Around) -> Call | None:
+def _called(state: DriveState, pass_: Pass, explained: Explained | None) -> Call | None:
     """The call, or None as long as nothing is known of the drive."""
     if state.first_at is None and not state.standing:
         if pass_.outcome is Outcome.NO_SMART and pass_.drive is not None and pass_.drive.kind is Kind.VIRTUAL:
             return rules.decide((), before=state.call, at=pass_.at, quiet=sentences.no_smart())
         return state.call
-    lead = rules.leading(state.standing.values())
-    explained = None if lead is None else signs.explained(state, pass_, lead, around)
     return rules.decide(
         state.standing.values(),
         before=state.call,

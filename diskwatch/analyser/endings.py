@@ -12,8 +12,6 @@ from diskwatch.trends import episodes
 from diskwatch.trends.norms import MAY_FALL
 from diskwatch.units import day_number
 
-_OF_THE_LINK = frozenset({"drift:link", "fact:link-again"})
-
 
 def ended(state: DriveState, pass_: Pass) -> tuple[DriveState, tuple[Entry, ...]]:
     """Take away what has been shown to be over.
@@ -34,7 +32,7 @@ def ended(state: DriveState, pass_: Pass) -> tuple[DriveState, tuple[Entry, ...]
         return state, ()
     day = day_number(pass_.at)
     streams = state.streams
-    if not _OF_THE_LINK.isdisjoint(over):
+    if not rules.OF_THE_LINK.isdisjoint(over):
         streams = {**streams, "link": episodes.begin(day)}
     left = {name: one for name, one in state.standing.items() if name not in over}
     told = tuple(entry(pass_, "ended", sentence, finding=name) for name, sentence in over.items())
@@ -43,7 +41,7 @@ def ended(state: DriveState, pass_: Pass) -> tuple[DriveState, tuple[Entry, ...]
 
 
 def _over(state: DriveState, finding: Finding, pass_: Pass) -> Iterator[str]:
-    if finding.name in _OF_THE_LINK:
+    if finding.name in rules.OF_THE_LINK:
         stream = state.streams["link"]
         # A state of an older version does not know when its link rose last: the next rise tells.
         last_rise = state.rose.get("link", stream.powered)

@@ -2,13 +2,14 @@
 
 from dataclasses import dataclass
 
+from diskwatch.analyser.causation import Causation, causation
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.state import DriveState
-from diskwatch.judge import changes, rules
-from diskwatch.records import Call, CallWord, Finding
+from diskwatch.judge import changes, odds, rulebook, rules
+from diskwatch.records import Call, CallWord, Finding, Odds
 from diskwatch.trends import ledger, spots
 from diskwatch.trends.episodes import ABSORBED, Stream
-from diskwatch.trends.norms import BUDGET, NORMS, Norm
+from diskwatch.trends.norms import BUDGET, MAY_FALL, NORMS, Norm
 from diskwatch.units import day_number
 
 
@@ -91,7 +92,10 @@ class Explanation:
         damage: what the odds rule measures; None where it does not apply.
         findings: what stands, leading one first.
         would_change: what would change the call, one sentence each.
-        rules_version: version of the rules that decided.
+        rules_version: version of the rules as a whole.
+        rule: the rule that decided, in one sentence; None until the drive has been read.
+        causation: the rows of the table of causes behind the call; None where the table was not asked.
+        odds: what became of other drives that showed the same; None where there are no figures.
     """
 
     call: Call | None
@@ -102,6 +106,9 @@ class Explanation:
     findings: tuple[Finding, ...]
     would_change: tuple[str, ...]
     rules_version: int
+    rule: str | None
+    causation: Causation | None
+    odds: Odds | None
 
 
 def explain(state: DriveState) -> Explanation:
@@ -121,6 +128,9 @@ def explain(state: DriveState) -> Explanation:
         findings=rules.leading_first(state.standing.values()),
         would_change=_would_change(state, evidence),
         rules_version=rules.VERSION,
+        rule=None if state.call is None else rulebook.told(rulebook.rule_of(state.call.rule)),
+        causation=causation(state),
+        odds=None if state.last_at is None else odds.odds(state.showed, day=day_number(state.last_at)),
     )
 
 
@@ -161,7 +171,7 @@ def _would_change(state: DriveState, evidence: tuple[Evidence, ...]) -> tuple[st
         return (changes.needs_reading(),)
     if state.first_at is None and call.word is CallWord.KEEP:
         return (changes.virtual_stays(),)
-    told = [changes.stands() if _lasts(state) else changes.passes()] if call.word is not CallWord.KEEP else []
+    told = [_ends(state)] if call.word is not CallWord.KEEP else []
     if call.word is CallWord.KEEP:
         told.append(changes.first_defect_would())
         told += [
@@ -179,5 +189,13 @@ def _would_change(state: DriveState, evidence: tuple[Evidence, ...]) -> tuple[st
     return tuple(told)
 
 
-def _lasts(state: DriveState) -> bool:
-    return any(rules.lasting(one) for one in state.standing.values())
+def _ends(state: DriveState) -> str:
+    """What ends a call that asks for something."""
+    lasting = [one for one in state.standing.values() if rules.lasting(one)]
+    if not lasting:
+        return changes.passes()
+    if all(one.name in rules.OF_THE_LINK for one in lasting):
+        return changes.falls_with_the_link(rules.LINK_QUIET)
+    if all(one.name == "fact:first-defect" and MAY_FALL.issuperset(one.signals) for one in lasting):
+        return changes.falls_when_rewritten(rules.PENDING_QUIET)
+    return changes.stands()

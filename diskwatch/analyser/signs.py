@@ -72,29 +72,54 @@ _BEYOND_NORM = frozenset({"fact:unreadable", "fact:link-again"})
 """Facts that no drive within its norms shows, so that a sound one is no explanation."""
 
 
-def explained(state: DriveState, pass_: Pass, lead: Finding, around: Around) -> Explained | None:
-    """What the drive's signs together point to.
+def put(state: DriveState, pass_: Pass, lead: Finding | None, around: Around) -> Mapping[str, bool]:
+    """The signs that are put to the table: True where one showed lately, False where it could have.
 
     Args:
         state: the drive after the pass.
         pass_: the pass; one that brought no reading is silent of what only a reading tells.
-        lead: the finding that decides the call.
+        lead: the finding that decides the call, or None.
         around: its bay and the other drives of the machine.
+
+    Returns:
+        Nothing where there is nothing to explain, or where the leading fact tells its cause by itself.
+    """
+    if lead is None or _tells_itself(lead):
+        return {}
+    return {sign: showing for sign, showing in shown(state, pass_, around).items() if showing is not None}
+
+
+def _tells_itself(lead: Finding) -> bool:
+    return lead.name in _TOLD_BY_ITSELF or (
+        lead.kind is FindingKind.FACT and bool(lead.data.get("critical_warning"))
+    )
+
+
+def explained(told: Mapping[str, bool], lead: Finding | None) -> Explained | None:
+    """What the drive's signs together point to.
+
+    Args:
+        told: the signs that are put to the table.
+        lead: the finding that decides the call, or None.
 
     Returns:
         The cause; None where the leading fact tells it by itself. Slowness that follows the temperature is
         heat, whatever the table holds likelier.
     """
-    if lead.name in _TOLD_BY_ITSELF or (lead.kind is FindingKind.FACT and lead.data.get("critical_warning")):
+    if lead is None or _tells_itself(lead):
         return None
     if lead.data.get("follows_heat"):
         return Explained(cause=Cause.HEAT, probability=None, second=None)
-    told = shown(state, pass_, around)
     return causes.explain(
         [sign for sign, showing in told.items() if showing],
-        [sign for sign, showing in told.items() if showing is False],
-        drifting=lead.kind is FindingKind.DRIFT or lead.name in _BEYOND_NORM,
+        [sign for sign, showing in told.items() if not showing],
+        drifting=beyond_norm(lead),
     )
+
+
+def beyond_norm(lead: Finding) -> bool:
+    """Whether a finding speaks by itself against a drive within its norms."""
+    return lead.kind is FindingKind.DRIFT or lead.name in _BEYOND_NORM
 
 
 def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool | None]:

@@ -48,6 +48,7 @@ class DriveState:
         temperature: ledger of its days' highest temperatures.
         latency: what its latency has come to, by signal; what that was learnt from is kept apart.
         traffic_through: UTC day number of the last day whose traffic was taken in, or None.
+        signs: what was put to the table of causes for the call that stands: whether each sign showed.
         standing: findings that stand, by name.
         call: the call that stands, or None.
     """
@@ -77,6 +78,7 @@ class DriveState:
     temperature: Temperature = field(default_factory=Temperature)
     latency: Mapping[str, LatencyNow] = field(default_factory=dict)
     traffic_through: int | None = None
+    signs: Mapping[str, bool] = field(default_factory=dict)
     standing: Mapping[str, Finding] = field(default_factory=dict)
     call: Call | None = None
 

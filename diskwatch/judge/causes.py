@@ -27,7 +27,8 @@ NAMED = 0.70
 UNCLEAR = 0.35
 """Probability of the best cause below which none is named."""
 
-_SOUND = "sound"
+SOUND = "sound"
+"""The cause of a drive within its norms."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -45,19 +46,54 @@ class Explained:
     second: Cause | None
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Cell:
+    """One cell of the table.
+
+    Attributes:
+        cause: the cause, or ``sound``.
+        probability: how likely the sign shows within 30 days if that cause is at work.
+        source: where the figure comes from.
+    """
+
+    cause: str
+    probability: float
+    source: str
+
+
 @cache
 def _table() -> Mapping[str, Mapping[str, float]]:
     """Probabilities by sign and cause; the sign ``prior`` holds those beforehand."""
     table: dict[str, dict[str, float]] = {}
-    text = files("diskwatch.judge").joinpath("causes.csv").read_text(encoding="utf-8")
-    for row in csv.DictReader(text.splitlines()):
+    for row in _rows():
         table.setdefault(row["sign"], {})[row["cause"]] = float(row["probability"])
     return table
+
+
+@cache
+def _rows() -> tuple[Mapping[str, str], ...]:
+    text = files("diskwatch.judge").joinpath("causes.csv").read_text(encoding="utf-8")
+    return tuple(csv.DictReader(text.splitlines()))
 
 
 def signs() -> frozenset[str]:
     """Every sign that the table knows."""
     return frozenset(_table()) - {"prior"}
+
+
+def cells(sign: str, among: Collection[str]) -> tuple[Cell, ...]:
+    """The cells of one sign for some causes, likeliest first.
+
+    Args:
+        sign: a sign, or ``prior``.
+        among: the causes that are wanted.
+    """
+    found = [
+        Cell(cause=row["cause"], probability=float(row["probability"]), source=row["source"])
+        for row in _rows()
+        if row["sign"] == sign and row["cause"] in among
+    ]
+    return tuple(sorted(found, key=lambda cell: (-cell.probability, cell.cause)))
 
 
 def posterior(shown: Collection[str], absent: Collection[str]) -> Mapping[str, float]:
@@ -94,13 +130,13 @@ def explain(shown: Collection[str], absent: Collection[str], *, drifting: bool =
     """
     weights = dict(posterior(shown, absent))
     if drifting:
-        del weights[_SOUND]
+        del weights[SOUND]
     total = sum(weights.values())
     ranked = sorted(((cause, weight / total) for cause, weight in weights.items()), key=lambda pair: -pair[1])
     best, probability = ranked[0]
-    if best == _SOUND or probability < UNCLEAR:
+    if best == SOUND or probability < UNCLEAR:
         return Explained(cause=Cause.UNCLEAR, probability=None, second=None)
-    second = next(cause for cause, _ in ranked[1:] if cause != _SOUND)
+    second = next(cause for cause, _ in ranked[1:] if cause != SOUND)
     return Explained(
         cause=Cause(best), probability=probability, second=None if probability >= NAMED else Cause(second)
     )

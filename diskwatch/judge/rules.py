@@ -21,6 +21,9 @@ PASSING = frozenset({"fact:unreadable", "fact:hot", "fact:warns-of-heat", "fact:
 All others stand until evidence ends them (`LINK_QUIET`, `PENDING_QUIET`) or the owner speaks.
 """
 
+OF_THE_LINK = frozenset({"drift:link", "fact:link-again"})
+"""Findings about the link, which end on evidence."""
+
 LINK_QUIET = 30.0
 """Powered days without a damaged transfer after which a link is taken for mended (a proposal; no source)."""
 
