@@ -24,6 +24,7 @@ from diskwatch.records import (
     Entry,
     Identity,
     Kind,
+    LimitSource,
     Outcome,
     Pass,
     Place,
@@ -152,6 +153,8 @@ class _Arrival:
             "evidence": self._evidence,
             "heard": self._heard,
             "answer": self._answer,
+            "latency": self._latency,
+            "forecast": self._forecast,
             "load": self._load,
             "finding": self._finding,
             "call": self._call,
@@ -298,6 +301,31 @@ class _Arrival:
             " DO UPDATE SET at = excluded.at, call = excluded.call, packed = excluded.packed"
             " WHERE excluded.at > at",
             (self._drive, at, words(of["call"]), packing.packed(text(of["text"]))),
+        )
+
+    def _latency(self, at: int, of: Mapping[str, Any]) -> None:
+        learnt = data(json.loads(text(of["state"])))
+        # What is usual on another machine need not be so here: its port's name there is no port's name here.
+        learnt["key"] = f"elsewhere {learnt.get('key', '')}"
+        packed = packing.packed(json.dumps(learnt, separators=(",", ":")))
+        self._insert("latency_state", ("through", "packed"), (day_number(at), packed))
+
+    def _forecast(self, at: int, of: Mapping[str, Any]) -> None:
+        limit, probability = measure(of["at_limit"]), measure(of["probability"])
+        if limit is None or probability is None:
+            raise ValueError("a forecast lacks its limit or its probability")
+        columns = ("at_limit", "limit_from", "low", "high", "probability", "reason", "reached")
+        cells = (
+            limit,
+            LimitSource(of["limit_from"]).value,
+            measure(of["low"]),
+            measure(of["high"]),
+            probability,
+            words(of["reason"]),
+            count(of["reached"]),
+        )
+        self._insert(
+            "forecast", ("signal", "made_on_day", *columns), (text(of["signal"]), day_number(at), *cells)
         )
 
     def _load(self, at: int, of: Mapping[str, Any]) -> None:

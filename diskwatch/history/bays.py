@@ -4,6 +4,7 @@ import sqlite3
 from collections import defaultdict
 
 from diskwatch.history import rows
+from diskwatch.history.forecasts import latest_forecasts
 from diskwatch.records import Call, CallWord, DriveLine, Finding, SignalNow
 from diskwatch.records.owner import LABEL, owner_facts
 
@@ -19,6 +20,7 @@ def drive_lines(connection: sqlite3.Connection) -> tuple[DriveLine, ...]:
     calls = standing_calls(connection)
     findings = _findings(connection)
     signals = _signals(connection)
+    forecasts = latest_forecasts(connection)
     found = connection.execute(
         "SELECT drive.number, wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
         " device, bay, lives_here, first_seen, passed_at, outcome, sentence.text"
@@ -38,6 +40,7 @@ def drive_lines(connection: sqlite3.Connection) -> tuple[DriveLine, ...]:
                 call=calls.get(known.number),
                 findings=tuple(sorted(findings[known.number], key=_leading)),
                 signals=tuple(signals[known.number]),
+                forecasts=forecasts.get(known.number, ()),
                 owner=owner_facts(said[known.number]),
             )
         )

@@ -11,7 +11,7 @@ from typing import Any
 
 _LARGEST = 2**62
 
-_BY_TEXT = frozenset({"owner_fact", "thinned", "way", "left_off", "heard"})
+_BY_TEXT = frozenset({"owner_fact", "thinned", "way", "left_off", "heard", "forecast"})
 """Small tables whose key holds words: read forward, then backward from the end."""
 
 

@@ -4,6 +4,8 @@ import sqlite3
 from collections.abc import Mapping, Sequence
 
 from diskwatch.history import packing, rows
+from diskwatch.history.forecasts import write_forecasts
+from diskwatch.history.latency import write_learnt
 from diskwatch.records import Call, DriveRound, Finding
 from diskwatch.units import DAY, day_number
 
@@ -29,6 +31,9 @@ def write_judgement(connection: sqlite3.Connection, part: DriveRound, at: int) -
         _write_call(connection, number, part.call)
     if part.state is not None:
         _write_state(connection, number, part.pass_.at, packing.packed(part.state))
+    if part.learnt is not None:
+        write_learnt(connection, number, part.learnt)
+    write_forecasts(connection, number, part.forecasts)
 
 
 def keep_copy(connection: sqlite3.Connection, number: int, at: int) -> None:

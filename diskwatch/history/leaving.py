@@ -56,6 +56,10 @@ def _answer(row: dict[str, Any]) -> dict[str, Any]:
     return {"at": row["at"], "call": row["call"], "text": rows.text(packing.unpacked(row["packed"]))}
 
 
+def _learnt(row: dict[str, Any]) -> dict[str, Any]:
+    return {"at": row["at"], "state": packing.unpacked(row["packed"])}
+
+
 def _load(row: dict[str, Any]) -> dict[str, Any]:
     return {**row, "histogram": sorted(packing.histogram(row["histogram"]).items())}
 
@@ -91,6 +95,9 @@ _QUERIES = {
     "heard": "SELECT first_seen AS at, signal, total FROM heard JOIN drive ON drive.number = heard.drive"
     " WHERE heard.drive = :drive",
     "answer": "SELECT at, call, packed FROM answer WHERE drive = :drive",
+    "latency": "SELECT through * 86400 AS at, packed FROM latency_state WHERE drive = :drive",
+    "forecast": "SELECT made_on_day * 86400 AS at, signal, at_limit, limit_from, low, high, probability,"
+    " reason, reached FROM forecast WHERE drive = :drive ORDER BY signal, made_on_day",
     "load": "SELECT day * 86400 AS at, load_class, direction, rollups, operations, histogram FROM io_day"
     " WHERE drive = :drive",
     "finding": "SELECT since AS at, name, kind, signals, calls, cause, evidence, sentence, data, closed"
@@ -106,6 +113,7 @@ _FIELDS = {
     "value": _value,
     "beside": _beside,
     "answer": _answer,
+    "latency": _learnt,
     "load": _load,
     "finding": _finding,
     "event": _data,

@@ -58,6 +58,12 @@ _VIEWS = {
         _nothing("left_off", "source log sequence gathered"),
         _nothing("heard", "drive signal total"),
     ),
+    "0008_trends": (
+        _nothing("latency_state", "drive through packed"),
+        _nothing(
+            "forecast", "drive signal made_on_day at_limit limit_from low high probability reason reached"
+        ),
+    ),
 }
 """What stands in for a step that a file may lack; one without a line here must be taken before it is read."""
 

@@ -16,6 +16,7 @@ from diskwatch.history import proof, questions
 from diskwatch.history.bays import drive_lines
 from diskwatch.history.counting import counted_before
 from diskwatch.history.exchange import Line
+from diskwatch.history.forecasts import Kept, kept_forecasts, latest_forecasts
 from diskwatch.history.leaving import lines_of
 from diskwatch.history.live import Live, read_live
 from diskwatch.history.lock import watcher
@@ -32,6 +33,7 @@ from diskwatch.records import (
     ClassDay,
     DriveLine,
     Entry,
+    Forecast,
     IoRollup,
     IoSpan,
     Pass,
@@ -207,6 +209,14 @@ class Past:
             until: first UTC day number not wanted any more.
         """
         return self._ask(lambda connection: class_days(connection, drive, since, until))
+
+    def forecasts(self, drive: int) -> tuple[Forecast, ...]:
+        """The latest forecast about each signal of a drive."""
+        return self._ask(lambda connection: latest_forecasts(connection).get(drive, ()))
+
+    def kept_forecasts(self, drive: int) -> tuple[Kept, ...]:
+        """Every forecast about a drive with what became of it, by signal, oldest first."""
+        return self._ask(lambda connection: kept_forecasts(connection, drive))
 
     def last_reading(self, drive: int) -> Reading | None:
         """Attribute table, self-test log and limits as last read, without values; None before that."""

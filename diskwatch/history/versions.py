@@ -19,6 +19,7 @@ MIGRATIONS = (
     "0005_ways",
     "0006_answer",
     "0007_listening",
+    "0008_trends",
 )
 """Names of all steps of the schema, oldest first; a step is never renamed, changed or taken out."""
 

@@ -11,6 +11,8 @@ from typing import Self
 from diskwatch.history import packing, rows
 from diskwatch.history.arriving import Arrived
 from diskwatch.history.bays import standing_calls
+from diskwatch.history.forecasts import latest_forecasts
+from diskwatch.history.latency import learnt, traffic_days
 from diskwatch.history.library import Database
 from diskwatch.history.listening import left_off, totals, write_listened
 from diskwatch.history.lock import WatchLock
@@ -27,9 +29,11 @@ from diskwatch.records import (
     ClassDay,
     Drive,
     Entry,
+    Forecast,
     IoRollup,
     IoSpan,
     KnownDrive,
+    Learnt,
     LeftOff,
     Listened,
     Place,
@@ -164,6 +168,30 @@ class History:
         """What is counted of each drive besides its own word, by its number and by signal."""
         with self._using() as connection:
             return totals(connection)
+
+    def learnt(self, drive: int) -> Learnt | None:
+        """What a drive's latency was learnt from, as last kept; None before the first day of traffic."""
+        with self._using() as connection:
+            return learnt(connection, drive)
+
+    def traffic_days(
+        self, drive: int, *, after: int | None, before: int, most: int
+    ) -> tuple[tuple[int, tuple[IoRollup, ...]], ...]:
+        """A drive's traffic by UTC day number, oldest first; days without any are left out.
+
+        Args:
+            drive: the drive's number.
+            after: leave out this day and all before it; None for none.
+            before: first day not wanted any more.
+            most: how many days to give at most.
+        """
+        with self._using() as connection:
+            return traffic_days(connection, drive, after=after, before=before, most=most)
+
+    def forecasts(self) -> dict[int, tuple[Forecast, ...]]:
+        """The latest forecast about each signal, by the drive's number."""
+        with self._using() as connection:
+            return latest_forecasts(connection)
 
     def note(self, *entries: Entry) -> None:
         """Add to the day book outside of a round."""

@@ -5,8 +5,9 @@ from dataclasses import dataclass, field
 
 from diskwatch.records.daybook import Entry
 from diskwatch.records.drive import Drive, Place
+from diskwatch.records.forecast import Forecast
 from diskwatch.records.judgement import Call, Finding
-from diskwatch.records.reading import Pass, Value
+from diskwatch.records.reading import Pass
 from diskwatch.records.way import Way
 
 
@@ -51,8 +52,8 @@ class DriveRound:
         findings: everything that stands now; what stood before and is not here has ended.
         evidence: M in days a signal, for signals that a ledger follows.
         call: the call that stands now; None until the drive has been read.
-        measured: signals that are measured from the drive's traffic, beside those that it tells of itself.
         learnt: what its latency was learnt from; None where no day of traffic was taken in.
+        forecasts: what is to be expected of it, where that was worked out anew.
     """
 
     known: KnownDrive
@@ -61,8 +62,8 @@ class DriveRound:
     findings: tuple[Finding, ...] = ()
     evidence: Mapping[str, float] = field(default_factory=dict)
     call: Call | None = None
-    measured: tuple[Value, ...] = ()
     learnt: Learnt | None = None
+    forecasts: tuple[Forecast, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -1,3 +1,4 @@
+import json
 from dataclasses import replace
 
 import pytest
@@ -106,3 +107,34 @@ def test_a_place_among_the_passes_that_leaves_no_room_for_own_ones_is_refused(hi
         (told,) = take_in(connection, 1, [spoilt]).wrong
         assert told.startswith("row 7 is left out: ")
         assert connection.execute("SELECT count(*) FROM pass").fetchone() == (0,)
+
+
+def test_usual_times_and_forecasts_arrive_and_the_times_under_a_name_that_no_port_has(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    connection = history._db.conn
+    day = NOON // 86_400
+    times = {"state": '{"key": "port-1 F1", "scored": 0.1}'}
+    forecast = {
+        "signal": "percentage-used",
+        "at_limit": 100,
+        "limit_from": "standard",
+        "low": 12.5,
+        "high": None,
+        "probability": 0.8,
+        "reason": None,
+        "reached": None,
+    }
+    lines = [
+        Line(record="latency", drive=1, at=NOON, fields=times),
+        Line(record="forecast", drive=1, at=NOON, fields=forecast),
+        Line(record="forecast", drive=1, at=NOON, fields={**forecast, "limit_from": "a friend"}),
+        Line(record="forecast", drive=1, at=NOON, fields={**forecast, "at_limit": None}),
+        Line(record="latency", drive=1, at=NOON, fields={"state": "[]"}),
+    ]
+    arrived = take_in(connection, known.number, lines)
+    assert len(arrived.wrong) == 3
+    kept = history.learnt(1)
+    assert kept is not None
+    assert (kept.through, json.loads(kept.state)) == (day, {"key": "elsewhere port-1 F1", "scored": 0.1})
+    ((one,),) = history.forecasts().values()
+    assert (one.low, one.high, one.made_on_day) == (12.5, None, day)
