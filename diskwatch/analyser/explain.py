@@ -128,7 +128,7 @@ def explain(state: DriveState) -> Explanation:
         findings=rules.leading_first(state.standing.values()),
         would_change=_would_change(state, evidence),
         rules_version=rules.VERSION,
-        rule=None if state.call is None else rulebook.told(rulebook.rule_of(state.call.rule)),
+        rule=None if state.call is None else rulebook.told(state.call.rule),
         causation=causation(state),
         odds=None if state.last_at is None else odds.odds(state.showed, day=day_number(state.last_at)),
     )
@@ -194,6 +194,8 @@ def _ends(state: DriveState) -> str:
     lasting = [one for one in state.standing.values() if rules.lasting(one)]
     if not lasting:
         return changes.passes()
+    if any(rulebook.rule_of(one.name).stated for one in lasting):
+        return changes.drive_says_so()
     if all(one.name in rules.OF_THE_LINK for one in lasting):
         return changes.falls_with_the_link(rules.LINK_QUIET)
     if all(one.name == "fact:first-defect" and MAY_FALL.issuperset(one.signals) for one in lasting):

@@ -19,6 +19,7 @@ from diskwatch.units import DAY, rfc3339
 
 if TYPE_CHECKING:  # the analyser takes as long to load as all that ``bays`` needs together
     from diskwatch.analyser import Explanation
+    from diskwatch.analyser.causation import Causation
     from diskwatch.judge.copy_plan import CopyPlan
 
 
@@ -149,13 +150,14 @@ def daybook_answer(entries: tuple[Entry, ...], names: dict[int, str | None]) -> 
     }
 
 
-def why_answer(line: DriveLine, why: "Explanation") -> dict[str, object]:
+def why_answer(line: DriveLine, why: "Explanation", at: int | None = None) -> dict[str, object]:
     """What ``why --json`` prints: the drive as in ``bays``, and the chain behind its call."""
     damage = why.damage
     return {
         "schema": "diskwatch/why/1",
-        "drive": drive_answer(line),
+        "drive": drive_answer(line, at),
         "rule": why.call.rule if why.call else None,
+        "rule_told": why.rule,
         "rules_version": why.rules_version,
         "first_read": _at(why.first_read),
         "readings": [{"signal": one.signal, "first": one.first, "latest": one.latest} for one in why.counters],
@@ -185,8 +187,25 @@ def why_answer(line: DriveLine, why: "Explanation") -> dict[str, object]:
             "retire_at": damage.retire_at,
             "window_days": damage.window_days,
         },
+        "cause_table": None if why.causation is None else _causation(why.causation),
         "findings": [_finding(one) for one in why.findings],
         "would_change": list(why.would_change),
+    }
+
+
+def _causation(found: "Causation") -> dict[str, object]:
+    return {
+        "posterior": dict(found.posterior),
+        "prior": {cell.cause: cell.probability for cell in found.prior},
+        "rows": [
+            {
+                "sign": row.sign,
+                "showed": row.showed,
+                "probabilities": {cell.cause: cell.probability for cell in row.cells},
+                "sources": sorted({cell.source for cell in row.cells}),
+            }
+            for row in found.rows
+        ],
     }
 
 

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from datetime import datetime
 
 from diskwatch import analyser
+from diskwatch.cli import judged
 from diskwatch.cli.answers import why_answer
 from diskwatch.cli.common import now, print_json, settings, state_folder
 from diskwatch.cli.said import said
@@ -37,7 +38,7 @@ def run(args: argparse.Namespace) -> int:
     state = analyser.start() if kept is None else analyser.load(kept)
     why = analyser.explain(state)
     if args.json:
-        print_json(why_answer(line, why))
+        print_json(why_answer(line, why, now()))
     else:
         sys.stdout.write("\n".join(plain(one) for one in _told(line, why)) + "\n")
     return 0
@@ -63,6 +64,10 @@ def _told(line: DriveLine, why: analyser.Explanation) -> Iterator[str]:
         )
         limits = f"copy from {damage.copy_at:g}, retire from {damage.retire_at:g}"
         yield from _part("Damage measure", (f"{damage.measure:g}: {parts} ({limits})",))
+    yield from _part("Cause: the table's rows that it was weighed by", judged.causes(why))
+    yield from _part("What became of other drives that showed the same", judged.odds(line, now()))
+    yield from _part("Margin", judged.margin(line, now()))
+    yield from _part("Rule that decided", () if why.rule is None else (why.rule,))
     yield from _part("What would change the call", why.would_change)
 
 

@@ -24,6 +24,14 @@ def stands() -> str:
     )
 
 
+def drive_says_so() -> str:
+    """A call that rests on what the drive itself states."""
+    return _(
+        "The call does not fall by itself, and your word ends it only until the next reading: the drive itself "
+        "states what it rests on."
+    )
+
+
 def falls_with_the_link(days: float) -> str:
     """A call that rests on the link alone."""
     return _(

@@ -28,6 +28,7 @@ class Rule:
         calls: every call that it may ask for.
         when: what must show.
         source: what it rests on.
+        stated: whether the drive itself states it at every reading, so that no word can end it for long.
     """
 
     name: str
@@ -35,16 +36,17 @@ class Rule:
     calls: frozenset[CallWord]
     when: str
     source: str
+    stated: bool
 
-    @property
-    def label(self) -> str:
-        """The rule with its version, as a ticket names it."""
-        return f"{self.name}/{self.version}"
+
+_STATED = frozenset({"fact:worn", "fact:worn-out", "fact:self-test-unreadable", "fact:self-test-failed"})
+"""Beside what stands in the drive's own verdicts and limits."""
 
 
 def _rule(name: str, calls: CallWord | Iterable[CallWord], when: str, source: str, *, version: int = 1) -> Rule:
     words = frozenset({calls} if isinstance(calls, CallWord) else calls)
-    return Rule(name=name, version=version, calls=words, when=when, source=source)
+    stated = source == _DRIVE or name in _STATED
+    return Rule(name=name, version=version, calls=words, when=when, source=source, stated=stated)
 
 
 _LOOK, _COPY, _RETIRE = CallWord.LOOK, CallWord.COPY, CallWord.RETIRE
@@ -131,6 +133,9 @@ def rule_of(name: str) -> Rule:
     raise KeyError(name)
 
 
-def told(rule: Rule) -> str:
-    """A rule for a person: its name, its version, when it holds and what it rests on."""
-    return _("{rule}: {when} ({source}).").format(rule=rule.label, when=_(rule.when), source=_(rule.source))
+def told(name: str) -> str:
+    """The rule of a finding for a person: the finding's name, the rule's version, when it holds, its source."""
+    rule = rule_of(name)
+    return _("{rule}: {when} ({source}).").format(
+        rule=f"{name}/{rule.version}", when=_(rule.when), source=_(rule.source)
+    )

@@ -20,6 +20,10 @@ def test_it_tells_the_chain_from_readings_to_the_call(state):
         "What stands:",
         "Counters followed",
         "Evidence",
+        "Cause: the table's rows",
+        "What became of other drives",
+        "Margin:",
+        "Rule that decided:",
         "What would change the call:",
     ):
         assert part in told.out
@@ -30,6 +34,12 @@ def test_the_json_names_rule_counters_evidence_and_damage(state):
     answer = run("why", "inv1", "--json", "--state", state).json
     assert answer["drive"]["call"] == "retire"
     assert answer["rule"].startswith("fact:")
+    assert answer["rule_told"].startswith(answer["rule"])
+    assert answer["drive"]["odds"] is None
+    assert answer["drive"]["odds_reason"]
+    assert answer["drive"]["margin_reason"]
+    assert sum(answer["cause_table"]["posterior"].values()) == pytest.approx(1)
+    assert {"sign", "showed", "probabilities", "sources"} <= answer["cause_table"]["rows"][0].keys()
     assert {one["stream"] for one in answer["evidence"]} >= {"media", "link"}
     assert answer["damage"]["copy_at"] == 7
 
