@@ -18,7 +18,8 @@ def carried(state: DriveState, pass_: Pass, reading: Reading) -> tuple[tuple[War
     days, ended = felt(state.warmth, day=day_number(pass_.at), celsius=reading.number("temperature"))
     if ended is None:
         return days, state.temperature
-    return days, temperatures.after_day(state.temperature, ended.highest, limit=limit_of(reading))
+    # As it comes back from text: 37 and 37.0 are one number and two texts.
+    return days, temperatures.after_day(state.temperature, float(ended.highest), limit=limit_of(reading))
 
 
 def limit_of(reading: Reading) -> int | None:
