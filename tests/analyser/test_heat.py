@@ -49,3 +49,8 @@ def test_a_warning_limit_goes_before_a_critical_one():
     assert limit_of(Reading(warning_celsius=70, critical_celsius=80)) == 70
     assert limit_of(Reading(critical_celsius=80)) == 80
     assert limit_of(Reading()) is None
+
+
+def test_a_state_that_comes_back_from_text_is_written_to_the_same_text_again():
+    text = analyser.dump(lived(*warm([35, 36] * 20))[-1].state)
+    assert analyser.dump(analyser.load(text)) == text
