@@ -31,6 +31,7 @@ COMMANDS = {
     "preflight": "what is missing on this machine for a full watch, each with its cure",
     "tell": "tell what you know of a drive: its label, its warranty, its last backup",
     "settle": "say what was done about a drive: the cable was changed, the drive replaced",
+    "point": "which drive is it: label, serial, port, and a blinking light",
     "move-history": "move the history to another folder, off a drive in trouble",
     "later": "put the notices of one drive off, for you alone",
     "export-history": "the past of drives, to a file that can travel",

@@ -193,7 +193,7 @@ def order(plan: CopyPlan, history_hint: str) -> Iterator[str]:
         yield _("Copy what cannot be replaced (pictures, papers, mail, keys), of {points}.").format(
             points=", ".join(first)
         )
-        yield _("Then all the rest of {points}, in this order.").format(points=", ".join(first))
+        yield _("Then all the rest of {points}.").format(points=", ".join(first))
     if any(Holds.HISTORY in one.holds for one in plan.held):
         yield _("Move the history of diskwatch off it: {hint}.").format(hint=history_hint)
     if by[Holds.SYSTEM]:

@@ -1,7 +1,9 @@
 """The history moves house, and says so in its day book; nobody may be writing it."""
 
+from contextlib import suppress
 from pathlib import Path
 
+from diskwatch.errors import DiskwatchError
 from diskwatch.history.relocation import Moved, move
 from diskwatch.history.writer import History
 from diskwatch.records import Entry
@@ -27,8 +29,9 @@ def move_house(folder: Path, to: Path, at: int) -> tuple[Moved, Answer]:
         DiskwatchError: it was not moved; the old one stays in use.
     """
     moved = move(folder, to, at)
-    with History.open(moved.to) as history:
-        data = {"from": str(moved.source), "to": str(moved.to), "rows": moved.rows}
+    data = {"from": str(moved.source), "to": str(moved.to), "rows": moved.rows}
+    # That it cannot be noted (the disk is full by now, another watch was quicker) undoes no move.
+    with suppress(DiskwatchError), History.open(moved.to) as history:
         history.note(Entry(at=at, drive=None, kind="watch", text=moved.sentence(), data=data))
     there = plain(str(moved.to))
     told = [
