@@ -61,5 +61,5 @@ def _carried(
         return before
     volume = None if written is None else float(written)
     if before is None:
-        return wears.begin(day=day, percent=percent, written=volume)
-    return wears.seen(before, day=day, percent=percent, written=volume, powered=powered)
+        return wears.begin(day=float(day), percent=percent, written=volume)
+    return wears.seen(before, day=float(day), percent=percent, written=volume, powered=powered)
