@@ -8,14 +8,15 @@ from dataclasses import replace
 from pathlib import Path
 
 from diskwatch.cli.common import print_json, settings, state_folder
-from diskwatch.cli.watch import machine
-from diskwatch.errors import HistoryError
+from diskwatch.cli.watch import machine, senses
+from diskwatch.errors import DiskwatchError, HistoryError
 from diskwatch.history.lock import watcher
 from diskwatch.history.opening import refuse_foreign
 from diskwatch.machine.protocol import Found, Machine
 from diskwatch.places import HISTORY, is_there
 from diskwatch.records import Pass
 from diskwatch.service.readiness import Check, checks
+from diskwatch.settings import Settings
 from diskwatch.units import plain
 
 
@@ -36,6 +37,7 @@ def run(args: argparse.Namespace) -> int:
         survey.troubles,
         history=_unwritable(folder),
         watcher=watcher(folder),
+        kernel_log=_deaf(owner),
     )
     if args.json:
         print_json({"schema": "diskwatch/preflight/1", "checks": [_answer(one) for one in found]})
@@ -53,6 +55,15 @@ def _asked(this: Machine, found: tuple[Found, ...]) -> tuple[Pass, ...]:
     return tuple(
         replace(answer, drive=answer.drive or one.drive) for one, answer in zip(found, answers, strict=True)
     )
+
+
+def _deaf(owner: Settings) -> DiskwatchError | None:
+    """Why the kernel's log cannot be read."""
+    try:
+        senses(owner).log(None).close()
+    except DiskwatchError as error:
+        return error
+    return None
 
 
 def _unwritable(folder: Path) -> str | None:

@@ -10,6 +10,7 @@ from diskwatch.cli.common import settings, state_folder, talk
 from diskwatch.errors import DiskwatchError, NothingToWorkOn
 from diskwatch.history.reader import Past
 from diskwatch.machine.real import RealMachine
+from diskwatch.machine.senses import RealSenses
 from diskwatch.records import DriveRound, Way
 from diskwatch.service.watch import Watch, now
 from diskwatch.settings import Settings
@@ -29,7 +30,7 @@ def run(args: argparse.Namespace) -> int:
     owner = settings(args)
     folder = state_folder(args)
     told = None if args.tied else Voice().say
-    watch = Watch(machine(owner, folder), owner, folder, told=told)
+    watch = Watch(machine(owner, folder), owner, folder, told=told, senses=senses(owner))
     if watch.trouble:
         talk(f"diskwatch: {watch.trouble}; watching goes on without it")
     if args.once:
@@ -47,7 +48,7 @@ def run(args: argparse.Namespace) -> int:
         threading.Thread(target=_end_with_parent, args=(at_work,), daemon=True).start()
     while (there := watch.run()) is not None:
         # The history lies there now, and a watch that begins anew knows of no other place.
-        watch = Watch(machine(owner, there), owner, there, told=told)
+        watch = Watch(machine(owner, there), owner, there, told=told, senses=senses(owner))
         before, at_work[0] = at_work[0], watch
         if before.ended:
             watch.end()
@@ -67,6 +68,11 @@ def machine(owner: Settings, folder: Path) -> RealMachine:
         ways=_ways(folder),
         now=now,
     )
+
+
+def senses(owner: Settings) -> RealSenses:
+    """What else this machine tells of its drives."""
+    return RealSenses(owner.kernel_log.source)
 
 
 def _ways(folder: Path) -> tuple[Way, ...]:

@@ -160,9 +160,10 @@ class Ears:
         self._take(settle(self._gathered, self._clock() if self._log.live else float("inf")))
         self._keep()
 
-    def news(self, number: int) -> bool:
-        """Whether something was heard of a drive that no pass has taken in yet."""
-        return number in self._news
+    @property
+    def news(self) -> frozenset[int]:
+        """Numbers of the drives of which something was heard that no pass has taken in yet."""
+        return frozenset(self._news)
 
     def heard(self, number: int) -> tuple[Value, ...]:
         """What is counted of a drive, for the pass that takes it in; the caller holds the lock."""

@@ -3,6 +3,7 @@
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
+from diskwatch.errors import DiskwatchError
 from diskwatch.records import Kind, Outcome, Pass
 from diskwatch.units import plain
 
@@ -12,7 +13,7 @@ class Check:
     """One thing that a full watch needs.
 
     Attributes:
-        name: what was looked at: ``history``, ``watch``, ``drives``, or the device of a drive.
+        name: what was looked at: ``history``, ``watch``, ``drives``, ``kernel log``, or the device of a drive.
         lacking: whether something is missing.
         text: what was found, one sentence.
         cure: what to do; None where nothing is missing or nothing can be done.
@@ -36,7 +37,12 @@ _CURES: Mapping[Outcome, str] = {
 
 
 def checks(
-    passes: Iterable[tuple[str, Pass]], troubles: Iterable[str], *, history: str | None, watcher: int | None
+    passes: Iterable[tuple[str, Pass]],
+    troubles: Iterable[str],
+    *,
+    history: str | None,
+    watcher: int | None,
+    kernel_log: DiskwatchError | None = None,
 ) -> tuple[Check, ...]:
     """Judge readiness.
 
@@ -45,6 +51,7 @@ def checks(
         troubles: what kept the listing of drives from being complete.
         history: why the history cannot be written; None where it can, or where somebody else writes it.
         watcher: process number of whoever watches now, or None.
+        kernel_log: why the kernel's log cannot be read; None where it can.
     """
     told = tuple(troubles)
     asked = tuple(passes)
@@ -66,6 +73,16 @@ def checks(
     ]
     found += [Check(name="drives", lacking=True, text=plain(one)) for one in told]
     found += drives
+    found.append(
+        Check(name="kernel log", lacking=False, text="It can be read.")
+        if kernel_log is None
+        else Check(
+            name="kernel log",
+            lacking=True,
+            text=f"{plain(kernel_log.what)}; failed requests and resets of links are not seen.",
+            cure=kernel_log.hint,
+        )
+    )
     found.append(
         Check(name="history", lacking=False, text="It can be written.")
         if history is None

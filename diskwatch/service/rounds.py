@@ -1,14 +1,25 @@
 """One round: list the drives, ask each whose turn it is, recognise it, judge it, keep it."""
 
 import threading
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Collection, Mapping
 from contextlib import AbstractContextManager, nullcontext
 from dataclasses import replace
 
 from diskwatch import analyser
 from diskwatch.machine import choice, identity
 from diskwatch.machine.protocol import Found, Machine
-from diskwatch.records import Drive, DriveRound, Entry, Identity, Kind, KnownDrive, Outcome, Pass, Round
+from diskwatch.records import (
+    Drive,
+    DriveRound,
+    Entry,
+    Identity,
+    Kind,
+    KnownDrive,
+    Outcome,
+    Pass,
+    Round,
+    Value,
+)
 from diskwatch.service.asking import Answer, Asking
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.pace import Why
@@ -20,6 +31,11 @@ AWAY_LIMIT = analyser.UNREAD_LIMIT
 
 Told = Callable[[tuple[DriveRound, ...]], None]
 Wanted = Callable[[Identity, tuple[str, ...]], bool]
+Heard = Callable[[int, tuple[str, ...]], tuple[Value, ...]]
+
+
+def _nothing_heard(_number: int, _blocks: tuple[str, ...]) -> tuple[Value, ...]:
+    return ()
 
 
 def _all_wanted(_who: Identity, _devices: tuple[str, ...]) -> bool:
@@ -38,6 +54,7 @@ class Rounds:
         wanted: Wanted = _all_wanted,
         turns: Turns | None = None,
         asking: type[Asking] = Asking,
+        heard: Heard = _nothing_heard,
     ) -> None:
         """Begin.
 
@@ -48,6 +65,7 @@ class Rounds:
             wanted: whether a drive that has told who it is, and goes by these devices, is to be watched.
             turns: decides which drives a round leaves out; None to ask all each time.
             asking: how the drives of a round are asked.
+            heard: what the machine's other senses count of a drive, by its number and its block devices.
         """
         self._machine = machine
         self._keeper = keeper
@@ -55,6 +73,7 @@ class Rounds:
         self._wanted = wanted
         self._turns = turns
         self._asking = asking
+        self._heard = heard
         self._states: dict[int, analyser.DriveState] = {}
         self._here: dict[str, int] = {}
         self._away: dict[int, int] = {}
@@ -73,6 +92,7 @@ class Rounds:
         told: Told | None = None,
         lock: AbstractContextManager[object] | None = None,
         everyone: bool = False,
+        only: Collection[int] | None = None,
     ) -> tuple[DriveRound, ...]:
         """One round over all drives whose turn it is.
 
@@ -80,6 +100,8 @@ class Rounds:
             told: called with each part of the round as soon as it has been kept.
             lock: held while the keeper is used, where others use it too; None where nobody does.
             everyone: whether no drive is left out, but for those that would be woken or that hang.
+            only: numbers of the drives to ask, of those that have answered before, whoever's turn it is; None
+                for no such choice.
 
         Returns:
             One a drive, in the order in which they answered. A drive that was left out gets no pass.
@@ -87,7 +109,12 @@ class Rounds:
         survey = self._machine.survey()
         entries = self._new_troubles(survey.troubles)
         self._forget_if_void()
-        asked, taken = self._planned(survey.found, everyone=everyone)
+        asked, taken = self._planned(survey.found, everyone=everyone or only is not None)
+        if only is not None:
+            numbers = {id(found): self._here.get(self._instance(found)) for found in asked}
+            # Drives that nobody knows yet wait for a whole round, and those that are left out are not gone.
+            taken |= {number for number in numbers.values() if number is not None and number not in only}
+            asked = tuple(found for found in asked if numbers[id(found)] in only)
         asking = self._asking(self._machine, asked)
         done: list[DriveRound] = []
         while True:
@@ -177,7 +204,8 @@ class Rounds:
             self._here[self._instance(answer.found)] = known.number
             self.blocks[known.number] = answer.found.blocks
             self._away.pop(known.number, None)
-            drive, happened = self._judge(known, replace(answer.pass_, drive=known.drive))
+            heard = self._heard(known.number, answer.found.blocks)
+            drive, happened = self._judge(known, replace(answer.pass_, drive=known.drive, heard=heard))
             drives.append(drive)
             entries += [*more, *happened]
         return tuple(drives), tuple(entries)
@@ -269,6 +297,7 @@ class Rounds:
                 outcome=Outcome.ABSENT,
                 explanation=f"It is no longer where it was ({plain(known.place.device)}).",
                 drive=known.drive,
+                heard=self._heard(number, ()),
             )
             drive, happened = self._judge(known, pass_)
             drives.append(drive)

@@ -6,12 +6,13 @@ book, since a watch that has stopped working must not look like one that works.
 
 import logging
 from collections.abc import Callable
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timedelta
 from typing import Any
 
 from apscheduler.events import EVENT_JOB_ERROR, EVENT_JOB_MAX_INSTANCES
 from apscheduler.executors.pool import ThreadPoolExecutor
 from apscheduler.schedulers.background import BackgroundScheduler
+from apscheduler.triggers.date import DateTrigger
 from apscheduler.triggers.interval import IntervalTrigger
 
 Mishap = Callable[[str], None]
@@ -55,6 +56,17 @@ class Schedule:
             executor=place,
             next_run_time=datetime.now(UTC),
         )
+
+    def soon(self, name: str, seconds: float, job: Callable[[], object], *, place: str = "default") -> None:
+        """Do a job once in a while from now, unless it waits already: whatever piles up is done in one go."""
+        if self._scheduler.get_job(name) is None:
+            self._scheduler.add_job(
+                job,
+                DateTrigger(run_date=datetime.now(UTC) + timedelta(seconds=seconds), timezone=UTC),
+                id=name,
+                executor=place,
+                replace_existing=True,
+            )
 
     def start(self) -> None:
         """Begin to run jobs."""

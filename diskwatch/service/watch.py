@@ -15,9 +15,11 @@ from diskwatch.history.live import LiveWriter
 from diskwatch.history.writer import History
 from diskwatch.machine import choice
 from diskwatch.machine.protocol import Machine
-from diskwatch.records import DriveRound, Entry, IoSpan
+from diskwatch.machine.senses import Senses
+from diskwatch.records import DriveRound, Entry, IoSpan, Value
 from diskwatch.service import requests
 from diskwatch.service.arrival import take_in
+from diskwatch.service.ears import Ears
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.owner import DEEDS
 from diskwatch.service.removal import MOVE, move_house
@@ -33,6 +35,12 @@ from diskwatch.units import plain
 GUARD = 30.0
 """Seconds between two looks of the main thread at the clocks."""
 
+ON_BATTERY = 4
+"""On battery one round of so many takes place: asking costs the battery little, but not nothing."""
+
+NEWS_AFTER = 15.0
+"""Seconds after which drives are asked of which something was heard: trouble seldom comes alone."""
+
 HAND = 1.5
 """Seconds that a round gets to keep what it has in hand when the watch ends."""
 
@@ -47,7 +55,15 @@ def now() -> int:
 class Watch:
     """Watches one machine's drives into one history."""
 
-    def __init__(self, machine: Machine, settings: Settings, folder: Path, *, told: Told | None = None) -> None:
+    def __init__(
+        self,
+        machine: Machine,
+        settings: Settings,
+        folder: Path,
+        *,
+        told: Told | None = None,
+        senses: Senses | None = None,
+    ) -> None:
         """Open the history; see `diskwatch.service.keeper.Keeper` for what may go wrong.
 
         Args:
@@ -55,6 +71,7 @@ class Watch:
             settings: the owner's.
             folder: where the history lies.
             told: called with each part of a round once it is kept.
+            senses: what else the machine tells of its drives; None for nothing.
         """
         self._machine = machine
         self._settings = settings
@@ -71,7 +88,24 @@ class Watch:
             now,
             wanted=lambda who, devices: choice.watched(who, devices, only=watch.only, ignore=watch.ignore),
             turns=Turns(every=settings.smart.every, hung=lambda: self._traffic.hung),
+            heard=self._heard,
         )
+        self._senses = senses
+        self._ears = (
+            None
+            if senses is None
+            else Ears(
+                senses,
+                self._keeper,
+                lock=self._lock,
+                blocks=lambda: dict(self._rounds.blocks),
+                now=now,
+                soon=self._look_soon,
+            )
+        )
+        self._deaf: str | None = None
+        self._on_battery = 0
+        self._schedule = Schedule(self._mishap)
         self._gathered: list[IoSpan] = []
         self._committed = time.monotonic()
         self._rounding = threading.Lock()
@@ -103,7 +137,13 @@ class Watch:
         """One full round, and then the end."""
         try:
             self._upkeep.mend_if_damaged()
-            return self._rounds.run(told=self._told, lock=self._lock, everyone=True)
+            self._open_ears()
+            done = self._rounds.run(told=self._told, lock=self._lock, everyone=True)
+            if self._ears is not None:
+                # Only now is it known which drives there are; those that the log speaks of are asked once more.
+                self._ears.once()
+                done += self._news()
+            return done
         finally:
             self._end()
 
@@ -116,14 +156,17 @@ class Watch:
         """
         for number in (signal.SIGTERM, signal.SIGINT):
             signal.signal(number, lambda *_: self.end())
-        schedule = Schedule(self._mishap)
+        schedule = self._schedule
         schedule.every("round", self._settings.smart.every, self._round, place="rounds")
         schedule.every("traffic", self._settings.io.every, self._count)
         if self._settings.io.every > requests.EVERY:
             schedule.every("requests", requests.EVERY, self._look_for_requests)
         schedule.every("upkeep", EVERY, self._upkeep.turn, place="upkeep")
         self._note("watch", "Watching began.")
+        self._open_ears()
         schedule.start()
+        if self._ears is not None:
+            self._ears.start()
         try:
             self._guard(schedule)
         finally:
@@ -155,12 +198,48 @@ class Watch:
                 self._keeper.try_again()
 
     def _round(self) -> None:
+        if self._spares_the_battery():
+            return
         with self._rounding:
             self._rounds.run(told=self._told, lock=self._lock)
+
+    def _spares_the_battery(self) -> bool:
+        """Whether this round is left out because the machine runs on its battery."""
+        on_battery = self._senses is not None and self._senses.on_battery()
+        self._on_battery = self._on_battery + 1 if on_battery else 0
+        # The first after the plug was pulled still takes place, and then one of so many.
+        return on_battery and (self._on_battery - 1) % ON_BATTERY != 0
+
+    def _open_ears(self) -> None:
+        if self._ears is not None:
+            self._ears.open()
+            self._say_if_deaf()
+
+    def _say_if_deaf(self) -> None:
+        """Say in the day book, once, why the kernel cannot be heard."""
+        trouble = None if self._ears is None else self._ears.trouble
+        if trouble is not None and trouble != self._deaf:
+            self._note("trouble", trouble)
+        self._deaf = trouble
+
+    def _heard(self, number: int, blocks: tuple[str, ...]) -> tuple[Value, ...]:
+        if self._ears is None or self._senses is None:
+            return ()
+        return (*self._ears.heard(number), *self._senses.kept(blocks))
+
+    def _look_soon(self) -> None:
+        """Ask the drives of which something was heard, when the worst of it is over."""
+        self._schedule.soon("news", NEWS_AFTER, self._news, place="rounds")
+
+    def _news(self) -> tuple[DriveRound, ...]:
+        with self._rounding:
+            news = frozenset() if self._ears is None else self._ears.news
+            return self._rounds.run(told=self._told, lock=self._lock, only=news) if news else ()
 
     def _count(self) -> None:
         # Here, since every job of its own would wake the machine once more.
         self._look_for_requests()
+        self._say_if_deaf()
         look = self._traffic.look(dict(self._rounds.blocks))
         # First of all what needs no disk: the one that hangs may be the one that the history lies on.
         left_out = {number: why.told for number, why in self._rounds.left_out.items() if why.told is not None}
@@ -243,6 +322,8 @@ class Watch:
     def _end(self, words: str | None = None) -> None:
         self._rounds.end()
         self._machine.stop()
+        if self._ears is not None:
+            self._ears.stop()
         # What a round has in hand is kept before the history closes; more than a moment is not waited for.
         self._rounding.acquire(timeout=HAND)
         self._commit_traffic()

@@ -6,7 +6,10 @@ from tests.player import lay
 
 def test_a_machine_that_lacks_nothing_exits_0_and_stores_nothing(tmp_path):
     command = lay(tmp_path / "player", [{"node": "/dev/inv1", "type": "sat", "folder": "invented_hdd_sister"}])
-    settings = settings_for(command, tmp_path, more='[watch]\nonly = ["/dev/inv1"]\n')
+    log = tmp_path / "kmsg"
+    log.touch()
+    more = f'[watch]\nonly = ["/dev/inv1"]\n[kernel_log]\nsource = "{log}"\n'
+    settings = settings_for(command, tmp_path, more=more)
     ended = run("preflight", "--json", "--state", tmp_path / "state", "--settings", settings)
     assert ended.code == 0, ended.out
     assert {"name", "lacking", "text", "cure"} == set(ended.json["checks"][0])
@@ -33,3 +36,14 @@ def test_a_history_that_is_not_ours_or_of_a_newer_version_is_lacking(tmp_path):
     ended = run("preflight", "--json", "--state", state, "--settings", settings)
     assert ended.code == 4
     assert [check["lacking"] for check in ended.json["checks"] if check["name"] == "history"] == [True]
+
+
+def test_a_kernel_log_that_cannot_be_read_is_lacking_with_its_cure(tmp_path):
+    command = lay(tmp_path / "player", [{"node": "/dev/inv1", "type": "sat", "folder": "invented_hdd_sister"}])
+    more = f'[watch]\nonly = ["/dev/inv1"]\n[kernel_log]\nsource = "{tmp_path}/none"\n'
+    settings = settings_for(command, tmp_path, more=more)
+    ended = run("preflight", "--json", "--state", tmp_path / "state", "--settings", settings)
+    assert ended.code == 4
+    (told,) = [check for check in ended.json["checks"] if check["lacking"]]
+    assert told["name"] == "kernel log"
+    assert "source" in told["cure"]

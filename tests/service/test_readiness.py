@@ -1,5 +1,6 @@
 import pytest
 
+from diskwatch.errors import DiskwatchError
 from diskwatch.records import Outcome
 from diskwatch.service.readiness import checks
 from tests.samples import HDD, NOON, VIRTUAL, missed, read
@@ -40,6 +41,14 @@ def test_what_is_wrong_with_the_tool_is_told_of_a_drive_where_the_listing_did_no
 
 def test_a_history_that_cannot_be_written_and_a_machine_without_drives_are_lacking():
     assert lacking(history="/state cannot be written by you.") == [("drives", True), ("history", True)]
+
+
+def test_a_kernel_that_cannot_be_heard_is_lacking_and_has_a_cure():
+    deaf = DiskwatchError("the kernel's log cannot be read: Permission denied", hint="watch as root")
+    found = checks([("/dev/sda", read(NOON, HDD))], (), history=None, watcher=1, kernel_log=deaf)
+    (one,) = [one for one in found if one.lacking]
+    assert (one.name, one.cure) == ("kernel log", "watch as root")
+    assert "Permission denied" in one.text
 
 
 def test_nobody_watching_is_told_but_is_no_lack_of_the_machine():

@@ -9,7 +9,7 @@ from diskwatch.service.keeper import Keeper
 from diskwatch.service.pace import Why
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.turns import Turns
-from tests.samples import DAY, HDD, NOON, NVME, missed, read, with_serial
+from tests.samples import DAY, HDD, NOON, NVME, missed, read, value, with_serial
 from tests.service.machines import ScriptedMachine, counted, found
 
 
@@ -308,3 +308,32 @@ def test_what_asking_found_out_of_an_adapter_is_kept_also_where_its_drive_is_not
     with Past.open(tmp_path) as past:
         assert past.ways() == (way,)
         assert past.bays(NOON).drives == ()
+
+
+def test_a_pass_carries_what_was_heard_of_its_drive_whatever_became_of_it(keeper):
+    machine = ScriptedMachine(found(HDD), found(NVME))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/nvme0": [missed(NOON, Outcome.TIMED_OUT, NVME)]}
+    asked = []
+
+    def heard(number, blocks):
+        asked.append((number, blocks))
+        return (value("link-resets", number),)
+
+    done = rounds(machine, keeper, heard=heard).run()
+    assert sorted(blocks for _, blocks in asked) == [("nvme0",), ("sda",)]
+    assert {one.pass_.heard[0].value for one in done} == {1, 2}
+
+
+def test_only_the_drives_that_something_was_heard_of_are_asked_and_none_is_taken_for_gone(keeper):
+    machine = ScriptedMachine(found(HDD), found(NVME))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/nvme0": [read(NOON, NVME)]}
+    here = rounds(machine, keeper)
+    first = here.run()
+    number = next(one.known.number for one in first if one.known.place.device == "/dev/sda")
+    machine.asked.clear()
+    done = here.run(only={number})
+    assert machine.asked == ["/dev/sda"]
+    assert [one.pass_.outcome for one in done] == [Outcome.READ]
+    machine.asked.clear()
+    assert here.run(only={99}) == ()
+    assert machine.asked == []

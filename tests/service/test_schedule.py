@@ -1,4 +1,5 @@
 import threading
+import time
 
 from diskwatch.service.schedule import Schedule
 
@@ -66,3 +67,18 @@ def test_after_the_clock_moved_every_job_is_planned_from_now_on():
     schedule.clock_moved()
     assert ran.wait(5)
     schedule.stop()
+
+
+def test_what_is_to_be_done_soon_is_done_once_however_often_it_is_asked_for():
+    done, schedule = [], Schedule(lambda _text: None)
+    schedule.start()
+    for _ in range(5):
+        schedule.soon("news", 0.05, lambda: done.append(1))
+    until = time.monotonic() + 5
+    while not done and time.monotonic() < until:
+        time.sleep(0.01)
+    schedule.soon("news", 0.0, lambda: done.append(2))
+    while len(done) < 2 and time.monotonic() < until:
+        time.sleep(0.01)
+    schedule.stop()
+    assert done == [1, 2]

@@ -8,8 +8,9 @@ from diskwatch.history.reader import Past
 from diskwatch.records import Entry
 from diskwatch.service.watch import Watch
 from diskwatch.settings import Duration, HistoryKeeping, Io, Settings, Smart, Watch as WatchSettings
-from tests.samples import HDD, NOON, read, with_serial
+from tests.samples import HDD, NOON, read, value, with_serial
 from tests.service.machines import ScriptedMachine, counted, found
+from tests.service.senses import ScriptedSenses
 
 QUICK = Settings(
     smart=Smart(every=Duration(1)), io=Io(every=Duration(1)), history=HistoryKeeping(commit=Duration(1))
@@ -114,3 +115,53 @@ def test_a_drive_that_hangs_is_written_in_the_day_book_and_said_to_whoever_looks
     (entry,) = seen
     assert entry.drive == 1
     assert entry.text.startswith("Requests to it have not moved for ")
+
+
+READ = "I/O error, dev sda, sector 2048 op 0x0:(READ) flags 0x0 phys_seg 1 prio class 2"
+
+
+def test_once_takes_in_what_the_kernel_said_and_asks_that_drive_once_more(machine, tmp_path):
+    senses = ScriptedSenses()
+    senses.say(READ)
+    *_, last = Watch(machine, QUICK, tmp_path, senses=senses).once()
+    assert (last.call.word.value, last.call.rule) == ("look", "fact:unreadable-sector")
+    assert machine.asked == ["/dev/sda", "/dev/sda"]
+    again = Watch(machine, QUICK, tmp_path, senses=senses).once()
+    assert len(again) == 1, "nothing is heard twice"
+    with Past.open(tmp_path) as past:
+        assert [entry.text for entry in past.day_book() if entry.kind == "kernel"] == [
+            "A read of sda failed at sector 2,048 (I/O)."
+        ]
+        (line,) = past.bays(NOON).drives
+    assert {signal.name: signal.value for signal in line.signals}["kernel-io-errors"] == 1
+
+
+def test_what_file_systems_count_comes_with_every_pass(machine, tmp_path):
+    senses = ScriptedSenses()
+    senses.counted = {"sda": (value("ext4-errors", 3),)}
+    (done,) = Watch(machine, QUICK, tmp_path, senses=senses).once()
+    assert {one.signal: one.value for one in done.pass_.heard}["ext4-errors"] == 3
+
+
+def test_a_kernel_that_cannot_be_heard_is_said_once_and_nothing_else_breaks(machine, tmp_path):
+    senses = ScriptedSenses()
+    senses.refusal = "the kernel's log cannot be read"
+    (done,) = Watch(machine, QUICK, tmp_path, senses=senses).once()
+    assert done.call is not None
+    with Past.open(tmp_path) as past:
+        assert [entry.text for entry in past.day_book() if entry.kind == "trouble"] == [senses.refusal]
+
+
+def test_on_battery_one_round_of_four_takes_place(machine, tmp_path, monkeypatch):
+    senses = ScriptedSenses()
+    watch = Watch(machine, QUICK, tmp_path, senses=senses)
+    rounds = []
+    monkeypatch.setattr(watch._rounds, "run", lambda **_: rounds.append(senses.battery))
+    watch._round()
+    senses.battery = True
+    for _ in range(8):
+        watch._round()
+    senses.battery = False
+    watch._round()
+    assert rounds == [False, True, True, False]
+    watch._end()
