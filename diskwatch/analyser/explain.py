@@ -5,6 +5,7 @@ from dataclasses import dataclass
 from diskwatch.analyser.causation import Causation, causation
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.state import DriveState
+from diskwatch.analyser.timing import Timing, Warm, joint, timings, warm
 from diskwatch.judge import changes, odds, rulebook, rules
 from diskwatch.records import Call, CallWord, Finding, Odds
 from diskwatch.trends import ledger, spots
@@ -88,7 +89,10 @@ class Explanation:
         call: what to do; None until the drive has been read.
         first_read: when it was first read, UTC seconds since 1970; None until then.
         counters: the counters that are followed.
-        evidence: one a ledger.
+        evidence: one a ledger of counters.
+        timings: one a direction of latency.
+        warm: how warm it runs; None for a drive that tells no temperature.
+        joint: evidence of all ledgers together, M in days.
         damage: what the odds rule measures; None where it does not apply.
         findings: what stands, leading one first.
         would_change: what would change the call, one sentence each.
@@ -102,6 +106,9 @@ class Explanation:
     first_read: int | None
     counters: tuple[CounterPast, ...]
     evidence: tuple[Evidence, ...]
+    timings: tuple[Timing, ...]
+    warm: Warm | None
+    joint: float
     damage: Damage | None
     findings: tuple[Finding, ...]
     would_change: tuple[str, ...]
@@ -124,6 +131,9 @@ def explain(state: DriveState) -> Explanation:
             for signal, value in sorted(state.latest.items())
         ),
         evidence=evidence,
+        timings=timings(state),
+        warm=warm(state),
+        joint=joint(state),
         damage=_damage(state),
         findings=rules.leading_first(state.standing.values()),
         would_change=_would_change(state, evidence),

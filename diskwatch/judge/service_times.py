@@ -4,6 +4,7 @@ from collections.abc import Mapping
 from math import exp
 
 from diskwatch.judge.language import _, marked
+from diskwatch.trends.latency_now import LatencyNow
 from diskwatch.units import once_in
 
 _MEASURED: Mapping[str, str] = {
@@ -75,3 +76,63 @@ def times_lost() -> str:
 def times_unknown() -> str:
     """Why there is no present time yet, as a reason beside a missing value."""
     return _("what is usual for it at equal load is still being learnt")
+
+
+_NOW: Mapping[str, str] = {
+    "read-latency": marked(
+        "Reads take {times} times as long as usual at the same load ({now}, usually {usual}), over {classes} "
+        "classes of work and {days} days that could be compared; the norm is at most {norm} times: {once}, "
+        "alarms at {alarm}."
+    ),
+    "write-latency": marked(
+        "Writes take {times} times as long as usual at the same load ({now}, usually {usual}), over {classes} "
+        "classes of work and {days} days that could be compared; the norm is at most {norm} times: {once}, "
+        "alarms at {alarm}."
+    ),
+}
+
+_LEARNING: Mapping[str, str] = {
+    "read-latency": marked(
+        "Reads: what is usual is still being learnt; {classes} classes of work are known, and {missing} more "
+        "days that can be compared are needed."
+    ),
+    "write-latency": marked(
+        "Writes: what is usual is still being learnt; {classes} classes of work are known, and {missing} more "
+        "days that can be compared are needed."
+    ),
+}
+
+
+def standing(signal: str, now: LatencyNow, alarms_at: float) -> str:
+    """What a ledger of latency has come to.
+
+    Args:
+        signal: ``read-latency`` or ``write-latency``.
+        now: what it has come to.
+        alarms_at: M in days at which it alarms.
+    """
+    if now.evidence is None or now.times is None or now.now_us is None or now.usual_us is None:
+        return _(_LEARNING[signal]).format(classes=now.classes, missing=now.missing)
+    return _(_NOW[signal]).format(
+        times=f"{now.times:.2g}",
+        now=say_ms(now.now_us),
+        usual=say_ms(now.usual_us),
+        classes=now.classes,
+        days=now.scored,
+        norm=f"{exp(now.tolerance):.3g}",
+        once=once_in(now.evidence),
+        alarm=once_in(alarms_at),
+    )
+
+
+def with_heat(follows: bool | None) -> str:
+    """Whether slowness goes with the drive's temperature.
+
+    Args:
+        follows: None where that cannot be told.
+    """
+    if follows is None:
+        return _("Whether its times follow its temperature cannot be told yet (30 such days are needed).")
+    if follows:
+        return _("Its times follow its temperature: see to its cooling before anything else.")
+    return _("Its times do not follow its temperature.")

@@ -1,12 +1,14 @@
 from math import log
+from typing import Any
 
 import pytest
 
-from diskwatch.judge.service_times import say_ms, slower, times_anew
+from diskwatch.judge.service_times import say_ms, slower, standing, times_anew, with_heat
+from diskwatch.trends.latency_now import LatencyNow
 
 
-def told(**other):
-    facts = {
+def told(**other: Any) -> str:
+    facts: dict[str, Any] = {
         "times": 1.63,
         "now_us": 8_200,
         "usual_us": 5_040,
@@ -39,3 +41,38 @@ def test_times_have_two_digits_that_count(microseconds, words):
 def test_new_references_are_said_to_hide_a_slowing():
     assert "would not show" in times_anew(known=False)
     assert "hold again" in times_anew(known=True)
+
+
+def now(**other: Any) -> LatencyNow:
+    facts: dict[str, Any] = {
+        "evidence": 800.0,
+        "scored": 140,
+        "classes": 6,
+        "usual_us": 5_040,
+        "shift": log(1.1),
+        "tolerance": log(1.2),
+        "onset": None,
+        "follows_heat": None,
+        "twice": None,
+        "seen_on": 20_000,
+    }
+    return LatencyNow(**{**facts, **other})
+
+
+def test_a_ledger_of_latency_is_laid_open_with_its_norm_and_its_alarm():
+    assert standing("read-latency", now(), 30_437.5) == (
+        "Reads take 1.1 times as long as usual at the same load (5.5 ms, usually 5.0 ms), over 6 classes of "
+        "work and 140 days that could be compared; the norm is at most 1.2 times: once in 2 years, alarms at "
+        "once in 83 years."
+    )
+
+
+def test_while_it_is_learnt_what_is_lacking_is_said():
+    told = standing("write-latency", now(evidence=None, scored=3, shift=None), 73_050.0)
+    assert told.startswith("Writes: what is usual is still being learnt")
+    assert "17 more days" in told
+
+
+@pytest.mark.parametrize(("follows", "words"), [(None, "cannot be told"), (True, "cooling"), (False, "do not")])
+def test_whether_times_follow_the_temperature_is_told_three_ways(follows, words):
+    assert words in with_heat(follows)
