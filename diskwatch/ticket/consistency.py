@@ -14,6 +14,7 @@ from diskwatch.ticket.asked import asked_for
 from diskwatch.units import epoch_of
 
 _CLOSE = 1e-9
+_MOST_DAYS = 100_000
 
 
 def loose_ends(ticket: Mapping[str, Any]) -> Iterator[str]:
@@ -88,7 +89,11 @@ def _evidence(ticket: Mapping[str, Any]) -> Iterator[str]:
         for way in ledger["ways"]:
             of, stream = way["of"], ledger["stream"]
             goal = goals.get(of)
-            reached = worked_out(ledger, way)
+            try:
+                reached = worked_out(ledger, way)
+            except (ArithmeticError, ValueError) as error:
+                yield f"ledgers {stream}: the way to {of} cannot be worked out: {error}"
+                continue
             if goal is None:
                 yield f"ledgers {stream}: a way leads to {of}, which is not there"
             elif not (_same(reached, goal) and _same(reached, way["evidence_days"])):
@@ -101,7 +106,13 @@ def worked_out(ledger: Mapping[str, Any], way: Mapping[str, Any]) -> float:
     Args:
         ledger: norm, ratios and the rest.
         way: state and steps.
+
+    Raises:
+        ArithmeticError: its numbers lead nowhere.
+        ValueError: it has more days than any drive, or not one sum a ratio.
     """
+    if sum(step["days"] for step in way["steps"]) > _MOST_DAYS:
+        raise ValueError(f"it has more than {_MOST_DAYS:,} days")
     norm, cap = ledger["norm_per_day"], ledger["cap"]
     ratios, sums = ledger["ratios"], list(way["sums"])
     e, a, decided, opened = way["exposure"], way["absorbing"], way["decided"], way["opened"]
@@ -113,7 +124,7 @@ def worked_out(ledger: Mapping[str, Any], way: Mapping[str, Any]) -> float:
                 if not decided and counted > 0:
                     sums = [
                         min(cap, (total + counted) * exp(-(ratio - 1) * norm * counted))
-                        for ratio, total in zip(ratios, sums, strict=False)
+                        for ratio, total in zip(ratios, sums, strict=True)
                     ]
                 a = ledger["absorbed_days"] if opened else a - absorbed
                 e, decided, opened = step["exposure"], False, False
@@ -123,7 +134,7 @@ def worked_out(ledger: Mapping[str, Any], way: Mapping[str, Any]) -> float:
                 else:
                     sums = [
                         min(cap, (total + e) * expm1(-ratio * norm * e) / expm1(-norm * e))
-                        for ratio, total in zip(ratios, sums, strict=False)
+                        for ratio, total in zip(ratios, sums, strict=True)
                     ]
                     decided = opened = True
     return float(sum(sums) / len(sums))
