@@ -21,7 +21,9 @@ from diskwatch.records import (
     Value,
 )
 from diskwatch.service.asking import Answer, Asking
+from diskwatch.service.forecasts import Forecasts
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.latency import Latency
 from diskwatch.service.pace import Why
 from diskwatch.service.turns import Turns
 from diskwatch.units import plain, say_bytes
@@ -74,6 +76,8 @@ class Rounds:
         self._turns = turns
         self._asking = asking
         self._heard = heard
+        self._latency = Latency(keeper)
+        self._forecasts = Forecasts(keeper)
         self._states: dict[int, analyser.DriveState] = {}
         self._here: dict[str, int] = {}
         self._away: dict[int, int] = {}
@@ -157,6 +161,8 @@ class Rounds:
             self._here.clear()
             self._away.clear()
             self.blocks.clear()
+            self._latency.forget()
+            self._forecasts.forget()
             if self._turns is not None:
                 self._turns.forget()
 
@@ -215,7 +221,9 @@ class Rounds:
         # Also what is no longer here speaks: a bay keeps the trouble that a drive had in it.
         others = tuple(self._state(one.number) for one in self._keeper.known if one.number != number)
         around = analyser.Around(bay=known.place.bay, others=others)
-        step = analyser.advance(self._state(number), pass_, around)
+        taken = self._latency.take_in(known, self._state(number), pass_.at)
+        pass_ = replace(pass_, heard=(*pass_.heard, *analyser.measured(taken.state)))
+        step = analyser.advance(taken.state, pass_, around)
         self._states[number] = step.state
         drive = DriveRound(
             known=known,
@@ -224,8 +232,10 @@ class Rounds:
             findings=step.findings,
             evidence=step.evidence,
             call=step.call,
+            learnt=taken.learnt,
+            forecasts=self._forecasts.due(number, step.state, pass_.at),
         )
-        return drive, [replace(entry, drive=number) for entry in step.happened]
+        return drive, [replace(entry, drive=number) for entry in (*taken.happened, *step.happened)]
 
     def _state(self, number: int) -> analyser.DriveState:
         if number not in self._states:

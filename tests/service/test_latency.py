@@ -3,10 +3,13 @@ from dataclasses import replace
 import pytest
 
 from diskwatch import analyser
-from diskwatch.records import DriveRound, IoSpan, Learnt, Outcome, Round
+from diskwatch.history.reader import Past
+from diskwatch.records import CallWord, DriveRound, IoSpan, Learnt, LimitSource, Outcome, Round
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.latency import BITE, OVER, Latency, circumstances
+from diskwatch.service.rounds import Rounds
 from tests.samples import DAY, HDD, HERE, NOON, missed, read
+from tests.service.machines import ScriptedMachine, found
 from tests.trends.traffic import invented_days
 
 FIRST = NOON // DAY
@@ -165,3 +168,35 @@ def test_another_port_or_firmware_is_another_circumstance(tmp_path):
     firmware = replace(known, drive=replace(known.drive, firmware="X2"))
     assert len({circumstances(known), circumstances(port), circumstances(firmware)}) == 3
     watched.end()
+
+
+@pytest.mark.parametrize("refused", [False, True])
+def test_slower_work_reaches_the_list_of_drives_also_where_no_reading_may_be_asked(tmp_path, refused):
+    days = invented_days(3, 110, slower_from=90, first_day=FIRST)
+    keeper = Keeper(tmp_path)
+    machine = ScriptedMachine(found(HDD))
+
+    def asked(at):
+        answer = missed(at, Outcome.REFUSED) if refused else read(at, crc_errors=0)
+        machine.answers = {"/dev/sda": [answer]}
+        return Rounds(machine, keeper, lambda: at).run()
+
+    asked(FIRST * DAY)
+    for number in range(0, 112, 4):
+        keeper.add_traffic(list(spans(days[number : number + 4])))
+        asked(night(FIRST + number + 3))
+    with Past.open(tmp_path) as past:
+        ((line,), book) = past.bays(NOON).drives, past.day_book()
+        evidence = past.evidence(1, "read-latency")
+        forecasts = {one.signal: one for one in past.forecasts(1)}
+    assert line.call is not None
+    assert (line.call.word, line.call.rule.split(":")[0]) == (CallWord.LOOK, "drift")
+    shown = {one.name: one for one in line.signals}
+    assert shown["read-latency"].value in range(8_000, 11_000)
+    assert shown["read-latency"].unit == "microseconds"
+    assert shown["read-latency"].evidence == evidence[-1][1]
+    assert shown["read-latency"].evidence > 30_437
+    assert {"drift", "call"} <= {entry.kind for entry in book}
+    assert forecasts["read-latency"].limit_from is LimitSource.OWN
+    assert line.forecasts == tuple(forecasts[name] for name in sorted(forecasts))
+    keeper.close()
