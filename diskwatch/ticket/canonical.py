@@ -4,13 +4,15 @@ Written out here, 60 lines, so that the package that does the same stays an inde
 """
 
 import hashlib
-import json
 import math
+import re
 from collections.abc import Iterator, Mapping, Sequence
+from json.encoder import encode_basestring
 
 EXACT = 2**53
 """Whole numbers beyond this become strings: readers of JSON need not hold them exactly (RFC 8259, 6)."""
 
+_HALF = re.compile("[\ud800-\udfff]")
 _PLAIN_DIGITS = 21
 """Digits before the point from which on a number gets an exponent (ECMAScript, Number::toString)."""
 
@@ -95,9 +97,9 @@ def _in_order(key: object) -> bytes:
 
 
 def _text(words: str) -> str:
-    if any("\ud800" <= letter <= "\udfff" for letter in words):
+    if _HALF.search(words) is not None:
         raise ValueError(f"half of a surrogate pair in {words[:40]!a}")
-    return json.dumps(words, ensure_ascii=False)
+    return encode_basestring(words)
 
 
 def number(value: float) -> str:

@@ -11,11 +11,28 @@ from diskwatch.units import is_active, plain
 
 
 def text_of(document: object) -> str:
-    """A document as JSON for people and programs; what a terminal may act on stands as JSON's own escapes."""
-    text = json.dumps(document, indent=1, ensure_ascii=False, allow_nan=False)
+    """A document as JSON for people and programs; what a terminal may act on stands as JSON's own escapes.
+
+    Each member of a ticket begins a line, and each item of a list in it: to indent all, the standard library
+    takes a way that is ten times as long.
+    """
+    text = _lines(document, 3) + "\n"
     if text.isascii() and "\x7f" not in text:
-        return text + "\n"
-    return "".join(_escaped(one) if is_active(one) else one for one in text) + "\n"
+        return text
+    return "".join(_escaped(one) if one != "\n" and is_active(one) else one for one in text)
+
+
+def _lines(thing: object, depth: int) -> str:
+    if depth and isinstance(thing, dict) and thing:
+        members = (
+            f"{json.dumps(key, ensure_ascii=False)}: {_lines(value, depth - 1)}" for key, value in thing.items()
+        )
+        return "{\n" + ",\n".join(members) + "\n}"
+    if depth and isinstance(thing, list) and thing:
+        return (
+            "[\n" + ",\n".join(_lines(one, depth - 1 if isinstance(one, dict) else 0) for one in thing) + "\n]"
+        )
+    return json.dumps(thing, ensure_ascii=False, allow_nan=False)
 
 
 def _escaped(letter: str) -> str:
