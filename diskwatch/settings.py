@@ -139,7 +139,7 @@ class Settings(_Section, frozen=True, kw_only=True):
     selftest: SelfTests = SelfTests()
 
 
-NOT_YET = frozenset({"notices", "probe", "selftest"})
+NOT_YET = frozenset({"notices", "probe"})
 """Tables that are read and checked but that nothing acts on in this version."""
 
 

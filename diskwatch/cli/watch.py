@@ -12,7 +12,7 @@ from diskwatch.history.reader import Past
 from diskwatch.machine.real import RealMachine
 from diskwatch.machine.senses import RealSenses
 from diskwatch.records import DriveRound, Way
-from diskwatch.service.watch import Watch, now
+from diskwatch.service.watch import Told, Watch, now
 from diskwatch.settings import Settings
 from diskwatch.units import plain
 
@@ -30,7 +30,7 @@ def run(args: argparse.Namespace) -> int:
     owner = settings(args)
     folder = state_folder(args)
     told = None if args.tied else Voice().say
-    watch = Watch(machine(owner, folder), owner, folder, told=told, senses=senses(owner))
+    watch = _watch(owner, folder, told)
     if watch.trouble:
         talk(f"diskwatch: {watch.trouble}; watching goes on without it")
     if args.once:
@@ -48,7 +48,7 @@ def run(args: argparse.Namespace) -> int:
         threading.Thread(target=_end_with_parent, args=(at_work,), daemon=True).start()
     while (there := watch.run()) is not None:
         # The history lies there now, and a watch that begins anew knows of no other place.
-        watch = Watch(machine(owner, there), owner, there, told=told, senses=senses(owner))
+        watch = _watch(owner, there, told)
         before, at_work[0] = at_work[0], watch
         if before.ended:
             watch.end()
@@ -56,6 +56,11 @@ def run(args: argparse.Namespace) -> int:
         talk(f"diskwatch: not stored: {watch.trouble}")
         return 4
     return 0
+
+
+def _watch(owner: Settings, folder: Path, told: Told | None) -> Watch:
+    this = machine(owner, folder)
+    return Watch(this, owner, folder, told=told, senses=senses(owner), tester=this)
 
 
 def machine(owner: Settings, folder: Path) -> RealMachine:

@@ -108,6 +108,12 @@ class RealMachine:
         self._without_smart.add(instance)
         return _no_smart(found, answer)
 
+    def begin_test(self, found: Found, *, extended: bool) -> str | None:
+        """Have a drive test itself, unless that would wake it; None where the test began, else why not."""
+        if any(asleep(self._sys, block) for block in found.blocks):
+            return "it is suspended by the kernel and was not asked, since that would wake it."
+        return self._smartctl.begin_test(found, extended=extended)
+
     def counts(self) -> Mapping[str, Counted]:
         """Traffic totals by kernel name of the block device."""
         return counters.counts(self._sys, self._proc)

@@ -150,6 +150,35 @@ class Smartctl:
         took = int((time.monotonic() - begun) * 1000)
         return replace(answer, at=self._now(), took_ms=took, way=self._ways.news(found))
 
+    def begin_test(self, found: Found, *, extended: bool) -> str | None:
+        """Have a drive test itself; the one deed here that is more than a question.
+
+        Args:
+            found: the drive, as the machine lists it.
+            extended: whether it is to read its whole surface.
+
+        Returns:
+            None where the test began; else why it did not, one sentence.
+        """
+        type_ = self._ways.known(found) or found.address.type
+        argv = [
+            self._command,
+            "-n",
+            "standby",
+            *(("-d", type_) if type_ is not None else ()),
+            *("-t", "long" if extended else "short"),
+            found.address.node,
+        ]
+        answer = self._door.run(argv, timeout=self._timeout, owner=found.place.device)
+        verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
+        if verdict is not None:
+            return verdict.explanation or "it could not be asked."
+        if not answer.status:
+            return None
+        said = lines_of(decoded(answer.out))
+        told = next((line.strip() for line in reversed(said) if line.strip()), "")
+        return f"it did not begin (exit status {answer.status}): {quoted(told[:200])}."
+
     def _asked(self, found: Found) -> "_Told":
         """Ask with the type that is known, and where that brings nothing with those that may do better."""
         deadline = time.monotonic() + self._timeout

@@ -11,8 +11,8 @@ class Entry:
     Attributes:
         at: when, UTC seconds since 1970.
         drive: the drive's number in the history; None where it concerns the machine or the watch itself.
-        kind: ``first-seen``, ``moved``, ``pass``, ``rise``, ``reset``, ``drift``, ``call``, ``settled``,
-            ``ended``, ``watch`` or ``trouble``.
+        kind: ``first-seen``, ``moved``, ``pass``, ``rise``, ``reset``, ``drift``, ``kernel``, ``call``,
+            ``settled``, ``ended``, ``watch`` or ``trouble``.
         text: one sentence for a person.
         data: the numbers behind it, plain JSON values.
     """

@@ -87,6 +87,8 @@ class Rounds:
         self._ending = threading.Event()
         self.blocks: dict[int, tuple[str, ...]] = {}
         """Kernel names of the block devices of each drive of the last round, by the drive's number."""
+        self.found: dict[int, Found] = {}
+        """How each drive that has answered was listed, by the drive's number."""
         self.left_out: Mapping[int, Why] = {}
         """Why drives that are here were not asked in the last round, by the drive's number."""
 
@@ -161,6 +163,7 @@ class Rounds:
             self._here.clear()
             self._away.clear()
             self.blocks.clear()
+            self.found.clear()
             self._latency.forget()
             self._forecasts.forget()
             if self._turns is not None:
@@ -209,6 +212,7 @@ class Rounds:
             taken.add(known.number)
             self._here[self._instance(answer.found)] = known.number
             self.blocks[known.number] = answer.found.blocks
+            self.found[known.number] = answer.found
             self._away.pop(known.number, None)
             heard = self._heard(known.number, answer.found.blocks)
             drive, happened = self._judge(known, replace(answer.pass_, drive=known.drive, heard=heard))
@@ -302,6 +306,7 @@ class Rounds:
                 continue
             self._away[number] = times + 1
             self.blocks.pop(number, None)
+            self.found.pop(number, None)
             pass_ = Pass(
                 at=self._now(),
                 outcome=Outcome.ABSENT,

@@ -4,6 +4,7 @@ import signal
 import threading
 import time
 from collections.abc import Callable, Mapping
+from contextlib import suppress
 from functools import partial
 from pathlib import Path
 from queue import SimpleQueue
@@ -12,6 +13,7 @@ from typing import Any
 from diskwatch.errors import DiskwatchError, HistoryError
 from diskwatch.history.exchange import read
 from diskwatch.history.live import LiveWriter
+from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
 from diskwatch.machine import choice
 from diskwatch.machine.protocol import Machine
@@ -26,6 +28,7 @@ from diskwatch.service.removal import MOVE, move_house
 from diskwatch.service.requests import Answer
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.schedule import Schedule
+from diskwatch.service.self_tests import SelfTests, Tester
 from diskwatch.service.traffic import JUMP, Traffic
 from diskwatch.service.turns import Turns
 from diskwatch.service.upkeep import EVERY, Upkeep
@@ -63,6 +66,7 @@ class Watch:
         *,
         told: Told | None = None,
         senses: Senses | None = None,
+        tester: Tester | None = None,
     ) -> None:
         """Open the history; see `diskwatch.service.keeper.Keeper` for what may go wrong.
 
@@ -72,6 +76,7 @@ class Watch:
             folder: where the history lies.
             told: called with each part of a round once it is kept.
             senses: what else the machine tells of its drives; None for nothing.
+            tester: has drives test themselves where the owner's settings ask for it; None for nobody.
         """
         self._machine = machine
         self._settings = settings
@@ -101,6 +106,17 @@ class Watch:
                 blocks=lambda: dict(self._rounds.blocks),
                 now=now,
                 soon=self._look_soon,
+            )
+        )
+        self._tests = (
+            None
+            if tester is None
+            else SelfTests(
+                tester,
+                settings.selftest,
+                past=self._past_tests,
+                note=self._note_entry,
+                on_battery=lambda: senses is not None and senses.on_battery(),
             )
         )
         self._deaf: str | None = None
@@ -201,7 +217,15 @@ class Watch:
         if self._spares_the_battery():
             return
         with self._rounding:
-            self._rounds.run(told=self._told, lock=self._lock)
+            done = self._rounds.run(told=self._told, lock=self._lock)
+            if self._tests is not None and not self._stop.is_set():
+                self._tests.after(done, self._rounds.found, at=now(), hour=time.localtime().tm_hour)
+
+    def _past_tests(self) -> tuple[Entry, ...] | None:
+        """What the day book holds of self-tests; None where it cannot be read."""
+        with suppress(DiskwatchError), Past.open(self._folder) as past:
+            return past.day_book(kinds={"self-test"})
+        return None
 
     def _spares_the_battery(self) -> bool:
         """Whether this round is left out because the machine runs on its battery."""
@@ -316,8 +340,11 @@ class Watch:
         self._note("trouble", plain(text))
 
     def _note(self, kind: str, text: str) -> None:
+        self._note_entry(Entry(at=now(), drive=None, kind=kind, text=text))
+
+    def _note_entry(self, entry: Entry) -> None:
         with self._lock:
-            self._keeper.note(Entry(at=now(), drive=None, kind=kind, text=text))
+            self._keeper.note(entry)
 
     def _end(self, words: str | None = None) -> None:
         self._rounds.end()

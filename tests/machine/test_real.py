@@ -315,3 +315,14 @@ def test_after_a_restart_a_drive_behind_an_unknown_usb_adapter_costs_exactly_one
         ways = ways if answer.way is None else (answer.way,)
         asked.append(sum("--all" in line for line in log.read_text().splitlines()))
     assert asked == [4, 1, 1]
+
+
+def test_no_self_test_is_begun_on_a_drive_that_the_kernel_has_suspended(tree: Tree, smartctl: Asked):
+    disk = tree.sata()
+    watched = machine(tree)
+    (found,) = watched.survey().found
+    tree.put(disk / "device/power/runtime_status", "suspended")
+    refused = watched.begin_test(found, extended=False)
+    assert refused is not None
+    assert "suspended" in refused
+    assert smartctl.asked == []

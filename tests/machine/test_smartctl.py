@@ -507,3 +507,24 @@ def test_an_answer_too_long_to_be_kept_is_read_and_not_handed_on():
 def test_what_brought_no_reading_is_not_handed_on():
     found = Smartctl("smartctl", 60, lambda: NOW, door=Told(said("<html>"))).ask(asked())
     assert (found.outcome is Outcome.READ, found.answer) == (False, None)
+
+
+def test_a_self_test_is_begun_with_the_type_that_reaches_the_drive_and_wakes_none():
+    told, door = smartctl(said("Testing has begun.\n"))
+    assert told.begin_test(asked(), extended=False) is None
+    assert told.begin_test(asked(type_=None), extended=True) is None
+    assert [words[1:] for words in door.asked] == [
+        ["-n", "standby", "-d", "sat", "-t", "short", "/dev/sdx"],
+        ["-n", "standby", "-t", "long", "/dev/sdx"],
+    ]
+
+
+def test_why_a_self_test_did_not_begin_is_told_in_the_tools_words_without_harm():
+    told, _ = smartctl(said("head\n\nCan't start self-test without aborting current test \x1b[31m\n", 4))
+    refused = told.begin_test(asked(), extended=False)
+    assert refused is not None
+    assert "exit status 4" in refused
+    assert "current test" in refused
+    assert "\x1b" not in refused
+    told, _ = smartctl(Answer(ending=Ending.TIMED_OUT))
+    assert told.begin_test(asked(), extended=False)

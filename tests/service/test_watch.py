@@ -1,13 +1,15 @@
 import signal
 import threading
 import time
+from types import SimpleNamespace
 
 import pytest
+from msgspec.structs import replace
 
 from diskwatch.history.reader import Past
 from diskwatch.records import Entry
 from diskwatch.service.watch import Watch
-from diskwatch.settings import Duration, HistoryKeeping, Io, Settings, Smart, Watch as WatchSettings
+from diskwatch.settings import Duration, HistoryKeeping, Io, SelfTests, Settings, Smart, Watch as WatchSettings
 from tests.samples import HDD, NOON, read, value, with_serial
 from tests.service.machines import ScriptedMachine, counted, found
 from tests.service.senses import ScriptedSenses
@@ -165,3 +167,34 @@ def test_on_battery_one_round_of_four_takes_place(machine, tmp_path, monkeypatch
     watch._round()
     assert rounds == [False, True, True, False]
     watch._end()
+
+
+class ScriptedTester:
+    def __init__(self):
+        self.begun = []
+
+    def begin_test(self, found, *, extended):
+        self.begun.append((found.place.device, extended))
+
+
+def test_a_self_test_is_begun_where_the_owner_asks_and_the_day_book_remembers_it(
+    machine, tmp_path, monkeypatch
+):
+    hours = iter([12, 3, 3])
+    monkeypatch.setattr("diskwatch.service.watch.time.localtime", lambda: SimpleNamespace(tm_hour=next(hours)))
+    asked = replace(QUICK, selftest=SelfTests(short=Duration(86_400)))
+    tester = ScriptedTester()
+    watch = Watch(machine, asked, tmp_path, tester=tester)
+    watch._round()
+    assert tester.begun == []
+    watch._round()
+    assert tester.begun == [("/dev/sda", False)]
+    watch._end()
+    again = Watch(machine, asked, tmp_path, tester=tester)
+    again._round()
+    assert len(tester.begun) == 1
+    again._end()
+    with Past.open(tmp_path) as past:
+        assert [entry.text for entry in past.day_book(kinds={"self-test"})] == [
+            "A short self-test of it began."
+        ]
