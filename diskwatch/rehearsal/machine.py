@@ -1,5 +1,6 @@
 """The invented machine behind the protocol of the real one."""
 
+import json
 from collections.abc import Mapping
 
 from diskwatch.machine.protocol import Address, Counted, Found, Survey
@@ -50,6 +51,7 @@ class InventedMachine:
         }
         self._returns = {spec.serial: spec.joins_day for spec in scenario.drive if spec.joins_day > 0}
         self._waiting = sorted(scenario.event, key=lambda one: one.day)
+        self._printed: dict[str, int] = {}
         self.on = False
         self.boots = 0
 
@@ -174,13 +176,16 @@ class InventedMachine:
             return Pass(at=at, outcome=Outcome.ASLEEP, explanation=told, drive=drive.drive)
         told_now = drive.told()
         text = lines(told_now) if drive.spec.as_text else ()
-        what = understood(
-            text,
-            None if text else document(told_now),
-            type_=found.address.type,
-            path=found.drive.identity.path,
+        stated = None if text else document(told_now)
+        what = understood(text, stated, type_=found.address.type, path=found.drive.identity.path)
+        answer = None
+        if self._printed.get(drive.spec.serial) != at // DAY:
+            # One a day is kept, and writing them out for every pass would take longer than all the rest.
+            self._printed[drive.spec.serial] = at // DAY
+            answer = json.dumps(stated, indent=2) if stated is not None else "\n".join(text)
+        return Pass(
+            at=at, outcome=Outcome.READ, drive=drive.drive, reading=what.reading, exit_bits=0, answer=answer
         )
-        return Pass(at=at, outcome=Outcome.READ, drive=drive.drive, reading=what.reading, exit_bits=0)
 
     def counts(self) -> Mapping[str, Counted]:
         """Traffic totals by kernel name."""

@@ -166,8 +166,8 @@ class _Found:
                 "self_tests": stated.self_tests_part(reading),
                 "moves": who.moves_part(past.places(number)),
                 "watching": watching.watching_part(line, days, about.at),
-                "odds": expected.odds_part(line, state, about.at),
-                "margin": expected.margin_part(line, (), about.at),
+                "odds": expected.odds_part(line, about.at),
+                "margin": expected.margin_part(line, about.at),
                 "copy_plan": stake.copy_part(
                     line, past.rollups(number, about.at - stake.RATE_DAYS * DAY, about.at)
                 ),

@@ -1,32 +1,23 @@
 """What is to be expected: the odds of drives that showed the same, and the margin of the call."""
 
-from collections.abc import Iterable
-
-from diskwatch.analyser import DriveState
-from diskwatch.judge import odds
-from diskwatch.judge.margin import margin, replace_by
+from diskwatch.judge import stakes
 from diskwatch.judge.margin_told import margin_told
 from diskwatch.judge.odds_told import odds_told
-from diskwatch.records import DriveLine, Forecast
+from diskwatch.records import DriveLine
 from diskwatch.ticket.part import Part, at
-from diskwatch.units import DAY, day_number
+from diskwatch.units import DAY
 
 
-def odds_part(line: DriveLine, state: DriveState | None, now: int) -> Part:
+def odds_part(line: DriveLine, now: int) -> Part:
     """The odds, with interval, horizon and source.
 
     Args:
         line: the drive.
-        state: what was learnt of it, or None where that cannot be read.
         now: UTC seconds since 1970.
     """
-    if not odds.known_for(line.drive.kind):
-        return Part(
-            value=None, reason="There are figures for internal hard drives alone, from a data centre of 2013."
-        )
-    found = None if state is None else odds.odds(state.showed, day=day_number(now))
+    found = stakes.odds_of(line, now)
     if found is None:
-        return Part(value=None, reason="It has shown nothing lately that there are figures for.")
+        return Part(value=None, reason=stakes.no_odds_of(line, now))
     return Part(
         value={
             "sentence": odds_told(found),
@@ -44,19 +35,17 @@ def odds_part(line: DriveLine, state: DriveState | None, now: int) -> Part:
     )
 
 
-def margin_part(line: DriveLine, forecasts: Iterable[Forecast], now: int) -> Part:
+def margin_part(line: DriveLine, now: int) -> Part:
     """Time left until the first limit, as an interval with its probability.
 
     Args:
         line: the drive.
-        forecasts: the latest one about each of its signals.
         now: UTC seconds since 1970.
     """
-    day = day_number(now)
-    left = margin(forecasts, day=day)
+    left = stakes.margin_of(line, now)
     if not left.known:
         return Part(value=None, reason=margin_told(left, now))
-    by = replace_by(line.call, left, day=day)
+    by = stakes.replace_by_of(line, now)
     return Part(
         value={
             "sentence": margin_told(left, now),

@@ -184,3 +184,16 @@ def test_utilisation_and_requests_under_way_agree_with_rate_times_time():
     # With one request served at a time, those under way are the one in service and those that wait.
     assert used <= under_way + 1e-6
     assert under_way <= used + used**2 / (1 - used) * 3 + 0.05
+
+
+@pytest.mark.parametrize("as_text", [False, True])
+def test_what_a_drive_prints_is_handed_on_word_for_word_once_a_day(as_text):
+    one = machine(hdd(as_text=as_text))
+    answers = []
+    for days in (0.2, 0.4, 1.2):
+        live(one, days)
+        answers.append(one.ask(one.survey().found[0]).answer)
+    assert answers[1] is None
+    for answer in (answers[0], answers[2]):
+        assert answer is not None
+        assert HDD in answer
