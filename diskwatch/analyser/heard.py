@@ -21,6 +21,8 @@ def counts(pass_: Pass) -> Mapping[str, int]:
 
 def followed(pass_: Pass) -> Mapping[str, int]:
     """Of these the counts that only grow."""
+    if not pass_.heard:
+        return {}
     grow = {value.signal for value in pass_.heard if value.kind is SignalKind.COUNT}
     return {name: count for name, count in counts(pass_).items() if name in grow}
 
@@ -42,11 +44,15 @@ def shown(state: DriveState, pass_: Pass) -> Iterator[Finding]:
         state: the drive, with what it was first.
         pass_: the pass that brought them.
     """
+    if not pass_.heard:
+        return iter(())
     return judge.facts(counts(pass_), {**state.firsts, **state.base}, at=pass_.at)
 
 
 def news(entries: Iterable[Entry], pass_: Pass) -> tuple[Entry, ...]:
     """Without the rises of what was heard: each event has its own entry already, from when it happened."""
+    if not pass_.heard:
+        return tuple(entries)
     own = {value.signal for value in pass_.heard}
     return tuple(one for one in entries if one.kind != "rise" or one.data.get("signal") not in own)
 

@@ -30,8 +30,10 @@ def limit_of(reading: Reading) -> int | None:
 def drift(state: DriveState, pass_: Pass, reading: Reading) -> Iterator[Finding]:
     """The ledger at or above its threshold."""
     ledger = state.temperature
+    if ledger.usual is None or ledger.ledger.evidence < THRESHOLD:
+        return
     line = temperatures.line(ledger, limit_of(reading))
-    if ledger.ledger.evidence < THRESHOLD or line is None or ledger.usual is None or len(state.warmth) < 2:
+    if line is None or len(state.warmth) < 2:
         return
     yesterday = state.warmth[-2]
     yield Finding(

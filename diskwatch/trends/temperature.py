@@ -11,7 +11,7 @@ degrees one of 60 did in five years, with 8 a third. That a limit is exceeded is
 this is about days that add up.
 """
 
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 from math import isfinite
 
 from diskwatch.trends import ledger as ledgers
@@ -36,6 +36,7 @@ THRESHOLD = BUDGET / SHARE
 """Evidence in days at which temperature alarms."""
 
 _LEAST_SPREAD = 2.0
+_EMPTY = ledgers.empty(len(SUSPICIONS))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -52,7 +53,7 @@ class Temperature:
     first: tuple[float, ...] = ()
     usual: float | None = None
     sigma: float | None = None
-    ledger: Ledger = field(default_factory=lambda: ledgers.empty(len(SUSPICIONS)))
+    ledger: Ledger = field(default=_EMPTY)
 
 
 def line(state: Temperature, limit: float | None) -> float | None:
@@ -82,9 +83,10 @@ def after_day(state: Temperature, highest: float, *, limit: float | None) -> Tem
     if bound is None or state.sigma is None:
         first = (*state.first, highest)
         if len(first) < LEARNING:
-            return replace(state, first=first)
-        return replace(state, first=first, usual=median(first), sigma=max(_LEAST_SPREAD, scaled_mad(first)))
-    return replace(state, ledger=ledgers.after(state.ledger, factors((highest - bound) / state.sigma)))
+            return Temperature(first=first)
+        return Temperature(first=first, usual=median(first), sigma=max(_LEAST_SPREAD, scaled_mad(first)))
+    ledger = ledgers.after(state.ledger, factors((highest - bound) / state.sigma))
+    return Temperature(first=state.first, usual=state.usual, sigma=state.sigma, ledger=ledger)
 
 
 def accepted(state: Temperature) -> Temperature:

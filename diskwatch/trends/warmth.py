@@ -46,7 +46,7 @@ def felt(days: Sequence[Warmth], *, day: int, celsius: int | None) -> tuple[tupl
     """
     if celsius is None or not _COLDEST <= celsius <= _HOTTEST:
         return tuple(days), None
-    past = [one for one in days if one.day <= day]
+    past = [one for one in days if one.day <= day] if days and days[-1].day > day else days
     if past and past[-1].day == day:
         known = past[-1]
         today = Warmth(
