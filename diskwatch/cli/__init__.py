@@ -23,6 +23,7 @@ COMMANDS = {
     "bays": "the drives, where they are, what to do with each, and why",
     "why": "the chain from a drive's readings to its call, and what would change it",
     "copy-plan": "what is at stake on a drive, and how to get it off: how long, in which order",
+    "outlook": "what is to be expected of the drives within 24 months, and what nobody can know",
     "daybook": "what happened to the drives, in order",
     "ticket": "what a help desk or a warranty desk needs to act on a drive without asking back",
     "ticket-check": "whether a ticket is whole and unchanged; every fault is named",
