@@ -10,7 +10,7 @@ What has been gathered is plain values, so that a restart goes on in the middle 
 
 import re
 from collections.abc import Mapping
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 
 from diskwatch.machine.kernel_line import Line
 from diskwatch.machine.kernel_texts import Says, Told, told
@@ -33,6 +33,7 @@ _MOST_TROUBLES = 256
 _LINK_BITS = frozenset({"BadCRC", "10B8B", "Dispar", "LinkSeq", "Handshk", "TrStaTrns", "PHYRdyChg", "DevExch"})
 _BUS = frozenset({"ATA bus error", "HSM violation"})
 _GONE = frozenset({"DID_NO_CONNECT", "DID_BAD_TARGET", "DID_TRANSPORT_FAILFAST"})
+_REQUEST = Says.REQUEST
 _OF_DRIVES = frozenset({Says.REQUEST, Says.PAGE_LOST, Says.PAGE_UNREAD})
 _STACKED = re.compile(r"(?:dm-|md|loop|bcache|zd|nbd|drbd|rbd)\d")
 _SILENT = frozenset({"DID_TIME_OUT"})
@@ -84,6 +85,7 @@ class Gathered:
         places: when a failure was last told of, by drive, kind and place.
         port: the drive that a port's lines are about at present, where several hang on it.
         settled: time from which on resets are no longer normal.
+        due: time before which no trouble can be over.
         lines: lines seen.
         unknown: lines about drives that the table does not know.
         unplaced: lines that the table knows, about devices that are no drive of ours.
@@ -93,6 +95,7 @@ class Gathered:
     places: dict[str, float] = field(default_factory=dict)
     port: dict[str, str] = field(default_factory=dict)
     settled: float = SETTLING
+    due: float = 0.0
     lines: int = 0
     unknown: int = 0
     unplaced: int = 0
@@ -147,12 +150,16 @@ def settle(kept: Gathered, seconds: float) -> Found:
         kept: changed.
         seconds: now, seconds since the boot.
     """
+    if seconds < kept.due:
+        return ()
     over = [drive for drive, trouble in kept.troubles.items() if seconds - trouble.last >= QUIET]
     found = []
     for drive in over:
         event = _ended(kept.troubles.pop(drive), kept.settled)
         if event is not None:
             found.append((drive, event))
+    # New ones begin later, and old ones only last longer: until then nothing need be looked at.
+    kept.due = min((trouble.last for trouble in kept.troubles.values()), default=-QUIET) + QUIET
     return tuple(found)
 
 
@@ -188,12 +195,12 @@ def _taken(kept: Gathered, drive: str, name: str, line: Line, say: Told) -> Foun
         kept.troubles[drive] = trouble
     trouble.last = line.seconds
     trouble.lines += 1
-    _noted(trouble, say)
+    if say.says is not _REQUEST:
+        _noted(trouble, say)
     event = _at_once(trouble, name, line, say)
     if event is None:
         return ()
     trouble.told = True
-    event = replace(event, lines=trouble.lines)
     place = "" if event.sector is None else str(event.sector // SAME_SECTORS)
     return _once(kept, drive, event, place=place)
 
@@ -250,7 +257,7 @@ def _at_once(trouble: Trouble, name: str, line: Line, say: Told) -> Event | None
         case Says.REQUEST:
             return _request(trouble, name, line, say)
         case Says.PAGE_LOST if not trouble.told and not trouble.gone:
-            return _event(EventKind.UNWRITABLE, name, line, words="lost page write")
+            return _event(EventKind.UNWRITABLE, name, line, words="lost page write", lines=trouble.lines)
         case Says.OFFLINED | Says.GIVEN_UP:
             return _gone(trouble, EventKind.OFFLINED, name, line, words)
         case Says.HOST_RESULT if say.parts.get("why") in _GONE:
@@ -258,7 +265,7 @@ def _at_once(trouble: Trouble, name: str, line: Line, say: Told) -> Event | None
         case Says.NVME_DOWN:
             return _gone(trouble, EventKind.CONTROLLER_DOWN, name, line, words)
         case Says.ARRAY_DROPPED | Says.ARRAY_MENDED:
-            return _event(EventKind.ARRAY, name, line, words=words)
+            return _event(EventKind.ARRAY, name, line, words=words, lines=trouble.lines)
         case _:
             return None
 
@@ -267,7 +274,7 @@ def _gone(trouble: Trouble, kind: EventKind, name: str, line: Line, words: str) 
     if trouble.gone:
         return None
     trouble.gone = True
-    return _event(kind, name, line, words=words)
+    return _event(kind, name, line, words=words, lines=trouble.lines)
 
 
 def _request(trouble: Trouble, name: str, line: Line, say: Told) -> Event | None:
@@ -283,13 +290,17 @@ def _request(trouble: Trouble, name: str, line: Line, say: Told) -> Event | None
     if not medium and (trouble.silent or why == "timeout"):
         if trouble.told:
             return None
-        return _event(EventKind.TIMED_OUT, name, line, sector=sector, words=words)
+        return _event(EventKind.TIMED_OUT, name, line, sector=sector, words=words, lines=trouble.lines)
     if operation in {"READ", None}:
         # Before the operation was told nothing but reads and writes said more than the place.
-        return _event(EventKind.UNREADABLE, name, line, sector=sector, medium=medium, words=words)
+        return _event(
+            EventKind.UNREADABLE, name, line, sector=sector, medium=medium, words=words, lines=trouble.lines
+        )
     if operation in {"WRITE", "WRITE_SAME", "WRITE_ZEROES", "ZONE_APPEND"}:
-        return _event(EventKind.UNWRITABLE, name, line, sector=sector, medium=medium, words=words)
-    return _event(EventKind.FAILED, name, line, words=f"{operation}: {words}")
+        return _event(
+            EventKind.UNWRITABLE, name, line, sector=sector, medium=medium, words=words, lines=trouble.lines
+        )
+    return _event(EventKind.FAILED, name, line, words=f"{operation}: {words}", lines=trouble.lines)
 
 
 def _ended(trouble: Trouble, settled: float) -> Event | None:
@@ -336,6 +347,21 @@ def _once(kept: Gathered, drive: str, event: Event, *, place: str) -> Found:
 
 
 def _event(
-    kind: EventKind, name: str, line: Line, *, sector: int | None = None, medium: bool = False, words: str = ""
+    kind: EventKind,
+    name: str,
+    line: Line,
+    *,
+    sector: int | None = None,
+    medium: bool = False,
+    words: str = "",
+    lines: int = 1,
 ) -> Event:
-    return Event(kind=kind, subject=name, seconds=line.seconds, sector=sector, medium=medium, words=words[:200])
+    return Event(
+        kind=kind,
+        subject=name,
+        seconds=line.seconds,
+        sector=sector,
+        medium=medium,
+        words=words[:200],
+        lines=lines,
+    )

@@ -10,11 +10,14 @@ costs next to nothing.
 
 import re
 from dataclasses import dataclass
-from enum import Enum, auto
+from enum import IntEnum, auto
 
 
-class Says(Enum):
-    """What one line says; what it means shows only together with the lines around it."""
+class Says(IntEnum):
+    """What one line says; what it means shows only together with the lines around it.
+
+    Numbers, since these are looked up for every line of a flood.
+    """
 
     REQUEST = auto()
     PAGE_LOST = auto()
@@ -51,6 +54,7 @@ class Text:
         says: what it says.
         starts: what a line with it begins with; one of these.
         pattern: the whole line.
+        holds: letters that every such line holds: looking for them costs a tenth of trying the pattern.
         source: the kernel's file that prints it, and since when.
     """
 
@@ -58,15 +62,18 @@ class Text:
     starts: tuple[str, ...]
     pattern: re.Pattern[str]
     source: str
+    holds: str = ""
 
 
-def _text(says: Says, starts: str, pattern: str, source: str) -> Text:
-    return Text(says=says, starts=tuple(starts.split("|")), pattern=re.compile(pattern), source=source)
+def _text(says: Says, starts: str, pattern: str, source: str, holds: str = "") -> Text:
+    return Text(
+        says=says, starts=tuple(starts.split("|")), pattern=re.compile(pattern), source=source, holds=holds
+    )
 
 
 _ATA = r"(?P<name>ata\d+(?:\.\d\d)?): "
 _SD = r"(?:sd|sr) (?P<address>\d+:\d+:\d+:\d+): (?:\[(?P<name>[a-z0-9]+)\] )?"
-_WHY = r"(?P<why>[A-Za-z/ ]{1,40}?)"
+_WHY = r"(?P<why>[^,:]+)"
 
 
 def _any(*patterns: str) -> str:
@@ -145,7 +152,7 @@ TEXTS = (
         "I/O error, dev|critical |timeout error|recoverable tran|protection erro|device offline |"
         "device resource|operation not su|zone resource |duration limit |blk_update_request|print_req_error|"
         "end_request: ",
-        rf"(?:(?:blk_update_request|print_req_error|end_request): )?{_WHY} error, dev (?P<name>[\w!/-]+), "
+        rf"(?:(?:blk_update_request|print_req_error|end_request): )?{_WHY} error, dev (?P<name>[^, ]+), "
         r"sector (?P<sector>\d+)(?: op 0x[0-9a-f]+:\((?P<op>[A-Z_]+)\))?(?: flags .*)?",
         "block/blk-core.c, blk-mq.c: bare since 5.16, behind a function's name from 3.17 on",
     ),
@@ -166,18 +173,21 @@ TEXTS = (
         "ata",
         _ATA + r"(?P<words>exception Emask 0x[0-9a-f]+ .*)",
         "drivers/ata/libata-eh.c",
+        holds="exception Emask",
     ),
     _text(
         Says.COMMAND_FAILED,
         "ata",
         _ATA + r"failed command: (?P<words>[A-Z0-9 ./()-]+)",
         "drivers/ata/libata-eh.c",
+        holds="failed command",
     ),
     _text(
         Says.RESULT,
         "ata",
         _ATA + r"cmd .*\bres .*Emask 0x[0-9a-f]+ \((?P<why>[A-Za-z ]+)\)(?: <F>)?",
         "drivers/ata/libata-eh.c; may stand in two lines",
+        holds="res ",
     ),
     _text(
         Says.RESULT,
@@ -185,10 +195,26 @@ TEXTS = (
         r" +res .*Emask 0x[0-9a-f]+ \((?P<why>[A-Za-z ]+)\)(?: <F>)?",
         "drivers/ata/libata-eh.c, the second of the two",
     ),
-    _text(Says.ERROR_BITS, "ata", _ATA + r"error: \{ (?P<words>[A-Z0-9 ]+) \}", "drivers/ata/libata-eh.c"),
-    _text(Says.LINK_BITS, "ata", _ATA + r"SError: \{ (?P<words>[A-Za-z0-9 ]*) \}", "drivers/ata/libata-eh.c"),
     _text(
-        Says.RESET, "ata", _ATA + r"(?P<words>(?:hard|soft) resetting link)", "drivers/ata/libata-core.c, -eh.c"
+        Says.ERROR_BITS,
+        "ata",
+        _ATA + r"error: \{ (?P<words>[A-Z0-9 ]+) \}",
+        "drivers/ata/libata-eh.c",
+        holds="error: {",
+    ),
+    _text(
+        Says.LINK_BITS,
+        "ata",
+        _ATA + r"SError: \{ (?P<words>[A-Za-z0-9 ]*) \}",
+        "drivers/ata/libata-eh.c",
+        holds="SError: {",
+    ),
+    _text(
+        Says.RESET,
+        "ata",
+        _ATA + r"(?P<words>(?:hard|soft) resetting link)",
+        "drivers/ata/libata-core.c, -eh.c",
+        holds="resetting link",
     ),
     _text(
         Says.SLOWED,
@@ -213,18 +239,21 @@ TEXTS = (
         "sd ",
         _SD + r"(?:tag#\d+ )?Sense Key : (?P<why>[\w ]+?) (?:\[.*\] ?)+",
         "drivers/scsi/constants.c",
+        holds="Sense Key",
     ),
     _text(
         Says.SENSE_MORE,
         "sd ",
         _SD + r"(?:tag#\d+ )?Add\. Sense: (?P<words>.+)",
         "drivers/scsi/scsi_logging.c",
+        holds="Add. Sense",
     ),
     _text(
         Says.HOST_RESULT,
         "sd ",
         _SD + r"(?:tag#\d+ )?(?:UNKNOWN\(0x[0-9a-f]+\)|FAILED|SUCCESS) Result: hostbyte=(?P<why>\w+) .*",
         "drivers/scsi/scsi_logging.c",
+        holds="Result: hostbyte",
     ),
     _text(
         Says.OFFLINED,
@@ -251,12 +280,14 @@ TEXTS = (
         r"nvme (?P<name>nvme\d+): (?P<words>I/O (?:tag )?\d+ .*timeout, "
         r"(?:aborting|reset controller|disable controller).*)",
         "drivers/nvme/host/pci.c; the opcode is told since 6.x",
+        holds="timeout, ",
     ),
     _text(
         Says.NVME_LOST_INTERRUPT,
         "nvme ",
         r"nvme (?P<name>nvme\d+): (?P<words>I/O (?:tag )?\d+ .*timeout, completion polled)",
         "drivers/nvme/host/pci.c",
+        holds="polled",
     ),
     _text(
         Says.NVME_DOWN,
@@ -270,6 +301,7 @@ TEXTS = (
         r"(?P<name>nvme\d+(?:c\d+)?n\d+): (?P<op>[A-Za-z/ ]+)\(0x[0-9a-f]+\) @ LBA (?P<block>\d+), \d+ blocks, "
         r"(?P<words>.+ \(sct (?P<sct>0x[0-9a-f]+) / sc (?P<sc>0x[0-9a-f]+)\)).*",
         "drivers/nvme/host/core.c, since 5.18",
+        holds=" @ LBA ",
     ),
     _text(
         Says.FILE_SYSTEM,
@@ -374,6 +406,8 @@ def told(line: str) -> Told | None:
         if not line.startswith(text.starts):
             continue
         mine = True
+        if text.holds not in line:
+            continue
         found = text.pattern.fullmatch(line)
         if found is not None:
             return Told(text.says, found.groupdict())

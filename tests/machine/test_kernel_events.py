@@ -217,3 +217,12 @@ def test_a_flood_costs_less_than_a_second_and_loses_nothing():
     assert spent < 2.0, (
         f"{spent:.2f} s"
     )  # twice the goal, for a machine that is busy; the goal is measured apart
+
+
+def test_ending_all_there_is_leaves_the_ears_open_for_what_comes_next(log):
+    log.say("ata1: hard resetting link")
+    log.found += settle(log.kept, float("inf"))
+    kept = msgspec.json.decode(msgspec.json.encode(log.kept), type=Gathered)
+    assert kept == log.kept
+    log.say("ata1: hard resetting link")
+    assert log.over() == [("hdd", EventKind.LINK_RESET)] * 2
