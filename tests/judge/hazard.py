@@ -10,6 +10,7 @@ score are counted here a second time.
 
 import csv
 import gzip
+import os
 import sys
 from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
@@ -19,6 +20,7 @@ from pathlib import Path
 
 from diskwatch.trends.special import beta_quantile
 
+ROOT = Path(__file__).resolve().parents[2]
 FILE = Path("drive_series") / "daily_2013-04-10_2013-05-19.csv.gz"
 NO_COUNT = 65_000
 """Values of 5 or 197 from here on are no counts (65535, 65528 and others stand there)."""
@@ -35,6 +37,12 @@ class Life:
 
     rows: list[tuple[int, int | None, int | None]] = field(default_factory=list)
     failed: bool = False
+
+
+def shared_data() -> Path | None:
+    """The folder of recorded data that is not part of the repository, or None."""
+    folder = Path(os.environ.get("DISKWATCH_SHARED", ROOT.parent / "shared")) / "data"
+    return folder if folder.is_dir() else None
 
 
 def lives(path: Path) -> Mapping[str, Life]:
