@@ -7,10 +7,11 @@ from collections.abc import Iterator
 from datetime import datetime
 
 from diskwatch import analyser
-from diskwatch.cli import judged
+from diskwatch.cli import judged, measured
 from diskwatch.cli.answers import why_answer
 from diskwatch.cli.common import now, print_json, settings, state_folder
 from diskwatch.cli.said import said
+from diskwatch.history.forecasts import Kept
 from diskwatch.history.reader import Past
 from diskwatch.judge import sentences
 from diskwatch.records import DriveLine
@@ -35,16 +36,17 @@ def run(args: argparse.Namespace) -> int:
         number = past.find(args.drive).number
         line = next(one for one in past.bays(now()).every if one.number == number)
         kept = past.state(number)
+        forecasts = past.kept_forecasts(number)
     state = analyser.start() if kept is None else analyser.load(kept)
     why = analyser.explain(state)
     if args.json:
-        print_json(why_answer(line, why, now()))
+        print_json({**why_answer(line, why, now()), **measured.answer(why, forecasts, now())})
     else:
-        sys.stdout.write("\n".join(plain(one) for one in _told(line, why)) + "\n")
+        sys.stdout.write("\n".join(plain(one) for one in _told(line, why, forecasts)) + "\n")
     return 0
 
 
-def _told(line: DriveLine, why: analyser.Explanation) -> Iterator[str]:
+def _told(line: DriveLine, why: analyser.Explanation, forecasts: tuple[Kept, ...]) -> Iterator[str]:
     yield f"{line.name}, serial {line.drive.identity.serial or 'not known'}, {line.place.device}"
     if (words := said(line, now())) is not None:
         yield words
@@ -56,6 +58,8 @@ def _told(line: DriveLine, why: analyser.Explanation) -> Iterator[str]:
     yield from _part("What stands", (f"{one.sentence} (since {_when(one.since)})" for one in why.findings))
     yield from _part("Counters followed (first read, now)", _counters(why))
     yield from _part("Evidence: how rarely a drive within the norm would come to this", _evidence(why))
+    yield from _part("Latency at equal load", measured.latency(why))
+    yield from _part("Temperature", measured.temperature(why))
     if why.damage is not None:
         damage = why.damage
         parts = (
@@ -66,9 +70,11 @@ def _told(line: DriveLine, why: analyser.Explanation) -> Iterator[str]:
         yield from _part("Damage measure", (f"{damage.measure:g}: {parts} ({limits})",))
     yield from _part("Cause: the table's rows that it was weighed by", judged.causes(why))
     yield from _part("What became of other drives that showed the same", judged.odds(line, now()))
+    yield from _part("Forecasts", measured.forecasts(line.forecasts, forecasts, now()))
     yield from _part("Margin", judged.margin(line, now()))
     yield from _part("Rule that decided", () if why.rule is None else (why.rule,))
     yield from _part("What would change the call", why.would_change)
+    yield from _part("What the bound on false alarms rests on, and what breaks it", measured.bound(why))
 
 
 def _counters(why: analyser.Explanation) -> Iterator[str]:
