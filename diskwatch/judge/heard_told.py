@@ -96,11 +96,21 @@ _HAPPENED: Mapping[EventKind, str] = {
 }
 
 
-def happened(event: Event) -> str:
-    """One event of the kernel's log, for the day book."""
+def happened(event: Event, part: str | None = None, part_sector: int = 0) -> str:
+    """One event of the kernel's log, for the day book.
+
+    Args:
+        event: what happened.
+        part: the partition in which the failing sector lies, or None.
+        part_sector: where in it, sectors of 512 bytes from its start.
+    """
     sector = _("not told") if event.sector is None else say_count(event.sector)
     words = plain(event.words) or _("no more was told")
-    return _(_HAPPENED[event.kind]).format(name=plain(event.subject), sector=sector, words=words)
+    told = _(_HAPPENED[event.kind]).format(name=plain(event.subject), sector=sector, words=words)
+    if part is None:
+        return told
+    where = _("That is sector {sector} of the partition {part}.")
+    return f"{told} {where.format(sector=say_count(part_sector), part=plain(part))}"
 
 
 def more(count: int) -> str:

@@ -127,7 +127,6 @@ _NVME_DOWN = _any(
     r"frozen state error detected.*",
 )
 _BTRFS = _any(
-    r"bdev .* errs: .*",
     r"parent transid verify failed.*",
     r"bad tree block.*",
     r".*lost page write.*",
@@ -315,6 +314,13 @@ TEXTS = (
         r"EXT4-fs \((?P<name>[\w!-]+)\): (?P<words>Remounting filesystem read-only|failed to convert .*"
         r"|.*I/O error.*)",
         "fs/ext4/super.c",
+    ),
+    _text(
+        Says.FILE_SYSTEM,
+        "BTRFS error|BTRFS info|BTRFS warning",
+        r"BTRFS (?:error|info|warning) \(device [^)]+\): (?P<words>bdev /dev/(?P<name>[\w!-]+) errs: .*)",
+        "fs/btrfs/volumes.c: of the devices of a file system the one that it names",
+        holds="bdev /dev/",
     ),
     _text(
         Says.FILE_SYSTEM,

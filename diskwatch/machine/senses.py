@@ -10,6 +10,7 @@ from diskwatch.machine.kept_errors import kept_errors
 from diskwatch.machine.kernel_line import Line
 from diskwatch.machine.kernel_log import KernelLog
 from diskwatch.machine.kernel_names import kernel_names
+from diskwatch.machine.partitions import Piece, piece_at
 from diskwatch.machine.power import on_battery
 from diskwatch.machine.stacks import stack_on
 from diskwatch.records import LeftOff, Value
@@ -59,6 +60,10 @@ class Senses(Protocol):
         """What file systems and arrays count of the drive with these block devices."""
         ...
 
+    def piece_at(self, block: str, sector: int) -> Piece | None:
+        """The partition that a sector of a disk lies in, or None."""
+        ...
+
     def on_battery(self) -> bool:
         """Whether the computer runs on its battery."""
         ...
@@ -106,6 +111,10 @@ class RealSenses:
         """What file systems and arrays count of the drive with these block devices."""
         stack = stack_on(self._sys, blocks, dev_root=self._dev)
         return kept_errors(stack, sys_root=self._sys, pools=zfs.states(self._proc))
+
+    def piece_at(self, block: str, sector: int) -> Piece | None:
+        """The partition that a sector of a disk lies in, or None."""
+        return piece_at(block, sector, sys_root=self._sys)
 
     def on_battery(self) -> bool:
         """Whether the computer runs on its battery."""

@@ -274,17 +274,23 @@ class Ears:
         self._told[key] = hour, count + 1
         if count >= MOST_TOLD:
             return
+        piece = None if event.sector is None else self._senses.piece_at(event.subject, event.sector)
         data = {
             "event": event.kind.value,
             "device": plain(event.subject),
             "sector": event.sector,
+            "partition": piece.name if piece is not None else None,
+            "partition_sector": piece.sector if piece is not None else None,
             "medium": event.medium,
             "words": plain(event.words),
             "lines": event.lines,
         }
-        self._entries.append(
-            Entry(at=at, drive=number, kind="kernel", text=heard_told.happened(event), data=data)
+        text = (
+            heard_told.happened(event)
+            if piece is None
+            else heard_told.happened(event, piece.name, piece.sector)
         )
+        self._entries.append(Entry(at=at, drive=number, kind="kernel", text=text, data=data))
 
     def _tell_of_more(self, only: tuple[int, EventKind] | None = None, *, at_end: bool = False) -> None:
         """Say how many events were not told one by one, once their hour is over."""

@@ -82,7 +82,12 @@ KNOWN = (
     (
         Says.FILE_SYSTEM,
         "sda3",
-        "BTRFS error (device sda3): bdev /dev/sda3 errs: wr 0, rd 1, flush 0, corrupt 0, gen 0",
+        "BTRFS error (device sdb3): bdev /dev/sda3 errs: wr 0, rd 1, flush 0, corrupt 0, gen 0",
+    ),
+    (
+        Says.FILE_SYSTEM,
+        "sda3",
+        "BTRFS error (device sda3): parent transid verify failed on logical 1 wanted 2 found 1",
     ),
     (Says.FILE_SYSTEM, "sda2", 'XFS (sda2): metadata I/O error in "xfs_trans" at daddr 0x10 len 8 error 5'),
     (Says.ARRAY_DROPPED, "sdb1", "md/raid1:md0: Disk failure on sdb1, disabling device."),

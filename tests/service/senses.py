@@ -4,6 +4,7 @@ from collections.abc import Iterable, Mapping
 
 from diskwatch.errors import DiskwatchError
 from diskwatch.machine.kernel_line import Line
+from diskwatch.machine.partitions import Piece
 from diskwatch.records import LeftOff, Value
 
 
@@ -45,6 +46,7 @@ class ScriptedSenses:
         self.now = 1_000.0
         self.battery = False
         self.counted: Mapping[str, tuple[Value, ...]] = {}
+        self.pieces: Mapping[tuple[str, int], Piece] = {}
         self.refusal: str | None = None
         self.opened: list[ScriptedLog] = []
 
@@ -65,6 +67,9 @@ class ScriptedSenses:
 
     def kept(self, blocks: Iterable[str]) -> tuple[Value, ...]:
         return tuple(value for block in blocks for value in self.counted.get(block, ()))
+
+    def piece_at(self, block: str, sector: int) -> Piece | None:
+        return self.pieces.get((block, sector))
 
     def on_battery(self) -> bool:
         return self.battery

@@ -4,6 +4,7 @@ import time
 import pytest
 
 from diskwatch.history.reader import Past
+from diskwatch.machine.partitions import Piece
 from diskwatch.machine.senses import RealSenses
 from diskwatch.records import Round
 from diskwatch.service import ears as room
@@ -73,6 +74,17 @@ def test_an_event_reaches_the_day_book_and_the_counts_of_its_drive_alone(tmp_pat
     assert here.counts(2) == {"kernel-io-errors": 0, "kernel-timeouts": 0, "link-resets": 0}
     here.end()
     assert here.book() == [(1, "A read of sda failed at sector 2,048 (I/O).")]
+
+
+def test_the_partition_that_a_sector_lies_in_is_told(tmp_path, senses):
+    here = Listening(tmp_path, senses)
+    senses.pieces = {("sda", 2048): Piece(name="sda2", sector=48)}
+    senses.say(READ.format("sda", 2048))
+    here.ears.once()
+    here.end()
+    assert here.book() == [
+        (1, "A read of sda failed at sector 2,048 (I/O). That is sector 48 of the partition sda2.")
+    ]
 
 
 def test_a_restart_hears_nothing_twice_and_loses_nothing(tmp_path, senses):
