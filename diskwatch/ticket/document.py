@@ -7,7 +7,7 @@ from diskwatch import __version__, analyser
 from diskwatch.history.proof import Copy
 from diskwatch.history.reader import Past
 from diskwatch.judge import rules
-from diskwatch.records import Bays, DriveLine
+from diskwatch.records import Bays, ClassDay, DriveLine
 from diskwatch.ticket import (
     canonical,
     cautions,
@@ -142,8 +142,8 @@ class _Found:
         pasts = past.signal_pasts(number)
         printed = past.printed(number)
         copies = past.copies(number)
-        today = day_number(about.at)
-        first = day_number(line.first_seen)
+        # A drive that is gone was last seen at work long ago.
+        seen = about.at if line.last_pass is None else min(about.at, line.last_pass.at)
         return cls(
             state=state,
             copies=copies,
@@ -159,8 +159,8 @@ class _Found:
                     ),
                 ),
                 "latency": latency.latency_part(
-                    past.class_days(number, first, first + latency.WINDOW),
-                    past.class_days(number, today - latency.WINDOW, today + 1),
+                    _classes(past, number, day_number(line.first_seen)),
+                    _classes(past, number, day_number(seen) - latency.WINDOW),
                 ),
                 "attributes": stated.attributes_part(reading),
                 "self_tests": stated.self_tests_part(reading),
@@ -169,13 +169,21 @@ class _Found:
                 "odds": expected.odds_part(line, about.at),
                 "margin": expected.margin_part(line, about.at),
                 "copy_plan": stake.copy_part(
-                    line, past.rollups(number, about.at - stake.RATE_DAYS * DAY, about.at)
+                    line, past.rollups(number, seen - stake.RATE_DAYS * DAY, about.at)
                 ),
             },
             events=lambda limits: happened.events_part(entries, limits.before, limits.events),
             signals=lambda limits: signals.signals_part(line, pasts, state, limits.before),
             answer=lambda limits: stated.answer_part(printed, limits.answer),
         )
+
+
+def _classes(past: Past, number: int, first: int) -> tuple[tuple[int, ClassDay], ...]:
+    """A drive's mean times by class of load, of so many days from a day on."""
+    until = first + latency.WINDOW + 1
+    return past.class_days(number, first, until) or latency.condensed(
+        past.rollups(number, first * DAY, until * DAY)
+    )
 
 
 def _state(kept: str | None) -> analyser.DriveState | None:

@@ -1,13 +1,14 @@
 """How long the drive takes for its work, then and now, compared at equal load only."""
 
 from collections import defaultdict
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from math import exp, log
 
-from diskwatch.records import ClassDay, Direction
+from diskwatch.records import ClassDay, Direction, IoRollup
 from diskwatch.ticket.part import Json, Part, at
 from diskwatch.trends.histogram import added, quantile
-from diskwatch.units import DAY
+from diskwatch.trends.load import class_days
+from diskwatch.units import DAY, day_number
 
 WINDOW = 28
 """Days at the beginning of the watch, and days up to now, that are held against each other."""
@@ -16,6 +17,15 @@ LEAST = 12
 """Stretches of five minutes that a class of load needs on both sides to be compared."""
 
 _Days = Sequence[tuple[int, ClassDay]]
+
+
+def condensed(rollups: Iterable[IoRollup]) -> tuple[tuple[int, ClassDay], ...]:
+    """Classes of load by day, where nobody has condensed the traffic yet."""
+    by_day: defaultdict[int, list[IoRollup]] = defaultdict(list)
+    for one in rollups:
+        # A roll-up bears the time of its end.
+        by_day[day_number(one.at - 1)].append(one)
+    return tuple((day, one) for day, found in sorted(by_day.items()) for one in class_days(found))
 
 
 def latency_part(then: _Days, now: _Days) -> Part:

@@ -16,6 +16,7 @@ LINES = 60
 
 _LABEL = 16
 _MOST_LETTERS = 400
+_MOST_OF_EVENT = 160
 
 
 def page(ticket: Json) -> str:
@@ -86,13 +87,16 @@ def _findings(ticket: Json) -> Iterator[str]:
 
 
 def _values(ticket: Json) -> Iterator[str]:
-    """Counters that moved, then those of which a change would matter; first and latest."""
-    counted = [one for one in _list(ticket["signals"]) if one["kind"] in {"count", "wear"} and one["changes"]]
-    moved = [one for one in counted if one["first"]["value"] != one["latest"]["value"]]
+    """Counts, wear and what else is kept by its changes, where it moved: first and latest."""
+    moved = [
+        one
+        for one in _list(ticket["signals"])
+        if one["kind"] != "word" and one["changes"] and one["first"]["value"] != one["latest"]["value"]
+    ]
     if not moved:
         return
     moved.sort(key=lambda one: (one["evidence_days"] is None, one["name"]))
-    yield f"{'Counter':<34}{'first read':>19}{'now':>19}"
+    yield f"{'Signal':<34}{'first read':>19}{'now':>19}"
     for one in moved[:10]:
         first, now = (_value(one[which]["value"]) for which in ("first", "latest"))
         yield f"{_fit(str(one['name']), 34)}{_fit(first, 19, right=True)}{_fit(now, 19, right=True)}"
@@ -120,7 +124,9 @@ def _events(ticket: Json) -> Iterator[str]:
         return
     yield "What happened last"
     for one in events[-6:]:
-        yield from _wrapped(f"{_day(one['at']) if one['at'] else 'some day'}: {one['text']}", "- ")
+        text = str(one["text"])
+        cut = text if len(text) <= _MOST_OF_EVENT else f"{text[:_MOST_OF_EVENT]} ..."
+        yield from _wrapped(f"{_day(one['at']) if one['at'] else 'some day'}: {cut}", "- ")
     yield ""
 
 

@@ -1,7 +1,7 @@
 import pytest
 
-from diskwatch.records import ClassDay, Direction
-from diskwatch.ticket.latency import LEAST, latency_part
+from diskwatch.records import ClassDay, Direction, IoCounts, IoRollup
+from diskwatch.ticket.latency import LEAST, condensed, latency_part
 from diskwatch.trends.histogram import histogram
 
 
@@ -40,6 +40,31 @@ def test_a_busier_disk_is_no_slower_one():
     told = _only(latency_part(then, now))
     assert told["times_as_long"] == pytest.approx(1, rel=0.05)
     assert [one["load_class"] for one in told["classes"]] == [7]
+
+
+def test_traffic_that_nobody_has_condensed_yet_is_condensed_by_day():
+    counts = IoCounts(
+        reads=600, writes=0, read_bytes=600 * 4096, write_bytes=0, read_ms=3_000, write_ms=0, busy_ms=900
+    )
+    rollups = [
+        IoRollup(
+            drive=1,
+            at=at,
+            wall_seconds=300,
+            covered_ms=300_000,
+            counts=counts,
+            longest_read_us=None,
+            longest_write_us=None,
+            spans=30,
+            reset=False,
+        )
+        for at in (86_400 - 300, 86_400, 86_400 + 300)
+    ]
+    told = condensed(rollups)
+    assert [(day, one.rollups, one.direction) for day, one in told] == [
+        (0, 2, Direction.READ),
+        (1, 1, Direction.READ),
+    ]
 
 
 @pytest.mark.parametrize(

@@ -33,6 +33,14 @@ def test_no_words_break_the_page(words, name):
         assert not any(is_active(letter) for letter in line)
 
 
+def test_what_moved_stands_with_its_first_and_its_latest_value(folder):
+    with opened(folder, days(30, lambda day: {"crc_errors": 7, "pending_sectors": 8 * (day > 9)})) as past:
+        lines = page(a_ticket(past, NOON + 30 * DAY)).splitlines()
+    (pending,) = [line for line in lines if line.startswith("pending-sectors")]
+    assert pending.split() == ["pending-sectors", "0", "8"]
+    assert not any(line.startswith("crc-errors") for line in lines)
+
+
 def test_a_page_too_long_ends_with_its_foot_and_says_what_is_left_out(folder):
     with opened(folder, days(30, lambda day: {"crc_errors": day})) as past:
         made = a_ticket(past, NOON + 30 * DAY)
