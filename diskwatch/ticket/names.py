@@ -1,5 +1,6 @@
 """What is to be hidden, and by which alias each name is told: stable, and telling nothing."""
 
+import re
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from enum import StrEnum
@@ -7,6 +8,8 @@ from enum import StrEnum
 from diskwatch.records import DriveLine
 from diskwatch.records.placeholders import empty_serial, empty_wwn
 from diskwatch.ticket.who import Host
+
+_OF_A_USER = re.compile(r"/(?:home|run/media)/([^/]+)")
 
 
 class Hidden(StrEnum):
@@ -47,10 +50,10 @@ def names(kinds: Iterable[Hidden], lines: Iterable[DriveLine], host: Host) -> tu
     found: list[Name] = []
     if Hidden.SERIAL in asked:
         found += _serials(drives)
+    points = {mount.point for line in drives for mount in line.place.lives_here}
     if Hidden.HOST in asked:
-        found += _people(host)
+        found += _people(host, points)
     if Hidden.PATHS in asked:
-        points = {mount.point for line in drives for mount in line.place.lives_here}
         found += [
             Name(kind=Hidden.PATHS, text=point, alias=f"path-{place}")
             for place, point in enumerate(sorted(points), 1)
@@ -75,8 +78,10 @@ def _serials(drives: Iterable[DriveLine]) -> Iterator[Name]:
         yield Name(kind=Hidden.SERIAL, text=serial, alias=alias)
 
 
-def _people(host: Host) -> Iterator[Name]:
+def _people(host: Host, points: Iterable[str]) -> Iterator[Name]:
     yield Name(kind=Hidden.HOST, text=host.name, alias="host-1")
     yield Name(kind=Hidden.HOST, text=host.name.partition(".")[0], alias="host-1")
-    for place, user in enumerate(host.users, 1):
+    # People whom this machine's list of users does not know may still have their names in paths.
+    homes = {found[1] for point in points if (found := _OF_A_USER.match(point)) is not None}
+    for place, user in enumerate((*host.users, *sorted(homes - set(host.users))), 1):
         yield Name(kind=Hidden.HOST, text=user, alias=f"user-{place}")

@@ -36,6 +36,13 @@ def test_the_host_is_hidden_with_its_short_name_and_all_users():
     }
 
 
+def test_a_person_with_a_home_of_their_own_is_hidden_though_no_list_of_users_names_them():
+    mounts = (Mount(point="/home/bramble"), Mount(point="/run/media/marigold/stick"), Mount(point="/home"))
+    line = replace(LINE, place=replace(LINE.place, lives_here=mounts))
+    told = {one.text: one.alias for one in names((Hidden.HOST,), (line,), HOST)}
+    assert (told["marigold"], told["bramble"]) == ("user-1", "user-2")
+
+
 def test_every_mount_point_is_hidden_but_the_root_that_all_machines_have():
     assert _told(Hidden.PATHS) == {("/srv/photos", "path-2")}
 
