@@ -1,7 +1,7 @@
 """The JSON answers of the commands: names and shapes that scripts rely on; only ever added to."""
 
 from collections.abc import Mapping, Sequence
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from diskwatch.judge.stakes import margin_of, no_odds_of, odds_of, replace_by_of
 from diskwatch.records import (
@@ -27,10 +27,16 @@ def _at(at: int | None) -> str | None:
     return None if at is None else rfc3339(at)
 
 
-def bays_answer(bays: Bays) -> dict[str, object]:
-    """What ``bays --json`` prints."""
+def bays_answer(bays: Bays, *, machine: str) -> dict[str, Any]:
+    """What ``bays --json`` prints.
+
+    Args:
+        bays: all drives.
+        machine: what this machine is called, so that saved answers of several can be told apart.
+    """
     return {
         "schema": "diskwatch/bays/1",
+        "machine": machine,
         "at": rfc3339(bays.at),
         "watched": bays.watcher is not None,
         "trouble": list(bays.trouble),

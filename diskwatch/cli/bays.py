@@ -1,12 +1,15 @@
 """The drives, where they are, what to do with each, and why; worst call first."""
 
 import argparse
+import platform
 import shutil
 import sys
 import textwrap
+from pathlib import Path
 
 from diskwatch.cli.answers import bays_answer
 from diskwatch.cli.common import now, print_json, settings, state_folder
+from diskwatch.cli.endangered import Warner
 from diskwatch.cli.said import said
 from diskwatch.errors import NothingToWorkOn
 from diskwatch.history.reader import Past
@@ -25,29 +28,65 @@ def options(parser: argparse.ArgumentParser) -> None:
         action="store_true",
         help="exit with 10, 11, 12 or 13 for the worst call: keep, look, copy, retire",
     )
+    parser.add_argument(
+        "--join",
+        metavar="FILE",
+        nargs="+",
+        default=[],
+        help="add the drives of other machines, from what 'diskwatch bays --json' printed there",
+    )
 
 
 def run(args: argparse.Namespace) -> int:
-    """Show the bays; 0, with --code 10 to 13, 3 where no drive was read yet."""
+    """Show the bays; 0, with --code 10 to 13, 2 where a file is wrong, 3 where no drive was read yet."""
     if args.settings is not None:
         settings(args)
-    bays = _bays(args)
+    if args.join:
+        return _run_joined(args)
+    bays = _bays(args, empty=args.json)
     if args.json:
-        print_json(bays_answer(bays))
+        print_json(bays_answer(bays, machine=platform.node()))
     else:
-        sys.stdout.write(listed(bays, shutil.get_terminal_size((80, 24)).columns))
+        sys.stdout.write(listed(bays, _columns()))
     if not bays.drives:
-        raise NothingToWorkOn("no drive has been read yet", hint="start 'diskwatch watch'")
+        raise _nothing()
     return _CODES + worst(bays) if args.code else 0
 
 
-def _bays(args: argparse.Namespace) -> Bays:
+def _run_joined(args: argparse.Namespace) -> int:
+    from diskwatch.cli import joined  # noqa: PLC0415 - a list of this machine alone is to come at once
+
+    others = [joined.saved(Path(name)) for name in args.join]
+    bays = _bays(args, empty=True)
+    own = bays_answer(bays, machine=platform.node())
+    every = [joined.here(own, bays.at), *others]
+    if args.json:
+        print_json(joined.joined_answer(own, every, bays.at))
+    else:
+        told = [plain(f"Trouble: {one}") for one in bays.trouble]
+        sys.stdout.write("\n".join([*joined.joined_lines(every, bays.at, _columns()), *told]) + "\n")
+    found = joined.worst_first(every)
+    if not found:
+        raise _nothing()
+    return _CODES + joined.rank(found[0][1]) if args.code else 0
+
+
+def _nothing() -> NothingToWorkOn:
+    return NothingToWorkOn("no drive has been read yet", hint="start 'diskwatch watch'")
+
+
+def _columns() -> int:
+    return shutil.get_terminal_size((80, 24)).columns
+
+
+def _bays(args: argparse.Namespace, *, empty: bool) -> Bays:
+    """All drives of this machine; where nothing has been recorded yet, none, if that is an answer."""
     folder = state_folder(args)
     try:
         with Past.open(folder) as past:
-            return past.bays(now())
+            return Warner(folder)(past.bays(now()))
     except NothingToWorkOn:
-        if args.json:
+        if empty:
             return Bays(at=now(), watcher=None, drives=())
         raise
 

@@ -18,6 +18,7 @@ from pathlib import Path
 
 from diskwatch.cli import bays as bays_command
 from diskwatch.cli.common import now, settings, state_folder, talk
+from diskwatch.cli.endangered import Warner
 from diskwatch.errors import HistoryError, NothingToWorkOn
 from diskwatch.history.lock import watcher
 from diskwatch.history.opening import refuse_foreign
@@ -84,6 +85,7 @@ class _Source:
         self._starting = starting
         self._begun = time.monotonic()
         self._past: Past | None = None
+        self._warn = Warner(folder)
 
     def __call__(self, at: int) -> Bays:
         bays = self._now(at)
@@ -99,7 +101,7 @@ class _Source:
             except NothingToWorkOn:
                 # Nothing has been stored yet, which is no error while somebody is about to.
                 return Bays(at=at, watcher=watcher(self._folder), drives=())
-        return self._past.bays(at)
+        return self._warn(self._past.bays(at))
 
 
 @contextlib.contextmanager
