@@ -43,7 +43,7 @@ def run(args: argparse.Namespace) -> int:
     folder = state_folder(args)
     if not sys.stdout.isatty() or not sys.stdin.isatty() or os.environ.get("TERM", "dumb") == "dumb":
         talk("diskwatch: this is no full-screen terminal; 'diskwatch bays' shows the same as text")
-        args.json = args.code = False
+        args.json, args.code, args.join = False, False, []
         return bays_command.run(args)
     threading.Thread(target=_end_with_terminal, name="terminal", daemon=True).start()
     # Textual takes a quarter of a second to load: the child reads the drives meanwhile.
