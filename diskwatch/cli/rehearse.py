@@ -90,7 +90,7 @@ def run(args: argparse.Namespace) -> int:
     if not args.headless and not args.json:
         talk("The moving dashboard for rehearsals is not there yet; this one runs without it.")
     with _folder(args.state) as folder:
-        trouble = _rehearse(course, folder, args.speed)
+        trouble = live_through(course, folder, args.speed)
         ended = course.ended()
     if args.json:
         print_json(answer(ended))
@@ -118,8 +118,17 @@ def _folder(named: str | None) -> Iterator[Path]:
         yield Path(folder)
 
 
-def _rehearse(course: Course, folder: Path, speed: float | None) -> str | None:
-    """Join the invented machine with the rounds, the traffic and the history of the real watch."""
+def live_through(course: Course, folder: Path, speed: float | None) -> str | None:
+    """Join the invented machine with the rounds, the traffic and the history of the real watch.
+
+    Args:
+        course: what is lived through.
+        folder: where the history lies.
+        speed: days a second; None for no limit.
+
+    Returns:
+        Why the history could not be kept; None where it was.
+    """
     keeper = Keeper(folder)
     rounds = Rounds(course.machine, keeper, course.clock.now, asking=InTurn)
     traffic = Traffic(course.machine, course.clock.now, course.clock.steady)

@@ -1,49 +1,25 @@
-"""Scenarios lived through by the real rounds and the real analyser; only the history is left out, for speed."""
+"""Scenarios lived through by the real rounds, traffic, analyser and history, as the command joins them."""
+
+import os
+import tempfile
+from pathlib import Path
 
 import pytest
 
-from diskwatch.records import Drive, KnownDrive, Place, Round
+from diskwatch.cli.rehearse import live_through
 from diskwatch.rehearsal import scenarios
 from diskwatch.rehearsal.course import Course, Ended
 from diskwatch.rehearsal.verdict import Verdict
-from diskwatch.service.asking import InTurn
-from diskwatch.service.rounds import Rounds
 
 LONG = {"two-quiet-years"}
 """Lived through by the benchmark."""
 
 
-class Memory:
-    """Knows drives as a keeper does and keeps nothing else."""
-
-    epoch = 0
-
-    def __init__(self) -> None:
-        self._known: dict[int, KnownDrive] = {}
-
-    @property
-    def known(self) -> tuple[KnownDrive, ...]:
-        return tuple(self._known.values())
-
-    def state(self, _number: int) -> None:
-        return None
-
-    def admit(self, drive: Drive, place: Place, at: int) -> KnownDrive:
-        known = KnownDrive(number=len(self._known) + 1, drive=drive, place=place, first_seen=at)
-        self._known[known.number] = known
-        return known
-
-    def record(self, finished: Round) -> None:
-        for one in finished.drives:
-            self._known[one.known.number] = one.known
-
-
 def lived(name: str, **more: int) -> Ended:
     course = Course(scenarios.load(name), **more)
-    keeper = Memory()
-    rounds = Rounds(course.machine, keeper, course.clock.now, asking=InTurn)  # type: ignore[arg-type] # see Memory
-    for _ in course.run(rounds.run, lambda: None):
-        pass
+    memory = "/dev/shm" if os.access("/dev/shm", os.W_OK) else None  # noqa: S108 - a folder of its own is made in it
+    with tempfile.TemporaryDirectory(dir=memory) as folder:
+        assert live_through(course, Path(folder), None) is None
     return course.ended()
 
 
