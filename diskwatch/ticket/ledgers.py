@@ -107,17 +107,28 @@ class _Ways:
         return DriveState() if begun is None else self._state(begun) or DriveState()
 
     def _before(self, norm: Norm, finding: Finding) -> Copy | None:
-        """The last copy before the finding last showed: powered days only grow."""
-        low, high = 0, len(self._copies.made)
-        while low < high:
+        """The last copy before the finding last showed.
+
+        Powered days only grow, but for where a ledger began anew: so the search goes back from the present, in
+        ever longer leaps, and halves the last of them.
+        """
+        made, leap = self._copies.made, 1
+        low, high = len(made) - 1, len(made)
+        while low >= 0 and not self._is_before(norm, made[low], finding):
+            low, high, leap = low - leap, low, leap * 2
+        low = max(low, -1)
+        while high - low > 1:
             middle = (low + high) // 2
-            state = self._state(self._copies.made[middle])
-            stream = None if state is None else state.streams.get(norm.stream)
-            if stream is None or stream.powered + stream.exposure < _days(finding):
-                low = middle + 1
+            if self._is_before(norm, made[middle], finding):
+                low = middle
             else:
                 high = middle
-        return self._copies.made[low - 1] if low else None
+        return made[low] if low >= 0 else None
+
+    def _is_before(self, norm: Norm, copy: Copy, finding: Finding) -> bool:
+        state = self._state(copy)
+        stream = None if state is None else state.streams.get(norm.stream)
+        return stream is None or stream.powered + stream.exposure < _days(finding)
 
     def _state(self, when: Copy) -> DriveState | None:
         if when not in self._states:

@@ -4,12 +4,13 @@ from collections.abc import Callable, Iterable, Mapping
 from contextlib import contextmanager
 from dataclasses import replace
 from pathlib import Path
+from types import MappingProxyType
 from typing import Any
 
 from diskwatch import analyser
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
-from diskwatch.records import Drive, DriveRound, Entry, KnownDrive, Pass, Place, Round
+from diskwatch.records import Drive, DriveRound, Entry, KnownDrive, Pass, Place, Round, Settled
 from diskwatch.ticket.document import About, ticket
 from diskwatch.ticket.who import Host
 from tests.samples import DAY, HDD, HERE, NOON, read
@@ -34,10 +35,13 @@ def live(
     known: KnownDrive | None = None,
     drive: Drive = HDD,
     place: Place = HERE,
+    words: Mapping[int, Settled] = MappingProxyType({}),
 ) -> KnownDrive:
-    """Take passes in as the watch does, each a round of its own."""
+    """Take passes in as the watch does, each a round of its own; before some of them the owner speaks."""
     state = analyser.start()
-    for pass_ in passes:
+    for number, pass_ in enumerate(passes):
+        if number in words:
+            state = analyser.settle(state, words[number]).state
         known = known or history.admit(drive, place, pass_.at)
         step = analyser.advance(state, replace(pass_, drive=drive))
         state = step.state

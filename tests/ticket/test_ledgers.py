@@ -8,6 +8,7 @@ from hypothesis import HealthCheck, given, settings, strategies as st
 from diskwatch import analyser
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
+from diskwatch.records import Settled
 from diskwatch.trends.norms import NORMS, STREAM_OF
 from tests.history.years import upkept
 from tests.samples import DAY, NOON
@@ -57,6 +58,20 @@ def test_a_finding_that_stands_though_its_evidence_fell_long_ago_can_still_be_wo
     (way,) = [one for one in timeouts["ways"] if one["of"] == "drift:timeouts"]
     assert way["steps"]
     assert _close(evidence(timeouts, way), finding["evidence_days"])
+
+
+def test_after_the_owners_word_a_ledger_is_told_from_where_it_began_anew(folder):
+    rising = (3, 20, 40, 60, 90, 100, 110, 120, 130, 140)
+    passes = tuple(days(160, lambda day: {"crc_errors": sum(day >= one for one in rising)}, a_day=1))
+    word = Settled(at=passes[80].at - 60, because="a new cable", signals=("crc-errors",))
+    with opened(folder, passes, words={80: word}) as past:
+        ticket = _read_again(a_ticket(past, NOON + 160 * DAY))
+    link = _by_stream(ticket)["link"]
+    (finding,) = [one for one in ticket["findings"] if one["name"] == "drift:link"]
+    assert link["powered_days"] == 80, "it began anew with the word"
+    (way,) = [one for one in link["ways"] if one["of"] == "drift:link"]
+    assert way["steps"]
+    assert _close(evidence(link, way), finding["evidence_days"])
 
 
 @settings(max_examples=10, deadline=None, suppress_health_check=list(HealthCheck))
