@@ -97,11 +97,13 @@ class Notices(_Section, frozen=True, kw_only=True):
         command: a program and its arguments that gets each notice as JSON on standard input; never a shell.
         quiet: hours in which only a ``retire`` speaks.
         terminal: a program and its arguments that opens a terminal to show the dashboard in.
+        monthly: whether to say once a month that all is quiet and somebody is watching.
     """
 
     command: _Argv = ()
     quiet: QuietHours = QuietHours()
     terminal: _Argv = ()
+    monthly: bool = False
 
 
 class Probe(_Section, frozen=True, kw_only=True):
@@ -139,7 +141,7 @@ class Settings(_Section, frozen=True, kw_only=True):
     selftest: SelfTests = SelfTests()
 
 
-NOT_YET = frozenset({"notices", "probe"})
+NOT_YET = frozenset({"probe"})
 """Tables that are read and checked but that nothing acts on in this version."""
 
 
