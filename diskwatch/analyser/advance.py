@@ -208,7 +208,7 @@ def quiet(state: DriveState, at: int) -> str:
     old = {signal: count for signal in findings.DEFECTS if (count := state.firsts.get(signal, 0)) > 0}
     if state.first_at is None or state.first_at == at:
         return sentences.first_reading(old)
-    since = {**state.firsts, **state.base}
+    since = {**state.firsts, **state.base} if state.base else state.firsts
     risen = {signal: now - since[signal] for signal, now in state.latest.items() if now > since[signal]}
     return sentences.quiet(old, risen, state.word)
 

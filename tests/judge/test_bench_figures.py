@@ -72,8 +72,9 @@ def test_the_program_against_plain_rules_in_the_same_run(lives):
         f"\nthreshold chosen anew on 60 % in {SPLITS} splits, reported on the rest: "
         f"{expected[0]:.1%} found at {expected[1]:.3f} alarms, lead {expected[2]:.1f} d"
     )
-    assert expected[0] >= 0.45
-    assert expected[1] <= 0.11
+    assert expected[0] >= 0.5
+    assert expected[1] <= ALARMS
+    assert expected[2] >= 9
 
 
 def program():
@@ -89,7 +90,7 @@ def program():
 
 def nested(lives):
     """Mean share found, alarms and lead on the parts kept back, the threshold chosen on the others."""
-    limits = [limit / 4 for limit in range(16, 49, 2)]
+    limits = [limit / 4 for limit in range(16, 49)]
     told = {limit: first_warnings(lives, measure_of(limit)) for limit in limits}
     chance = random.Random(1)  # noqa: S311 - splits of a benchmark
     serials = sorted(lives)
@@ -98,7 +99,7 @@ def nested(lives):
         chosen = {serial for serial in serials if chance.random() < 0.6}
         tried = {limit: figures(lives, told[limit], chosen) for limit in limits}
         bearable = [limit for limit in limits if tried[limit].rate <= ALARMS]
-        best = max(bearable, key=lambda limit: (tried[limit].share, limit))
+        best = max(bearable, key=lambda limit: (tried[limit].share, -limit))
         rest = figures(lives, told[best], [serial for serial in serials if serial not in chosen])
         shares.append(rest.share)
         rates.append(rest.rate)
