@@ -19,6 +19,7 @@ from diskwatch.units import plain
 
 _RECORD = 8_192  # the kernel's own bound of one record
 _CHUNK = 262_144
+_MOST_FAILURES = 10_000  # of one look; a log that only fails must not be read for ever
 _LONGEST = 65_536  # of a line in a file; what is longer is no record
 
 
@@ -96,13 +97,16 @@ class KernelLog:
     def _records(self, most: int) -> tuple[Line, ...]:
         found: list[Line] = []
         read, file = os.read, self._file
-        for _ in range(most):
+        failures = 0
+        # Those that were read before do not count: whoever gets none takes it that there are no more.
+        while len(found) < most:
             try:
                 record = read(file, _RECORD)
             except BlockingIOError:
                 break
             except OSError as error:
-                if error.errno not in {errno.EPIPE, errno.EINVAL}:
+                failures += 1
+                if error.errno not in {errno.EPIPE, errno.EINVAL} or failures > _MOST_FAILURES:
                     raise
                 continue  # overwritten in the meantime, or longer than a record can be: the next one follows
             if not record:
@@ -111,10 +115,14 @@ class KernelLog:
         return tuple(found)
 
     def _lines(self) -> tuple[Line, ...]:
-        found: list[Line] = []
         self._from_the_start_if_shorter()
-        text = self._rest + os.read(self._file, _CHUNK)
-        whole, mark, self._rest = text.rpartition(b"\n")
+        found: list[Line] = []
+        while not found and (chunk := os.read(self._file, _CHUNK)):
+            self._take_apart(chunk, found)
+        return tuple(found)
+
+    def _take_apart(self, chunk: bytes, found: list[Line]) -> None:
+        whole, mark, self._rest = (self._rest + chunk).rpartition(b"\n")
         if len(self._rest) > _LONGEST:
             self._rest = b""
         for record in whole.split(b"\n") if mark else ():
@@ -124,7 +132,6 @@ class KernelLog:
             if not self._log:
                 self._began(record.partition(b";")[0].decode("ascii", "replace"))
             self._took(line, found.append)
-        return tuple(found)
 
     def _from_the_start_if_shorter(self) -> None:
         if os.fstat(self._file).st_size < os.lseek(self._file, 0, os.SEEK_CUR):

@@ -170,3 +170,30 @@ def test_the_log_of_this_machine_can_be_followed_where_it_may_be_read():
     log.read()
     assert log.left_off.log
     log.close()
+
+
+def test_any_number_of_records_that_were_read_before_hide_no_new_one(source, ring, tmp_path):
+    ring.records = [record(number) for number in range(10_000)]
+    log = KernelLog(source, LeftOff(log="unknown", sequence=9_990), proc_root=tmp_path)
+    assert [line.sequence for line in log.read()] == list(range(9_991, 10_000))
+    log.close()
+
+
+def test_a_long_file_that_was_read_before_hides_no_new_line(source):
+    text = "".join(record(number, "x" * 60) for number in range(6_000))
+    source.write_text(text)
+    log = KernelLog(source, LeftOff(log="3,0,0,-", sequence=5_998))
+    assert [line.sequence for line in log.read()] == [5_999]
+    log.close()
+
+
+@pytest.mark.usefixtures("ring")
+def test_a_log_that_only_fails_is_given_up(source, monkeypatch):
+    def fail(*_):
+        raise BrokenPipeError(32, "Broken pipe")
+
+    monkeypatch.setattr("diskwatch.machine.kernel_log.os.read", fail)
+    log = KernelLog(source)
+    with pytest.raises(DiskwatchError, match="Broken pipe"):
+        log.read()
+    log.close()
