@@ -1,5 +1,6 @@
 """A drive's past moves in: its rows are taken in, then it is judged anew, within one transaction."""
 
+import json
 import sqlite3
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
@@ -11,7 +12,7 @@ from diskwatch.history.judgement import write_judgement
 from diskwatch.history.moments import Dated
 from diskwatch.history.readings import passes_with_readings
 from diskwatch.history.round import admit
-from diskwatch.records import DriveRound, KnownDrive, Pass
+from diskwatch.records import DriveRound, KnownDrive, Pass, Settled
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -38,12 +39,14 @@ class Case:
         copies: dated states that stood here before, oldest first.
         arrived: what came with the file.
         passes: the drive's passes behind a state (None: all) with their turns and readings, in their order.
+        words: what the owner said was seen to, here or where the file comes from, oldest first.
     """
 
     known: KnownDrive
     copies: tuple[Dated, ...]
     arrived: Arrived
     passes: Callable[[Dated | None], Iterator[tuple[int, Pass]]]
+    words: tuple[Settled, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -85,6 +88,7 @@ def arrive(connection: sqlite3.Connection, part: Part, judge: Judge) -> Arrived:
             copies=copies,
             arrived=arrived,
             passes=lambda after: passes_with_readings(connection, known.number, after),
+            words=tuple(_words(connection, known.number)),
         )
     )
     if judged is not None:
@@ -114,3 +118,16 @@ def dated_states(connection: sqlite3.Connection, drive: int) -> tuple[Dated, ...
         (drive,),
     ).fetchall()
     return tuple(Dated(turn=turn, at=at, state=packing.unpacked(packed)) for turn, at, packed in found)
+
+
+def _words(connection: sqlite3.Connection, drive: int) -> Iterator[Settled]:
+    """The owner's words from the day book; that another drive took its place changes no judgement."""
+    found = connection.execute(
+        "SELECT at, data FROM day_book WHERE drive = ? AND kind = 'settled' ORDER BY at, number", (drive,)
+    ).fetchall()
+    for at, kept in found:
+        data = json.loads(kept)
+        because, signals = data.get("because"), data.get("signals", [])
+        told = isinstance(because, str) and isinstance(signals, list)
+        if told and data.get("replaced_by") is None and all(isinstance(one, str) for one in signals):
+            yield Settled(at=at, because=because, signals=tuple(signals))

@@ -1,5 +1,6 @@
 """Pasts of drives that come from another machine: recognised, taken in, judged anew by the same analyser."""
 
+from collections import deque
 from collections.abc import Sequence
 from contextlib import suppress
 from dataclasses import dataclass, replace
@@ -13,7 +14,7 @@ from diskwatch.history.moments import Dated
 from diskwatch.history.moving import Case, Judged, Part
 from diskwatch.history.writer import History
 from diskwatch.machine import identity
-from diskwatch.records import DriveRound, Entry, Outcome, Pass
+from diskwatch.records import DriveRound, Entry, Outcome, Pass, Settled
 from diskwatch.units import plain, say_count
 
 
@@ -112,13 +113,16 @@ def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged
     copies: list[Dated] = []
     outcome = state.outcome
     turn, last = (0, None) if since is None else (since.turn, since.at)
+    words = deque(case.words)
     for now, told in case.passes(since):
+        state = _settled(state, words, told.at)
         if last is not None and last // WEEK != told.at // WEEK:
             copies.append(Dated(turn=turn, at=last, state=analyser.dump(state)))
         state = analyser.advance(state, replace(told, drive=case.known.drive)).state
         turn, last, outcome = now, told.at, told.outcome
     if last is None:
         return None
+    state = _settled(state, words, None)
     step = analyser.Step(state=state, happened=())
     part = DriveRound(
         known=case.known,
@@ -129,3 +133,13 @@ def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged
         call=step.call,
     )
     return Judged(part=part, since=since, copies=tuple(copies))
+
+
+def _settled(state: analyser.DriveState, words: deque[Settled], until: int | None) -> analyser.DriveState:
+    """The state after the owner's words up to a time (None: all), but for those that it knows already."""
+    while words and (until is None or words[0].at <= until):
+        word = words.popleft()
+        heard = state.word is not None and state.word.at >= word.at
+        if state.last_at is not None and not heard:
+            state = analyser.settle(state, word).state
+    return state

@@ -14,6 +14,7 @@ from diskwatch.history.stating import file_past_days
 from diskwatch.history.writer import History
 from diskwatch.records import Drive, DriveRound, Failing, Outcome, Place, Round
 from diskwatch.service.arrival import take_in
+from diskwatch.service.owner import settle
 from tests.samples import DAY, HDD, HERE, NOON, SSD, attribute, missed, read as read_pass
 
 ELSEWHERE = Place(device="/dev/sdq", bay="pci-9")
@@ -333,3 +334,20 @@ def test_what_the_owner_said_travels_and_the_word_said_last_stands(tmp_path):
             ("backed-up", "", NOON + 9),
             ("label", "attic", NOON),
         ]
+
+
+@pytest.mark.parametrize("left_out", [set(), {"state", "copy"}])
+def test_what_the_owner_said_was_seen_to_is_heard_again_wherever_the_past_is_judged_anew(tmp_path, left_out):
+    here, there = tmp_path / "here", tmp_path / "there"
+    passes = list(a_life(30))
+    said = passes[60].at + 1
+    with kept(here) as history:
+        live(history, passes[:61])
+        settle(history, {"drive": 1, "because": "it was seen to", "replaced_by": None}, said)
+        state = live(history, passes[61:])
+    assert analyser.load(state).word is not None
+    whole = json.loads(exported(here))
+    whole["rows"] = [row for row in whole["rows"] if row["record"] not in left_out]
+    taken(there, json.dumps(whole))
+    with Past.open(there) as past:
+        assert past.state(1) == state
