@@ -68,7 +68,11 @@ _TOLD_BY_ITSELF = (
 )
 """Findings that name their cause themselves, so that no table is asked."""
 
-_BEYOND_NORM = frozenset({"fact:unreadable", "fact:link-again"})
+_SILENT = "fact:unreadable"
+_BUILD = "no cable"
+"""What a drive is built like, which is no trouble."""
+
+_BEYOND_NORM = frozenset({_SILENT, "fact:link-again"})
 """Facts that no drive within its norms shows, so that a sound one is no explanation."""
 
 
@@ -86,7 +90,10 @@ def put(state: DriveState, pass_: Pass, lead: Finding | None, around: Around) ->
     """
     if lead is None or _tells_itself(lead):
         return {}
-    return {sign: showing for sign, showing in shown(state, pass_, around).items() if showing is not None}
+    told = {sign: showing for sign, showing in shown(state, pass_, around).items() if showing is not None}
+    if lead.name == _SILENT and not any(showing for sign, showing in told.items() if sign != _BUILD):
+        return {}
+    return told
 
 
 def _tells_itself(lead: Finding) -> bool:
@@ -139,11 +146,10 @@ def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool |
             told[sign] = True
     if "fact:self-assessment" in state.standing and (reading.number("grown-defects") or 0) > 0:
         told["media counter"] = True
-    gone = any(0 <= day - one < LATELY for one in state.troubles.get(Trouble.GONE.value, ()))
     harmed = any(told.get(sign) for sign in _DEFECTS)
-    told["vanished without media error"] = None if harmed else gone
+    told["vanished without media error"] = None if harmed else _comes_and_goes(state, day)
     if pass_.drive is not None and pass_.drive.kind is Kind.NVME:
-        told["no cable"] = True
+        told[_BUILD] = True
     return told
 
 
@@ -160,6 +166,15 @@ def _shows(state: DriveState, day: int, sign: str) -> bool | None:
         for signal in signals
         if signal in state.risen
     )
+
+
+def _comes_and_goes(state: DriveState, day: int) -> bool | None:
+    """Whether a drive was gone lately and came back; a silence that still lasts may as well be its end."""
+    gone = [one for one in state.troubles.get(Trouble.GONE.value, ()) if 0 <= day - one < LATELY]
+    silent = state.standing.get(_SILENT)
+    if silent is None:
+        return bool(gone)
+    return True if any(one < day_number(silent.since) for one in gone) else None
 
 
 def _slowness(state: DriveState, day: int) -> Mapping[str, bool | None]:

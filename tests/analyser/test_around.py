@@ -79,19 +79,31 @@ def test_trouble_that_stays_with_the_bay_after_another_drive_moved_in_points_to_
     assert states[0].bays.keys() == {"one"}
 
 
-def test_an_nvme_drive_that_comes_and_goes_points_to_its_controller():
-    def comes_and_goes(day):
+def absences(*days):
+    """An NVMe drive that is not there on some days."""
+
+    def one(day):
         at = NOON + day * DAY
         return (
             missed(at, Outcome.ABSENT, NVME)
-            if 10 <= day < 14
+            if day in days
             else read(at, NVME, media_errors=0, unsafe_power_offs=3)
         )
 
-    step = together(13, comes_and_goes)[0]
+    return one
+
+
+def test_an_nvme_drive_that_comes_and_goes_points_to_its_controller():
+    step = together(24, absences(10, 11, 12, 21, 22, 23))[0]
     assert step.call.rule == "fact:unreadable"
     assert step.call.cause is Cause.CONTROLLER
     assert step.call.cause_second is not None
+
+
+def test_a_drive_that_falls_silent_for_good_is_blamed_on_nothing():
+    step = together(24, absences(*range(20, 99)))[0]
+    assert (step.call.word, step.call.rule) == (CallWord.LOOK, "fact:unreadable")
+    assert (step.call.cause, step.call.cause_probability) == (Cause.UNCLEAR, None)
 
 
 def test_a_state_with_all_that_stands_around_survives_a_restart():
