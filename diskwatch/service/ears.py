@@ -154,8 +154,11 @@ class Ears:
         """Take in all that the log holds now."""
         if self._log is None or not self._blocks():
             return
-        while self._hear():
-            pass
+        try:
+            while self._hear():
+                pass
+        except DiskwatchError as error:
+            self.trouble = str(error)
         # No line of a file is still to come, as far as one can know.
         self._take(settle(self._gathered, self._clock() if self._log.live else float("inf")))
         self._keep()

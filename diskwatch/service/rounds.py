@@ -115,8 +115,11 @@ class Rounds:
         survey = self._machine.survey()
         entries = self._new_troubles(survey.troubles)
         self._forget_if_void()
+        left_out = self.left_out
         asked, taken = self._planned(survey.found, everyone=everyone or only is not None)
         if only is not None:
+            # Why the others were left out of the last whole round still holds.
+            self.left_out = {number: why for number, why in left_out.items() if number not in only}
             numbers = {id(found): self._here.get(self._instance(found)) for found in asked}
             # Drives that nobody knows yet wait for a whole round, and those that are left out are not gone.
             taken |= {number for number in numbers.values() if number is not None and number not in only}

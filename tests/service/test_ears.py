@@ -3,6 +3,7 @@ import time
 
 import pytest
 
+from diskwatch.errors import DiskwatchError
 from diskwatch.history.reader import Past
 from diskwatch.machine.partitions import Piece
 from diskwatch.machine.senses import RealSenses
@@ -225,4 +226,22 @@ def test_a_fault_of_our_own_ends_in_a_trouble_and_not_in_silence(tmp_path, monke
     here.ears.start()
     here.ears._thread.join(10)
     assert "ZeroDivisionError" in (here.ears.trouble or "")
+    here.end()
+
+
+def test_a_log_that_breaks_off_is_said_and_what_was_heard_is_kept(tmp_path, senses, monkeypatch):
+    here = Listening(tmp_path, senses)
+    senses.say(READ.format("sda", 8))
+    log = senses.opened[-1]
+    first = log.read
+
+    def breaks(most=4_096):
+        if found := first(most):
+            return found
+        raise DiskwatchError("the kernel's log cannot be read: Input/output error")
+
+    monkeypatch.setattr(log, "read", breaks)
+    here.ears.once()
+    assert "Input/output error" in here.ears.trouble
+    assert here.counts(1)["kernel-io-errors"] == 1
     here.end()
