@@ -71,6 +71,7 @@ def move(folder: Path, to: Path, at: int) -> Moved:
     """
     source, there = folder / HISTORY, _place(folder, to)
     open_to_read(source).close()
+    _refuse_read_only(folder)
     refuse_foreign(source)
     lock = WatchLock.take(folder)
     try:
@@ -102,6 +103,16 @@ def _place(folder: Path, to: Path) -> Path:
     if there.exists() and not there.is_dir():
         raise UsageError(f"{plain(str(there))} is no folder", hint="name a folder on another drive")
     return there
+
+
+def _refuse_read_only(folder: Path) -> None:
+    """A drive in trouble is often mounted so; then no pointer can be left, and no writer kept out."""
+    if os.statvfs(folder).f_flag & os.ST_RDONLY:
+        raise HistoryError(
+            f"{plain(str(folder))} is mounted read-only, so nothing that leads elsewhere can be left there",
+            hint=f"end the watch, copy {HISTORY} (and {HISTORY}-wal, where there is one) to the new folder, and "
+            "name that with --state from then on",
+        )
 
 
 def _make(there: Path) -> None:
@@ -219,9 +230,12 @@ def _put_aside(source: Path, aside: Path) -> None:
     """The switch: as long as the old file has its name, no pointer is followed."""
     log = source.with_name(f"{source.name}-wal")
     source.rename(aside)
-    # A reader that was open now may have kept the log; it belongs to the old file.
+    # A reader that was open now may have kept the log; what stands in one belongs to the old file.
     with suppress(OSError):
-        log.rename(aside.with_name(f"{aside.name}-wal"))
+        if log.stat().st_size:
+            log.rename(aside.with_name(f"{aside.name}-wal"))
+        else:
+            log.unlink()
     with suppress(OSError):
         source.with_name(f"{source.name}-shm").unlink()
     descriptor = os.open(source.parent, os.O_RDONLY | os.O_CLOEXEC)

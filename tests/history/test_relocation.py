@@ -43,6 +43,21 @@ def test_every_row_is_at_the_new_place_and_the_old_file_is_kept_whole(full, tmp_
     assert "each held against the old one" in moved.sentence()
 
 
+def test_nothing_but_the_old_file_and_the_pointer_is_left_behind(full, tmp_path):
+    moved = move(full, tmp_path / "new", NOON)
+    left = {path.name for path in full.iterdir()}
+    assert left == {moved.aside.name, POINTER, places.WATCH_LOCK, places.WRITE_LOCK}
+
+
+def test_from_a_drive_that_is_mounted_read_only_it_says_what_can_still_be_done(full, tmp_path, monkeypatch):
+    real = os.statvfs(full)
+    told = os.statvfs_result([*real[:8], real.f_flag | os.ST_RDONLY, real.f_namemax])
+    monkeypatch.setattr(os, "statvfs", lambda _: told)
+    with pytest.raises(HistoryError, match=r"mounted read-only, .* with --state"):
+        move(full, tmp_path / "new", NOON)
+    assert (full / HISTORY).exists()
+
+
 def test_whoever_names_the_old_place_is_led_to_the_new_one(full, tmp_path):
     new = move(full, tmp_path / "new", NOON).to
     assert places.state_folder(str(full)) == new
