@@ -110,8 +110,8 @@ def _refuse_read_only(folder: Path) -> None:
     if os.statvfs(folder).f_flag & os.ST_RDONLY:
         raise HistoryError(
             f"{plain(str(folder))} is mounted read-only, so nothing that leads elsewhere can be left there",
-            hint=f"end the watch, copy {HISTORY} (and {HISTORY}-wal, where there is one) to the new folder, and "
-            "name that with --state from then on",
+            hint=f"end the watch, copy {HISTORY} (and {HISTORY}-wal, where there is one) to the new folder, "
+            "and name that with --state from then on",
         )
 
 
