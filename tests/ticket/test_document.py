@@ -152,7 +152,7 @@ def test_whatever_stands_in_a_history_the_ticket_is_valid(  # noqa: PLR0917  # a
 
 
 def test_hostile_words_of_a_drive_stay_inert(folder):
-    junk = HOSTILE * 3_000
+    junk = HOSTILE * 1_600
     drive = replace(HDD, identity=replace(HDD.identity, model=HOSTILE, serial=junk), firmware=HOSTILE)
     test = SelfTest(name=HOSTILE, result=junk, extended=True, passed=False)
     passes = [
@@ -160,7 +160,7 @@ def test_hostile_words_of_a_drive_stay_inert(folder):
             read(NOON, pending_sectors=1), reading=reading(pending_sectors=1, self_tests=(test,)), answer=junk
         )
     ]
-    noted = [Entry(at=NOON, drive=1, kind="rise", text=junk, data={HOSTILE: junk}) for _ in range(400)]
+    noted = [Entry(at=NOON, drive=1, kind="rise", text=junk, data={HOSTILE: junk}) for _ in range(150)]
     with opened(folder, passes, drive=drive, entries=noted) as past:
         told = sound(a_ticket(past, NOON))
     assert told["thinned"] is not None

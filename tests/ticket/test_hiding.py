@@ -4,8 +4,12 @@ from dataclasses import replace
 import pytest
 from hypothesis import HealthCheck, example, given, settings, strategies as st
 
+from diskwatch.history.reader import Past
+from diskwatch.history.writer import History
+from diskwatch.records import Entry, Identity, Mount, Place
 from diskwatch.ticket import canonical
 from diskwatch.ticket.checking import faults
+from diskwatch.ticket.document import About, ticket
 from diskwatch.ticket.hiding import Hiding
 from diskwatch.ticket.names import Hidden, Name
 from diskwatch.ticket.page import page
@@ -13,11 +17,6 @@ from diskwatch.ticket.schema import Shape, schema
 from diskwatch.ticket.writing import text_of
 from tests.samples import DAY, HDD, HERE, NOON, read
 from tests.ticket.lives import HOST, live, opened
-
-from diskwatch.history.writer import History  # isort: skip
-from diskwatch.history.reader import Past  # isort: skip
-from diskwatch.records import Entry, Identity, Mount, Place  # isort: skip
-from diskwatch.ticket.document import About, ticket  # isort: skip
 
 ALL = tuple(Hidden)
 
