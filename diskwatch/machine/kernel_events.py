@@ -337,7 +337,7 @@ def _ended(trouble: Trouble, settled: float) -> Event | None:
 
 def _once(kept: Gathered, drive: str, event: Event, *, place: str) -> Found:
     """The event, unless it was told of the same place a moment ago."""
-    key = f"{drive} {event.kind.value} {event.subject} {place}"
+    key = f"{drive} {event.kind} {event.subject} {place}"
     before = kept.places.pop(key, None)
     kept.places[key] = event.seconds
     if len(kept.places) > _MOST_PLACES:

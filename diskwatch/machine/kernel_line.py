@@ -1,15 +1,14 @@
 """One record of ``/dev/kmsg``, taken apart (Linux, Documentation/ABI/testing/dev-kmsg). Pure."""
 
-from dataclasses import dataclass
+import re
+from typing import NamedTuple
 
-_KERNEL = (
-    8  # syslog priorities below this are the kernel's own; whoever else writes there gets another facility
-)
+_RECORD = re.compile(rb"(\d{1,9}),(\d{1,19}),(\d{1,19}),[^;]*;([^\n]*)")
+_KERNEL = 8  # priorities below this are the kernel's own; whoever else writes there gets another facility
 
 
-@dataclass(frozen=True, slots=True)
-class Line:
-    """One line of the kernel's log.
+class Line(NamedTuple):
+    """One line of the kernel's log; a tuple, since a flood makes a hundred thousand of them.
 
     Attributes:
         sequence: its number since the machine booted.
@@ -29,15 +28,9 @@ def line_of(record: bytes) -> Line | None:
         None for what is no such record; a line that a program wrote there comes with an empty text, since
         anybody's words must not pass for the kernel's.
     """
-    head, mark, rest = record.partition(b";")
-    fields = head.split(b",", 3)
-    if not mark or len(fields) < 3:
+    found = _RECORD.match(record)
+    if found is None:
         return None
-    try:
-        priority, sequence, micros = int(fields[0]), int(fields[1]), int(fields[2])
-    except ValueError:
-        return None
-    if min(priority, sequence, micros) < 0:
-        return None
-    text = rest.partition(b"\n")[0].decode("utf-8", "replace") if priority < _KERNEL else ""
-    return Line(sequence, micros / 1e6, text)
+    priority, sequence, micros, text = found.groups()
+    said = text.decode("utf-8", "replace") if int(priority) < _KERNEL else ""
+    return Line(int(sequence), int(micros) / 1e6, said)

@@ -11,6 +11,7 @@ costs next to nothing.
 import re
 from dataclasses import dataclass
 from enum import IntEnum, auto
+from typing import NamedTuple
 
 
 class Says(IntEnum):
@@ -382,8 +383,7 @@ _BY_START = _by_start()
 _SPACE = tuple(text for text in TEXTS if text.starts == (" ",))
 
 
-@dataclass(frozen=True, slots=True)
-class Told:
+class Told(NamedTuple):
     """What a line said.
 
     Attributes:
