@@ -34,6 +34,8 @@ COMMANDS = {
     "settle": "say what was done about a drive: the cable was changed, the drive replaced",
     "point": "which drive is it: label, serial, port, and a blinking light",
     "move-history": "move the history to another folder, off a drive in trouble",
+    "notify": "tell you on your desktop, and through a program of yours, when a drive's call changes",
+    "greet": "one line for a login shell: what the drives ask for",
     "later": "put the notices of one drive off, for you alone",
     "export-history": "the past of drives, to a file that can travel",
     "import-history": "take in the past of drives from such a file",

@@ -11,11 +11,10 @@ from datetime import datetime
 from diskwatch import places
 from diskwatch.cli.common import drive_option, now, settings, state_folder
 from diskwatch.errors import UsageError
-from diskwatch.history.later import PutOff, put_off
+from diskwatch.history.later import DAYS, PutOff, put_off
 from diskwatch.history.reader import Past
 from diskwatch.units import DAY, plain
 
-DAYS = 7
 MOST_DAYS = 90
 """A drive in trouble is not to be put off for ever."""
 

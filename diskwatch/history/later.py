@@ -23,6 +23,9 @@ from diskwatch.units import epoch_of, plain, rfc3339
 
 FILE = "later.json"
 SCHEMA = "diskwatch/later/1"
+DAYS = 7
+"""For how many days notices are put off where nobody says."""
+
 _LARGEST = 1 << 20
 
 
@@ -103,7 +106,7 @@ def put_off(folder: Path, identity: Identity, put: PutOff, now: int) -> None:
     )
     try:
         folder.mkdir(mode=0o700, parents=True, exist_ok=True)
-        _replace(path, text + "\n")
+        replace_whole(path, text + "\n")
     except OSError as error:
         raise DiskwatchError(
             f"{plain(str(path))} cannot be written: {error.strerror}", hint="see to that folder first"
@@ -120,8 +123,12 @@ def _drives(path: Path) -> Mapping[str, Any]:
     return drives if isinstance(drives, dict) else {}
 
 
-def _replace(path: Path, text: str) -> None:
-    """Whole or not at all, also where the power goes away in between."""
+def replace_whole(path: Path, text: str) -> None:
+    """Put a file of this user's in place: whole or not at all, also where the power goes away in between.
+
+    Raises:
+        OSError: it cannot be written; the one that was there before stays.
+    """
     making = path.with_name(f".{path.name}.{os.getpid()}")
     try:
         descriptor = os.open(making, os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_NOFOLLOW | os.O_CLOEXEC, 0o600)
