@@ -59,7 +59,6 @@ _SLOWER: Mapping[str, str] = {"reads slower": "read-latency", "writes slower": "
 _WORN = 90
 _TOLD_BY_ITSELF = (
     "fact:hot",
-    "fact:warns-of-heat",
     "fact:spare",
     "fact:worn",
     "fact:worn-out",
@@ -67,6 +66,9 @@ _TOLD_BY_ITSELF = (
     "drift:temperature",
 )
 """Findings that name their cause themselves, so that no table is asked."""
+
+_WARNS = "fact:warns-of-"
+"""How facts begin that a drive warns of; most of them name their cause as well."""
 
 _SILENT = "fact:unreadable"
 _BUILD = "no cable"
@@ -97,8 +99,11 @@ def put(state: DriveState, pass_: Pass, lead: Finding | None, around: Around) ->
 
 
 def _tells_itself(lead: Finding) -> bool:
-    return lead.name in _TOLD_BY_ITSELF or (
-        lead.kind is FindingKind.FACT and bool(lead.data.get("critical_warning"))
+    warns = lead.name.startswith(_WARNS) and lead.cause is not Cause.UNCLEAR
+    return (
+        warns
+        or lead.name in _TOLD_BY_ITSELF
+        or (lead.kind is FindingKind.FACT and bool(lead.data.get("critical_warning")))
     )
 
 

@@ -7,7 +7,16 @@ from collections.abc import Iterator
 
 from diskwatch.judge import sentences
 from diskwatch.judge.language import _, marked
-from diskwatch.records import Attribute, CallWord, Cause, Failing, Finding, FindingKind, Reading
+from diskwatch.records import (
+    Attribute,
+    CallWord,
+    Cause,
+    DriveWarning,
+    Failing,
+    Finding,
+    FindingKind,
+    Reading,
+)
 from diskwatch.trends.norms import STREAM_OF
 
 WARNINGS = (
@@ -19,6 +28,20 @@ WARNINGS = (
     (32, marked("persistent memory that can only be read"), Cause.WEAR_OUT),
 )
 """Bits of the critical warning: NVM Express, SMART / Health log 02h, byte 0 (names ours)."""
+
+_BLAMED: dict[str, Cause] = {
+    DriveWarning.ENCLOSURE: Cause.POWER,
+    DriveWarning.SELF_TEST: Cause.UNCLEAR,
+    DriveWarning.SCAN: Cause.MEDIA,
+    DriveWarning.CACHE: Cause.CONTROLLER,
+    DriveWarning.POWER: Cause.POWER,
+    DriveWarning.STATISTICS: Cause.UNCLEAR,
+    DriveWarning.HUMIDITY: Cause.UNCLEAR,
+    DriveWarning.FIRMWARE: Cause.CONTROLLER,
+    DriveWarning.ELEMENT: Cause.HEAD,
+    DriveWarning.UNNAMED: Cause.UNCLEAR,
+}
+"""What a SCSI drive's warning points to (common practice, no source)."""
 
 _HEAT_ONLY = 2
 _WARMTH = frozenset({190, 194})
@@ -39,6 +62,7 @@ def facts(reading: Reading, *, at: int, first_spare: int | None) -> tuple[Findin
     """
     return (
         *_verdict(reading, at),
+        *_warning(reading, at),
         *_attributes(reading, at),
         *_spare(reading, at),
         *_wear(reading, at, first_spare),
@@ -82,6 +106,22 @@ def _verdict(reading: Reading, at: int) -> Iterator[Finding]:
             sentences.self_assessment_failed(names, _counted(reading)),
             "self-assessment",
             critical_warning=warning,
+        )
+
+
+def _warning(reading: Reading, at: int) -> Iterator[Finding]:
+    """What a SCSI drive warns of instead of a verdict; a prediction that it tries out is no warning."""
+    warning = reading.get("drive-warning")
+    if warning == DriveWarning.TEMPERATURE:
+        yield _fact("warns-of-heat", at, CallWord.LOOK, Cause.HEAT, sentences.warns_of_heat(), "drive-warning")
+    elif isinstance(warning, str) and warning in _BLAMED:
+        yield _fact(
+            f"warns-of-{warning}",
+            at,
+            CallWord.LOOK,
+            _BLAMED[warning],
+            sentences.warns_of(DriveWarning(warning)),
+            "drive-warning",
         )
 
 

@@ -83,6 +83,9 @@ RULES: tuple[Rule, ...] = (
         "fact:hot", _LOOK, marked("it is at or above its own temperature limit, or was within 3 days"), _DRIVE
     ),
     _rule("fact:warns-of-heat", _LOOK, marked("it warns of its temperature, or did within 3 days"), _DRIVE),
+    _rule(
+        "fact:warns-of-", _LOOK, marked("it warns of something, and does not call itself failing"), _DRIVE
+    ),
     _rule("fact:unreadable", _LOOK, marked("three passes in a row brought no reading"), _HOUSE),
     _rule(
         "fact:first-defect",

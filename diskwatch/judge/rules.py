@@ -15,7 +15,17 @@ LINGERING = frozenset({"fact:hot", "fact:warns-of-heat"})
 LINGER = 3 * DAY
 """Seconds that a lingering finding stands on: a drive that is hot every noon is one that is hot."""
 
-PASSING = frozenset({"fact:unreadable", "fact:hot", "fact:warns-of-heat", "fact:array-degraded"})
+PASSING = frozenset(
+    {
+        "fact:unreadable",
+        "fact:hot",
+        "fact:warns-of-heat",
+        "fact:warns-of-enclosure",
+        "fact:warns-of-power-loss",
+        "fact:warns-of-humidity",
+        "fact:array-degraded",
+    }
+)
 """Findings about the present moment end with what they tell of.
 
 All others stand until evidence ends them (`LINK_QUIET`, `PENDING_QUIET`) or the owner speaks.

@@ -8,9 +8,9 @@ sentence says or implies that a drive is safe; a test reads them all. What would
 from collections.abc import Mapping
 
 from diskwatch.judge import names
-from diskwatch.judge.language import _, ngettext
+from diskwatch.judge.language import _, marked, ngettext
 from diskwatch.judge.names import begun, counted, happened
-from diskwatch.records import Attribute, SelfTest, Settled
+from diskwatch.records import Attribute, DriveWarning, SelfTest, Settled
 from diskwatch.trends.norms import Norm
 from diskwatch.units import once_in, plain, rfc3339, say_count, say_days
 
@@ -179,8 +179,41 @@ def hot(celsius: int, limit: int) -> str:
 
 
 def warns_of_heat() -> str:
-    """An NVMe drive's only warning is its temperature."""
+    """A drive's only warning is its temperature."""
     return _("The drive warns that its temperature is outside its own limits: see to its cooling.")
+
+
+_WARNED: Mapping[DriveWarning, str] = {
+    DriveWarning.ENCLOSURE: marked(
+        "The drive warns that its enclosure is degraded: look at the enclosure's power supplies and fans."
+    ),
+    DriveWarning.SELF_TEST: marked(
+        "The drive warns that a test which it ran in the background failed: see its self-test log."
+    ),
+    DriveWarning.SCAN: marked(
+        "The drive warns that its own scan in the background met a defect of the medium: back up what matters "
+        "and see whether more follow."
+    ),
+    DriveWarning.CACHE: marked(
+        "The drive warns that its write cache would not outlast a loss of power: what was just written could "
+        "be lost; see to its power, and have its maker asked."
+    ),
+    DriveWarning.POWER: marked("The drive warns that it expects to lose its power: see to its supply."),
+    DriveWarning.STATISTICS: marked(
+        "The drive warns that one of its statistics has reached a limit that was set in it."
+    ),
+    DriveWarning.HUMIDITY: marked("The drive warns that the humidity is outside its limits: see to the room."),
+    DriveWarning.FIRMWARE: marked("The drive warns that its firmware is not to be trusted: ask its maker."),
+    DriveWarning.ELEMENT: marked(
+        "The drive warns that the state of one of its parts, such as a head, has changed: back up what matters."
+    ),
+    DriveWarning.UNNAMED: marked("The drive warns, and does not say of what that is known here."),
+}
+
+
+def warns_of(warning: DriveWarning) -> str:
+    """What a SCSI drive warns of; not its temperature, and no test."""
+    return _(_WARNED[warning])
 
 
 def unreadable(times: int, explanation: str) -> str:

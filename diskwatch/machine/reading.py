@@ -1,10 +1,11 @@
 """One answer of smartctl understood: the drive, its reading, and whether it has SMART at all."""
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from enum import Enum, auto
 
 from diskwatch.machine import ata, logs, nvme_errors, packing, sct
+from diskwatch.machine.assessment import assessment
 from diskwatch.machine.document import Document, dig, flag_at, in_shape
 from diskwatch.machine.held import Family, device_of
 from diskwatch.machine.selftests import newest_result, self_tests
@@ -45,7 +46,8 @@ class Understood:
     def says_something(self) -> bool:
         """Whether it speaks of a drive's state, which takes more than one number that belongs to nobody."""
         known = [value.signal for value in self.reading.values if value.value is not None]
-        return len(known) > 1 or (bool(known) and self.drive is not None) or "self-assessment" in known
+        spoken = "self-assessment" in known or "drive-warning" in known
+        return len(known) > 1 or (bool(known) and self.drive is not None) or spoken
 
 
 def understood(
@@ -85,8 +87,8 @@ def understood(
         critical = logs.trip_celsius(document, sheet)
     newest = newest_result(tests)
     words = (
-        *_assessment(family, document, sheet),
-        *([_word("self-test", plain(newest), "self-test log")] if newest else []),
+        *assessment(family, document, sheet),
+        *(_newest(newest) if newest else ()),
     )
     return Understood(
         family=family,
@@ -103,6 +105,12 @@ def understood(
     )
 
 
+def _newest(result: str) -> Iterator[Value]:
+    yield Value(
+        signal="self-test", value=plain(result), unit="word", kind=SignalKind.WORD, source="self-test log"
+    )
+
+
 def _genuine(document: Document | None, sheet: Sheet) -> bool:
     signed = any(map(is_of_smartctl, sheet.lines)) or dig(document, "smartctl", "version") is not None
     return signed and (document is None or in_shape(document))
@@ -114,35 +122,6 @@ def _possible(value: Value) -> Value:
         return value
     _, reason = packing.sane(value.value, value.unit)
     return value if reason is None else replace(value, value=None, reason=reason)
-
-
-def _word(signal: str, word: str | None, source: str, reason: str | None = None) -> Value:
-    return Value(signal=signal, value=word, unit="word", kind=SignalKind.WORD, source=source, reason=reason)
-
-
-_FAILED = ("fail", "impending", "threshold exceeded")
-
-
-def _assessment(family: Family, document: Document | None, sheet: Sheet) -> tuple[Value, ...]:
-    """What the drive's own firmware thinks of it.
-
-    Only words that are known to say so make it passed or failed: pySMART calls all but one word failed, also
-    the "UNKNOWN!" that stands for no answer. An NVMe drive has no such verdict: smartctl prints failed wherever
-    a critical warning stands, be it for heat alone. The source tells the two apart.
-    """
-    source = "critical warning" if family is Family.NVME else "SMART status"
-    passed = flag_at(document, "smart_status", "passed")
-    if passed is not None:
-        return (_word("self-assessment", "passed" if passed else "failed", source),)
-    printed = sheet.get("SMART overall-health self-assessment test result", "SMART Health Status")
-    if printed is None:
-        return ()
-    lower = printed.lower()
-    if lower in {"passed", "ok"}:
-        return (_word("self-assessment", "passed", source),)
-    if any(word in lower for word in _FAILED):
-        return (_word("self-assessment", "failed", source),)
-    return (_word("self-assessment", None, source, "the drive gives no answer that is known"),)
 
 
 def _support(document: Document | None, sheet: Sheet) -> Support:

@@ -32,6 +32,7 @@ from diskwatch.records.reading import (
 from diskwatch.records.replayed import Drift, ReplayedDrive, ReplaySummary, summed
 from diskwatch.records.round import DriveRound, KnownDrive, Learnt, Round
 from diskwatch.records.settled import Settled
+from diskwatch.records.warning import DriveWarning
 from diskwatch.records.way import Way
 
 __all__ = [
@@ -50,6 +51,7 @@ __all__ = [
     "Drive",
     "DriveLine",
     "DriveRound",
+    "DriveWarning",
     "Entry",
     "Event",
     "EventKind",

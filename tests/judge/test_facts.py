@@ -1,7 +1,8 @@
 import pytest
 
 from diskwatch.judge.facts import facts
-from diskwatch.records import CallWord, Cause, Failing, SelfTest
+from diskwatch.judge.rulebook import rule_of
+from diskwatch.records import CallWord, Cause, DriveWarning, Failing, SelfTest
 from tests.samples import NOON, attribute, reading
 
 
@@ -38,6 +39,24 @@ def test_an_nvme_drive_that_only_warns_of_its_temperature_is_hot_and_not_failing
     assert list(facts_found) == ["fact:warns-of-heat"]
     assert facts_found["fact:warns-of-heat"].calls is CallWord.LOOK
     assert facts_found["fact:warns-of-heat"].cause is Cause.HEAT
+
+
+def test_a_scsi_drive_that_warns_of_its_temperature_is_hot_and_not_failing():
+    (fact,) = found(drive_warning="temperature", grown_defects=3).values()
+    assert (fact.name, fact.calls, fact.cause) == ("fact:warns-of-heat", CallWord.LOOK, Cause.HEAT)
+
+
+@pytest.mark.parametrize("warning", sorted(set(DriveWarning) - {DriveWarning.TEMPERATURE, DriveWarning.TEST}))
+def test_every_other_warning_of_a_scsi_drive_wants_a_look_in_words_of_its_own(warning):
+    (fact,) = found(drive_warning=warning.value).values()
+    assert (fact.name, fact.calls) == (f"fact:warns-of-{warning}", CallWord.LOOK)
+    assert fact.sentence.startswith("The drive warns")
+    assert rule_of(fact.name).name == "fact:warns-of-"
+
+
+def test_a_prediction_that_a_drive_tries_out_and_a_warning_that_nobody_knows_state_no_fact():
+    assert found(drive_warning="test") == {}
+    assert found(drive_warning="rain") == {}
 
 
 def test_a_pre_failure_attribute_failing_now_retires_with_its_numbers_in_the_sentence():
