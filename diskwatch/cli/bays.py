@@ -13,6 +13,7 @@ from diskwatch.cli.endangered import Warner
 from diskwatch.cli.said import said
 from diskwatch.errors import NothingToWorkOn
 from diskwatch.history.reader import Past
+from diskwatch.judge.stakes import in_time
 from diskwatch.records import Bays, CallWord, DriveLine
 from diskwatch.units import plain, say_bytes, say_span
 
@@ -123,7 +124,7 @@ def _band(line: DriveLine, at: int, width: int) -> list[str]:
     lives = ", ".join(mount.point for mount in line.place.lives_here)
     about = [line.name, size, serial, line.place.device, line.place.bay, f"holds {lives}" if lives else None]
     head = f"{word:<7} {', '.join(part for part in about if part)}"
-    told = [line.call.reason] if line.call else []
+    told = [line.call.reason, *in_time(line, at)] if line.call else []
     last = line.last_pass
     if last is not None:
         ago = say_span(max(0, at - last.at))

@@ -1,9 +1,12 @@
 """What is said of a drive beside its call, out of what the history holds: odds, margin, day of replacement."""
 
+from collections.abc import Iterator
+
 from diskwatch.judge import margin as margins
 from diskwatch.judge.language import _
+from diskwatch.judge.margin_told import margin_told, replace_by_told
 from diskwatch.judge.odds_told import no_odds
-from diskwatch.records import DriveLine, Margin, Odds
+from diskwatch.records import CallWord, DriveLine, Margin, Odds
 from diskwatch.units import day_number
 
 
@@ -63,3 +66,12 @@ def margin_of(line: DriveLine, at: int) -> Margin:
 def replace_by_of(line: DriveLine, at: int) -> int | None:
     """The UTC day number by which a drive called copy is to be replaced; None for every other call."""
     return margins.replace_by(line.call, margin_of(line, at), day=day_number(at))
+
+
+def in_time(line: DriveLine, at: int) -> Iterator[str]:
+    """By when a drive is to be replaced, and its margin where one is known and the call asks for a deed."""
+    by, left = replace_by_of(line, at), margin_of(line, at)
+    if by is not None:
+        yield replace_by_told(by, day_number(at))
+    if left.known and line.call is not None and line.call.word is not CallWord.KEEP:
+        yield margin_told(left, at)

@@ -90,3 +90,11 @@ def test_damaged_data_in_the_history_leads_to_no_odds_and_to_no_error():
     torn = replace(odds, data={"days": "thirty"})
     assert stakes.odds_of(replace(there, findings=(torn,)), NOON + DAY) is None
     assert analyser.start().showed == {}
+
+
+def test_a_list_tells_the_day_of_replacement_and_a_margin_that_is_known():
+    (by,) = stakes.in_time(worse(), NOON + DAY)
+    assert "replace it by 2024-10-19" in by
+    both = list(stakes.in_time(replace(worse(), forecasts=(wear(30, 90),)), NOON + DAY))
+    assert len(both) == 2
+    assert list(stakes.in_time(replace(worse(), call=None), NOON + DAY)) == []
