@@ -1,7 +1,11 @@
-"""Self-test logs: from the document where it holds them, else from pySMART, else from rows of the text."""
+"""Self-test logs: from the document where it holds them, else from rows of the text, else from pySMART.
+
+The library drops or falsifies rows of NVMe drives whose codes are printed in another form than it knows; it is
+taken where it understands more rows than are understood here.
+"""
 
 import re
-from collections.abc import Callable, Iterable, Iterator
+from collections.abc import Iterable, Iterator
 from typing import Any
 
 from diskwatch.machine.document import Document, flag_at, natural_at, rows_at, text_at
@@ -13,7 +17,8 @@ _ATA_ROW = re.compile(
     r"#\s*[0-9]{1,2}\s+(?P<name>\S.*?)\s{2,}(?P<result>\S.*?)\s+[0-9]{1,3}%\s+(?P<hours>[0-9]{1,6})\s+(?P<lba>\S+)"
 )
 _NVME_ROW = re.compile(
-    r"[0-9]{1,2}\s+(?P<name>\S.*?)\s{2,}(?P<result>\S.*?)\s{2,}(?P<hours>[0-9]{1,12})\s+(?P<lba>\S+)(?:\s+\S+){3,4}"
+    r"[0-9]{1,2}\s+(?P<name>\S.*?)\s{2,}(?P<result>\S.*?[a-zA-Z)\]?])\s+(?P<hours>-|[0-9]{1,12})\s+(?P<lba>\S+)"
+    r"(?:\s+(?:-|(?:0x)?[0-9a-fA-F]{1,8})){3,4}"
 )
 _SCSI_ROW = re.compile(
     r"#\s*[0-9]{1,2}\s+(?P<name>\S.*?)\s{2,}(?P<result>\S.*?)\s+(?:-|[0-9]+)\s+(?P<hours>NOW|[0-9]{1,6})\s+(?P<lba>\S+)"
@@ -24,6 +29,7 @@ _ROWS = {Family.ATA: _ATA_ROW, Family.NVME: _NVME_ROW, Family.SCSI: _SCSI_ROW}
 _RUNNING = ("progress", "running")
 _NEITHER = ("abort", "interrupt", *_RUNNING, "incomplete", "unknown error")
 _FAILED = ("fail", "fatal", "damage")
+_FATAL = "fatal"  # ATA has one status for it and for "unknown", with which the test could not go on
 
 
 def self_tests(family: Family, document: Document | None, device: Any, sheet: Sheet) -> tuple[SelfTest, ...]:
@@ -35,16 +41,11 @@ def self_tests(family: Family, document: Document | None, device: Any, sheet: Sh
         device: pySMART's reading, or None.
         sheet: the plain text.
     """
-    readers: tuple[Callable[[], Iterable[SelfTest]], ...] = (
-        lambda: _from_document(document),
-        lambda: _from_library(device),
-        lambda: _from_rows(family, sheet),
-    )
-    for reader in readers:
-        tests = tuple(reader())
-        if tests:
-            return tests
-    return ()
+    stated = tuple(_from_document(document))
+    if stated:
+        return stated
+    rows, library = tuple(_from_rows(family, sheet)), tuple(_from_library(device))
+    return library if len(library) > len(rows) else rows
 
 
 def newest_result(tests: Iterable[SelfTest]) -> str | None:
@@ -75,7 +76,8 @@ def _from_document(document: Document | None) -> Iterator[SelfTest]:
 
 def _from_library(device: Any) -> Iterator[SelfTest]:
     for entry in getattr(device, "tests", None) or ():
-        if entry.type and entry.status and entry.num != -1:  # -1 is the library's own mark of a running test
+        # -1 is the library's own mark of a running test; a result without a letter is another column.
+        if entry.type and re.search("[A-Za-z]", str(entry.status or "")) and entry.num != -1:
             yield _test(
                 str(entry.type),
                 str(entry.status),
@@ -135,7 +137,7 @@ def _test(
     head, arrow, _ = result.partition("->")
     result = (head.rstrip("- \t") or result) if arrow else result
     lower = result.lower()
-    if any(word in lower for word in _NEITHER):
+    if _FATAL not in lower and any(word in lower for word in _NEITHER):
         ended: bool | None = None
     elif any(word in lower for word in _FAILED):
         ended = False

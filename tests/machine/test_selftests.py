@@ -112,6 +112,37 @@ def test_an_nvme_log_is_read_under_either_headline_and_no_other_table_is(more: s
     assert (aborted.passed, sound.passed) == (None, True)
 
 
+@pytest.mark.parametrize("codes", ["2 0x81", "0x2 0x81", " 0x2  0x81", "-    -", "-    0x81"])
+def test_the_newest_failed_nvme_test_is_neither_lost_nor_falsified_by_how_its_codes_are_printed(codes: str):
+    sheet = Sheet.of(NVME.format(more="").replace("2 0x81", codes).splitlines())
+    newest = self_tests(Family.NVME, None, device_of(sheet.lines, Family.NVME), sheet)[0]
+    assert (newest.result, newest.hours, newest.lba) == ("Completed: failed segments", 3_441, 8_812)
+    assert (newest.passed, newest.unreadable) == (False, True)
+
+
+def test_the_library_is_taken_where_it_understands_more_rows():
+    sheet = Sheet.of(ATA.splitlines())
+    device = device_of(sheet.lines, Family.ATA)
+    assert len(self_tests(Family.ATA, None, device, Sheet.of(()))) == 5
+    device.tests[0].status = "8754"  # as the library sets out a row that it cuts at the wrong places
+    assert len(self_tests(Family.ATA, None, device, Sheet.of(()))) == 4
+
+
+def test_a_test_that_a_fatal_or_unknown_error_ended_has_failed():
+    for line in ("Fatal or unknown error       ", "Fatal or unknown test error  "):
+        sheet = Sheet.of(ATA.replace("Completed: read failure      ", line).splitlines())
+        tests = self_tests(Family.ATA, None, None, sheet)
+        assert [test.passed for test in tests] == [None, None, False, False, True]
+    told = {
+        "type": {"string": "Extended offline"},
+        "status": {"string": "Fatal or unknown error", "passed": False},
+    }
+    (test,) = self_tests(
+        Family.ATA, {"ata_smart_self_test_log": {"standard": {"table": [told]}}}, None, Sheet.of(())
+    )
+    assert test.passed is False
+
+
 def test_the_document_comes_before_the_text():
     document = {
         "nvme_self_test_log": {
