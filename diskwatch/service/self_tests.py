@@ -61,6 +61,11 @@ class SelfTests:
         self._begun: dict[int, dict[str, Entry]] | None = None
         self._open: dict[int, Entry] = {}
 
+    @property
+    def running(self) -> frozenset[int]:
+        """Numbers of the drives whose tests are under way: they are awake, and their results are waited for."""
+        return frozenset(self._open)
+
     def after(self, parts: Sequence[DriveRound], found: Mapping[int, Found], *, at: int, hour: int) -> None:
         """Follow tests that run, and begin one where it is due.
 

@@ -219,6 +219,10 @@ class Watch:
         with self._rounding:
             done = self._rounds.run(told=self._told, lock=self._lock)
             if self._tests is not None and not self._stop.is_set():
+                # A drive that does nothing else is left out of rounds; its result would keep others waiting.
+                silent = self._tests.running - {one.known.number for one in done}
+                if silent:
+                    done += self._rounds.run(told=self._told, lock=self._lock, only=silent)
                 self._tests.after(done, self._rounds.found, at=now(), hour=time.localtime().tm_hour)
 
     def _past_tests(self) -> tuple[Entry, ...] | None:

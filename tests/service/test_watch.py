@@ -180,7 +180,7 @@ class ScriptedTester:
 def test_a_self_test_is_begun_where_the_owner_asks_and_the_day_book_remembers_it(
     machine, tmp_path, monkeypatch
 ):
-    hours = iter([12, 3, 3])
+    hours = iter([12, 3, 3, 3])
     monkeypatch.setattr("diskwatch.service.watch.time.localtime", lambda: SimpleNamespace(tm_hour=next(hours)))
     asked = replace(QUICK, selftest=SelfTests(short=Duration(86_400)))
     tester = ScriptedTester()
@@ -189,6 +189,9 @@ def test_a_self_test_is_begun_where_the_owner_asks_and_the_day_book_remembers_it
     assert tester.begun == []
     watch._round()
     assert tester.begun == [("/dev/sda", False)]
+    asked_before = len(machine.asked)
+    watch._round()
+    assert len(machine.asked) == asked_before + 1, "a test under way is followed though the drive is idle"
     watch._end()
     again = Watch(machine, asked, tmp_path, tester=tester)
     again._round()
