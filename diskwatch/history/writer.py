@@ -11,6 +11,7 @@ from typing import Self
 from diskwatch.history import packing, rows
 from diskwatch.history.arriving import Arrived
 from diskwatch.history.bays import standing_calls
+from diskwatch.history.folding import fold_in, grown, leave_to_others
 from diskwatch.history.forecasts import latest_forecasts
 from diskwatch.history.latency import learnt, traffic_days
 from diskwatch.history.library import Database
@@ -41,9 +42,6 @@ from diskwatch.records import (
 )
 from diskwatch.units import DAY
 
-_LOG_BYTES = 4 << 20
-"""What a write-ahead log that once grew is cut back to, bytes."""
-
 
 class History:
     """A history open for writing, safe to use from any thread; `close` it, or use it in ``with``.
@@ -57,6 +55,8 @@ class History:
         self._file = None if path is None else _identity(path)
         self._lock = lock
         self._turn = threading.RLock()
+        self._folding = threading.Lock()
+        self._closed = False
         self._lasting = True
 
     @classmethod
@@ -94,7 +94,9 @@ class History:
 
     def close(self) -> None:
         """Let go of the history; everything recorded is in it already. Closing again does nothing."""
-        with self._turn:
+        # A connection that folds the log in would keep it beside the file, so it is waited for.
+        with self._turn, self._folding:
+            self._closed = True
             try:
                 # A reader that is open now keeps SQLite from folding the log in by itself when this closes.
                 with suppress(sqlite3.Error):
@@ -239,7 +241,8 @@ class History:
             day: UTC day number, as `uncondensed` gave it.
             condensed: classes of load by the drive's number.
         """
-        with self._writing() as connection:
+        # What a power cut undoes of it is condensed again: the roll-ups go later, so they go only behind it.
+        with self._writing(lasting=False) as connection:
             write_class_days(connection, day, condensed.items())
 
     def thin(self, now: int) -> bool:
@@ -254,6 +257,17 @@ class History:
         # What a power cut undoes of it is thinned again: no bite need wait for the disk.
         with self._writing(lasting=False) as connection:
             return thin(connection, now)
+
+    def fold_log(self) -> None:
+        """Fold the write-ahead log into the file where it has grown; nobody who writes or reads waits for it.
+
+        Raises:
+            HistoryError: its disk is full, it is damaged, or it cannot be written for another reason.
+        """
+        with self._folding:
+            path = self._path
+            if not self._closed and path is not None and grown(path) and _identity(path) == self._file:
+                fold_in(path)
 
     def arrive(self, parts: Sequence[Part], judge: Judge, *entries: Entry) -> tuple[Arrived, ...]:
         """Take in pasts from elsewhere, all of them or none.
@@ -372,7 +386,7 @@ def _prepared(connection: sqlite3.Connection, path: Path | None) -> Database:
         # Some builds overwrite with zeros what is thinned away, and that costs the disk twice.
         connection.execute("PRAGMA secure_delete = OFF")
         connection.execute("PRAGMA journal_mode = WAL")
-        connection.execute(f"PRAGMA journal_size_limit = {_LOG_BYTES}")
+        leave_to_others(connection)
         bring_up_to_date(db)
     except sqlite3.Error as error:
         connection.close()

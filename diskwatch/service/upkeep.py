@@ -106,6 +106,7 @@ class Upkeep:
             keep = partial(History.condense, day=day, condensed=condensed)
             with self._lock:
                 self._keeper.ask(keep)
+            self._fold()
             self._ending.wait(BREATH)
 
     def _thin(self) -> None:
@@ -113,7 +114,15 @@ class Upkeep:
         while more and not self._ending.is_set():
             with self._lock:
                 more = self._keeper.ask(lambda history: history.thin(self._now()))
+            self._fold()
             self._ending.wait(BREATH)
+
+    def _fold(self) -> None:
+        with self._lock:
+            history = self._keeper.ask(lambda history: history)
+        # Without the lock: this waits for the disk, and no round shall.
+        if history is not None:
+            history.fold_log()
 
     def _look(self) -> None:
         at = self._now()

@@ -11,6 +11,7 @@ import shutil
 import signal
 import sqlite3
 import subprocess
+import threading
 import time
 from contextlib import closing, suppress
 from dataclasses import replace
@@ -19,6 +20,7 @@ import pytest
 
 from diskwatch import analyser
 from diskwatch.errors import HistoryError, HistoryHeld
+from diskwatch.history import folding
 from diskwatch.history.keeping import DETAIL_COPIES
 from diskwatch.history.live import LiveWriter
 from diskwatch.history.lock import WatchLock, watcher
@@ -42,6 +44,8 @@ def _write_for_ever(folder, pipe):
     number += history._db.execute(
         "SELECT count(*) FROM pass WHERE at >= coalesce((SELECT before FROM thinned WHERE what = 'pass'), 0)"
     ).fetchone()[0]
+    folding.KEPT_BYTES = 64 << 10  # so that the log is folded in, and begun anew, all the time
+    threading.Thread(target=_fold_for_ever, args=(history,), daemon=True).start()
     while True:
         at = NOON + number * DAY // 2
         history.record(full_round(known, at, number))
@@ -52,6 +56,12 @@ def _write_for_ever(folder, pipe):
             one = ClassDay(load_class=1, direction=Direction.READ, rollups=2, operations=9, histogram={3: 2})
             history.condense(found[0], {1: [one]})
         history.thin(at)
+
+
+def _fold_for_ever(history):
+    while True:
+        history.fold_log()
+        time.sleep(0.001)  # or whoever writes would get no turn
 
 
 def _killed(folder, times):
@@ -93,7 +103,10 @@ def _whole(folder, stored):
 
 
 def test_a_writer_that_is_killed_leaves_whole_rounds_and_all_that_it_reported(folder):
-    """SIGKILL: process death, not power loss. Rounds, traffic, condensing and thinning go on by turns."""
+    """SIGKILL: process death, not power loss.
+
+    Rounds, traffic, condensing and thinning go on by turns, and beside them the log is folded in.
+    """
     _killed(folder, KILLS)
 
 

@@ -353,7 +353,7 @@ def test_what_an_owner_tells_of_a_drive_that_nobody_knows_is_refused_whole(histo
     assert history._db.conn.execute("SELECT count(*) FROM day_book").fetchone() == (1,)
 
 
-def test_only_thinning_does_not_wait_for_the_disk_and_what_comes_after_it_does(history, monkeypatch):
+def test_only_the_upkeep_does_not_wait_for_the_disk_and_what_comes_after_it_does(history, monkeypatch):
     seen = []
 
     def note(connection, *_):
@@ -364,7 +364,9 @@ def test_only_thinning_does_not_wait_for_the_disk_and_what_comes_after_it_does(h
         raise sqlite3.OperationalError("invented")
 
     monkeypatch.setattr(writer, "thin", note)
+    monkeypatch.setattr(writer, "write_class_days", note)
     monkeypatch.setattr(writer, "write_round", note)
+    history.condense(0, {})
     history.thin(NOON)
     history.record(a_round())
     monkeypatch.setattr(writer, "thin", fails)
@@ -372,4 +374,4 @@ def test_only_thinning_does_not_wait_for_the_disk_and_what_comes_after_it_does(h
         history.thin(NOON)
     history.record(a_round())
     normal, full = 1, 2
-    assert seen == [normal, full, normal, full]
+    assert seen == [normal, normal, full, normal, full]

@@ -2,8 +2,11 @@
 
 import random
 import time
-from collections.abc import Iterator
-from dataclasses import replace
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, replace
+from functools import partial
+from pathlib import Path
+from typing import TypeVar
 
 from diskwatch.history import packing, rows
 from diskwatch.history.writer import History
@@ -176,8 +179,45 @@ def _fives(drives: tuple[KnownDrive, ...], begin: int, noise: random.Random) -> 
             )  # fmt: skip  # one row, as its columns stand
 
 
-def upkept(history: History, now: int) -> list[float]:
-    """All upkeep that is due, as the watch does it; gives how long each bite held the writer, seconds."""
+_Answer = TypeVar("_Answer")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Took:
+    """How long something took, seconds.
+
+    Attributes:
+        wall: by the clock.
+        queued: how much of it this thread was ready to run and had no processor, by the kernel's own count
+            (Documentation/scheduler/sched-stats.rst); 0 where the kernel keeps none.
+    """
+
+    wall: float
+    queued: float
+
+    @property
+    def own(self) -> float:
+        """Work and waiting for the disk: what is left when the machine has a processor to give."""
+        return self.wall - self.queued
+
+
+def timed(deed: Callable[[], _Answer]) -> tuple[_Answer, Took]:
+    """Do something, and say how long it took."""
+    queued, begun = _queued(), time.perf_counter()
+    answer = deed()
+    wall = time.perf_counter() - begun
+    return answer, Took(wall=wall, queued=min(_queued() - queued, wall))
+
+
+def _queued() -> float:
+    try:
+        return int(Path("/proc/thread-self/schedstat").read_text().split()[1]) / 1e9
+    except OSError:
+        return 0.0
+
+
+def upkept(history: History, now: int) -> list[Took]:
+    """All upkeep that is due, as the watch does it; gives how long each bite held the writer."""
     held = []
     while (found := history.uncondensed(now)) is not None:
         day, rollups = found
@@ -185,12 +225,12 @@ def upkept(history: History, now: int) -> list[float]:
             number: class_days(one for one in rollups if one.drive == number)
             for number in {one.drive for one in rollups}
         }
-        begun = time.perf_counter()
-        history.condense(day, by_drive)
-        held.append(time.perf_counter() - begun)
+        _, took = timed(partial(history.condense, day, by_drive))
+        held.append(took)
+        history.fold_log()
     more = True
     while more:
-        begun = time.perf_counter()
-        more = history.thin(now)
-        held.append(time.perf_counter() - begun)
+        more, took = timed(partial(history.thin, now))
+        held.append(took)
+        history.fold_log()
     return held

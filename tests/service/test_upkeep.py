@@ -2,13 +2,14 @@ import threading
 
 import pytest
 
-from diskwatch.history import care, keeping
+from diskwatch.history import care, folding, keeping
 from diskwatch.history.care import copies
 from diskwatch.history.reader import Past
 from diskwatch.history.rescue import rescue
 from diskwatch.history.stating import file_past_days
+from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
-from diskwatch.records import Direction, DriveRound, IoCounts, IoSpan, Round
+from diskwatch.records import Direction, DriveRound, Entry, IoCounts, IoSpan, Round
 from diskwatch.service import upkeep
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.upkeep import Upkeep
@@ -109,6 +110,27 @@ def test_old_detail_is_thinned_and_the_counts_of_passes_stay(made, tmp_path, clo
         assert past.pass_days(1) == before
         assert len(past.passes(1)) < sum(day.passes for day in before)
         assert len(past.series(1, "power-on-hours")) < WEEKS * 7 * 3
+
+
+def test_whoever_waits_for_the_keeper_does_not_wait_until_the_log_is_folded_in(made, tmp_path, monkeypatch):
+    keeper, one = made()
+    log = tmp_path / f"{HISTORY}-wal"
+    free = []
+    fold = History.fold_log
+
+    def folded(history):
+        free.append(not one._lock.locked())
+        fold(history)
+
+    monkeypatch.setattr(History, "fold_log", folded)
+    text = "x" * 4000
+    keeper.note(*(Entry(at=NOON, drive=None, kind="watch", text=text) for _ in range(1_200)))
+    assert log.stat().st_size > folding.KEPT_BYTES
+    one.turn()
+    keeper.note(Entry(at=NOON, drive=None, kind="watch", text=text))
+    assert log.stat().st_size == folding.KEPT_BYTES
+    assert free
+    assert all(free)
 
 
 def test_a_copy_is_laid_beside_the_history_as_the_owner_wishes(made, tmp_path, clock):
