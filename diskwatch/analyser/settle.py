@@ -59,7 +59,7 @@ def settle(state: DriveState, word: Settled) -> Step:
         if state.call is None
         else rules.decide(now.standing.values(), before=state.call, at=word.at, quiet=quiet(now, word.at))
     )
-    happened = [_told(word, ended.values())]
+    happened = [_told(word, ended.values(), state.last_at)]
     if call is not None and state.call is not None and call.word is not state.call.word:
         happened += told_call(state.call, call)
     return Step(state=replace(now, call=call), happened=tuple(happened))
@@ -69,7 +69,7 @@ def _undisturbed(damage: Spots, signals: Collection[str]) -> Spots:
     return damage if set(_DAMAGE).isdisjoint(signals) else replace(damage, rises=())
 
 
-def _told(word: Settled, ended: Collection[Finding]) -> Entry:
+def _told(word: Settled, ended: Collection[Finding], after: int | None) -> Entry:
     return Entry(
         at=word.at,
         drive=None,
@@ -80,5 +80,7 @@ def _told(word: Settled, ended: Collection[Finding]) -> Entry:
             "signals": list(word.signals),
             "replaced_by": word.replaced_by,
             "ended": sorted(one.name for one in ended),
+            # A pass of the same second may stand before the word or behind it: whoever judges anew must know.
+            "after": after,
         },
     )

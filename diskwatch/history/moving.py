@@ -31,6 +31,23 @@ class Part:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Said:
+    """A word of the owner's, and where it stands among the passes.
+
+    Attributes:
+        word: what was said.
+        after: when the last pass before it was, UTC seconds since 1970; None where that was not kept.
+    """
+
+    word: Settled
+    after: int | None
+
+    def before(self, at: int) -> bool:
+        """Whether it was said before a pass of this time; in one second, either may have been first."""
+        return self.word.at < at or (self.word.at == at and self.after != at)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Case:
     """What there is to judge a drive by, after its past has moved in.
 
@@ -46,7 +63,7 @@ class Case:
     copies: tuple[Dated, ...]
     arrived: Arrived
     passes: Callable[[Dated | None], Iterator[tuple[int, Pass]]]
-    words: tuple[Settled, ...] = ()
+    words: tuple[Said, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -120,7 +137,7 @@ def dated_states(connection: sqlite3.Connection, drive: int) -> tuple[Dated, ...
     return tuple(Dated(turn=turn, at=at, state=packing.unpacked(packed)) for turn, at, packed in found)
 
 
-def _words(connection: sqlite3.Connection, drive: int) -> Iterator[Settled]:
+def _words(connection: sqlite3.Connection, drive: int) -> Iterator[Said]:
     """The owner's words from the day book; that another drive took its place changes no judgement."""
     found = connection.execute(
         "SELECT at, data FROM day_book WHERE drive = ? AND kind = 'settled' ORDER BY at, number", (drive,)
@@ -130,4 +147,8 @@ def _words(connection: sqlite3.Connection, drive: int) -> Iterator[Settled]:
         because, signals = data.get("because"), data.get("signals", [])
         told = isinstance(because, str) and isinstance(signals, list)
         if told and data.get("replaced_by") is None and all(isinstance(one, str) for one in signals):
-            yield Settled(at=at, because=because, signals=tuple(signals))
+            after = data.get("after")
+            yield Said(
+                word=Settled(at=at, because=because, signals=tuple(signals)),
+                after=after if isinstance(after, int) else None,
+            )

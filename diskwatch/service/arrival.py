@@ -11,10 +11,10 @@ from diskwatch.history.arriving import Described, described
 from diskwatch.history.exchange import Line
 from diskwatch.history.judgement import WEEK
 from diskwatch.history.moments import Dated
-from diskwatch.history.moving import Case, Judged, Part
+from diskwatch.history.moving import Case, Judged, Part, Said
 from diskwatch.history.writer import History
 from diskwatch.machine import identity
-from diskwatch.records import DriveRound, Entry, Outcome, Pass, Settled
+from diskwatch.records import DriveRound, Entry, Outcome, Pass
 from diskwatch.units import plain, say_count
 
 
@@ -135,10 +135,10 @@ def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged
     return Judged(part=part, since=since, copies=tuple(copies))
 
 
-def _settled(state: analyser.DriveState, words: deque[Settled], until: int | None) -> analyser.DriveState:
-    """The state after the owner's words up to a time (None: all), but for those that it knows already."""
-    while words and (until is None or words[0].at <= until):
-        word = words.popleft()
+def _settled(state: analyser.DriveState, words: deque[Said], until: int | None) -> analyser.DriveState:
+    """The state after the owner's words before a pass (None: all), but for those that it knows already."""
+    while words and (until is None or words[0].before(until)):
+        word = words.popleft().word
         heard = state.word is not None and state.word.at >= word.at
         if state.last_at is not None and not heard:
             state = analyser.settle(state, word).state

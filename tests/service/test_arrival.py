@@ -336,18 +336,48 @@ def test_what_the_owner_said_travels_and_the_word_said_last_stands(tmp_path):
         ]
 
 
+def seen_to(history, at):
+    settle(history, {"drive": 1, "because": "it was seen to", "replaced_by": None}, at)
+
+
+def pending(pass_):
+    return (pass_.reading.number("pending-sectors") or 0) if pass_.reading else 0
+
+
 @pytest.mark.parametrize("left_out", [set(), {"state", "copy"}])
-def test_what_the_owner_said_was_seen_to_is_heard_again_wherever_the_past_is_judged_anew(tmp_path, left_out):
+@pytest.mark.parametrize(
+    ("lived", "later"), [(1, 1), (1, 0), (0, 0)], ids=["later", "behind a pass of its second", "before one"]
+)
+def test_what_the_owner_said_was_seen_to_is_heard_again_in_its_place_wherever_the_past_is_judged_anew(
+    tmp_path, left_out, lived, later
+):
     here, there = tmp_path / "here", tmp_path / "there"
     passes = list(a_life(30))
-    said = passes[60].at + 1
+    rise = next(n for n in range(40, 120) if pending(passes[n]) > pending(passes[n - 1]) > 0)
     with kept(here) as history:
-        live(history, passes[:61])
-        settle(history, {"drive": 1, "because": "it was seen to", "replaced_by": None}, said)
-        state = live(history, passes[61:])
+        live(history, passes[: rise + lived])
+        seen_to(history, passes[rise].at + later)
+        state = live(history, passes[rise + lived :])
     assert analyser.load(state).word is not None
     whole = json.loads(exported(here))
     whole["rows"] = [row for row in whole["rows"] if row["record"] not in left_out]
     taken(there, json.dumps(whole))
     with Past.open(there) as past:
         assert past.state(1) == state
+
+
+def test_passes_from_before_the_owners_word_that_come_later_leave_it_in_its_place(tmp_path):
+    here, there, whole = tmp_path / "here", tmp_path / "there", tmp_path / "whole"
+    passes = list(a_life(30))
+    with kept(there) as history:
+        live(history, passes[:40])
+    for folder, begin in ((here, 40), (whole, 0)):
+        with kept(folder) as history:
+            live(history, passes[begin:80])
+            seen_to(history, passes[79].at + 1)
+            state = live(history, passes[80:])
+    taken(here, exported(there))
+    with Past.open(here) as past:
+        assert past.state(1) == state
+        (line,) = past.bays(passes[-1].at).drives
+    assert line.call == analyser.load(state).call
