@@ -9,6 +9,7 @@ from diskwatch.analyser.around import Around
 from diskwatch.analyser.explain import Explanation, explain
 from diskwatch.analyser.forecasts import forecasts
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
+from diskwatch.analyser.probing import ProbeStep, probe_values, take_in_probe
 from diskwatch.analyser.settle import settle
 from diskwatch.analyser.state import DriveState, dump, load, start
 from diskwatch.analyser.traffic import (
@@ -25,6 +26,7 @@ __all__ = [
     "Around",
     "DriveState",
     "Explanation",
+    "ProbeStep",
     "Step",
     "TrafficStep",
     "advance",
@@ -36,7 +38,9 @@ __all__ = [
     "load_latency",
     "measured",
     "no_latency",
+    "probe_values",
     "settle",
     "start",
+    "take_in_probe",
     "take_in_traffic",
 ]

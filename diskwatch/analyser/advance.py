@@ -52,7 +52,15 @@ class Step:
             if self.state.temperature.usual is None
             else {"temperature": self.state.temperature.ledger.evidence}
         )
-        return {**counted, **timed, **felt}
+        return {**counted, **timed, **felt, **_probed(self.state)}
+
+
+def _probed(state: DriveState) -> Mapping[str, float]:
+    probe = state.probe
+    if probe is None:
+        return {}
+    late = {"late-reads": probe.late.ledger.evidence} if probe.judges_late else {}
+    return late if probe.speed.reference is None else {**late, "probe-latency": probe.speed.ledger.evidence}
 
 
 def advance(state: DriveState, pass_: Pass, around: Around = ALONE) -> Step:
@@ -140,6 +148,7 @@ def _taken_in(
         temperature=temperature,
         latency=state.latency,
         traffic_through=state.traffic_through,
+        probe=state.probe,
         signs=state.signs,
         standing=state.standing,
         call=state.call,

@@ -11,6 +11,7 @@ from diskwatch.records import Call, CallWord, Finding, Odds
 from diskwatch.trends import ledger, spots
 from diskwatch.trends.episodes import ABSORBED, Stream
 from diskwatch.trends.norms import BUDGET, MAY_FALL, NORMS, Norm
+from diskwatch.trends.probed import Probed
 from diskwatch.units import day_number
 
 
@@ -91,6 +92,7 @@ class Explanation:
         counters: the counters that are followed.
         evidence: one a ledger of counters.
         timings: one a direction of latency.
+        probe: what its probes have come to; None where it was never probed.
         warm: how warm it runs; None for a drive that tells no temperature.
         joint: evidence of all ledgers together, M in days.
         damage: what the odds rule measures; None where it does not apply.
@@ -107,6 +109,7 @@ class Explanation:
     counters: tuple[CounterPast, ...]
     evidence: tuple[Evidence, ...]
     timings: tuple[Timing, ...]
+    probe: Probed | None
     warm: Warm | None
     joint: float
     damage: Damage | None
@@ -132,6 +135,7 @@ def explain(state: DriveState) -> Explanation:
         ),
         evidence=evidence,
         timings=timings(state),
+        probe=state.probe,
         warm=warm(state),
         joint=joint(state),
         damage=_damage(state),

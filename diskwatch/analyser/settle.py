@@ -8,7 +8,7 @@ from diskwatch.analyser.state import DriveState
 from diskwatch.analyser.traffic import noted
 from diskwatch.judge import rules, sentences
 from diskwatch.records import Entry, Finding, Settled
-from diskwatch.trends import episodes
+from diskwatch.trends import episodes, probed
 from diskwatch.trends.norms import NORMS
 from diskwatch.trends.spots import Spots
 from diskwatch.trends.temperature import accepted
@@ -49,6 +49,9 @@ def settle(state: DriveState, word: Settled) -> Step:
         spots=_undisturbed(state.spots, signals),
         temperature=accepted(state.temperature) if word.about(("temperature",)) else state.temperature,
         latency=noted(state.latency, [signal for signal in state.latency if word.about((signal,))]),
+        probe=None
+        if state.probe is None
+        else probed.noted(state.probe, late="drift:late-reads" in ended, speed="drift:probe-latency" in ended),
         settled={**state.settled, **dict.fromkeys(anew, word)},
         word=word,
         unread=0 if not word.signals else state.unread,

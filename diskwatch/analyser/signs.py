@@ -144,6 +144,7 @@ def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool |
         "spare low": None if reading.number("available-spare") is None else False,
         "hot": None if limit_of(reading) is None else False,
         **_slowness(state, day),
+        "late probe reads": _late(state, day),
         **around.signs(state, day),
     }
     for name, sign in _BY_FACT.items():
@@ -180,6 +181,14 @@ def _comes_and_goes(state: DriveState, day: int) -> bool | None:
     if silent is None:
         return bool(gone)
     return True if any(one < day_number(silent.since) for one in gone) else None
+
+
+def _late(state: DriveState, day: int) -> bool | None:
+    """Whether probes found late reads; None where none was judged lately."""
+    probe = state.probe
+    if probe is None or not probe.judges_late or not 0 <= day - probe.on < LATELY:
+        return None
+    return probe.late.ledger.evidence >= _NOTICEABLE
 
 
 def _slowness(state: DriveState, day: int) -> Mapping[str, bool | None]:

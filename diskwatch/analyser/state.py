@@ -10,6 +10,7 @@ from diskwatch.errors import HistoryTooNew
 from diskwatch.records import Call, Finding, Outcome, Settled
 from diskwatch.trends.episodes import Stream
 from diskwatch.trends.latency_now import LatencyNow
+from diskwatch.trends.probed import Probed
 from diskwatch.trends.spots import Spots
 from diskwatch.trends.temperature import Temperature
 from diskwatch.trends.warmth import Warmth
@@ -48,6 +49,7 @@ class DriveState:
         temperature: ledger of its days' highest temperatures.
         latency: what its latency has come to, by signal; what that was learnt from is kept apart.
         traffic_through: UTC day number of the last day whose traffic was taken in, or None.
+        probe: what its probes have come to; None where it was never probed.
         signs: what was put to the table of causes for the call that stands: whether each sign showed.
         standing: findings that stand, by name.
         call: the call that stands, or None.
@@ -78,6 +80,7 @@ class DriveState:
     temperature: Temperature = field(default_factory=Temperature)
     latency: Mapping[str, LatencyNow] = field(default_factory=dict)
     traffic_through: int | None = None
+    probe: Probed | None = None
     signs: Mapping[str, bool] = field(default_factory=dict)
     standing: Mapping[str, Finding] = field(default_factory=dict)
     call: Call | None = None

@@ -4,7 +4,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from diskwatch.analyser.state import DriveState
-from diskwatch.trends import slowness, temperature
+from diskwatch.trends import late_reads, probe_speed, slowness, temperature
 from diskwatch.trends.latency_now import SIGNALS, LatencyNow
 from diskwatch.trends.norms import NORMS
 
@@ -91,3 +91,6 @@ def _shares(state: DriveState) -> Iterator[tuple[float, float]]:
             yield slowness.SHARES[direction], state.latency[signal].evidence or 0.0
     if state.temperature.usual is not None:
         yield temperature.SHARE, state.temperature.ledger.evidence
+    if state.probe is not None:
+        yield late_reads.SHARE, state.probe.late.ledger.evidence
+        yield probe_speed.SHARE, state.probe.speed.ledger.evidence

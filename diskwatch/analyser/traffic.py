@@ -5,9 +5,9 @@ from dataclasses import dataclass, replace
 
 import msgspec
 
-from diskwatch.analyser.advance import quiet, told_call
+from diskwatch.analyser.between import drifted
 from diskwatch.analyser.state import DriveState
-from diskwatch.judge import rules, service_times
+from diskwatch.judge import service_times
 from diskwatch.records import (
     CallWord,
     Cause,
@@ -64,23 +64,13 @@ def take_in_traffic(
         latency = latencies.arrive(latency, one)
     latency, _ = latencies.close_day(latency, temperature=usual_on(state.warmth, day))
     now = {signal: latency_now(latency, direction) for direction, signal in SIGNALS.items()}
-    standing = dict(state.standing)
-    for direction, signal in SIGNALS.items():
-        if alarmed(latency.of(direction), direction):
-            found = _drift(direction, now[signal], at)
-            before = standing.get(found.name)
-            standing[found.name] = found if before is None else replace(found, since=before.since)
-            if before is None:
-                data = {"evidence": found.evidence, **found.data}
-                happened.append(Entry(at=at, drive=None, kind="drift", text=found.sentence, data=data))
-    after = replace(state, latency=now, traffic_through=day, standing=standing)
-    if standing.keys() != state.standing.keys():
-        # The next reading brings the signs that name a cause; a drive that gives none is called all the same.
-        call = rules.decide(standing.values(), before=state.call, at=at, quiet=quiet(after, at))
-        if state.call is None or call.word is not state.call.word:
-            happened += told_call(state.call, call)
-        after = replace(after, call=call)
-    return TrafficStep(state=after, latency=latency, happened=tuple(happened))
+    found = [
+        _drift(direction, now[signal], at)
+        for direction, signal in SIGNALS.items()
+        if alarmed(latency.of(direction), direction)
+    ]
+    after, told = drifted(replace(state, latency=now, traffic_through=day), found, at=at)
+    return TrafficStep(state=after, latency=latency, happened=(*happened, *told))
 
 
 def _here(latency: Latency, key: str, at: int) -> tuple[Latency, list[Entry]]:

@@ -59,6 +59,7 @@ _NAMES: Mapping[str, tuple[str, str]] = {
     "array-dropouts": marked_plural(
         "time that an array dropped or mended it", "times that an array dropped or mended it"
     ),
+    "late-reads": marked_plural("read of the probe that came late", "reads of the probe that came late"),
     "unsafe-power-offs": marked_plural(
         "time that power went away without notice (unsafe power-offs)",
         "times that power went away without notice (unsafe power-offs)",

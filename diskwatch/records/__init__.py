@@ -14,6 +14,7 @@ from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingK
 from diskwatch.records.listened import LeftOff, Listened
 from diskwatch.records.margin import Margin
 from diskwatch.records.odds import Odds
+from diskwatch.records.probe import ProbeDay
 from diskwatch.records.reading import (
     ARRAYS,
     FILE_SYSTEMS,
@@ -77,6 +78,7 @@ __all__ = [
     "Pass",
     "PassDay",
     "Place",
+    "ProbeDay",
     "Reading",
     "ReplaySummary",
     "ReplayedDrive",

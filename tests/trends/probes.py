@@ -21,3 +21,8 @@ def band_reads(chance: Random, count: int, *, retried: float = 0.0, slower: floa
 def slice_times(chance: Random, count: int, *, retried: float = 0.0) -> list[float]:
     """Times of requests back to back, of which some are held up by a retry."""
     return [chance.gauss(2.0, 0.1) + (TURN if chance.random() < retried else 0.0) for _ in range(count)]
+
+
+def seeded(seed: int) -> Random:
+    """Chance that repeats itself."""
+    return Random(seed)  # noqa: S311 - a simulation, no secret
