@@ -69,6 +69,14 @@ def counts(sys_root: Path = Path("/sys"), proc_root: Path = Path("/proc")) -> Ma
     return found
 
 
+def counts_questions(sys_root: Path, name: str) -> bool:
+    """Whether the kernel counts a disk's questions, such as ours, among its reads.
+
+    By default it does not (``queue/iostats_passthrough``; Linux, Documentation/ABI, sysfs-block; from memory).
+    """
+    return number_of(sys_root / "block" / name / "queue" / "iostats_passthrough") == 1
+
+
 def instance_of(sys_root: Path, boot: str | None, name: str) -> str:
     """What tells this device from any other that had or will have its name.
 

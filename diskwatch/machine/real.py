@@ -144,8 +144,11 @@ class RealMachine:
         return counters.instance_of(self._sys, boot, found.blocks[0])
 
     def _completed(self, found: Found) -> int | None:
-        """Requests to all of a drive's block devices that came to an end; None where any is not counted."""
-        if not found.blocks:
+        """Requests to all of a drive's block devices that came to an end, questions like ours not among them.
+
+        None where any is not counted, or where the kernel was told to count questions as well.
+        """
+        if not found.blocks or any(counters.counts_questions(self._sys, block) for block in found.blocks):
             return None
         counted = self.counts()
         if any(block not in counted for block in found.blocks):

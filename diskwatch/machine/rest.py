@@ -1,8 +1,9 @@
 """Whether a drive that answers nothing sleeps, or is in trouble.
 
 smartctl says SLEEP where the question for the power mode failed: a drive in that mode answers nothing, but a
-dying one does not either. A drive that moved data since it was last asked does not sleep; and no drive sleeps
-for ever unheard.
+dying one does not either. That a drive worked since it was last asked proves nothing: it may have fallen asleep
+after that. Only one that completes requests while it does not answer is awake; and no drive sleeps for ever
+unheard.
 """
 
 from collections.abc import Callable
@@ -14,31 +15,43 @@ from diskwatch.records import Outcome
 from diskwatch.units import DAY, say_span
 
 LONGEST = 8 * DAY
-"""Seconds for which silence alone is taken for sleep: a disk for weekly copies rests for seven days."""
+"""Seconds for which silence alone is taken for sleep: a disk for weekly copies rests for seven days.
+
+They are counted while the machine is awake: a machine that was suspended for longer asked nothing meanwhile.
+"""
 
 Completed = Callable[[], int | None]
-"""Requests of a drive that came to an end since it appeared; None where the kernel does not count them."""
+"""Requests of a drive that came to an end since it appeared, questions like ours not among them.
+
+None where the kernel does not count them, or counts questions too.
+"""
 
 _CARE = "copy off what matters first, then look at its cable and adapter"
 
 
 @dataclass(frozen=True, slots=True)
 class _Heard:
-    """A drive as last asked: its instance, its completed requests, and since when it is silent."""
+    """A drive as last asked.
+
+    Attributes:
+        instance: which device it was.
+        since: since when it is silent, seconds by the clock of `Rest.judged`; None where it answered.
+        worked: whether it was silent and completed requests all the same while it was asked.
+    """
 
     instance: str
-    completed: int | None
-    since: int | None
+    since: float | None
+    worked: bool
 
 
 class Rest:
-    """Remembers, from pass to pass, which drives are silent and whether they are in use."""
+    """Remembers, from pass to pass, which drives are silent and whether they work all the same."""
 
     def __init__(self) -> None:
         self._heard: dict[str, _Heard] = {}
 
     def judged(
-        self, found: Found, verdict: Verdict, *, before: int | None, after: int | None, at: int
+        self, found: Found, verdict: Verdict, *, before: int | None, after: int | None, at: float
     ) -> Verdict:
         """Take in how a pass ended, and correct what it says of sleep.
 
@@ -46,8 +59,8 @@ class Rest:
             found: the drive.
             verdict: how the pass ended.
             before: requests completed when it was about to be asked, or None where that is not known.
-            after: the same when it had been asked: what the question itself moved must not count next time.
-            at: when, UTC seconds since 1970.
+            after: the same when it had been asked.
+            at: when, seconds by a clock that only moves forward and stands still while the machine sleeps.
         """
         key = found.place.device
         last = self._heard.get(key)
@@ -55,14 +68,16 @@ class Rest:
             last = None
         silent = verdict.outcome is Outcome.ASLEEP and verdict.unproved
         known_since = last.since if last is not None and last.since is not None else at
-        self._heard[key] = _Heard(found.instance, after, known_since if silent else None)
+        worked = silent and None not in {before, after} and before != after
+        self._heard[key] = _Heard(found.instance, known_since if silent else None, worked)
         if not silent:
             return verdict
-        if last is not None and None not in {last.completed, before} and last.completed != before:
+        # Once may be the moment in which something else woke it.
+        if worked and last is not None and last.worked:
             return Verdict(
                 outcome=Outcome.GARBLED,
-                explanation="It did not answer whether it is awake, though it was in use since it was last "
-                f"asked: {_CARE}.",
+                explanation="It did not answer whether it is awake, though it worked while it was asked, twice "
+                f"in a row: {_CARE}.",
             )
         if at - known_since >= LONGEST:
             return Verdict(

@@ -73,6 +73,7 @@ class Smartctl:
         *,
         kept: Iterable[Way] = (),
         door: Door | None = None,
+        awake: Callable[[], float] = time.monotonic,
     ) -> None:
         """Take a command; nothing is run yet.
 
@@ -82,10 +83,12 @@ class Smartctl:
             now: the clock, UTC seconds since 1970.
             kept: what earlier passes found out of USB adapters, see `diskwatch.records.Pass.way`.
             door: what runs it; by default a door of its own.
+            awake: seconds by a clock that only moves forward and stands still while the machine sleeps.
         """
         self._command = command
         self._timeout = timeout
         self._now = now
+        self._awake = awake
         self._door = door if door is not None else Door()
         # Both are replaced whole, so that a thread sees either the old or the new; the worst that a race costs
         # is one more process.
@@ -137,7 +140,7 @@ class Smartctl:
         try:
             before = completed()
             told = self._asked(found)
-            verdict = self._rest.judged(found, told.verdict, before=before, after=completed(), at=self._now())
+            verdict = self._rest.judged(found, told.verdict, before=before, after=completed(), at=self._awake())
             answer = _pass(replace(told, verdict=verdict), found)
         except Exception as error:  # noqa: BLE001 - one odd drive must never keep others from being watched
             _log.exception("the answer of %s could not be taken in", quoted(found.address.node))

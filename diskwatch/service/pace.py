@@ -8,8 +8,7 @@ from dataclasses import dataclass, replace
 from enum import StrEnum
 
 from diskwatch.records import Kind, Outcome
-
-DAY = 86_400
+from diskwatch.units import DAY
 
 IDLE_TIMER = 1_800
 """Seconds without work after which drives usually fall asleep, where they do (common practice, no source)."""

@@ -205,9 +205,10 @@ class Rounds:
     ) -> tuple[tuple[DriveRound, ...], tuple[Entry, ...]]:
         drives: list[DriveRound] = []
         entries: list[Entry] = []
+        totals = self._machine.counts() if self._turns is not None else {}
         for answer in batch:
             if self._turns is not None:
-                self._turns.answered(self._instance(answer.found), answer.pass_.outcome)
+                self._turns.answered(self._instance(answer.found), answer.pass_.outcome, totals)
             told = answer.pass_.drive or answer.found.drive
             if not self._wanted(told.identity, choice.devices_of(answer.found)):
                 continue

@@ -16,7 +16,7 @@ def _none() -> frozenset[str]:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Memory:
-    """What came of asking a drive, and how many requests it had completed when the round began."""
+    """What came of asking a drive, and how many requests it had completed when it had been asked."""
 
     asked: Asked
     done: int | None
@@ -35,7 +35,7 @@ class Turns:
         self._every = every
         self._hung = hung
         self._memory: dict[str, _Memory] = {}
-        self._now: dict[str, tuple[Seen, int | None]] = {}
+        self._now: dict[str, tuple[Seen, int | None, tuple[str, ...]]] = {}
 
     def plan(
         self, drives: Mapping[str, Found], totals: Mapping[str, Counted], *, at: int, everyone: bool = False
@@ -64,7 +64,7 @@ class Turns:
                 hung=not hung.isdisjoint(found.blocks),
                 wanted=everyone,
             )
-            self._now[key] = seen, done
+            self._now[key] = seen, done, found.blocks
             turns[key] = pace.turn(memory.asked if memory is not None else None, seen)
             if memory is not None and not turns[key].ask:
                 self._memory[key] = _Memory(asked=pace.left_out(memory.asked), done=memory.done)
@@ -74,11 +74,20 @@ class Turns:
         """Begin anew: the next round asks every drive that is awake."""
         self._memory.clear()
 
-    def answered(self, key: str, outcome: Outcome) -> None:
-        """Take in how asking a drive of this round ended."""
+    def answered(self, key: str, outcome: Outcome, totals: Mapping[str, Counted]) -> None:
+        """Take in how asking a drive of this round ended.
+
+        Args:
+            key: the drive's.
+            outcome: how it ended.
+            totals: the kernel's counters now. The kernel may have been told to count questions too; what a
+                question moved is no work of the drive, or asking it would keep it awake for ever.
+        """
         if key not in self._now:
             return
-        seen, done = self._now[key]
+        seen, before, blocks = self._now[key]
+        after = _completed(blocks, totals)
+        done = before if after is None else after
         memory = self._memory.get(key)
         if not seen.asleep:  # then the machine answered in its stead
             asked = pace.after(memory.asked if memory is not None else None, seen, outcome)

@@ -198,6 +198,12 @@ def test_a_drives_requests_are_counted_for_whoever_asks_it(
     assert smartctl.completed == 4
     watched.ask(replace(found, blocks=("sda", "gone")))
     assert smartctl.completed is None
+    tree.put(tree.sys / "block/sda/queue/iostats_passthrough", "0")
+    watched.ask(found)
+    assert smartctl.completed == 4
+    tree.put(tree.sys / "block/sda/queue/iostats_passthrough", "1")
+    watched.ask(found)
+    assert smartctl.completed is None
 
 
 @pytest.mark.usefixtures("smartctl")

@@ -252,7 +252,20 @@ def test_a_type_from_before_that_hangs_is_kept_and_nothing_else_is_tried():
 def test_a_drive_that_is_silent_though_it_is_in_use_does_not_sleep():
     tool, _ = smartctl(said(HDD.read_bytes()), said(SLEEP, 3))
     assert tool.ask(asked(), completed=lambda: 5).outcome is Outcome.READ
-    assert tool.ask(asked(), completed=lambda: 6).outcome is Outcome.GARBLED
+    assert tool.ask(asked(), completed=iter((9, 11)).__next__).outcome is Outcome.ASLEEP
+    assert tool.ask(asked(), completed=iter((15, 18)).__next__).outcome is Outcome.GARBLED
+
+
+def test_a_machine_that_was_suspended_or_whose_clock_went_ahead_accuses_no_silent_drive():
+    wall, awake = [NOW], [100.0]
+    door = Told(said(HDD.read_bytes()), said(SLEEP, 3))
+    tool = Smartctl("smartctl", 60, lambda: wall[0], door=door, awake=lambda: awake[0])
+    assert tool.ask(asked()).outcome is Outcome.READ
+    assert tool.ask(asked()).outcome is Outcome.ASLEEP
+    wall[0] += 9 * 86_400
+    assert tool.ask(asked()).outcome is Outcome.ASLEEP
+    awake[0] += 9 * 86_400
+    assert tool.ask(asked()).outcome is Outcome.GARBLED
 
 
 def test_an_optional_log_is_asked_for_in_the_same_process_and_dropped_where_the_drive_lacks_it():

@@ -3,7 +3,8 @@ from dataclasses import replace
 from hypothesis import given, strategies as st
 
 from diskwatch.records import Kind, Outcome
-from diskwatch.service.pace import DAY, IDLE_TIMER, Asked, Seen, Why, after, idle_gap, left_out, turn
+from diskwatch.service.pace import IDLE_TIMER, Asked, Seen, Why, after, idle_gap, left_out, turn
+from diskwatch.units import DAY
 
 AT = 1_800_000_000
 HALF_HOUR = 1_800

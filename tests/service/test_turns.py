@@ -19,13 +19,14 @@ class Running:
         self.turns = Turns(every=HALF_HOUR, hung=hung)
         self.number = 0
 
-    def round(self, *reads, drive=DISK, key="disk 1", outcome=Outcome.READ, everyone=False):
+    def round(self, *reads, drive=DISK, key="disk 1", outcome=Outcome.READ, everyone=False, own=0):
         totals = {"sda": counted(reads[0])} if reads else {}
         at = NOON + self.number * HALF_HOUR
         self.number += 1
         (why,) = self.turns.plan({key: drive}, totals, at=at, everyone=everyone).values()
         if why.ask or why is Why.ASLEEP:
-            self.turns.answered(key, outcome)
+            after = {"sda": counted(reads[0] + own)} if reads else {}
+            self.turns.answered(key, outcome, after)
         return why
 
 
@@ -33,6 +34,20 @@ def test_a_drive_that_completed_nothing_since_it_was_asked_is_left_out():
     running = Running()
     assert [running.round(5) for _ in range(4)] == [Why.FIRST, Why.IDLE, Why.DUE, Why.IDLE]
     assert running.round(6) is Why.DUE
+
+
+def test_what_a_question_itself_moved_is_no_work():
+    running = Running()
+    assert running.round(5, own=6) is Why.FIRST
+    assert [running.round(11, own=6) for _ in range(2)] == [Why.IDLE, Why.DUE]
+    assert [running.round(17, own=6) for _ in range(3)] == [Why.IDLE] * 3
+
+
+def test_a_drive_whose_counters_are_gone_when_it_answers_keeps_those_of_the_beginning():
+    turns = Turns(every=HALF_HOUR)
+    for at, why in ((NOON, Why.FIRST), (NOON + HALF_HOUR, Why.IDLE)):
+        assert turns.plan({"k": DISK}, {"sda": counted(5)}, at=at) == {"k": why}
+        turns.answered("k", Outcome.ABSENT, {})
 
 
 def test_work_in_a_round_that_left_it_out_still_counts_as_work():
@@ -94,7 +109,7 @@ def test_what_is_forgotten_is_asked_as_if_new():
 
 def test_an_answer_to_a_question_that_was_not_planned_is_none():
     turns = Turns(every=HALF_HOUR)
-    turns.answered("disk 1", Outcome.TIMED_OUT)
+    turns.answered("disk 1", Outcome.TIMED_OUT, {})
     assert turns.plan({"disk 1": DISK}, {}, at=NOON) == {"disk 1": Why.FIRST}
 
 
@@ -104,5 +119,5 @@ def test_a_drive_of_several_devices_has_worked_or_not_only_where_all_are_known(m
     turns = Turns(every=HALF_HOUR)
     for number in range(3):
         (why,) = turns.plan({"k": two}, missing, at=NOON + number * HALF_HOUR).values()
-        turns.answered("k", Outcome.READ)
+        turns.answered("k", Outcome.READ, missing)
         assert why.ask
