@@ -27,14 +27,14 @@ class ProbeStep:
 
 
 def take_in_probe(state: DriveState, day: ProbeDay, *, rotation_rpm: int) -> ProbeStep:
-    """Take in one probe; one that is not newer than the last changes nothing.
+    """Take in one probe; the last one once more changes nothing.
 
     Args:
         state: the drive's state before it.
         day: what it brought.
         rotation_rpm: how many turns a minute the disk makes, above 0.
     """
-    if state.probe is not None and day.at <= state.probe.at:
+    if state.probe is not None and day.at == state.probe.at:
         return ProbeStep(state=state, happened=())
     now = probed.after(state.probe, day, rotation_rpm=rotation_rpm)
     after, happened = drifted(replace(state, probe=now), _drifts(now), at=day.at)

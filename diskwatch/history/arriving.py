@@ -15,6 +15,7 @@ from diskwatch.history.counting import counted_before, set_counted
 from diskwatch.history.exchange import Line
 from diskwatch.history.fields import count, data, measure, text, whole, words
 from diskwatch.history.moments import Dated, turn_at
+from diskwatch.history.probes import times, times_packed
 from diskwatch.history.round import sentence_number
 from diskwatch.history.settling import Made, settle_calls, settle_counts, settle_last_pass, settle_signals
 from diskwatch.records import (
@@ -28,6 +29,7 @@ from diskwatch.records import (
     Outcome,
     Pass,
     Place,
+    ProbeDay,
     SignalKind,
 )
 from diskwatch.units import day_number, plain
@@ -154,6 +156,7 @@ class _Arrival:
             "heard": self._heard,
             "answer": self._answer,
             "latency": self._latency,
+            "probe": self._probe,
             "forecast": self._forecast,
             "load": self._load,
             "finding": self._finding,
@@ -327,6 +330,18 @@ class _Arrival:
         self._insert(
             "forecast", ("signal", "made_on_day", *columns), (text(of["signal"]), day_number(at), *cells)
         )
+
+    def _probe(self, at: int, of: Mapping[str, Any]) -> None:
+        band, sliced = times(of["times"])
+        day = ProbeDay(
+            at=at,
+            place=whole(of["place"]),
+            band_us=band,
+            slice_us=sliced,
+            disk_ms=whole(of["disk_ms"]),
+        )
+        columns = ("at", "place", "disk_ms", "packed")
+        self._insert("probe", columns, (at, day.place, day.disk_ms, times_packed(day)))
 
     def _load(self, at: int, of: Mapping[str, Any]) -> None:
         histogram = {whole(bin_): whole(count) for bin_, count in of["histogram"]}

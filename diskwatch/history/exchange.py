@@ -17,6 +17,7 @@ Both hold the same rows. A row has a ``record`` (what it is), a ``drive`` (which
 | finding | as it stands or stood; closed: since when no longer |
 | call | as it was |
 | event | kind, text, data: an entry of the day book |
+| probe | place, disk_ms, times: of the reads of its band and of its slice, microseconds |
 | load | class, direction, rollups, operations, histogram: of the day |
 | copy | state: the analyser's, as it was then |
 | state | state: the analyser's, as it is |

@@ -6,6 +6,7 @@ from collections.abc import Mapping, Sequence
 from diskwatch.history import packing, rows
 from diskwatch.history.forecasts import write_forecasts
 from diskwatch.history.latency import write_learnt
+from diskwatch.history.probes import write_probe
 from diskwatch.records import Call, DriveRound, Finding
 from diskwatch.units import DAY, day_number
 
@@ -33,6 +34,8 @@ def write_judgement(connection: sqlite3.Connection, part: DriveRound, at: int) -
         _write_state(connection, number, part.pass_.at, packing.packed(part.state))
     if part.learnt is not None:
         write_learnt(connection, number, part.learnt)
+    if part.probe is not None:
+        write_probe(connection, number, part.probe)
     write_forecasts(connection, number, part.forecasts)
 
 

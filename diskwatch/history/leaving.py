@@ -60,6 +60,11 @@ def _learnt(row: dict[str, Any]) -> dict[str, Any]:
     return {"at": row["at"], "state": packing.unpacked(row["packed"])}
 
 
+def _probe(row: dict[str, Any]) -> dict[str, Any]:
+    packed = row.pop("packed")
+    return {**row, "times": json.loads(packing.unpacked(packed))}
+
+
 def _load(row: dict[str, Any]) -> dict[str, Any]:
     return {**row, "histogram": sorted(packing.histogram(row["histogram"]).items())}
 
@@ -98,6 +103,7 @@ _QUERIES = {
     "latency": "SELECT through * 86400 AS at, packed FROM latency_state WHERE drive = :drive",
     "forecast": "SELECT made_on_day * 86400 AS at, signal, at_limit, limit_from, low, high, probability,"
     " reason, reached FROM forecast WHERE drive = :drive ORDER BY signal, made_on_day",
+    "probe": "SELECT at, place, disk_ms, packed FROM probe WHERE drive = :drive ORDER BY at",
     "load": "SELECT day * 86400 AS at, load_class, direction, rollups, operations, histogram FROM io_day"
     " WHERE drive = :drive",
     "finding": "SELECT since AS at, name, kind, signals, calls, cause, evidence, sentence, data, closed"
@@ -114,6 +120,7 @@ _FIELDS = {
     "beside": _beside,
     "answer": _answer,
     "latency": _learnt,
+    "probe": _probe,
     "load": _load,
     "finding": _finding,
     "event": _data,

@@ -10,9 +10,10 @@ from diskwatch.history.arriving import Arrived, Described, take_in
 from diskwatch.history.exchange import Line
 from diskwatch.history.judgement import write_judgement
 from diskwatch.history.moments import Dated
+from diskwatch.history.probes import probes
 from diskwatch.history.readings import passes_with_readings
 from diskwatch.history.round import admit
-from diskwatch.records import DriveRound, KnownDrive, Pass, Settled
+from diskwatch.records import DriveRound, KnownDrive, Pass, ProbeDay, Settled
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -56,6 +57,7 @@ class Case:
         copies: dated states that stood here before, oldest first.
         arrived: what came with the file.
         passes: the drive's passes behind a state (None: all) with their turns and readings, in their order.
+        probes: the drive's probes that ended after a time (None: all), oldest first.
         words: what the owner said was seen to, here or where the file comes from, oldest first.
     """
 
@@ -63,6 +65,7 @@ class Case:
     copies: tuple[Dated, ...]
     arrived: Arrived
     passes: Callable[[Dated | None], Iterator[tuple[int, Pass]]]
+    probes: Callable[[int | None], tuple[ProbeDay, ...]] = lambda after: ()  # noqa: ARG005  # never probed
     words: tuple[Said, ...] = ()
 
 
@@ -104,6 +107,7 @@ def arrive(connection: sqlite3.Connection, part: Part, judge: Judge) -> Arrived:
             known=known,
             copies=copies,
             arrived=arrived,
+            probes=lambda after: probes(connection, known.number, after=after),
             passes=lambda after: passes_with_readings(connection, known.number, after),
             words=tuple(_words(connection, known.number)),
         )

@@ -64,6 +64,7 @@ _VIEWS = {
             "forecast", "drive signal made_on_day at_limit limit_from low high probability reason reached"
         ),
     ),
+    "0009_probe": (_nothing("probe", "drive at place disk_ms packed"),),
 }
 """What stands in for a step that a file may lack; one without a line here must be taken before it is read."""
 

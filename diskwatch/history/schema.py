@@ -20,7 +20,17 @@ must be answered quickly.
 from collections.abc import Callable
 
 from diskwatch.history.library import Database, Migrations
-from diskwatch.history.steps import answer, base, every_pass, in_order, listening, ten_years, trends, ways
+from diskwatch.history.steps import (
+    answer,
+    base,
+    every_pass,
+    in_order,
+    listening,
+    probe,
+    ten_years,
+    trends,
+    ways,
+)
 from diskwatch.history.versions import MIGRATION_SET, MIGRATIONS
 
 STATEMENTS = {
@@ -32,6 +42,7 @@ STATEMENTS = {
     "0006_answer": answer.STATEMENTS,
     "0007_listening": listening.STATEMENTS,
     "0008_trends": trends.STATEMENTS,
+    "0009_probe": probe.STATEMENTS,
 }
 """What each step does, by its name in `diskwatch.history.versions`."""
 

@@ -20,6 +20,7 @@ MIGRATIONS = (
     "0006_answer",
     "0007_listening",
     "0008_trends",
+    "0009_probe",
 )
 """Names of all steps of the schema, oldest first; a step is never renamed, changed or taken out."""
 

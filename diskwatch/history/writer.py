@@ -20,6 +20,7 @@ from diskwatch.history.lock import WatchLock
 from diskwatch.history.mishaps import taken_away, told, unreadable
 from diskwatch.history.moving import Judge, Part, arrive
 from diskwatch.history.opening import BUSY_MS, refuse_foreign
+from diskwatch.history.probes import last_probes
 from diskwatch.history.round import admit, write_entries, write_round
 from diskwatch.history.schema import bring_up_to_date
 from diskwatch.history.thinning import thin
@@ -189,6 +190,11 @@ class History:
         """
         with self._using() as connection:
             return traffic_days(connection, drive, after=after, before=before, most=most)
+
+    def last_probes(self) -> dict[int, int]:
+        """When each drive was probed last, UTC seconds since 1970, by its number."""
+        with self._using() as connection:
+            return last_probes(connection)
 
     def forecasts(self) -> dict[int, tuple[Forecast, ...]]:
         """The latest forecast about each signal, by the drive's number."""

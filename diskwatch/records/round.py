@@ -7,6 +7,7 @@ from diskwatch.records.daybook import Entry
 from diskwatch.records.drive import Drive, Place
 from diskwatch.records.forecast import Forecast
 from diskwatch.records.judgement import Call, Finding
+from diskwatch.records.probe import ProbeDay
 from diskwatch.records.reading import Pass
 from diskwatch.records.way import Way
 
@@ -54,6 +55,7 @@ class DriveRound:
         call: the call that stands now; None until the drive has been read.
         learnt: what its latency was learnt from; None where no day of traffic was taken in.
         forecasts: what is to be expected of it, where that was worked out anew.
+        probe: the probe of it that was taken in before the pass; None for none.
     """
 
     known: KnownDrive
@@ -64,6 +66,7 @@ class DriveRound:
     call: Call | None = None
     learnt: Learnt | None = None
     forecasts: tuple[Forecast, ...] = ()
+    probe: ProbeDay | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -14,7 +14,7 @@ from diskwatch.history.moments import Dated
 from diskwatch.history.moving import Case, Judged, Part, Said
 from diskwatch.history.writer import History
 from diskwatch.machine import identity
-from diskwatch.records import DriveRound, Entry, Outcome, Pass
+from diskwatch.records import DriveRound, Entry, KnownDrive, Outcome, Pass, ProbeDay
 from diskwatch.units import plain, say_count
 
 
@@ -113,11 +113,12 @@ def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged
     copies: list[Dated] = []
     outcome = state.outcome
     turn, last = (0, None) if since is None else (since.turn, since.at)
-    words = deque(case.words)
+    words, probes = deque(case.words), deque(case.probes(last))
     for now, told in case.passes(since):
         state = _settled(state, words, told.at)
         if last is not None and last // WEEK != told.at // WEEK:
             copies.append(Dated(turn=turn, at=last, state=analyser.dump(state)))
+        state = _probed(state, probes, case.known, told.at)
         state = analyser.advance(state, replace(told, drive=case.known.drive)).state
         turn, last, outcome = now, told.at, told.outcome
     if last is None:
@@ -133,6 +134,18 @@ def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged
         call=step.call,
     )
     return Judged(part=part, since=since, copies=tuple(copies))
+
+
+def _probed(
+    state: analyser.DriveState, probes: deque[ProbeDay], known: KnownDrive, until: int
+) -> analyser.DriveState:
+    """The state after the probes before a pass: a pass follows each of them at once."""
+    rpm = known.drive.rotation_rpm
+    while probes and probes[0].at <= until:
+        day = probes.popleft()
+        if rpm is not None and rpm > 0:
+            state = analyser.take_in_probe(state, day, rotation_rpm=rpm).state
+    return state
 
 
 def _settled(state: analyser.DriveState, words: deque[Said], until: int | None) -> analyser.DriveState:

@@ -1,7 +1,7 @@
 import pytest
 
 from diskwatch import analyser
-from diskwatch.records import CallWord, Cause, ProbeDay, Settled
+from diskwatch.records import CallWord, Cause, Entry, ProbeDay, Settled
 from diskwatch.units import DAY
 from tests.samples import HDD, read
 from tests.trends.probes import seeded
@@ -10,7 +10,8 @@ from tests.trends.test_probed import RPM, a_day
 
 def lived(state, days, *, first, seed, **kind):
     """Probes behind a reading of each day; gives the state and what happened."""
-    chance, happened = seeded(seed), []
+    chance = seeded(seed)
+    happened: list[Entry] = []
     for number in range(first, first + days):
         state = analyser.advance(state, read(number * DAY, HDD, crc_errors=0)).state
         step = analyser.take_in_probe(state, a_day(chance, number, **kind), rotation_rpm=RPM)

@@ -22,10 +22,11 @@ def test_every_kind_of_row_of_a_drive_leaves_and_none_of_another(history):
     connection.execute("INSERT INTO answer VALUES (1, ?, 'keep', ?)", (NOON, packing.packed("all of it")))
     connection.execute("INSERT INTO latency_state VALUES (1, 20000, ?)", (packing.packed("{}"),))
     connection.execute("INSERT INTO forecast VALUES (1, 'x', 20000, 100, 'drive', 1, 2, 0.8, NULL, NULL)")
+    connection.execute("INSERT INTO probe VALUES (1, ?, 0, 1800, ?)", (NOON, packing.packed("[[1],[2]]")))
     found = Counter(line.record for line in lines_of(connection, 1))
     assert found == {
         "drive": 1, "owner": 1, "place": 1, "passes": 1, "pass": 3, "value": 9, "beside": 1, "evidence": 6,
-        "heard": 1, "answer": 1, "latency": 1, "forecast": 1, "load": 1, "finding": 4,
+        "heard": 1, "answer": 1, "latency": 1, "forecast": 1, "probe": 1, "load": 1, "finding": 4,
         "call": 3, "event": 3, "copy": 2, "state": 1,
     }  # fmt: skip  # a table reads better in rows
     assert {line.drive for line in lines_of(connection, 1)} == {1}

@@ -16,6 +16,8 @@ from diskwatch.records import Drive, DriveRound, Failing, Outcome, Place, Round
 from diskwatch.service.arrival import take_in
 from diskwatch.service.owner import settle
 from tests.samples import DAY, HDD, HERE, NOON, SSD, attribute, missed, read as read_pass
+from tests.trends.probes import seeded
+from tests.trends.test_probed import a_day
 
 ELSEWHERE = Place(device="/dev/sdq", bay="pci-9")
 
@@ -107,6 +109,31 @@ def test_readings_put_together_again_lead_to_the_same_state(tmp_path):
         for _, pass_ in passes_with_readings(history._db.conn, 1, None):
             again = analyser.advance(again, replace(pass_, drive=HDD)).state
     assert analyser.dump(again) == state
+
+
+def test_probes_arrive_and_lead_to_the_same_ledgers(tmp_path):
+    here, there = tmp_path / "here", tmp_path / "there"
+    chance = seeded(1)
+    with kept(here) as history:
+        known = history.admit(HDD, HERE, NOON)
+        state = analyser.start()
+        for pass_ in a_life(20):
+            day = None
+            if (pass_.at - NOON) % DAY == 0:
+                retried = 0.02 if pass_.at > NOON + 16 * DAY else 0.0
+                day = replace(a_day(chance, 0, retried=retried), at=pass_.at)
+                state = analyser.take_in_probe(state, day, rotation_rpm=7200).state
+            step = analyser.advance(state, pass_)
+            state = step.state
+            part = DriveRound(known=known, pass_=pass_, state=analyser.dump(state), call=step.call, probe=day)
+            history.record(Round(at=pass_.at, drives=(part,)))
+    assert state.probe is not None
+    assert state.probe.late.late > 0
+    whole = json.loads(exported(here))
+    whole["rows"] = [row for row in whole["rows"] if row["record"] not in {"state", "copy"}]
+    taken(there, json.dumps(whole))
+    with Past.open(there) as past:
+        assert past.state(1) == analyser.dump(state)
 
 
 @pytest.mark.parametrize("form", ["json", "csv"])
