@@ -3,7 +3,7 @@
 A fact calls at once, also on the first reading. Everything else on a first reading is a level.
 """
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 
 from diskwatch.judge import sentences
 from diskwatch.judge.language import _, marked
@@ -87,18 +87,22 @@ def _fact(
     )
 
 
-def _verdict(reading: Reading, at: int) -> Iterator[Finding]:
+def _verdict(reading: Reading, at: int) -> Iterable[Finding]:
     """The drive's own verdict; an NVMe drive that only warns of its temperature is hot, not failing."""
     warning = reading.number("critical-warning") or 0
     failed = reading.get("self-assessment") == "failed"
+    if not failed and not warning:
+        return ()
     if warning == _HEAT_ONLY:
-        yield _fact(
-            "warns-of-heat", at, CallWord.LOOK, Cause.HEAT, sentences.warns_of_heat(), "critical-warning"
+        return (
+            _fact(
+                "warns-of-heat", at, CallWord.LOOK, Cause.HEAT, sentences.warns_of_heat(), "critical-warning"
+            ),
         )
-    elif failed or warning:
-        meant = [(name, cause) for bit, name, cause in WARNINGS if warning & bit]
-        names = ", ".join(_(name) for name, _cause in meant)
-        yield _fact(
+    meant = [(name, cause) for bit, name, cause in WARNINGS if warning & bit]
+    names = ", ".join(_(name) for name, _cause in meant)
+    return (
+        _fact(
             "self-assessment",
             at,
             CallWord.RETIRE,
@@ -106,23 +110,31 @@ def _verdict(reading: Reading, at: int) -> Iterator[Finding]:
             sentences.self_assessment_failed(names, _counted(reading)),
             "self-assessment",
             critical_warning=warning,
-        )
+        ),
+    )
 
 
-def _warning(reading: Reading, at: int) -> Iterator[Finding]:
+def _warning(reading: Reading, at: int) -> Iterable[Finding]:
     """What a SCSI drive warns of instead of a verdict; a prediction that it tries out is no warning."""
     warning = reading.get("drive-warning")
+    if not isinstance(warning, str):
+        return ()
     if warning == DriveWarning.TEMPERATURE:
-        yield _fact("warns-of-heat", at, CallWord.LOOK, Cause.HEAT, sentences.warns_of_heat(), "drive-warning")
-    elif isinstance(warning, str) and warning in _BLAMED:
-        yield _fact(
+        return (
+            _fact("warns-of-heat", at, CallWord.LOOK, Cause.HEAT, sentences.warns_of_heat(), "drive-warning"),
+        )
+    if warning not in _BLAMED:
+        return ()
+    return (
+        _fact(
             f"warns-of-{warning}",
             at,
             CallWord.LOOK,
             _BLAMED[warning],
             sentences.warns_of(DriveWarning(warning)),
             "drive-warning",
-        )
+        ),
+    )
 
 
 def _counted(reading: Reading) -> dict[str, int]:
@@ -167,10 +179,12 @@ def _attributes(reading: Reading, at: int) -> Iterator[Finding]:
             return
 
 
-def _spare(reading: Reading, at: int) -> Iterator[Finding]:
+def _spare(reading: Reading, at: int) -> Iterable[Finding]:
     spare, threshold = reading.number("available-spare"), reading.number("spare-threshold")
-    if spare is not None and threshold is not None and spare < threshold:
-        yield _fact(
+    if spare is None or threshold is None or spare >= threshold:
+        return ()
+    return (
+        _fact(
             "spare",
             at,
             CallWord.RETIRE,
@@ -179,23 +193,26 @@ def _spare(reading: Reading, at: int) -> Iterator[Finding]:
             "available-spare",
             spare=spare,
             threshold=threshold,
-        )
+        ),
+    )
 
 
-def _wear(reading: Reading, at: int, first_spare: int | None) -> Iterator[Finding]:
+def _wear(reading: Reading, at: int, first_spare: int | None) -> Iterable[Finding]:
     """Past the rated endurance, which is no failure; together with a falling spare the data should move."""
     used, spare = reading.number("percentage-used"), reading.number("available-spare")
     if used is None or used < 100:
-        return
+        return ()
     falling = spare is not None and first_spare is not None and spare < first_spare
-    yield _fact(
-        "worn-out" if falling else "worn",
-        at,
-        CallWord.COPY if falling else CallWord.LOOK,
-        Cause.WEAR_OUT,
-        sentences.worn(used, spare, falling=falling),
-        "percentage-used",
-        used=used,
+    return (
+        _fact(
+            "worn-out" if falling else "worn",
+            at,
+            CallWord.COPY if falling else CallWord.LOOK,
+            Cause.WEAR_OUT,
+            sentences.worn(used, spare, falling=falling),
+            "percentage-used",
+            used=used,
+        ),
     )
 
 
@@ -229,15 +246,16 @@ def _self_tests(reading: Reading, at: int) -> Iterator[Finding]:
             return
 
 
-def _heat(reading: Reading, at: int) -> Iterator[Finding]:
+def _heat(reading: Reading, at: int) -> Iterable[Finding]:
     """At or above the drive's own limit; the limit comes from the drive, never from a table of ours."""
-    celsius = reading.number("temperature")
     limit = reading.warning_celsius if reading.warning_celsius is not None else reading.critical_celsius
-    warmth_failing = any(
-        attribute.failing is Failing.NOW and attribute.number in _WARMTH for attribute in reading.attributes
-    )
-    if celsius is not None and limit is not None and celsius >= limit and not warmth_failing:
-        yield _fact(
+    celsius = reading.number("temperature")
+    if limit is None or celsius is None or celsius < limit:
+        return ()
+    if any(one.failing is Failing.NOW and one.number in _WARMTH for one in reading.attributes):
+        return ()
+    return (
+        _fact(
             "hot",
             at,
             CallWord.LOOK,
@@ -246,4 +264,5 @@ def _heat(reading: Reading, at: int) -> Iterator[Finding]:
             "temperature",
             celsius=celsius,
             limit=limit,
-        )
+        ),
+    )

@@ -51,11 +51,14 @@ def seen(spots: Spots, *, day: int, replaced: int | None, pending: int | None) -
         replaced: sectors replaced, or None where not known this time.
         pending: sectors pending, or None likewise.
     """
+    rises = spots.rises
+    # Nearly every reading: what it told is known already, and nothing was fresh.
+    if not rises and replaced == spots.replaced and pending == spots.pending:
+        return spots
     values = [value for value in (replaced, pending) if value is not None]
     coarse = spots.coarse and all(value % _COARSE == 0 for value in values)
     size = _COARSE if coarse else 1
     fresh = _rise(spots.replaced, replaced) + _rise(spots.pending, pending)
-    rises = spots.rises
     if rises and rises[0][0] <= day - WINDOW:
         rises = tuple((when, count) for when, count in rises if when > day - WINDOW)
     if fresh:
