@@ -85,7 +85,8 @@ def leading(findings: Iterable[Finding]) -> Finding | None:
 
 
 def _asking(findings: Iterable[Finding]) -> tuple[Finding, ...]:
-    return leading_first(one for one in findings if one.calls is not None and one.calls is not CallWord.KEEP)
+    asking = [one for one in findings if one.calls is not None and one.calls is not CallWord.KEEP]
+    return leading_first(asking) if len(asking) > 1 else tuple(asking)
 
 
 def decide(
@@ -100,7 +101,7 @@ def decide(
 
     Args:
         findings: everything that stands.
-        before: the call until now, or None.
+        before: the call until now, or None; what does not differ from it is this very call.
         at: now, UTC seconds since 1970.
         quiet: the sentence for when nothing asks for a deed.
         explained: what the drive's signs point to, where the table of causes was asked; without it the cause is
@@ -126,7 +127,7 @@ def decide(
     lead = asking[0]
     word = lead.calls or CallWord.LOOK
     cause, probability, second = _cause(lead, asking, before, explained)
-    return Call(
+    now = Call(
         word=word,
         at=before.at if before and before.word is word else at,
         cause=cause,
@@ -136,6 +137,7 @@ def decide(
         rule=lead.name,
         evidence=lead.evidence if lead.kind is FindingKind.DRIFT else None,
     )
+    return before if before == now else now
 
 
 def _cause(

@@ -249,19 +249,19 @@ def quiet(old: Mapping[str, int], risen: Mapping[str, int], word: Settled | None
     """
     came = _("It came with old defects: {counts}.").format(counts=counted(old)) if old else ""
     said = settled(word) if word else ""
-    if word:
+    if risen:
         text = (
             _("Since then: {counts}. That is within the norm so far.")
-            if risen
-            else _("No error counter has gone beyond its norm since then.")
-        )
+            if word
+            else _("Since it has been watched: {counts}. That is within the norm so far.")
+        ).format(counts=counted(risen))
     else:
         text = (
-            _("Since it has been watched: {counts}. That is within the norm so far.")
-            if risen
+            _("No error counter has gone beyond its norm since then.")
+            if word
             else _("No error counter has gone beyond its norm since it has been watched.")
         )
-    return _joined(came, said, text.format(counts=counted(risen)))
+    return _joined(came, said, text)
 
 
 def settled(word: Settled) -> str:
