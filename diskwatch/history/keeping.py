@@ -58,6 +58,8 @@ _BY_UNIT = {
     "opaque": Daily.LAST,  # packed rates move at every pass; what they mean is not known
     "hours": Daily.LAST,
     "minutes": Daily.LAST,
+    "seconds": Daily.LAST,
+    "operations": Daily.LAST,
     "celsius": Daily.HIGHEST,
 }
 

@@ -1,13 +1,15 @@
 """ATA drives: the attribute table, and the signals in it."""
 
 import re
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import replace
 from typing import Any
 
-from diskwatch.machine import device_statistics, meanings, packing
+from diskwatch.machine import device_statistics, meanings, packing, rates
 from diskwatch.machine.document import Document, flag_at, natural_at, number_at, rows_at, text_at
 from diskwatch.machine.meanings import AtaMeaning
 from diskwatch.machine.text import Sheet, whole
+from diskwatch.machine.volumes import sector_of, volumes
 from diskwatch.records import Attribute, Failing, SignalKind, Value
 
 _ROW = re.compile(
@@ -15,11 +17,10 @@ _ROW = re.compile(
     r"\s+(?P<value>[0-9]{3}|---)\s+(?P<worst>[0-9]{3}|---)\s+(?P<threshold>[0-9]{3}|---)"
     r"(?:\s+(?P<type>Pre-fail|Old_age)\s+(?:Always|Offline))?\s+(?P<failing>-|\w+)\s+(?P<raw>\S.*)"
 )
+_DISPUTED = frozenset({"reallocated-sectors", "pending-sectors", "reported-uncorrectable", "crc-errors"})
+
 _FAILING = {"failing_now": Failing.NOW, "now": Failing.NOW, "in_the_past": Failing.PAST, "past": Failing.PAST}
 _PREFAIL_FLAG = 0x0001
-
-_LEAST_MOVED = 1_000_000
-"""Bytes that a drive moves in one power cycle at the very least: even mounting it reads more (practice)."""
 
 
 def attributes(document: Document | None, device: Any, sheet: Sheet) -> tuple[Attribute, ...]:
@@ -41,6 +42,7 @@ def values(
     sheet: Sheet,
     *,
     flash: bool,
+    model: str | None = None,
     statistics_first: bool = True,
 ) -> tuple[Value, ...]:
     """The signals of an ATA drive, one each.
@@ -50,6 +52,7 @@ def values(
         document: smartctl's document, or None.
         sheet: the plain text.
         flash: whether it is a solid-state drive.
+        model: the drive's, or None.
         statistics_first: whether Device Statistics hold where the table states the same signal; if not they
             only fill in what the table leaves open.
     """
@@ -60,11 +63,12 @@ def values(
             known = found.get(meaning.signal)
             if known is None or (known.value is None and value.value is not None):
                 found[meaning.signal] = value
-    cycles = found["power-cycles"].value if "power-cycles" in found else None
-    least = _LEAST_MOVED * (cycles if isinstance(cycles, int) else 1)
-    sector = _sector(document, sheet)
+    hours = found["power-on-hours"].value if "power-on-hours" in found else None
+    sector = sector_of(document, sheet)
     more = (
-        *_volumes(rows, sector, least=least if flash else 0),
+        *_beside(rows, found),
+        *rates.rates(rows, model),
+        *volumes(rows, sector=sector, flash=flash, hours=hours if isinstance(hours, int) else None),
         *_wear(rows, known_model=_in_table(document, sheet)),
         *_exact(document),
         *_error_log(document, sheet),
@@ -72,6 +76,9 @@ def values(
     found.update({value.signal: value for value in more})
     for value in device_statistics.values(document, sheet, sector=sector):
         known = found.get(value.signal)
+        if known is not None and known.value and statistics_first and _disputed(value, known):
+            signal = f"{value.signal}-by-attribute"
+            found[signal] = replace(known, signal=signal)
         if known is None or known.value is None or (statistics_first and value.value is not None):
             found[value.signal] = value
     return tuple(found.values())
@@ -149,61 +156,31 @@ def _value(meaning: AtaMeaning, row: Attribute) -> Value:
     )
 
 
+def _disputed(logged: Value, known: Value) -> bool:
+    """Whether log 04h states no error where the table states some: then both are told."""
+    return logged.value == 0 and logged.signal in _DISPUTED and logged.unit == known.unit
+
+
+def _beside(rows: Sequence[Attribute], found: Mapping[str, Value]) -> Iterator[Value]:
+    """What stands beside the main value of a field, and raw values that are packed in an unknown way."""
+    for meaning in meanings.PARTS:
+        for row in _meant(rows, meaning):
+            part = _value(meaning, row)
+            if part.value is not None:
+                yield part
+                break
+    for meaning in meanings.ATA:
+        value = found.get(meaning.signal)
+        if value is not None and value.reason == packing.PACKED:
+            for row in _meant(rows, meaning):
+                if value.source == f"attribute {row.number}":
+                    yield from rates.opaque(row, meaning.signal)
+
+
 def _in_table(document: Document | None, sheet: Sheet) -> bool:
     """Whether smartctl's own table knows the model, so that names and units are more than a default."""
     told = flag_at(document, "in_smartctl_database")
     return told if told is not None else (sheet.get("Device is") or "").lower().startswith("in ")
-
-
-def _volumes(rows: Sequence[Attribute], sector: int | None, *, least: int) -> Iterator[Value]:
-    """Data written and read, where the attribute's name states the unit.
-
-    Many solid-state drives count in 32 MiB or GiB under a default name of smartctl that says blocks. Where
-    blocks would add up to next to nothing, the unit is not known, for both directions.
-
-    Args:
-        rows: the attribute table.
-        sector: bytes in a logical block, or None.
-        least: bytes below which a count of blocks is not believed.
-    """
-    named: dict[str, tuple[Attribute, int | None]] = {}
-    for number in meanings.VOLUME_NUMBERS:
-        for row in rows:
-            signal, step = meanings.VOLUMES.get(row.name.lower(), ("", None))
-            if signal and row.number == number:
-                named.setdefault(signal, (row, step))
-    counted = {signal: packing.volume(row.raw) for signal, (row, _) in named.items()}
-    doubtful = any(
-        steps is not None and sector is not None and steps * sector < least
-        for signal, (steps, _) in counted.items()
-        if named[signal][1] is None
-    )
-    for signal, (row, step) in named.items():
-        steps, reason = counted[signal]
-        size = step if step is not None else sector
-        if steps is not None and (size is None or (step is None and doubtful)):
-            steps, reason = None, "the unit in which this drive counts is not known"
-        yield Value(
-            signal=signal,
-            value=steps * size if steps is not None and size is not None else None,
-            unit="bytes",
-            kind=SignalKind.COUNT,
-            source=f"attribute {row.number}",
-            reason=reason,
-        )
-
-
-_SECTORS = frozenset({512, 520, 524, 528, 4_096, 4_104, 4_112, 4_160, 4_224})
-"""Bytes that logical blocks have, with and without room for checks (practice)."""
-
-
-def _sector(document: Document | None, sheet: Sheet) -> int | None:
-    """Bytes in a logical block, where a size is stated that blocks have."""
-    told = number_at(document, "logical_block_size")
-    if told is None:
-        found = re.match(r"([0-9]{3,6}) bytes logical", sheet.get("Sector Size", "Sector Sizes") or "")
-        told = int(found[1]) if found is not None else None
-    return told if told in _SECTORS else None
 
 
 def _wear(rows: Sequence[Attribute], *, known_model: bool) -> Iterator[Value]:

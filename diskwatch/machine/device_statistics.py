@@ -16,7 +16,6 @@ from diskwatch.records import SignalKind, Value
 
 SOURCE = "log 04h"
 
-_FULL = "the counter stands at the most that its field can hold"
 _NO_SECTOR = "the size of this drive's sectors is not known"
 _COUNT, _GAUGE, _WEAR, _TIME = SignalKind.COUNT, SignalKind.GAUGE, SignalKind.WEAR, SignalKind.TIME
 
@@ -122,7 +121,7 @@ def _value(field: _Field, signal: str, unit: str, kind: SignalKind, sector: int 
     if unit == "celsius":
         value, reason = packing.sane_celsius(field.value)
     elif field.size is not None and field.value == 256**field.size - 1:
-        value, reason = None, _FULL
+        value, reason = None, packing.FULL
     elif unit == "hours":
         value, reason = packing.sane_hours(field.value)
     elif unit == _SECTORS:

@@ -8,12 +8,11 @@ from typing import Any
 from diskwatch.machine import background_scan, meanings
 from diskwatch.machine.document import Document, dig, number_at, text_at
 from diskwatch.machine.meanings import LogMeaning
-from diskwatch.machine.packing import sane_celsius
+from diskwatch.machine.packing import FULL, HOTTEST, sane_celsius
 from diskwatch.machine.text import Sheet, hexadecimal, whole
 from diskwatch.records import SignalKind, Value
 
 _UNREADABLE = "what stands there is no number"
-_FULL = "the counter stands at the most that its field can hold"
 _SILENT = "the drive states 0, which stands for not reported"
 _NOTHING = "the drive states no temperature"
 _COUNTER_FULL = 2**32 - 1
@@ -62,7 +61,7 @@ def _trip(document: Document | None, sheet: Sheet) -> int | None:
 def trip_celsius(document: Document | None, sheet: Sheet) -> int | None:
     """The temperature at which a SCSI drive calls itself too hot; 0 and FFh stand for none."""
     told = _trip(document, sheet)
-    return told if told is not None and 0 < told <= 150 else None
+    return told if told is not None and 0 < told <= HOTTEST else None
 
 
 def nvme_limits(document: Document | None, sheet: Sheet) -> tuple[int | None, int | None]:
@@ -72,7 +71,7 @@ def nvme_limits(document: Document | None, sheet: Sheet) -> tuple[int | None, in
         told = number_at(document, "nvme_composite_temperature_threshold", key)  # the key is from memory
         if told is None:
             told = whole(sheet.get(f"{key} Comp. Temp. Threshold") or "")
-        limits.append(told if told is not None and 0 < told <= 150 else None)
+        limits.append(told if told is not None and 0 < told <= HOTTEST else None)
     return limits[0], limits[1]
 
 
@@ -115,7 +114,7 @@ def _judged(meaning: LogMeaning, number: int | None) -> tuple[int | None, str | 
     if number is None:
         return None, _UNREADABLE
     if number == meaning.most:
-        return None, _FULL if meaning.unit != "celsius" else _NOTHING
+        return None, FULL if meaning.unit != "celsius" else _NOTHING
     if number == 0 and meaning.zero_unknown:
         return None, _SILENT
     if meaning.unit == "celsius":
@@ -150,7 +149,7 @@ def _error_counters(document: Document | None, device: Any, sheet: Sheet) -> Ite
                 unit="errors",
                 kind=SignalKind.COUNT,
                 source=f"SCSI {what} error log",
-                reason=_FULL if full else None,
+                reason=FULL if full else None,
             )
         printed = text_at(page, "gigabytes_processed") or (rows[what]["moved"] if what in rows else None)
         if what in _MOVED and printed is not None and re.fullmatch(r"[0-9]{1,20}[.,][0-9]{3}", printed):

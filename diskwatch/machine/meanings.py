@@ -123,6 +123,43 @@ ATA: tuple[AtaMeaning, ...] = (
     ),
 )
 
+PARTS: tuple[AtaMeaning, ...] = (
+    # On makers' drives that keep three words, the upper two count commands that took longer than 5 and than 7.5
+    # seconds (memory).
+    _ata("slow-commands", (188,), r"command_timeout", "events", "[SC] memory", decode=packing.middle_word),
+    _ata("slower-commands", (188,), r"command_timeout", "events", "[SC] memory", decode=packing.high_word),
+    # Over its life or since it was switched on, as the maker has it [SC].
+    _ata(
+        "lowest-temperature",
+        (194, 190),
+        r"^(?!.*(warn|fraction|x10)).*temp",
+        "celsius",
+        "[SC]",
+        kind=_GAUGE,
+        decode=packing.lowest_celsius,
+    ),
+    _ata(
+        "highest-temperature",
+        (194, 190),
+        r"^(?!.*(warn|fraction|x10)).*temp",
+        "celsius",
+        "[SC]",
+        kind=_GAUGE,
+        decode=packing.highest_celsius,
+    ),
+)
+"""What stands beside the main value of a raw field; only where it is there."""
+
+RATES: tuple[tuple[int, re.Pattern[str], str], ...] = (
+    (1, re.compile(r"read_error_rate", re.IGNORECASE), "read"),
+    (7, re.compile(r"seek_error_rate", re.IGNORECASE), "seek"),
+    (195, re.compile(r"ecc_(recovered|on_the_fly)", re.IGNORECASE), "corrected"),
+)
+"""Attributes that hold a rate: what their signals begin with. Names [DB]."""
+
+RATE_MAKERS = re.compile(r"ST[0-9]{3,}")
+"""Models whose maker packs errors above 32 bits of operations into them (common practice, no source)."""
+
 RETRACTS = _ata("power-off-retracts", (192, 228), r"power-off_retract", "events", "[DB]")
 """Emergency retracts of the heads. On a drive without heads the same default name hides an unknown meaning."""
 

@@ -76,7 +76,14 @@ def understood(
     warning: int | None = None
     critical: int | None = None
     if family is Family.ATA:
-        values = ata.values(rows, document, sheet, flash=is_flash(drive), statistics_first=statistics_first)
+        values = ata.values(
+            rows,
+            document,
+            sheet,
+            flash=is_flash(drive),
+            model=drive.identity.model if drive is not None else None,
+            statistics_first=statistics_first,
+        )
         warning, critical = sct.limits(document, sheet)
     elif family is Family.NVME:
         media = nvme_errors.media_entries(document, sheet)
@@ -120,7 +127,7 @@ def _possible(value: Value) -> Value:
     """A value, without its number where that cannot be true: a broken tool's document may hold any."""
     if not isinstance(value.value, int):
         return value
-    _, reason = packing.sane(value.value, value.unit)
+    _, reason = packing.sane(value.value, value.unit, value.signal)
     return value if reason is None else replace(value, value=None, reason=reason)
 
 

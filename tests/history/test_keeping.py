@@ -19,6 +19,8 @@ def test_what_a_ledger_follows_is_kept_for_ever(signal):
         ("data-written", "count", "bytes", Daily.LAST),
         ("raw-read-error-rate", "gauge", "opaque", Daily.LAST),
         ("warning-temperature-minutes", "count", "minutes", Daily.LAST),
+        ("light-throttling-seconds", "count", "seconds", Daily.LAST),
+        ("read-operations", "gauge", "operations", Daily.LAST),
         ("percentage-used", "wear", "percent", None),
         ("self-assessment", "word", "word", None),
         ("read-latency", None, None, None),

@@ -1,8 +1,8 @@
 import pytest
 
-from diskwatch.machine import ata
+from diskwatch.machine import ata, packing
 from diskwatch.machine.text import Sheet
-from diskwatch.records import Attribute, Failing, Value
+from diskwatch.records import Attribute, Failing, SignalKind, Value
 
 HEAD = """Sector Size:      512 bytes logical/physical
 Device is:        {known}
@@ -101,24 +101,41 @@ def test_flash_writes_and_gigabytes_of_unknown_size_are_no_host_writes():
     )
 
 
-def test_blocks_of_unknown_size_give_no_bytes():
-    told = Sheet.of([row(241, "Total_LBAs_Written", "5000000")])
-    (found,) = ata.values(ata.attributes(None, None, told), None, told, flash=False)
-    assert found.value is None
-    assert found.reason
+def test_an_unknown_packing_keeps_the_raw_value_of_which_only_changes_mean_anything():
+    found = values(row(9, "Power_On_Hours", str((7 << 24) | 900)), row(188, "Command_Timeout", "70000"))
+    for signal, raw in (("power-on-hours", (7 << 24) | 900), ("command-timeouts", 70_000)):
+        assert (found[signal].value, found[signal].reason) == (None, packing.PACKED)
+        kept = found[f"raw-{signal}"]
+        assert (kept.value, kept.unit, kept.kind) == (raw, "opaque", SignalKind.GAUGE)
+    assert not [signal for signal in values(row(9, "Power_On_Hours", "900")) if signal.startswith("raw-")]
 
 
-def test_a_flash_drive_that_would_have_moved_next_to_nothing_counts_in_another_unit():
-    rows = (
-        row(12, "Power_Cycle_Count", "1000"),
-        row(241, "Total_LBAs_Written", "176271"),
-        row(242, "Total_LBAs_Read", "964812000"),
+def test_what_stands_beside_the_main_value_is_told_where_it_is_there():
+    found = values(row(188, "Command_Timeout", "2 5 9"), row(194, "Temperature_Celsius", "40 (Min/Max 17/58)"))
+    assert {signal: value.value for signal, value in found.items()} == {
+        "command-timeouts": 9,
+        "slow-commands": 5,
+        "slower-commands": 2,
+        "temperature": 40,
+        "lowest-temperature": 17,
+        "highest-temperature": 58,
+    }
+
+
+def test_errors_that_log_04h_denies_and_the_table_counts_are_told_both_ways():
+    log = (
+        "",
+        "Device Statistics (GP Log 0x04)",
+        "0x03  0x020  4               0  ---  Number of Reallocated Logical Sectors",
+        "0x04  0x008  4               5  ---  Number of Reported Uncorrectable Errors",
     )
-    flash, turning = values(*rows, flash=True), values(*rows)
-    for signal in ("data-written", "data-read"):
-        assert flash[signal].value is None
-        assert flash[signal].reason
-        assert turning[signal].value is not None
+    found = values(row(5, "Reallocated_Sector_Ct", "2264"), row(187, "Reported_Uncorrect", "5"), *log)
+    told = {signal: (value.value, value.source) for signal, value in found.items()}
+    assert told == {
+        "reallocated-sectors": (0, "log 04h"),
+        "reallocated-sectors-by-attribute": (2264, "attribute 5"),
+        "reported-uncorrectable": (5, "log 04h"),
+    }
 
 
 KNOWN = "In smartctl database 7.3/5319"
