@@ -3,6 +3,7 @@
 from collections.abc import Mapping
 
 from diskwatch.analyser.around import Around
+from diskwatch.analyser.counters import turns
 from diskwatch.analyser.heat import limit_of
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import causes
@@ -71,8 +72,10 @@ _WARNS = "fact:warns-of-"
 """How facts begin that a drive warns of; most of them name their cause as well."""
 
 _SILENT = "fact:unreadable"
-_BUILD = "no cable"
+_BUILD = frozenset({"no cable", "turning platters", "no platters"})
 """What a drive is built like, which is no trouble."""
+
+_FLASH = frozenset({Kind.NVME, Kind.SSD})
 
 _BEYOND_NORM = frozenset({_SILENT, "fact:link-again"})
 """Facts that no drive within its norms shows, so that a sound one is no explanation."""
@@ -93,7 +96,7 @@ def put(state: DriveState, pass_: Pass, lead: Finding | None, around: Around) ->
     if lead is None or _tells_itself(lead):
         return {}
     told = {sign: showing for sign, showing in shown(state, pass_, around).items() if showing is not None}
-    if lead.name == _SILENT and not any(showing for sign, showing in told.items() if sign != _BUILD):
+    if lead.name == _SILENT and not any(showing for sign, showing in told.items() if sign not in _BUILD):
         return {}
     return told
 
@@ -154,9 +157,18 @@ def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool |
         told["media counter"] = True
     harmed = any(told.get(sign) for sign in _DEFECTS)
     told["vanished without media error"] = None if harmed else _comes_and_goes(state, day)
-    if pass_.drive is not None and pass_.drive.kind is Kind.NVME:
-        told[_BUILD] = True
-    return told
+    return {**told, **_build(pass_, reading)}
+
+
+def _build(pass_: Pass, reading: Reading) -> Mapping[str, bool]:
+    """What the drive is built like, as far as can be told: some causes have nothing there to act on."""
+    kind = None if pass_.drive is None else pass_.drive.kind
+    told = {
+        "no cable": kind is Kind.NVME,
+        "turning platters": turns(pass_, reading),
+        "no platters": kind in _FLASH,
+    }
+    return {sign: True for sign, built in told.items() if built}
 
 
 def _shows(state: DriveState, day: int, sign: str) -> bool | None:

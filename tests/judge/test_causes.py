@@ -47,6 +47,48 @@ def test_a_certain_cause_is_named_alone_and_an_uncertain_one_with_its_runner_up(
     assert alone.second is not None or alone.cause is Cause.UNCLEAR
 
 
+QUIET = [
+    "media counter",
+    "uncorrectable event",
+    "CRC counter",
+    "command timeout",
+    "hot",
+    "slow when hot",
+    "vanished without media error",
+]
+"""Signs that most disks could show and do not."""
+
+
+def test_reads_that_slow_while_writes_do_not_point_to_a_head_before_any_counter_moves():
+    found = causes.explain(["reads slower", "turning platters"], [*QUIET, "writes slower"], drifting=True)
+    assert (found.cause, found.second) == (Cause.HEAD, Cause.LOAD)
+
+
+def test_defects_of_a_disk_whose_reads_slowed_are_the_head_and_without_slow_reads_the_medium():
+    defects = ["media counter", "uncorrectable event", "turning platters"]
+    quiet = ["CRC counter", "command timeout", "hot", "slow when hot", "writes slower"]
+    slowed = causes.explain([*defects, "reads slower"], quiet)
+    assert (slowed.cause, slowed.second) == (Cause.HEAD, None)
+    assert slowed.probability >= causes.NAMED
+    at_pace = causes.explain(defects, [*quiet, "reads slower"])
+    assert (at_pace.cause, at_pace.second) == (Cause.MEDIA, None)
+
+
+def test_a_drive_without_platters_has_no_head_that_weakens_and_a_turning_one_no_flash_that_wears():
+    slow = ["reads slower", "writes slower"]
+    flash = causes.posterior([*slow, "no platters"], QUIET)
+    disk = causes.posterior([*slow, "turning platters"], QUIET)
+    assert flash["head"] < 0.1 * disk["head"]
+    assert disk["wear-out"] < 0.2 * flash["wear-out"]
+
+
+def test_a_drive_on_the_board_that_comes_and_goes_without_any_other_sign_is_its_controller():
+    shown = ["vanished without media error", "no cable", "no platters"]
+    absent = ["flash media errors", "unsafe power-off", "writes slower", "several drives at once"]
+    found = causes.explain(shown, absent, drifting=True)
+    assert (found.cause, found.second) == (Cause.CONTROLLER, None)
+
+
 def test_what_a_sound_drive_explains_best_is_unclear():
     assert causes.explain([], ["media counter", "CRC counter"]).cause is Cause.UNCLEAR
 
