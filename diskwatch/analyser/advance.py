@@ -85,7 +85,7 @@ def advance(state: DriveState, pass_: Pass, around: Around = ALONE) -> Step:
         now = _missed(now, pass_, around)
     lead = rules.leading(now.standing.values())
     told_signs = signs.put(now, pass_, lead, around)
-    call = _called(now, pass_, signs.explained(told_signs, lead))
+    call = _called(now, pass_, lead, signs.explained(told_signs, lead))
     if call is not None and (state.call is None or call.word is not state.call.word):
         happened += told_call(state.call, call)
     if call is not state.call or told_signs != state.signs:
@@ -108,17 +108,20 @@ def _taken_in(
     state: DriveState, pass_: Pass, reading: Reading, around: Around
 ) -> tuple[DriveState, list[Entry]]:
     """A reading: levels, rises, ledgers, damage, facts."""
-    listened = heard.followed(pass_)
-    counts = {**counters.followed(reading), **listened}
+    day = day_number(pass_.at)
+    counts = first_counts = counters.followed(reading)
+    if pass_.heard:
+        listened = heard.followed(pass_)
+        first_counts = {**counts, **heard.firsts(listened)}
+        counts = {**counts, **listened}
     risen, happened = counters.rises(state, pass_, counts)
     happened = heard.news(happened, pass_)
     hours = reading.number("power-on-hours")
     streams = counters.streams(state, pass_, counts, risen, hours)
-    firsts = _firsts(state, reading, {**counts, **heard.firsts(listened)})
+    firsts = _firsts(state, reading, first_counts)
     damage = counters.damage(state, pass_, reading)
     retracts, retracted = witness(state, reading)
     stated = tuple(facts.facts(reading, at=pass_.at, first_spare=firsts.get("available-spare")))
-    day = day_number(pass_.at)
     days = troubles(state, (*risen, RETRACTS) if retracted else risen, [one.name for one in stated], day)
     days_felt, temperature = heat.carried(state, pass_, reading)
     # Written out: replace() takes three times as long, and a replay of years comes by here for every day.
@@ -133,7 +136,7 @@ def _taken_in(
         firsts=firsts,
         latest={**state.latest, **counts},
         base=state.base,
-        risen={**state.risen, **dict.fromkeys(risen, day_number(pass_.at))} if risen else state.risen,
+        risen={**state.risen, **dict.fromkeys(risen, day)} if risen else state.risen,
         rose=counters.rose(state.rose, streams, heard.in_streams(risen)) if risen else state.rose,
         streams=streams,
         spots=damage,
@@ -197,7 +200,7 @@ def _standing(before: Mapping[str, Finding], shown: tuple[Finding, ...], at: int
     return after
 
 
-def _called(state: DriveState, pass_: Pass, explained: Explained | None) -> Call | None:
+def _called(state: DriveState, pass_: Pass, lead: Finding | None, explained: Explained | None) -> Call | None:
     """The call, or None as long as nothing is known of the drive."""
     if state.first_at is None and not state.standing:
         if pass_.outcome is Outcome.NO_SMART and pass_.drive is not None and pass_.drive.kind is Kind.VIRTUAL:
@@ -207,17 +210,18 @@ def _called(state: DriveState, pass_: Pass, explained: Explained | None) -> Call
         state.standing.values(),
         before=state.call,
         at=pass_.at,
-        quiet=quiet(state, pass_.at),
+        quiet=quiet(state, pass_.at) if lead is None else "",
         explained=explained,
     )
 
 
 def quiet(state: DriveState, at: int) -> str:
     """The reason for keep, where nothing asks for a deed."""
-    old = {signal: count for signal in findings.DEFECTS if (count := state.firsts.get(signal, 0)) > 0}
+    firsts = state.firsts
+    old = {signal: firsts[signal] for signal in findings.DEFECTS if signal in firsts and firsts[signal] > 0}
     if state.first_at is None or state.first_at == at:
         return sentences.first_reading(old)
-    since = {**state.firsts, **state.base} if state.base else state.firsts
+    since = {**firsts, **state.base} if state.base else firsts
     risen = {signal: now - since[signal] for signal, now in state.latest.items() if now > since[signal]}
     return sentences.quiet(old, risen, state.word)
 

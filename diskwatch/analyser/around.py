@@ -41,6 +41,8 @@ class Around:
 
     def shared(self, state: DriveState, day: int) -> tuple[Shared, ...]:
         """Trouble that the drive had on the same days as others."""
+        if not self.others:
+            return ()
         return neighbours.shared(state.troubles, (one.troubles for one in self.others), day)
 
     def signs(self, state: DriveState, day: int) -> Mapping[str, bool | None]:

@@ -69,7 +69,7 @@ def streams(
         elif pass_.at < (state.last_at or 0) - DAY:
             # The clock was set back: closed days are not lived twice, the open one moves with the clock.
             stream = replace(stream, day=day)
-        if not risen.keys().isdisjoint(norm.signals):
+        if risen and not risen.keys().isdisjoint(norm.signals):
             stream = episodes.rise(stream, norm_per_day=norm.per_day)
         after[norm.stream] = stream
     return after
@@ -79,7 +79,7 @@ def rose(
     before: Mapping[str, float], after: Mapping[str, episodes.Stream], risen: Mapping[str, int]
 ) -> Mapping[str, float]:
     """The powered days at which each stream last rose, carried past a reading that brought rises."""
-    streams = {STREAM_OF[signal].stream for signal in risen}
+    streams = dict.fromkeys(STREAM_OF[signal].stream for signal in risen)
     return {**before, **{stream: after[stream].powered + after[stream].exposure for stream in streams}}
 
 

@@ -1,6 +1,6 @@
 """What a drive's state shows by itself after a reading: drifts, fresh defects, the odds rule."""
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Mapping
 
 from diskwatch.analyser.counters import turns
 from diskwatch.analyser.state import DriveState
@@ -36,13 +36,17 @@ _CAUSES: Mapping[str, Cause] = {
     "kernel-errors": Cause.UNCLEAR,
 }
 
+_THRESHOLDS: Mapping[str, float] = {norm.stream: norm.threshold for norm in NORMS}
 
-def drifts(state: DriveState, pass_: Pass) -> Iterator[Finding]:
+
+def drifts(state: DriveState, pass_: Pass) -> Iterable[Finding]:
     """Ledgers at or above their threshold."""
-    for norm in NORMS:
-        stream = state.streams.get(norm.stream)
-        if stream is not None and stream.ledger.evidence >= norm.threshold:
-            yield _drift(state, norm, stream, pass_)
+    return [
+        _drift(state, norm, stream, pass_)
+        for norm in NORMS
+        if (stream := state.streams.get(norm.stream)) is not None
+        and stream.ledger.evidence >= _THRESHOLDS[norm.stream]
+    ]
 
 
 def _drift(state: DriveState, norm: Norm, stream: Stream, pass_: Pass) -> Finding:
@@ -74,14 +78,14 @@ def _latest_riser(state: DriveState, norm: Norm) -> str:
 
 def fresh_defects(
     state: DriveState, pass_: Pass, reading: Reading, risen: Mapping[str, int]
-) -> Iterator[Finding]:
+) -> Iterable[Finding]:
     """The first rise of a defect counter since the drive has been watched, and whatever rose after it."""
-    if risen.keys().isdisjoint(DEFECTS):
-        return
+    if not risen or risen.keys().isdisjoint(DEFECTS):
+        return ()
     turning = turns(pass_, reading)
     telling = [signal for signal in DEFECTS if turning or signal not in _ONLY_TURNING]
     if risen.keys().isdisjoint(telling):
-        return
+        return ()
     since = {**state.firsts, **state.base}
     above = {
         signal: (since[signal], state.latest[signal])
@@ -95,39 +99,43 @@ def fresh_defects(
         if signal in risen
     }
     found = told_odds(state, pass_)
-    yield Finding(
-        name="fact:first-defect",
-        kind=FindingKind.FACT,
-        signals=tuple(shown),
-        since=pass_.at,
-        calls=CallWord.LOOK,
-        cause=Cause.MEDIA,
-        evidence=None,
-        sentence=sentences.fresh_defects(shown, odds_told(found)),
-        data={signal: {"first": first, "now": now} for signal, (first, now) in shown.items()},
+    return (
+        Finding(
+            name="fact:first-defect",
+            kind=FindingKind.FACT,
+            signals=tuple(shown),
+            since=pass_.at,
+            calls=CallWord.LOOK,
+            cause=Cause.MEDIA,
+            evidence=None,
+            sentence=sentences.fresh_defects(shown, odds_told(found)),
+            data={signal: {"first": first, "now": now} for signal, (first, now) in shown.items()},
+        ),
     )
 
 
-def back(state: DriveState, pass_: Pass, risen: Mapping[str, int]) -> Iterator[Finding]:
+def back(state: DriveState, pass_: Pass, risen: Mapping[str, int]) -> Iterable[Finding]:
     """Damaged transfers came back soon after the owner had seen to the link."""
     word = state.settled.get("link")
     if word is None or not risen:
-        return
+        return ()
     norm = next(one for one in NORMS if one.stream == "link")
     again = {signal: risen[signal] for signal in norm.signals if signal in risen}
     stream = state.streams["link"]
     if not again or stream.powered + stream.exposure > rules.LINK_QUIET:
-        return
-    yield Finding(
-        name="fact:link-again",
-        kind=FindingKind.FACT,
-        signals=tuple(again),
-        since=pass_.at,
-        calls=CallWord.LOOK,
-        cause=Cause.LINK,
-        evidence=None,
-        sentence=sentences.link_again(again, word),
-        data=dict(again),
+        return ()
+    return (
+        Finding(
+            name="fact:link-again",
+            kind=FindingKind.FACT,
+            signals=tuple(again),
+            since=pass_.at,
+            calls=CallWord.LOOK,
+            cause=Cause.LINK,
+            evidence=None,
+            sentence=sentences.link_again(again, word),
+            data=dict(again),
+        ),
     )
 
 
@@ -161,62 +169,66 @@ def told_odds(state: DriveState, pass_: Pass) -> Odds | None:
     return odds.odds(state.showed, day=day_number(pass_.at)) if state.showed else None
 
 
-def levels(state: DriveState, pass_: Pass) -> Iterator[Finding]:
+def levels(state: DriveState, pass_: Pass) -> Iterable[Finding]:
     """What is worth knowing but calls nothing: the odds."""
     found = told_odds(state, pass_)
     if found is None:
-        return
-    yield Finding(
-        name="level:odds",
-        kind=FindingKind.LEVEL,
-        signals=("reallocated-sectors", "pending-sectors"),
-        since=pass_.at,
-        calls=None,
-        cause=None,
-        evidence=None,
-        sentence=odds_told(found),
-        data={
-            "condition": found.condition,
-            "days": found.days,
-            "share": found.share,
-            "low": found.low,
-            "high": found.high,
-            "level": found.level,
-            "drives": found.drives,
-            "failed": found.failed,
-            "source": found.source,
-            "since_day": found.since_day,
-        },
+        return ()
+    return (
+        Finding(
+            name="level:odds",
+            kind=FindingKind.LEVEL,
+            signals=("reallocated-sectors", "pending-sectors"),
+            since=pass_.at,
+            calls=None,
+            cause=None,
+            evidence=None,
+            sentence=odds_told(found),
+            data={
+                "condition": found.condition,
+                "days": found.days,
+                "share": found.share,
+                "low": found.low,
+                "high": found.high,
+                "level": found.level,
+                "drives": found.drives,
+                "failed": found.failed,
+                "source": found.source,
+                "since_day": found.since_day,
+            },
+        ),
     )
 
 
-def rule(state: DriveState, pass_: Pass) -> Iterator[Finding]:
+def rule(state: DriveState, pass_: Pass) -> Iterable[Finding]:
     """The odds rule."""
     if not state.spots.rises:
-        return
+        return ()
     day = day_number(pass_.at)
     score = spots.fourfold(state.spots, day)
     if score < spots.COPY:
-        return
+        return ()
     retire = score >= spots.RETIRE
     limit = spots.RETIRE if retire else spots.COPY
     fresh = spots.fresh(state.spots, day)
-    yield Finding(
-        name="rule:damage-retire" if retire else "rule:damage-copy",
-        kind=FindingKind.RULE,
-        signals=("reallocated-sectors", "pending-sectors"),
-        since=pass_.at,
-        calls=CallWord.RETIRE if retire else CallWord.COPY,
-        cause=Cause.MEDIA,
-        evidence=None,
-        sentence=sentences.damage(
-            fresh=fresh,
-            pending=state.spots.pending or 0,
-            replaced=state.spots.replaced or 0,
-            score=score / 4,
-            limit=limit / 4,
-            days=spots.WINDOW,
-            odds=odds_told(told_odds(state, pass_)),
+    return (
+        Finding(
+            name="rule:damage-retire" if retire else "rule:damage-copy",
+            kind=FindingKind.RULE,
+            signals=("reallocated-sectors", "pending-sectors"),
+            since=pass_.at,
+            calls=CallWord.RETIRE if retire else CallWord.COPY,
+            cause=Cause.MEDIA,
+            evidence=None,
+            sentence=sentences.damage(
+                fresh=fresh,
+                pending=state.spots.pending or 0,
+                replaced=state.spots.replaced or 0,
+                score=score / 4,
+                limit=limit / 4,
+                days=spots.WINDOW,
+                odds=odds_told(told_odds(state, pass_)),
+            ),
+            data={"score": score / 4, "fresh": fresh, "limit": limit / 4},
         ),
-        data={"score": score / 4, "fresh": fresh, "limit": limit / 4},
     )

@@ -1,6 +1,6 @@
 """How warm a drive runs, day by day, and the ledger that speaks where it runs hotter than it used to."""
 
-from collections.abc import Iterator
+from collections.abc import Iterable
 
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import warmth_told
@@ -27,32 +27,34 @@ def limit_of(reading: Reading) -> int | None:
     return reading.warning_celsius if reading.warning_celsius is not None else reading.critical_celsius
 
 
-def drift(state: DriveState, pass_: Pass, reading: Reading) -> Iterator[Finding]:
+def drift(state: DriveState, pass_: Pass, reading: Reading) -> Iterable[Finding]:
     """The ledger at or above its threshold."""
     ledger = state.temperature
     if ledger.usual is None or ledger.ledger.evidence < THRESHOLD:
-        return
+        return ()
     line = temperatures.line(ledger, limit_of(reading))
     if line is None or len(state.warmth) < 2:
-        return
+        return ()
     yesterday = state.warmth[-2]
-    yield Finding(
-        name=NAME,
-        kind=FindingKind.DRIFT,
-        signals=("temperature",),
-        since=pass_.at,
-        calls=CallWord.LOOK,
-        cause=Cause.HEAT,
-        evidence=ledger.ledger.evidence,
-        sentence=warmth_told.hotter(
-            highest=yesterday.highest, usual=ledger.usual, line=line, evidence=ledger.ledger.evidence
+    return (
+        Finding(
+            name=NAME,
+            kind=FindingKind.DRIFT,
+            signals=("temperature",),
+            since=pass_.at,
+            calls=CallWord.LOOK,
+            cause=Cause.HEAT,
+            evidence=ledger.ledger.evidence,
+            sentence=warmth_told.hotter(
+                highest=yesterday.highest, usual=ledger.usual, line=line, evidence=ledger.ledger.evidence
+            ),
+            data={
+                "stream": "temperature",
+                "signal": "temperature",
+                "highest": yesterday.highest,
+                "usual": ledger.usual,
+                "line": line,
+                "threshold": THRESHOLD,
+            },
         ),
-        data={
-            "stream": "temperature",
-            "signal": "temperature",
-            "highest": yesterday.highest,
-            "usual": ledger.usual,
-            "line": line,
-            "threshold": THRESHOLD,
-        },
     )
