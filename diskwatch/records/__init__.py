@@ -14,7 +14,7 @@ from diskwatch.records.judgement import Call, CallWord, Cause, Finding, FindingK
 from diskwatch.records.listened import LeftOff, Listened
 from diskwatch.records.margin import Margin
 from diskwatch.records.odds import Odds
-from diskwatch.records.probe import ProbeDay
+from diskwatch.records.probe import REQUEST_BYTES, ProbeDay
 from diskwatch.records.reading import (
     ARRAYS,
     FILE_SYSTEMS,
@@ -40,6 +40,7 @@ __all__ = [
     "ARRAYS",
     "FILE_SYSTEMS",
     "KERNEL_LOG",
+    "REQUEST_BYTES",
     "SENSES",
     "Attribute",
     "Bays",

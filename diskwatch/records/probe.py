@@ -2,6 +2,9 @@
 
 from dataclasses import dataclass
 
+REQUEST_BYTES = 256 * 1024
+"""Bytes of one request of a slice: 64 units of 4 KiB, each of which may have to be read again."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class ProbeDay:

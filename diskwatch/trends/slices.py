@@ -11,7 +11,6 @@ from collections.abc import Sequence
 
 from diskwatch.trends.middle import median
 
-REQUEST_BYTES = 256 * 1024
 _AROUND = 7  # neighbours on either side
 
 
