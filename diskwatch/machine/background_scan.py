@@ -14,9 +14,18 @@ from diskwatch.records import SignalKind, Value
 
 SOURCE = "SCSI background scan log"
 
+_UNREAD = "a result of the scan could not be read"
+
 _HEADLINE = "background scan results log"
 _LAST = 0x800
 _PENDING = re.compile(r"require write or reassign|reassignment pending", re.IGNORECASE)
+_SETTLED = re.compile(
+    r"^(?:no reassignment needed|success\w* |reassign\w* by|recovered via|reassignment (?:by|failed)|failed|"
+    r"reassign status: reserved|unknown|reserved)",
+    re.IGNORECASE,
+)
+"""How the other results begin; some of smartctl's wordings, the rest from memory."""
+
 _ROW = re.compile(
     r"\s*(?P<number>[0-9]{1,5})\s+(?P<hours>[0-9]{1,8}):(?P<minutes>[0-9]{2})\s+(?P<lba>[0-9a-fA-F]{8,16})\s+"
     r"\[[0-9a-fA-F]{1,2},[0-9a-fA-F]{1,2},[0-9a-fA-F]{1,2}\]\s+(?P<status>\S.*)"
@@ -60,32 +69,48 @@ def pending(document: Document | None, sheet: Sheet) -> Value | None:
     if not told(document, sheet):
         return None
     rows = list(_from_rows(sheet)) or list(_from_document(document))
+    sound = tuple(row for row in rows if row is not None)
     newest: dict[str, _Found] = {}
-    for row in rows:
+    for row in sound:
         if row.lba not in newest or row.minutes >= newest[row.lba].minutes:
             newest[row.lba] = row
+    unread = len(sound) < len(rows)  # any of which may wait, or tell that another one no longer does
     return Value(
         signal="pending-sectors",
-        value=sum(row.pending for row in newest.values()),
+        value=None if unread else sum(row.pending for row in newest.values()),
         unit="sectors",
         kind=SignalKind.GAUGE,
         source=SOURCE,
+        reason=_UNREAD if unread else None,
     )
 
 
-def _from_rows(sheet: Sheet) -> Iterator[_Found]:
-    inside = False
+def _from_rows(sheet: Sheet) -> Iterator[_Found | None]:
+    """Results in the text, from the table's head to its end; None for one that cannot be read."""
+    inside = below = False
     for line in sheet.lines:
         if _HEADLINE in line.lower():
             inside = True
+        elif inside and "reassign_status" in line:
+            below = True
+        elif not line.strip():
+            below = False
         row = _ROW.fullmatch(line) if inside else None
-        if row is not None and 0 < int(row["number"]) <= _LAST:
+        if row is None:
+            if below and "reassign_status" not in line:
+                yield None
+        elif 0 < int(row["number"]) <= _LAST:
             minutes = int(row["hours"]) * 60 + int(row["minutes"])
-            waits = _PENDING.search(row["status"]) is not None
-            yield _Found(row["lba"].lower().lstrip("0"), minutes, waits)
+            lba = row["lba"].lower().lstrip("0")
+            yield _found(lba, minutes, row["status"])
 
 
-def _from_document(document: Document | None) -> Iterator[_Found]:
+def _found(lba: str, minutes: int, status: str) -> _Found | None:
+    waits = _PENDING.search(status) is not None
+    return _Found(lba, minutes, waits) if waits or _SETTLED.search(status) is not None else None
+
+
+def _from_document(document: Document | None) -> Iterator[_Found | None]:
     """Results in a document without its text (keys from the program, what lies below them from memory)."""
     scan = dig(document, "scsi_background_scan")
     for number in range(1, _LAST + 1):
@@ -96,5 +121,7 @@ def _from_document(document: Document | None) -> Iterator[_Found]:
         if lba is None:
             lba = natural_at(row, "lba", "value")
         hours, minutes = (number_at(row, "accumulated_power_on", key) for key in ("hours", "minutes"))
-        if status is not None and lba is not None:
-            yield _Found(f"{lba:x}", (hours or 0) * 60 + (minutes or 0), _PENDING.search(status) is not None)
+        if status is None or lba is None or hours is None:
+            yield None
+        else:
+            yield _found(f"{lba:x}", hours * 60 + (minutes or 0), status)

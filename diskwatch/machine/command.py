@@ -130,6 +130,7 @@ class Door:
             for child in self._running:
                 if child.poll() is None:
                     _kill(child)
+            self._reap()
 
     def _enter(self, child: subprocess.Popen[bytes]) -> None:
         """Let a child be stopped; it may have been started while all was being stopped."""
@@ -144,9 +145,17 @@ class Door:
 
         def begin() -> None:
             try:
-                start.put(_child(argv))
+                child = _child(argv)
             except (OSError, ValueError) as error:
                 start.put(error)
+                return
+            start.put(child)
+            with self._lock:
+                waited_for = (owner, start) not in self._late
+                self._reap()
+            if not waited_for:
+                with contextlib.suppress(subprocess.TimeoutExpired):
+                    child.wait(self._grace)
 
         threading.Thread(target=begin, name="starts a command", daemon=True).start()
         try:
@@ -154,6 +163,7 @@ class Door:
         except queue.Empty:
             with self._lock:
                 self._late.append((owner, start))
+                self._reap()  # it may have begun at the last moment
             return Answer(ending=Ending.TIMED_OUT)
         return begun if isinstance(begun, subprocess.Popen) else _not_started(begun)
 

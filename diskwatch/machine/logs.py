@@ -15,12 +15,36 @@ from diskwatch.records import SignalKind, Value
 _UNREADABLE = "what stands there is no number"
 _SILENT = "the drive states 0, which stands for not reported"
 _NOTHING = "the drive states no temperature"
+_HEALTH = "NVMe log 02h"
+_MOST_SENSORS = 8
 _COUNTER_FULL = 2**32 - 1
 
 
 def nvme_values(document: Document | None, sheet: Sheet) -> tuple[Value, ...]:
     """The signals of an NVMe drive's health log."""
-    return tuple(_logged(meanings.NVME, document, sheet, "NVMe log 02h"))
+    return (*_logged(meanings.NVME, document, sheet, _HEALTH), *_sensors(document, sheet))
+
+
+def _sensors(document: Document | None, sheet: Sheet) -> Iterator[Value]:
+    """The drive's temperature sensors, those that it has; where they sit is the maker's matter."""
+    listed = dig(document, "nvme_smart_health_information_log", "temperature_sensors")
+    for number in range(1, _MOST_SENSORS + 1):
+        stated = listed[number - 1] if isinstance(listed, list) and number <= len(listed) else None
+        celsius: int | None = stated if isinstance(stated, int) and not isinstance(stated, bool) else None
+        printed = sheet.get(f"Temperature Sensor {number}")
+        if celsius is None:
+            if printed is None:
+                continue
+            celsius = _printed(printed)
+        value, reason = (None, _UNREADABLE) if celsius is None else sane_celsius(celsius)
+        yield Value(
+            signal=f"temperature-sensor-{number}",
+            value=value,
+            unit="celsius",
+            kind=SignalKind.GAUGE,
+            source=_HEALTH,
+            reason=reason,
+        )
 
 
 def scsi_values(document: Document | None, device: Any, sheet: Sheet) -> tuple[Value, ...]:
@@ -126,6 +150,7 @@ _ROW = re.compile(
     r"\s*(?P<what>read|write|verify):\s+(?:[0-9]{1,20}\s+){5}"
     r"(?P<moved>[0-9]{1,20}[.,][0-9]{3})\s+(?P<bad>[0-9]{1,20})"
 )
+_ROW_BEGUN = re.compile(r"\s*(read|write|verify):\s")
 _UNCORRECTED = {"read": "uncorrected-reads", "write": "uncorrected-writes", "verify": "uncorrected-verifies"}
 _MOVED = {"read": "data-read", "write": "data-written"}
 
@@ -133,15 +158,17 @@ _MOVED = {"read": "data-read", "write": "data-written"}
 def _error_counters(document: Document | None, device: Any, sheet: Sheet) -> Iterator[Value]:
     """Errors that the drive could not correct and data moved; only these compare between makers."""
     rows = {found["what"]: found for line in sheet.lines if (found := _ROW.fullmatch(line)) is not None}
+    # The library takes whatever stands at a place for what should stand there.
+    strange = {found[1] for line in sheet.lines if (found := _ROW_BEGUN.match(line)) is not None} - rows.keys()
     diagnostics = getattr(device, "diagnostics", None)
     library = {"read": "Uncorrected_Reads", "write": "Uncorrected_Writes", "verify": "Uncorrected_Verifies"}
     for what, signal in _UNCORRECTED.items():
         page = dig(document, "scsi_error_counter_log", what)
         bad = number_at(page, "total_uncorrected_errors")
         if bad is None:
-            told = getattr(diagnostics, library[what], None)
-            bad = told if isinstance(told, int) else (int(rows[what]["bad"]) if what in rows else None)
-        if bad is not None:
+            told = getattr(diagnostics, library[what], None) if what not in strange else None
+            bad = int(rows[what]["bad"]) if what in rows else (told if isinstance(told, int) else None)
+        if bad is not None or what in strange:
             full = bad == _COUNTER_FULL
             yield Value(
                 signal=signal,
@@ -149,7 +176,7 @@ def _error_counters(document: Document | None, device: Any, sheet: Sheet) -> Ite
                 unit="errors",
                 kind=SignalKind.COUNT,
                 source=f"SCSI {what} error log",
-                reason=FULL if full else None,
+                reason=FULL if full else _UNREADABLE if bad is None else None,
             )
         printed = text_at(page, "gigabytes_processed") or (rows[what]["moved"] if what in rows else None)
         if what in _MOVED and printed is not None and re.fullmatch(r"[0-9]{1,20}[.,][0-9]{3}", printed):

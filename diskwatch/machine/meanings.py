@@ -273,9 +273,16 @@ NVME: tuple[LogMeaning, ...] = (
         "minutes",
         most=2**32 - 1,
     ),
-    # smartctl prints these only where they are not 0, and has no key for them in version 7.3.
-    LogMeaning("light-throttlings", (), ("Thermal Temp. 1 Transition Count",), "events", most=2**32 - 1),
-    LogMeaning("heavy-throttlings", (), ("Thermal Temp. 2 Transition Count",), "events", most=2**32 - 1),
+    # smartctl prints these only where they are not 0, and has no key for them in version 7.3 (keys of later
+    # versions from memory).
+    *(
+        _nvme(signal, f"thermal_temp_{number}_{key}", f"Thermal Temp. {number} {label}", unit, most=2**32 - 1)
+        for number, how in ((1, "light"), (2, "heavy"))
+        for signal, key, label, unit in (
+            (f"{how}-throttlings", "transition_count", "Transition Count", "events"),
+            (f"{how}-throttling-seconds", "total_time", "Total Time", "seconds"),
+        )
+    ),
 )
 
 _CYCLES = "scsi_start_stop_cycle_counter"

@@ -12,7 +12,11 @@ from diskwatch.machine.document import Document, number_at, rows_at
 from diskwatch.machine.text import Sheet
 from diskwatch.records import SignalKind, Value
 
+_UNREAD = "an entry of the log could not be read"
 _HEADLINE = "error information (nvme log 0x01"
+_NO_ROWS = ("Num ", "No Errors Logged", "Read ", "...")
+"""How lines begin that are no rows: the head, an empty log, a failure, how many are left out."""
+
 _MEDIUM = 2
 # Number, error count, queue, command, status, location, block, and what may stand behind.
 _ROW = re.compile(
@@ -34,12 +38,14 @@ def media_entries(document: Document | None, sheet: Sheet) -> Value | None:
     kinds = list(_from_document(rows) if rows else _from_rows(sheet))
     if not kinds and not _shown_empty(document, sheet):
         return None
+    unread = None in kinds
     return Value(
         signal="media-error-entries",
-        value=sum(kind == _MEDIUM for kind in kinds),
+        value=None if unread else sum(kind == _MEDIUM for kind in kinds),
         unit="events",
         kind=SignalKind.GAUGE,
         source="NVMe log 01h",
+        reason=_UNREAD if unread else None,
     )
 
 
@@ -50,19 +56,19 @@ def _shown_empty(document: Document | None, sheet: Sheet) -> bool:
     return any(_HEADLINE in line.lower() for line in lines) and "No Errors Logged" in next(lines, "")
 
 
-def _from_document(rows: tuple[Document, ...]) -> Iterator[int]:
-    """Status code types in a document of version 7.4 or later (keys from memory)."""
+def _from_document(rows: tuple[Document, ...]) -> Iterator[int | None]:
+    """Status code types in a document of version 7.4 or later (keys from memory); None where none is stated."""
     for row in rows:
         kind = number_at(row, "status_field", "status_code_type")
         value = number_at(row, "status_field", "value")
         if kind is not None:
             yield kind
-        elif value is not None:
-            yield value >> 8 & 0x7
+        else:
+            yield value >> 8 & 0x7 if value is not None else None
 
 
-def _from_rows(sheet: Sheet) -> Iterator[int]:
-    """Status code types in the text.
+def _from_rows(sheet: Sheet) -> Iterator[int | None]:
+    """Status code types in the text; None for a row that cannot be read.
 
     What is printed is the status field as it stands in the log, with the phase tag in bit 0: the code type lies
     in bits 9 to 11 (NVM Express Base Specification, error information log entry, bytes 12 and 13).
@@ -71,8 +77,13 @@ def _from_rows(sheet: Sheet) -> Iterator[int]:
     for line in sheet.lines:
         if _HEADLINE in line.lower():
             inside = True
-        elif not line.strip():
+            continue
+        if not line.strip():
             inside = False
-        row = _ROW.fullmatch(line) if inside else None
-        if row is not None and int(row["count"]) > 0:
+        if not inside or line.startswith(_NO_ROWS):
+            continue
+        row = _ROW.fullmatch(line)
+        if row is None:
+            yield None
+        elif int(row["count"]) > 0:
             yield int(row["status"], 16) >> 9 & 0x7

@@ -36,8 +36,18 @@ nothing (seen with version 7.3 on a node that is no disk), and NOT READY of any 
 
 _RESTS = "It is asleep and was not woken; it is asked again when it is awake."
 _REFUSED = re.compile(r"permission denied|operation not permitted|\bEACCES\b|\bEPERM\b", re.IGNORECASE)
-_ABSENT = re.compile(
-    r"no such device|no such file or directory|no such node|\bENXIO\b|\bENOENT\b|\bENODEV\b", re.IGNORECASE
+_NOT_THERE: tuple[tuple[re.Pattern[str], str], ...] = (
+    # The node of a disk that the kernel took offline, after a command that timed out, is there still.
+    (
+        re.compile(r"no such device or address|\bENXIO\b", re.IGNORECASE),
+        "It answers no more, though its device is still there: look at its cable and power, then copy it off.",
+    ),
+    (
+        re.compile(
+            r"no such device|no such file or directory|no such node|\bENOENT\b|\bENODEV\b", re.IGNORECASE
+        ),
+        "It is not there any more: if nobody unplugged it, look at its cable and power.",
+    ),
 )
 _UNKNOWN_BRIDGE = "It cannot be asked, since smartctl does not know its USB adapter"
 _NO_ANSWER = "It answers no question of ATA, SCSI or NVMe, as is usual for virtual disks"
@@ -232,11 +242,9 @@ def of_words(
             explanation="It may not be asked without the rights of root: let the system service watch, or run "
             f"the command as root ({quoted(refused)}).",
         )
-    if _first(lines, _ABSENT) is not None:
-        return Verdict(
-            outcome=Outcome.ABSENT,
-            explanation="It is not there any more: if nobody unplugged it, look at its cable and power.",
-        )
+    gone = next((why for pattern, why in _NOT_THERE if _first(lines, pattern) is not None), None)
+    if gone is not None:
+        return Verdict(outcome=Outcome.ABSENT, explanation=gone)
     lacking = next((why for pattern, why in _NO_SMART if _first(lines, pattern) is not None), None)
     if lacking is None and _first(lines, _NO_LANGUAGE) is not None:
         lacking = _no_answer(kind)

@@ -54,6 +54,30 @@ def test_what_was_found_later_about_a_block_holds(first, second, left):
     assert count(*rows) == count(*reversed(rows)) == left
 
 
+@pytest.mark.parametrize(
+    "broken",
+    [
+        row(1, "100:00", "0000000011b74d24", "Requ?re Write or Reassign Blocks command"),
+        row(1, "100:00", "00000000x1b74d24", WAITS),
+        row(1, "1o0:00", "0000000011b74d24", WAITS),
+        row(1, "100:00", "0000000011b74d24", WAITS)[:40],
+        ">>>> log truncated, fetched 1000 of 2000 available bytes",
+    ],
+)
+def test_a_result_that_cannot_be_read_makes_the_number_unknown_and_not_0(broken: str):
+    value = pending(None, sheet(broken, row(2, "102:00", "0000000011b74d26", DONE), "", "Another log"))
+    assert value is not None
+    assert value.value is None
+    assert value.reason
+
+
+def test_a_result_in_the_document_that_lacks_a_part_makes_the_number_unknown():
+    scan = {"result_1": {"lba": 5, "reassign_status": WAITS}}
+    value = pending({"scsi_background_scan": scan}, Sheet.of([]))
+    assert value is not None
+    assert value.value is None
+
+
 def test_entries_of_the_makers_own_are_no_results():
     assert count(row(33024, "21708:31", "0008012701180900", WAITS)) == 0
 

@@ -2,9 +2,11 @@ import contextlib
 import fcntl
 import os
 import signal
+import subprocess
 import sys
 import threading
 import time
+from collections.abc import Sequence
 from pathlib import Path
 
 import pytest
@@ -191,6 +193,42 @@ def test_a_command_that_cannot_even_be_started_holds_nobody_and_is_counted_until
     while door.abandoned and time.monotonic() < deadline:
         time.sleep(0.05)
     assert door.abandoned == 0
+
+
+@pytest.mark.parametrize("stopped", [False, True])
+def test_a_command_whose_start_outlives_its_limit_is_killed_as_soon_as_it_runs(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, stopped: bool
+):
+    started: list[subprocess.Popen[bytes]] = []
+    may_start, start = threading.Event(), command._child
+
+    def slow(argv: Sequence[str]) -> subprocess.Popen[bytes]:
+        may_start.wait(10)
+        started.append(start(argv))
+        return started[0]
+
+    monkeypatch.setattr(command, "_child", slow)
+    door = Door()
+    assert door.run([script(tmp_path, "exec sleep 60")], timeout=0.05).ending is Ending.TIMED_OUT
+    if stopped:
+        door.stop()
+    may_start.set()
+    deadline = time.monotonic() + 10
+    while not (started and started[0].returncode is not None) and time.monotonic() < deadline:
+        time.sleep(0.01)
+    assert started[0].returncode == -signal.SIGKILL
+
+
+def test_stop_takes_up_those_whom_the_kernel_has_let_go_of(tmp_path: Path):
+    child = command._child([script(tmp_path, "exit 0")])
+    for pipe in (child.stdout, child.stderr):
+        assert pipe is not None
+        pipe.close()
+    os.waitid(os.P_PID, child.pid, os.WEXITED | os.WNOWAIT)
+    door = Door()
+    door._left_behind.append(("", child))
+    door.stop()
+    assert (child.returncode, door._left_behind) == (0, [])
 
 
 def test_a_missing_command_is_told_from_one_that_may_not_be_run_and_from_one_that_fails(tmp_path: Path):

@@ -79,6 +79,52 @@ def test_uncorrected_errors_and_volumes_come_from_the_error_rows(library: bool):
     assert found["data-written"].value == 3_887_270_000_000
 
 
+@pytest.mark.parametrize("library", [False, True])
+@pytest.mark.parametrize(
+    "line",
+    [
+        READ.replace("90412.118 ", "90412.118 2 "),
+        READ + " 7",
+        READ.removesuffix("14"),
+        READ.replace("1904", ""),
+        READ + "x",
+    ],
+)
+def test_a_row_with_a_column_too_many_or_too_few_gives_no_number(line: str, library: bool):
+    found = scsi("Error counter log:", line, "write: 0 0 0 0 67506 3887.270 2", library=library)
+    assert (found["uncorrected-reads"].value, found["uncorrected-writes"].value) == (None, 2)
+    assert found["uncorrected-reads"].reason
+    assert "data-read" not in found
+
+
+def test_every_sensor_of_an_nvme_drive_is_read_from_document_or_text():
+    found = nvme(
+        "Temperature Sensor 1:  41 Celsius", "Temperature Sensor 8:  -3 Celsius", "Temperature Sensor 9: 5 C"
+    )
+    assert {signal: value.value for signal, value in found.items()} == {
+        "temperature-sensor-1": 41,
+        "temperature-sensor-8": -3,
+    }
+    log = {"nvme_smart_health_information_log": {"temperature_sensors": [40, None, True, 900]}}
+    told = {value.signal: value for value in nvme_values(log, Sheet.of(["Temperature Sensor 2:  x"]))}
+    assert {signal: value.value for signal, value in told.items()} == {
+        "temperature-sensor-1": 40,
+        "temperature-sensor-2": None,
+        "temperature-sensor-4": None,
+    }
+    assert told["temperature-sensor-2"].reason
+    assert told["temperature-sensor-4"].reason
+
+
+def test_how_often_and_how_long_an_nvme_drive_slowed_down_for_heat_is_read():
+    found = nvme("Thermal Temp. 1 Transition Count:   7", "Thermal Temp. 1 Total Time:         56184")
+    assert (found["light-throttlings"].value, found["light-throttling-seconds"].value) == (7, 56_184)
+    assert found["light-throttling-seconds"].unit == "seconds"
+    log = {"nvme_smart_health_information_log": {"thermal_temp_2_total_time": 9}}
+    (heavy,) = nvme_values(log, Sheet.of([]))
+    assert (heavy.signal, heavy.value) == ("heavy-throttling-seconds", 9)
+
+
 def test_an_error_counter_at_its_end_is_not_known():
     found = scsi(READ.replace("          14", "  4294967295"))["uncorrected-reads"]
     assert found.value is None

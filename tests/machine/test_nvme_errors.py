@@ -35,6 +35,23 @@ def test_rows_of_another_table_do_not_count():
     assert count(MEDIUM) is None
 
 
+@pytest.mark.parametrize(
+    "row", [MEDIUM.replace("0x8503", "0x85o3"), MEDIUM.replace("0x8503", "-"), MEDIUM[:20], "garbage"]
+)
+def test_an_entry_that_cannot_be_read_makes_the_number_unknown_and_not_0(row):
+    value = media_entries(None, Sheet.of([*HEAD, REFUSED, row]))
+    assert value is not None
+    assert value.value is None
+    assert value.reason
+    told = media_entries({"nvme_error_information_log": {"read": 16, "table": [{"lba": 4}]}}, Sheet.of([]))
+    assert told is not None
+    assert told.value is None
+
+
+def test_a_note_of_entries_that_are_not_shown_is_no_entry():
+    assert count(*HEAD, MEDIUM, "... (8 entries not read)") == 1
+
+
 def test_an_entry_whose_count_is_0_is_no_entry():
     assert count(*HEAD, REFUSED, MEDIUM.replace("1355", "   0")) == 0
 

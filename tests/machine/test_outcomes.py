@@ -103,6 +103,12 @@ def test_a_drive_that_is_gone_is_absent(line: str):
     assert "cable" in why
 
 
+def test_a_disk_whose_device_is_still_there_is_not_said_to_be_gone():
+    _, why = verdict((*HEAD, "Smartctl open device: /dev/sda failed: No such device or address"), 2)
+    assert "device is still there" in why
+    assert "not there any more" not in why
+
+
 def test_what_is_said_on_the_error_channel_counts_too():
     assert verdict((), 2, err="cannot open: Permission denied")[0] == "refused"
 
