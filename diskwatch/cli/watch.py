@@ -2,12 +2,14 @@
 
 import argparse
 import os
+import select
 import sys
 import threading
+from collections.abc import Callable
 from pathlib import Path
 
 from diskwatch.cli.common import settings, state_folder, talk
-from diskwatch.errors import DiskwatchError, NothingToWorkOn
+from diskwatch.errors import DiskwatchError, NothingToWorkOn, SettingsError
 from diskwatch.history.reader import Past
 from diskwatch.machine.real import RealMachine
 from diskwatch.machine.senses import RealSenses
@@ -30,37 +32,82 @@ def run(args: argparse.Namespace) -> int:
     owner = settings(args)
     folder = state_folder(args)
     told = None if args.tied else Voice().say
-    watch = _watch(owner, folder, told)
+    if args.once:
+        return _once(_watch(owner, folder, told))
+    return _Watches(args, owner, folder, told).run()
+
+
+def _once(watch: Watch) -> int:
+    _say_trouble(watch)
+    rounds = watch.once()
+    for trouble in watch.machine_troubles:
+        talk(f"diskwatch: {trouble}")
+    if not rounds and not watch.trouble:
+        raise NothingToWorkOn("this machine shows no drive at all", hint="see 'diskwatch preflight'")
+    return _ended(watch)
+
+
+def _say_trouble(watch: Watch) -> None:
     if watch.trouble:
         talk(f"diskwatch: {watch.trouble}; watching goes on without it")
-    if args.once:
-        rounds = watch.once()
-        for trouble in watch.machine_troubles:
-            talk(f"diskwatch: {trouble}")
-        if watch.trouble:
-            talk(f"diskwatch: not stored: {watch.trouble}")
-            return 4
-        if not rounds:
-            raise NothingToWorkOn("this machine shows no drive at all", hint="see 'diskwatch preflight'")
-        return 0
-    at_work = [watch]
-    if args.tied:
-        threading.Thread(target=_end_with_parent, args=(at_work,), daemon=True).start()
-    while (there := watch.run()) is not None:
-        # The history lies there now, and a watch that begins anew knows of no other place.
-        watch = _watch(owner, there, told)
-        before, at_work[0] = at_work[0], watch
-        if before.ended:
-            watch.end()
+
+
+def _ended(watch: Watch) -> int:
     if watch.trouble:
         talk(f"diskwatch: not stored: {watch.trouble}")
         return 4
     return 0
 
 
-def _watch(owner: Settings, folder: Path, told: Told | None) -> Watch:
+class _Watches:
+    """One watch after the other: each goes on where the history was moved to, or with other settings."""
+
+    def __init__(self, args: argparse.Namespace, owner: Settings, folder: Path, told: Told | None) -> None:
+        self._args, self._owner, self._told = args, owner, told
+        self._at_work = _watch(owner, folder, told, self._reread)
+
+    def run(self) -> int:
+        """Watch to the end."""
+        _say_trouble(self._at_work)
+        if self._args.tied:
+            threading.Thread(target=self._end_with_parent, daemon=True).start()
+        while (there := self._at_work.run()) is not None:
+            # A watch that begins anew knows of no other place, and of no signal to the one before it.
+            before, self._at_work = self._at_work, _watch(self._owner, there, self._told, self._reread)
+            self._at_work.hear_signals()
+            if before.ended:
+                self._at_work.end()
+        return _ended(self._at_work)
+
+    def _reread(self) -> None:
+        if _terminal_is_gone():
+            # The kernel says so by the same signal that asks for other settings.
+            self._at_work.end()
+            return
+        try:
+            self._owner = settings(self._args)
+        except SettingsError as error:
+            talk(f"diskwatch: {error}; the settings that held before go on")
+            raise
+
+    def _end_with_parent(self) -> None:
+        while os.read(sys.stdin.fileno(), 4096):
+            pass
+        self._at_work.end()
+
+
+def _watch(owner: Settings, folder: Path, told: Told | None, reread: Callable[[], None] | None = None) -> Watch:
     this = machine(owner, folder)
-    return Watch(this, owner, folder, told=told, senses=senses(owner), tester=this)
+    return Watch(this, owner, folder, told=told, senses=senses(owner), tester=this, reread=reread)
+
+
+def _terminal_is_gone() -> bool:
+    """Whether standard input is a terminal that has hung up."""
+    if not os.isatty(0):
+        return False
+    line = select.poll()
+    line.register(0, 0)
+    return any(event & (select.POLLHUP | select.POLLERR | select.POLLNVAL) for _, event in line.poll(0))
 
 
 def machine(owner: Settings, folder: Path) -> RealMachine:
@@ -87,12 +134,6 @@ def _ways(folder: Path) -> tuple[Way, ...]:
             return past.ways()
     except DiskwatchError:
         return ()
-
-
-def _end_with_parent(at_work: list[Watch]) -> None:
-    while os.read(sys.stdin.fileno(), 4096):
-        pass
-    at_work[0].end()
 
 
 class Voice:

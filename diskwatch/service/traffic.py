@@ -9,10 +9,8 @@ from dataclasses import dataclass
 from diskwatch.machine import counters
 from diskwatch.machine.protocol import Counted, Machine
 from diskwatch.records import Entry, IoSpan
+from diskwatch.service.clocks import JUMP
 from diskwatch.service.standstill import Standstill
-
-JUMP = 5.0
-"""Seconds by which the clock and the steady clock may differ over a span; beyond, it slept or was set."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

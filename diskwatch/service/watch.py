@@ -5,12 +5,13 @@ import threading
 import time
 from collections.abc import Callable, Mapping
 from contextlib import suppress
+from enum import Enum
 from functools import partial
 from pathlib import Path
-from queue import SimpleQueue
+from queue import Empty, SimpleQueue
 from typing import Any
 
-from diskwatch.errors import DiskwatchError, HistoryError
+from diskwatch.errors import DiskwatchError, HistoryError, SettingsError
 from diskwatch.history.exchange import read
 from diskwatch.history.live import LiveWriter
 from diskwatch.history.reader import Past
@@ -18,18 +19,21 @@ from diskwatch.history.writer import History
 from diskwatch.machine import choice
 from diskwatch.machine.protocol import Machine
 from diskwatch.machine.senses import Senses
-from diskwatch.records import DriveRound, Entry, IoSpan, Value
+from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, Value
 from diskwatch.service import requests
 from diskwatch.service.arrival import take_in
+from diskwatch.service.clocks import ClockGuard, Clocks
 from diskwatch.service.ears import Ears
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.manager import Manager, status
 from diskwatch.service.owner import DEEDS
+from diskwatch.service.progress import Progress
 from diskwatch.service.removal import MOVE, move_house
 from diskwatch.service.requests import Answer
 from diskwatch.service.rounds import Rounds
-from diskwatch.service.schedule import Schedule
+from diskwatch.service.schedule import Schedule, now_steady
 from diskwatch.service.self_tests import SelfTests, Tester
-from diskwatch.service.traffic import JUMP, Traffic
+from diskwatch.service.traffic import Traffic
 from diskwatch.service.turns import Turns
 from diskwatch.service.upkeep import EVERY, Upkeep
 from diskwatch.settings import Settings
@@ -47,12 +51,31 @@ NEWS_AFTER = 15.0
 HAND = 1.5
 """Seconds that a round gets to keep what it has in hand when the watch ends."""
 
+ROUND_PATIENCE = 900.0
+"""Seconds beyond two intervals after which a round that does not come to its end counts as stuck."""
+
+COUNT_PATIENCE = 60.0
+"""Seconds without a look at the traffic after which the watch counts as stuck, at the least."""
+
 Told = Callable[[tuple[DriveRound, ...]], None]
+
+
+class _Word(Enum):
+    """What the main thread is asked to do."""
+
+    END = "end"
+    REREAD = "reread"
+    ROUND = "round"
 
 
 def now() -> int:
     """The present, UTC seconds since 1970; the one place of this room where the clock is read."""
     return int(time.time())
+
+
+def clocks() -> Clocks:
+    """All clocks of this machine."""
+    return Clocks(wall=time.time(), steady=now_steady(), awake=time.monotonic())
 
 
 class Watch:
@@ -67,6 +90,8 @@ class Watch:
         told: Told | None = None,
         senses: Senses | None = None,
         tester: Tester | None = None,
+        reread: Callable[[], None] | None = None,
+        manager: Manager | None = None,
     ) -> None:
         """Open the history; see `diskwatch.service.keeper.Keeper` for what may go wrong.
 
@@ -77,6 +102,9 @@ class Watch:
             told: called with each part of a round once it is kept.
             senses: what else the machine tells of its drives; None for nothing.
             tester: has drives test themselves where the owner's settings ask for it; None for nobody.
+            reread: reads the settings again for the watch that goes on after this one, or raises
+                `diskwatch.errors.SettingsError`; None where they stay as they are.
+            manager: who is told how the watch gets on; None for whoever started this process.
         """
         self._machine = machine
         self._settings = settings
@@ -126,6 +154,14 @@ class Watch:
         self._committed = time.monotonic()
         self._rounding = threading.Lock()
         self._stop = threading.Event()
+        # Signal handlers may put something in here at any moment; an event's lock they could meet held.
+        self._words: SimpleQueue[_Word] = SimpleQueue()
+        self._reread = reread
+        self._again = False
+        self._manager = Manager() if manager is None else manager
+        self._progress = Progress()
+        self._stuck: tuple[str, ...] = ()
+        self._calls: dict[int, CallWord | None] = {}
         self._asked = threading.Thread()
         self._ended = False
         self._wanted: Path | None = None
@@ -166,12 +202,13 @@ class Watch:
     def run(self) -> Path | None:
         """Watch until SIGTERM, SIGINT or `end`; everything is stored before it returns.
 
+        SIGHUP lets the settings be read again, SIGUSR1 makes a round at once.
+
         Returns:
             The state folder in which another watch is to go on, where this one ended for the history to be
-            moved; else None.
+            moved or for other settings; else None.
         """
-        for number in (signal.SIGTERM, signal.SIGINT):
-            signal.signal(number, lambda *_: self.end())
+        self.hear_signals()
         schedule = self._schedule
         schedule.every("round", self._settings.smart.every, self._round, place="rounds")
         schedule.every("traffic", self._settings.io.every, self._count)
@@ -180,15 +217,36 @@ class Watch:
         schedule.every("upkeep", EVERY, self._upkeep.turn, place="upkeep")
         self._note("watch", "Watching began.")
         self._open_ears()
+        self._expect_progress()
         schedule.start()
         if self._ears is not None:
             self._ears.start()
+        self._manager.ready()
         try:
             self._guard(schedule)
         finally:
+            self._stop.set()
+            if self._ended:
+                self._manager.stopping()
             schedule.stop()
-            self._end("Watching ended.")
+            self._end("Watching ended, to go on with other settings." if self._again else "Watching ended.")
+        if self._again and self._wanted is None:
+            return None if self._ended else self._folder
         return self._after_moving()
+
+    def hear_signals(self) -> None:
+        """Let the signals to this process speak to this watch from now on, as `run` does anyhow."""
+        for number in (signal.SIGTERM, signal.SIGINT):
+            signal.signal(number, lambda *_: self.end())
+        if self._reread is not None:
+            signal.signal(signal.SIGHUP, lambda *_: self._words.put(_Word.REREAD))
+        signal.signal(signal.SIGUSR1, lambda *_: self._words.put(_Word.ROUND))
+
+    def _expect_progress(self) -> None:
+        # A clock without sleep: what the machine sleeps away is nobody's delay.
+        at, owner = time.monotonic(), self._settings
+        self._progress.expect("the counting of traffic", max(COUNT_PATIENCE, 3 * owner.io.every), at)
+        self._progress.expect("the rounds", 2 * owner.smart.every + ROUND_PATIENCE, at)
 
     @property
     def ended(self) -> bool:
@@ -198,32 +256,73 @@ class Watch:
     def end(self) -> None:
         """Let `run` come to its end; may be called from any thread or signal handler."""
         self._ended = True
-        self._stop.set()
+        self._words.put(_Word.END)
 
     def _guard(self, schedule: Schedule) -> None:
-        """Wait for the end, and notice when the clock is set or the machine has slept."""
-        wall, steady = time.time(), time.monotonic()
-        while not self._stop.wait(GUARD):
-            wall_now, steady_now = time.time(), time.monotonic()
-            jump = (wall_now - wall) - (steady_now - steady)
-            wall, steady = wall_now, steady_now
-            if abs(jump) > JUMP:
+        """Wait for the end, and notice when clocks are set, the machine slept or work stands still."""
+        clock = ClockGuard(clocks)
+        while True:
+            try:
+                word = self._words.get(timeout=GUARD)
+            except Empty:
+                word = None
+            if word is _Word.END or (word is _Word.REREAD and self._takes_up_settings()):
+                return
+            if word is _Word.ROUND:
+                schedule.soon("asked", 0.0, self._asked_round, place="rounds")
+            moved = clock.look()
+            if moved is not None:
                 schedule.clock_moved()
-                self._note("watch", _jumped(jump))
+                self._note("watch", moved.sentence())
+            self._tell_progress()
             with self._lock:
                 self._keeper.try_again()
 
+    def _takes_up_settings(self) -> bool:
+        """Whether there are other settings, with which another watch is to go on."""
+        if self._reread is None:
+            return False
+        try:
+            self._reread()
+        except SettingsError as error:
+            self._note("trouble", plain(f"{error}; the settings that held before go on."))
+            return False
+        self._again = True
+        self._manager.reloading()
+        return True
+
+    def _tell_progress(self) -> None:
+        """Feed systemd's watchdog, unless the work does not get on."""
+        late = self._progress.late(time.monotonic())
+        if not late:
+            self._manager.alive()
+        elif late != self._stuck:
+            self._note("trouble", f"The watch does not get on with {' and '.join(late)}.")
+        self._stuck = late
+
+    def _asked_round(self) -> None:
+        """A round now, since somebody wants one; also on battery."""
+        with self._rounding:
+            self._note_calls(self._rounds.run(told=self._told, lock=self._lock, everyone=True))
+
+    def _note_calls(self, done: tuple[DriveRound, ...]) -> None:
+        self._calls |= {one.known.number: None if one.call is None else one.call.word for one in done}
+        self._manager.doing(status(self._calls, now()))
+
     def _round(self) -> None:
+        self._progress.done("the rounds", time.monotonic())
         if self._spares_the_battery():
             return
         with self._rounding:
             done = self._rounds.run(told=self._told, lock=self._lock)
+            self._note_calls(done)
             if self._tests is not None and not self._stop.is_set():
                 # A drive that does nothing else is left out of rounds; its result would keep others waiting.
                 silent = self._tests.running - {one.known.number for one in done}
                 if silent:
                     done += self._rounds.run(told=self._told, lock=self._lock, only=silent)
                 self._tests.after(done, self._rounds.found, at=now(), hour=time.localtime().tm_hour)
+        self._progress.done("the rounds", time.monotonic())
 
     def _past_tests(self) -> tuple[Entry, ...] | None:
         """What the day book holds of self-tests; None where it cannot be read."""
@@ -278,6 +377,7 @@ class Watch:
                 self._keeper.note(*look.entries)
         if time.monotonic() - self._committed >= self._settings.history.commit:
             self._commit_traffic()
+        self._progress.done("the counting of traffic", time.monotonic())
 
     def _look_for_requests(self) -> None:
         """Take up what the owner asks for, in a thread of its own: counting must not wait for it."""
@@ -308,7 +408,7 @@ class Watch:
     def _move(self, words: Mapping[str, Any]) -> Answer:
         """End for the history to be moved: only when all is stored and nobody writes can it be whole."""
         self._wanted = Path(str(words["to"]))
-        self._stop.set()
+        self._words.put(_Word.END)
         told = self._outcome.get()
         if isinstance(told, DiskwatchError):
             raise HistoryError(
@@ -363,9 +463,3 @@ class Watch:
         self._live.close()
         with self._lock:
             self._keeper.close()
-
-
-def _jumped(seconds: float) -> str:
-    way = "forward" if seconds > 0 else "back"
-    by = f"{way} by {abs(seconds):.0f} seconds"
-    return f"The clock moved {by}, or the machine slept; all jobs were planned anew."

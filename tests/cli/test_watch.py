@@ -4,6 +4,7 @@ import sqlite3
 import stat
 import subprocess
 import time
+from contextlib import suppress
 
 import pytest
 
@@ -313,3 +314,42 @@ def test_a_listener_that_goes_away_silences_the_lines_and_not_the_watch(monkeypa
     voice.say(part)
     voice.say(part)
     assert len(said) == 1
+
+
+def test_a_hangup_reads_the_settings_again_and_wrong_ones_leave_the_old_in_force(tmp_path):
+    command = lay(tmp_path / "player", [GOOD])
+    settings = settings_for(command, tmp_path, more='[watch]\nonly = ["/dev/inv1"]\n')
+    err = tmp_path / "err"
+    with err.open("w") as into:
+        child = subprocess.Popen(
+            [*COMMAND, "watch", "--state", str(tmp_path / "state"), "--settings", str(settings)],
+            cwd=ROOT,
+            stdin=subprocess.DEVNULL,
+            stdout=subprocess.DEVNULL,
+            stderr=into,
+        )
+
+    def until(what):
+        over = time.monotonic() + 20
+        while not what():
+            assert time.monotonic() < over
+            time.sleep(0.05)
+
+    def begun(times):
+        with suppress(OSError, ValueError, sqlite3.Error):
+            return [text for _, text in book(tmp_path)].count("Watching began.") == times
+        return False
+
+    until(lambda: (tmp_path / "state").exists() and begun(1) and drives(tmp_path))
+    good = settings.read_text()
+    settings.write_text(good + "[io]\nevery = 3\n")
+    child.send_signal(signal.SIGHUP)
+    until(lambda: "the settings that held before go on" in err.read_text())
+    settings.write_text(good + '[io]\nevery = "1s"\n')
+    child.send_signal(signal.SIGHUP)
+    until(lambda: begun(2))
+    asked = time.monotonic()
+    child.send_signal(signal.SIGTERM)
+    assert child.wait(10) == 0
+    assert time.monotonic() - asked < 3
+    assert len(err.read_text().splitlines()) == 1

@@ -1,3 +1,4 @@
+import os
 import signal
 import threading
 import time
@@ -6,8 +7,10 @@ from types import SimpleNamespace
 import pytest
 from msgspec.structs import replace
 
+from diskwatch.errors import SettingsError
 from diskwatch.history.reader import Past
 from diskwatch.records import Entry
+from diskwatch.service.manager import Manager
 from diskwatch.service.watch import Watch
 from diskwatch.settings import Duration, HistoryKeeping, Io, SelfTests, Settings, Smart, Watch as WatchSettings
 from tests.samples import HDD, NOON, read, value, with_serial
@@ -29,7 +32,8 @@ def machine():
 
 @pytest.fixture
 def _signals():
-    kept = {number: signal.getsignal(number) for number in (signal.SIGTERM, signal.SIGINT)}
+    heard = (signal.SIGTERM, signal.SIGINT, signal.SIGHUP, signal.SIGUSR1)
+    kept = {number: signal.getsignal(number) for number in heard}
     yield
     for number, handler in kept.items():
         signal.signal(number, handler)
@@ -59,14 +63,14 @@ def test_a_watch_counts_traffic_reads_drives_and_stores_all_of_it_by_its_end(mac
                     seen.append(bays)
                     break
                 time.sleep(0.05)
-        signal.raise_signal(signal.SIGTERM)
+        os.kill(os.getpid(), signal.SIGTERM)
 
     threading.Timer(0.3, look).start()
     watch.run()
     (bays,) = seen
     assert bays.watcher is not None
     assert bays.drives[0].traffic is not None
-    assert bays.drives[0].traffic.counts.reads in {100, 200}  # a round may have looked in between
+    assert bays.drives[0].traffic.counts.reads in {100, 200, 300}  # a round looks before and after it asks
     with Past.open(tmp_path) as past:
         entries = [entry.text for entry in past.day_book() if entry.kind == "watch"]
         assert past.traffic(1, 0, 2**40)
@@ -158,7 +162,7 @@ def test_on_battery_one_round_of_four_takes_place(machine, tmp_path, monkeypatch
     senses = ScriptedSenses()
     watch = Watch(machine, QUICK, tmp_path, senses=senses)
     rounds = []
-    monkeypatch.setattr(watch._rounds, "run", lambda **_: rounds.append(senses.battery))
+    monkeypatch.setattr(watch._rounds, "run", lambda **_: rounds.append(senses.battery) or ())
     watch._round()
     senses.battery = True
     for _ in range(8):
@@ -201,3 +205,105 @@ def test_a_self_test_is_begun_where_the_owner_asks_and_the_day_book_remembers_it
         assert [entry.text for entry in past.day_book(kinds={"self-test"})] == [
             "A short self-test of it began."
         ]
+
+
+class Told(Manager):
+    """A service manager that remembers what it was told."""
+
+    def __init__(self):
+        super().__init__("")
+        self.said: list[str] = []
+
+    def _tell(self, fields):
+        self.said += [f"{name}={value}" for name, value in fields.items()]
+
+
+SLOW = Settings(smart=Smart(every=Duration(3600)), io=Io(every=Duration(1)))
+
+
+def until(what):
+    over = time.monotonic() + 10
+    while not what() and time.monotonic() < over:
+        time.sleep(0.02)
+
+
+@pytest.mark.usefixtures("_signals")
+def test_a_signal_makes_a_round_at_once_and_the_manager_is_told_what_goes_on(machine, tmp_path):
+    manager = Told()
+    watch = Watch(machine, SLOW, tmp_path, manager=manager)
+
+    def ask():
+        until(lambda: len(machine.asked) == 1 and any(one.startswith("STATUS=") for one in manager.said))
+        os.kill(os.getpid(), signal.SIGUSR1)
+        until(lambda: len(machine.asked) == 2)
+        os.kill(os.getpid(), signal.SIGTERM)
+
+    threading.Timer(0.1, ask).start()
+    assert watch.run() is None
+    assert len(machine.asked) == 2
+    assert manager.said[0] == "READY=1"
+    assert manager.said[-1] == "STOPPING=1"
+    assert any(
+        one.startswith("STATUS=Watching 1 drive, worst call keep; last round 20") for one in manager.said
+    )
+    assert "WATCHDOG=1" in manager.said
+
+
+@pytest.mark.usefixtures("_signals")
+def test_a_signal_lets_another_watch_go_on_with_other_settings(machine, tmp_path):
+    read_again: list[int] = []
+    watch = Watch(machine, SLOW, tmp_path, manager=Told(), reread=lambda: read_again.append(1))
+    threading.Timer(0.3, os.kill, (os.getpid(), signal.SIGHUP)).start()
+    assert watch.run() == tmp_path
+    assert (read_again, watch.ended) == ([1], False)
+    with Past.open(tmp_path) as past:
+        assert past.day_book()[-1].text == "Watching ended, to go on with other settings."
+
+
+@pytest.mark.usefixtures("_signals")
+def test_wrong_settings_are_a_line_in_the_day_book_and_the_watch_goes_on(machine, tmp_path):
+    def refuse():
+        raise SettingsError("settings.toml: [smart] every: expected a duration")
+
+    watch = Watch(machine, SLOW, tmp_path, manager=Told(), reread=refuse)
+
+    def ask():
+        os.kill(os.getpid(), signal.SIGHUP)
+        time.sleep(0.3)
+        os.kill(os.getpid(), signal.SIGTERM)
+
+    threading.Timer(0.3, ask).start()
+    assert watch.run() is None
+    with Past.open(tmp_path) as past:
+        (entry,) = [entry for entry in past.day_book() if entry.kind == "trouble"]
+    assert entry.text.endswith("expected a duration; the settings that held before go on.")
+
+
+@pytest.mark.usefixtures("_signals")
+def test_the_watchdog_is_fed_only_while_the_work_gets_on(machine, tmp_path, monkeypatch):
+    monkeypatch.setattr("diskwatch.service.watch.GUARD", 0.1)
+    monkeypatch.setattr("diskwatch.service.watch.COUNT_PATIENCE", 0.5)
+    held = threading.Event()
+    seen: list[int] = []
+    manager = Told()
+    settings = Settings(smart=Smart(every=Duration(3600)), io=Io(every=Duration(1)))
+    watch = Watch(machine, settings, tmp_path, manager=manager)
+    counts = machine.counts
+    monkeypatch.setattr(machine, "counts", lambda: held.wait(20) and counts())
+    monkeypatch.setattr("diskwatch.service.watch.now_steady", time.monotonic)
+
+    def look():
+        time.sleep(4.0)  # three intervals of a second, and some more
+        seen.append(manager.said.count("WATCHDOG=1"))
+        time.sleep(0.5)
+        seen.append(manager.said.count("WATCHDOG=1"))
+        held.set()
+        watch.end()
+
+    threading.Timer(0.1, look).start()
+    watch.run()
+    assert seen[0] > 0
+    assert seen[0] == seen[1], "a watch that stands still feeds nobody"
+    with Past.open(tmp_path) as past:
+        told = [entry.text for entry in past.day_book() if entry.kind == "trouble"]
+    assert "The watch does not get on with the counting of traffic." in told
