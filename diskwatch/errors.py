@@ -8,6 +8,9 @@
     `-- HistoryError          4   the history cannot be read or written
         |-- HistoryTooNew     4   it was written by a newer version; it is left untouched
         |-- HistoryDamaged    4   its file is damaged; what can be read of it can be carried over
+        |-- HistoryGarbled    4   its file is sound, and a value in it cannot be right
+        |-- HistoryGone       4   its file was taken away, or another one put in its place
+        |-- HistoryUnfit      4   what was to be written does not fit what stands in it
         `-- HistoryHeld       4   another process is writing it
 
 One line says what happened, to which thing; ``hint`` says what to do about it. A drive that cannot be read
@@ -62,6 +65,18 @@ class HistoryTooNew(HistoryError):
 
 class HistoryDamaged(HistoryError):
     """The history's file is damaged; nothing of it was changed."""
+
+
+class HistoryGarbled(HistoryError):
+    """The history's file is sound, but it holds a value that cannot be right."""
+
+
+class HistoryGone(HistoryError):
+    """The history's file was moved, deleted or replaced while it was open for writing."""
+
+
+class HistoryUnfit(HistoryError):
+    """What was to be written does not fit what stands in the history; nothing of it was written."""
 
 
 class HistoryHeld(HistoryError):

@@ -4,7 +4,7 @@ import errno
 import sqlite3
 from pathlib import Path
 
-from diskwatch.errors import HistoryDamaged, HistoryError
+from diskwatch.errors import HistoryDamaged, HistoryError, HistoryGarbled, HistoryGone, HistoryUnfit
 from diskwatch.units import plain
 
 _WORDS: dict[int, tuple[str, str | None]] = {
@@ -35,6 +35,16 @@ _WORDS: dict[int, tuple[str, str | None]] = {
         "cannot be used: the disk that holds it reports an error or has no space left",
         "look at that disk first",
     ),
+}
+_UNFIT = (
+    "does not take in what was to be written: {why}",
+    "nothing of it was written, and what was stored before is kept",
+)
+_WHY_UNFIT = {
+    sqlite3.SQLITE_CONSTRAINT_FOREIGNKEY: "it speaks of a drive that is not in the history",
+    sqlite3.SQLITE_CONSTRAINT_PRIMARYKEY: "there is such a row already",
+    sqlite3.SQLITE_CONSTRAINT_UNIQUE: "there is such a row already",
+    sqlite3.SQLITE_CONSTRAINT_NOTNULL: "a value that must be there is missing",
 }
 _DAMAGED = frozenset({sqlite3.SQLITE_CORRUPT, sqlite3.SQLITE_NOTADB})
 _READ_ONLY_SYSTEM = (
@@ -71,6 +81,9 @@ def told(error: sqlite3.Error | OSError, path: Path | None) -> HistoryError:
         what, hint = _WORDS[code]
         kind = HistoryDamaged if code in _DAMAGED else HistoryError
         return kind(f"{name} {what}", hint=hint)
+    if code == sqlite3.SQLITE_CONSTRAINT:
+        why = _WHY_UNFIT.get(getattr(error, "sqlite_errorcode", 0), "a value is of the wrong kind")
+        return HistoryUnfit(f"{name} {_UNFIT[0].format(why=why)}", hint=_UNFIT[1])
     detail = error.strerror if isinstance(error, OSError) else str(error)
     return HistoryError(f"{name} cannot be used: {plain(str(detail))}")
 
@@ -91,14 +104,22 @@ def foreign(path: Path) -> HistoryError:
 
 def taken_away(path: Path) -> HistoryError:
     """The error for a file that was moved, deleted or replaced while it was being written."""
-    return HistoryError(
+    return HistoryGone(
         f"{plain(str(path))} was moved or deleted while it was being written; nothing more goes into it",
-        hint="start the watch again: it takes up what is there then, or begins anew",
+        hint="the watch takes up what is there now, or begins anew",
     )
 
 
-def unreadable(path: Path | None) -> HistoryError:
-    """The error for a history whose file is sound but whose contents make no sense."""
+def unreadable(path: Path | None, error: ValueError | None = None) -> HistoryError:
+    """The error for a history whose file is sound but whose contents make no sense.
+
+    Args:
+        path: the history; None for one in memory.
+        error: what is wrong with which value, where that is known.
+    """
     name = "the history in memory" if path is None else plain(str(path))
-    what, hint = _WORDS[sqlite3.SQLITE_CORRUPT]
-    return HistoryError(f"{name} {what}: it holds a value that cannot be right", hint=hint)
+    why = "" if error is None else f" ({plain(str(error))})"
+    return HistoryGarbled(
+        f"{name} is damaged: it holds a value that cannot be right{why}",
+        hint="the watch takes such values out and says so; where none runs, run 'diskwatch watch --once'",
+    )

@@ -14,13 +14,13 @@ from pathlib import Path
 
 from diskwatch.errors import HistoryError, HistoryTooNew
 from diskwatch.history import versions
+from diskwatch.history.beginning import begun
 from diskwatch.history.care import copies
 from diskwatch.history.carrying import Carried, carry, let_go_of_orphans, tables_of
 from diskwatch.history.lock import WatchLock
 from diskwatch.history.mishaps import foreign, told
 from diskwatch.history.opening import is_ours
 from diskwatch.history.round import write_entries
-from diskwatch.history.writer import begun
 from diskwatch.places import HISTORY
 from diskwatch.records import Entry
 from diskwatch.units import plain, say_count

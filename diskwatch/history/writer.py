@@ -1,6 +1,5 @@
 """The one writer of a history."""
 
-import os
 import sqlite3
 import threading
 from collections.abc import Iterator, Mapping, Sequence
@@ -11,7 +10,8 @@ from typing import Self
 from diskwatch.history import packing, rows
 from diskwatch.history.arriving import Arrived
 from diskwatch.history.bays import standing_calls
-from diskwatch.history.folding import fold_in, grown, leave_to_others
+from diskwatch.history.beginning import begun, make_file, make_folder, prepared
+from diskwatch.history.folding import fold_in, grown
 from diskwatch.history.forecasts import latest_forecasts
 from diskwatch.history.latency import learnt, traffic_days
 from diskwatch.history.library import Database
@@ -19,10 +19,9 @@ from diskwatch.history.listening import left_off, totals, write_listened
 from diskwatch.history.lock import WatchLock
 from diskwatch.history.mishaps import taken_away, told, unreadable
 from diskwatch.history.moving import Judge, Part, arrive
-from diskwatch.history.opening import BUSY_MS, refuse_foreign
+from diskwatch.history.opening import refuse_foreign
 from diskwatch.history.probes import last_probes
 from diskwatch.history.round import admit, write_entries, write_round
-from diskwatch.history.schema import bring_up_to_date
 from diskwatch.history.thinning import thin
 from diskwatch.history.traffic import rollups, uncondensed_day, write_class_days, write_spans
 from diskwatch.places import HISTORY
@@ -72,12 +71,12 @@ class History:
         path = folder / HISTORY
         # Twice: first so that nothing is laid beside a file that is not ours, then when nobody else can write.
         refuse_foreign(path)
-        _make_folder(folder)
+        make_folder(folder)
         lock = WatchLock.take(folder)
         try:
             refuse_foreign(path)
-            _make_file(path)
-            return cls(_opened(path), path, lock)
+            make_file(path)
+            return cls(begun(path), path, lock)
         except BaseException:
             lock.release()
             raise
@@ -85,7 +84,7 @@ class History:
     @classmethod
     def in_memory(cls) -> "History":
         """A history that ends with this object, for where none can be written."""
-        return cls(_prepared(sqlite3.connect(":memory:", check_same_thread=False), None), None, None)
+        return cls(prepared(sqlite3.connect(":memory:", check_same_thread=False), None), None, None)
 
     def __enter__(self) -> Self:
         return self
@@ -312,7 +311,7 @@ class History:
             except sqlite3.Error as error:
                 raise told(error, self._path) from error
             except ValueError as error:
-                raise unreadable(self._path) from error
+                raise unreadable(self._path, error) from error
 
     @contextmanager
     def _writing(self, *, lasting: bool = True) -> Iterator[sqlite3.Connection]:
@@ -343,61 +342,3 @@ def _identity(path: Path) -> tuple[int, int] | None:
     except OSError:
         return None
     return about.st_dev, about.st_ino
-
-
-def _make_folder(folder: Path) -> None:
-    try:
-        if not folder.is_dir():
-            folder.mkdir(parents=True)
-            folder.chmod(0o755)  # whatever the umask: ordinary users may read
-    except OSError as error:
-        raise told(error, folder) from error
-
-
-def _make_file(path: Path) -> None:
-    try:
-        descriptor = os.open(path, os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_CLOEXEC, 0o644)
-    except FileExistsError:
-        return
-    except OSError as error:
-        raise told(error, path) from error
-    # SQLite gives the files that it lays beside the history the same rights.
-    os.fchmod(descriptor, 0o644)
-    os.close(descriptor)
-
-
-def begun(path: Path) -> Database:
-    """A history of this version at a path, made where there is none; whoever calls holds the lock.
-
-    Raises:
-        HistoryError: it cannot be made.
-    """
-    return _opened(path)
-
-
-def _opened(path: Path) -> Database:
-    try:
-        connection = sqlite3.connect(path, check_same_thread=False, timeout=BUSY_MS / 1000)
-    except sqlite3.Error as error:
-        raise told(error, path) from error
-    return _prepared(connection, path)
-
-
-def _prepared(connection: sqlite3.Connection, path: Path | None) -> Database:
-    try:
-        db = Database(connection, execute_plugins=False)
-        # FULL: a reading that was reported as stored must outlive a power cut.
-        connection.execute("PRAGMA synchronous = FULL")
-        connection.execute("PRAGMA foreign_keys = ON")
-        # Some builds overwrite with zeros what is thinned away, and that costs the disk twice.
-        connection.execute("PRAGMA secure_delete = OFF")
-        connection.execute("PRAGMA journal_mode = WAL")
-        leave_to_others(connection)
-        bring_up_to_date(db)
-    except sqlite3.Error as error:
-        connection.close()
-        raise told(error, path) from error
-    except BaseException:
-        connection.close()
-        raise
-    return db

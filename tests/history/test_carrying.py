@@ -4,8 +4,9 @@ from pathlib import Path
 
 import pytest
 
+from diskwatch.history.beginning import begun
 from diskwatch.history.carrying import carry, let_go_of_orphans, tables_of
-from diskwatch.history.writer import History, begun
+from diskwatch.history.writer import History
 from tests.history.examples import DAY, NOON, a_drive, a_place, full_round
 
 

@@ -5,6 +5,7 @@ from pathlib import Path
 
 import pytest
 
+from diskwatch.errors import HistoryGarbled, HistoryGone, HistoryUnfit
 from diskwatch.history.mishaps import no_database, primary, taken_away, told, unreadable
 
 PATH = Path("/invented/history.db")
@@ -72,3 +73,32 @@ def test_a_path_cannot_write_to_the_terminal():
     assert "\x1b" not in str(unreadable(Path("/in\x1b[2Jvented")))
     assert "\x1b" not in str(no_database(Path("/in\x1b[2Jvented")))
     assert "\x1b" not in str(taken_away(Path("/in\x1b[2Jvented")))
+
+
+@pytest.mark.parametrize(
+    ("statement", "says"),
+    [
+        ("INSERT INTO child VALUES (1, 7)", "speaks of a drive that is not in the history"),
+        ("INSERT INTO child VALUES (2, NULL), (2, NULL)", "there is such a row already"),
+        ("INSERT INTO parent VALUES (NULL, NULL)", "must be there is missing"),
+        ("INSERT INTO parent VALUES (NULL, 'words')", "of the wrong kind"),
+    ],
+)
+def test_what_does_not_fit_is_told_in_peoples_words(statement, says):
+    with closing(sqlite3.connect(":memory:", isolation_level=None)) as connection:
+        connection.execute("PRAGMA foreign_keys = ON")
+        connection.execute("CREATE TABLE parent (number INTEGER PRIMARY KEY, size INTEGER NOT NULL) STRICT")
+        connection.execute("CREATE TABLE child (number INTEGER PRIMARY KEY, drive INTEGER REFERENCES parent)")
+        with pytest.raises(sqlite3.IntegrityError) as caught:
+            connection.execute(statement)
+    error = told(caught.value, PATH)
+    assert isinstance(error, HistoryUnfit)
+    assert says in error.what
+    assert "constraint" not in str(error)
+
+
+def test_what_cannot_be_right_and_what_was_taken_away_are_told_apart_from_other_troubles():
+    garbled = unreadable(PATH, ValueError("'htd' is not a valid Kind"))
+    assert isinstance(garbled, HistoryGarbled)
+    assert "'htd' is not a valid Kind" in str(garbled)
+    assert isinstance(taken_away(PATH), HistoryGone)

@@ -11,6 +11,7 @@ import pytest
 
 from diskwatch.errors import HistoryError, HistoryHeld
 from diskwatch.history import writer
+from diskwatch.history.beginning import begun, prepared
 from diskwatch.history.lock import watcher
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
@@ -180,7 +181,7 @@ def rigged(folder):
     folder.mkdir()
     path = folder / HISTORY
     connection = sqlite3.connect(path, factory=_Rigged)
-    with History(writer._prepared(connection, path), path, None) as history:
+    with History(prepared(connection, path), path, None) as history:
         yield history
 
 
@@ -236,9 +237,9 @@ def test_whichever_statement_of_the_first_start_fails_the_next_start_succeeds(fo
         connection = sqlite3.connect(path, factory=_Rigged)
         connection.fails_at = fails_at
         try:
-            writer._prepared(connection, path).close()
+            prepared(connection, path).close()
         except HistoryError:
-            writer._opened(path).close()
+            begun(path).close()
             assert _integrity(path) == [("ok",)]
         else:
             break
