@@ -6,13 +6,13 @@ from datetime import date
 
 from diskwatch.records import Drive, Identity, Kind, Outcome, Pass, Reading, Value
 from diskwatch.replay.cells import BadRow, whole
-from diskwatch.replay.columns import FLASH_ONLY, Layout, value
+from diskwatch.replay.columns import FLASH_ONLY, Layout, Meaning, value
 from diskwatch.units import DAY, plain
 
 _TRUE = frozenset({"1", "true", "yes", "1.0"})
 _FALSE = frozenset({"0", "false", "no", "", "0.0"})
-_MOST_KEPT = 100_000
-"""Values that are kept for use again: most of a table's numbers stand in it thousands of times."""
+_MOST_KEPT = 20_000
+"""Values of a column that are kept for use again: most of a table's numbers stand in it thousands of times."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,7 +40,9 @@ class Daily:
             layout: where everything stands in a row.
         """
         self._layout = layout
-        self._values: dict[tuple[int, str], Value | None] = {}
+        self._columns: list[tuple[int, Meaning, dict[str, Value | None]]] = [
+            (index, meaning, {}) for index, meaning in layout.values
+        ]
         self._drives: dict[str, Drive] = {}
         self._days: dict[str, int] = {}
 
@@ -73,15 +75,14 @@ class Daily:
 
     def _read(self, fields: Sequence[str]) -> tuple[Value, ...]:
         found = []
-        for index, meaning in self._layout.values:
+        for index, meaning, known in self._columns:
             text = fields[index]
-            key = (index, text)
-            if key not in self._values:
-                if len(self._values) >= _MOST_KEPT:
-                    self._values.clear()
+            if text not in known:
+                if len(known) >= _MOST_KEPT:
+                    known.clear()
                 number = whole(text, meaning.signal)
-                self._values[key] = None if number is None else value(meaning, number)
-            one = self._values[key]
+                known[text] = None if number is None else value(meaning, number)
+            one = known[text]
             if one is not None:
                 found.append(one)
         return tuple(found)
@@ -115,6 +116,8 @@ def _day_number(text: str) -> int:
 
 
 def _flag(text: str) -> bool:
+    if text in _FALSE:
+        return False
     folded = text.strip().casefold()
     if folded in _TRUE:
         return True
