@@ -8,7 +8,7 @@ REQUEST_BYTES = 256 * 1024
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class ProbeDay:
-    """One probe of a drive, of which there is at most one a day.
+    """One probe of a drive; at most one of a day brings reads, others were disturbed too early.
 
     Attributes:
         at: when it ended, UTC seconds since 1970.

@@ -31,7 +31,7 @@ class Probed:
 
     Attributes:
         at: when the last one ended, UTC seconds since 1970.
-        days: how many there were.
+        days: how many of them brought reads that could be judged.
         late: the ledger of late reads.
         speed: the ledger of the probe's speed.
         median_us: the median read of the last probe, microseconds; None where none came back.
@@ -77,11 +77,11 @@ def after(before: Probed | None, day: ProbeDay, *, rotation_rpm: int) -> Probed:
     back = [one for one in day.band_us if one is not None]
     return Probed(
         at=day.at,
-        days=old.days + 1,
+        days=old.days + bool(day.band_us),
         # What they were learnt from has served its purpose, and every pass rewrites the state.
         late=replace(late, slowest=()) if late.limit_ms is not None else late,
         speed=replace(speed, first=()) if speed.reference is not None else speed,
-        median_us=round(median(back)) if back else None,
+        median_us=round(median(back)) if back else None if day.band_us else old.median_us,
         slice_run=_run(old.slice_run, len(sliced), behind),
     )
 
