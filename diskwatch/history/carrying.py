@@ -83,28 +83,36 @@ def carry(old: sqlite3.Connection, new: sqlite3.Connection) -> Carried:
 
 
 def let_go_of_orphans(new: sqlite3.Connection) -> int:
-    """Take out rows whose drive or series is lost, and say how many; an explanation may be missing."""
-    for table in ("pass", "drive"):
-        new.execute(
-            f"UPDATE {table} SET explanation = NULL"  # noqa: S608  # one of two names
-            " WHERE explanation IS NOT NULL AND explanation NOT IN (SELECT number FROM sentence)"
-        )
-    taken = 0
-    for child, column, parent in (
-        ("series", "drive", "drive"),
-        *((name, "series", "series") for name in ("latest", "fresh", "value", "evidence")),
-        *(
-            (name, "drive", "drive")
-            for name in ("owner_fact", "plugged", "pass", "day_book", "finding", "call", "analyser_state")
-        ),
-        *((name, "drive", "drive") for name in ("last_reading", "io_day", "pass_day", "kept_state", "beside")),
-        *((name, "slot % 65536", "drive") for name in ("io_minute", "io_five")),
-    ):
-        taken += new.execute(
-            f"DELETE FROM {child} WHERE {column} IS NOT NULL"  # noqa: S608  # names of our own schema
-            f" AND {column} NOT IN (SELECT number FROM {parent})"
-        ).rowcount
-    return taken
+    """Take out rows whose drive or series is lost, and say how many; an explanation may be missing.
+
+    A drive that is met next may be given a lost one's number: nothing may be left for it to take up.
+    """
+    taken, before = 0, -1
+    references = tuple(_references(new))
+    # A series may go with its drive, and its values with the series.
+    while taken != before:
+        before = taken
+        for child, column, parent, key in references:
+            lost = f"{column} IS NOT NULL AND {column} NOT IN (SELECT {key} FROM {parent})"  # noqa: S608  # names of our own schema
+            if parent == "sentence":
+                new.execute(f"UPDATE {child} SET {column} = NULL WHERE {lost}")  # noqa: S608  # likewise
+            else:
+                taken += new.execute(f"DELETE FROM {child} WHERE {lost}").rowcount  # noqa: S608  # likewise
+    return taken + new.execute(_LOST_MARKS).rowcount
+
+
+_LOST_MARKS = """
+    DELETE FROM thinned WHERE (what IN ('pass', 'beside') AND number NOT IN (SELECT number FROM drive))
+    OR (what = 'value' AND number NOT IN (SELECT number FROM series))
+"""
+"""How far a drive's passes and a series' values were thinned: what comes next is thinned from its first row."""
+
+
+def _references(new: sqlite3.Connection) -> Iterator[tuple[str, str, str, str]]:
+    """Which column of which table names a row of which other one, by which of its columns."""
+    for table in sorted(tables_of(new)):
+        for _, _, parent, column, key, *_ in new.execute(f"PRAGMA foreign_key_list({table})").fetchall():
+            yield table, column, parent, key or "number"
 
 
 def _tables(new: sqlite3.Connection, old: sqlite3.Connection) -> Iterator[_Table]:

@@ -11,6 +11,7 @@ from contextlib import closing, suppress
 from dataclasses import dataclass
 from datetime import UTC, datetime
 from pathlib import Path
+from typing import BinaryIO
 
 from diskwatch.errors import HistoryError, HistoryTooNew
 from diskwatch.history import versions
@@ -119,14 +120,20 @@ def _with_a_header(path: Path, mended: Path) -> Path:
             return path
         file.seek(0)
         with mended.open("wb") as copy:
-            while chunk := file.read(1 << 20):
-                copy.write(chunk)
+            _pour(file, copy)
             copy.seek(0)
             copy.write(_HEADER)
     log = path.with_name(f"{path.name}-wal")
     if log.exists():
-        mended.with_name(f"{mended.name}-wal").write_bytes(log.read_bytes())
+        with log.open("rb") as file, mended.with_name(f"{mended.name}-wal").open("wb") as copy:
+            _pour(file, copy)
     return mended
+
+
+def _pour(file: BinaryIO, copy: BinaryIO) -> None:
+    # By the mebibyte: a log that a reader held up may be larger than the memory that the watch may use.
+    while chunk := file.read(1 << 20):
+        copy.write(chunk)
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,6 +1,7 @@
 import os
 import sqlite3
 from contextlib import closing
+from dataclasses import replace
 
 import pytest
 
@@ -10,8 +11,21 @@ from diskwatch.history.reader import Past
 from diskwatch.history.rescue import rescue
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY, WATCH_LOCK, WRITE_LOCK
+from diskwatch.records import (
+    ClassDay,
+    Direction,
+    Forecast,
+    Learnt,
+    LeftOff,
+    Listened,
+    Outcome,
+    Pass,
+    ProbeDay,
+    Way,
+)
+from diskwatch.units import day_number
 from tests.history.damage import PAGE, pages, turn
-from tests.history.examples import DAY, NOON, a_drive, a_place, a_span, full_round
+from tests.history.examples import DAY, NOON, a_drive, a_part, a_place, a_round, a_span, full_round
 
 ROUNDS = 300
 
@@ -27,7 +41,45 @@ def grown(folder):
         for number in range(ROUNDS):
             history.record(full_round(known, NOON + number * DAY // 2, number))
         history.add_traffic([a_span(1, NOON + minute * 60) for minute in range(3000)])
+        _tell_the_rest(history, known)
     return folder
+
+
+def _tell_the_rest(history, known):
+    """What few rounds bring, so that no table is empty."""
+    at = NOON + ROUNDS * DAY // 2
+    asleep = Pass(at=at, outcome=Outcome.ASLEEP, explanation="It sleeps.", answer="all of it")
+    part = replace(
+        a_part(known, asleep, state="state asleep"),
+        learnt=Learnt(through=at // DAY - 1, state="learnt"),
+        forecasts=(
+            Forecast(
+                signal="percentage-used",
+                limit=100.0,
+                made_on_day=day_number(at),
+                low=1.0,
+                high=2.0,
+                probability=0.8,
+                reason=None,
+            ),
+        ),
+        probe=ProbeDay(at=at, place=1, band_us=(1, None), slice_us=(2,), disk_ms=3),
+    )
+    way = Way(adapter="1234:5678:0001 invented", instance="5", type="sat")
+    history.record(replace(a_round(part, at=at), ways=(way,)))
+    totals = {known.number: {"kernel-io-errors": 7}}
+    left_off = LeftOff(log="invented", sequence=5)
+    history.listen(Listened(source="invented", left_off=left_off, gathered="", totals=totals))
+    history.tell(known.number, {"label": "shelf"}, at)
+    day, _ = history.uncondensed(at)
+    one = ClassDay(load_class=1, direction=Direction.READ, rollups=2, operations=9, histogram={3: 2})
+    history.condense(day, {known.number: (one,)})
+    while history.thin(at):
+        pass
+
+
+def test_every_table_holds_something_that_can_be_lost(grown):
+    assert [name for name, found in _rows(grown / HISTORY).items() if not found] == []
 
 
 def _rows(path):
