@@ -77,11 +77,13 @@ class Judged:
         part: findings, evidence, call and state; its pass is the last one.
         since: all dated states behind this one are no longer right; None for none of them.
         copies: those that take their place.
+        anew: whether it was judged from its first pass on, so that no dated state is right any more.
     """
 
     part: DriveRound
     since: Dated | None
     copies: tuple[Dated, ...]
+    anew: bool = False
 
 
 Judge = Callable[[Case], Judged | None]
@@ -113,7 +115,9 @@ def arrive(connection: sqlite3.Connection, part: Part, judge: Judge) -> Arrived:
         )
     )
     if judged is not None:
-        if judged.since is not None:
+        if judged.anew:
+            connection.execute("DELETE FROM kept_state WHERE drive = ?", (known.number,))
+        elif judged.since is not None:
             connection.execute(
                 "DELETE FROM kept_state WHERE drive = ? AND (turn, at) > (?, ?)",
                 (known.number, judged.since.turn, judged.since.at),

@@ -133,7 +133,7 @@ def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged
         evidence=step.evidence,
         call=step.call,
     )
-    return Judged(part=part, since=since, copies=tuple(copies))
+    return Judged(part=part, since=since, copies=tuple(copies), anew=since is None)
 
 
 def _probed(

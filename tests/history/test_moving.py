@@ -46,3 +46,18 @@ def test_what_is_judged_is_kept_and_copies_that_are_no_longer_right_give_way(his
     assert history.copies(1) == ((NOON + 5, "copy"),)
     assert history.states() == {1: "anew"}
     assert history.calls() == {1: call}
+
+
+def test_where_a_drive_was_judged_from_its_first_pass_on_no_dated_state_of_before_is_left(history):
+    history.arrive([_part()], lambda _: None)
+    history._db.conn.execute(
+        "INSERT INTO kept_state (drive, at, packed) VALUES (1, ?, ?)", (NOON + 9, packed("old"))
+    )
+    history._db.conn.commit()
+    (known,) = history.known()
+    part = a_part(known, a_pass(NOON + 120), state="anew")
+    history.arrive(
+        [Part(known=known, described=_part().described, lines=())],
+        lambda _: Judged(part=part, since=None, copies=(), anew=True),
+    )
+    assert history.copies(1) == ()

@@ -221,6 +221,23 @@ def test_two_parts_of_a_life_become_the_whole_one_whichever_comes_last(tmp_path,
         assert history.known()[0].place == (ELSEWHERE if not late else HERE)
 
 
+def test_every_dated_copy_leads_to_the_present_state_after_two_lives_were_woven_into_one(tmp_path):
+    passes = list(a_life(40))
+    for name, part in (("here", passes[1::2]), ("there", passes[0::2])):
+        with kept(tmp_path / name) as history:
+            live(history, part)
+    taken(tmp_path / "here", exported(tmp_path / "there"))
+    with kept(tmp_path / "here") as history:
+        connection, present = history._db.conn, history.states()[1]
+        copies = dated_states(connection, 1)
+        assert len(copies) > 4
+        for copy in copies:
+            state = analyser.load(copy.state)
+            for _, pass_ in passes_with_readings(connection, 1, copy):
+                state = analyser.advance(state, replace(pass_, drive=HDD)).state
+            assert analyser.dump(state) == present
+
+
 def test_a_round_after_the_arrival_goes_on_from_it(tmp_path):
     passes = list(a_life(60))
     here, there, whole = tmp_path / "here", tmp_path / "there", tmp_path / "whole"
