@@ -39,11 +39,6 @@ def probes(connection: sqlite3.Connection, drive: int, *, after: int | None = No
     return tuple(_day(*row) for row in found)
 
 
-def last_probes(connection: sqlite3.Connection) -> dict[int, int]:
-    """When each drive was probed last, UTC seconds since 1970, by its number."""
-    return dict(connection.execute("SELECT drive, max(at) FROM probe GROUP BY drive"))
-
-
 def times_packed(day: ProbeDay) -> bytes:
     """The times of a probe made small."""
     return packing.packed(json.dumps([day.band_us, day.slice_us], separators=(",", ":")))

@@ -20,7 +20,7 @@ from diskwatch.history.lock import WatchLock
 from diskwatch.history.mishaps import taken_away, told, unreadable
 from diskwatch.history.moving import Judge, Part, arrive
 from diskwatch.history.opening import refuse_foreign
-from diskwatch.history.probes import last_probes
+from diskwatch.history.probes import probes
 from diskwatch.history.round import admit, write_entries, write_round
 from diskwatch.history.thinning import thin
 from diskwatch.history.traffic import rollups, uncondensed_day, write_class_days, write_spans
@@ -38,6 +38,7 @@ from diskwatch.records import (
     LeftOff,
     Listened,
     Place,
+    ProbeDay,
     Round,
 )
 from diskwatch.units import DAY
@@ -190,10 +191,10 @@ class History:
         with self._using() as connection:
             return traffic_days(connection, drive, after=after, before=before, most=most)
 
-    def last_probes(self) -> dict[int, int]:
-        """When each drive was probed last, UTC seconds since 1970, by its number."""
+    def probes(self, drive: int, *, after: int) -> tuple[ProbeDay, ...]:
+        """A drive's probes that ended after a time (UTC seconds since 1970), oldest first."""
         with self._using() as connection:
-            return last_probes(connection)
+            return probes(connection, drive, after=after)
 
     def forecasts(self) -> dict[int, tuple[Forecast, ...]]:
         """The latest forecast about each signal, by the drive's number."""

@@ -88,6 +88,10 @@ class Prober(Protocol):
         """Probe one; bounded in time."""
         ...
 
+    def stop(self) -> None:
+        """End a probe that is under way, and let none begin."""
+        ...
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Look:

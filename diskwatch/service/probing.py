@@ -65,7 +65,7 @@ class Probing:
         *,
         past: Callable[[int, int], Iterable[ProbeDay] | None],
         on_battery: Callable[[], bool],
-        used: Callable[[int], None],
+        ours: Callable[[int, bool], None],
     ) -> None:
         """Begin.
 
@@ -74,12 +74,12 @@ class Probing:
             past: a drive's probes after a time, by its number, UTC seconds since 1970; None while they cannot
                 be read, and then none is made, since nobody knows what was used up.
             on_battery: whether the machine runs on its battery.
-            used: told the number of a drive whose traffic has just been ours.
+            ours: told the number of a drive, and whether what it does now, or did just now, is our doing.
         """
         self._prober = prober
         self._past = past
         self._on_battery = on_battery
-        self._used = used
+        self._ours = ours
         self._today: dict[int, _Today] = {}
         self._tried: dict[int, int] = {}
         self._ready: dict[int, ProbeDay] = {}
@@ -114,9 +114,10 @@ class Probing:
                 continue
             self._tried[number] = at
             wanted = Wanted(day=day_number(at), reads=READS, requests=REQUESTS, disk_ms=left)
+            self._ours(number, True)  # noqa: FBT003 - a callback has no names
             brought = self._prober.probe(found[number], wanted)
+            self._ours(number, brought.disk_ms > 0)
             if brought.disk_ms > 0:
-                self._used(number)
                 self._keep(number, _probe(brought, now()))
                 break
         return frozenset(self._ready)

@@ -17,6 +17,7 @@ from diskwatch.records import (
     KnownDrive,
     Outcome,
     Pass,
+    ProbeDay,
     Round,
     Value,
 )
@@ -40,6 +41,10 @@ def _nothing_heard(_number: int, _blocks: tuple[str, ...]) -> tuple[Value, ...]:
     return ()
 
 
+def _never_probed(_number: int) -> ProbeDay | None:
+    return None
+
+
 def _all_wanted(_who: Identity, _devices: tuple[str, ...]) -> bool:
     return True
 
@@ -57,6 +62,7 @@ class Rounds:
         turns: Turns | None = None,
         asking: type[Asking] = Asking,
         heard: Heard = _nothing_heard,
+        probed: Callable[[int], ProbeDay | None] = _never_probed,
     ) -> None:
         """Begin.
 
@@ -68,6 +74,7 @@ class Rounds:
             turns: decides which drives a round leaves out; None to ask all each time.
             asking: how the drives of a round are asked.
             heard: what the machine's other senses count of a drive, by its number and its block devices.
+            probed: the probe of a drive that waits to be taken in, by its number; each is given once.
         """
         self._machine = machine
         self._keeper = keeper
@@ -76,6 +83,7 @@ class Rounds:
         self._turns = turns
         self._asking = asking
         self._heard = heard
+        self._probed = probed
         self._latency = Latency(keeper)
         self._forecasts = Forecasts(keeper)
         self._states: dict[int, analyser.DriveState] = {}
@@ -230,8 +238,10 @@ class Rounds:
         others = tuple(self._state(one.number) for one in self._keeper.known if one.number != number)
         around = analyser.Around(bay=known.place.bay, others=others)
         taken = self._latency.take_in(known, self._state(number), pass_.at)
-        pass_ = replace(pass_, heard=(*pass_.heard, *analyser.measured(taken.state)))
-        step = analyser.advance(taken.state, pass_, around)
+        state, probe, told = self._with_probe(known, taken.state)
+        measured = (*analyser.measured(state), *analyser.probe_values(state))
+        pass_ = replace(pass_, heard=(*pass_.heard, *measured))
+        step = analyser.advance(state, pass_, around)
         self._states[number] = step.state
         drive = DriveRound(
             known=known,
@@ -241,9 +251,19 @@ class Rounds:
             evidence=step.evidence,
             call=step.call,
             learnt=taken.learnt,
+            probe=probe,
             forecasts=self._forecasts.due(number, step.state, pass_.at),
         )
-        return drive, [replace(entry, drive=number) for entry in (*taken.happened, *step.happened)]
+        return drive, [replace(entry, drive=number) for entry in (*taken.happened, *told, *step.happened)]
+
+    def _with_probe(
+        self, known: KnownDrive, state: analyser.DriveState
+    ) -> tuple[analyser.DriveState, ProbeDay | None, tuple[Entry, ...]]:
+        probe, rpm = self._probed(known.number), known.drive.rotation_rpm
+        if probe is None or rpm is None:
+            return state, None, ()
+        step = analyser.take_in_probe(state, probe, rotation_rpm=rpm)
+        return step.state, probe, step.happened
 
     def _state(self, number: int) -> analyser.DriveState:
         if number not in self._states:

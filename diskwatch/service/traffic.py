@@ -44,6 +44,7 @@ class Traffic:
         self._before_at = (0, 0.0)
         self._standstill = Standstill()
         self._broken: set[int] = set()
+        self._ours: set[int] = set()
 
     @property
     def hung(self) -> frozenset[str]:
@@ -54,6 +55,15 @@ class Traffic:
     def troubles(self) -> tuple[str, ...]:
         """The same in one sentence each."""
         return self._standstill.troubles
+
+    def leave_out(self, number: int, *, ours: bool) -> None:
+        """Leave a drive out of the next look, since what it does is our doing; for any thread.
+
+        Args:
+            number: the drive's.
+            ours: whether that is so; False takes it back.
+        """
+        (self._ours.add if ours else self._ours.discard)(number)
 
     def look(self, blocks: Mapping[int, tuple[str, ...]]) -> Look:
         """Look once.
@@ -76,6 +86,9 @@ class Traffic:
             counts = counters.traffic(names, before, totals, elapsed=seconds)
             if counts is None:
                 self._broken.add(number)
+                continue
+            if number in self._ours:
+                self._ours.discard(number)
                 continue
             reset = number in self._broken
             self._broken.discard(number)

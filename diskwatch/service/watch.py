@@ -17,9 +17,10 @@ from diskwatch.history.live import LiveWriter
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
 from diskwatch.machine import choice
+from diskwatch.machine.probe import Prober
 from diskwatch.machine.protocol import Machine
 from diskwatch.machine.senses import Senses
-from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, Value
+from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, ProbeDay, Value
 from diskwatch.service import requests
 from diskwatch.service.arrival import take_in
 from diskwatch.service.clocks import ClockGuard, Clocks
@@ -27,6 +28,7 @@ from diskwatch.service.ears import Ears
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.manager import Manager, status
 from diskwatch.service.owner import DEEDS
+from diskwatch.service.probing import Probing
 from diskwatch.service.progress import Progress
 from diskwatch.service.removal import MOVE, move_house
 from diskwatch.service.requests import Answer
@@ -90,6 +92,7 @@ class Watch:
         told: Told | None = None,
         senses: Senses | None = None,
         tester: Tester | None = None,
+        prober: Prober | None = None,
         reread: Callable[[], None] | None = None,
         manager: Manager | None = None,
     ) -> None:
@@ -102,6 +105,7 @@ class Watch:
             told: called with each part of a round once it is kept.
             senses: what else the machine tells of its drives; None for nothing.
             tester: has drives test themselves where the owner's settings ask for it; None for nobody.
+            prober: probes disks where the owner's settings ask for it; None for nobody.
             reread: reads the settings again for the watch that goes on after this one, or raises
                 `diskwatch.errors.SettingsError`; None where they stay as they are.
             manager: who is told how the watch gets on; None for whoever started this process.
@@ -122,6 +126,7 @@ class Watch:
             wanted=lambda who, devices: choice.watched(who, devices, only=watch.only, ignore=watch.ignore),
             turns=Turns(every=settings.smart.every, hung=lambda: self._traffic.hung),
             heard=self._heard,
+            probed=self._probed,
         )
         self._senses = senses
         self._ears = (
@@ -144,7 +149,18 @@ class Watch:
                 settings.selftest,
                 past=self._past_tests,
                 note=self._note_entry,
-                on_battery=lambda: senses is not None and senses.on_battery(),
+                on_battery=self._is_on_battery,
+            )
+        )
+        self._prober = prober
+        self._probing = (
+            None
+            if prober is None or not settings.probe.enabled
+            else Probing(
+                prober,
+                past=self._past_probes,
+                on_battery=self._is_on_battery,
+                ours=lambda number, so: self._traffic.leave_out(number, ours=so),
             )
         )
         self._deaf: str | None = None
@@ -322,7 +338,25 @@ class Watch:
                 if silent:
                     done += self._rounds.run(told=self._told, lock=self._lock, only=silent)
                 self._tests.after(done, self._rounds.found, at=now(), hour=time.localtime().tm_hour)
+            self._probe(done)
         self._progress.done("the rounds", time.monotonic())
+
+    def _probe(self, done: tuple[DriveRound, ...]) -> None:
+        """Probe a disk that has just answered, where it is due, and take in at once what that brought."""
+        if self._probing is None or self._stop.is_set():
+            return
+        testing = frozenset() if self._tests is None else self._tests.running
+        ready = self._probing.after(done, self._rounds.found, now=now, testing=testing)
+        if ready and not self._stop.is_set():
+            self._rounds.run(told=self._told, lock=self._lock, only=ready)
+
+    def _probed(self, number: int) -> ProbeDay | None:
+        return None if self._probing is None else self._probing.take(number)
+
+    def _past_probes(self, number: int, after: int) -> tuple[ProbeDay, ...] | None:
+        with suppress(DiskwatchError), self._lock:
+            return self._keeper.ask(lambda history: history.probes(number, after=after))
+        return None
 
     def _past_tests(self) -> tuple[Entry, ...] | None:
         """What the day book holds of self-tests; None where it cannot be read."""
@@ -330,9 +364,12 @@ class Watch:
             return past.day_book(kinds={"self-test"})
         return None
 
+    def _is_on_battery(self) -> bool:
+        return self._senses is not None and self._senses.on_battery()
+
     def _spares_the_battery(self) -> bool:
         """Whether this round is left out because the machine runs on its battery."""
-        on_battery = self._senses is not None and self._senses.on_battery()
+        on_battery = self._is_on_battery()
         self._on_battery = self._on_battery + 1 if on_battery else 0
         # The first after the plug was pulled still takes place, and then one of so many.
         return on_battery and (self._on_battery - 1) % ON_BATTERY != 0
@@ -453,6 +490,8 @@ class Watch:
     def _end(self, words: str | None = None) -> None:
         self._rounds.end()
         self._machine.stop()
+        if self._prober is not None:
+            self._prober.stop()
         if self._ears is not None:
             self._ears.stop()
         # What a round has in hand is kept before the history closes; more than a moment is not waited for.

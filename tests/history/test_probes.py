@@ -1,7 +1,7 @@
 import pytest
 from hypothesis import given, strategies as st
 
-from diskwatch.history.probes import last_probes, probes, times, write_probe
+from diskwatch.history.probes import probes, times, write_probe
 from diskwatch.records import ProbeDay
 from tests.history.examples import DAY, NOON, a_drive, a_place
 
@@ -20,7 +20,7 @@ def test_probes_come_back_whole_and_oldest_first(history):
     assert probes(connection, 1) == (a_probe(NOON), a_probe(NOON + DAY), a_probe(NOON + 2 * DAY))
     assert probes(connection, 1, after=NOON) == (a_probe(NOON + DAY), a_probe(NOON + 2 * DAY))
     assert probes(connection, 2) == ()
-    assert last_probes(connection) == history.last_probes() == {1: NOON + 2 * DAY}
+    assert history.probes(1, after=NOON + DAY) == (a_probe(NOON + 2 * DAY),)
 
 
 def test_one_that_is_written_twice_stands_once(history):

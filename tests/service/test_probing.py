@@ -22,6 +22,9 @@ class ScriptedProber:
         self.asked.append((found.place.device, wanted.disk_ms))
         return self.brings.pop(0) if len(self.brings) > 1 else self.brings[0]
 
+    def stop(self):
+        self.brings = [AT_WORK]
+
 
 def part(number=1, drive=HDD, *, at=NOON, call=CallWord.KEEP, outcome=None):
     pass_ = missed(at, outcome, drive) if outcome else read(at, drive)
@@ -44,7 +47,7 @@ class Day:
                 [one for who, one in self.kept if who == number and one.at > after] if self.readable else None
             ),
             on_battery=lambda: self.battery,
-            used=self.used.append,
+            ours=lambda number, so: self.used.append((number, so)),
         )
 
     def round(self, *parts, at=NOON, testing=()):
@@ -63,7 +66,7 @@ def day():
 
 def test_a_disk_that_answered_is_probed_once_a_day_also_over_a_restart(day):
     assert day.round(part()) == [1]
-    assert day.used == [1]
+    assert day.used == [(1, True), (1, True)]
     (number, kept), *_ = day.kept
     assert (number, len(kept.band_us), kept.disk_ms, kept.at) == (1, 256, 1_650, NOON)
     assert day.round(part(at=NOON + 60), at=NOON + 60) == []
@@ -117,7 +120,8 @@ def test_a_disk_at_work_is_tried_again_later_and_keeps_no_other_from_its_turn(da
     assert day.round(part()) == []
     assert day.round(part(), part(2)) == [1], "the other one waited longer, and was at work too"
     assert [device for device, _ in day.prober.asked] == ["/dev/sda", "/dev/sdb", "/dev/sda"]
-    assert day.used == [1]
+    assert day.used[:4] == [(1, True), (1, False), (2, True), (2, False)]
+    assert day.used[4:] == [(1, True), (1, True)]
 
 
 def test_one_disk_is_probed_in_a_round(day):

@@ -4,7 +4,7 @@ from dataclasses import replace
 import pytest
 
 from diskwatch.history.reader import Past
-from diskwatch.records import CallWord, Identity, Kind, Outcome, Place, Way
+from diskwatch.records import CallWord, Identity, Kind, Outcome, Place, ProbeDay, Way
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.pace import Why
 from diskwatch.service.rounds import Rounds
@@ -322,6 +322,24 @@ def test_a_pass_carries_what_was_heard_of_its_drive_whatever_became_of_it(keeper
     done = rounds(machine, keeper, heard=heard).run()
     assert sorted(blocks for _, blocks in asked) == [("nvme0",), ("sda",)]
     assert {one.pass_.heard[0].value for one in done} == {1, 2}
+
+
+def test_a_probe_is_taken_in_with_the_next_pass_and_kept_with_it(tmp_path, keeper):
+    machine = ScriptedMachine(found(HDD), found(NVME))
+    machine.answers = {"/dev/sda": [read(NOON)], "/dev/nvme0": [read(NOON, NVME)]}
+    day = ProbeDay(at=NOON - 5, place=0, band_us=(5_500,) * 256, slice_us=(2_000,) * 100, disk_ms=1_650)
+    waits = {1: day, 2: day}
+    here = rounds(machine, keeper, probed=lambda number: waits.pop(number, None))
+    done = {one.known.drive.kind: one for one in here.run()}
+    assert done[Kind.HDD].probe == day
+    assert {one.signal for one in done[Kind.HDD].pass_.heard} == {"late-reads", "probe-latency"}
+    assert done[Kind.NVME].probe is None, "it has no turns"
+    number = done[Kind.HDD].known.number
+    assert keeper.ask(lambda history: history.probes(number, after=0)) == (day,)
+    assert [one.probe for one in here.run()] == [None, None]
+    with Past.open(tmp_path) as past:
+        (line,) = [one for one in past.bays(NOON).drives if one.number == number]
+        assert {one.name: one.value for one in line.signals}["probe-latency"] == 5_500
 
 
 def test_only_the_drives_that_something_was_heard_of_are_asked_and_none_is_taken_for_gone(keeper):

@@ -98,3 +98,17 @@ def test_the_span_after_counters_began_anew_says_so_and_no_other():
         clocks.move(10)
         resets += [span.reset for span in looks.look(BLOCKS).spans]
     assert resets == [True, False]
+
+
+def test_what_a_drive_does_for_us_is_no_traffic_of_its_own():
+    looks, clocks = traffic(counted(100), counted(400), counted(410), counted(415))
+    looks.look(BLOCKS)
+    clocks.move(10)
+    looks.leave_out(7, ours=True)
+    assert looks.look(BLOCKS).spans == ()
+    clocks.move(10)
+    assert looks.look(BLOCKS).spans[0].counts.reads == 10
+    clocks.move(10)
+    looks.leave_out(7, ours=True)
+    looks.leave_out(7, ours=False)
+    assert looks.look(BLOCKS).spans[0].counts.reads == 5

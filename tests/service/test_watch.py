@@ -11,11 +11,22 @@ from diskwatch.errors import SettingsError
 from diskwatch.history.reader import Past
 from diskwatch.records import Entry
 from diskwatch.service.manager import Manager
+from diskwatch.service.probing import DISK_MS
 from diskwatch.service.watch import Watch
-from diskwatch.settings import Duration, HistoryKeeping, Io, SelfTests, Settings, Smart, Watch as WatchSettings
+from diskwatch.settings import (
+    Duration,
+    HistoryKeeping,
+    Io,
+    Probe,
+    SelfTests,
+    Settings,
+    Smart,
+    Watch as WatchSettings,
+)
 from tests.samples import HDD, NOON, read, value, with_serial
 from tests.service.machines import ScriptedMachine, counted, found
 from tests.service.senses import ScriptedSenses
+from tests.service.test_probing import AT_WORK, ScriptedProber
 
 QUICK = Settings(
     smart=Smart(every=Duration(1)), io=Io(every=Duration(1)), history=HistoryKeeping(commit=Duration(1))
@@ -171,6 +182,27 @@ def test_on_battery_one_round_of_four_takes_place(machine, tmp_path, monkeypatch
     watch._round()
     assert rounds == [False, True, True, False]
     watch._end()
+
+
+def test_a_disk_is_probed_only_where_the_owner_asks_and_its_probe_taken_in_at_once(machine, tmp_path):
+    prober = ScriptedProber()
+    machine.answers = {"/dev/sda": [read(int(time.time()), pending_sectors=0)]}
+    silent = Watch(machine, QUICK, tmp_path, prober=prober)
+    silent._round()
+    silent._end()
+    assert prober.asked == []
+    prober, asked = ScriptedProber(), replace(QUICK, probe=Probe(enabled=True))
+    watch = Watch(machine, asked, tmp_path, prober=prober)
+    machine.asked.clear()
+    watch._round()
+    assert machine.asked == ["/dev/sda"] * 2, "one pass more, which takes the probe in"
+    watch._round()
+    assert prober.asked == [("/dev/sda", DISK_MS)]
+    watch._end()
+    assert prober.brings == [AT_WORK], "the end of the watch ends a probe"
+    with Past.open(tmp_path) as past:
+        (line,) = past.bays(NOON).drives
+        assert {one.name: one.value for one in line.signals}["probe-latency"] == 5_500
 
 
 class ScriptedTester:
