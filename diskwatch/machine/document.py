@@ -45,7 +45,7 @@ def document_of(text: str) -> Document | None:
 def dig(document: object, *path: str) -> object:
     """What stands at a path of keys, or None."""
     for key in path:
-        if not isinstance(document, Mapping):
+        if not isinstance(document, dict):
             return None
         document = document.get(key)
     return document
@@ -57,10 +57,12 @@ def number_at(document: object, *path: str) -> int | None:
     Where smartctl could not be sure that a reader keeps a large number exact it adds the same as text under the
     key with ``_s`` behind it; that one is taken.
     """
-    exact = text_at(document, *path[:-1], f"{path[-1]}_s")
+    *way, name = path
+    around = dig(document, *way)
+    exact = text_at(around, f"{name}_s")
     if exact is not None and exact.isascii() and exact.isdigit() and len(exact) <= 40:
         return int(exact)
-    found = dig(document, *path)
+    found = dig(around, name)
     return found if isinstance(found, int) and not isinstance(found, bool) else None
 
 

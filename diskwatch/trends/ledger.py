@@ -57,8 +57,8 @@ def after(ledger: Ledger, factors: Sequence[float], exposure: float = 1.0) -> Le
     """
     if exposure <= 0:
         raise ValueError(f"a step needs an exposure above 0 days, not {exposure}")
-    pairs = zip(ledger.sums, factors, strict=True)
-    return Ledger(tuple([min(CAP, (total + exposure) * factor) for total, factor in pairs]))
+    sums = [(total + exposure) * factor for total, factor in zip(ledger.sums, factors, strict=True)]
+    return Ledger(tuple(sums if max(sums) < CAP else [min(CAP, one) for one in sums]))
 
 
 @lru_cache(maxsize=1024)  # nearly every step is a quiet day of one of a few norms

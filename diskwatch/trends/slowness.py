@@ -54,6 +54,9 @@ SHARES: Mapping[Direction, float] = {Direction.READ: 0.12, Direction.WRITE: 0.05
 NOTHING = sum(1 / (exp(PROXY / 2 * one**2) - 1) for one in SUSPICIONS) / len(SUSPICIONS)
 """Evidence that never ends where every day lies exactly on the tolerance, 4.67 days: as good as none."""
 
+_DRAGS = tuple(PROXY / 2 * one**2 for one in SUSPICIONS)
+"""What each suspicion pays for the spread of z."""
+
 _ACCEPTED = 7
 """Scored days whose median is taken for the pace that the owner accepts: about what an alarm takes."""
 
@@ -101,7 +104,7 @@ def factors(z: float) -> tuple[float, ...]:
         z: the day's shift beyond the tolerance in units of sigma; clipped here.
     """
     clipped = min(max(z, -CLIP), CLIP)
-    return tuple(exp(one * clipped - PROXY / 2 * one**2) for one in SUSPICIONS)
+    return tuple([exp(one * clipped - drag) for one, drag in zip(SUSPICIONS, _DRAGS, strict=True)])
 
 
 def after_day(
