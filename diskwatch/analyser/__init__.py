@@ -7,7 +7,7 @@ readings, replay of recorded ones and rehearsal of a failure run the very same c
 from diskwatch.analyser.advance import Step, advance
 from diskwatch.analyser.around import Around
 from diskwatch.analyser.explain import Explanation, explain
-from diskwatch.analyser.forecasts import forecasts
+from diskwatch.analyser.forecasts import COUNTED, alarmed, forecasts
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.probing import ProbeStep, probe_values, take_in_probe
 from diskwatch.analyser.settle import settle
@@ -22,6 +22,7 @@ from diskwatch.analyser.traffic import (
 )
 
 __all__ = [
+    "COUNTED",
     "UNREAD_LIMIT",
     "Around",
     "DriveState",
@@ -30,6 +31,7 @@ __all__ = [
     "Step",
     "TrafficStep",
     "advance",
+    "alarmed",
     "dump",
     "dump_latency",
     "explain",

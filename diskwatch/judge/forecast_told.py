@@ -11,6 +11,10 @@ _REACHED: Mapping[str, str] = {
     "percentage-used": marked("Rated endurance used up ({limit} %, {source}): {when}."),
     "available-spare": marked("Spare blocks down to {limit} % ({source}): {when}."),
     "read-latency": marked("Reads taking twice as long as usual ({source}): {when}."),
+    "media-episodes": marked("Occasion {limit} with new bad spots ({source}): {when}."),
+    "flash-media-episodes": marked(
+        "Occasion {limit} on which stored data is not recovered ({source}): {when}."
+    ),
     "write-latency": marked("Writes taking twice as long as usual ({source}): {when}."),
 }
 
@@ -20,6 +24,16 @@ _SOURCES: Mapping[LimitSource, str] = {
     LimitSource.OWN: marked("against its own past"),
     LimitSource.USUAL: marked("a limit that is usual among makers, since the drive states none"),
 }
+
+
+def alarm_over() -> str:
+    """Why nothing is forecast any longer, as a part of a sentence."""
+    return _("its alarm is over")
+
+
+def days_not_kept() -> str:
+    """Why episodes that came before this version cannot be forecast from, likewise."""
+    return _("the days of its earlier episodes were not kept yet")
 
 
 def forecast(made: Forecast, at: int) -> str:

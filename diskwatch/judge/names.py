@@ -59,6 +59,10 @@ _NAMES: Mapping[str, tuple[str, str]] = {
     "array-dropouts": marked_plural(
         "time that an array dropped or mended it", "times that an array dropped or mended it"
     ),
+    "media-episodes": marked_plural("occasion with new bad spots", "occasions with new bad spots"),
+    "flash-media-episodes": marked_plural(
+        "occasion on which stored data was not recovered", "occasions on which stored data was not recovered"
+    ),
     "late-reads": marked_plural("read of the probe that came late", "reads of the probe that came late"),
     "unsafe-power-offs": marked_plural(
         "time that power went away without notice (unsafe power-offs)",

@@ -4,7 +4,7 @@ from contextlib import suppress
 
 from diskwatch import analyser
 from diskwatch.errors import DiskwatchError
-from diskwatch.records import Forecast
+from diskwatch.records import Forecast, LimitSource
 from diskwatch.service.keeper import Keeper
 from diskwatch.units import day_number
 
@@ -26,6 +26,7 @@ class Forecasts:
         self._keeper = keeper
         self._made: dict[int, tuple[int, _Moved]] | None = None
         self._kept_days: dict[int, int] = {}
+        self._after_alarm: dict[int, frozenset[str]] = {}
 
     def forget(self) -> None:
         """Look again: the history has become another."""
@@ -40,22 +41,34 @@ class Forecasts:
             at: now, UTC seconds since 1970.
         """
         if self._made is None:
-            self._made, self._kept_days = {}, self._days_kept()
+            self._made = {}
+            self._learn()
         today, moved = day_number(at), _moved(state)
-        if not any(moved):
+        alarmed = frozenset(analyser.alarmed(state))
+        ended = self._after_alarm.get(number, frozenset()) - alarmed
+        if not any(moved) and not ended:
             return ()
         day, of = self._made.get(number, (self._kept_days.get(number), moved))
-        if day is not None and 0 <= today - day < EVERY_DAYS and of == moved:
+        if day is not None and 0 <= today - day < EVERY_DAYS and of == moved and not ended:
             self._made[number] = (day, moved)
             return ()
         self._made[number] = (today, moved)
-        return analyser.forecasts(state, at)
+        self._after_alarm[number] = alarmed
+        return analyser.forecasts(state, at, sorted(ended))
 
-    def _days_kept(self) -> dict[int, int]:
+    def _learn(self) -> None:
+        """What the history holds: when each drive's were made, and which of them speak of a standing alarm."""
         kept = None
         with suppress(DiskwatchError):  # what is wrong with the history is told when the round is kept
             kept = self._keeper.ask(lambda history: history.forecasts())
-        return {number: max(one.made_on_day for one in made) for number, made in (kept or {}).items()}
+        every = (kept or {}).items()
+        self._kept_days = {number: max(one.made_on_day for one in made) for number, made in every}
+        self._after_alarm = {
+            number: frozenset(
+                one.signal for one in made if one.limit_from is LimitSource.OWN and one.reason is None
+            )
+            for number, made in every
+        }
 
 
 def _moved(state: analyser.DriveState) -> _Moved:
@@ -64,5 +77,8 @@ def _moved(state: analyser.DriveState) -> _Moved:
     return (
         None if wearing.endurance is None else ("endurance", wearing.endurance.percent),
         None if wearing.spare is None else ("spare", wearing.spare.percent),
-        tuple(signal for signal in state.latency if f"drift:{signal}" in state.standing),
+        analyser.alarmed(state),
+        tuple(
+            state.streams[stream].episodes for stream in analyser.COUNTED if f"drift:{stream}" in state.standing
+        ),
     )

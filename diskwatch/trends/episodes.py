@@ -21,6 +21,9 @@ from diskwatch.trends.ledger import Ledger
 ABSORBED = 7.0
 """Powered days after the opening day of an episode that take no part."""
 
+REMEMBERED = 12
+"""Latest episodes whose days are kept, for the forecast of those to come; an alarm takes fewer."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Stream:
@@ -36,6 +39,7 @@ class Stream:
         first_episode: day of the first one, or None.
         last_episode: day of the latest one, or None.
         powered: powered days seen so far, closed ones.
+        opened: the latest episodes, oldest first: UTC day number, and powered days seen by the end of that day.
     """
 
     ledger: Ledger
@@ -47,6 +51,7 @@ class Stream:
     first_episode: int | None = None
     last_episode: int | None = None
     powered: float = 0.0
+    opened: tuple[tuple[int, float], ...] = ()
 
 
 def begin(day: int) -> Stream:
@@ -84,6 +89,7 @@ def next_day(stream: Stream, *, day: int, exposure: float, norm_per_day: float) 
         first_episode=stream.first_episode,
         last_episode=stream.last_episode,
         powered=stream.powered + stream.exposure,
+        opened=stream.opened,
     )
 
 
@@ -109,6 +115,7 @@ def rise(stream: Stream, *, norm_per_day: float) -> Stream:
         episodes=stream.episodes + 1,
         first_episode=stream.day if stream.first_episode is None else stream.first_episode,
         last_episode=stream.day,
+        opened=(*stream.opened[1 - REMEMBERED :], (stream.day, stream.powered + stream.exposure)),
     )
 
 

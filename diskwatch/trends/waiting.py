@@ -130,6 +130,36 @@ def after_alarm(
     return Interval(low=low + back, high=high + back, probability=probability)
 
 
+def since_onset(
+    episodes: Sequence[float], *, now: float, norm_per_day: float, absorbed: float = ABSORBED
+) -> tuple[float, ...]:
+    """The episodes since trouble began: from where they most exceed the norm (as in Page 1954, from memory).
+
+    A drive may have had an episode or two within its norm years before; taken for the beginning, they would
+    make the pace seem to have grown from nothing. Asked at the alarm for five more episodes, with none to four
+    sound years before, 82 to 97 of 100 intervals of 80 % held, and 79 to 97 with all episodes taken (eight
+    groups of 150 simulated drives).
+
+    Args:
+        episodes: powered days on which they opened, in order.
+        now: powered day of the forecast.
+        norm_per_day: tolerated episodes a powered day.
+        absorbed: powered days after an episode on which no other can open.
+
+    Returns:
+        The latest of them, at least `LEAST` where there are so many.
+    """
+
+    def excess(first: int) -> float:
+        came = len(episodes) - 1 - first
+        days = max(1.0, now - episodes[first] - (came + 1) * absorbed)
+        expected = norm_per_day * days
+        return came * log(came / expected) - came + expected if came > expected else 0.0
+
+    firsts = range(max(1, len(episodes) - LEAST + 1))
+    return tuple(episodes[max(firsts, key=excess) :])
+
+
 def power_law_shape(times: Sequence[float], end: float) -> float:
     """The likeliest exponent of a count that grows as a power of time; above 1 events come ever faster.
 

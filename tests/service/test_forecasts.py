@@ -48,6 +48,27 @@ def test_a_drive_without_wear_and_without_an_alarm_has_none(keeper):
     assert not Forecasts(keeper).due(1, state, NOON)
 
 
+def defective(days, at=0):
+    """A disk with a new defect every ten days, and its state."""
+    return lived(
+        *(
+            read(NOON + (at + day) * DAY, HDD, reallocated_sectors=day // 10, pending_sectors=0)
+            for day in range(days)
+        )
+    )[-1].state
+
+
+def test_an_alarm_that_is_over_has_its_forecast_taken_back(keeper):
+    forecasts, alarmed = Forecasts(keeper), defective(60)
+    at = NOON + 60 * DAY
+    (made,) = forecasts.due(1, alarmed, at)
+    assert made.signal == "media-episodes"
+    quiet = lived(read(NOON, HDD, pending_sectors=0))[-1].state
+    (over,) = forecasts.due(1, quiet, at + 60)
+    assert (over.signal, over.known) == ("media-episodes", False)
+    assert forecasts.due(1, quiet, at + 120) == ()
+
+
 def test_a_restart_makes_none_before_its_time(keeper):
     known: KnownDrive = keeper.admit(NVME, HERE, NOON)
     pass_ = read(NOON, NVME, percentage_used=3, data_written=1)

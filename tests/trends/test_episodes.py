@@ -43,6 +43,22 @@ def test_an_episode_is_taken_at_once_and_not_at_the_end_of_its_day():
     assert episodes.rise(stream, norm_per_day=NORM).ledger.evidence > 0
 
 
+def test_only_the_latest_episodes_keep_their_days():
+    stream = episodes.begin(1)
+    for day in range(2, 400):
+        stream = episodes.next_day(stream, day=day, exposure=1, norm_per_day=NORM)
+        if day % 20 == 0:
+            stream = episodes.rise(stream, norm_per_day=NORM)
+    assert stream.episodes == 19
+    assert stream.opened == tuple((day, float(day)) for day in range(160, 400, 20))
+    assert len(stream.opened) == episodes.REMEMBERED
+
+
+def test_an_episode_is_kept_with_the_powered_days_seen_by_its_end():
+    stream = episodes.next_day(episodes.begin(1), day=11, exposure=3.5, norm_per_day=NORM)
+    assert episodes.rise(stream, norm_per_day=NORM).opened == ((11, 4.5),)
+
+
 def test_a_second_rise_on_the_same_day_changes_nothing():
     once = episodes.rise(episodes.begin(1), norm_per_day=NORM)
     assert episodes.rise(once, norm_per_day=NORM) == once

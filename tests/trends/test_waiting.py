@@ -4,7 +4,14 @@ import pytest
 from hypothesis import given, settings, strategies as st
 
 from diskwatch.trends.special import beta_prime_quantile, gamma_quantile
-from diskwatch.trends.waiting import LEAST, after_alarm, chance_while_sound, power_law_shape, while_sound
+from diskwatch.trends.waiting import (
+    LEAST,
+    after_alarm,
+    chance_while_sound,
+    power_law_shape,
+    since_onset,
+    while_sound,
+)
 from tests.trends.populations import GROWTHS, alarmed, clustered, coverage, poisson, show, told_by
 from tests.trends.published import GROWTH, HANDBOOK_189, HANDBOOK_189_END, REPAIRS, REPAIRS_END
 
@@ -83,6 +90,31 @@ def test_episodes_that_come_ever_faster_are_expected_sooner_than_the_same_number
     slower = after_alarm(5, episodes=days([10, 10, 15, 20, 30, 45, 60, 80]), now=270)
     assert ends(faster)[0] < ends(steady)[0] < ends(slower)[0]
     assert ends(faster)[1] < ends(steady)[1] < ends(slower)[1]
+
+
+NORM = 0.5 / 365.25
+
+
+def test_episodes_of_years_before_are_no_part_of_the_trouble():
+    assert since_onset([100, 900, 1500, 1520, 1545, 1560], now=1560, norm_per_day=NORM) == (
+        1500,
+        1520,
+        1545,
+        1560,
+    )
+
+
+def test_trouble_from_the_first_episode_on_keeps_all_of_them():
+    times = [0, 30, 55, 90, 120]
+    assert since_onset(times, now=121, norm_per_day=NORM) == tuple(times)
+
+
+@given(gaps=st.lists(st.floats(8, 900), max_size=12), later=st.floats(0, 400))
+def test_never_fewer_episodes_are_taken_than_a_forecast_needs_and_always_the_latest(gaps, later):
+    times = days(gaps)
+    taken = since_onset(times, now=times[-1] + later, norm_per_day=NORM)
+    assert len(taken) >= min(LEAST, len(times))
+    assert list(taken) == times[-len(taken) :]
 
 
 def test_too_few_episodes_give_the_reason():
