@@ -37,6 +37,8 @@ COMMANDS = {
     "notify": "tell you on your desktop, and through a program of yours, when a drive's call changes",
     "greet": "one line for a login shell: what the drives ask for",
     "later": "put the notices of one drive off, for you alone",
+    "install": "lay the service on this machine: an environment of its own and the units for systemd",
+    "uninstall": "take the service away; the history stays",
     "export-history": "the past of drives, to a file that can travel",
     "import-history": "take in the past of drives from such a file",
 }

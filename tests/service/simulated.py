@@ -16,7 +16,7 @@ from diskwatch.service.watch import GUARD
 BEGAN = datetime(2026, 1, 1, tzinfo=UTC).timestamp()
 
 
-class Stepped(BaseScheduler):  # type: ignore[misc] - the library has no types
+class Stepped(BaseScheduler):  # type: ignore[misc]  # the library has no types
     """The library's scheduler without a thread of its own."""
 
     def shutdown(self, wait=True):
