@@ -1,6 +1,7 @@
 """Hours, bytes, days and how people say them. Pure: the current time is always handed in."""
 
 import re
+from collections.abc import Callable
 from datetime import UTC, datetime
 
 DAY = 86_400
@@ -106,35 +107,32 @@ def _plural(count: int, name: str) -> str:
     return f"{count} {name}" if count == 1 else f"{count} {name}s"
 
 
+_ACTIVE = re.compile(
+    r"[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f\ud800-\udfff"
+    r"\u061c\u200e\u200f\u202a-\u202e\u2066-\u2069\u2028\u2029\ufeff]"
+)
+_BLANKS = str.maketrans("\t\n\r", "   ")
+
+
 def plain(text: str) -> str:
     r"""Text from outside made harmless for a terminal or a log.
 
     Control characters, escapes and characters that change the direction of writing become visible
     ``\\xNN`` or ``\\uNNNN`` marks; line ends and tabs become a blank.
     """
-    return "".join(_harmless(letter) for letter in text)
-
-
-_DIRECTIONS = frozenset(
-    "\u061c\u200e\u200f\u202a\u202b\u202c\u202d\u202e\u2066\u2067\u2068\u2069\u2028\u2029\ufeff"
-)
+    return without_active(text.translate(_BLANKS), _mark)
 
 
 def is_active(letter: str) -> bool:
     """Whether a terminal may act on a letter instead of showing it; line ends and tabs do not count."""
-    code = ord(letter)
-    return (
-        (code < 0x20 and letter not in "\t\n\r")
-        or 0x7F <= code < 0xA0
-        or letter in _DIRECTIONS
-        or 0xD800 <= code <= 0xDFFF
-    )
+    return _ACTIVE.match(letter) is not None
 
 
-def _harmless(letter: str) -> str:
-    if letter in "\t\n\r":
-        return " "
-    if not is_active(letter):
-        return letter
+def without_active(text: str, mark: Callable[[str], str]) -> str:
+    """Text in which a mark stands for every letter that a terminal may act on instead of showing it."""
+    return _ACTIVE.sub(lambda found: mark(found[0]), text)
+
+
+def _mark(letter: str) -> str:
     code = ord(letter)
     return f"\\x{code:02x}" if code < 0x100 else f"\\u{code:04x}"

@@ -96,3 +96,15 @@ def test_ordinary_text_stays_as_it_is():
 def test_evidence_is_said_in_years_rounded_down_to_two_digits(days, said):
     """27,000 days are 73.92 years: worked example of the method."""
     assert units.once_in(days) == said
+
+
+@given(st.text())
+def test_a_mark_stands_for_each_letter_that_a_terminal_would_act_on_and_all_else_stays(text):
+    made = units.without_active(text, lambda letter: f"<{ord(letter)}>")
+    assert made == "".join(f"<{ord(one)}>" if units.is_active(one) else one for one in text)
+
+
+@pytest.mark.parametrize("letter", ["\x1b", "\x7f", "\x9b", "\u200e", "\u202e", "\u2067", "\ufeff", "\udc80"])
+def test_escapes_and_letters_that_turn_the_writing_round_are_active(letter):
+    assert units.is_active(letter)
+    assert not any(map(units.is_active, "\t\n\r aß漢"))

@@ -9,7 +9,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Self
 
 from diskwatch import places
-from diskwatch.units import is_active, plain
+from diskwatch.units import plain, without_active
 
 if TYPE_CHECKING:
     from diskwatch.settings import Settings
@@ -58,7 +58,7 @@ def print_json(answer: Mapping[str, object]) -> None:
     """One JSON object to standard output; integers that JSON readers cannot hold exactly become strings."""
     text = json.dumps(_exact(answer), indent=2, ensure_ascii=False, allow_nan=False)
     # What JSON may hold raw, a terminal may act on: such letters are written as JSON's own escapes.
-    sys.stdout.write("".join(f"\\u{ord(one):04x}" if is_active(one) else one for one in text) + "\n")
+    sys.stdout.write(without_active(text, lambda letter: f"\\u{ord(letter):04x}") + "\n")
     sys.stdout.flush()
 
 
@@ -92,12 +92,12 @@ class Bar:
 
 
 def _exact(thing: object) -> object:
-    if isinstance(thing, bool):
+    if thing is None or isinstance(thing, str | float | bool):
         return thing
     if isinstance(thing, int):
         return thing if -_EXACT <= thing <= _EXACT else str(thing)
     if isinstance(thing, Mapping):
         return {key: _exact(value) for key, value in thing.items()}
-    if isinstance(thing, Sequence) and not isinstance(thing, str):
+    if isinstance(thing, Sequence):
         return [_exact(value) for value in thing]
     return thing

@@ -7,7 +7,7 @@ import secrets
 from pathlib import Path
 
 from diskwatch.errors import DiskwatchError, UsageError
-from diskwatch.units import is_active, plain
+from diskwatch.units import plain, without_active
 
 
 def text_of(document: object) -> str:
@@ -16,10 +16,7 @@ def text_of(document: object) -> str:
     Each member of a ticket begins a line, and each item of a list in it: to indent all, the standard library
     takes a way that is ten times as long.
     """
-    text = _lines(document, 3) + "\n"
-    if text.isascii() and "\x7f" not in text:
-        return text
-    return "".join(_escaped(one) if one != "\n" and is_active(one) else one for one in text)
+    return without_active(_lines(document, 3) + "\n", _escaped)
 
 
 def _lines(thing: object, depth: int) -> str:
