@@ -19,6 +19,8 @@ _ROW = re.compile(
 )
 _DISPUTED = frozenset({"reallocated-sectors", "pending-sectors", "reported-uncorrectable", "crc-errors"})
 
+_LEVEL = re.compile(r"[0-9]{3}|---")
+
 _FAILING = {"failing_now": Failing.NOW, "now": Failing.NOW, "in_the_past": Failing.PAST, "past": Failing.PAST}
 _PREFAIL_FLAG = 0x0001
 
@@ -26,11 +28,11 @@ _PREFAIL_FLAG = 0x0001
 def attributes(document: Document | None, device: Any, sheet: Sheet) -> tuple[Attribute, ...]:
     """The attribute table in its own order.
 
-    The document comes first, being exact, then pySMART, then our own reading of the rows: the library loses
-    rows without a normalised value, and gives up altogether on some texts.
+    The document comes first, being exact, then our own reading of the rows, then pySMART: the library loses
+    rows without a normalised value, gives up altogether on some texts, and shifts the columns of a broken row.
     """
     table: dict[int, Attribute] = {}
-    for source in (_from_document(document), _from_library(device), _from_rows(sheet)):
+    for source in (_from_document(document), _from_rows(sheet), _from_library(device)):
         for row in source:
             table.setdefault(row.number, row)
     return tuple(table.values())
@@ -107,12 +109,17 @@ def _from_library(device: Any) -> Iterator[Attribute]:
     for row in getattr(device, "attributes", None) or ():
         if row is None or not 0 < row.num < 256:
             continue
+        # Its public forms of the last two raise on "---".
+        levels = [str(level) for level in (row.value_str, row._worst, row._thresh)]  # noqa: SLF001 - as above
+        if any(_LEVEL.fullmatch(level) is None for level in levels):
+            continue
+        value, worst, threshold = (whole(level) for level in levels)
         yield Attribute(
             number=row.num,
             name=row.name,
-            value=whole(row.value_str),
-            worst=whole(str(row._worst)),  # noqa: SLF001 - its public form raises on "---"
-            threshold=whole(str(row._thresh)),  # noqa: SLF001 - as above
+            value=value,
+            worst=worst,
+            threshold=threshold,
             prefail=row.type == "Pre-fail",
             raw=row.raw.strip(),
             failing=_FAILING.get(row.when_failed.lower()),

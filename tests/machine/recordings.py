@@ -183,28 +183,3 @@ def _tests(text: str) -> int:
         elif inside and re.match(r"\s*#?\s*[0-9]+\s", line):
             count += 1
     return count
-
-
-def numbers_in(text: str) -> set[int]:
-    """Every whole number that a text states in any way, and what may honestly be made of it.
-
-    Runs of digits, also joined over separators; hexadecimal; the parts of packed fields; and units turned into
-    bytes. Nothing else may come out of a reader.
-    """
-    runs = {int(run) for run in re.findall(r"[0-9]{1,40}", text)}
-    for joined in re.findall(r"[0-9]{1,3}(?:[,.'\u2019 \u00a0\u202f\u00ff\ufffd][0-9]{3})+", text):
-        runs.add(int("".join(letter for letter in joined if letter in "0123456789")))
-    for start in re.finditer(r"(?=([0-9]{1,3}(?:[,.'\u2019 \u00a0\u202f\u00ff\ufffd][0-9]{3})+))", text):
-        runs.add(int("".join(letter for letter in start[1] if letter in "0123456789")))
-    runs |= {int(run, 16) for run in re.findall(r"0x([0-9a-fA-F]{1,32})", text)}
-    runs |= {int(whole + part) * 10**6 for whole, part in re.findall(r"([0-9]+)[.,]([0-9]{3})(?![0-9])", text)}
-    packed = {number & mask for number in runs for mask in (0xFF, 0xFFFF, 0xFFFFFF)}
-    left = {100 - number for number in runs if number <= 100}
-    return runs | packed | left | {-number for number in runs}
-
-
-STEPS = (1, 512_000, 512, 520, 524, 528, 4_096, 4_104, 4_112, 4_160, 4_224, 2**20, 2**25, 2**30)
-
-
-def is_stated(value: int, numbers: set[int]) -> bool:
-    return any(value % step == 0 and value // step in numbers for step in STEPS)

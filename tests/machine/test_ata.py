@@ -1,6 +1,7 @@
 import pytest
 
 from diskwatch.machine import ata, packing
+from diskwatch.machine.held import Family, device_of
 from diskwatch.machine.text import Sheet
 from diskwatch.records import Attribute, Failing, SignalKind, Value
 
@@ -41,6 +42,20 @@ def test_rows_without_a_normalised_value_are_kept_though_the_library_loses_them(
             raw="8",
         ),
     )
+
+
+@pytest.mark.parametrize(
+    "broken",
+    [
+        "  1 Raw_Read_Error_Rate     0x002f   100 55  100   006    Pre-fail  Always       -       0",
+        "192 Power-Off_Retract_Count 0x0032   100   1  000    Old_age   Always       -       1490",
+    ],
+)
+def test_a_row_whose_columns_are_broken_is_left_out_and_not_shifted_as_the_library_does(broken: str):
+    told = sheet(row(5, "Reallocated_Sector_Ct", "8"), broken)
+    device = device_of(told.lines, Family.ATA)
+    assert len([one for one in device.attributes if one is not None]) == 2
+    assert [one.number for one in ata.attributes(None, device, told)] == [5]
 
 
 def test_the_brief_table_is_read_as_well():

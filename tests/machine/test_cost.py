@@ -22,14 +22,15 @@ from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import understood
 from diskwatch.machine.smartctl import Smartctl
 from diskwatch.records import Drive, Identity, Kind, Outcome, Place
+from tests.machine import witness
+from tests.machine.mutations import mutated
 from tests.machine.recordings import FIXTURES, text_of
-from tests.machine.test_reading import ORIGINALS, check_nothing_is_invented, mutated
+from tests.machine.test_reading import DOCUMENTS, ORIGINALS
 
 pytestmark = pytest.mark.bench
 
 DRIVES = 24
 MUTATIONS = int(os.environ.get("DISKWATCH_MUTATIONS", "2000"))
-DOCUMENTS = [text_of(path) for path in sorted(FIXTURES.glob("*/document.json"))]
 
 
 def recorded() -> list[tuple[str, str]]:
@@ -109,7 +110,7 @@ def test_mutated_answers_raise_nothing_and_give_no_number_that_they_do_not_state
         lines = plain_lines(document) if document is not None else tuple(text.splitlines())
         what = understood(lines, document, type_=None, path="/dev/x")
         of_words(lines, dice.choice((0, 2, 3, 4, 64)), what, expects_smart=True, kind=Kind.HDD, command="x")
-        check_nothing_is_invented(what, text)
+        witness.check(what, lines, document)
     print(  # noqa: T201 - a measurement is for whoever runs it
         f"\n{MUTATIONS} mutated answers in {time.monotonic() - begun:.0f} s, "
         f"{time.process_time() - cpu:.0f} s of processor time: none raised, none invented"

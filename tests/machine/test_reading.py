@@ -1,21 +1,22 @@
 import json
 import random
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
 import pytest
 from hypothesis import given, settings, strategies as st
 
+from diskwatch.machine import ata, logs
 from diskwatch.machine.document import document_of, plain_lines
 from diskwatch.machine.reading import Support, Understood, understood
-from diskwatch.records import SignalKind
+from tests.machine import witness
+from tests.machine.mutations import mutated
 from tests.machine.recordings import (
     FIXTURES,
     SHARED,
     answers,
-    is_stated,
     name_of,
-    numbers_in,
     text_of,
     truth_of,
 )
@@ -76,13 +77,11 @@ def test_every_attribute_row_is_kept_as_printed(path: Path):
 @pytest.mark.parametrize("path", ANSWERS, ids=name_of)
 def test_no_value_is_invented_and_none_stands_without_a_reason(path: Path):
     text = text_of(path)
-    numbers = numbers_in(text)
-    values = read(text).reading.values
+    found = read(text)
+    values = found.reading.values
+    witness.check(found, text.splitlines())
     assert len({value.signal for value in values}) == len(values)
     for value in values:
-        assert (value.value is None) is (value.reason is not None)
-        if isinstance(value.value, int):
-            assert value.value == 0 or is_stated(value.value, numbers), value
         assert value.unit
         assert value.source
 
@@ -475,57 +474,70 @@ ORIGINALS = [
     fixture("invented_hdd_sister/all.txt") + STATISTICS_LOG,
     fixture("invented_sas_megaraid_failing/all.txt") + fixture("sas_hdd_0_issue_51/background.txt"),
 ]
-NOISE = "0123456789 :=.,-+\t\x00\x1b\x9b\u202e[]()#%/xXhn"
-
-
-def mutated(text: str, dice: random.Random) -> str:
-    """An answer as a broken tool or a dying drive may give it."""
-    lines = text.split("\n")
-    for _ in range(dice.randint(1, 6)):
-        kind = dice.randrange(6)
-        spot = dice.randrange(len(lines))
-        letters = lines[spot]
-        at = dice.randrange(len(letters) + 1)
-        if kind == 0:
-            lines = lines[: spot + 1]
-            lines[-1] = letters[:at]
-        elif kind == 1:
-            lines.insert(dice.randrange(len(lines)), letters)
-        elif kind == 2:
-            del lines[spot]
-            lines = lines or [""]
-        elif kind == 3:
-            lines[spot] = letters[:at] + dice.choice(NOISE) + letters[at + 1 :]
-        elif kind == 4:
-            lines[spot] = letters[:at] + dice.choice(NOISE) * dice.randint(1, 3) + letters[at:]
-        else:
-            lines[spot] = letters[:at] + letters[at + dice.randint(1, 5) :]
-    return "\n".join(lines)
-
-
-def check_nothing_is_invented(found: Understood, text: str) -> None:
-    """Every number that was read stands in the text."""
-    numbers = numbers_in(text)
-    for value in found.reading.values:
-        if isinstance(value.value, int):
-            assert value.value == 0 or is_stated(value.value, numbers), value
-        else:
-            assert value.value is None or value.kind is SignalKind.WORD
-    for row in found.reading.attributes:
-        assert row.raw in text
-        assert all(part is None or part in numbers for part in (row.value, row.worst, row.threshold))
-    for entry in found.reading.self_tests:
-        assert all(part is None or part in numbers for part in (entry.hours, entry.lba))
-    if found.drive is not None:
-        assert found.drive.capacity_bytes is None or found.drive.capacity_bytes in numbers
-        assert found.drive.rotation_rpm is None or found.drive.rotation_rpm in numbers
 
 
 @settings(max_examples=300)
 @given(st.integers(0, len(ORIGINALS) - 1), st.integers(0, 2**32))
 def test_a_mutated_answer_is_survived_and_gives_no_number_that_it_does_not_state(which: int, seed: int):
     text = mutated(ORIGINALS[which], random.Random(seed))  # noqa: S311 - dice, no secrets
-    check_nothing_is_invented(read(text), text)
+    witness.check(read(text), text.splitlines())
+
+
+DOCUMENTS = [text_of(path) for path in sorted(FIXTURES.glob("*/document.json"))]
+
+
+def check_document(text: str) -> Understood:
+    """Read a document, which may be broken, and see that it brings nothing that it does not state."""
+    told = document_of(text)
+    lines = plain_lines(told) if told is not None else tuple(text.splitlines())
+    found = understood(lines, told, type_=None, path="/dev/x")
+    witness.check(found, lines, told)
+    return found
+
+
+@settings(max_examples=100)
+@given(st.sampled_from(DOCUMENTS), st.integers(0, 2**32))
+def test_a_mutated_document_is_survived_and_gives_no_number_that_it_does_not_state(text: str, seed: int):
+    check_document(mutated(text, random.Random(seed)))  # noqa: S311 - dice, no secrets
+
+
+def _caught(many: int) -> bool:
+    """Whether the witness finds fault with the reader within so many mutated answers."""
+    dice = random.Random(7)  # noqa: S311 - dice, no secrets
+    for _ in range(many):
+        text = mutated(dice.choice(ORIGINALS), dice)
+        try:
+            witness.check(read(text), text.splitlines())
+        except AssertionError:
+            return True
+    return False
+
+
+def test_the_witness_catches_an_unknown_that_became_a_0(monkeypatch: pytest.MonkeyPatch):
+    judged = logs._judged
+    monkeypatch.setattr(logs, "_judged", lambda meaning, number: (judged(meaning, number)[0] or 0, None))
+    assert _caught(300)
+
+
+def test_the_witness_catches_a_number_that_stands_elsewhere_in_the_text(monkeypatch: pytest.MonkeyPatch):
+    judged = logs._judged
+    monkeypatch.setattr(
+        logs, "_judged", lambda of, number: (16, None) if of.signal == "media-errors" else judged(of, number)
+    )
+    assert _caught(300)
+
+
+def test_the_witness_catches_raw_values_that_are_unpacked_in_the_wrong_way(monkeypatch: pytest.MonkeyPatch):
+    monkeypatch.setattr(ata, "_value", _low_byte(ata._value))
+    assert _caught(300)
+
+
+def _low_byte(real: Any) -> Any:
+    def wrong(meaning: Any, row: Any) -> Any:
+        value = real(meaning, row)
+        return replace(value, value=value.value & 0xFF) if isinstance(value.value, int) else value
+
+    return wrong
 
 
 @given(st.text(max_size=300))
