@@ -7,7 +7,9 @@ import json
 import os
 import subprocess
 import sys
+from functools import partial
 from pathlib import Path
+from typing import Any
 
 from tests.lab.bench import check, end, lab, say, sh, wait
 
@@ -31,7 +33,7 @@ def active(unit: str = UNIT) -> bool:
     return shown("ActiveState", unit) == "active"
 
 
-def bays() -> dict[str, dict[str, object]]:
+def bays() -> dict[str, dict[str, Any]]:
     found = json.loads(sh(f"{DISKWATCH} bays --json", check=False) or '{"drives": []}')
     return {str(drive["serial"] or drive["device"]): drive for drive in found["drives"]}
 
@@ -88,9 +90,9 @@ def senses() -> None:
         for key in ("last_pass", "lives_here", "bay", "kind", "capacity_bytes"):
             theirs, ours = one[key], mine.get(key)
             if key == "last_pass":
-                theirs, ours = theirs["outcome"], (ours or {}).get("outcome")  # type: ignore[union-attr,index]
+                theirs, ours = theirs["outcome"], (ours or {}).get("outcome")
             check(theirs == ours, f"{name}: {key} is {ours} as without hardening ({theirs})")
-        check(set(one["signals"]) <= set(mine.get("signals", {})), f"{name}: no signal is lost")  # type: ignore[call-overload]
+        check(set(one["signals"]) <= set(mine.get("signals", {})), f"{name}: no signal is lost")
     check(any("/home/data" in str(one["lives_here"]) for one in here.values()), "what lies under /home is seen")
 
 
@@ -157,13 +159,16 @@ def passes() -> int:
     )
 
 
+def _other_status(was: str) -> bool:
+    return shown("StatusText") != was
+
+
 def clock() -> None:
     """With rounds every minute: what a clock that is set does to their number within some minutes."""
     for by, name in (("+1 hour", "forward"), ("-2 hours", "back")):
-        asked = shown("StatusText")
         sh(f"date -s '{by}' >/dev/null")
         seconds = wait(
-            f"a round after the clock was set {name}", lambda was=asked: shown("StatusText") != was, 150
+            f"a round after the clock was set {name}", partial(_other_status, shown("StatusText")), 150
         )
         check(seconds <= 60 + 30 + 10, f"set {name} by hours: the next round came {seconds:.0f} s later")
     told = [one for one in book() if "clock was set" in one]
