@@ -15,7 +15,7 @@ from diskwatch.cli.common import drive_option, now, print_json, settings, state_
 from diskwatch.cli.said import days_ago
 from diskwatch.history.reader import Past
 from diskwatch.judge import copy_words
-from diskwatch.judge.copy_plan import copy_plan, is_turning
+from diskwatch.judge.copy_plan import CopyPlan, copy_plan, is_turning
 from diskwatch.machine.blocks import physical_drives
 from diskwatch.machine.here import found_of, mount_of
 from diskwatch.machine.mounts import mount_lines
@@ -54,9 +54,26 @@ def run(args: argparse.Namespace) -> int:
     folder, at = state_folder(args), now()
     with Past.open(folder) as past:
         line = past.find(args.drive)
-        # A drive that is gone may have been read long ago; what it gave then is what is known of it.
-        seen = at if line.last_pass is None else min(at, line.last_pass.at)
-        rollups = past.rollups(line.number, seen - _ROLLUP_DAYS * DAY, at)
+        plan, parts = planned(past, line, folder, at)
+    if args.json:
+        print_json(copy_plan_answer(line, plan, parts, at))
+    else:
+        sys.stdout.write("\n".join(plain(one) for one in _told(line, parts)) + "\n")
+    return 0
+
+
+def planned(past: Past, line: DriveLine, folder: Path, at: int) -> tuple[CopyPlan, dict[str, tuple[str, ...]]]:
+    """The plan of one drive, and its sentences by part in the order in which they are told.
+
+    Args:
+        past: the history.
+        line: the drive.
+        folder: where the history lies.
+        at: now, UTC seconds since 1970.
+    """
+    # A drive that is gone may have been read long ago; what it gave then is what is known of it.
+    seen = at if line.last_pass is None else min(at, line.last_pass.at)
+    rollups = past.rollups(line.number, seen - _ROLLUP_DAYS * DAY, at)
     looked = _look(line, folder)
     plan = copy_plan(
         line,
@@ -66,7 +83,7 @@ def run(args: argparse.Namespace) -> int:
         history=looked.history,
     )
     drive = line.drive
-    parts = {
+    return plan, {
         "urgency": (copy_words.urgency(plan), *_backup(line, at)),
         "holds": tuple(map(copy_words.holding, plan.held)) or (copy_words.nothing_known(),),
         "fellows": tuple(copy_words.fellows(plan)),
@@ -77,11 +94,6 @@ def run(args: argparse.Namespace) -> int:
             copy_words.cautions(plan, kind=drive.kind, cause=None if line.call is None else line.call.cause)
         ),
     }
-    if args.json:
-        print_json(copy_plan_answer(line, plan, parts, at))
-    else:
-        sys.stdout.write("\n".join(plain(one) for one in _told(line, parts)) + "\n")
-    return 0
 
 
 def _backup(line: DriveLine, at: int) -> tuple[str, ...]:
@@ -115,7 +127,7 @@ def _homes() -> Iterator[Path]:
         yield Path(pwd.getpwuid(int(os.environ["SUDO_UID"])).pw_dir)
 
 
-_TITLES = {
+TITLES = {
     "holds": "What lives there",
     "fellows": "Whether other drives hold the same",
     "duration": "How long a copy takes",
@@ -132,7 +144,7 @@ def _told(line: DriveLine, parts: dict[str, tuple[str, ...]]) -> Iterator[str]:
     yield from textwrap.wrap(plain(head), WIDTH)
     for text in parts["urgency"]:
         yield from _wrapped(text, "  ")
-    for name, title in _TITLES.items():
+    for name, title in TITLES.items():
         yield ""
         yield f"{title}:"
         for number, text in enumerate(parts[name], 1):

@@ -19,6 +19,7 @@ from pathlib import Path
 from diskwatch.cli import bays as bays_command
 from diskwatch.cli.common import now, settings, state_folder, talk
 from diskwatch.cli.endangered import Warner
+from diskwatch.cli.shown import Shown
 from diskwatch.errors import HistoryError, NothingToWorkOn
 from diskwatch.history.lock import watcher
 from diskwatch.history.opening import refuse_foreign
@@ -51,12 +52,16 @@ def run(args: argparse.Namespace) -> int:
         from diskwatch.dashboard.app import Dashboard  # noqa: PLC0415
 
         with contextlib.ExitStack() as stack:
+            source = _Source(folder, stack, starting=starting)
             Dashboard(
-                _Source(folder, stack, starting=starting),
+                source,
                 now,
                 watching=told,
                 every=int(owner.smart.every),
-                ascii_only=not _speaks_more_than_ascii(),
+                ascii_only=not speaks_more_than_ascii(),
+                braille=has_braille(),
+                questions=Shown(source.past, folder, owner),
+                steady=time.monotonic,
             ).run()
     return 0
 
@@ -95,13 +100,22 @@ class _Source:
         return bays
 
     def _now(self, at: int) -> Bays:
+        try:
+            past = self.past()
+        except NothingToWorkOn:
+            # Nothing has been stored yet, which is no error while somebody is about to.
+            return Bays(at=at, watcher=watcher(self._folder), drives=())
+        return self._warn(past.bays(at))
+
+    def past(self) -> Past:
+        """The history itself.
+
+        Raises:
+            NothingToWorkOn: there is none yet.
+        """
         if self._past is None:
-            try:
-                self._past = self._stack.enter_context(Past.open(self._folder))
-            except NothingToWorkOn:
-                # Nothing has been stored yet, which is no error while somebody is about to.
-                return Bays(at=at, watcher=watcher(self._folder), drives=())
-        return self._warn(self._past.bays(at))
+            self._past = self._stack.enter_context(Past.open(self._folder))
+        return self._past
 
 
 @contextlib.contextmanager
@@ -143,5 +157,11 @@ def _may_write(folder: Path) -> bool:
     return os.access(place, os.W_OK | os.X_OK)
 
 
-def _speaks_more_than_ascii() -> bool:
+def has_braille() -> bool:
+    """Whether the terminal's font may have Braille patterns; the console's has none (from memory)."""
+    return os.environ.get("TERM") != "linux"
+
+
+def speaks_more_than_ascii() -> bool:
+    """Whether the terminal's letters go beyond ASCII."""
     return (sys.stdout.encoding or "").casefold().replace("-", "") in {"utf8", "utf16", "utf32"}

@@ -13,6 +13,7 @@ from diskwatch.cli.common import drive_option, now, settings, state_folder
 from diskwatch.errors import UsageError
 from diskwatch.history.later import DAYS, PutOff, put_off
 from diskwatch.history.reader import Past
+from diskwatch.records import DriveLine
 from diskwatch.units import DAY, plain
 
 MOST_DAYS = 90
@@ -42,16 +43,27 @@ def run(args: argparse.Namespace) -> int:
     at = now()
     with Past.open(state_folder(args)) as past:
         line = past.find(args.drive)
-    until = at + args.days * DAY
+    sys.stdout.write(defer(line, at, args.days) + "\n")
+    return 0
+
+
+def defer(line: DriveLine, at: int, days: int = DAYS) -> str:
+    """Put this user's notices about a drive off; tells until when in harmless sentences.
+
+    Args:
+        line: the drive.
+        at: now, UTC seconds since 1970.
+        days: for how many days.
+
+    Raises:
+        HistoryError: it cannot be written down.
+    """
+    until = at + days * DAY
     word = None if line.call is None else line.call.word
     put_off(places.user_state(), line.drive.identity, PutOff(until=until, call=word), at)
     when = datetime.fromtimestamp(until).astimezone().strftime("%Y-%m-%d %H:%M")
     standing = "It has no call yet" if word is None else f"Its call stays {word.value}"
-    sys.stdout.write(
-        plain(
-            f"Notices about {line.name} ({line.place.device}) are put off for you until {when}. {standing}; "
-            f"should it become a stronger one, a notice comes at once."
-        )
-        + "\n"
+    return plain(
+        f"Notices about {line.name} ({line.place.device}) are put off for you until {when}. {standing}; "
+        f"should it become a stronger one, a notice comes at once."
     )
-    return 0

@@ -9,6 +9,7 @@ import os
 import pwd
 import sys
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from diskwatch.cli.common import now, settings, state_folder, talk
 from diskwatch.cli.daybook import since_when
@@ -22,6 +23,9 @@ from diskwatch.ticket.part import Json
 from diskwatch.ticket.schema import schema_text
 from diskwatch.ticket.who import Host
 from diskwatch.ticket.writing import put, text_of
+
+if TYPE_CHECKING:
+    from diskwatch.settings import Settings
 
 _FIRST_USER, _LAST_USER = 1_000, 60_000
 """Numbers of accounts that people have; the lower ones are the system's (Debian policy 9.2.2)."""
@@ -50,7 +54,7 @@ def run(args: argparse.Namespace) -> int:
     at = now()
     hide = _kinds(args.hide)
     since = None if args.since is None else since_when(args.since, at)
-    about = About(at=at, host=_host(), settings=_settings(args), since=since, hide=hide)
+    about = About(at=at, host=this_host(), settings=_settings(args), since=since, hide=hide)
     with Past.open(state_folder(args)) as past:
         bays = past.bays(at)
         tickets = [ticket(past, bays, line.number, about) for line in _meant(args, past, bays)]
@@ -86,7 +90,8 @@ def _meant(args: argparse.Namespace, past: Past, bays: Bays) -> tuple[DriveLine,
     return bays.every
 
 
-def _host() -> Host:
+def this_host() -> Host:
+    """This machine, and the names of people that a ticket may have to hide."""
     about = os.uname()
     users = [
         entry.pw_name for entry in pwd.getpwall() if _FIRST_USER <= entry.pw_uid < _LAST_USER and entry.pw_name
@@ -111,6 +116,11 @@ def _settings(args: argparse.Namespace) -> Json | None:
             raise
         talk(f"diskwatch: {error}")
         return None
+    return that_matter(found)
+
+
+def that_matter(found: "Settings") -> Json:
+    """The settings that whoever reads a ticket should know, plain JSON values."""
     return {
         "readings_every_seconds": int(found.smart.every),
         "timeout_seconds": int(found.smart.timeout),

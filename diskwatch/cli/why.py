@@ -55,11 +55,26 @@ def _told(line: DriveLine, why: analyser.Explanation, forecasts: tuple[Kept, ...
     else:
         yield f"Call: {line.call.word.value}, since {_when(line.call.at)}, by the rule {line.call.rule}"
         yield from _wrapped(line.call.reason)
-    yield from _part("What stands", (f"{one.sentence} (since {_when(one.since)})" for one in why.findings))
-    yield from _part("Counters followed (first read, now)", _counters(why))
-    yield from _part("Evidence: how rarely a drive within the norm would come to this", _evidence(why))
-    yield from _part("Latency at equal load", measured.latency(why))
-    yield from _part("Temperature", measured.temperature(why))
+    for title, lines in chapters(line, why, forecasts, now()):
+        yield from _part(title, lines)
+
+
+def chapters(
+    line: DriveLine, why: analyser.Explanation, forecasts: tuple[Kept, ...], at: int
+) -> Iterator[tuple[str, Iterator[str] | tuple[str, ...]]]:
+    """The chain in parts, each with its title; a part may have no lines.
+
+    Args:
+        line: the drive.
+        why: the chain behind its call.
+        forecasts: all that were kept about it.
+        at: now, UTC seconds since 1970.
+    """
+    yield "What stands", (f"{one.sentence} (since {_when(one.since)})" for one in why.findings)
+    yield "Counters followed (first read, now)", _counters(why)
+    yield "Evidence: how rarely a drive within the norm would come to this", _evidence(why)
+    yield "Latency at equal load", measured.latency(why)
+    yield "Temperature", measured.temperature(why)
     if why.damage is not None:
         damage = why.damage
         parts = (
@@ -67,14 +82,14 @@ def _told(line: DriveLine, why: analyser.Explanation, forecasts: tuple[Kept, ...
             f"{_known(damage.pending)} sectors pending, {_known(damage.replaced)} replaced"
         )
         limits = f"copy from {damage.copy_at:g}, retire from {damage.retire_at:g}"
-        yield from _part("Damage measure", (f"{damage.measure:g}: {parts} ({limits})",))
-    yield from _part("Cause: the table's rows that it was weighed by", judged.causes(why))
-    yield from _part("What became of other drives that showed the same", judged.odds(line, now()))
-    yield from _part("Forecasts", measured.forecasts(line.forecasts, forecasts, now()))
-    yield from _part("Margin", judged.margin(line, now()))
-    yield from _part("Rule that decided", () if why.rule is None else (why.rule,))
-    yield from _part("What would change the call", why.would_change)
-    yield from _part("What the bound on false alarms rests on, and what breaks it", measured.bound(why))
+        yield "Damage measure", (f"{damage.measure:g}: {parts} ({limits})",)
+    yield "Cause: the table's rows that it was weighed by", judged.causes(why)
+    yield "What became of other drives that showed the same", judged.odds(line, at)
+    yield "Forecasts", measured.forecasts(line.forecasts, forecasts, at)
+    yield "Margin", judged.margin(line, at)
+    yield "Rule that decided", () if why.rule is None else (why.rule,)
+    yield "What would change the call", why.would_change
+    yield "What the bound on false alarms rests on, and what breaks it", measured.bound(why)
 
 
 def _counters(why: analyser.Explanation) -> Iterator[str]:

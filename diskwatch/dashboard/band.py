@@ -1,8 +1,8 @@
 """One drive as a band of lines: what to do, why, and what it is doing now. Pure.
 
-A drive that wants something takes three lines; a quiet one folds to what it is and what it does, two lines,
-and one where the screen is wide. All lines of a band begin with the bar of its weight
-(`diskwatch.dashboard.weight`).
+A drive that wants something takes three lines, the third its line through time where that is known; a quiet
+one folds to what it is and what it does, two lines, and one where the screen is wide. All lines of a band begin
+with the bar of its weight (`diskwatch.dashboard.weight`).
 """
 
 from rich.cells import cell_len
@@ -10,11 +10,13 @@ from rich.text import Text
 
 from diskwatch.dashboard.ages import ago
 from diskwatch.dashboard.cells import column, cut, ends, fit
+from diskwatch.dashboard.chart.strip import strip
+from diskwatch.dashboard.questions import Strand
 from diskwatch.dashboard.rates import traffic
 from diskwatch.dashboard.weight import WORD_WIDTH, Face, weight_of
 from diskwatch.dashboard.words import cause, device, holdings, kind, name, reason
-from diskwatch.records import CallWord, DriveLine, Outcome
-from diskwatch.units import plain, say_bytes
+from diskwatch.records import CallWord, DriveLine, Margin, Outcome
+from diskwatch.units import plain, say_bytes, say_days
 
 # A screen of 120 columns leaves 119 beside the scroll bar.
 NARROW = 60
@@ -27,6 +29,8 @@ INDENT = 3
 """Columns before the text of the second and later lines: bar, mark of choice, a blank."""
 
 _BAYS = 138
+_LONGEST_STRIP = 97
+_LONG_AGO = 6 * 3_600
 _TRAFFIC_WIDTH = 72
 _ENDED = {
     Outcome.READ: "read",
@@ -41,7 +45,15 @@ _ENDED = {
 _PEACEFUL = frozenset({Outcome.READ, Outcome.ASLEEP, Outcome.NO_SMART})
 
 
-def band(line: DriveLine, now: int, width: int, face: Face, *, chosen: bool = False) -> tuple[Text, ...]:
+def band(
+    line: DriveLine,
+    now: int,
+    width: int,
+    face: Face,
+    *,
+    chosen: bool = False,
+    strand: Strand | None = None,
+) -> tuple[Text, ...]:
     """The band of one drive.
 
     Args:
@@ -50,6 +62,7 @@ def band(line: DriveLine, now: int, width: int, face: Face, *, chosen: bool = Fa
         width: columns that every line must keep within.
         face: what the terminal can show.
         chosen: whether the reader stands on it.
+        strand: its past and what is to be expected; None before that is known.
 
     Returns:
         One to three lines, none wider than ``width``, free of control characters.
@@ -63,9 +76,12 @@ def band(line: DriveLine, now: int, width: int, face: Face, *, chosen: bool = Fa
         return (fit(first.append_text(_doing(line, now, _TRAFFIC_WIDTH, mark, brief=False)), width),)
     title = _title(line, width, width, chosen=chosen, bar=bar, mark=mark)
     inner = max(width - INDENT, 0)
-    body = [_doing(line, now, inner, mark, brief=width < WIDE)]
-    if not is_quiet(line):
-        body.insert(0, _why(line, inner, mark))
+    if is_quiet(line):
+        body = [_doing(line, now, inner, mark, brief=width < WIDE)]
+    elif strand is None or width < NARROW:
+        body = [_why(line, inner, mark), _doing(line, now, inner, mark, brief=width < WIDE)]
+    else:
+        body = [_why(line, inner, mark), _through_time(line, strand, now, inner, face)]
     indent = Text.assemble(bar, " " * (INDENT - 1))
     return (title, *(fit(Text.assemble(indent, part), width) for part in body))
 
@@ -83,7 +99,7 @@ def edge(line: DriveLine, face: Face) -> Text:
     """The one block that every line of the band begins with."""
     weight = weight_of(line)
     bar = weight.bar_ascii if face.ascii_only else weight.bar
-    return Text(bar, style=weight.colour if face.colours else "")
+    return Text(bar, style=face.paint(weight.ink))
 
 
 def _title(line: DriveLine, screen: int, width: int, *, chosen: bool, bar: Text, mark: str) -> Text:
@@ -136,6 +152,39 @@ def _doing(line: DriveLine, now: int, width: int, mark: str, *, brief: bool) -> 
         if len(left) + len(right) + 2 <= width:
             return ends(Text(left), Text(right), width)
     return ends(Text(cut(lefts[-1], width - len(right) - 2, mark)), Text(right), width)
+
+
+def _through_time(line: DriveLine, strand: Strand, now: int, width: int, face: Face) -> Text:
+    """Past, now, expectation; at the right the margin, and pass and traffic where there is room."""
+    roomy = width >= WIDE - INDENT
+    told = [_margin(strand.margin)]
+    if roomy or _is_remarkable(line, now):
+        told.append(_passed(line, now, short=not roomy))
+    if width >= ONE_LINE - INDENT:
+        told.insert(0, traffic(line.traffic)[-1])
+    right = "  ".join(told)
+    drawn = strip(line, strand, now, min(width - cell_len(right) - 2, _LONGEST_STRIP), face)
+    return ends(drawn, Text(right), width)
+
+
+def _is_remarkable(line: DriveLine, now: int) -> bool:
+    """Whether its last pass tells more than that of every other drive: the screen's first line has the newest."""
+    last = line.last_pass
+    return last is None or last.outcome is not Outcome.READ or now - last.at > _LONG_AGO
+
+
+def _margin(left: Margin) -> str:
+    """The time left until the first limit, in a few words."""
+    if left.low is None:
+        return "margin unknown"
+    if left.high == 0:
+        return "limit reached"
+    if left.high is None:
+        return f"margin over {say_days(left.low)}"
+    low, high = say_days(left.low), say_days(left.high)
+    unit = high.rpartition(" ")[2]
+    same = low.rpartition(" ")[2].rstrip("s") == unit.rstrip("s")
+    return f"margin {low.rpartition(' ')[0] if same else low} to {high}"
 
 
 def _passed(line: DriveLine, now: int, *, short: bool) -> str:

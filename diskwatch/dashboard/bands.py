@@ -1,11 +1,14 @@
 """The list of bands: one widget a drive, one of them chosen, any of them unfolded."""
 
+from collections.abc import Mapping
+
 from rich.text import Text
 from textual import events
 from textual.containers import VerticalScroll
 
 from diskwatch.dashboard.band import band
 from diskwatch.dashboard.lines import Build, Lines
+from diskwatch.dashboard.questions import Strand
 from diskwatch.dashboard.scroll import with_plain_thumb
 from diskwatch.dashboard.unfold import unfolded
 from diskwatch.dashboard.weight import Face
@@ -48,18 +51,27 @@ class Bands(VerticalScroll, can_focus=False):
         self._chosen: int | None = None
         self._place = 0
         self._open: set[int] = set()
+        self._strands: Mapping[int, Strand] = {}
 
     @property
     def chosen(self) -> DriveLine | None:
         """The drive that the reader stands on; None where there is none."""
         return self._drives[self._place] if self._drives else None
 
-    def show(self, drives: tuple[DriveLine, ...], now: int) -> None:
-        """Show these drives in this order.
+    def wear(self, face: Face) -> None:
+        """Take another face from the next drawing on."""
+        self._face = face
+
+    def show(
+        self, drives: tuple[DriveLine, ...], now: int, strands: Mapping[int, Strand] | None = None
+    ) -> None:
+        """Show these drives in this order, with their lines through time as far as known.
 
         The reader stays on the same drive wherever it moves in the order; where it has gone, on the same place.
         """
         self._drives, self._now = drives, now
+        if strands is not None:
+            self._strands = strands
         numbers = [line.number for line in drives]
         if self._chosen in numbers:
             self._place = numbers.index(self._chosen)
@@ -103,6 +115,12 @@ class Bands(VerticalScroll, can_focus=False):
         self.show(self._drives, self._now)
         self.call_after_refresh(self._reveal)
 
+    def choose(self, number: int) -> None:
+        """Go to a drive by its number in the history, where it is among them."""
+        for place, line in enumerate(self._drives):
+            if line.number == number:
+                self._go(place)
+
     def pick(self, place: int) -> None:
         """Go to the drive at a place; unfold it where the reader stands there already."""
         if place == self._place:
@@ -132,7 +150,8 @@ class Bands(VerticalScroll, can_focus=False):
         return lambda width: self._lines(line, width, chosen=chosen)
 
     def _lines(self, line: DriveLine, width: int, *, chosen: bool) -> tuple[Text, ...]:
-        lines = band(line, self._now, width, self._face, chosen=chosen)
+        strand = self._strands.get(line.number)
+        lines = band(line, self._now, width, self._face, chosen=chosen, strand=strand)
         if line.number in self._open:
             lines += unfolded(line, self._now, width, self._face)
         return lines

@@ -1,17 +1,14 @@
 """The help page: what the four calls mean, what to mind when a drive fails, every key, every trouble."""
 
+from dataclasses import replace
 from typing import ClassVar
 
 from rich.text import Text
-from textual.app import ComposeResult
-from textual.binding import Binding
-from textual.containers import VerticalScroll
-from textual.screen import Screen
 
 from diskwatch.dashboard.cells import fit, wrap
-from diskwatch.dashboard.keys import DEEDS, MOVES
-from diskwatch.dashboard.lines import Lines
-from diskwatch.dashboard.scroll import with_plain_thumb
+from diskwatch.dashboard.desk import Desk
+from diskwatch.dashboard.keys import BACK, DEEDS, MOVES, QUIT, SCROLLS, Key
+from diskwatch.dashboard.paper import Paper, bound
 from diskwatch.dashboard.weight import Face
 
 _CALLS = (
@@ -36,9 +33,41 @@ _FIGURES = (
     ("margin", "The time left until a limit is reached. Unknown where too little has been seen to say."),
     ("read 12 minutes ago", "When the last pass over the drive ended, and how."),
 )
+_STEPS_TOLD = (
+    "The last twelve months: how long a drive within the norm would be watched until it shows the like. "
+    "Less than a month, then from a month, a year, ten years, a hundred years on."
+)
+_CALLED = "Where its present call began: the call's first letter."
+_MARGIN = "Right of now, two years: between when and when its first limit will be reached, as things go now."
+_LINE = (
+    ("─░▒▓█", _STEPS_TOLD),
+    ("l c r", _CALLED),
+    ("│", "Now."),
+    ("[═══]", _MARGIN),
+    ("····", "Too little is known to say."),
+)
+_ASCII_LINE = (
+    ("-.:+#", _STEPS_TOLD),
+    ("l c r", _CALLED),
+    ("|", "Now."),
+    ("[===]", _MARGIN),
+    ("....", "Too little is known to say."),
+)
+_READ = "What was read, low to high. No dots, and the axis broken: nothing was read."
+_FAINT = "The range that it usually keeps to, and the straight line through the last quarter."
+_LIMIT = "A limit: the maker's, a standard's, or usual ones; 'why' says whose."
+_FAN = "Where it may be, as things go now, until it reaches the limit."
+_PICTURE = (("dots", _READ), ("· ·", _FAINT), ("───", _LIMIT), ("│", "Now."), ("░░░", _FAN))
+_ASCII_PICTURE = (("' . :", _READ), (". .", _FAINT), ("---", _LIMIT), ("|", "Now."), ("///", _FAN))
 
 
-def help_lines(watching: str, troubles: tuple[str, ...], width: int, face: Face) -> tuple[Text, ...]:
+def help_lines(
+    watching: str,
+    troubles: tuple[str, ...],
+    width: int,
+    face: Face,
+    keys: tuple[Key, ...] = (),
+) -> tuple[Text, ...]:
     """The page as lines.
 
     Args:
@@ -46,6 +75,7 @@ def help_lines(watching: str, troubles: tuple[str, ...], width: int, face: Face)
         troubles: what is wrong with the watch now, harmless sentences.
         width: columns that every line must keep within.
         face: what the terminal can show.
+        keys: those of the screen that the page was called from.
     """
     lines: list[Text] = []
     if troubles:
@@ -53,8 +83,13 @@ def help_lines(watching: str, troubles: tuple[str, ...], width: int, face: Face)
     lines += _part("What to do with a drive", _CALLS, width)
     lines += _part("When a drive fails", [("-", text) for text in _CAUTIONS], width)
     lines += _part("What stands in a band", _FIGURES, width)
-    faces = [((key.face_ascii if face.ascii_only else key.face), key.help) for key in (*MOVES, *DEEDS)]
-    lines += _part("Keys", faces, width)
+    lines += _part("A drive's line through time", _ASCII_LINE if face.ascii_only else _LINE, width)
+    lines += _part("A signal through time", _ASCII_PICTURE if face.ascii_only else _PICTURE, width)
+    if keys:
+        lines += _part(
+            "Keys of the page that you come from", [(key.printed(face), key.help) for key in keys], width
+        )
+    lines += _part("Keys", [(key.printed(face), key.help) for key in (*MOVES, *DEEDS)], width)
     lines += _part(
         "This screen", [("-", f"It was opened like this: {watching}. It reads the history only.")], width
     )
@@ -76,57 +111,21 @@ def _part(title: str, rows: list[tuple[str, str]] | tuple[tuple[str, str], ...],
     return [*lines, Text()]
 
 
-class Help(Screen[None]):
-    """The help page over the bands; the same key, or Escape, leads back."""
+class Help(Paper):
+    """The help page over any screen; the same key, or Escape, leads back."""
 
-    BINDINGS: ClassVar = [
-        Binding("question_mark,escape", "app.pop_screen", "back", show=False),
-        Binding("up", "scroll('up')", "up", show=False),
-        Binding("down", "scroll('down')", "down", show=False),
-        Binding("pageup", "scroll('page_up')", "page up", show=False),
-        Binding("pagedown,space", "scroll('page_down')", "page down", show=False),
-        Binding("home", "scroll('home')", "first", show=False),
-        Binding("end", "scroll('end')", "last", show=False),
-    ]
-    DEFAULT_CSS = """
-    Help VerticalScroll { height: 1fr; scrollbar-size-vertical: 1; scrollbar-gutter: stable; }
-    """
+    BINDINGS: ClassVar = bound((replace(BACK, keys="question_mark"),))
 
-    def __init__(self, watching: str, troubles: tuple[str, ...], face: Face) -> None:
-        """Take what the page tells of this very screen."""
-        super().__init__()
-        self._watching = watching
-        self._troubles = troubles
-        self._face = face
+    def __init__(self, desk: Desk, keys: tuple[Key, ...]) -> None:
+        """Take the keys of the screen that it was called from."""
+        super().__init__(desk)
+        self._called_from = keys
 
-    def compose(self) -> ComposeResult:
-        """The text, and the keys that lead back."""
-        with VerticalScroll(can_focus=False) as scroll:
-            with_plain_thumb(scroll)
-            yield Lines(self._page, id="page")
-        yield Lines(_way_back, id="keys")
+    def page(self, width: int) -> tuple[Text, ...]:
+        """The page."""
+        desk = self.desk
+        return help_lines(desk.watching, desk.troubles(), width, desk.face, keys=self._called_from)
 
-    def action_scroll(self, where: str) -> None:
-        """Scroll the page: ``up``, ``down``, ``page_up``, ``page_down``, ``home`` or ``end``."""
-        scroll = self.query_one(VerticalScroll)
-        moves = {
-            "up": scroll.scroll_up,
-            "down": scroll.scroll_down,
-            "page_up": scroll.scroll_page_up,
-            "page_down": scroll.scroll_page_down,
-            "home": scroll.scroll_home,
-            "end": scroll.scroll_end,
-        }
-        moves[where](animate=False)
-
-    def _page(self, width: int) -> tuple[Text, ...]:
-        return help_lines(self._watching, self._troubles, width, self._face)
-
-
-def _way_back(width: int) -> tuple[Text, ...]:
-    back, read, leave = ("? Esc", " back"), ("Up Down PgUp PgDn Home End", " read"), ("q", " quit")
-    for keys in ((back, read, leave), (back, leave)):
-        line = Text("  ").join(Text.assemble((key, "bold"), does) for key, does in keys)
-        if line.cell_len <= width:
-            break
-    return (fit(line, width),)
+    def told_keys(self) -> tuple[Key, ...]:
+        """Only what leads through the page and back."""
+        return (replace(BACK, face="? Esc"), *SCROLLS, QUIT)

@@ -53,6 +53,16 @@ _EVIDENCE = (
     " UNION ALL SELECT day, evidence, 1 FROM latest"
     " WHERE series = :series AND day >= :day AND evidence IS NOT NULL ORDER BY goes_on"
 )
+# The drives' few series lead, so that each range of days is one stretch of the table.
+_STRONGEST = (
+    "SELECT drive, day, max(evidence) FROM ("
+    "SELECT series.drive AS drive, kept.day AS day, kept.evidence AS evidence"
+    " FROM series CROSS JOIN evidence AS kept ON kept.series = series.number AND kept.day >= :day"
+    " UNION ALL SELECT series.drive, latest.day, latest.evidence"
+    " FROM latest JOIN series ON series.number = latest.series"
+    " WHERE latest.evidence IS NOT NULL AND latest.day >= :day"
+    ") GROUP BY drive, day ORDER BY drive, day"
+)
 _TRAFFIC = (
     "SELECT drive, at + 60, span_ms, reads, writes, read_bytes, write_bytes, read_ms, write_ms, busy_ms"
     " FROM io_minute WHERE slot >= ? AND slot < ? AND drive = ? ORDER BY slot"
@@ -138,6 +148,14 @@ def evidence(
         found = connection.execute(_EVIDENCE, {"series": number, "day": first}).fetchall()
         days.update({day: worth for day, worth, _ in found})
     return tuple(sorted(days.items()))
+
+
+def strongest(connection: sqlite3.Connection, since: int) -> dict[int, tuple[tuple[int, float], ...]]:
+    """The strongest evidence of any of its ledgers by drive and day, oldest first."""
+    days: dict[int, list[tuple[int, float]]] = {}
+    for drive, day, worth in connection.execute(_STRONGEST, {"day": day_number(since)}):
+        days.setdefault(drive, []).append((day, worth))
+    return {drive: tuple(found) for drive, found in days.items()}
 
 
 def traffic(connection: sqlite3.Connection, drive: int, since: int, until: int) -> tuple[IoSpan, ...]:

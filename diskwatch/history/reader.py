@@ -178,6 +178,14 @@ class Past:
         """
         return self._ask(lambda connection: questions.evidence(connection, drive, signal, since))
 
+    def strongest(self, since: int) -> dict[int, tuple[tuple[int, float], ...]]:
+        """Every drive's strongest evidence of a day as ``(day, M)``, by the drive's number, oldest first.
+
+        Args:
+            since: leave out earlier days, UTC seconds since 1970.
+        """
+        return self._ask(lambda connection: questions.strongest(connection, since))
+
     def traffic(self, drive: int, since: int, until: int) -> tuple[IoSpan, ...]:
         """A drive's traffic by the minute, of which seven days are kept, oldest first.
 

@@ -11,6 +11,7 @@ from diskwatch.dashboard.app import Dashboard
 from diskwatch.dashboard.help import Help
 from diskwatch.errors import HistoryError
 from diskwatch.records import Bays
+from tests.dashboard.answers import Answers, dashboard
 from tests.dashboard.drives import ALL, COPY, KEEP, NOW, bays
 from tests.dashboard.screen import redraw, rows_of, settled, shades_of, text_of
 
@@ -67,7 +68,7 @@ async def test_a_tiny_screen_keeps_its_shape():
         assert len(rows) == 10
         assert rows[0] == "last pass 12 min ago     watched by 1234"
         assert rows[1].startswith("█> retire")
-        assert rows[9] == "Space unfold  ? help  q quit"
+        assert rows[9] == "? help  q quit"
 
 
 async def test_the_source_is_asked_in_one_thread_that_is_not_the_screens():
@@ -223,7 +224,7 @@ async def test_looking_again_asks_the_source_and_says_so():
         assert stage.asked == asked + 1
         assert rows_of(app)[-1].startswith("Looked again at ")
         assert rows_of(app)[-1].endswith(": nothing new.")
-        stage.time += 3
+        stage.time += 7
         await again(pilot)
         assert rows_of(app)[-1].endswith("q quit")
 
@@ -271,7 +272,7 @@ async def test_help_on_a_tiny_screen_still_shows_the_way_back():
         await settled(pilot)
         await pilot.press("question_mark")
         await pilot.pause()
-        assert rows_of(app)[-1] == "? Esc back  q quit"
+        assert rows_of(app)[-1] == "? Esc back  ↑ ↓ read  q quit"
         await pilot.press("escape")
         await pilot.pause()
         assert rows_of(app)[1].startswith("█> retire")
@@ -349,3 +350,38 @@ async def test_a_whole_redraw_takes_less_than_a_sixtieth_of_a_second():
             taken.append(time.process_time() - start)
             await pilot.pause()
         assert statistics.median(taken) <= 0.016
+
+
+async def test_notices_are_put_off_only_where_the_key_is_pressed_twice():
+    answers = Answers()
+    app = dashboard(answers, bays(COPY))
+    async with app.run_test(size=(80, 24)) as pilot:
+        await settled(pilot)
+        await pilot.press("p")
+        await settled(pilot)
+        assert "p once more puts the notices about INVENTED RX-4000 off" in rows_of(app)[-1]
+        assert not any(question[0] == "put_off" for question in answers.asked)
+        await pilot.press("p")
+        await settled(pilot)
+        assert rows_of(app)[-1] == "Notices are put off until Tuesday."
+        assert answers.asked[-1][:2] == ("put_off", COPY.number)
+
+
+async def test_a_page_is_never_stacked_on_one_of_its_sort():
+    app = dashboard(Answers(), bays(*ALL))
+    async with app.run_test(size=(80, 24)) as pilot:
+        await settled(pilot)
+        await pilot.press("enter", "c", "t", "c", "enter", "t", "b", "c")
+        await settled(pilot)
+        sorts = [type(screen) for screen in app.screen_stack]
+        assert len(sorts) == len(set(sorts))
+
+
+async def test_the_line_through_time_of_a_drive_that_wants_something_stands_in_its_band():
+    app = dashboard(Answers(), bays(COPY))
+    async with app.run_test(size=(80, 24)) as pilot:
+        await settled(pilot)
+        row = next(row for row in rows_of(app) if "│" in row)
+        assert "c│" in row
+        assert "[]" in row or "[═" in row
+        assert "margin 60 days to 3 months" in row

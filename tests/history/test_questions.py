@@ -218,6 +218,22 @@ def test_what_was_last_read_beside_the_values_is_there_whole(history, known, con
     assert questions.state(connection, known.number) == "state 5"
 
 
+def test_the_strongest_evidence_of_a_day_is_told_by_drive_with_today(history, known, connection):
+    other = history.admit(a_drive("INVENTED-2", "/dev/sdb"), a_place("/dev/sdb"), NOON)
+    for day in range(4):
+        at = NOON + day * DAY
+        both = {"pending-sectors": 2.0 + day, "crc-errors": 3.0}
+        values = (a_value(), a_value("crc-errors"))
+        part = a_part(known, a_pass(at, *values), evidence=both)
+        more = a_part(other, a_pass(at, a_value()), evidence={"pending-sectors": 7.0})
+        history.record(a_round(part, more, at=at))
+    today = NOON // DAY
+    found = questions.strongest(connection, NOON + DAY)
+    assert found[known.number] == ((today + 1, 3.0), (today + 2, 4.0), (today + 3, 5.0))
+    assert [worth for _, worth in found[other.number]] == [7.0, 7.0, 7.0]
+    assert questions.strongest(connection, NOON + 9 * DAY) == {}
+
+
 def test_evidence_of_a_day_that_was_lived_twice_is_told_once_as_it_was_last(history):
     known = history.admit(a_drive(), a_place(), NOON)
     for at, days in ((NOON, 5.0), (NOON + DAY, 9.0), (NOON + 60, 2.0)):
