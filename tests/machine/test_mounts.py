@@ -1,3 +1,4 @@
+import errno
 import os
 from pathlib import Path
 
@@ -202,6 +203,37 @@ def test_another_file_system_at_the_point_is_not_measured(tmp_path: Path):
     assert measured(str(tmp_path), "8:250") is None
     assert measured(str(tmp_path / "none"), "0:30") is None
     assert measured("/proc", "0:1") is None
+
+
+def test_a_mount_that_lingers_after_its_disk_was_unplugged_lives_on_no_drive(
+    tree: Tree, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+):
+    """The kernel keeps the number of a disk that is gone as long as something is mounted from it."""
+    tree.partition(tree.sata("sdb", "8:16", port=4), "sdb1", "8:17")
+    tree.mount("8:1", str(tmp_path), "ext4", "/dev/sda1")
+    tree.mount("8:17", "/mnt/new", "ext4", "/dev/sdb1")
+    assert points(tree, "sdb") == ["/mnt/new"]
+    assert points(tree, "sda") == []
+
+    def gone(point: str) -> os.statvfs_result:
+        raise OSError(errno.EIO, "Input/output error", point)
+
+    device = tmp_path.stat().st_dev
+    monkeypatch.setattr(os, "statvfs", gone)
+    assert measured(str(tmp_path), f"{os.major(device)}:{os.minor(device)}") is None
+
+
+@pytest.mark.parametrize(
+    ("mount", "file_system"), [("rw", "ro"), ("rw", "rw,emergency_ro"), ("ro", "ro"), ("rw,noatime", "rw")]
+)
+def test_a_file_system_lives_on_its_drive_whatever_the_kernel_says_of_writing(
+    tree: Tree, mount: str, file_system: str
+):
+    """After a forced remount the mount may still say rw, and only the file system's own options ro."""
+    tree.partition(tree.sata(), "sda1", "8:1")
+    line = f"31 1 8:1 / /data {mount} shared:1 - ext4 /dev/sda1 {file_system},errors=remount-ro\n"
+    (tree.proc / "1/mountinfo").write_text(line)
+    assert points(tree, "sda") == ["/data"]
 
 
 def test_what_this_computer_mounts_from_its_disks_is_found():
