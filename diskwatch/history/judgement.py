@@ -84,27 +84,48 @@ def _write_evidence(
 ) -> None:
     """Keep the last evidence of each day: today's in ``latest``, from where the next day moves it on."""
     today = day_number(at)
-    series = dict(
-        connection.execute(
-            "SELECT signal, number FROM series WHERE drive = ? AND current", (number,)
-        ).fetchall()
-    )
-    named = {rows.text(signal): days for signal, days in evidence.items()}
-    for name in named.keys() - series.keys():
-        # Some ledgers follow what no drive reports, such as a service time.
-        (series[name],) = connection.execute(
-            "INSERT INTO series (drive, signal) VALUES (?, ?) RETURNING number", (number, name)
-        ).fetchone()
-    connection.executemany(
-        "INSERT OR REPLACE INTO evidence (series, day, evidence)"
-        " SELECT series, day, evidence FROM latest WHERE series = ? AND day <> ? AND evidence IS NOT NULL",
-        [(series[name], today) for name in named],
-    )
+    standing = {
+        signal: (series, day, days)
+        for signal, series, day, days in connection.execute(
+            "SELECT signal, number, day, evidence FROM series JOIN latest ON series = number"
+            " WHERE drive = ? AND current AND day IS NOT NULL AND evidence IS NOT NULL",
+            (number,),
+        )
+    }
+    moved: list[tuple[int, int, float]] = []
+    ended: list[tuple[int]] = []
+    for name, days in {rows.text(signal): days for signal, days in evidence.items()}.items():
+        series, day, before = standing.get(name, (None, None, None))
+        if (day, before) == (today, days):
+            continue
+        if series is None:
+            series = _series_of(connection, number, name)
+        elif day != today:
+            ended.append((series,))
+        moved.append((series, today, days))
+    if ended:
+        connection.executemany(
+            "INSERT OR REPLACE INTO evidence (series, day, evidence)"
+            " SELECT series, day, evidence FROM latest WHERE series = ?",
+            ended,
+        )
     connection.executemany(
         "INSERT INTO latest (series, day, evidence) VALUES (?, ?, ?)"
         " ON CONFLICT (series) DO UPDATE SET day = excluded.day, evidence = excluded.evidence",
-        [(series[name], today, days) for name, days in named.items()],
+        moved,
     )
+
+
+def _series_of(connection: sqlite3.Connection, number: int, name: str) -> int:
+    """The number of a signal's series; some ledgers follow what no drive reports, such as a service time."""
+    found = connection.execute(
+        "SELECT number FROM series WHERE drive = ? AND signal = ? AND current", (number, name)
+    ).fetchone()
+    if found is None:
+        found = connection.execute(
+            "INSERT INTO series (drive, signal) VALUES (?, ?) RETURNING number", (number, name)
+        ).fetchone()
+    return int(found[0])
 
 
 def _write_call(connection: sqlite3.Connection, number: int, call: Call) -> None:
@@ -133,10 +154,9 @@ def _write_call(connection: sqlite3.Connection, number: int, call: Call) -> None
 
 
 def _write_state(connection: sqlite3.Connection, number: int, at: int, packed: bytes) -> None:
-    known = connection.execute("SELECT packed FROM analyser_state WHERE drive = ?", (number,)).fetchone()
-    if known != (packed,):
-        connection.execute(
-            "INSERT OR REPLACE INTO analyser_state (drive, at, packed, turn)"
-            " VALUES (?1, ?2, ?3, (SELECT turn FROM drive WHERE number = ?1))",
-            (number, at, packed),
-        )
+    connection.execute(
+        "INSERT INTO analyser_state (drive, at, packed, turn)"
+        " VALUES (?1, ?2, ?3, (SELECT turn FROM drive WHERE number = ?1)) ON CONFLICT (drive) DO UPDATE"
+        " SET at = excluded.at, packed = excluded.packed, turn = excluded.turn WHERE packed <> excluded.packed",
+        (number, at, packed),
+    )

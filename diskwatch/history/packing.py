@@ -6,8 +6,7 @@ Packed it costs a third of the bytes, and the bytes that the watch writes are co
 import json
 import struct
 import zlib
-from collections.abc import Mapping
-from dataclasses import replace
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 from diskwatch.records import Attribute, Failing, Reading, SelfTest
@@ -32,7 +31,7 @@ def unpacked(kept: bytes) -> str:
 
 def reading_packed(reading: Reading) -> bytes:
     """All of a reading but its values, which stand in the series."""
-    return packed(_told(reading))
+    return packed(_told(reading, reading.attributes))
 
 
 def beside_bytes(found: Reading) -> bytes:
@@ -41,7 +40,7 @@ def beside_bytes(found: Reading) -> bytes:
     It is compared at every pass and written once in a long while, so it is not packed.
     """
     failing = tuple(one for one in found.attributes if one.failing is Failing.NOW)
-    return _told(replace(found, attributes=failing)).encode("utf-8", "surrogatepass")
+    return _told(found, failing).encode("utf-8", "surrogatepass")
 
 
 def beside(kept: bytes) -> Reading:
@@ -53,8 +52,11 @@ def beside(kept: bytes) -> Reading:
     return _reading(kept.decode("utf-8", "surrogatepass"))
 
 
-def _told(reading: Reading) -> str:
-    attributes = [
+_ENCODER = json.JSONEncoder(separators=(",", ":"))
+
+
+def _told(reading: Reading, attributes: Sequence[Attribute]) -> str:
+    table = [
         [
             one.number,
             one.name,
@@ -65,15 +67,15 @@ def _told(reading: Reading) -> str:
             one.raw,
             None if one.failing is None else one.failing.value,
         ]
-        for one in reading.attributes
+        for one in attributes
     ]
     tests = [
         [one.name, one.result, one.extended, one.passed, one.unreadable, one.hours, one.lba]
         for one in reading.self_tests
     ]
     limits = [reading.warning_celsius, reading.critical_celsius]
-    whole = {"attributes": attributes, "self_tests": tests, "limits": limits}
-    return json.dumps(whole, separators=(",", ":"))
+    whole = {"attributes": table, "self_tests": tests, "limits": limits}
+    return _ENCODER.encode(whole)
 
 
 _BIN = struct.Struct("<hH")

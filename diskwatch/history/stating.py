@@ -1,7 +1,7 @@
 """What a pass read, stated on change: a value holds until the next one, in the order of the passes."""
 
 import sqlite3
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 
 from diskwatch.history import packing, rows
 from diskwatch.history.moments import Moment
@@ -24,6 +24,19 @@ def file_past_days(connection: sqlite3.Connection, today: int) -> None:
         connection.execute("DELETE FROM fresh WHERE at < ?", (midnight,))
 
 
+# A row of what stands goes on, behind its series and since when, as `_Said` does.
+_STANDS = (
+    "SELECT series.number, since, signal, unit, kind, source, value, reason"
+    " FROM series JOIN latest ON latest.series = series.number WHERE drive = ? AND current"
+)
+
+_NEVER = (None,) * 8
+"""The same of a signal that was never read."""
+
+_Said = tuple[str, str, str, str, rows.Cell, str | None]
+"""Signal, unit, kind, source, value and reason, as their columns keep them."""
+
+
 def says_nothing_new(
     connection: sqlite3.Connection, number: int, reading: Reading, heard: Sequence[Value] = ()
 ) -> bool:
@@ -32,19 +45,9 @@ def says_nothing_new(
     Raises:
         sqlite3.Error: the history cannot be read.
     """
-    now = {
-        signal: (value, reason)
-        for signal, value, reason in connection.execute(
-            "SELECT signal, value, reason FROM series JOIN latest ON latest.series = series.number"
-            " WHERE drive = ? AND current",
-            (number,),
-        )
-    }
-    said = {
-        rows.text(one.signal): (rows.cell(one.value), rows.text_or_none(one.reason))
-        for one in (*reading.values, *heard)
-    }
-    return all(now.get(signal) == cells for signal, cells in said.items()) and all(
+    now = {row[2]: row[6:] for row in connection.execute(_STANDS, (number,))}
+    said = _said((*reading.values, *heard))
+    return all(now.get(signal) == says[4:] for signal, says in said.items()) and all(
         signal in said or value is None for signal, (value, _) in now.items()
     )
 
@@ -68,31 +71,22 @@ def write_values(
     Raises:
         sqlite3.Error: it could not be written; the caller undoes the transaction.
     """
-    values = {value.signal: value for value in (*(() if reading is None else reading.values), *heard)}
-    before = {
-        signal: (series, unit, kind, source, since, (value, reason))
-        for series, signal, unit, kind, source, since, value, reason in connection.execute(
-            "SELECT series.number, signal, unit, kind, source, since, value, reason"
-            " FROM series JOIN latest ON latest.series = series.number WHERE drive = ? AND current",
-            (number,),
-        )
-    }
+    said = _said((*(() if reading is None else reading.values), *heard))
+    before = {row[2]: row for row in connection.execute(_STANDS, (number,))}
     changed: list[tuple[int, int, rows.Cell, str | None]] = []
-    # By name, so that a doubled one cannot cost the whole round.
-    for value in values.values():
-        now = (rows.cell(value.value), rows.text_or_none(value.reason))
-        about = (rows.text(value.unit), value.kind.value, rows.text(value.source))
-        found = before.get(rows.text(value.signal))
-        series = _series(connection, number, value, about, None if found is None else found[:4])
-        same_series = found is not None and found[0] == series
-        if not (same_series and found is not None and _unchanged(found[4], found[5], now)):
-            changed.append((moment.at, series, *now))
-    read = {rows.text(signal) for signal in values}
-    for signal, (series, _, _, source, since, known) in before.items():
-        if reading is None and source not in SENSES:
+    for signal, says in said.items():
+        stands = before.get(signal, _NEVER)
+        # Most signals stand still at most passes, and one look tells; what only ledgers follow has no since.
+        if stands[2:] == says and stands[1] is not None:
             continue
-        # What is no longer read is no longer known; since is None for what only ledgers follow.
-        if signal not in read and since is not None and known[0] is not None:
+        series = _series(connection, number, says, stands[0], stands[3:6])
+        if series != stands[0] or stands[1] is None or stands[6:] != says[4:]:
+            changed.append((moment.at, series, *says[4:]))
+    for signal, (series, since, _, _, _, source, value, _) in before.items():
+        if signal in said or (reading is None and source not in SENSES):
+            continue
+        # What is no longer read is no longer known.
+        if since is not None and value is not None:
             changed.append((moment.at, series, None, NOT_THERE))
     connection.executemany(
         "INSERT INTO fresh (at, series, value, reason, nth, turn) VALUES (?, ?, ?, ?, ?, ?)",
@@ -109,12 +103,27 @@ def write_values(
         _write_beside(connection, number, moment, packing.beside_bytes(reading))
 
 
-def _write_last(connection: sqlite3.Connection, number: int, at: int, packed: bytes) -> None:
-    known = connection.execute("SELECT packed FROM last_reading WHERE drive = ?", (number,)).fetchone()
-    if known != (packed,):
-        connection.execute(
-            "INSERT OR REPLACE INTO last_reading (drive, at, packed) VALUES (?, ?, ?)", (number, at, packed)
+def _said(values: Iterable[Value]) -> dict[str, _Said]:
+    """What a pass says, by name, so that a doubled one cannot cost the whole round."""
+    return {
+        (signal := rows.text(one.signal)): (
+            signal,
+            rows.text(one.unit),
+            one.kind.value,
+            rows.text(one.source),
+            rows.cell(one.value),
+            rows.text_or_none(one.reason),
         )
+        for one in values
+    }
+
+
+def _write_last(connection: sqlite3.Connection, number: int, at: int, packed: bytes) -> None:
+    connection.execute(
+        "INSERT INTO last_reading (drive, at, packed) VALUES (?, ?, ?) ON CONFLICT (drive) DO UPDATE"
+        " SET at = excluded.at, packed = excluded.packed WHERE packed <> excluded.packed",
+        (number, at, packed),
+    )
 
 
 # The newest of this turn stands at the end of the key; a turn's first pass states all of it anew.
@@ -130,26 +139,19 @@ def _write_beside(connection: sqlite3.Connection, number: int, moment: Moment, p
         )
 
 
-def _unchanged(
-    since: int | None, before: tuple[rows.Cell, str | None], now: tuple[rows.Cell, str | None]
-) -> bool:
-    """Whether a value need not be stored: the one decision of what "on change" means."""
-    return since is not None and before == now
-
-
 def _series(
     connection: sqlite3.Connection,
     drive: int,
-    value: Value,
-    about: tuple[str, str, str],
-    before: tuple[int, str | None, str | None, str | None] | None,
+    says: _Said,
+    series: int | None,
+    before: tuple[str | None, str | None, str | None],
 ) -> int:
     """The number of a signal's series; a signal whose unit changed starts a new one."""
-    if before is not None:
-        series, unit, kind, source = before
-        if (unit, kind, source) == about:
+    about = says[1:4]
+    if series is not None:
+        if before == about:
             return series
-        if unit in {None, about[0]}:
+        if before[0] in {None, about[0]}:
             connection.execute(
                 "UPDATE series SET unit = ?, kind = ?, source = ? WHERE number = ?", (*about, series)
             )
@@ -157,6 +159,6 @@ def _series(
         connection.execute("UPDATE series SET current = 0 WHERE number = ?", (series,))
     made = connection.execute(
         "INSERT INTO series (drive, signal, unit, kind, source) VALUES (?, ?, ?, ?, ?) RETURNING number",
-        (drive, rows.text(value.signal), *about),
+        (drive, says[0], *about),
     ).fetchone()
     return int(made[0])

@@ -108,3 +108,10 @@ def test_a_reading_says_something_new_where_any_value_is_another_or_was_never_re
         ([a_value(value=3), a_value("media-errors", 0)], False),
     ):
         assert says_nothing_new(connection, known.number, Reading(values=tuple(values))) is nothing
+
+
+def test_two_names_that_are_kept_as_one_cost_no_round_and_the_later_counts(history, known, rows):
+    for step in range(2):
+        keep(history, known, NOON + step, a_value("odd-\ud800", 1), a_value("odd-\\ud800", 2))
+    assert rows("SELECT signal FROM series") == [("odd-\\ud800",)]
+    assert rows("SELECT at, value FROM fresh") == [(NOON, 2)]
