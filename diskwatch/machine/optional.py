@@ -66,6 +66,9 @@ class OptionalLogs:
     def wanted(self, found: Found, at: int) -> tuple[str, ...]:
         """What to name behind ``-l`` in the next question; SCT status at most once a day.
 
+        The day is counted anew after a start of the watch: what is remembered here ends with it. A drive is
+        then asked for its SCT status once more, but never in the first round, which only learns that it has it.
+
         Args:
             found: the drive.
             at: when, UTC seconds since 1970.

@@ -7,21 +7,17 @@ answer comes first, then its words, then the bits.
 
 import re
 from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
-from diskwatch.machine.command import Answer, Ending
+from diskwatch.machine.endings import SAY_WHICH, Verdict, quoted
 from diskwatch.machine.held import Family
 from diskwatch.machine.reading import Support, Understood
 from diskwatch.machine.text import names_version
 from diskwatch.records import Kind, Outcome
-from diskwatch.units import plain
 
 ASLEEP_STATUS = 3
 """The exit status that smartctl is told to end with where a drive is in standby."""
 
-_QUOTED = 200
-
-_SAY_WHICH = "see whether [smart] command in the settings names smartctl, and one that works"
 _NOT_PARSED, _TROUBLES = 1, 0b111
 """smartctl's exit bits (its manual page): the command line was not understood; that, or the device could not be
 opened, or a command to it failed."""
@@ -72,139 +68,6 @@ _NO_LANGUAGE = re.compile(r"unable to detect device type|neither ata, scsi nor n
 _NOISE = re.compile(
     r"copyright|=== start|use smartctl -h|please specify device type|a mandatory smart command|$", re.IGNORECASE
 )
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Verdict:
-    """How a pass ended.
-
-    Attributes:
-        outcome: how.
-        explanation: why, one whole sentence about "it", since the drive's name stands beside it wherever it is
-            shown; what a person needs first, what to do last, the tool's own words in brackets at the end.
-            None for a drive that was read.
-        unproved: True where the words say asleep, but a drive that answers nothing at all gets them too.
-        strange: True where a command that is no smartctl at all would have ended so too.
-    """
-
-    outcome: Outcome
-    explanation: str | None = None
-    unproved: bool = False
-    strange: bool = False
-
-
-def quoted(text: str) -> str:
-    """Words of a drive or a tool, harmless and not too long."""
-    return plain(text.strip())[:_QUOTED]
-
-
-def of_command(answer: Answer, *, command: str, timeout: float) -> Verdict | None:
-    """The verdict where the command gave no whole answer; None where it did.
-
-    Args:
-        answer: what the command left behind.
-        command: what was run.
-        timeout: seconds that it had.
-    """
-    tool = quoted(command)
-    if answer.ending in {Ending.MISSING, Ending.NOT_EXECUTABLE}:
-        return Verdict(outcome=Outcome.NO_TOOL, explanation=_lacking(answer, tool))
-    if answer.ending is Ending.TIMED_OUT:
-        return Verdict(
-            outcome=Outcome.TIMED_OUT,
-            explanation=f"It gave no answer in {timeout:g} s and was given up for this round: where that comes "
-            "again, copy off what matters first, then look at its cable and adapter.",
-        )
-    if answer.ending is Ending.HELD:
-        return Verdict(
-            outcome=Outcome.TIMED_OUT,
-            explanation="It was not asked, since an earlier question to it is still stuck in the kernel: copy "
-            "off what matters first, then look at its cable and adapter.",
-        )
-    if answer.ending is Ending.STOPPED:
-        return Verdict(
-            outcome=Outcome.TIMED_OUT, explanation="It had not answered yet when the watch was ended."
-        )
-    if answer.ending is Ending.NOT_STARTED:
-        return Verdict(
-            outcome=Outcome.NO_TOOL,
-            explanation=f"It was not asked, since {tool} could not be started; it is tried again in the next "
-            f"round ({quoted(answer.trouble)}).",
-        )
-    if answer.ending is Ending.TOO_MUCH:
-        return Verdict(
-            outcome=Outcome.GARBLED,
-            explanation=f"It was not read, since {tool} wrote without end and was cut off: {_SAY_WHICH}.",
-            strange=True,
-        )
-    if answer.status is not None and answer.status < 0:
-        return Verdict(
-            outcome=Outcome.GARBLED,
-            explanation=f"It was not read, since {tool} was ended by signal {-answer.status} before it was "
-            "done; it is tried again in the next round.",
-            strange=True,
-        )
-    return None
-
-
-def of_stranger(verdict: Verdict, *, command: str) -> Verdict:
-    """The verdict where nothing shows that the command is smartctl: then the drive has not been asked at all.
-
-    Blaming the drive would turn a slip in the settings into a call for every drive of the machine.
-
-    Args:
-        verdict: on what the command left behind.
-        command: what was run.
-    """
-    if not verdict.strange:
-        return verdict
-    return Verdict(outcome=Outcome.NO_TOOL, explanation=no_smartctl(command))
-
-
-def no_smartctl(command: str) -> str:
-    """What is wrong with a command that does not answer as smartctl does, and the cure."""
-    return f"{quoted(command)} does not answer as smartctl does, so no drive can be read: {_SAY_WHICH}."
-
-
-def of_scan(answer: Answer, *, command: str, timeout: float) -> str | None:
-    """Why there is no list of drives, and what to do, one sentence; None where the command gave one.
-
-    Args:
-        answer: what the command left behind.
-        command: what was run.
-        timeout: seconds that it had.
-    """
-    tool = quoted(command)
-    if answer.ending in {Ending.MISSING, Ending.NOT_EXECUTABLE}:
-        return _lacking(answer, tool)
-    if answer.ending is Ending.ENDED and (answer.status or 0) >= 0:
-        return None
-    if answer.ending is Ending.TIMED_OUT:
-        why = f"gave no list of drives in {timeout:g} s"
-    elif answer.ending is Ending.TOO_MUCH:
-        why = "wrote without end when asked for a list of drives"
-    elif answer.ending is Ending.STOPPED:
-        why = "was ended together with the watch"
-    elif answer.ending is Ending.ENDED:
-        why = f"was ended by signal {-(answer.status or 0)} when asked for a list of drives"
-    else:
-        why = f"could not be started ({quoted(answer.trouble)})"
-    return (
-        f"{tool} {why}, so drives behind a controller may be missing here; it is asked again in the next round."
-    )
-
-
-def _lacking(answer: Answer, tool: str) -> str:
-    """What is wrong with the tool itself, and the cure."""
-    if answer.ending is Ending.MISSING:
-        return (
-            f"{tool} was not found: install smartctl (on Debian and Ubuntu: apt install smartmontools), or "
-            "name it in the settings under [smart] command."
-        )
-    return (
-        f"{tool} cannot be run: name another smartctl in the settings under [smart] command "
-        f"({quoted(answer.trouble)})."
-    )
 
 
 def of_words(
@@ -297,7 +160,7 @@ def _of_tool(status: int | None, what: Understood, tool: str, telling: str | Non
         why = f"It was not read, since {tool} told neither a drive nor any trouble"
     else:
         return None
-    return replace(_not_read(f"{why}: {_SAY_WHICH}", telling), strange=not what.genuine)
+    return replace(_not_read(f"{why}: {SAY_WHICH}", telling), strange=not what.genuine)
 
 
 def _garbled(what: Understood, telling: str | None) -> Verdict:

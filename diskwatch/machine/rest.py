@@ -9,7 +9,7 @@ unheard.
 from collections.abc import Callable
 from dataclasses import dataclass, replace
 
-from diskwatch.machine.outcomes import Verdict
+from diskwatch.machine.endings import Verdict
 from diskwatch.machine.protocol import Found
 from diskwatch.records import Outcome
 from diskwatch.units import DAY, say_span

@@ -6,12 +6,13 @@ import time
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, replace
 
-from diskwatch.machine import outcomes, ways
+from diskwatch.machine import endings, outcomes, ways
 from diskwatch.machine.command import Answer, Door
 from diskwatch.machine.dialect import Knows, complaint_of, lesser
 from diskwatch.machine.document import Document, document_of, messages, plain_lines, text_at
+from diskwatch.machine.endings import Verdict, quoted
 from diskwatch.machine.optional import OptionalLogs
-from diskwatch.machine.outcomes import ASLEEP_STATUS, Verdict, quoted
+from diskwatch.machine.outcomes import ASLEEP_STATUS
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import Understood, understood
 from diskwatch.machine.rest import Completed, Rest
@@ -110,7 +111,7 @@ class Smartctl:
     def scan(self) -> Scan:
         """List the devices that smartctl sees, opening none of them."""
         answer = self._door.run([self._command, "--scan"], timeout=self._timeout)
-        trouble = outcomes.of_scan(answer, command=self._command, timeout=self._timeout)
+        trouble = endings.of_scan(answer, command=self._command, timeout=self._timeout)
         if trouble is not None:
             return Scan(entries=(), trouble=trouble)
         found: dict[Address, None] = {}
@@ -120,7 +121,7 @@ class Smartctl:
                 found[Address(node=entry["node"], type=entry["type"])] = None
         self._genuine = self._genuine or any(one.type is not None for one in found)
         if not self._genuine and not self._names_itself():
-            return Scan(entries=tuple(found), trouble=outcomes.no_smartctl(self._command))
+            return Scan(entries=tuple(found), trouble=endings.no_smartctl(self._command))
         return Scan(entries=tuple(found))
 
     def _names_itself(self) -> bool:
@@ -173,7 +174,7 @@ class Smartctl:
             found.address.node,
         ]
         answer = self._door.run(argv, timeout=self._timeout, owner=found.place.device)
-        verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
+        verdict = endings.of_command(answer, command=self._command, timeout=self._timeout)
         if verdict is not None:
             return verdict.explanation or "it could not be asked."
         if not answer.status:
@@ -229,7 +230,7 @@ class Smartctl:
     def _told(self, found: Found, type_: str | None, timeout: float, logs: tuple[str, ...] = ()) -> "_Told":
         """Ask once, with one type, and judge the answer."""
         answer = self._answer(found, type_, timeout, logs)
-        verdict = outcomes.of_command(answer, command=self._command, timeout=self._timeout)
+        verdict = endings.of_command(answer, command=self._command, timeout=self._timeout)
         if verdict is not None:
             return _Told(type_, self._of_whom(verdict))
         text = decoded(answer.out)
@@ -260,7 +261,7 @@ class Smartctl:
 
     def _of_whom(self, verdict: Verdict) -> Verdict:
         """The verdict, where the command never listed or answered anything as smartctl does: on the command."""
-        return verdict if self._genuine else outcomes.of_stranger(verdict, command=self._command)
+        return verdict if self._genuine else endings.of_stranger(verdict, command=self._command)
 
     def _answer(self, found: Found, type_: str | None, timeout: float, logs: tuple[str, ...]) -> Answer:
         """Run smartctl in the best way that it knows; learn where it knows less than was thought."""

@@ -10,8 +10,8 @@ import re
 from collections.abc import Iterable
 from dataclasses import dataclass, replace
 
+from diskwatch.machine.endings import Verdict
 from diskwatch.machine.held import Family
-from diskwatch.machine.outcomes import Verdict
 from diskwatch.machine.protocol import Found
 from diskwatch.machine.reading import Support, Understood
 from diskwatch.records import Kind, Outcome, Way

@@ -1,4 +1,4 @@
-from diskwatch.machine.outcomes import Verdict
+from diskwatch.machine.endings import Verdict
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.rest import LONGEST, Rest
 from diskwatch.records import Drive, Identity, Kind, Outcome, Place

@@ -2,7 +2,8 @@ from dataclasses import replace
 
 import pytest
 
-from diskwatch.machine.outcomes import Verdict, of_words
+from diskwatch.machine.endings import Verdict
+from diskwatch.machine.outcomes import of_words
 from diskwatch.machine.protocol import Address, Found
 from diskwatch.machine.reading import understood
 from diskwatch.machine.ways import USB_TYPES, Ways, others, reaches
