@@ -69,11 +69,15 @@ class Cell:
 
 
 @cache
-def _table() -> Mapping[str, Mapping[str, float]]:
-    """Probabilities by sign and cause; the sign ``prior`` holds those beforehand."""
-    table: dict[str, dict[str, float]] = {}
+def _table() -> Mapping[str, Mapping[str, tuple[float, float]]]:
+    """What a sign says for each cause where it shows and where it could have: logarithms of probabilities.
+
+    The sign ``prior`` holds those beforehand.
+    """
+    table: dict[str, dict[str, tuple[float, float]]] = {}
     for row in _rows():
-        table.setdefault(row["sign"], {})[row["cause"]] = float(row["probability"])
+        probability = float(row["probability"])
+        table.setdefault(row["sign"], {})[row["cause"]] = log(probability), log(1 - probability)
     return table
 
 
@@ -114,11 +118,11 @@ def posterior(shown: Collection[str], absent: Collection[str]) -> Mapping[str, f
         KeyError: a sign that the table does not know.
     """
     table = _table()
+    told, untold = [table[sign] for sign in shown], [table[sign] for sign in absent]
     scores = {
-        cause: log(prior)
-        + OVERLAP
-        * (sum(log(table[sign][cause]) for sign in shown) + sum(log(1 - table[sign][cause]) for sign in absent))
-        for cause, prior in table["prior"].items()
+        cause: prior
+        + OVERLAP * (sum([sign[cause][0] for sign in told]) + sum([sign[cause][1] for sign in untold]))
+        for cause, (prior, _otherwise) in table["prior"].items()
     }
     top = max(scores.values())
     weights = {cause: exp(score - top) for cause, score in scores.items()}
