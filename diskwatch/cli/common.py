@@ -67,9 +67,10 @@ class Bar:
 
     _WIDTH = 40
 
-    def __init__(self, what: str) -> None:
-        """Name what is being done."""
+    def __init__(self, what: str, *, quiet: bool = False) -> None:
+        """Name what is being done; quiet where somebody else draws on the terminal."""
         self._what = what
+        self._quiet = quiet
         self._shown = False
 
     def __enter__(self) -> Self:
@@ -82,7 +83,7 @@ class Bar:
 
     def show(self, done: int, total: int) -> None:
         """So much of so much is done."""
-        if not sys.stderr.isatty() or total <= 0:
+        if self._quiet or not sys.stderr.isatty() or total <= 0:
             return
         share = min(1.0, done / total)
         full = round(share * self._WIDTH)

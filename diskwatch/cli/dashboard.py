@@ -42,17 +42,17 @@ def run(args: argparse.Namespace) -> int:
     """Open the dashboard; 0 when it was closed. Without a full terminal the drives are listed instead."""
     owner = settings(args)
     folder = state_folder(args)
-    if not sys.stdout.isatty() or not sys.stdin.isatty() or os.environ.get("TERM", "dumb") == "dumb":
+    if not is_full_screen():
         talk("diskwatch: this is no full-screen terminal; 'diskwatch bays' shows the same as text")
         args.json, args.code, args.join = False, False, []
         return bays_command.run(args)
-    threading.Thread(target=_end_with_terminal, name="terminal", daemon=True).start()
+    threading.Thread(target=end_with_terminal, name="terminal", daemon=True).start()
     # Textual takes a quarter of a second to load: the child reads the drives meanwhile.
     with _watching(folder, args) as (told, starting):
         from diskwatch.dashboard.app import Dashboard  # noqa: PLC0415
 
         with contextlib.ExitStack() as stack:
-            source = _Source(folder, stack, starting=starting)
+            source = Source(folder, stack, starting=starting)
             Dashboard(
                 source,
                 now,
@@ -66,7 +66,7 @@ def run(args: argparse.Namespace) -> int:
     return 0
 
 
-def _end_with_terminal() -> None:
+def end_with_terminal() -> None:
     """End at once when the terminal is gone.
 
     Where it is not the controlling terminal (under ``su -c``, say) no signal tells, and the full-screen
@@ -80,7 +80,7 @@ def _end_with_terminal() -> None:
     os._exit(0)
 
 
-class _Source:
+class Source:
     """The history, opened once it is there and kept open between two looks."""
 
     def __init__(self, folder: Path, stack: contextlib.ExitStack, *, starting: int | None) -> None:
@@ -93,6 +93,7 @@ class _Source:
         self._warn = Warner(folder)
 
     def __call__(self, at: int) -> Bays:
+        """The drives at a time, UTC seconds since 1970."""
         bays = self._now(at)
         if bays.watcher is None and self._starting is not None and time.monotonic() - self._begun < _STARTING:
             # The child is loading its libraries; that nobody watches would be said for a second only.
@@ -155,6 +156,11 @@ def _may_write(folder: Path) -> bool:
     while not is_there(place):
         place = place.parent
     return os.access(place, os.W_OK | os.X_OK)
+
+
+def is_full_screen() -> bool:
+    """Whether this terminal can show more than lines that follow each other."""
+    return sys.stdout.isatty() and sys.stdin.isatty() and os.environ.get("TERM", "dumb") != "dumb"
 
 
 def has_braille() -> bool:

@@ -11,22 +11,28 @@ import os
 import re
 import sys
 import tempfile
-import time
+import threading
 from collections.abc import Iterator
+from functools import partial
 from pathlib import Path
 
 from diskwatch.cli.answers import replay_answer
 from diskwatch.cli.common import Bar, print_json, settings, talk
+from diskwatch.cli.dashboard import is_full_screen
+from diskwatch.cli.pace import USUAL, Pace
+from diskwatch.cli.scene import show
 from diskwatch.places import state_folder
-from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, summed
+from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, ProbeDay, summed
 from diskwatch.rehearsal import scenarios, state
 from diskwatch.rehearsal.course import Course, Ended
 from diskwatch.rehearsal.happenings import MOST_DAYS
+from diskwatch.rehearsal.probe import InventedProber
 from diskwatch.rehearsal.scenario import MARK, MOST_SEED
 from diskwatch.rehearsal.story import Story
 from diskwatch.rehearsal.verdict import Outcome, Verdict
 from diskwatch.service.asking import InTurn
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.probing import Probing
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.traffic import Traffic
 from diskwatch.units import DAY, plain, rfc3339, say_count
@@ -46,10 +52,13 @@ def options(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--list", action="store_true", help="the scenarios, and what each should lead to")
     parser.add_argument("--days", type=_days, metavar="N", help="how many days (default: the scenario's)")
     parser.add_argument(
-        "--speed", type=_speed, metavar="X", help="days of the invented machine a second (default: no limit)"
+        "--speed",
+        type=_speed,
+        metavar="X",
+        help="days of the invented machine a second (default: 2 in the dashboard, no limit without it)",
     )
     parser.add_argument("--seed", type=_seed, metavar="N", help="of chance (default: the scenario's)")
-    parser.add_argument("--headless", action="store_true", help="without the dashboard")
+    parser.add_argument("--headless", action="store_true", help="without the dashboard, to the end")
     parser.add_argument("--json", action="store_true", help="one JSON object")
 
 
@@ -87,10 +96,14 @@ def run(args: argparse.Namespace) -> int:
         _list(as_json=args.json)
         return 0
     course = Course(scenarios.load(args.scenario), seed=args.seed, days=args.days)
-    if not args.headless and not args.json:
-        talk("The moving dashboard for rehearsals is not there yet; this one runs without it.")
+    shown = not args.headless and not args.json and is_full_screen()
+    if not args.headless and not args.json and not shown:
+        talk("diskwatch: this is no full-screen terminal; the rehearsal runs without the dashboard")
     with _folder(args.state) as folder:
-        trouble = live_through(course, folder, args.speed)
+        if shown:
+            trouble = show(course, folder, Pace(args.speed or USUAL), live_through)
+        else:
+            trouble = live_through(course, folder, None if args.speed is None else Pace(args.speed))
         ended = course.ended()
     if args.json:
         print_json(answer(ended))
@@ -118,26 +131,35 @@ def _folder(named: str | None) -> Iterator[Path]:
         yield Path(folder)
 
 
-def live_through(course: Course, folder: Path, speed: float | None) -> str | None:
+def live_through(course: Course, folder: Path, pace: Pace | None) -> str | None:
     """Join the invented machine with the rounds, the traffic and the history of the real watch.
 
     Args:
         course: what is lived through.
         folder: where the history lies.
-        speed: days a second; None for no limit.
+        pace: how fast its days pass, and whether they go on; None for as fast as they go, to the end.
 
     Returns:
         Why the history could not be kept; None where it was.
     """
     keeper = Keeper(folder)
-    rounds = Rounds(course.machine, keeper, course.clock.now, asking=InTurn)
     traffic = Traffic(course.machine, course.clock.now, course.clock.steady)
+    probing = Probing(
+        InventedProber(course.machine, course.seed),
+        past=partial(_probes, keeper),
+        on_battery=lambda: False,
+        ours=lambda *_: None,
+    )
+    rounds = Rounds(course.machine, keeper, course.clock.now, asking=InTurn, probed=probing.take)
     gathered: list[IoSpan] = []
 
     def ask() -> tuple[DriveRound, ...]:
         keeper.add_traffic(gathered)
         gathered.clear()
-        return rounds.run()
+        done = rounds.run()
+        if course.scenario.probe and (ready := probing.after(done, rounds.found, now=course.clock.now)):
+            done += rounds.run(only=ready)
+        return done
 
     def count() -> None:
         gathered.extend(traffic.look(dict(rounds.blocks)).spans)
@@ -145,18 +167,24 @@ def live_through(course: Course, folder: Path, speed: float | None) -> str | Non
     text = f"A rehearsal began ({course.scenario.title}): every drive in this history is INVENTED."
     keeper.note(Entry(at=course.clock.now(), drive=None, kind="watch", text=text))
     try:
-        with Bar("rehearsing") as bar:
-            shown = 0
+        # Under the dashboard the terminal is not ours to write a bar to.
+        with Bar("rehearsing", quiet=threading.current_thread() is not threading.main_thread()) as bar:
+            shown, lived = 0, 0.0
             for days in course.run(ask, count):
                 if days >= shown:
                     shown = int(days) + 1
                     bar.show(int(days), course.days)
-                if speed is not None:
-                    time.sleep(course.scenario.step_minutes / 1440 / speed)
+                if pace is not None and not pace.passed(days - lived):
+                    break
+                lived = days
         keeper.add_traffic(gathered)
     finally:
         keeper.close()
     return keeper.trouble
+
+
+def _probes(keeper: Keeper, number: int, after: int) -> tuple[ProbeDay, ...] | None:
+    return keeper.ask(lambda history: history.probes(number, after=after))
 
 
 def _list(*, as_json: bool) -> None:

@@ -54,7 +54,7 @@ class Shown:
         from diskwatch.cli.said import said  # noqa: PLC0415 - likewise
         from diskwatch.cli.why import chapters  # noqa: PLC0415 - likewise
 
-        past, line = self._past(), self._line(number, at)
+        past, line = self._past(), self.line(number, at)
         kept = past.state(number)
         state = analyser.start() if kept is None else analyser.load(kept)
         told = [
@@ -71,7 +71,7 @@ class Shown:
         """What is at stake, and how to get it off."""
         from diskwatch.cli.copy_plan import TITLES, planned  # noqa: PLC0415 - the first frame does not wait for it
 
-        _, parts = planned(self._past(), self._line(number, at), self._folder, at)
+        _, parts = planned(self._past(), self.line(number, at), self._folder, at)
         titles = {"urgency": "How urgent it is", **TITLES}
         return tuple(
             Chapter(title=title, lines=parts[name], numbered=name == "order") for name, title in titles.items()
@@ -81,7 +81,7 @@ class Shown:
         """Every signal of a drive over a span."""
         from diskwatch.cli.curves import Span, curves  # noqa: PLC0415 - the first frame does not wait for it
 
-        return curves(self._past(), self._line(number, at), Span(since=since, at=at))
+        return curves(self._past(), self.line(number, at), Span(since=since, at=at))
 
     def day_book(self, drive: int | None, kinds: Collection[str] | None, limit: int) -> tuple[Entry, ...]:
         """The newest so many entries, oldest first."""
@@ -111,9 +111,14 @@ class Shown:
         """Put this user's notices about a drive off for as long as 'later' does."""
         from diskwatch.cli.later import defer  # noqa: PLC0415 - the first frame does not wait for it
 
-        return defer(self._line(number, at), at)
+        return defer(self.line(number, at), at)
 
-    def _line(self, number: int, at: int) -> DriveLine:
+    def line(self, number: int, at: int) -> DriveLine:
+        """A drive by its number in the history.
+
+        Raises:
+            DiskwatchError: the history does not know it any more.
+        """
         line = next((one for one in self._past().bays(at).every if one.number == number), None)
         if line is None:
             raise DiskwatchError("the history does not know this drive any more", hint="press Esc")

@@ -155,7 +155,7 @@ def _doing(line: DriveLine, now: int, width: int, mark: str, *, brief: bool) -> 
 
 
 def _through_time(line: DriveLine, strand: Strand, now: int, width: int, face: Face) -> Text:
-    """Past, now, expectation; at the right the margin, and pass and traffic where there is room."""
+    """Past, now, expectation; at the right the margin, where there is room pass and traffic."""
     roomy = width >= WIDE - INDENT
     told = [_margin(strand.margin)]
     if roomy or _is_remarkable(line, now):
@@ -168,7 +168,7 @@ def _through_time(line: DriveLine, strand: Strand, now: int, width: int, face: F
 
 
 def _is_remarkable(line: DriveLine, now: int) -> bool:
-    """Whether its last pass tells more than that of every other drive: the screen's first line has the newest."""
+    """Whether its last pass tells more than the newest of all, which stands in the first line."""
     last = line.last_pass
     return last is None or last.outcome is not Outcome.READ or now - last.at > _LONG_AGO
 

@@ -13,6 +13,7 @@ _STEPS_ASCII = "_.-=*#"
 _WIDE = 110
 _WITH_LINE = 72
 _LEAST_LINE = 10
+_YEAR = 365.25
 
 
 def curve_rows(
@@ -40,9 +41,9 @@ def curve_rows(
             column(value, 16, mark),
         )
         if width >= _WITH_LINE:
-            row.append("  " + column(_usual(curve), 16 if width < _WIDE else 24, mark))
+            row.append("  " + column(_usual(curve), 16 if width < _WIDE else 18, mark))
         if width >= _WIDE:
-            row.append("  " + column(_evidence(curve), 24, mark))
+            row.append("  " + column(_evidence(curve), 20, mark))
         room = width - row.cell_len - 3
         if room >= _LEAST_LINE:
             row.append("  ")
@@ -72,7 +73,8 @@ def _moved(curve: Curve) -> str:
 
 
 def _evidence(curve: Curve) -> str:
-    return "" if curve.evidence is None else f"norm: {once_in(curve.evidence)}"
+    """How rarely a drive within the norm would come to this; below a year that tells nothing yet."""
+    return "" if curve.evidence is None or curve.evidence < _YEAR else once_in(curve.evidence)
 
 
 def small_line(curve: Curve, since: int, now: int, width: int, face: Face) -> str:

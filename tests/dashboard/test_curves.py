@@ -25,7 +25,7 @@ def test_a_row_tells_name_value_and_what_became_of_it():
     assert "up 10" in worn
     assert "41 °C" in warm
     assert "usual 35 to 41 °C" in warm
-    assert "norm: once in 2 years" in warm
+    assert "once in 2 years" in warm
     assert "passed" in told
 
 

@@ -8,6 +8,7 @@ the fitted line, a bar for now. Where nothing was read there are no dots, and th
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 from datetime import UTC, datetime, tzinfo
+from itertools import groupby
 
 from rich.text import Text
 
@@ -131,15 +132,15 @@ class _Plane:
         ink = self.frame.face.paint(BLUE)
         for row in range(self.frame.rows):
             line = Text(f"{marks.get(row, ''):>{_GUTTER - 2}} {self.letters.now}")
-            for column in range(self.before):
-                letter = data.letter(column, row)
-                if letter:
-                    line.append(letter, style=ink)
-                else:
-                    line.append(self._behind(column, row, fitted, usual, limit))
+            seen = [data.letter(column, row) for column in range(self.before)]
+            cells = [
+                letter or self._behind(column, row, fitted, usual, limit) for column, letter in enumerate(seen)
+            ]
+            # One style a run of cells, not one a cell: over a slow link each change of style costs bytes.
+            for drawn, run in groupby(zip(seen, cells, strict=True), key=lambda pair: bool(pair[0])):
+                line.append("".join(cell for _, cell in run), style=ink if drawn else "")
             line.append(self.letters.now, style="bold")
-            for column in range(self.after):
-                line.append(self._expected(column, row, limit))
+            line.append("".join(self._expected(column, row, limit) for column in range(self.after)))
             yield line
         yield self._axis()
         yield self._dates()
@@ -238,8 +239,9 @@ class _Plane:
         """The line below, broken where nothing was read."""
         raster = Raster(self.before, 1, Dots.ASCII)
         line = Text(" " * (_GUTTER - 1) + self.letters.corner)
-        for column in range(self.before):
-            line.append(" " if self._silent(column, raster) else self.letters.axis)
+        line.append(
+            "".join(" " if self._silent(column, raster) else self.letters.axis for column in range(self.before))
+        )
         line.append(self.letters.now if not self.frame.face.ascii_only else "+", style="bold")
         return line.append(self.letters.axis * self.after)
 

@@ -15,12 +15,14 @@ class Scale:
     Attributes:
         low: value of the lowest row.
         high: value of the highest row, above ``low``.
+        whole: whether parts of 1 mean nothing.
         tens: whether equal distances are equal factors; 0 has its place below 1 (the logarithm
             is of 1 + value).
     """
 
     low: float
     high: float
+    whole: bool = False
     tens: bool = False
 
     def share(self, value: float) -> float:
@@ -35,6 +37,8 @@ class Scale:
             within = [mark for mark in marks if self.low <= mark <= self.high]
             return tuple(within[:: max(1, math.ceil(len(within) / max(most, 1)))])
         step = _round_step((self.high - self.low) / max(most - 1, 1))
+        if self.whole:
+            step = max(step, 1.0)
         first = math.ceil(self.low / step - 1e-9)
         last = math.floor(self.high / step + 1e-9)
         return tuple(step * number for number in range(first, last + 1)) or (self.low,)
@@ -56,11 +60,11 @@ def scale_of(values: Iterable[float], *, whole: bool) -> Scale:
     low, high = known[0], known[-1]
     moved = [value - low for value in known if value > low]
     if whole and low >= 0 and moved and high > _APART * max(moved[len(moved) // 2], 1):
-        return Scale(low=0.0, high=high, tens=True)
+        return Scale(low=0.0, high=high, whole=True, tens=True)
     if high == low:
-        return Scale(low=low if whole else low - 1, high=high + 1)
+        return Scale(low=low if whole else low - 1, high=high + 1, whole=whole)
     air = 0.0 if whole else (high - low) * 0.05
-    return Scale(low=max(low - air, 0.0) if low >= 0 else low - air, high=high + air)
+    return Scale(low=max(low - air, 0.0) if low >= 0 else low - air, high=high + air, whole=whole)
 
 
 def _round_step(least: float) -> float:

@@ -5,6 +5,8 @@ drive within the norm would be watched until it shows the like. The margin stand
 ahead.
 """
 
+from itertools import groupby
+
 from rich.text import Text
 
 from diskwatch.dashboard.questions import Strand
@@ -37,8 +39,8 @@ def strip(line: DriveLine, strand: Strand, now: int, width: int, face: Face) -> 
     before = width - after - 1
     ink = face.paint(weight_of(line).ink)
     text = Text()
-    for letter in _past(line, strand, now, before, face):
-        text.append(letter, style="bold reverse" if letter.isalpha() else ink)
+    for called, run in groupby(_past(line, strand, now, before, face), key=str.isalpha):
+        text.append("".join(run), style="bold reverse" if called else ink)
     text.append("|" if face.ascii_only else "│", style="bold")
     return text.append(_ahead(strand, after, face))
 
