@@ -2,7 +2,6 @@
 
 from collections.abc import Iterable
 from dataclasses import dataclass
-from statistics import median
 
 from diskwatch.records.judgement import Call, CallWord
 from diskwatch.units import DAY
@@ -86,6 +85,8 @@ class ReplaySummary:
 
 def summed(drives: Iterable[ReplayedDrive], *, skipped: int) -> ReplaySummary:
     """Sum up a replay."""
+    from statistics import median  # noqa: PLC0415 - it loads a lot, and every command has these records
+
     every = tuple(drives)
     leads = [
         (drive.last - drive.warned_at) / DAY for drive in every if drive.failed and drive.warned_at is not None
