@@ -24,17 +24,13 @@ def file_past_days(connection: sqlite3.Connection, today: int) -> None:
         connection.execute("DELETE FROM fresh WHERE at < ?", (midnight,))
 
 
-# A row of what stands goes on, behind its series and since when, as `_Said` does.
 _STANDS = (
     "SELECT series.number, since, signal, unit, kind, source, value, reason"
     " FROM series JOIN latest ON latest.series = series.number WHERE drive = ? AND current"
 )
 
 _NEVER = (None,) * 8
-"""The same of a signal that was never read."""
-
-_Said = tuple[str, str, str, str, rows.Cell, str | None]
-"""Signal, unit, kind, source, value and reason, as their columns keep them."""
+"""What stands of a signal that was never read."""
 
 
 def says_nothing_new(
@@ -46,8 +42,8 @@ def says_nothing_new(
         sqlite3.Error: the history cannot be read.
     """
     now = {row[2]: row[6:] for row in connection.execute(_STANDS, (number,))}
-    said = _said((*reading.values, *heard))
-    return all(now.get(signal) == says[4:] for signal, says in said.items()) and all(
+    said = _by_name((*reading.values, *heard))
+    return all(now.get(signal) == _cells(one) for signal, one in said.items()) and all(
         signal in said or value is None for signal, (value, _) in now.items()
     )
 
@@ -71,17 +67,19 @@ def write_values(
     Raises:
         sqlite3.Error: it could not be written; the caller undoes the transaction.
     """
-    said = _said((*(() if reading is None else reading.values), *heard))
+    said = _by_name((*(() if reading is None else reading.values), *heard))
     before = {row[2]: row for row in connection.execute(_STANDS, (number,))}
     changed: list[tuple[int, int, rows.Cell, str | None]] = []
-    for signal, says in said.items():
+    for signal, one in said.items():
         stands = before.get(signal, _NEVER)
-        # Most signals stand still at most passes, and one look tells; what only ledgers follow has no since.
-        if stands[2:] == says and stands[1] is not None:
+        # What only ledgers follow has no since: nothing was read of it yet.
+        known = stands[1] is not None
+        # Most signals stand still at most passes, and one look tells; others are looked at as they are kept.
+        if known and stands[3:] == (one.unit, one.kind, one.source, one.value, one.reason):
             continue
-        series = _series(connection, number, says, stands[0], stands[3:6])
-        if series != stands[0] or stands[1] is None or stands[6:] != says[4:]:
-            changed.append((moment.at, series, *says[4:]))
+        series = _series(connection, number, one, stands[0], stands[3:6])
+        if not (known and series == stands[0] and stands[6:] == _cells(one)):
+            changed.append((moment.at, series, *_cells(one)))
     for signal, (series, since, _, _, _, source, value, _) in before.items():
         if signal in said or (reading is None and source not in SENSES):
             continue
@@ -103,19 +101,13 @@ def write_values(
         _write_beside(connection, number, moment, packing.beside_bytes(reading))
 
 
-def _said(values: Iterable[Value]) -> dict[str, _Said]:
-    """What a pass says, by name, so that a doubled one cannot cost the whole round."""
-    return {
-        (signal := rows.text(one.signal)): (
-            signal,
-            rows.text(one.unit),
-            one.kind.value,
-            rows.text(one.source),
-            rows.cell(one.value),
-            rows.text_or_none(one.reason),
-        )
-        for one in values
-    }
+def _by_name(values: Iterable[Value]) -> dict[str, Value]:
+    """What a pass says, so that a doubled name cannot cost the whole round."""
+    return {rows.text(one.signal): one for one in values}
+
+
+def _cells(said: Value) -> tuple[rows.Cell, str | None]:
+    return rows.cell(said.value), rows.text_or_none(said.reason)
 
 
 def _write_last(connection: sqlite3.Connection, number: int, at: int, packed: bytes) -> None:
@@ -142,12 +134,12 @@ def _write_beside(connection: sqlite3.Connection, number: int, moment: Moment, p
 def _series(
     connection: sqlite3.Connection,
     drive: int,
-    says: _Said,
+    said: Value,
     series: int | None,
     before: tuple[str | None, str | None, str | None],
 ) -> int:
     """The number of a signal's series; a signal whose unit changed starts a new one."""
-    about = says[1:4]
+    about = (rows.text(said.unit), said.kind.value, rows.text(said.source))
     if series is not None:
         if before == about:
             return series
@@ -159,6 +151,6 @@ def _series(
         connection.execute("UPDATE series SET current = 0 WHERE number = ?", (series,))
     made = connection.execute(
         "INSERT INTO series (drive, signal, unit, kind, source) VALUES (?, ?, ?, ?, ?) RETURNING number",
-        (drive, says[0], *about),
+        (drive, rows.text(said.signal), *about),
     ).fetchone()
     return int(made[0])
