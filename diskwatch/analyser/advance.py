@@ -3,7 +3,7 @@
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 
-from diskwatch.analyser import counters, endings, findings, heard, heat, outcomes, signs, wearing
+from diskwatch.analyser import absences, counters, endings, findings, heard, heat, outcomes, signs, wearing
 from diskwatch.analyser.around import ALONE, RETRACTS, Around, bays, power_shared, troubles, witness
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
@@ -165,6 +165,7 @@ def _taken_in(
         *findings.rule(now, pass_),
         *heard.shown(now, pass_),
         *power_shared(now, pass_, around),
+        *absences.comes_and_goes(now, pass_),
         *findings.levels(now, pass_),
     )
     alarms = [

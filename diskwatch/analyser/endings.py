@@ -3,12 +3,13 @@
 from collections.abc import Iterator
 from dataclasses import replace
 
+from diskwatch.analyser import heat
 from diskwatch.analyser.findings import DEFECTS
 from diskwatch.analyser.outcomes import entry
 from diskwatch.analyser.state import DriveState
 from diskwatch.judge import rules, sentences
 from diskwatch.records import Entry, Finding, Pass
-from diskwatch.trends import episodes
+from diskwatch.trends import episodes, slowness
 from diskwatch.trends.norms import MAY_FALL
 from diskwatch.units import day_number
 
@@ -18,7 +19,8 @@ def ended(state: DriveState, pass_: Pass) -> tuple[DriveState, tuple[Entry, ...]
 
     A link is taken for mended after `rules.LINK_QUIET` powered days without a damaged transfer; its ledger then
     begins anew. A sector that could not be read is over when it has been rewritten and `rules.PENDING_QUIET`
-    days brought no new defect of any kind: a sector that was replaced stays a defect.
+    days brought no new defect of any kind: a sector that was replaced stays a defect. A drive that ran hotter
+    than it used to has cooled down when the days since took all evidence of it away again.
 
     Args:
         state: the drive after a reading, with all that it shows.
@@ -48,6 +50,12 @@ def _over(state: DriveState, finding: Finding, pass_: Pass) -> Iterator[str]:
         quiet = stream.powered + stream.exposure - last_rise
         if quiet >= rules.LINK_QUIET:
             yield sentences.link_is_quiet(int(quiet))
+    elif finding.name == heat.NAME:
+        last = finding.data.get("last_day")
+        # A finding of an older version does not know when its evidence last stood: it did when it began.
+        cool = day_number(pass_.at) - (last if isinstance(last, int) else day_number(finding.since))
+        if cool >= rules.COOL and state.temperature.ledger.evidence <= slowness.NOTHING:
+            yield sentences.cool_again(cool)
     elif finding.name == "fact:first-defect" and MAY_FALL.issuperset(finding.signals):
         since = {**state.firsts, **state.base}
         rewritten = all(state.latest[signal] <= since[signal] for signal in finding.signals)

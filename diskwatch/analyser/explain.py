@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 
+from diskwatch.analyser import heat
 from diskwatch.analyser.causation import Causation, causation
 from diskwatch.analyser.outcomes import UNREAD_LIMIT
 from diskwatch.analyser.state import DriveState
@@ -212,6 +213,8 @@ def _ends(state: DriveState) -> str:
         return changes.drive_says_so()
     if all(one.name in rules.OF_THE_LINK for one in lasting):
         return changes.falls_with_the_link(rules.LINK_QUIET)
+    if all(one.name == heat.NAME for one in lasting):
+        return changes.falls_when_cool(rules.COOL)
     if all(one.name == "fact:first-defect" and MAY_FALL.issuperset(one.signals) for one in lasting):
         return changes.falls_when_rewritten(rules.PENDING_QUIET)
     return changes.stands()

@@ -23,7 +23,7 @@ USUAL_SPARE = 10
 """Per cent of spare blocks that makers usually call too few (common practice, no source)."""
 
 EPISODES = 5
-"""Limits of a counter are the multiples of so many episodes: for five more the intervals were measured to hold."""
+"""Limits of a counter are multiples of so many episodes: for five more the intervals were measured to hold."""
 
 COUNTED: Mapping[str, str] = {"media": "media-episodes", "flash-media": "flash-media-episodes"}
 """Streams whose next episodes are forecast after an alarm, and what these are called among the forecasts.

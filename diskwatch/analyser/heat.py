@@ -55,6 +55,7 @@ def drift(state: DriveState, pass_: Pass, reading: Reading) -> Iterable[Finding]
                 "usual": ledger.usual,
                 "line": line,
                 "threshold": THRESHOLD,
+                "last_day": day_number(pass_.at),
             },
         ),
     )

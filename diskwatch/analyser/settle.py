@@ -7,6 +7,7 @@ from diskwatch.analyser.advance import Step, quiet, told_call
 from diskwatch.analyser.state import DriveState
 from diskwatch.analyser.traffic import noted
 from diskwatch.judge import rules, sentences
+from diskwatch.judge.neighbours import Days, Trouble
 from diskwatch.records import Entry, Finding, Settled
 from diskwatch.trends import episodes, probed
 from diskwatch.trends.norms import NORMS
@@ -54,6 +55,7 @@ def settle(state: DriveState, word: Settled) -> Step:
         else probed.noted(state.probe, late="drift:late-reads" in ended, speed="drift:probe-latency" in ended),
         settled={**state.settled, **dict.fromkeys(anew, word)},
         word=word,
+        troubles=_returned(state) if not word.signals else state.troubles,
         unread=0 if not word.signals else state.unread,
         standing={name: one for name, one in state.standing.items() if name not in ended},
     )
@@ -66,6 +68,11 @@ def settle(state: DriveState, word: Settled) -> Step:
     if call is not None and state.call is not None and call.word is not state.call.word:
         happened += told_call(state.call, call)
     return Step(state=replace(now, call=call), happened=tuple(happened))
+
+
+def _returned(state: DriveState) -> Days:
+    """The drive's days of trouble without those on which it was gone."""
+    return {kind: days for kind, days in state.troubles.items() if kind != Trouble.GONE.value}
 
 
 def _undisturbed(damage: Spots, signals: Collection[str]) -> Spots:

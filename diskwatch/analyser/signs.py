@@ -77,7 +77,7 @@ _BUILD = frozenset({"no cable", "turning platters", "no platters"})
 
 _FLASH = frozenset({Kind.NVME, Kind.SSD})
 
-_BEYOND_NORM = frozenset({_SILENT, "fact:link-again"})
+_BEYOND_NORM = frozenset({_SILENT, "fact:comes-and-goes", "fact:link-again"})
 """Facts that no drive within its norms shows, so that a sound one is no explanation."""
 
 
@@ -157,6 +157,12 @@ def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool |
         told["media counter"] = True
     harmed = any(told.get(sign) for sign in _DEFECTS)
     told["vanished without media error"] = None if harmed else _comes_and_goes(state, day)
+    # Two absences that have one reason count once: a read given up leaves a sector that waits, and what a probe
+    # finds of retries may be too little yet for the mean of all traffic.
+    if told.get("media counter") is False and told.get("uncorrectable event") is False:
+        told["uncorrectable event"] = None
+    if told.get("late probe reads") and told.get("reads slower") is False:
+        told["reads slower"] = None
     return {**told, **_build(pass_, reading)}
 
 

@@ -48,6 +48,14 @@ def falls_when_rewritten(days: int) -> str:
     ).format(days=days)
 
 
+def falls_when_cool(days: int) -> str:
+    """A call that rests on temperature alone."""
+    return _(
+        "The call falls when no evidence of running hot is left, at the earliest {days} days after it last "
+        "stood at its alarm, or on your word ('diskwatch settle')."
+    ).format(days=days)
+
+
 def passes() -> str:
     """A call that rests on the present moment only."""
     return _("The call ends with what it tells of.")

@@ -83,10 +83,14 @@ RULES: tuple[Rule, ...] = (
         "fact:hot", _LOOK, marked("it is at or above its own temperature limit, or was within 3 days"), _DRIVE
     ),
     _rule("fact:warns-of-heat", _LOOK, marked("it warns of its temperature, or did within 3 days"), _DRIVE),
-    _rule(
-        "fact:warns-of-", _LOOK, marked("it warns of something, and does not call itself failing"), _DRIVE
-    ),
+    _rule("fact:warns-of-", _LOOK, marked("it warns of something, and does not call itself failing"), _DRIVE),
     _rule("fact:unreadable", _LOOK, marked("three passes in a row brought no reading"), _HOUSE),
+    _rule(
+        "fact:comes-and-goes",
+        _LOOK,
+        marked("it was gone and came back more than once within 30 days, or once since it last stood"),
+        _HOUSE,
+    ),
     _rule(
         "fact:first-defect",
         _LOOK,
@@ -115,6 +119,15 @@ RULES: tuple[Rule, ...] = (
         "fact:array-", _LOOK, marked("an array runs without one of its drives, or dropped this one"), _KERNEL
     ),
     _rule("fact:file-system", _LOOK, marked("a file system on the drive met an error"), _KERNEL),
+    _rule(
+        "drift:temperature",
+        _LOOK,
+        marked(
+            "the ledger's evidence has reached its threshold; over 14 days after it last did, once none is left"
+        ),
+        _LEDGER,
+        version=2,
+    ),
     _rule("drift:", _LOOK, marked("a ledger's evidence has reached its threshold"), _LEDGER),
     _rule("level:", (), marked("worth knowing; it asks for nothing"), _HOUSE),
 )

@@ -6,7 +6,7 @@ from diskwatch.judge.causes import Explained
 from diskwatch.records import Call, CallWord, Cause, Finding, FindingKind
 from diskwatch.units import DAY
 
-VERSION = 2
+VERSION = 3
 """Of the rules as a whole; a ticket names it so that a call can be checked by the rules it followed."""
 
 LINGERING = frozenset({"fact:hot", "fact:warns-of-heat"})
@@ -18,6 +18,7 @@ LINGER = 3 * DAY
 PASSING = frozenset(
     {
         "fact:unreadable",
+        "fact:comes-and-goes",
         "fact:hot",
         "fact:warns-of-heat",
         "fact:warns-of-enclosure",
@@ -28,7 +29,7 @@ PASSING = frozenset(
 )
 """Findings about the present moment end with what they tell of.
 
-All others stand until evidence ends them (`LINK_QUIET`, `PENDING_QUIET`) or the owner speaks.
+All others stand until evidence ends them (`LINK_QUIET`, `PENDING_QUIET`, `COOL`) or the owner speaks.
 """
 
 OF_THE_LINK = frozenset({"drift:link", "fact:link-again"})
@@ -39,6 +40,12 @@ LINK_QUIET = 30.0
 
 PENDING_QUIET = 90
 """Days without any new defect after which a sector that was rewritten asks for nothing more (likewise)."""
+
+COOL = 14
+"""Days since evidence of running hot last stood at its threshold after which it is over, if none is left."""
+
+RECALLING = frozenset({"fact:comes-and-goes"})
+"""Passing findings that tell of what was; one about what is now goes first."""
 
 _WEIGHT = {FindingKind.FACT: 3, FindingKind.RULE: 2, FindingKind.DRIFT: 1, FindingKind.LEVEL: 0}
 
@@ -70,6 +77,7 @@ def leading_first(findings: Iterable[Finding]) -> tuple[Finding, ...]:
             key=lambda one: (
                 -(one.calls.rank if one.calls else -1),
                 one.name in PASSING,
+                one.name in RECALLING,
                 -_WEIGHT[one.kind],
                 -(one.evidence or 0.0),
                 one.since,

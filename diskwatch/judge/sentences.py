@@ -225,6 +225,31 @@ def unreadable(times: int, explanation: str) -> str:
     ).format(count=say_count(times), why=explanation)
 
 
+def comes_and_goes(times: int, ago: int, window: int) -> str:
+    """A drive was gone and came back.
+
+    Args:
+        times: how often within the window.
+        ago: days since it was last gone.
+        window: days.
+    """
+    return ngettext(
+        "It was gone and came back {count} time within {window} days, last {ago} ago. As long as it may go "
+        "again, do not count on it: look at its connection, its power and its firmware.",
+        "It was gone and came back {count} times within {window} days, last {ago} ago. As long as it may go "
+        "again, do not count on it: look at its connection, its power and its firmware.",
+        times,
+    ).format(count=say_count(times), window=window, ago=say_days(max(1, ago)))
+
+
+def cool_again(days: int) -> str:
+    """A drift of temperature ends on evidence."""
+    return _(
+        "For {days} it has not run hotter than its norm, and no evidence of it is left: that finding ends. It "
+        "is no promise for the next hot days."
+    ).format(days=say_days(days))
+
+
 def no_smart() -> str:
     """A virtual disk: there is nothing to read."""
     return _("A virtual disk has no readings of its own (no SMART): it is watched by its traffic alone.")

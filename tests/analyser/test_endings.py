@@ -1,4 +1,6 @@
+from diskwatch.judge.rules import COOL
 from diskwatch.records import CallWord
+from diskwatch.trends.temperature import THRESHOLD
 from tests.analyser.lives import kinds, lived
 from tests.samples import DAY, NOON, read
 
@@ -53,3 +55,28 @@ def test_the_odds_rule_stands_until_the_owner_speaks():
         *(read(NOON + day * DAY, pending_sectors=0, reallocated_sectors=40) for day in range(2, 400)),
     ]
     assert lived(*worse)[-1].call.word is CallWord.COPY
+
+
+def warm(*celsius):
+    return [read(NOON + day * DAY, temperature=one, crc_errors=0) for day, one in enumerate(celsius)]
+
+
+def test_running_hot_ends_two_weeks_after_its_evidence_left_the_threshold_once_none_is_left():
+    steps = lived(*warm(*[35, 36] * 20, *[58] * 20, *[36] * 40))
+    hot = [day for day, step in enumerate(steps) if "drift:temperature" in step.state.standing]
+    alarmed = [day for day, step in enumerate(steps) if step.evidence.get("temperature", 0) >= THRESHOLD]
+    assert hot == list(range(alarmed[0], alarmed[-1] + COOL))
+    over = steps[hot[-1] + 1]
+    assert kinds(over) == ["ended", "call"]
+    assert over.call.word is CallWord.KEEP
+
+
+def test_days_close_to_the_norm_do_not_end_it():
+    steps = lived(*warm(*[35, 36] * 20, *[58] * 20, *[49] * 60))
+    assert steps[-1].call.rule == "drift:temperature"
+
+
+def test_a_drive_that_lay_unread_is_still_taken_for_hot():
+    hot = warm(*[35, 36] * 20, *[58] * 20)
+    later = read(NOON + 200 * DAY, temperature=36, crc_errors=0)
+    assert lived(*hot, later)[-1].call.rule == "drift:temperature"

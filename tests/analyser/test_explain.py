@@ -60,3 +60,9 @@ def test_a_standing_copy_says_that_it_does_not_fall_by_itself():
     state = analyser.advance(analyser.start(), read(NOON, reallocated_sectors=0, pending_sectors=0)).state
     step = analyser.advance(state, read(NOON + DAY, reallocated_sectors=0, pending_sectors=9))
     assert "does not fall by itself" in analyser.explain(step.state).would_change[0]
+
+
+def test_a_call_that_rests_on_temperature_says_what_ends_it():
+    hot = [read(NOON + day * DAY, temperature=36 if day < 40 else 58) for day in range(60)]
+    (first, *_) = analyser.explain(lived(*hot)[-1].state).would_change
+    assert first.startswith("The call falls when no evidence of running hot is left, at the earliest 14 days")

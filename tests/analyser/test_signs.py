@@ -2,7 +2,7 @@ import pytest
 
 from diskwatch.records import CallWord, Cause, Failing, Outcome
 from tests.analyser.lives import lived
-from tests.samples import DAY, NOON, NVME, attribute, missed, read
+from tests.samples import DAY, HDD, NOON, NVME, SSD, attribute, missed, read
 
 
 def test_crc_errors_beyond_their_norm_and_quiet_media_are_the_link():
@@ -64,3 +64,21 @@ def test_the_cause_stands_while_the_drive_is_not_read():
         missed(NOON + DAY + 60, Outcome.ASLEEP),
     )
     assert steps[-1].call == steps[-2].call
+
+
+def test_that_no_read_was_given_up_counts_once_where_no_sector_waits_either():
+    quiet = {"pending_sectors": 0, "reported_uncorrectable": 0}
+    drift = lived(*(read(NOON + day * DAY, crc_errors=day // 10, **quiet) for day in range(60)))[-1]
+    assert drift.state.signs["media counter"] is False
+    assert "uncorrectable event" not in drift.state.signs
+
+
+@pytest.mark.parametrize(
+    ("drive", "built"),
+    [(HDD, {"turning platters"}), (SSD, {"no platters"}), (NVME, {"no platters", "no cable"})],
+)
+def test_what_a_drive_is_built_like_is_a_sign_as_far_as_it_is_known(drive, built):
+    steps = lived(*(read(NOON + day * DAY, drive, crc_errors=day // 10) for day in range(60)))
+    assert {
+        one for one in steps[-1].state.signs if one in {"turning platters", "no platters", "no cable"}
+    } == built
