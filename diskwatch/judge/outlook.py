@@ -4,6 +4,12 @@ Two things can be worked out. Where a signal moves towards a limit, its forecast
 into the time. Where a counter is followed, the law of its waiting times says how likely a fresh occasion is.
 Whether the drive fails is not among them: the open data reach 30 days, and nothing honest follows from them for
 two years.
+
+A chance of fresh trouble speaks of all drives that were as quiet for as long, by a law that was assumed for
+drives in use (`diskwatch.trends.waiting`). Among drives of that law it comes true; a drive that is calmer by
+nature, as invented ones without an event are, is told more than comes to it, since nothing in a short quiet
+time tells it from the others. On 61 calm drives of rehearsals 7.8 % were said and one occasion came, 1.6 %
+(95 % by Clopper and Pearson: 0.04 to 8.8 %).
 """
 
 from collections.abc import Iterable, Mapping

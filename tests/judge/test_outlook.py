@@ -1,8 +1,13 @@
+from math import expm1
+from random import Random
+
 import pytest
 from hypothesis import given, strategies as st
 
 from diskwatch.judge.outlook import DAYS, outlook
 from diskwatch.records import Forecast
+from diskwatch.trends import episodes
+from diskwatch.trends.norms import NORMS
 from diskwatch.trends.waiting import chance_while_sound
 from tests.analyser.lives import lived
 from tests.samples import DAY, NOON, read
@@ -82,3 +87,48 @@ def test_a_longer_time_never_brings_less(first, second, episodes):
     short, long = sorted((first, second))
     (a,), (b,) = (ahead(state=state, day=FIRST + 99, days=days).fresh for days in (short, long))
     assert a.chance <= b.chance
+
+
+def population(drives, days, *, rates):
+    """Chances of a fresh occasion in as many days to come, and whether one came, for drives of steady rates.
+
+    Args:
+        drives: how many.
+        days: days of watching, and as many to come.
+        rates: gives each drive's occasions a day.
+    """
+    chance = Random(3)  # noqa: S311 - a simulation, seeded so that it repeats itself
+    norm = NORMS[0]
+    for _ in range(drives):
+        occasion = -expm1(-rates(chance))
+        stream = episodes.begin(FIRST)
+        for day in range(FIRST, FIRST + 2 * days):
+            if day > FIRST:
+                stream = episodes.next_day(stream, day=day, exposure=1.0, norm_per_day=norm.per_day)
+            if chance.random() < occasion:
+                stream = episodes.rise(stream, norm_per_day=norm.per_day)
+            if day == FIRST + days - 1:
+                (fresh,) = outlook({"media": stream}, {}, (), first_day=FIRST, day=day, days=days).fresh
+        yield fresh.chance, stream.episodes > fresh.episodes
+
+
+def told_and_came(cases):
+    """How often it was expected, and how often it came."""
+    said, came = zip(*cases, strict=True)
+    return sum(said) / len(said), sum(came) / len(came)
+
+
+def test_chances_come_true_among_drives_whose_rates_scatter_as_the_law_has_it():
+    """Within three standard errors, for drives that had no occasion yet and for those that had, apart."""
+    cases = list(population(400, 150, rates=lambda chance: chance.gammavariate(0.5, 1 / 365.25)))
+    quiet = min(said for said, _ in cases)
+    for part in ([one for one in cases if one[0] == quiet], [one for one in cases if one[0] > quiet]):
+        said, came = told_and_came(part)
+        assert len(part) >= 30
+        assert abs(said - came) <= 3 * (said * (1 - said) / len(part)) ** 0.5
+
+
+def test_a_drive_that_is_calmer_than_most_is_told_more_than_comes_to_it():
+    """Its chance is that of all drives which were as quiet for as long: nothing tells it from these."""
+    said, came = told_and_came(population(150, 150, rates=lambda _chance: 0.02 / 365.25))
+    assert came <= 0.03 < said < 0.2
