@@ -155,6 +155,9 @@ def shown(state: DriveState, pass_: Pass, around: Around) -> Mapping[str, bool |
             told[sign] = True
     if "fact:self-assessment" in state.standing and (reading.number("grown-defects") or 0) > 0:
         told["media counter"] = True
+    if told["late probe reads"] and told.get("reads slower") is False:
+        # One read in a hundred that takes turns more is far below what traffic can show: no word for anybody.
+        told["reads slower"] = None
     harmed = any(told.get(sign) for sign in _DEFECTS)
     told["vanished without media error"] = None if harmed else _comes_and_goes(state, day)
     # Two absences that have one reason count once: a read given up leaves a sector that waits, and what a probe

@@ -166,6 +166,7 @@ class Scenario(Table, frozen=True, kw_only=True):
         step_minutes: span of time that is lived through at once.
         every_hours: time between two rounds of readings.
         backup_hour: hour of the day at which backups begin; whole ones on Saturdays.
+        probe: whether its owner lets idle disks be probed.
         strip: the power strip that feeds the machine itself: where that fails, all of it starts anew.
         room: where it stands.
         bay: its bays; one that a drive names and that is not here is a plain one.
@@ -184,6 +185,7 @@ class Scenario(Table, frozen=True, kw_only=True):
     step_minutes: Annotated[int, msgspec.Meta(ge=1, le=360)] = 60
     every_hours: Annotated[int, msgspec.Meta(ge=1, le=24)] = 6
     backup_hour: Annotated[int, msgspec.Meta(ge=0, le=23)] = 13
+    probe: bool = False
     strip: Text = "wall"
     room: RoomSpec = RoomSpec()
     bay: Annotated[tuple[BaySpec, ...], msgspec.Meta(max_length=64)] = ()

@@ -1,7 +1,10 @@
+from dataclasses import replace
+
 import pytest
 
 from diskwatch import analyser
 from diskwatch.records import CallWord, Cause, Entry, ProbeDay, Settled
+from diskwatch.trends.latency_now import LatencyNow
 from diskwatch.units import DAY
 from tests.samples import HDD, read
 from tests.trends.probes import seeded
@@ -45,6 +48,19 @@ def test_the_next_reading_names_the_head_as_the_likeliest_cause(weak):
     assert step.call.cause is Cause.HEAD
     assert step.evidence["late-reads"] == step.state.probe.late.ledger.evidence
     assert "probe-latency" in step.evidence
+
+
+def test_that_traffic_is_no_slower_does_not_clear_a_head_of_late_reads(weak):
+    seen = LatencyNow(
+        evidence=0.5, scored=40, classes=3, usual_us=6_000, shift=0.0, tolerance=0.2, onset=None,
+        follows_heat=None, twice=None, seen_on=123,
+    )  # fmt: skip  # one row
+    both = {"read-latency": seen, "write-latency": seen}
+    step = analyser.advance(replace(weak[0], latency=both), read(124 * DAY, HDD, crc_errors=0))
+    assert "reads slower" not in step.state.signs
+    assert step.state.signs["writes slower"] is False
+    assert step.call is not None
+    assert step.call.cause is Cause.HEAD
 
 
 def test_late_reads_of_long_ago_are_no_sign_any_more(weak):
