@@ -66,7 +66,7 @@ def check(path: Path, *, thorough: bool, stop: Stop) -> Checked:
     """
     pragma = "integrity_check" if thorough else "quick_check"
     try:
-        with _reading(path) as connection:
+        with reading(path) as connection:
             connection.set_progress_handler(stop, _STEPS)
             found = connection.execute(f"PRAGMA {pragma}({_MOST_NAMED})").fetchall()
     except sqlite3.Error as error:
@@ -165,13 +165,13 @@ def lay_copy(source: Path, making: Path, stop: Stop) -> bool:
     """
     os.close(os.open(making, os.O_WRONLY | os.O_CREAT | os.O_EXCL | os.O_CLOEXEC, 0o644))
     try:
-        with _reading(source) as reading, closing(sqlite3.connect(making)) as writing:
+        with reading(source) as old, closing(sqlite3.connect(making)) as writing:
             # Within one read transaction all chunks are of one moment, and a commit of the watch does not begin
             # the copy anew.
-            reading.execute("BEGIN")
-            reading.execute("SELECT count(*) FROM sqlite_master").fetchone()
-            reading.backup(writing, pages=_PAGES, progress=lambda *_: _breathe(stop), sleep=_PAUSE)
-            reading.execute("ROLLBACK")
+            old.execute("BEGIN")
+            old.execute("SELECT count(*) FROM sqlite_master").fetchone()
+            old.backup(writing, pages=_PAGES, progress=lambda *_: _breathe(stop), sleep=_PAUSE)
+            old.execute("ROLLBACK")
             # One file that needs no log beside it, so that it can be carried away.
             writing.execute("PRAGMA journal_mode = DELETE")
     except _StoppedError:
@@ -205,7 +205,8 @@ def give_name(making: Path, made: Path) -> None:
 
 
 @contextmanager
-def _reading(path: Path) -> Iterator[sqlite3.Connection]:
+def reading(path: Path) -> Iterator[sqlite3.Connection]:
+    """A connection of its own to a history, which changes nothing."""
     # Where no log lies beside it, nobody is writing it: read alone, nothing has to be laid beside it.
     alone = not path.with_name(f"{path.name}-wal").exists()
     uri = path.resolve().as_uri() + ("?mode=ro&immutable=1" if alone else "?mode=ro")

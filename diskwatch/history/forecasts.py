@@ -9,6 +9,21 @@ from diskwatch.records import Forecast, LimitSource
 
 _COLUMNS = "signal, made_on_day, at_limit, limit_from, low, high, probability, reason"
 
+# From one signal to the next by the key: of years of forecasts none but the latest is looked at.
+_LATEST = f"""
+    WITH RECURSIVE named (drive, signal) AS (
+        SELECT number, (SELECT min(signal) FROM forecast WHERE drive = number) FROM drive
+        UNION ALL
+        SELECT drive, (SELECT min(signal) FROM forecast AS other
+            WHERE other.drive = named.drive AND other.signal > named.signal)
+        FROM named WHERE signal IS NOT NULL
+    )
+    SELECT drive, {_COLUMNS} FROM forecast JOIN named USING (drive, signal)
+    WHERE made_on_day = (SELECT max(made_on_day) FROM forecast AS other
+        WHERE other.drive = named.drive AND other.signal = named.signal)
+    ORDER BY drive, signal
+"""  # noqa: S608  # our own columns
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Kept:
@@ -45,12 +60,8 @@ def write_forecasts(connection: sqlite3.Connection, drive: int, made: Iterable[F
 def latest_forecasts(connection: sqlite3.Connection) -> dict[int, tuple[Forecast, ...]]:
     """The latest forecast about each signal, by the drive's number."""
     found: dict[int, list[Forecast]] = {}
-    for drive, *row in connection.execute(
-        f"SELECT drive, {_COLUMNS} FROM forecast AS one WHERE made_on_day = (SELECT max(made_on_day)"  # noqa: S608  # likewise
-        " FROM forecast AS other WHERE other.drive = one.drive AND other.signal = one.signal)"
-        " ORDER BY drive, signal"
-    ):
-        found.setdefault(drive, []).append(_forecast(tuple(row)))
+    for drive, *row in connection.execute(_LATEST):
+        found.setdefault(drive, []).append(forecast(tuple(row)))
     return {drive: tuple(forecasts) for drive, forecasts in found.items()}
 
 
@@ -60,7 +71,7 @@ def kept_forecasts(connection: sqlite3.Connection, drive: int) -> tuple[Kept, ..
         f"SELECT {_COLUMNS}, reached FROM forecast WHERE drive = ? ORDER BY signal, made_on_day",  # noqa: S608  # likewise
         (drive,),
     ).fetchall()
-    return tuple(Kept(forecast=_forecast(row[:-1]), reached=row[-1]) for row in found)
+    return tuple(Kept(forecast=forecast(row[:-1]), reached=row[-1]) for row in found)
 
 
 def _row(one: Forecast) -> tuple[rows.Cell, ...]:
@@ -76,7 +87,8 @@ def _row(one: Forecast) -> tuple[rows.Cell, ...]:
     )
 
 
-def _forecast(row: rows.Row) -> Forecast:
+def forecast(row: rows.Row) -> Forecast:
+    """From ``signal, made_on_day, at_limit, limit_from, low, high, probability, reason``."""
     signal, made_on_day, limit, limit_from, low, high, probability, reason = row
     return Forecast(
         signal=signal,

@@ -3,7 +3,7 @@
 import json
 import sqlite3
 from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from diskwatch.history import packing
 from diskwatch.history.arriving import Arrived, Described, take_in
@@ -104,30 +104,52 @@ def arrive(connection: sqlite3.Connection, part: Part, judge: Judge) -> Arrived:
     known = part.known or admit(connection, there.drive, there.place, there.first_seen)
     copies = dated_states(connection, known.number)
     arrived = take_in(connection, known.number, part.lines)
-    judged = judge(
-        Case(
-            known=known,
-            copies=copies,
-            arrived=arrived,
-            probes=lambda after: probes(connection, known.number, after=after),
-            passes=lambda after: passes_with_readings(connection, known.number, after),
-            words=tuple(_words(connection, known.number)),
-        )
-    )
+    judged = judge(replace(case_of(connection, known, arrived), copies=copies))
     if judged is not None:
-        if judged.anew:
-            connection.execute("DELETE FROM kept_state WHERE drive = ?", (known.number,))
-        elif judged.since is not None:
-            connection.execute(
-                "DELETE FROM kept_state WHERE drive = ? AND (turn, at) > (?, ?)",
-                (known.number, judged.since.turn, judged.since.at),
-            )
-        connection.executemany(
-            "INSERT OR REPLACE INTO kept_state (drive, at, packed, turn) VALUES (?, ?, ?, ?)",
-            [(known.number, one.at, packing.packed(one.state), one.turn) for one in judged.copies],
-        )
-        write_judgement(connection, judged.part, judged.part.pass_.at)
+        keep_judged(connection, known.number, judged)
     return arrived
+
+
+def case_of(connection: sqlite3.Connection, known: KnownDrive, arrived: Arrived) -> Case:
+    """What there is to judge a drive by.
+
+    Args:
+        connection: within a transaction, which must not have ended when the case is judged.
+        known: the drive.
+        arrived: what came from elsewhere.
+
+    Raises:
+        sqlite3.Error: the history cannot be read.
+        ValueError: it holds what cannot be right.
+    """
+    return Case(
+        known=known,
+        copies=dated_states(connection, known.number),
+        arrived=arrived,
+        probes=lambda after: probes(connection, known.number, after=after),
+        passes=lambda after: passes_with_readings(connection, known.number, after),
+        words=tuple(_words(connection, known.number)),
+    )
+
+
+def keep_judged(connection: sqlite3.Connection, number: int, judged: Judged) -> None:
+    """Keep what is thought of a drive now, with its dated states.
+
+    Raises:
+        sqlite3.Error: it could not be written; the caller undoes the transaction.
+    """
+    if judged.anew:
+        connection.execute("DELETE FROM kept_state WHERE drive = ?", (number,))
+    elif judged.since is not None:
+        connection.execute(
+            "DELETE FROM kept_state WHERE drive = ? AND (turn, at) > (?, ?)",
+            (number, judged.since.turn, judged.since.at),
+        )
+    connection.executemany(
+        "INSERT OR REPLACE INTO kept_state (drive, at, packed, turn) VALUES (?, ?, ?, ?)",
+        [(number, one.at, packing.packed(one.state), one.turn) for one in judged.copies],
+    )
+    write_judgement(connection, judged.part, judged.part.pass_.at)
 
 
 def dated_states(connection: sqlite3.Connection, drive: int) -> tuple[Dated, ...]:

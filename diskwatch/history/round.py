@@ -3,7 +3,7 @@
 import sqlite3
 from collections.abc import Iterable
 
-from diskwatch.errors import HistoryError
+from diskwatch.errors import HistoryUnfit
 from diskwatch.history import packing, rows
 from diskwatch.history.answers import write_answer
 from diskwatch.history.counting import count, counted_before
@@ -30,7 +30,7 @@ def write_round(connection: sqlite3.Connection, round_: Round) -> None:
 
     Raises:
         sqlite3.Error: it could not be written; the caller undoes the transaction.
-        HistoryError: it speaks of a drive by another one's number; likewise.
+        HistoryUnfit: it speaks of a drive by another one's number; likewise.
     """
     if _there_already(connection, round_):
         for part in round_.drives:
@@ -51,6 +51,15 @@ def write_entries(connection: sqlite3.Connection, entries: Iterable[Entry]) -> N
     )
 
 
+def known_drives(connection: sqlite3.Connection) -> tuple[KnownDrive, ...]:
+    """All drives that were ever seen, in the order of their numbers."""
+    found = connection.execute(
+        "SELECT number, wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
+        " device, bay, lives_here, first_seen FROM drive ORDER BY number"
+    ).fetchall()
+    return tuple(rows.known_drive(row) for row in found)
+
+
 def admit(connection: sqlite3.Connection, drive: Drive, place: Place, at: int) -> KnownDrive:
     """Take up a drive that was never seen before, first seen at a time in UTC seconds since 1970."""
     (number,) = connection.execute(
@@ -61,6 +70,28 @@ def admit(connection: sqlite3.Connection, drive: Drive, place: Place, at: int) -
     ).fetchone()
     write_place(connection, number, place, at)
     return KnownDrive(number=number, drive=drive, place=place, first_seen=at)
+
+
+def write_alone(connection: sqlite3.Connection, part: DriveRound) -> None:
+    """Write a drive with what is thought of it, and no pass, where this history does not know it yet."""
+    known, at = part.known, part.pass_.at
+    written = connection.execute(
+        "INSERT INTO drive (wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
+        " device, bay, lives_here, number, first_seen) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)"
+        " ON CONFLICT (number) DO NOTHING",
+        (*rows.drive_row(known.drive, known.place), known.number, known.first_seen),
+    )
+    if written.rowcount != 1:
+        return
+    write_place(connection, known.number, known.place, at)
+    if part.state is not None:
+        write_judgement(connection, part, at)
+        # The passes that led to it stand elsewhere: from here on it can be worked out again.
+        connection.execute(
+            "INSERT INTO kept_state (drive, at, packed, turn)"
+            " SELECT drive, at, packed, turn FROM analyser_state WHERE drive = ?",
+            (known.number,),
+        )
 
 
 def write_place(connection: sqlite3.Connection, number: int, place: Place, at: int) -> None:
@@ -162,7 +193,7 @@ def _write_drive(
     )
     if written.rowcount != 1:
         # A watch that could not read the history counted from one: its drives must not grow onto these.
-        raise HistoryError(
+        raise HistoryUnfit(
             f"drive number {known.number} is another drive in the history",
             hint="start the watch again, so that it knows the drives that are in it",
         )

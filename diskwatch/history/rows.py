@@ -42,7 +42,8 @@ _SMALLEST, _LARGEST = -(2**63), 2**63 - 1
 
 def text(words: str) -> str:
     """Text as SQLite can keep it: halves of surrogate pairs, which UTF-8 does not know, become escapes."""
-    return words.encode("utf-8", "backslashreplace").decode("utf-8")
+    # Nearly all of it is plain, and each round asks hundreds of times.
+    return words if words.isascii() else words.encode("utf-8", "backslashreplace").decode("utf-8")
 
 
 def text_or_none(words: str | None) -> str | None:
@@ -83,7 +84,8 @@ def value(kept: Any) -> int | str | None:
     raise ValueError(f"no whole number or word: {kept!r}")
 
 
-def _number(kept: Any) -> int | None:
+def number(kept: Any) -> int | None:
+    """A whole number from its column."""
     found = value(kept)
     if isinstance(found, str):
         raise ValueError(f"no whole number: {found!r}")  # noqa: TRY004  # the file is wrong, not our caller
@@ -125,26 +127,33 @@ def drive_row(drive: Drive, place: Place) -> tuple[Cell, ...]:
 
 def known_drive(row: Row) -> KnownDrive:
     """From ``number``, the columns of `drive_row`, ``first_seen``."""
-    (number, wwn, model, serial, path, kind, firmware, capacity, rotation, device, bay, lives_here, first) = row
+    (which, wwn, model, serial, path, kind, firmware, capacity, rotation, device, bay, lives_here, first) = row
     return KnownDrive(
-        number=number,
+        number=which,
         drive=Drive(
             identity=Identity(wwn=name(wwn), model=name(model), serial=name(serial), path=name(path) or ""),
             kind=Kind(kind),
             firmware=firmware,
-            capacity_bytes=_number(capacity),
-            rotation_rpm=_number(rotation),
+            capacity_bytes=number(capacity),
+            rotation_rpm=number(rotation),
         ),
         place=Place(
             device=device,
             bay=bay,
-            lives_here=tuple(
-                Mount(point=point, used_bytes=used, total_bytes=total)
-                for point, used, total in json.loads(lives_here)
-            ),
+            lives_here=mounts(lives_here),
         ),
         first_seen=first,
     )
+
+
+def mounts(kept: str) -> tuple[Mount, ...]:
+    """What lives on a drive, from its column."""
+    try:
+        return tuple(
+            Mount(point=point, used_bytes=used, total_bytes=total) for point, used, total in json.loads(kept)
+        )
+    except TypeError as error:
+        raise ValueError(f"no mount points: {kept[:80]!r}") from error
 
 
 def last_pass(row: Row) -> LastPass | None:

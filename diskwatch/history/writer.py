@@ -7,21 +7,23 @@ from contextlib import contextmanager, suppress
 from pathlib import Path
 from typing import Self
 
-from diskwatch.history import packing, rows
+from diskwatch.history import packing
 from diskwatch.history.arriving import Arrived
 from diskwatch.history.bays import standing_calls
 from diskwatch.history.beginning import begun, make_file, make_folder, prepared
+from diskwatch.history.checks import Readable
 from diskwatch.history.folding import fold_in, grown
 from diskwatch.history.forecasts import latest_forecasts
 from diskwatch.history.latency import learnt, traffic_days
 from diskwatch.history.library import Database
 from diskwatch.history.listening import left_off, totals, write_listened
 from diskwatch.history.lock import WatchLock
+from diskwatch.history.mending import mend
 from diskwatch.history.mishaps import taken_away, told, unreadable
 from diskwatch.history.moving import Judge, Part, arrive
 from diskwatch.history.opening import refuse_foreign
 from diskwatch.history.probes import probes
-from diskwatch.history.round import admit, write_entries, write_round
+from diskwatch.history.round import admit, known_drives, write_alone, write_entries, write_round
 from diskwatch.history.thinning import thin
 from diskwatch.history.traffic import rollups, uncondensed_day, write_class_days, write_spans
 from diskwatch.places import HISTORY
@@ -29,6 +31,7 @@ from diskwatch.records import (
     Call,
     ClassDay,
     Drive,
+    DriveRound,
     Entry,
     Forecast,
     IoRollup,
@@ -112,11 +115,7 @@ class History:
     def known(self) -> tuple[KnownDrive, ...]:
         """All drives that were ever seen, in the order of their numbers."""
         with self._using() as connection:
-            found = connection.execute(
-                "SELECT number, wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
-                " device, bay, lives_here, first_seen FROM drive ORDER BY number"
-            ).fetchall()
-            return tuple(rows.known_drive(row) for row in found)
+            return known_drives(connection)
 
     def admit(self, drive: Drive, place: Place, at: int) -> KnownDrive:
         """Take up a drive that was never seen before; it gets a number that no other drive ever had.
@@ -128,6 +127,34 @@ class History:
         """
         with self._writing() as connection:
             return admit(connection, drive, place, at)
+
+    def take_up(self, parts: Sequence[DriveRound]) -> None:
+        """Write drives, with what is thought of them, that this history does not know yet.
+
+        Args:
+            parts: one a drive; their passes are not written.
+        """
+        with self._writing() as connection:
+            for part in parts:
+                write_alone(connection, part)
+
+    def mend(self, judge: Judge, readable: Readable, at: int, *, thorough: bool) -> tuple[Entry, ...]:
+        """Take out values that cannot be right, and judge anew what hung on them.
+
+        Args:
+            judge: says what is thought of a drive of which the state or judgement was lost.
+            readable: raises ValueError for a text that is no state of the analyser.
+            at: now, UTC seconds since 1970.
+            thorough: whether to look at all tables, and not only at those that a watch begins with.
+
+        Returns:
+            What the day book says of it now; nothing where nothing was wrong.
+        """
+        with self._writing() as connection:
+            try:
+                return mend(connection, judge, readable, at, thorough=thorough)
+            except ValueError as error:
+                raise unreadable(self._path, error) from error
 
     def states(self) -> dict[int, str]:
         """The analyser's state of each drive as last recorded, by the drive's number."""

@@ -1,7 +1,7 @@
 """Pasts of drives that come from another machine: recognised, taken in, judged anew by the same analyser."""
 
 from collections import deque
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from contextlib import suppress
 from dataclasses import dataclass, replace
 
@@ -94,14 +94,17 @@ def judged(case: Case) -> Judged | None:
     """
     if case.arrived.new_from is None:
         return None
-    states = [
-        *(one for one in case.copies if one.at < case.arrived.new_from),
-        *(
-            one
-            for one in case.arrived.states
-            if case.arrived.own_from is None or one.at < case.arrived.own_from
-        ),
-    ]
+    new, own = case.arrived.new_from, case.arrived.own_from
+    here = (one for one in case.copies if one.at < new)
+    return _from_the_newest(case, (*here, *(one for one in case.arrived.states if own is None or one.at < own)))
+
+
+def reworked(case: Case) -> Judged | None:
+    """What is thought of a drive whose present state was lost: by the newest dated one and the passes since."""
+    return _from_the_newest(case, case.copies)
+
+
+def _from_the_newest(case: Case, states: Iterable[Dated]) -> Judged | None:
     for dated in sorted(states, reverse=True):
         # One that a newer version wrote, or that is no state at all, is no beginning.
         with suppress(ValueError, HistoryTooNew):
@@ -123,17 +126,44 @@ def _from(case: Case, since: Dated | None, state: analyser.DriveState) -> Judged
         turn, last, outcome = now, told.at, told.outcome
     if last is None:
         return None
-    state = _settled(state, words, None)
+    part = standing(case.known, _settled(state, words, None), last, outcome)
+    return Judged(part=part, since=since, copies=tuple(copies), anew=since is None)
+
+
+def standing(known: KnownDrive, state: analyser.DriveState, at: int, outcome: Outcome | None) -> DriveRound:
+    """What is thought of a drive by its state, without a pass that led to it.
+
+    Args:
+        known: the drive.
+        state: its state.
+        at: time of its last pass, UTC seconds since 1970.
+        outcome: how that pass went, or None.
+    """
     step = analyser.Step(state=state, happened=())
-    part = DriveRound(
-        known=case.known,
-        pass_=Pass(at=last, outcome=outcome or Outcome.READ),
+    return DriveRound(
+        known=known,
+        pass_=Pass(at=at, outcome=outcome or Outcome.READ),
         state=analyser.dump(state),
         findings=step.findings,
         evidence=step.evidence,
         call=step.call,
     )
-    return Judged(part=part, since=since, copies=tuple(copies), anew=since is None)
+
+
+def thought_of(known: KnownDrive, kept: str | None) -> DriveRound:
+    """What is thought of a drive by its state as text; the drive alone where there is none that can be read."""
+    if kept is not None:
+        with suppress(ValueError, HistoryTooNew):
+            state = analyser.load(kept)
+            at = known.first_seen if state.last_at is None else state.last_at
+            return standing(known, state, at, state.outcome)
+    return DriveRound(known=known, pass_=Pass(at=known.first_seen, outcome=Outcome.READ), state=None)
+
+
+def refuse_no_state(text: str) -> None:
+    """Raise ValueError for a text that is no state; one that a newer version wrote is not ours to judge."""
+    with suppress(HistoryTooNew):
+        analyser.load(text)
 
 
 def _probed(

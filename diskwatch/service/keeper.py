@@ -4,10 +4,9 @@ A full disk, a read-only mount or a vanished folder must not silence a warning. 
 here, bounded, and is written when the trouble is over; what the trouble is can be asked at any time.
 """
 
-from collections import deque
+import time
 from collections.abc import Callable, Sequence
 from contextlib import suppress
-from dataclasses import replace
 from pathlib import Path
 from typing import TypeVar
 
@@ -15,16 +14,19 @@ from diskwatch.errors import (
     DiskwatchError,
     HistoryDamaged,
     HistoryError,
+    HistoryGarbled,
+    HistoryGone,
     HistoryHeld,
     HistoryTooNew,
+    HistoryUnfit,
     NothingToWorkOn,
 )
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
-from diskwatch.places import HISTORY
 from diskwatch.records import (
     Drive,
     DriveLine,
+    DriveRound,
     Entry,
     IoSpan,
     KnownDrive,
@@ -33,9 +35,10 @@ from diskwatch.records import (
     Place,
     Round,
 )
-
-MOST_WAITING = 2_000
-"""Writes that wait at most; half-hourly rounds of a whole month fit."""
+from diskwatch.service.arrival import refuse_no_state, reworked, thought_of
+from diskwatch.service.joining import join, strangers
+from diskwatch.service.waiting import MOST_WAITING, Notes, Traffic, Waiting, Write, called, store
+from diskwatch.units import plain, say_count
 
 _Answer = TypeVar("_Answer")
 
@@ -46,16 +49,21 @@ class Keeper:
     One thread at a time may use it; the service gives it a lock of its own.
     """
 
-    def __init__(self, folder: Path) -> None:
+    def __init__(self, folder: Path, *, now: Callable[[], int] = lambda: int(time.time())) -> None:
         """Open the history, or go on without it.
+
+        Args:
+            folder: where it lies.
+            now: UTC seconds since 1970, for what is said of the history itself.
 
         Raises:
             HistoryTooNew: the file was written by a newer version and must be left alone.
             HistoryHeld: another process writes it.
         """
         self._folder = folder
+        self._now = now
         self._history: History | None = None
-        self._waiting: deque[Callable[[History], None]] = deque(maxlen=MOST_WAITING)
+        self._waiting = Waiting(MOST_WAITING)
         self._trouble: str | None = None
         self._damaged = False
         self._away = False
@@ -75,34 +83,65 @@ class Keeper:
             self._remember_what_can_be_read()
 
     def _take_up(self, history: History) -> None:
+        """Go on with a history; where its past cannot be read, it is let go of again and nothing is written."""
+        try:
+            history.mend(reworked, refuse_no_state, self._now(), thorough=False)
+            self._join(history)
+        except BaseException:
+            with suppress(DiskwatchError):
+                history.close()
+            raise
         self._history = history
+
+    def _join(self, history: History) -> None:
         known = {one.number: one for one in history.known()}
-        if self._blind and known:
-            # Numbers and states were begun anew without this past, which is worth more than what waits.
-            lost, at = len(self._waiting), max((one.first_seen for one in self._known.values()), default=0)
-            self._waiting.clear()
-            self._known, self._states, self.epoch = {}, {}, self.epoch + 1
-            text = (
-                f"The history came into reach late; {lost} writes from before that were given up for its past."
-            )
-            history.note(Entry(at=at, drive=None, kind="trouble", text=text))
+        if known and (self._blind or strangers(known, self._known)):
+            joined = join(history, self._known, self._waiting)
+            self._waiting.become(joined.writes)
+            self._known, self._states = dict(joined.known), dict(joined.states)
+            self.epoch += 1
+            if joined.writes:
+                count = say_count(len(joined.writes))
+                self._say(
+                    f"The history came into reach late; {count} writes that waited were joined to its past."
+                )
+        else:
+            if not known and self._known and not self._blind:
+                history.take_up(self._standing())
+                self._say(
+                    "The history that was written before is no longer there, and a new one was begun;"
+                    f" what is thought of {say_count(len(self._known))} drives goes on, without their past."
+                )
+            self._known = known | self._known
+            self._states = history.states() | self._states
         self._blind = False
-        self._known = known | self._known
-        self._states = dict(history.states()) | self._states
+
+    def _say(self, text: str) -> None:
+        self._waiting.append(
+            Notes(entries=(Entry(at=self._now(), drive=None, kind="trouble", text=plain(text)),))
+        )
+
+    def _standing(self) -> tuple[DriveRound, ...]:
+        """What is thought of each drive, for a history that does not know it."""
+        return tuple(thought_of(known, self._states.get(number)) for number, known in self._known.items())
 
     def _remember_what_can_be_read(self) -> None:
         """A history that cannot be written may still be read: its past is what a judgement rests on."""
         try:
             with Past.open(self._folder) as past:
                 self._known = {line.number: _known(line) for line in past.bays(0).every}
-                self._states = {number: text for number in self._known if (text := past.state(number))}
+                for number in self._known:
+                    # Of a state that cannot be read nothing is known; the others are none the worse for it.
+                    with suppress(HistoryGarbled):
+                        text = past.state(number)
+                        self._states |= {} if text is None else {number: text}
         except (NothingToWorkOn, HistoryError):
             self._blind = True
 
     @property
     def trouble(self) -> str | None:
         """What keeps the history from being written, one sentence; None where nothing does."""
-        return self._trouble
+        return None if self._trouble is None else f"{self._trouble}{self._waiting.told()}"
 
     @property
     def damaged(self) -> bool:
@@ -135,18 +174,16 @@ class Keeper:
             self._known[one.known.number] = one.known
             if one.state is not None:
                 self._states[one.known.number] = one.state
-        # Answers in full would fill the memory while the history is out of reach: they are worth no waiting.
-        kept = finished if self._history is not None and not self._waiting else _without_answers(finished)
-        self._write(lambda history: history.record(kept))
+        self._write(finished)
 
     def add_traffic(self, spans: Sequence[IoSpan]) -> None:
         """Keep traffic."""
         if spans:
-            self._write(lambda history: history.add_traffic(spans))
+            self._write(Traffic(spans=tuple(spans)))
 
     def listen(self, listened: Listened) -> None:
         """Keep what was heard in the kernel's log."""
-        self._write(lambda history: history.listen(listened))
+        self._write(listened)
 
     def left_off(self, source: str) -> tuple[LeftOff, str] | None:
         """How far a log was read, and what was gathered of troubles under way; None where that is not known."""
@@ -163,7 +200,7 @@ class Keeper:
     def note(self, *entries: Entry) -> None:
         """Keep day-book entries that belong to no round."""
         if entries:
-            self._write(lambda history: history.note(*entries))
+            self._write(Notes(entries=entries))
 
     def ask(self, question: Callable[[History], _Answer]) -> _Answer | None:
         """Ask the history something, or let it do something that need not be done now.
@@ -192,14 +229,20 @@ class Keeper:
         self.epoch += 1
         return answer
 
+    def mend(self) -> None:
+        """Take out of the history what cannot be right; what is remembered here goes on.
+
+        Raises:
+            HistoryError: it cannot be read or written.
+        """
+        if self._history is not None:
+            self._history.mend(reworked, refuse_no_state, self._now(), thorough=True)
+
     def let_go(self, trouble: str) -> None:
         """Let go of the file until `come_back`, so that it can be mended; all waits, this is the trouble."""
         self._trouble = trouble
         self._away = True
-        if self._history is not None:
-            with suppress(DiskwatchError):
-                self._history.close()
-            self._history = None
+        self._part()
 
     def come_back(self) -> None:
         """Take up the history again that was let go, and write what waits."""
@@ -219,48 +262,68 @@ class Keeper:
             self._history.close()
             self._history = None
 
-    def _write(self, deed: Callable[[History], None]) -> None:
+    def _write(self, write: Write) -> None:
         if self._closed:
             return
-        self._waiting.append(deed)
+        self._waiting.append(write)
         self._flush()
+        if self._waiting:
+            self._waiting.lighten()
 
     def _flush(self) -> None:
         if self._away:
             return
         try:
-            if self._history is None:
-                self._take_up(History.open(self._folder))
-            while self._history is not None and self._waiting:
-                self._first_of_those_waiting(self._history)
+            try:
+                self._store_all()
+            except HistoryGone:
+                # Another file stands there now, or none, or the same one again on a disk mounted anew.
+                self._part()
+                self._store_all()
             self._trouble = None
             self._damaged = False
         except DiskwatchError as error:
             self._trouble = str(error)
             self._damaged = isinstance(error, HistoryDamaged)
-            if self._history is not None and not (self._folder / HISTORY).exists():
-                # The file was taken away under the watch: begin a new one at the next try.
-                self._history.close()
-                self._history = None
 
-    def _first_of_those_waiting(self, history: History) -> None:
-        deed = self._waiting[0]
+    def _part(self) -> None:
+        """Let go of the file."""
+        if self._history is not None:
+            with suppress(DiskwatchError):
+                self._history.close()
+            self._history = None
+
+    def _store_all(self) -> None:
+        if self._history is None:
+            self._take_up(History.open(self._folder))
+        while self._history is not None and self._waiting:
+            self._store_first(self._history)
+        if self._waiting.given_up:
+            count, self._waiting.given_up = say_count(self._waiting.given_up), 0
+            self._say(f"The history could not be written for long; the oldest {count} writes were given up.")
+            self._store_all()
+
+    def _store_first(self, history: History) -> None:
+        write = self._waiting.first
         try:
-            deed(history)
+            try:
+                store(history, write)
+            except HistoryUnfit:
+                # It may speak of a drive that no round has written yet.
+                history.take_up(self._standing())
+                store(history, write)
+        except HistoryUnfit as error:
+            # It would fit no better later, and all that follows would wait for it for ever.
+            self._waiting.done()
+            self._say(f"Left out, {called(write)}: {error}.")
         except DiskwatchError:
             raise
         except Exception:
             # A fault of our own, not of the disk: it must not stand in the way of all that follows.
-            self._waiting.popleft()
+            self._waiting.done()
             raise
-        self._waiting.popleft()
-
-
-def _without_answers(finished: Round) -> Round:
-    return replace(
-        finished,
-        drives=tuple(replace(one, pass_=replace(one.pass_, answer=None)) for one in finished.drives),
-    )
+        else:
+            self._waiting.done()
 
 
 def _known(line: DriveLine) -> KnownDrive:

@@ -10,12 +10,14 @@ from pathlib import Path
 from threading import Event
 from typing import Literal
 
-from diskwatch.errors import DiskwatchError, HistoryDamaged, HistoryError
+from diskwatch.errors import DiskwatchError, HistoryDamaged, HistoryError, HistoryGarbled
 from diskwatch.history.care import check, copy_due, make_copy
+from diskwatch.history.mending import to_mend
 from diskwatch.history.rescue import rescue
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
 from diskwatch.records import ClassDay, Entry
+from diskwatch.service.arrival import refuse_no_state
 from diskwatch.service.keeper import Keeper
 from diskwatch.trends.load import class_days
 from diskwatch.units import DAY, plain
@@ -83,6 +85,10 @@ class Upkeep:
         except HistoryDamaged as error:
             self._say(f"{error}.")
             self._try(self._mend)
+        except HistoryGarbled as error:
+            self._say(f"{error}.")
+            if step != self._take_out:
+                self._try(self._take_out)
         except DiskwatchError as error:
             self._say(f"The upkeep of the history failed: {error}.")
 
@@ -142,6 +148,13 @@ class Upkeep:
             if thorough:
                 with self._lock:
                     self._keeper.ask(lambda history: history.note_checked(at))
+            if to_mend(path, refuse_no_state):
+                self._take_out()
+
+    def _take_out(self) -> None:
+        """Take out values that cannot be right; that is rare, so nobody minds the wait."""
+        with self._lock:
+            self._keeper.mend()
 
     def _copy(self) -> None:
         at = self._now()

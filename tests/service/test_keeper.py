@@ -1,17 +1,23 @@
 import os
+import shutil
 import sqlite3
 import subprocess
+from contextlib import closing
 from dataclasses import replace
 
 import pytest
 
+from diskwatch import analyser
 from diskwatch.errors import HistoryError, HistoryHeld, HistoryTooNew
 from diskwatch.history.proof import Printed
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
-from diskwatch.records import DriveRound, Entry, Round
+from diskwatch.records import CallWord, DriveRound, Entry, Place, Round
 from diskwatch.service.keeper import Keeper
-from tests.samples import HDD, HERE, NOON, read
+from tests.history.examples import a_span
+from tests.samples import DAY, HDD, HERE, NOON, SSD, read
+
+THERE = Place(device="/dev/sdb", bay="ata-9")
 
 
 def a_round(keeper, at=NOON):
@@ -93,10 +99,13 @@ def test_what_waits_is_bounded(tmp_path, monkeypatch):
     for number in range(9):
         keeper.note(Entry(at=NOON, drive=None, kind="watch", text=str(number)))
     assert keeper.waiting == 5
+    assert "the oldest 4 were given up" in (keeper.trouble or "")
     blocked.unlink()
     keeper.try_again()
     keeper.close()
-    assert entries(blocked) == ["4", "5", "6", "7", "8"]
+    *kept, said = entries(blocked)
+    assert kept == ["4", "5", "6", "7", "8"]
+    assert "the oldest 4 writes were given up" in said
 
 
 def test_a_history_of_a_newer_version_is_refused(tmp_path):
@@ -217,3 +226,192 @@ def test_answers_in_full_are_kept_but_wait_for_nothing(tmp_path):
     with Past.open(tmp_path) as past:
         assert len(past.passes(1)) == 2
         assert past.printed(1) == Printed(at=NOON, text=f"all of {NOON}")
+
+
+def judged(keeper, *passes):
+    """Let passes of drives go through the analyser and into the keeper, as rounds do."""
+    for known, pass_ in passes:
+        kept = keeper.state(known.number)
+        state = analyser.start() if kept is None else analyser.load(kept)
+        step = analyser.advance(state, pass_)
+        part = DriveRound(
+            known=known,
+            pass_=pass_,
+            state=analyser.dump(step.state),
+            findings=step.findings,
+            evidence=step.evidence,
+            call=step.call,
+        )
+        happened = tuple(replace(entry, drive=known.number) for entry in step.happened)
+        keeper.record(Round(at=pass_.at, drives=(part,), entries=happened))
+
+
+def a_past(keeper, begin=NOON):
+    """Two drives over three weeks; the first one has a pending sector from the second week on."""
+    first, second = keeper.admit(HDD, HERE, begin), keeper.admit(SSD, THERE, begin)
+    for day in range(21):
+        at = begin + day * DAY
+        judged(keeper, (first, read(at, HDD, pending_sectors=int(day >= 10))), (second, read(at, SSD)))
+    return first, second
+
+
+def calls(folder):
+    with Past.open(folder) as past:
+        return {line.number: line.call and line.call.word for line in past.bays(NOON).drives}
+
+
+def troubles(folder):
+    with Past.open(folder) as past:
+        return [entry.text for entry in past.day_book(kinds={"trouble"})]
+
+
+def spoil(folder, statement):
+    with closing(sqlite3.connect(folder / "history.db")) as connection, connection:
+        assert connection.execute(statement).rowcount > 0
+
+
+@pytest.mark.parametrize(
+    "spoilt",
+    ["substr(packed, 1, 20) || x'00' || substr(packed, 22)", "x'789c0000'", "x''"],
+)
+def test_a_state_that_cannot_be_read_costs_no_drive_its_past(tmp_path, spoilt):
+    keeper = Keeper(tmp_path)
+    first, second = a_past(keeper)
+    before = {one.number: keeper.state(one.number) for one in (first, second)}
+    keeper.close()
+    stood = calls(tmp_path)
+    assert stood[first.number] is CallWord.LOOK
+    spoil(tmp_path, f"UPDATE analyser_state SET packed = CAST({spoilt} AS BLOB) WHERE drive = {first.number}")  # noqa: S608
+    again = Keeper(tmp_path, now=lambda: NOON)
+    assert again.trouble is None
+    assert {number: again.state(number) for number in before} == before
+    again.close()
+    assert calls(tmp_path) == stood
+    said = troubles(tmp_path)
+    assert len(said) == 2
+    assert "could not be read" in said[0]
+    assert "worked out again" in said[1]
+    Keeper(tmp_path).close()
+    assert troubles(tmp_path) == said
+
+
+def test_a_state_that_was_lost_whole_is_worked_out_again(tmp_path):
+    keeper = Keeper(tmp_path)
+    first, _ = a_past(keeper)
+    before = keeper.state(first.number)
+    keeper.close()
+    spoil(tmp_path, f"DELETE FROM analyser_state WHERE drive = {first.number}")  # noqa: S608
+    again = Keeper(tmp_path)
+    assert again.state(first.number) == before
+    again.close()
+
+
+def test_nothing_is_written_to_a_history_whose_past_cannot_be_read(tmp_path, monkeypatch):
+    keeper = Keeper(tmp_path)
+    first, _ = a_past(keeper)
+    keeper.close()
+
+    def fails(*_args, **_more):
+        raise HistoryError("invented")
+
+    monkeypatch.setattr(History, "states", fails)
+    again = Keeper(tmp_path)
+    assert "invented" in (again.trouble or "")
+    judged(again, (first, read(NOON + 99 * DAY, HDD)))
+    assert again.waiting == 1
+    with Past.open(tmp_path) as past:
+        assert len(past.passes(first.number)) == 21
+    monkeypatch.undo()
+    again.try_again()
+    assert again.trouble is None
+    again.close()
+    with Past.open(tmp_path) as past:
+        assert len(past.passes(first.number)) == 22
+
+
+def test_where_the_folder_vanishes_a_new_history_is_begun_with_what_is_thought_of_the_drives(tmp_path):
+    keeper = Keeper(tmp_path / "state")
+    first, second = a_past(keeper)
+    stood = calls(tmp_path / "state")
+    (tmp_path / "state").rename(tmp_path / "away")
+    keeper.add_traffic([a_span(second.number, NOON + 30 * DAY)])
+    assert (keeper.trouble, keeper.waiting) == (None, 0)
+    assert calls(tmp_path / "state") == stood
+    judged(keeper, (first, read(NOON + 30 * DAY, HDD, pending_sectors=1)))
+    before = keeper.state(first.number)
+    keeper.close()
+    again = Keeper(tmp_path / "state")
+    assert again.state(first.number) == before
+    spoil(tmp_path / "state", f"DELETE FROM analyser_state WHERE drive = {first.number}")  # noqa: S608
+    again.close()
+    # Also from the new file alone the state can be worked out again.
+    last = Keeper(tmp_path / "state")
+    assert last.state(first.number) == before
+    last.close()
+    assert any("a new one was begun" in text for text in entries(tmp_path / "state"))
+
+
+def test_a_history_that_is_put_back_is_taken_up_again(tmp_path):
+    state, away = tmp_path / "state", tmp_path / "away"
+    keeper = Keeper(state)
+    first, _ = a_past(keeper)
+    state.rename(away)
+    judged(keeper, (first, read(NOON + 30 * DAY, HDD, pending_sectors=1)))
+    shutil.rmtree(state)
+    away.rename(state)
+    judged(keeper, (first, read(NOON + 31 * DAY, HDD, pending_sectors=1)))
+    assert (keeper.trouble, keeper.waiting) == (None, 0)
+    keeper.close()
+    with Past.open(state) as past:
+        assert len(past.passes(first.number)) == 22
+
+
+def test_a_write_that_speaks_of_a_drive_that_no_round_has_written_fits_all_the_same(tmp_path):
+    keeper = Keeper(tmp_path)
+    known = keeper.admit(HDD, HERE, NOON)
+    keeper.add_traffic([a_span(known.number)])
+    assert (keeper.trouble, keeper.waiting) == (None, 0)
+    keeper.close()
+
+
+def test_a_write_that_does_not_fit_is_left_out_with_a_word_and_stops_nothing(tmp_path):
+    keeper = Keeper(tmp_path, now=lambda: NOON)
+    keeper.add_traffic([a_span(99)])
+    keeper.note(Entry(at=NOON, drive=None, kind="watch", text="It goes on."))
+    assert (keeper.trouble, keeper.waiting) == (None, 0)
+    keeper.close()
+    said, went_on = entries(tmp_path)
+    assert said.startswith("Left out, a stretch of traffic: ")
+    assert went_on == "It goes on."
+
+
+def test_what_was_seen_before_the_history_came_into_reach_is_joined_to_its_past(tmp_path):
+    state, away = tmp_path / "state", tmp_path / "away"
+    keeper = Keeper(state)
+    first, second = a_past(keeper)
+    keeper.close()
+    state.rename(away)
+    state.write_text("in the way")
+    blind = Keeper(state)
+    # In another order than before, so that the numbers are others.
+    there, here = blind.admit(SSD, THERE, NOON + 30 * DAY), blind.admit(HDD, HERE, NOON + 30 * DAY)
+    judged(blind, (there, read(NOON + 30 * DAY, SSD)), (here, read(NOON + 30 * DAY, HDD, pending_sectors=3)))
+    blind.add_traffic([a_span(here.number, NOON + 30 * DAY)])
+    assert blind.waiting == 3
+    state.unlink()
+    away.rename(state)
+    blind.try_again()
+    assert (blind.trouble, blind.waiting, blind.epoch) == (None, 0, 1)
+    assert [known.drive for known in blind.known] == [HDD, SSD]
+    blind.close()
+    with Past.open(state) as past:
+        assert [len(past.passes(number)) for number in (first.number, second.number)] == [22, 22]
+        assert past.traffic(first.number, NOON, NOON + 40 * DAY)
+        assert past.series(first.number, "pending-sectors")[-1] == (NOON + 30 * DAY, 3)
+        kept = past.state(first.number)
+    # The same as if it had never been out of reach.
+    other = Keeper(tmp_path / "other")
+    one, _ = a_past(other)
+    judged(other, (one, read(NOON + 30 * DAY, HDD, pending_sectors=3)))
+    assert other.state(one.number) == kept
+    other.close()

@@ -1,7 +1,10 @@
 import threading
+from dataclasses import replace
 
 import pytest
 
+from diskwatch import analyser
+from diskwatch.errors import HistoryGarbled
 from diskwatch.history import care, folding, keeping
 from diskwatch.history.care import copies
 from diskwatch.history.reader import Past
@@ -55,8 +58,9 @@ def made(tmp_path, clock):
 def rounds(keeper, days):
     known = keeper.known[0] if keeper.known else keeper.admit(HDD, HERE, NOON)
     for at in range(NOON, NOON + days * DAY, DAY // 3):
+        state = analyser.dump(replace(analyser.start(), last_at=at))
         part = DriveRound(
-            known=known, pass_=read(at, power_on_hours=at // 3600, pending_sectors=0), state=f"at {at}"
+            known=known, pass_=read(at, power_on_hours=at // 3600, pending_sectors=0), state=state
         )
         keeper.record(Round(at=at, drives=(part,)))
 
@@ -218,6 +222,29 @@ def test_a_history_that_is_damaged_at_the_start_is_mended_before_anything_is_kep
     keeper.close()
     with Past.open(tmp_path) as past:
         assert len(past.passes(1)) == 15
+
+
+def test_a_value_that_cannot_be_right_is_taken_out_while_the_watch_goes_on(made, tmp_path):
+    keeper, one = made()
+    rounds(keeper, 2)
+    keeper.note(Entry(at=NOON, drive=1, kind="watch", text="Said.", data={"n": 1}))
+    keeper.close()
+    keeper, one = made()
+    with keeper._history._writing() as connection:
+        connection.execute("UPDATE day_book SET data = '['")
+        connection.execute("UPDATE pass SET outcome = 'reae' WHERE at = ?", (NOON,))
+    with pytest.raises(HistoryGarbled):
+        book(tmp_path)
+    one.turn()
+    assert keeper.trouble is None
+    told = book(tmp_path)
+    assert ("watch", "Said.") in told
+    assert len([text for kind, text in told if kind == "trouble" and "could not be read" in text]) == 2
+    with Past.open(tmp_path) as past:
+        assert len(past.passes(1)) == 5
+    one._looked = False
+    one.turn()
+    assert book(tmp_path) == told
 
 
 def test_what_comes_while_it_is_mended_waits_and_is_kept(made, tmp_path, monkeypatch):
