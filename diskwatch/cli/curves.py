@@ -1,5 +1,6 @@
 """Signals over a span of time for the dashboard: values, gaps, usual range, fit, what is to be expected."""
 
+import math
 from bisect import bisect_right
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
@@ -48,11 +49,13 @@ def curves(past: Past, line: DriveLine, span: Span) -> tuple[Curve, ...]:
     """
     found = gaps(past, line.number, span)
     ahead = {one.signal: one for one in line.forecasts}
+    soon = {one.signal: one.low for one in line.forecasts if one.low is not None}
     grave = {signal: rank for rank, one in [*enumerate(line.findings)][::-1] for signal in one.signals}
 
-    def order(signal: SignalNow) -> tuple[int, bool, float, bool, str]:
+    def order(signal: SignalNow) -> tuple[int, float, float, bool, str]:
         words = isinstance(signal.value, str)
-        return grave.get(signal.name, 99), signal.name not in ahead, -(signal.evidence or 0), words, signal.name
+        days = soon.get(signal.name, math.inf)
+        return grave.get(signal.name, 99), days, -(signal.evidence or 0), words, signal.name
 
     return tuple(
         replace(_curve(past, line.number, signal, ahead.get(signal.name), span), gaps=found)

@@ -11,7 +11,7 @@ from diskwatch.cli.pace import Pace
 from diskwatch.cli.shown import Shown
 from diskwatch.errors import DiskwatchError
 from diskwatch.rehearsal.course import Course
-from diskwatch.units import plain
+from diskwatch.units import DAY, plain
 
 _PATIENCE = 10.0
 """Seconds that the thread gets to store what it has."""
@@ -116,7 +116,8 @@ def show(course: Course, folder: Path, pace: Pace, live: Live) -> str | None:
                 source,
                 course.clock.now,
                 watching="a rehearsal, in which every drive is invented",
-                every=course.scenario.every_hours * 3_600,
+                # Many an invented machine is off at night, which is no reason to call its figures old.
+                every=max(course.scenario.every_hours * 3_600, DAY),
                 ascii_only=not speaks_more_than_ascii(),
                 braille=has_braille(),
                 questions=_Invented(source.past, folder, None),

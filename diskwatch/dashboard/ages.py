@@ -2,7 +2,7 @@
 
 from datetime import UTC, datetime, tzinfo
 
-from diskwatch.units import DAY, say_span
+from diskwatch.units import DAY, say_days, say_span
 
 _CLOCKS_MAY_DIFFER = 60
 _SHORT = {" seconds": " s", " minutes": " min", " minute": " min", " hours": " h", " hour": " h"}
@@ -49,6 +49,13 @@ def since(at: int, now: int, zone: tzinfo | None = None) -> str:
     if 0 <= passed < 6 * DAY:
         return f"since {moment:%A}"
     return f"since {moment.day} {moment:%B} {moment.year}"
+
+
+def within(low: float, high: float) -> str:
+    """Two lengths of time in days as one: ``21 to 53 days``, ``60 days to 3 months``."""
+    first, last = say_days(low), say_days(high)
+    (count, _, unit), other = first.rpartition(" "), last.rpartition(" ")[2]
+    return f"{count if unit.rstrip('s') == other.rstrip('s') else first} to {last}"
 
 
 def clock(at: int, zone: tzinfo | None = None, *, seconds: bool = False) -> str:

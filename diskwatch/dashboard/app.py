@@ -334,6 +334,8 @@ class Dashboard(App[None]):
             self._say(f"Looked again at {clock(self.desk.now(), seconds=True)}: {found}.")
 
     def _draw(self) -> None:
+        if not self.screen_stack:
+            return  # it is being left
         screen = self.screen_stack[0]
         for lines in screen.query(Lines).exclude("Band"):
             lines.show()
@@ -358,9 +360,10 @@ class Dashboard(App[None]):
         keys: tuple[Key, ...] = (*MOVES, *DEEDS)
         if self.desk.questions is None:
             keys = tuple(key for key in keys if key.action not in _ASKING)
+        rows = 2 if self.size.height >= _TWO_ROWS_FROM else 1
         if self.desk.stage is not None:
-            keys = (*PACE, *keys)
-        return keys_rows(keys, width, self.desk.face, rows=2 if self.size.height >= _TWO_ROWS_FROM else 1)
+            keys, rows = (*PACE, *keys), rows + 1
+        return keys_rows(keys, width, self.desk.face, rows=rows)
 
 
 _ASKING = frozenset({"app.why", "app.plan", "app.ticket", "app.put_off", "app.day_book"})

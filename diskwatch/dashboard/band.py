@@ -8,7 +8,7 @@ with the bar of its weight (`diskwatch.dashboard.weight`).
 from rich.cells import cell_len
 from rich.text import Text
 
-from diskwatch.dashboard.ages import ago
+from diskwatch.dashboard.ages import ago, within
 from diskwatch.dashboard.cells import column, cut, ends, fit
 from diskwatch.dashboard.chart.strip import strip
 from diskwatch.dashboard.questions import Strand
@@ -73,11 +73,12 @@ def band(
         beside = width - _TRAFFIC_WIDTH - 2
         first = _title(line, width, beside, chosen=chosen, bar=bar, mark=mark)
         first.append("  ")
-        return (fit(first.append_text(_doing(line, now, _TRAFFIC_WIDTH, mark, brief=False)), width),)
+        doing = _doing(line, now, _TRAFFIC_WIDTH, mark, brief=False, strand=strand)
+        return (fit(first.append_text(doing), width),)
     title = _title(line, width, width, chosen=chosen, bar=bar, mark=mark)
     inner = max(width - INDENT, 0)
     if is_quiet(line):
-        body = [_doing(line, now, inner, mark, brief=width < WIDE)]
+        body = [_doing(line, now, inner, mark, brief=width < WIDE, strand=strand)]
     elif strand is None or width < NARROW:
         body = [_why(line, inner, mark), _doing(line, now, inner, mark, brief=width < WIDE)]
     else:
@@ -140,9 +141,14 @@ def _why(line: DriveLine, width: int, mark: str) -> Text:
     return Text(cut(told, width, mark))
 
 
-def _doing(line: DriveLine, now: int, width: int, mark: str, *, brief: bool) -> Text:
+def _doing(
+    line: DriveLine, now: int, width: int, mark: str, *, brief: bool, strand: Strand | None = None
+) -> Text:
     """Traffic at the left, which gives way; at the right the last pass and, unless it is narrow, the margin."""
-    margin = "" if line.call is None or line.call.word is CallWord.KEEP else "margin unknown  "
+    if strand is not None and strand.margin.known:
+        margin = f"{_margin(strand.margin)}  "
+    else:
+        margin = "" if line.call is None or line.call.word is CallWord.KEEP else "margin unknown  "
     right = _passed(line, now, short=brief)
     if width >= NARROW:
         right = margin + right
@@ -181,10 +187,7 @@ def _margin(left: Margin) -> str:
         return "limit reached"
     if left.high is None:
         return f"margin over {say_days(left.low)}"
-    low, high = say_days(left.low), say_days(left.high)
-    unit = high.rpartition(" ")[2]
-    same = low.rpartition(" ")[2].rstrip("s") == unit.rstrip("s")
-    return f"margin {low.rpartition(' ')[0] if same else low} to {high}"
+    return f"margin {within(left.low, left.high)}"
 
 
 def _passed(line: DriveLine, now: int, *, short: bool) -> str:

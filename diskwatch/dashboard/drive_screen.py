@@ -115,20 +115,23 @@ class DriveScreen(Paper):
         return (
             *lines,
             Text(),
-            *chapter_lines(self._why, width),
+            *chapter_lines(self._why[1:], width),
             Text(),
             *unfolded(line, self.desk.now(), width, face),
         )
 
     def _told(self, line: DriveLine, width: int) -> list[Text]:
-        """The reason where the band had no room for all of it."""
+        """The whole reason where the band had no room for it, and by when to do what."""
         if line.call is None:
             return []
         above = band(line, self.desk.now(), width, self.desk.face)
-        reason = plain(line.call.reason)
-        if any(reason in row.plain for row in above):
-            return []
-        return [fit(Text(f"   {part}"), width) for part in wrap(reason, max(width - 5, 10))]
+        told = self._why[0].lines if self._why else (line.call.reason,)
+        fresh = [plain(one) for one in told if not any(plain(one) in row.plain for row in above)]
+        return [
+            fit(Text.assemble("   ", (part, "bold")), width)
+            for one in fresh
+            for part in wrap(one, max(width - 5, 10))
+        ]
 
     def _frame(self, width: int) -> Frame:
         height = self.size.height

@@ -213,11 +213,21 @@ def keys_rows(keys: Sequence[Key], width: int, face: Face, *, rows: int) -> tupl
         rows: the most lines that there is room for, at least 1.
     """
     told = _laid(keys, width, face)
-    if len(told) > rows:
-        told = _laid([key for key in keys if not key.spare], width, face)
-    if len(told) > rows:
-        told = _laid([key for key in keys if key.first], width, face)
+    left = list(keys)
+    while len(told) > rows and (loose := [key for key in left if not key.first]):
+        spare = [key for key in loose if key.spare]
+        gone = spare or _last_group(loose)
+        left = [key for key in left if key not in gone]
+        told = _laid(left, width, face)
     return tuple(fit(line, width) for line in told[:rows])
+
+
+def _last_group(keys: list[Key]) -> list[Key]:
+    """The last key, with those before it that share its deed."""
+    begin = len(keys) - 1
+    while begin > 0 and not keys[begin - 1].does:
+        begin -= 1
+    return keys[begin:]
 
 
 def _laid(keys: Iterable[Key], width: int, face: Face) -> list[Text]:

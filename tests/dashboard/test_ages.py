@@ -2,7 +2,7 @@ from datetime import timedelta, timezone
 
 import pytest
 
-from diskwatch.dashboard.ages import ago, clock, exact, since
+from diskwatch.dashboard.ages import ago, clock, exact, since, within
 from tests.dashboard.drives import NOW
 
 EAST = timezone(timedelta(hours=1))
@@ -60,3 +60,16 @@ def test_the_clock_tells_the_time_of_its_zone():
 
 def test_an_exact_time_names_its_distance_from_utc():
     assert exact(NOW, EAST) == "2026-12-01 16:00:00 +0100"
+
+
+@pytest.mark.parametrize(
+    ("low", "high", "told"),
+    [
+        (21, 53, "21 to 53 days"),
+        (60, 100, "60 days to 3 months"),
+        (1, 3, "1 to 3 days"),
+        (400, 900, "13 months to 2 years"),
+    ],
+)
+def test_two_lengths_of_one_unit_name_it_once(low, high, told):
+    assert within(low, high) == told

@@ -68,7 +68,7 @@ async def test_a_tiny_screen_keeps_its_shape():
         assert len(rows) == 10
         assert rows[0] == "last pass 12 min ago     watched by 1234"
         assert rows[1].startswith("█> retire")
-        assert rows[9] == "? help  q quit"
+        assert rows[9] == "↑ ↓ move  Space unfold  ? help  q quit"
 
 
 async def test_the_source_is_asked_in_one_thread_that_is_not_the_screens():

@@ -30,7 +30,7 @@ async def test_why_and_what_would_change_the_call_follow_below():
         await pilot.press("enter")
         await settled(pilot)
         text = text_of(app)
-        assert text.index("What to do, and by when") < text.index("What would change the call")
+        assert text.index("Copy it off now.") < text.index("What would change the call")
         assert "Finding drift:media: The above" in text
 
 

@@ -12,6 +12,7 @@ from itertools import groupby
 
 from rich.text import Text
 
+from diskwatch.dashboard.ages import within
 from diskwatch.dashboard.cells import cut, ends, fit
 from diskwatch.dashboard.chart.dates import date_marks
 from diskwatch.dashboard.chart.raster import Dots, Raster
@@ -99,8 +100,8 @@ def _said_ahead(ahead: Ahead | None) -> str:
         return ""
     if ahead.high == 0:
         return f"limit {ahead.limit:g} reached"
-    until = "or later" if ahead.high is None else f"to {say_days(ahead.high)}"
-    return f"limit {ahead.limit:g} in {say_days(ahead.low)} {until}"
+    when = f"{say_days(ahead.low)} or later" if ahead.high is None else within(ahead.low, ahead.high)
+    return f"limit {ahead.limit:g} in {when}"
 
 
 def _nothing(curve: Curve) -> str:

@@ -59,7 +59,7 @@ def scale_of(values: Iterable[float], *, whole: bool) -> Scale:
         return Scale(low=0.0, high=1.0)
     low, high = known[0], known[-1]
     moved = [value - low for value in known if value > low]
-    if whole and low >= 0 and moved and high > _APART * max(moved[len(moved) // 2], 1):
+    if whole and low >= 0 and moved and high - low > _APART * max(moved[len(moved) // 2], 1):
         return Scale(low=0.0, high=high, whole=True, tens=True)
     if high == low:
         return Scale(low=low if whole else low - 1, high=high + 1, whole=whole)

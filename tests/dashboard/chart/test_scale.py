@@ -18,6 +18,10 @@ def test_what_moves_evenly_keeps_even_steps():
     assert scale.marks(4) == (30, 35, 40)
 
 
+def test_a_count_that_moves_by_little_far_from_nothing_keeps_even_steps():
+    assert not scale_of([91.0, 92.0, 92.0, 92.0], whole=True).tens
+
+
 def test_a_value_that_stands_still_has_room_above_it():
     scale = scale_of([7.0, 7.0], whole=True)
     assert scale.share(7.0) == 0
