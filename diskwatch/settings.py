@@ -107,7 +107,7 @@ class Notices(_Section, frozen=True, kw_only=True):
 
 
 class Probe(_Section, frozen=True, kw_only=True):
-    """Reading a little from idle disks to time them.
+    """Timing a few reads a day of turning disks that are awake and idle, 2 seconds of disk time at most.
 
     Attributes:
         enabled: whether to do so at all.
@@ -141,10 +141,6 @@ class Settings(_Section, frozen=True, kw_only=True):
     selftest: SelfTests = SelfTests()
 
 
-NOT_YET = frozenset({"probe"})
-"""Tables that are read and checked but that nothing acts on in this version."""
-
-
 def load(path: Path | None) -> Settings:
     """Read a settings file.
 
@@ -167,12 +163,6 @@ def load(path: Path | None) -> Settings:
         raise SettingsError(f"{path}: {_told(str(error))}") from error
     except (msgspec.DecodeError, RecursionError, ValueError) as error:
         raise SettingsError(f"{path}: is no TOML: {error}") from error
-
-
-def without_effect(settings: Settings) -> tuple[str, ...]:
-    """Names of tables that are set to something but that this version does not act on yet."""
-    plain = Settings()
-    return tuple(name for name in sorted(NOT_YET) if getattr(settings, name) != getattr(plain, name))
 
 
 def _decode(text: bytes) -> Settings:

@@ -35,13 +35,6 @@ def test_the_example_holds_every_key_with_its_default():
         assert keys == {field.name for field in msgspec.structs.fields(table)}, name
 
 
-def test_the_example_says_of_every_part_without_effect_that_it_has_none():
-    text = EXAMPLE.read_text(encoding="utf-8")
-    for name in settings.NOT_YET:
-        line = next(line for line in text.splitlines() if line.startswith(f"[{name}]"))
-        assert "nothing acts on it in this version" in line
-
-
 def test_without_a_file_the_defaults_hold():
     found = settings.load(None)
     assert (found.smart.every, found.io.every, found.smart.timeout) == (1800, 10, 60)
@@ -83,11 +76,6 @@ def test_what_is_no_toml_and_what_is_not_there_are_told(tmp_path):
     (tmp_path / "settings.toml").write_bytes(b"\xff\xfe")
     with pytest.raises(SettingsError, match="is no TOML"):
         settings.load(tmp_path / "settings.toml")
-
-
-def test_what_is_set_without_effect_is_named_and_defaults_are_not(tmp_path):
-    found = load(tmp_path, '[probe]\nenabled = true\n[history]\nbackup = "daily"\ncommit = "1m"\n[selftest]\n')
-    assert settings.without_effect(found) == ("probe",)
 
 
 @pytest.mark.parametrize(

@@ -28,7 +28,7 @@ def state_folder(args: argparse.Namespace) -> Path:
 
 
 def settings(args: argparse.Namespace) -> "Settings":
-    """The owner's settings; says on standard error what is set without effect.
+    """The owner's settings.
 
     Raises:
         SettingsError: a file was named, or found, and is wrong.
@@ -36,10 +36,7 @@ def settings(args: argparse.Namespace) -> "Settings":
     from diskwatch import settings as settings_room  # noqa: PLC0415 - commands that only read load in half the time
 
     path = places.settings_file(args.settings)
-    found = settings_room.load(path)
-    for name in settings_room.without_effect(found):
-        talk(f"{path}: [{name}] is set, but nothing acts on it in this version")
-    return found
+    return settings_room.load(path)
 
 
 def drive_option(parser: argparse.ArgumentParser) -> None:

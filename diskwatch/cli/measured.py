@@ -1,11 +1,12 @@
-"""The part of ``why`` about what is measured day by day: latency, temperature, forecasts, and the bound."""
+"""The part of ``why`` about what is measured day by day: latency, temperature, probes, forecasts, the bound."""
 
 from collections.abc import Iterator
 
 from diskwatch import analyser
 from diskwatch.history.forecasts import Kept
-from diskwatch.judge import bound_told, forecast_told, service_times, warmth_told
+from diskwatch.judge import bound_told, forecast_told, probe_told, service_times, warmth_told
 from diskwatch.records import Forecast
+from diskwatch.trends import late_reads, probe_speed
 from diskwatch.units import DAY, day_number, rfc3339
 
 
@@ -28,6 +29,13 @@ def temperature(why: analyser.Explanation) -> Iterator[str]:
         )
 
 
+def probe(why: analyser.Explanation) -> Iterator[str]:
+    """What its probes have come to."""
+    if why.probe is not None:
+        yield probe_told.late_standing(why.probe, late_reads.THRESHOLD)
+        yield probe_told.speed_standing(why.probe, probe_speed.THRESHOLD)
+
+
 def bound(why: analyser.Explanation) -> Iterator[str]:
     """What the bound on false alarms rests on, and what breaks it."""
     if not why.evidence and not why.timings and why.warm is None:
@@ -35,6 +43,8 @@ def bound(why: analyser.Explanation) -> Iterator[str]:
     more = bool(why.timings) or why.warm is not None
     yield bound_told.joint(why.joint)
     yield from bound_told.rests_on(latency=more)
+    if why.probe is not None:
+        yield probe_told.rests_on()
     yield from bound_told.breaks(latency=more)
 
 
@@ -81,9 +91,32 @@ def answer(why: analyser.Explanation, kept: tuple[Kept, ...], at: int) -> dict[s
             "alarms_at": why.warm.alarms_at,
             "share": why.warm.share,
         },
+        "probe": _probe(why),
         "joint_evidence": why.joint,
         "bound": list(bound(why)),
         "forecasts": [_forecast(one, at) for one in kept],
+    }
+
+
+def _probe(why: analyser.Explanation) -> dict[str, object] | None:
+    if why.probe is None:
+        return None
+    late, speed = why.probe.late, why.probe.speed
+    return {
+        "probes": why.probe.days,
+        "median_microseconds": why.probe.median_us,
+        "reads_learnt": late.learnt,
+        "reads_judged": late.reads,
+        "late_reads": late.late,
+        "late_beyond_ms": late.limit_ms,
+        "late_norm": late.norm,
+        "late_evidence": late.ledger.evidence if why.probe.judges_late else None,
+        "late_alarms_at": late_reads.THRESHOLD,
+        "late_share": late_reads.SHARE,
+        "speed_shift": speed.latest,
+        "speed_evidence": None if speed.latest is None else speed.ledger.evidence,
+        "speed_alarms_at": probe_speed.THRESHOLD,
+        "speed_share": probe_speed.SHARE,
     }
 
 

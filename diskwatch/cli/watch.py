@@ -11,6 +11,7 @@ from pathlib import Path
 from diskwatch.cli.common import settings, state_folder, talk
 from diskwatch.errors import DiskwatchError, NothingToWorkOn, SettingsError
 from diskwatch.history.reader import Past
+from diskwatch.machine.probe import DiskProber
 from diskwatch.machine.real import RealMachine
 from diskwatch.machine.senses import RealSenses
 from diskwatch.records import DriveRound, Way
@@ -98,7 +99,9 @@ class _Watches:
 
 def _watch(owner: Settings, folder: Path, told: Told | None, reread: Callable[[], None] | None = None) -> Watch:
     this = machine(owner, folder)
-    return Watch(this, owner, folder, told=told, senses=senses(owner), tester=this, reread=reread)
+    return Watch(
+        this, owner, folder, told=told, senses=senses(owner), tester=this, prober=DiskProber(), reread=reread
+    )
 
 
 def _terminal_is_gone() -> bool:

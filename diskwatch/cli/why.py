@@ -75,6 +75,7 @@ def chapters(
     yield "Evidence: how rarely a drive within the norm would come to this", _evidence(why)
     yield "Latency at equal load", measured.latency(why)
     yield "Temperature", measured.temperature(why)
+    yield "Probe: timed reads while nothing else goes on", measured.probe(why)
     if why.damage is not None:
         damage = why.damage
         parts = (

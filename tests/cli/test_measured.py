@@ -14,6 +14,8 @@ from tests.cli.run import run
 from tests.samples import DAY, HDD, NOON, read
 from tests.service.machines import ScriptedMachine, found
 from tests.service.test_latency import night, spans
+from tests.trends.probes import seeded
+from tests.trends.test_probed import a_day
 from tests.trends.traffic import invented_days
 
 
@@ -56,6 +58,7 @@ def test_the_json_has_the_same_as_numbers(slowed):
     )
     assert answer["joint_evidence"] >= 0.12 * reads["evidence"]
     assert answer["temperature"]["usual_celsius"] is None
+    assert answer["probe"] is None
     assert [one["signal"] for one in answer["forecasts"]][:1] == ["read-latency"]
     assert answer["drive"]["signals"]["read-latency"]["unit"] == "microseconds"
     assert any(line.startswith("Proved") for line in answer["bound"])
@@ -104,3 +107,35 @@ def test_even_traffic_is_told_within_its_norm():
     state, _, _ = taken_in(invented_days(4, 120, first_day=FIRST))
     told = list(measured.latency(analyser.explain(state)))
     assert "once in less than a year" in told[0]
+
+
+@pytest.fixture
+def probed(tmp_path):
+    """A state folder with a disk that has to read ever more again."""
+    keeper, chance = Keeper(tmp_path), seeded(1)
+    machine = ScriptedMachine(found(HDD))
+    for number in range(25):
+        at = FIRST * DAY + number * DAY + 3600
+        machine.answers = {"/dev/sda": [read(at, crc_errors=0)]}
+        day = a_day(chance, FIRST + number, retried=0.03 if number > 16 else 0.0003)
+        Rounds(machine, keeper, partial(int, at), probed={1: day}.pop).run()
+    keeper.close()
+    return tmp_path
+
+
+def test_why_tells_what_probes_have_come_to_and_what_their_bound_rests_on(probed):
+    told = run("why", "INV0001", "--state", probed)
+    text = " ".join(told.out.split())
+    assert "Probe: timed reads while nothing else goes on: Late reads: " in text
+    assert "Speed without load: " in text
+    assert "Assumed, for the probe" in text
+    assert max(map(len, told.out.splitlines())) <= 80
+
+
+def test_the_json_has_the_probe_too(probed):
+    answer = run("why", "INV0001", "--json", "--state", probed).json
+    probe = answer["probe"]
+    assert probe["probes"] == 25
+    assert probe["late_evidence"] > probe["late_alarms_at"] == pytest.approx(3652.5 / 0.12)
+    assert probe["late_reads"] > 10
+    assert answer["drive"]["signals"]["late-reads"]["evidence"] == probe["late_evidence"]
