@@ -4,7 +4,7 @@ A history in WAL mode is read in one of two ways. While a write-ahead log lies b
 that log: an ordinary connection with ``mode=ro``. Without one nobody is writing, and an ordinary user, or a
 read-only disk, could not even create the index that SQLite wants beside the log: then ``immutable=1`` reads the
 file alone. That is right only as long as the file stays as it is, so whoever reads this way asks `Opened.holds`
-before and after.
+before and after. Where the disk is too full for the index beside a log, file and log are copied into memory.
 """
 
 import os
@@ -33,7 +33,9 @@ _SMALLEST_PAGE = 512
 _ID_AT = 68
 """Where the application id stands, four bytes, the largest first (likewise, 1.3.17)."""
 
-_NO_WAY_IN = frozenset({sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_READONLY})
+_NO_ROOM = frozenset({sqlite3.SQLITE_IOERR, sqlite3.SQLITE_FULL})
+_NO_WAY_IN = frozenset({sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_READONLY}) | _NO_ROOM
+"""What keeps SQLite from laying its index beside the log: no right to, or a full disk."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -240,15 +242,31 @@ def _connected(path: Path, mark: _Mark) -> Opened:
         return _connect(path, mark, frozen=False)
     except HistoryError as error:
         cause = error.__cause__
+        code = primary(cause) if isinstance(cause, sqlite3.Error) else None
         # An empty log hides nothing; a log with something in it must never be passed over in silence.
-        if (
-            not mark.log
-            and not mark.journal
-            and isinstance(cause, sqlite3.Error)
-            and primary(cause) in _NO_WAY_IN
-        ):
+        if not mark.log and not mark.journal and code in _NO_WAY_IN:
             return _connect(path, mark, frozen=True)
+        if not mark.journal and code in _NO_ROOM:
+            copy = _copied(path, mark)
+            if copy is not None:
+                return copy
         raise
+
+
+def _copied(path: Path, mark: _Mark) -> Opened | None:
+    """A copy in memory; None where there is no room for it either, or somebody wrote meanwhile."""
+    # A command that reads in place, as all do otherwise, need not load what it takes.
+    from diskwatch.history.private import connect_to_copy  # noqa: PLC0415  # see above
+
+    with _told(path):
+        try:
+            connection = connect_to_copy(path)
+        except OSError as error:
+            raise told(error, path) from error
+        if connection is None or _mark(path) == mark:
+            return None if connection is None else Opened(path, connection, mark, frozen=True)
+        connection.close()
+        return None
 
 
 def _connect(path: Path, mark: _Mark, *, frozen: bool) -> Opened:

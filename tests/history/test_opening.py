@@ -1,7 +1,8 @@
 import hashlib
 import os
 import sqlite3
-from contextlib import closing
+import subprocess
+from contextlib import closing, suppress
 from pathlib import Path
 
 import pytest
@@ -222,3 +223,67 @@ def test_a_folder_in_its_place_is_told(tmp_path):
     (tmp_path / HISTORY).mkdir()
     with pytest.raises(HistoryError, match=r"history\.db"):
         open_to_read(tmp_path / HISTORY)
+
+
+@pytest.fixture
+def full(tmp_path):
+    """A small file system of its own, and how to fill it."""
+    state = tmp_path / "mount"
+    state.mkdir()
+    made = subprocess.run(
+        ["mount", "-t", "tmpfs", "-o", "size=4m", "none", str(state)], capture_output=True, check=False
+    )
+    if made.returncode != 0:
+        pytest.skip("this machine lets nobody mount anything")
+
+    def fill():
+        descriptor = os.open(state / "fill", os.O_WRONLY | os.O_CREAT)
+        with suppress(OSError):
+            while True:
+                os.write(descriptor, bytes(1024))
+        os.close(descriptor)
+
+    yield state / "history", fill
+    subprocess.run(["umount", "-l", str(state)], check=False)
+
+
+needs_root = pytest.mark.skipif(os.geteuid() != 0, reason="needs root to mount a file system of its own")
+
+
+@needs_root
+@pytest.mark.parametrize("in_log", [False, True])
+def test_on_a_full_disk_a_history_is_read_with_all_that_stands_in_its_log(full, in_log):
+    folder, fill = full
+    path = folder / HISTORY
+    with History.open(folder) as history:
+        history.admit(a_drive(), a_place(), NOON)
+        left = {ending: path.with_name(path.name + ending).read_bytes() for ending in ("", "-wal")}
+    if in_log:
+        # As a watch leaves them that was killed.
+        for ending, content in left.items():
+            path.with_name(path.name + ending).write_bytes(content)
+    else:
+        path.with_name(f"{path.name}-wal").touch()
+    fill()
+    before = _all_of(folder)
+    with closing(open_to_read(path)) as opened:
+        assert _drives(opened) == 1
+        assert opened.frozen
+        assert opened.holds()
+        with pytest.raises(sqlite3.Error):
+            opened.connection.execute("DELETE FROM drive")
+    assert before.items() <= _all_of(folder).items()
+
+
+@needs_root
+def test_where_there_is_no_room_in_memory_either_the_trouble_is_said(full, monkeypatch):
+    folder, fill = full
+    path = folder / HISTORY
+    with History.open(folder) as history:
+        history.admit(a_drive(), a_place(), NOON)
+        log = path.with_name(f"{path.name}-wal").read_bytes()
+    path.with_name(f"{path.name}-wal").write_bytes(log)
+    fill()
+    monkeypatch.setattr("diskwatch.history.private._ROOM", 1e12)
+    with pytest.raises(HistoryError, match="has no space left"):
+        open_to_read(path)
