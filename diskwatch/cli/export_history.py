@@ -10,6 +10,7 @@ from diskwatch.cli.common import now, settings, state_folder, talk
 from diskwatch.errors import DiskwatchError, NothingToWorkOn
 from diskwatch.history.exchange import written
 from diskwatch.history.reader import Past
+from diskwatch.language import ngettext
 from diskwatch.units import plain
 
 
@@ -40,8 +41,10 @@ def run(args: argparse.Namespace) -> int:
             sys.stdout.writelines(pieces)
             return 0
         _put(Path(args.file), pieces)
-    count = "one drive" if len(numbers) == 1 else f"{len(numbers)} drives"
-    talk(f"diskwatch: the past of {count} is in {args.file}")
+    told = ngettext(
+        "the past of one drive is in {file}", "the past of {count} drives is in {file}", len(numbers)
+    )
+    talk("diskwatch: " + told.format(count=len(numbers), file=args.file))
     return 0
 
 

@@ -13,6 +13,7 @@ from diskwatch.cli.common import drive_option, now, settings, state_folder
 from diskwatch.errors import UsageError
 from diskwatch.history.later import DAYS, PutOff, put_off
 from diskwatch.history.reader import Past
+from diskwatch.language import _
 from diskwatch.records import DriveLine
 from diskwatch.units import DAY, plain
 
@@ -62,8 +63,15 @@ def defer(line: DriveLine, at: int, days: int = DAYS) -> str:
     word = None if line.call is None else line.call.word
     put_off(places.user_state(), line.drive.identity, PutOff(until=until, call=word), at)
     when = datetime.fromtimestamp(until).astimezone().strftime("%Y-%m-%d %H:%M")
-    standing = "It has no call yet" if word is None else f"Its call stays {word.value}"
-    return plain(
-        f"Notices about {line.name} ({line.place.device}) are put off for you until {when}. {standing}; "
-        f"should it become a stronger one, a notice comes at once."
+    text = (
+        _(
+            "Notices about {drive} ({device}) are put off for you until {when}. It has no call yet; should it "
+            "get a stronger one than keep, a notice comes at once."
+        )
+        if word is None
+        else _(
+            "Notices about {drive} ({device}) are put off for you until {when}. Its call stays {call}; should "
+            "it become a stronger one, a notice comes at once."
+        )
     )
+    return plain(text.format(drive=line.name, device=line.place.device, when=when, call=word))

@@ -17,6 +17,7 @@ from pathlib import Path
 from diskwatch.cli.common import drive_option, now, settings, state_folder
 from diskwatch.errors import DiskwatchError, UsageError
 from diskwatch.history.reader import Past
+from diskwatch.language import _, ngettext
 from diskwatch.machine.blink import Lamp, blink
 from diskwatch.machine.blocks import node_of, physical_drives
 from diskwatch.machine.here import found_of
@@ -99,7 +100,11 @@ def _chosen(wanted: Sequence[DriveLine], here: Sequence[Found], machine: RealMac
         found = found_of(line.drive, line.place, here)
         why = _why_dark(line, found, machine)
         if found is None or why is not None:
-            dark.append(f"{line.name} ({line.place.device}) stays dark: {why}.")
+            dark.append(
+                _("{drive} ({device}) stays dark: {why}.").format(
+                    drive=line.name, device=line.place.device, why=why
+                )
+            )
             continue
         drives += 1
         # Namespaces of one NVMe drive share its light.
@@ -113,19 +118,19 @@ def _path(found: Found) -> Path:
 
 def _why_dark(line: DriveLine, found: Found | None, machine: RealMachine) -> str | None:
     if found is None:
-        return "it is not plugged in here now"
+        return _("it is not plugged in here now")
     if not found.blocks:
-        return "it has no device of its own that could be read"
+        return _("it has no device of its own that could be read")
     if line.drive.kind is Kind.VIRTUAL:
-        return "a virtual disk has none"
+        return _("a virtual disk has none")
     if not may_be_read(line):
-        return "it is not called keep, or its last pass brought no reading, so it is not read for this"
+        return _("it is not called keep, or its last pass brought no reading, so it is not read for this")
     outcome = machine.ask(found).outcome
     if outcome is Outcome.REFUSED and not os.access(_path(found), os.R_OK):
         return None  # that nobody may read it is told in a moment
     if outcome is Outcome.ASLEEP:
-        return "it is asleep, and is not woken for this"
-    return None if outcome is Outcome.READ else "it does not say whether it is awake"
+        return _("it is asleep, and is not woken for this")
+    return None if outcome is Outcome.READ else _("it does not say whether it is awake")
 
 
 def _refuse_without_right(lamps: Sequence[Lamp]) -> None:
@@ -143,10 +148,14 @@ def _blink(lamps: list[Lamp], seconds: int) -> int:
     except KeyboardInterrupt:
         # Who has found the drive need not wait: that is the usual end.
         stop.set()
-        _say("Ended.")
+        _say(_("Ended."))
         return 0
     for node, error in wrong.items():
-        _say(f"{node} could not be read: {error.strerror}; it was left alone from then on.")
+        _say(
+            _("{node} could not be read: {why}; it was left alone from then on.").format(
+                node=node, why=error.strerror
+            )
+        )
     return 0
 
 
@@ -168,24 +177,34 @@ def _facts(line: DriveLine) -> Iterator[tuple[str, str]]:
         "call": None if line.call is None else line.call.word.value,
     }
     yield from ((name, value) for name, value in told.items() if value)
-    yield "hint", "the serial stands on the drive's own label; device names change from start to start"
+    yield "hint", _("the serial stands on the drive's own label; device names change from start to start")
 
 
 def _left_alone(line: DriveLine) -> str:
-    called = "has no call yet" if line.call is None else f"is called {line.call.word.value}"
-    if line.call is not None and line.call.word is CallWord.KEEP:
-        called = "did not answer in its last pass"
-    return f"It {called}, so it is not read for this: the lights of the others blink instead."
+    if line.call is None:
+        return _("It has no call yet, so it is not read for this: the lights of the others blink instead.")
+    if line.call.word is CallWord.KEEP:
+        return _(
+            "It did not answer in its last pass, so it is not read for this: the lights of the others "
+            "blink instead."
+        )
+    return _("It is called {call}, so it is not read for this: the lights of the others blink instead.").format(
+        call=line.call.word.value
+    )
 
 
 def _blinking(chosen: _Chosen, seconds: int, *, alone: bool) -> str:
     if alone:
-        return f"Its light blinks for {seconds} seconds, once a second, where it has one. Ctrl-C ends it."
-    count = f"{chosen.drives} other {'drive' if chosen.drives == 1 else 'drives'}"
-    return (
-        f"The lights of {count} blink for {seconds} seconds, once a second. It is among those that do not, "
-        f"unless something else uses it now; see that its serial is the right one. Ctrl-C ends it."
-    )
+        return _(
+            "Its light blinks for {seconds} seconds, once a second, where it has one. Ctrl-C ends it."
+        ).format(seconds=seconds)
+    return ngettext(
+        "The light of {count} other drive blinks for {seconds} seconds, once a second. It is among those that "
+        "do not, unless something else uses it now; see that its serial is the right one. Ctrl-C ends it.",
+        "The lights of {count} other drives blink for {seconds} seconds, once a second. It is among those that "
+        "do not, unless something else uses it now; see that its serial is the right one. Ctrl-C ends it.",
+        chosen.drives,
+    ).format(count=chosen.drives, seconds=seconds)
 
 
 def _say(text: str) -> None:

@@ -20,6 +20,7 @@ from diskwatch.history.lock import WatchLock
 from diskwatch.history.mishaps import told
 from diskwatch.history.opening import open_to_read, refuse_foreign
 from diskwatch.history.rescue import aside_name
+from diskwatch.language import ngettext
 from diskwatch.places import HISTORY, POINTER
 from diskwatch.units import plain, say_bytes, say_count
 
@@ -48,10 +49,18 @@ class Moved:
 
     def sentence(self) -> str:
         """What happened, for the day book and the person."""
-        return (
-            f"The history was moved from {plain(str(self.source))} to {plain(str(self.to))}: "
-            f"{say_bytes(self.size)}, {say_count(self.rows)} rows, each held against the old one. The old file "
-            f"is kept as {plain(self.aside.name)}."
+        return ngettext(
+            "The history was moved from {source} to {to}: {size}, {count} row, held against the old one. The "
+            "old file is kept as {aside}.",
+            "The history was moved from {source} to {to}: {size}, {count} rows, each held against the old one. "
+            "The old file is kept as {aside}.",
+            self.rows,
+        ).format(
+            source=plain(str(self.source)),
+            to=plain(str(self.to)),
+            size=say_bytes(self.size),
+            count=say_count(self.rows),
+            aside=plain(self.aside.name),
         )
 
 

@@ -15,11 +15,28 @@ from diskwatch.history.moments import Dated
 from diskwatch.history.moving import Case, Judged, Part
 from diskwatch.history.writer import History
 from diskwatch.judge import sentences
+from diskwatch.language import _, marked
 from diskwatch.records import DriveRound, Entry, KnownDrive, Outcome, Pass, Settled
-from diskwatch.records.owner import LONGEST_REASON, REPLACED_BY, checked_fact, checked_text
+from diskwatch.records.owner import (
+    ASSET,
+    BACKED_UP,
+    LABEL,
+    LONGEST_REASON,
+    REPLACED_BY,
+    WARRANTY,
+    checked_fact,
+    checked_text,
+)
 from diskwatch.service.requests import Answer
 
 TELL, SETTLE = "tell", "settle"
+
+_FACTS: Mapping[str, str] = {
+    LABEL: marked("label"),
+    ASSET: marked("asset"),
+    WARRANTY: marked("warranty until"),
+    BACKED_UP: marked("backed up"),
+}
 
 
 def tell(history: History, words: Mapping[str, Any], at: int) -> Answer:
@@ -97,8 +114,10 @@ def _drive(history: History, number: object) -> KnownDrive:
 
 
 def _told(name: str, value: str) -> str:
-    what = name.replace("-", " ")
-    return f"Told by the owner: {what} {value}." if value else f"Taken back by the owner: {what}."
+    what = _(_FACTS[name])
+    if not value:
+        return _("Taken back by the owner: {what}.").format(what=what)
+    return _("Told by the owner: {what} {value}.").format(what=what, value=value)
 
 
 def _replaced(history: History, old: KnownDrive, new: KnownDrive, because: str, at: int) -> Answer:
@@ -106,7 +125,9 @@ def _replaced(history: History, old: KnownDrive, new: KnownDrive, because: str, 
         raise UsageError("a drive cannot be replaced by itself", hint="name the new one behind --replaced-by")
     text = sentences.settled(Settled(at=at, because=because, replaced_by=_name(new)))
     data = {"because": because, "replaced_by": _name(new)}
-    took = f"It took the place of {_name(old)}, by the owner's word: {because}."
+    took = _("It took the place of {drive}, by the owner's word: {because}.").format(
+        drive=_name(old), because=because
+    )
     history.tell(
         old.number,
         {REPLACED_BY: _name(new)},
@@ -116,7 +137,9 @@ def _replaced(history: History, old: KnownDrive, new: KnownDrive, because: str, 
             at=at, drive=new.number, kind="owner", text=took, data={"because": because, "replaced": _name(old)}
         ),
     )
-    gone = "It is left out of the bays from now on; should it be met again, it comes back with the call it had."
+    gone = _(
+        "It is left out of the bays from now on; should it be met again, it comes back with the call it had."
+    )
     return Answer(done=(text, gone))
 
 
@@ -147,4 +170,6 @@ def _judged(case: Case, step: analyser.Step) -> Judged:
 
 
 def _stands(before: str, now: str) -> str:
-    return f"Its call was {before} and is now {now}." if before != now else f"Its call stays {now}."
+    if before == now:
+        return _("Its call stays {now}.").format(now=now)
+    return _("Its call was {before} and is now {now}.").format(before=before, now=now)
