@@ -7,6 +7,7 @@ import json
 import struct
 import zlib
 from collections.abc import Mapping, Sequence
+from operator import attrgetter
 from typing import Any
 
 from diskwatch.records import Attribute, Failing, Reading, SelfTest
@@ -56,29 +57,19 @@ def beside(kept: bytes) -> Reading:
 
 
 _ENCODER = json.JSONEncoder(separators=(",", ":"))
+_ATTRIBUTE = attrgetter("number", "name", "value", "worst", "threshold", "prefail", "raw", "failing")
+_SELF_TEST = attrgetter("name", "result", "extended", "passed", "unreadable", "hours", "lba")
+"""What is kept of each, in the order in which it is read back."""
 
 
 def _told(reading: Reading, attributes: Sequence[Attribute]) -> str:
-    table = [
-        [
-            one.number,
-            one.name,
-            one.value,
-            one.worst,
-            one.threshold,
-            one.prefail,
-            one.raw,
-            None if one.failing is None else one.failing.value,
-        ]
-        for one in attributes
-    ]
-    tests = [
-        [one.name, one.result, one.extended, one.passed, one.unreadable, one.hours, one.lba]
-        for one in reading.self_tests
-    ]
-    limits = [reading.warning_celsius, reading.critical_celsius]
-    whole = {"attributes": table, "self_tests": tests, "limits": limits}
-    return _ENCODER.encode(whole)
+    return _ENCODER.encode(
+        {
+            "attributes": [*map(_ATTRIBUTE, attributes)],
+            "self_tests": [*map(_SELF_TEST, reading.self_tests)],
+            "limits": [reading.warning_celsius, reading.critical_celsius],
+        }
+    )
 
 
 _BIN = struct.Struct("<hH")

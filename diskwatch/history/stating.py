@@ -2,6 +2,7 @@
 
 import sqlite3
 from collections.abc import Iterable, Sequence
+from operator import attrgetter
 
 from diskwatch.history import packing, rows
 from diskwatch.history.moments import Moment
@@ -28,6 +29,9 @@ _STANDS = (
     "SELECT series.number, since, signal, unit, kind, source, value, reason"
     " FROM series JOIN latest ON latest.series = series.number WHERE drive = ? AND current"
 )
+
+_STATED = attrgetter("unit", "kind", "source", "value", "reason")
+"""What a value says, as the end of such a row does."""
 
 _NEVER = (None,) * 8
 """What stands of a signal that was never read."""
@@ -75,7 +79,7 @@ def write_values(
         # What only ledgers follow has no since: nothing was read of it yet.
         known = stands[1] is not None
         # Most signals stand still at most passes, and one look tells; others are looked at as they are kept.
-        if known and stands[3:] == (one.unit, one.kind, one.source, one.value, one.reason):
+        if known and stands[3:] == _STATED(one):
             continue
         series = _series(connection, number, one, stands[0], stands[3:6])
         if not (known and series == stands[0] and stands[6:] == _cells(one)):

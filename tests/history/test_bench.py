@@ -115,14 +115,19 @@ _WRITTEN = {
     "analyser_state": "SELECT * FROM analyser_state WHERE at = ?",
     "last_reading": "SELECT * FROM last_reading WHERE at = ?",
 }
-"""All rows that a round writes where no day begins with it: values that moved, and evidence, which always does."""
+"""All rows that a round writes where no day begins with it: what moved, and evidence, which always does."""
 
 
-def _costs(deed: Callable[[], object]) -> tuple[float, float]:
-    """What something takes by the clock, and of the processor, the kernel's share included, in milliseconds."""
-    wall, own = time.perf_counter(), time.process_time()
-    deed()
-    return (time.perf_counter() - wall) * 1000, (time.process_time() - own) * 1000
+def _costs(deed: Callable[[], object]) -> tuple[float, float, float]:
+    """By the clock, the same without waiting for a processor, and of the processor, in milliseconds."""
+
+    def counted() -> float:
+        begun = time.process_time()
+        deed()
+        return time.process_time() - begun
+
+    own, took = timed(counted)
+    return took.wall * 1000, took.own * 1000, own * 1000
 
 
 def _bare(twin: sqlite3.Connection, written: dict[str, list[tuple[object, ...]]]) -> None:
@@ -159,9 +164,12 @@ def test_storing_a_round_takes_less_than_three_times_the_bare_library(tmp_path):
                 ours.append(costs)
                 bare.append(twins)
     mine, raw = ([statistics.median(one) for one in zip(*each, strict=True)] for each in (ours, bare))
-    for what, own, floor in zip(("by the clock", "of the processor"), mine, raw, strict=True):
+    for what, own, floor in zip(
+        ("by the clock", "of work and disk", "of the processor"), mine, raw, strict=True
+    ):
         print(f"\na round takes {own:.2f} ms {what}, the bare library {floor:.2f} ms: {own / floor:.1f} times")
-    assert mine[0] < 3 * raw[0]
+    # On a machine with more work than processors the longer of two waits more often for one.
+    assert mine[1] < 3 * raw[1]
 
 
 @pytest.fixture(scope="module")
