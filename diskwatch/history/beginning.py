@@ -5,10 +5,10 @@ import sqlite3
 from pathlib import Path
 
 from diskwatch.history.folding import leave_to_others
-from diskwatch.history.library import Database
+from diskwatch.history.holding import Holding, Plain
 from diskwatch.history.mishaps import told
 from diskwatch.history.opening import BUSY_MS
-from diskwatch.history.schema import bring_up_to_date
+from diskwatch.history.versions import MIGRATIONS, steps_of
 
 
 def make_folder(folder: Path) -> None:
@@ -42,7 +42,7 @@ def make_file(path: Path) -> None:
     os.close(descriptor)
 
 
-def begun(path: Path) -> Database:
+def begun(path: Path) -> Holding:
     """A history of this version at a path, made where there is none; whoever calls holds the lock.
 
     Raises:
@@ -55,7 +55,7 @@ def begun(path: Path) -> Database:
     return prepared(connection, path)
 
 
-def prepared(connection: sqlite3.Connection, path: Path | None) -> Database:
+def prepared(connection: sqlite3.Connection, path: Path | None) -> Holding:
     """A connection as the writer uses it, brought up to date; it is closed where that fails.
 
     Args:
@@ -67,7 +67,6 @@ def prepared(connection: sqlite3.Connection, path: Path | None) -> Database:
         HistoryError: it cannot be written, or is damaged.
     """
     try:
-        db = Database(connection, execute_plugins=False)
         # FULL: a reading that was reported as stored must outlive a power cut.
         connection.execute("PRAGMA synchronous = FULL")
         connection.execute("PRAGMA foreign_keys = ON")
@@ -75,11 +74,21 @@ def prepared(connection: sqlite3.Connection, path: Path | None) -> Database:
         connection.execute("PRAGMA secure_delete = OFF")
         connection.execute("PRAGMA journal_mode = WAL")
         leave_to_others(connection)
-        bring_up_to_date(db)
+        return Plain(connection) if steps_of(connection) == set(MIGRATIONS) else _brought(connection)
     except sqlite3.Error as error:
         connection.close()
         raise told(error, path) from error
     except BaseException:
         connection.close()
         raise
+
+
+def _brought(connection: sqlite3.Connection) -> Holding:
+    """A connection to a history that lacks steps, which it takes."""
+    # Several megabytes, which a history that is up to date need not cost for as long as it is watched.
+    from diskwatch.history.library import Database  # noqa: PLC0415 - see above
+    from diskwatch.history.schema import bring_up_to_date  # noqa: PLC0415 - see above
+
+    db = Database(connection, execute_plugins=False)
+    bring_up_to_date(db)
     return db

@@ -14,8 +14,8 @@ from diskwatch.history.beginning import begun, make_file, make_folder, prepared
 from diskwatch.history.checks import Readable
 from diskwatch.history.folding import fold_in, grown
 from diskwatch.history.forecasts import latest_forecasts
+from diskwatch.history.holding import Holding
 from diskwatch.history.latency import learnt, traffic_days
-from diskwatch.history.library import Database
 from diskwatch.history.listening import left_off, totals, write_listened
 from diskwatch.history.lock import WatchLock
 from diskwatch.history.mending import mend
@@ -53,7 +53,7 @@ class History:
     Every method that writes does so wholly or not at all, and raises `HistoryError` where it could not.
     """
 
-    def __init__(self, db: Database, path: Path | None, lock: WatchLock | None) -> None:
+    def __init__(self, db: Holding, path: Path | None, lock: WatchLock | None) -> None:
         self._db = db
         self._path = path
         self._file = None if path is None else _identity(path)

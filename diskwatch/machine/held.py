@@ -14,6 +14,8 @@ from collections.abc import Callable, Sequence
 from enum import StrEnum
 from typing import Any
 
+from diskwatch.stand_in import without
+
 _log = logging.getLogger(__name__)
 _importing = threading.Lock()
 
@@ -52,6 +54,8 @@ def _library() -> tuple[Callable[..., Any], Callable[[Sequence[str]], Any]]:
     with _importing:
         loggers, language = logging.getLoggerClass(), os.environ.get("LANG")
         try:
+            # It guesses the encoding of what it reads itself, and nothing here lets it read anything.
+            without("pySMART", "chardet", {})
             from pySMART import Device  # noqa: PLC0415 - half a second that commands without drives need not pay
             from pySMART.smartctl import Smartctl  # noqa: PLC0415 - as above
         finally:

@@ -15,14 +15,17 @@ from contextlib import suppress
 from datetime import UTC, datetime, timedelta
 from typing import Any
 
-from apscheduler.events import EVENT_JOB_ERROR, EVENT_JOB_MAX_INSTANCES
-from apscheduler.executors.base import BaseExecutor
-from apscheduler.executors.pool import ThreadPoolExecutor
-from apscheduler.jobstores.base import JobLookupError
-from apscheduler.schedulers.background import BackgroundScheduler
-from apscheduler.schedulers.base import BaseScheduler
-from apscheduler.triggers.date import DateTrigger
-from apscheduler.triggers.interval import IntervalTrigger
+from diskwatch.service.library import (
+    EVENT_JOB_ERROR,
+    EVENT_JOB_MAX_INSTANCES,
+    BackgroundScheduler,
+    BaseExecutor,
+    BaseScheduler,
+    DateTrigger,
+    IntervalTrigger,
+    JobLookupError,
+    ThreadPoolExecutor,
+)
 
 Mishap = Callable[[str], None]
 
