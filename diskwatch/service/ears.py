@@ -10,6 +10,7 @@ import select
 import threading
 from collections.abc import Callable, Mapping
 from contextlib import AbstractContextManager
+from dataclasses import replace
 
 import msgspec
 
@@ -105,6 +106,7 @@ class Ears:
         self._spoke = 0.0
         self._line = 0.0
         self._log: Log | None = None
+        self._epoch = keeper.epoch
         self._wake = -1, -1
         self._thread = threading.Thread(target=self._follow, name="listens to the kernel", daemon=True)
         self.trouble: str | None = None
@@ -114,7 +116,7 @@ class Ears:
         """Open the log where it was left; without the right to, `trouble` says so and nothing is heard."""
         with self._lock:
             kept = self._keeper.left_off(self._senses.source)
-            self._kept = self._keeper.heard_totals()
+            self._kept, self._epoch = self._keeper.heard_totals(), self._keeper.epoch
         self._totals = {number: dict(counts) for number, counts in self._kept.items()}
         left_off, gathered = kept if kept is not None else (None, "")
         try:
@@ -173,7 +175,9 @@ class Ears:
         self._news.discard(number)
         if self._log is None:
             return ()
-        counts = {**dict.fromkeys(_FOLLOWED, 0), **self._kept.get(number, {})}
+        # The thread that listens begins anew by itself, since it may be at work on its counts just now.
+        kept = self._kept if self._epoch == self._keeper.epoch else self._keeper.heard_totals()
+        counts = {**dict.fromkeys(_FOLLOWED, 0), **kept.get(number, {})}
         return tuple(
             Value(
                 signal=signal,
@@ -184,6 +188,30 @@ class Ears:
             )
             for signal, count in sorted(counts.items())
         )
+
+    def _begin_anew_if_void(self) -> None:
+        """Count on from what the history holds, where its past became another; the caller holds the lock."""
+        since, self._epoch = self._epoch, self._keeper.epoch
+        if since == self._epoch:
+            return
+        heard = {number: _beyond(self._totals[number], self._kept.get(number, {})) for number in self._changed}
+        numbers = {one: self._keeper.called_now(one, since=since) for one in self._totals.keys() | self._news}
+        self._kept = self._keeper.heard_totals()
+        totals = {number: dict(counts) for number, counts in self._kept.items()}
+        for number, counts in heard.items():
+            here = totals.setdefault(numbers[number], {})
+            here.update({name: by + (0 if name == _LAST else here.get(name, 0)) for name, by in counts.items()})
+        self._totals = totals
+        self._changed = {numbers[number] for number in self._changed}
+        self._news = {numbers[number] for number in self._news}
+        self._told = {(numbers.get(number, number), kind): told for (number, kind), told in self._told.items()}
+        self._entries = [
+            entry if entry.drive is None else replace(entry, drive=numbers.get(entry.drive, entry.drive))
+            for entry in self._entries
+        ]
+        if any(before != now for before, now in numbers.items()):
+            # Names and troubles under way are those of other drives now; a trouble that goes on is heard again.
+            self._names, self._named_at, self._gathered = {}, float("-inf"), Gathered()
 
     def _follow(self) -> None:
         try:
@@ -243,6 +271,9 @@ class Ears:
         return True
 
     def _name_drives(self) -> None:
+        if self._epoch != self._keeper.epoch:
+            with self._lock:
+                self._begin_anew_if_void()
         up = self._senses.uptime()
         if up - self._named_at < RENAMED_EVERY:
             return
@@ -322,9 +353,10 @@ class Ears:
             text = heard_told.lost(self._log.lost - self._lost)
             self._entries.append(Entry(at=self._now(), drive=None, kind="trouble", text=text))
             self._lost = self._log.lost
-        entries, self._entries = tuple(self._entries), []
-        changed, self._changed = self._changed, set()
         with self._lock:
+            self._begin_anew_if_void()
+            entries, self._entries = tuple(self._entries), []
+            changed, self._changed = self._changed, set()
             self._kept.update((number, dict(self._totals[number])) for number in changed)
             self._news |= changed
             self._keeper.listen(
@@ -336,6 +368,11 @@ class Ears:
                     entries=entries,
                 )
             )
+
+
+def _beyond(counts: Mapping[str, int], kept: Mapping[str, int]) -> dict[str, int]:
+    """What was heard and is not kept yet: counts on top of what is; of the last sector the sector itself."""
+    return {name: count if name == _LAST else count - kept.get(name, 0) for name, count in counts.items()}
 
 
 def _only(end: int) -> select.poll:

@@ -36,11 +36,13 @@ class Joined:
         known: all drives, with the numbers that they have from now on.
         states: their states as text.
         writes: what waits, in the history's own numbers.
+        numbers: the number that each drive has from now on, by the one that it had.
     """
 
     known: Mapping[int, KnownDrive]
     states: Mapping[int, str]
     writes: tuple[Write, ...]
+    numbers: Mapping[int, int]
 
 
 def strangers(there: Mapping[int, KnownDrive], here: Mapping[int, KnownDrive]) -> bool:
@@ -63,7 +65,12 @@ def join(history: History, here: Mapping[int, KnownDrive], waiting: Iterable[Wri
     joining = _Joining(history, _recognised(there, here), frozenset(there))
     writes = tuple(joining.joined(write) for write in waiting)
     known = {one.number: one for one in joining.numbers.values()}
-    return Joined(known=there | known, states=joining.states, writes=writes)
+    return Joined(
+        known=there | known,
+        states=joining.states,
+        writes=writes,
+        numbers={before: now.number for before, now in joining.numbers.items()},
+    )
 
 
 def _recognised(there: Mapping[int, KnownDrive], here: Mapping[int, KnownDrive]) -> dict[int, KnownDrive]:

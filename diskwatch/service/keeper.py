@@ -5,7 +5,7 @@ here, bounded, and is written when the trouble is over; what the trouble is can 
 """
 
 import time
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from contextlib import suppress
 from pathlib import Path
 from typing import TypeVar
@@ -71,6 +71,7 @@ class Keeper:
         self._blind = False
         self.epoch = 0
         """Grows when a history comes into reach whose past was not known: what was remembered is void then."""
+        self._renumbered: list[Mapping[int, int]] = []
         self._known: dict[int, KnownDrive] = {}
         self._states: dict[int, str] = {}
         try:
@@ -99,7 +100,7 @@ class Keeper:
             joined = join(history, self._known, self._waiting)
             self._waiting.become(joined.writes)
             self._known, self._states = dict(joined.known), dict(joined.states)
-            self.epoch += 1
+            self._begin_epoch(joined.numbers)
             if joined.writes:
                 count = say_count(len(joined.writes))
                 self._say(
@@ -115,6 +116,21 @@ class Keeper:
             self._known = known | self._known
             self._states = history.states() | self._states
         self._blind = False
+
+    def _begin_epoch(self, numbers: Mapping[int, int]) -> None:
+        self._renumbered.append(numbers)
+        self.epoch += 1
+
+    def called_now(self, number: int, *, since: int) -> int:
+        """The number that a drive has now.
+
+        Args:
+            number: the one that it had.
+            since: in which epoch it had that.
+        """
+        for numbers in self._renumbered[since:]:
+            number = numbers.get(number, number)
+        return number
 
     def _say(self, text: str) -> None:
         self._waiting.append(
@@ -226,7 +242,7 @@ class Keeper:
         answer = deed(self._history)
         self._known = {one.number: one for one in self._history.known()}
         self._states = dict(self._history.states())
-        self.epoch += 1
+        self._begin_epoch({})
         return answer
 
     def mend(self) -> None:

@@ -93,8 +93,7 @@ class Rounds:
         self._troubles: tuple[str, ...] = ()
         self._epoch = keeper.epoch
         self._ending = threading.Event()
-        self.blocks: dict[int, tuple[str, ...]] = {}
-        """Kernel names of the block devices of each drive of the last round, by the drive's number."""
+        self._blocks: dict[int, tuple[str, ...]] = {}
         self.found: dict[int, Found] = {}
         """How each drive that has answered was listed, by the drive's number."""
         self.left_out: Mapping[int, Why] = {}
@@ -141,6 +140,7 @@ class Rounds:
                 # A question that was cut short by the end of the watch says nothing of the drive.
                 batch = tuple(one for one in batch if one.pass_.outcome is not Outcome.TIMED_OUT)
             with lock or nullcontext():
+                taken = self._in_numbers_of_now(taken)
                 part, more = self._judged(batch, taken)
                 if asking.waiting == 0 and not survey.troubles and not ending:
                     away, gone = self._gone(taken)
@@ -166,6 +166,21 @@ class Rounds:
         """What kept the last listing of the drives from being complete."""
         return self._troubles
 
+    @property
+    def blocks(self) -> dict[int, tuple[str, ...]]:
+        """Kernel names of the block devices of each drive of the last round, by the drive's number."""
+        since = self._epoch
+        return {
+            self._keeper.called_now(number, since=since): names for number, names in tuple(self._blocks.items())
+        }
+
+    def _in_numbers_of_now(self, taken: set[int]) -> set[int]:
+        """Numbers under which drives were met in this round, where they got others under way."""
+        since, blocks = self._epoch, self.blocks
+        self._forget_if_void()
+        self._blocks = blocks
+        return {self._keeper.called_now(number, since=since) for number in taken}
+
     def _forget_if_void(self) -> None:
         """Begin from the history again where it came into reach only now."""
         if self._keeper.epoch != self._epoch:
@@ -173,7 +188,7 @@ class Rounds:
             self._states.clear()
             self._here.clear()
             self._away.clear()
-            self.blocks.clear()
+            self._blocks.clear()
             self.found.clear()
             self._latency.forget()
             self._forecasts.forget()
@@ -223,7 +238,7 @@ class Rounds:
             known, more = self._recognised(answer, taken)
             taken.add(known.number)
             self._here[self._instance(answer.found)] = known.number
-            self.blocks[known.number] = answer.found.blocks
+            self._blocks[known.number] = answer.found.blocks
             self.found[known.number] = answer.found
             self._away.pop(known.number, None)
             heard = self._heard(known.number, answer.found.blocks)
@@ -329,7 +344,7 @@ class Rounds:
             if seen_now or not seen_before or times >= AWAY_LIMIT:
                 continue
             self._away[number] = times + 1
-            self.blocks.pop(number, None)
+            self._blocks.pop(number, None)
             self.found.pop(number, None)
             pass_ = Pass(
                 at=self._now(),

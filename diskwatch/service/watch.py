@@ -5,6 +5,7 @@ import threading
 import time
 from collections.abc import Callable, Mapping
 from contextlib import suppress
+from dataclasses import replace
 from enum import Enum
 from functools import partial
 from pathlib import Path
@@ -115,7 +116,7 @@ class Watch:
         self._folder = folder
         self._told = told
         self._lock = threading.Lock()
-        self._keeper = Keeper(folder)
+        self._keeper = Keeper(folder, now=now)
         self._live = LiveWriter(folder)
         watch = settings.watch
         self._traffic = Traffic(machine, now, time.monotonic)
@@ -136,7 +137,7 @@ class Watch:
                 senses,
                 self._keeper,
                 lock=self._lock,
-                blocks=lambda: dict(self._rounds.blocks),
+                blocks=lambda: self._rounds.blocks,
                 now=now,
                 soon=self._look_soon,
             )
@@ -166,7 +167,7 @@ class Watch:
         self._deaf: str | None = None
         self._on_battery = 0
         self._schedule = Schedule(self._mishap)
-        self._gathered: list[IoSpan] = []
+        self._gathered: list[tuple[int, IoSpan]] = []
         self._committed = time.monotonic()
         self._rounding = threading.Lock()
         self._stop = threading.Event()
@@ -404,11 +405,12 @@ class Watch:
         # Here, since every job of its own would wake the machine once more.
         self._look_for_requests()
         self._say_if_deaf()
-        look = self._traffic.look(dict(self._rounds.blocks))
+        epoch = self._keeper.epoch
+        look = self._traffic.look(self._rounds.blocks)
         # First of all what needs no disk: the one that hangs may be the one that the history lies on.
         left_out = {number: why.told for number, why in self._rounds.left_out.items() if why.told is not None}
         self._live.write(look.spans, now(), self._troubles(), left_out)
-        self._gathered += look.spans
+        self._gathered += [(epoch, span) for span in look.spans]
         if look.entries:
             with self._lock:
                 self._keeper.note(*look.entries)
@@ -475,7 +477,9 @@ class Watch:
         self._committed = time.monotonic()
         gathered, self._gathered = self._gathered, []
         with self._lock:
-            self._keeper.add_traffic(gathered)
+            # Since a span was counted its drive may have got another number.
+            numbered = ((span, self._keeper.called_now(span.drive, since=epoch)) for epoch, span in gathered)
+            self._keeper.add_traffic([replace(span, drive=number) for span, number in numbered])
 
     def _mishap(self, text: str) -> None:
         self._note("trouble", plain(text))

@@ -9,6 +9,7 @@ from diskwatch.machine.partitions import Piece
 from diskwatch.machine.senses import RealSenses
 from diskwatch.records import Round
 from diskwatch.service import ears as room
+from diskwatch.service.arrival import take_in
 from diskwatch.service.ears import MOST_TOLD, Ears
 from diskwatch.service.keeper import Keeper
 from tests.history.examples import a_part, a_pass
@@ -245,3 +246,48 @@ def test_a_log_that_breaks_off_is_said_and_what_was_heard_is_kept(tmp_path, sens
     assert "Input/output error" in here.ears.trouble
     assert here.counts(1)["kernel-io-errors"] == 1
     here.end()
+
+
+def test_what_another_machine_heard_of_a_drive_is_counted_on_after_its_past_arrived(tmp_path, senses):
+    there = ScriptedSenses()
+    other = Listening(tmp_path / "there", there)
+    for one in range(30):
+        there.say(READ.format("sda", 2048 + one * 5000))
+    other.ears.once()
+    other.end()
+    with Past.open(tmp_path / "there") as past:
+        lines = past.lines(1)
+    here = Listening(tmp_path / "here", senses)
+    here.keeper.change(lambda history: take_in(history, lines, NOON + 5))
+    assert here.counts(1)["kernel-io-errors"] == 30
+    senses.say(READ.format("sda", 999_999))
+    here.ears.once()
+    assert here.counts(1)["kernel-io-errors"] == 31
+    here.end()
+
+
+def test_what_was_heard_before_the_history_came_into_reach_stays_with_its_drive(tmp_path, senses):
+    state, away = tmp_path / "state", tmp_path / "away"
+    keeper = Keeper(state)
+    for drive in (NVME, HDD):
+        keeper.record(Round(at=NOON, drives=(a_part(keeper.admit(drive, HERE, NOON), a_pass(NOON)),)))
+    keeper.close()
+    state.rename(away)
+    state.write_text("in the way")
+    here = Listening(state, senses)
+    assert [known.drive for known in here.keeper.known] == [HDD, NVME]
+    senses.say(READ.format("sda", 2048))
+    here.ears.once()
+    state.unlink()
+    away.rename(state)
+    here.keeper.try_again()
+    assert [known.drive for known in here.keeper.known] == [NVME, HDD]
+    assert here.counts(1)["kernel-io-errors"] == 0
+    assert here.counts(2)["kernel-io-errors"] == 1
+    # What the next round tells of the names.
+    here.ears._blocks = lambda: {1: ("nvme0n1",), 2: ("sda",)}
+    senses.say(READ.format("nvme0n1", 7_777_777))
+    here.ears.once()
+    here.end()
+    heard = [(drive, text) for drive, text in here.book() if drive is not None]
+    assert [(drive, text.split()[3]) for drive, text in heard] == [(2, "sda"), (1, "nvme0n1")]

@@ -355,3 +355,46 @@ def test_only_the_drives_that_something_was_heard_of_are_asked_and_none_is_taken
     machine.asked.clear()
     assert here.run(only={99}) == ()
     assert machine.asked == []
+
+
+def test_a_history_that_comes_into_reach_within_a_round_gets_each_answer_for_its_drive(
+    tmp_path, monkeypatch
+):
+    monkeypatch.setattr("diskwatch.service.asking.PATIENCE", 0.05)
+    state, away = tmp_path / "state", tmp_path / "away"
+    machine = ScriptedMachine(found(NVME), found(HDD))
+    machine.answers = {"/dev/sda": [read(NOON, pending_sectors=0)], "/dev/nvme0": [read(NOON, NVME)]}
+    machine.hold["/dev/sda"] = threading.Event()
+    before = Keeper(state)
+    # The slow one answers last, so that it is the second drive of this history.
+    rounds(machine, before).run(told=lambda _: machine.hold["/dev/sda"].set())
+    before.close()
+    state.rename(away)
+    state.write_text("in the way")
+    machine.answers = {
+        "/dev/sda": [read(NOON + DAY, pending_sectors=7)],
+        "/dev/nvme0": [read(NOON + DAY, NVME)],
+    }
+    machine.hold = {"/dev/nvme0": threading.Event()}
+    keeper = Keeper(state)
+
+    def back(_part):
+        if state.is_file():
+            state.unlink()
+            away.rename(state)
+            keeper.try_again()
+        machine.hold["/dev/nvme0"].set()
+
+    running = rounds(machine, keeper, at=NOON + DAY)
+    running.run(told=back)
+    assert running.blocks == {1: ("nvme0",), 2: ("sda",)}
+    assert keeper.trouble is None
+    keeper.close()
+    with Past.open(state) as past:
+        assert {line.number: line.drive.identity.serial for line in past.bays(NOON).every} == {
+            1: "INV0003",
+            2: "INV0001",
+        }
+        assert [len(past.passes(number)) for number in (1, 2)] == [2, 2]
+        assert past.series(2, "pending-sectors")[-1] == (NOON + DAY, 7)
+        assert past.series(1, "pending-sectors") == ()
