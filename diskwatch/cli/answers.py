@@ -3,6 +3,7 @@
 from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
+from diskwatch.judge.expert import expert_line
 from diskwatch.judge.stakes import margin_of, no_odds_of, odds_of, replace_by_of
 from diskwatch.records import (
     Bays,
@@ -335,5 +336,6 @@ def _finding(finding: Finding) -> dict[str, object]:
         "cause": finding.cause.value if finding.cause else None,
         "evidence": finding.evidence,
         "sentence": finding.sentence,
+        "expert": expert_line(finding),
         "data": dict(finding.data),
     }

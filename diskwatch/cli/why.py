@@ -14,6 +14,8 @@ from diskwatch.cli.said import said
 from diskwatch.history.forecasts import Kept
 from diskwatch.history.reader import Past
 from diskwatch.judge import sentences
+from diskwatch.judge.expert import expert_line
+from diskwatch.language import _
 from diskwatch.records import DriveLine
 from diskwatch.units import once_in, plain, say_count, say_days
 
@@ -70,7 +72,7 @@ def chapters(
         forecasts: all that were kept about it.
         at: now, UTC seconds since 1970.
     """
-    yield "What stands", (f"{one.sentence} (since {_when(one.since)})" for one in why.findings)
+    yield "What stands", _standing(why)
     yield "Counters followed (first read, now)", _counters(why)
     yield "Evidence: how rarely a drive within the norm would come to this", _evidence(why)
     yield "Latency at equal load", measured.latency(why)
@@ -91,6 +93,12 @@ def chapters(
     yield "Rule that decided", () if why.rule is None else (why.rule,)
     yield "What would change the call", why.would_change
     yield "What the bound on false alarms rests on, and what breaks it", measured.bound(why)
+
+
+def _standing(why: analyser.Explanation) -> Iterator[str]:
+    for one in why.findings:
+        yield f"{one.sentence} (since {_when(one.since)})"
+        yield _("For experts: {line}").format(line=expert_line(one))
 
 
 def _counters(why: analyser.Explanation) -> Iterator[str]:

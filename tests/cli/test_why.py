@@ -30,6 +30,15 @@ def test_it_tells_the_chain_from_readings_to_the_call(state):
     assert max(map(len, told.out.splitlines())) <= 80
 
 
+def test_beside_each_finding_stands_a_line_for_experts_the_same_as_in_the_json(state):
+    found = run("why", "inv1", "--json", "--state", state).json["findings"]
+    told = " ".join(run("why", "inv1", "--state", state).out.split())
+    assert found
+    for one in found:
+        assert one["expert"].startswith(f"{one['name']}/")
+        assert f"For experts: {one['expert']}" in told
+
+
 def test_the_json_names_rule_counters_evidence_and_damage(state):
     answer = run("why", "inv1", "--json", "--state", state).json
     assert answer["drive"]["call"] == "retire"
