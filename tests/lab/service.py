@@ -163,6 +163,10 @@ def _other_status(was: str) -> bool:
     return shown("StatusText") != was
 
 
+def _told_of_clocks() -> int:
+    return sum("clock was set" in one for one in book())
+
+
 def clock() -> None:
     """With rounds every minute: what a clock that is set does to their number within some minutes."""
     for by, name in (("+1 hour", "forward"), ("-2 hours", "back")):
@@ -171,8 +175,8 @@ def clock() -> None:
             f"a round after the clock was set {name}", partial(_other_status, shown("StatusText")), 150
         )
         check(seconds <= 60 + 30 + 10, f"set {name} by hours: the next round came {seconds:.0f} s later")
-    told = [one for one in book() if "clock was set" in one]
-    check(len(told) == 2, f"and both are told: {told}")
+    wait("the clocks' words in the day book", lambda: _told_of_clocks() == 2, 60)
+    check(_told_of_clocks() == 2, "and both are told")
 
 
 def watchdog() -> None:
