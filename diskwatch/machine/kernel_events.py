@@ -11,6 +11,7 @@ What has been gathered is plain values, so that a restart goes on in the middle 
 import re
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from itertools import islice
 
 from diskwatch.machine.kernel_line import Line
 from diskwatch.machine.kernel_texts import Says, Told, told
@@ -29,12 +30,14 @@ SAME_SECTORS = 8
 """512-byte sectors of one page: the kernel reads no less at once."""
 
 _MOST_PLACES = 512
+_LET_GO = 64
 _MOST_TROUBLES = 256
 _LINK_BITS = frozenset({"BadCRC", "10B8B", "Dispar", "LinkSeq", "Handshk", "TrStaTrns", "PHYRdyChg", "DevExch"})
 _BUS = frozenset({"ATA bus error", "HSM violation"})
 _GONE = frozenset({"DID_NO_CONNECT", "DID_BAD_TARGET", "DID_TRANSPORT_FAILFAST"})
 _REQUEST = Says.REQUEST
 _OF_DRIVES = frozenset({Says.REQUEST, Says.PAGE_LOST, Says.PAGE_UNREAD})
+_OF_A_PORT = frozenset({Says.EXCEPTION, Says.COMMAND_FAILED, Says.RESULT})
 _STACKED = re.compile(r"(?:dm-|md|loop|bcache|zd|nbd|drbd|rbd)\d")
 _SILENT = frozenset({"DID_TIME_OUT"})
 
@@ -122,14 +125,15 @@ def hear(kept: Gathered, line: Line, drives: Mapping[str, tuple[str, ...]]) -> F
     say = told(line.text)
     if say is None:
         return over
-    if say.says is None:
+    says = say.says
+    if says is None:
         kept.unknown += 1
         return over
-    if say.says is Says.WOKE:
+    if says is Says.WOKE:
         kept.settled = line.seconds + SETTLING
         return over
     name = _name(kept, say)
-    if say.says in _OF_DRIVES and _STACKED.match(name):
+    if says in _OF_DRIVES and _STACKED.match(name):
         # A volume fails where its drive does, or where nothing but the volume is at fault; the drive's own
         # lines tell which.
         return over
@@ -139,8 +143,10 @@ def hear(kept: Gathered, line: Line, drives: Mapping[str, tuple[str, ...]]) -> F
     if not whose:
         kept.unplaced += 1
         return over
-    found = [pair for drive in whose for pair in _taken(kept, drive, name, line, say)]
-    return (*over, *found)
+    if len(whose) == 1:  # nearly always
+        found = _taken(kept, whose[0], name, line, say)
+        return (*over, *found) if over else found
+    return (*over, *(pair for drive in whose for pair in _taken(kept, drive, name, line, say)))
 
 
 def settle(kept: Gathered, seconds: float) -> Found:
@@ -168,7 +174,7 @@ def _name(kept: Gathered, say: Told) -> str:
     name = parts.get("name") or parts.get("address")
     if name is None:
         return kept.port.get("", "")  # the second half of a line in two
-    if say.says in {Says.EXCEPTION, Says.COMMAND_FAILED, Says.RESULT} and "." in name:
+    if "." in name and say.says in _OF_A_PORT:
         kept.port[name.partition(".")[0]] = name
         kept.port[""] = name
     return name
@@ -195,9 +201,11 @@ def _taken(kept: Gathered, drive: str, name: str, line: Line, say: Told) -> Foun
         kept.troubles[drive] = trouble
     trouble.last = line.seconds
     trouble.lines += 1
-    if say.says is not _REQUEST:
+    if say.says is _REQUEST:
+        event = _request(trouble, name, line, say)
+    else:
         _noted(trouble, say)
-    event = _at_once(trouble, name, line, say)
+        event = _at_once(trouble, name, line, say)
     if event is None:
         return ()
     trouble.told = True
@@ -254,8 +262,6 @@ def _at_once(trouble: Trouble, name: str, line: Line, say: Told) -> Event | None
     """The event that a line is by itself, with what was said before it."""
     words = say.parts.get("words") or ""
     match say.says:
-        case Says.REQUEST:
-            return _request(trouble, name, line, say)
         case Says.PAGE_LOST if not trouble.told and not trouble.gone:
             return _event(EventKind.UNWRITABLE, name, line, words="lost page write", lines=trouble.lines)
         case Says.OFFLINED | Says.GIVEN_UP:
@@ -337,11 +343,13 @@ def _ended(trouble: Trouble, settled: float) -> Event | None:
 
 def _once(kept: Gathered, drive: str, event: Event, *, place: str) -> Found:
     """The event, unless it was told of the same place a moment ago."""
-    key = f"{drive} {event.kind} {event.subject} {place}"
+    key = f"{drive} {event.kind.value} {event.subject} {place}"
     before = kept.places.pop(key, None)
     kept.places[key] = event.seconds
     if len(kept.places) > _MOST_PLACES:
-        del kept.places[next(iter(kept.places))]
+        # Several at once: to find the first of a table whose first places were emptied one by one takes long.
+        for old in tuple(islice(kept.places, _LET_GO)):
+            del kept.places[old]
     repeated = before is not None and 0 <= event.seconds - before < SAME
     return () if repeated else ((drive, event),)
 
