@@ -32,9 +32,11 @@ def margin(forecasts: Iterable[Forecast], *, day: int) -> Margin:
         nothing is known.
     """
     every = tuple(forecasts)
-    known = [(_from_today(one, day), one) for one in every if one.low is not None]
+    known = [(_from_today(one, day), one) for one in every if one.low is not None and not _missed(one, day)]
     if not known:
         reasons = sorted({one.reason for one in every if one.reason})
+        if not reasons and every:
+            reasons = [_("what was forecast did not come in its time, and nothing newer was forecast")]
         return Margin(reason="; ".join(reasons) or _("no signal of this drive moves towards a limit"))
     (low, high), first = min(known, key=lambda pair: (pair[0][0], pair[0][1], pair[1].signal))
     return Margin(
@@ -44,6 +46,11 @@ def margin(forecasts: Iterable[Forecast], *, day: int) -> Margin:
         signal=first.signal,
         limit=first.limit,
     )
+
+
+def _missed(forecast: Forecast, day: int) -> bool:
+    """Whether its time is over and the limit was not reached: one that was is forecast as 0 days."""
+    return forecast.high is not None and 0 < forecast.high < day - forecast.made_on_day
 
 
 def _from_today(forecast: Forecast, day: int) -> tuple[float, float]:

@@ -35,8 +35,14 @@ def test_the_margin_is_the_forecast_whose_interval_begins_first():
 def test_an_older_forecast_is_told_from_today_on():
     left = margin([forecast("percentage-used", 90, 400, made=TODAY - 30)], day=TODAY)
     assert (left.low, left.high) == (60, 370)
+
+
+def test_a_limit_that_did_not_come_in_its_time_is_not_taken_for_reached():
     late = margin([forecast("percentage-used", 10, 20, made=TODAY - 30)], day=TODAY)
-    assert (late.low, late.high) == (0, 0)
+    assert not late.known
+    assert late.reason == "what was forecast did not come in its time, and nothing newer was forecast"
+    reached = margin([forecast("percentage-used", 0, 0, made=TODAY - 30)], day=TODAY)
+    assert (reached.low, reached.high) == (0, 0)
 
 
 def test_what_is_not_known_keeps_its_reason():
@@ -58,7 +64,11 @@ def test_no_forecast_begins_before_the_margin_and_none_runs_below_today(ends, go
         for number, pair in enumerate(ends)
     ]
     left = margin(every, day=TODAY)
-    assert left.low == min(max(0.0, one.low - gone) for one in every)
+    open_still = [one for one in every if one.high == 0 or one.high >= gone]
+    assert left.known == bool(open_still)
+    if not left.known:
+        return
+    assert left.low == min(max(0.0, one.low - gone) for one in open_still)
     assert left.low is not None
     assert left.high is not None
     assert 0 <= left.low <= left.high
