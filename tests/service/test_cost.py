@@ -2,7 +2,8 @@
 
 A watch in a process of its own looks at six invented drives for ``DISKWATCH_BENCH_SECONDS`` (600 unless set;
 half an hour and more to see everything that is due). The kernel tells what it cost. For comparison the bare
-libraries do nothing but hold their imports in a process beside it.
+libraries do nothing but hold their imports in a process beside it. Where ``/run`` is no memory, figures of the
+moment go to a disk and count as writes: run it in a mount namespace with a tmpfs there.
 """
 
 import os
