@@ -92,10 +92,10 @@ def say_days(days: float) -> str:
 
 
 def once_in(days: float) -> str:
-    """Evidence in days, said as "once in N years", rounded down to two digits; it says nothing beyond 1,000."""
+    """Evidence in days, said as "once in N years", rounded down to two digits, between 1 and 1,000."""
     years = days / 365.25
     if years < 1:
-        return "once in less than a year"
+        return "once a year or more often"
     if years >= 1000:
         return "once in more than 1,000 years"
     scale = 10 ** max(0, len(str(int(years))) - 2)

@@ -13,4 +13,4 @@ def test_the_ledger_of_temperature_is_laid_open_and_while_it_is_learnt_too():
     young = standing(usual=None, learnt_days=8, days=None, alarms_at=121_750.0)
     assert young == "What is usual is still being learnt, from 8 of 30 days."
     old = standing(usual=38.0, learnt_days=30, days=5.0, alarms_at=121_750.0)
-    assert old == "Usually up to 38 °C a day: once in less than a year, alarms at once in 330 years."
+    assert old == "Usually up to 38 °C a day: once a year or more often, alarms at once in 330 years."
