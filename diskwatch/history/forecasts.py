@@ -1,7 +1,7 @@
 """Forecasts, each kept with the day it was made on, its limit, and the day on which that was reached."""
 
 import sqlite3
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 
 from diskwatch.history import rows
@@ -57,11 +57,21 @@ def write_forecasts(connection: sqlite3.Connection, drive: int, made: Iterable[F
             )
 
 
-def latest_forecasts(connection: sqlite3.Connection) -> dict[int, tuple[Forecast, ...]]:
-    """The latest forecast about each signal, by the drive's number."""
+def latest_forecasts(
+    connection: sqlite3.Connection,
+    decode: Callable[[int, rows.Row], Forecast | None] = lambda _drive, row: forecast(row),
+) -> dict[int, tuple[Forecast, ...]]:
+    """The latest forecast about each signal, by the drive's number.
+
+    Args:
+        connection: to the history.
+        decode: makes a forecast of a drive's row; where it gives None the forecast is left out.
+    """
     found: dict[int, list[Forecast]] = {}
     for drive, *row in connection.execute(_LATEST):
-        found.setdefault(drive, []).append(forecast(tuple(row)))
+        made = decode(drive, tuple(row))
+        if made is not None:
+            found.setdefault(drive, []).append(made)
     return {drive: tuple(forecasts) for drive, forecasts in found.items()}
 
 

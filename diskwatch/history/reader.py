@@ -13,7 +13,7 @@ from typing import Self, TypeVar
 
 from diskwatch.errors import HistoryError
 from diskwatch.history import proof, questions
-from diskwatch.history.bays import drive_lines
+from diskwatch.history.bays import all_that_can_be_read, drive_lines
 from diskwatch.history.counting import counted_before
 from diskwatch.history.exchange import Line
 from diskwatch.history.forecasts import Kept, kept_forecasts, latest_forecasts
@@ -92,7 +92,7 @@ class Past:
         Args:
             now: UTC seconds since 1970.
         """
-        lines = self._ask(drive_lines)
+        lines, odd = self._ask(all_that_can_be_read)
         who = watcher(self._folder)
         # What a watch that has ended left behind is nobody's present.
         live = Live() if who is None else read_live(self._folder, now)
@@ -105,7 +105,7 @@ class Past:
             at=now,
             watcher=who,
             drives=tuple(line for line in shown if not line.departed),
-            trouble=live.troubles,
+            trouble=(*live.troubles, *odd),
             departed=tuple(line for line in shown if line.departed),
         )
 
@@ -291,7 +291,7 @@ class Past:
                 except ValueError as error:
                     if not opened.lasting and not opened.holds():
                         continue
-                    raise unreadable(self._path) from error
+                    raise unreadable(self._path, error) from error
                 if opened.lasting or opened.holds():
                     return answer
         raise HistoryError(f"{plain(str(self._path))} changes faster than it can be read", hint="try again")

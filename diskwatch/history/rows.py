@@ -234,9 +234,13 @@ def entry_row(entry: Entry) -> tuple[Cell, ...]:
 
 
 def entry(row: Row) -> Entry:
-    """From the columns of `entry_row`."""
+    """From the columns of `entry_row`; where the data cannot be right, what happened is told all the same."""
     at, drive, kind, words, data = row
-    return Entry(at=at, drive=drive, kind=kind, text=words, data=_object(data))
+    try:
+        told = _object(data)
+    except ValueError as error:
+        told, words = {}, f"{words} (What stands behind this line cannot be read: {error}.)"
+    return Entry(at=at, drive=drive, kind=kind, text=words, data=told)
 
 
 def span(row: Row) -> IoSpan:

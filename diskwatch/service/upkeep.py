@@ -148,8 +148,16 @@ class Upkeep:
             if thorough:
                 with self._lock:
                     self._keeper.ask(lambda history: history.note_checked(at))
-            if to_mend(path, refuse_no_state):
-                self._take_out()
+            self._mend_values()
+
+    def mend_values(self) -> None:
+        """Look for values that cannot be right, and take them out."""
+        self._try(self._mend_values)
+
+    def _mend_values(self) -> None:
+        path = self._folder / HISTORY
+        if path.exists() and to_mend(path, refuse_no_state):
+            self._take_out()
 
     def _take_out(self) -> None:
         """Take out values that cannot be right; that is rare, so nobody minds the wait."""

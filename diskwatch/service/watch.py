@@ -206,6 +206,7 @@ class Watch:
         """One full round, and then the end."""
         try:
             self._upkeep.mend_if_damaged()
+            self._upkeep.mend_values()
             self._open_ears()
             done = self._rounds.run(told=self._told, lock=self._lock, everyone=True)
             if self._ears is not None:

@@ -1,6 +1,6 @@
 import pytest
 
-from diskwatch.history.bays import drive_lines
+from diskwatch.history.bays import all_that_can_be_read, drive_lines
 from diskwatch.history.writer import History
 from diskwatch.records import CallWord, FindingKind, KnownDrive, LastPass, Outcome, SignalNow
 from diskwatch.records.owner import OwnerFacts
@@ -15,6 +15,7 @@ from tests.history.examples import (
     a_place,
     a_round,
     a_value,
+    full_round,
 )
 
 
@@ -111,3 +112,41 @@ def test_what_the_owner_said_stands_beside_a_drive_and_what_was_taken_back_does_
     assert told[1].label is None
     assert told[1].owner == OwnerFacts(asset="A-17", replaced_by="INV-2", replaced_at=NOON)
     assert told[2].owner == OwnerFacts()
+
+
+@pytest.mark.parametrize(
+    ("statement", "said"),
+    [
+        ("UPDATE drive SET kind = 'htd' WHERE number = 1", "the sort of device"),
+        ("UPDATE drive SET lives_here = '[' WHERE number = 1", "what lives on it"),
+        ("UPDATE drive SET capacity_bytes = 'large' WHERE number = 1", "the size"),
+        ("UPDATE drive SET rotation_rpm = 'fast' WHERE number = 1", "how fast it turns"),
+        ("UPDATE drive SET outcome = 'reae' WHERE number = 1", "how its last pass went"),
+        ("UPDATE call SET word = 'loog' WHERE drive = 1", "its call"),
+        ("UPDATE finding SET signals = '[' WHERE drive = 1", "a finding"),
+        ("UPDATE latest SET value = x'ff' WHERE series = 1", "the value of"),
+        (
+            "INSERT INTO forecast VALUES (1, 'percentage-used', 20000, 100.0, 'drife', 1, 2, 0.8, NULL, NULL)",
+            "a forecast",
+        ),
+    ],
+)
+def test_what_cannot_be_right_is_said_and_costs_nothing_but_itself(history, statement, said):
+    for number, name in ((1, "INVENTED-1"), (2, "INVENTED-2")):
+        history.record(full_round(_admit(history, name, f"/dev/sd{number}")))
+    (_, whole), nothing = all_that_can_be_read(history._db.conn)
+    assert nothing == ()
+    history._db.conn.execute(statement)
+    lines, odd = all_that_can_be_read(history._db.conn)
+    assert whole in lines
+    assert {line.number for line in lines} == {1, 2}
+    assert all(sentence.startswith(f"Of INVENTED-1 {said}") for sentence in odd)
+    assert odd
+
+
+def test_for_a_call_that_cannot_be_read_no_older_one_stands_in(history, lines):
+    known = _admit(history, "INVENTED-1", "/dev/sda")
+    for at, word in ((NOON, CallWord.KEEP), (NOON + DAY, CallWord.RETIRE)):
+        history.record(a_round(a_part(known, a_pass(at), call=a_call(word, at=at)), at=at))
+    history._db.conn.execute("UPDATE call SET word = 'retite' WHERE word = 'retire'")
+    assert lines()[0].call is None

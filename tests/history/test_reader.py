@@ -11,7 +11,7 @@ from pathlib import Path
 
 import pytest
 
-from diskwatch.errors import DriveUnknown, HistoryError, NothingToWorkOn
+from diskwatch.errors import DriveUnknown, HistoryError, HistoryGarbled, NothingToWorkOn
 from diskwatch.history import rows
 from diskwatch.history.live import LiveWriter
 from diskwatch.history.reader import Past
@@ -158,11 +158,19 @@ def test_damage_is_told_with_the_file(folder):
 def test_a_value_that_nobody_wrote_is_told_as_damage(folder):
     _watch_once(folder)
     with History.open(folder) as history:
-        history._db.execute("UPDATE drive SET kind = 'no such kind'")
+        with history._writing() as connection:
+            connection.execute("UPDATE drive SET kind = 'no such kind'")
+            connection.execute("UPDATE pass SET outcome = 'no such outcome'")
         with pytest.raises(HistoryError, match="cannot be right"):
             history.known()
-    with Past.open(folder) as past, pytest.raises(HistoryError, match=r"history\.db is damaged"):
-        past.bays(NOON)
+    with Past.open(folder) as past:
+        with pytest.raises(HistoryGarbled, match=r"history\.db is damaged.*'no such outcome' is not a valid"):
+            past.passes(1)
+        # What can be read is shown, with a word of what cannot.
+        bays = past.bays(NOON)
+        assert len(bays.drives) == 1
+        assert any("the sort of device cannot be read" in trouble for trouble in bays.trouble)
+        assert past.find(bays.drives[0].place.device).number == 1
 
 
 def test_any_thread_may_ask(folder):

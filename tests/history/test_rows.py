@@ -96,8 +96,8 @@ def test_passes_come_back():
         lambda: rows.value(1.5),
         lambda: rows.value(b"no digits"),
         lambda: rows.last_pass((NOON, "no such outcome", None)),
-        lambda: rows.entry((NOON, None, "rise", "text", "[1]")),
-        lambda: rows.entry((NOON, None, "rise", "text", "{")),
+        lambda: rows.mounts("7"),
+        lambda: rows.number("ten"),
         lambda: rows.known_drive((1, None, None, None, "p", "hdd", None, "ten", None, "d", None, "[]", 0)),
         lambda: rows.known_drive((1, None, None, None, "p", "hdd", None, 1, None, "d", None, "[[1]]", 0)),
     ],
@@ -105,3 +105,10 @@ def test_passes_come_back():
 def test_a_row_that_nobody_wrote_is_refused(damaged):
     with pytest.raises(ValueError, match=r"."):
         damaged()
+
+
+@pytest.mark.parametrize("data", ["[1]", "{"])
+def test_what_happened_is_told_also_where_what_stands_behind_it_cannot_be_read(data):
+    entry = rows.entry((NOON, None, "rise", "It rose.", data))
+    assert entry.text.startswith("It rose. (What stands behind this line cannot be read")
+    assert entry.data == {}

@@ -372,7 +372,7 @@ def test_what_the_owner_said_travels_and_the_word_said_last_stands(tmp_path):
     taken(here, exported(there))
     for folder in (here, there):
         with History.open(folder) as history:
-            said = history._db.execute("SELECT fact, value, at FROM owner_fact ORDER BY fact").fetchall()
+            said = history._db.conn.execute("SELECT fact, value, at FROM owner_fact ORDER BY fact").fetchall()
         assert said == [
             ("asset", "B-2", NOON + DAY),
             ("backed-up", "", NOON + 9),

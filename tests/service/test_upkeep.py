@@ -194,7 +194,7 @@ def test_damage_found_under_way_is_mended_while_the_watch_goes_on(made, tmp_path
     keeper, one = made()
     # The root page of the table of sentences: an empty leaf, whose loss costs nothing.
     assert keeper._history is not None
-    (page,) = keeper._history._db.execute(
+    (page,) = keeper._history._db.conn.execute(
         "SELECT rootpage FROM sqlite_master WHERE name = 'sentence'"
     ).fetchone()
     turn_a_byte(tmp_path, (page - 1) * 4096)
@@ -233,8 +233,8 @@ def test_a_value_that_cannot_be_right_is_taken_out_while_the_watch_goes_on(made,
     with keeper._history._writing() as connection:
         connection.execute("UPDATE day_book SET data = '['")
         connection.execute("UPDATE pass SET outcome = 'reae' WHERE at = ?", (NOON,))
-    with pytest.raises(HistoryGarbled):
-        book(tmp_path)
+    with Past.open(tmp_path) as past, pytest.raises(HistoryGarbled, match="'reae' is not a valid Outcome"):
+        past.passes(1)
     one.turn()
     assert keeper.trouble is None
     told = book(tmp_path)
