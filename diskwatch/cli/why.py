@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from datetime import datetime
 
 from diskwatch import analyser
-from diskwatch.cli import judged, measured
+from diskwatch.cli import files, judged, measured
 from diskwatch.cli.answers import why_answer
 from diskwatch.cli.common import now, print_json, settings, state_folder
 from diskwatch.cli.said import said
@@ -39,16 +39,27 @@ def run(args: argparse.Namespace) -> int:
         line = next(one for one in past.bays(now()).every if one.number == number)
         kept = past.state(number)
         forecasts = past.kept_forecasts(number)
+        reading = past.last_reading(number)
+        heard = past.day_book(drive=number, kinds={"kernel"})
+    sectors = files.failing(line, heard, () if reading is None else reading.self_tests)
     state = analyser.start() if kept is None else analyser.load(kept)
     why = analyser.explain(state)
     if args.json:
-        print_json({**why_answer(line, why, now()), **measured.answer(why, forecasts, now())})
+        print_json(
+            {
+                **why_answer(line, why, now()),
+                **measured.answer(why, forecasts, now()),
+                "files": files.answer(sectors),
+            }
+        )
     else:
-        sys.stdout.write("\n".join(plain(one) for one in _told(line, why, forecasts)) + "\n")
+        sys.stdout.write("\n".join(plain(one) for one in _told(line, why, forecasts, sectors)) + "\n")
     return 0
 
 
-def _told(line: DriveLine, why: analyser.Explanation, forecasts: tuple[Kept, ...]) -> Iterator[str]:
+def _told(
+    line: DriveLine, why: analyser.Explanation, forecasts: tuple[Kept, ...], sectors: tuple[files.Failing, ...]
+) -> Iterator[str]:
     yield f"{line.name}, serial {line.drive.identity.serial or 'not known'}, {line.place.device}"
     if (words := said(line, now())) is not None:
         yield words
@@ -59,6 +70,7 @@ def _told(line: DriveLine, why: analyser.Explanation, forecasts: tuple[Kept, ...
         yield from _wrapped(line.call.reason)
     for title, lines in chapters(line, why, forecasts, now()):
         yield from _part(title, lines)
+    yield from _part("Which file a failing sector belongs to", files.told(sectors))
 
 
 def chapters(

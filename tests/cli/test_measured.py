@@ -59,6 +59,7 @@ def test_the_json_has_the_same_as_numbers(slowed):
     assert answer["joint_evidence"] >= 0.12 * reads["evidence"]
     assert answer["temperature"]["usual_celsius"] is None
     assert answer["probe"] is None
+    assert answer["files"] == []
     assert [one["signal"] for one in answer["forecasts"]][:1] == ["read-latency"]
     assert answer["drive"]["signals"]["read-latency"]["unit"] == "microseconds"
     assert any(line.startswith("Proved") for line in answer["bound"])
