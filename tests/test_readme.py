@@ -1,11 +1,14 @@
 import re
 
+import pytest
+
 from diskwatch.cli import COMMANDS
-from tests.readme import README, current, framed
+from tests.readme import PICTURES, README, current, framed
 
 
-def test_the_picture_in_the_readme_is_what_the_screen_shows():
-    assert current() == framed(), "run: python -m tests.readme"
+@pytest.mark.parametrize("name", PICTURES)
+def test_a_picture_in_the_readme_is_what_the_screen_shows(name):
+    assert current(name) == framed(name), "run: python -m tests.readme"
 
 
 def test_the_readme_opens_with_the_job_and_names_every_command():

@@ -8,25 +8,19 @@ from rich.text import Text
 from textual import events, work
 from textual.app import App, ComposeResult
 from textual.message import Message
-from textual.screen import Screen
 from textual.theme import Theme
 
+from diskwatch.dashboard import pages
 from diskwatch.dashboard.ages import clock
 from diskwatch.dashboard.bands import Bands
 from diskwatch.dashboard.cells import wrap
-from diskwatch.dashboard.daybook_screen import DayBookScreen
 from diskwatch.dashboard.desk import Desk
-from diskwatch.dashboard.drive_screen import DriveScreen
 from diskwatch.dashboard.feed import Feed, Snapshot
 from diskwatch.dashboard.head import instead_of_bands
-from diskwatch.dashboard.help import Help
 from diskwatch.dashboard.keys import DEEDS, MOVES, PACE, Key, keys_rows
 from diskwatch.dashboard.lines import Lines
-from diskwatch.dashboard.palette import Palette
 from diskwatch.dashboard.paper import Paper, bound
-from diskwatch.dashboard.plan_screen import PlanScreen
 from diskwatch.dashboard.questions import Questions, Stage
-from diskwatch.dashboard.ticket_screen import TicketScreen
 from diskwatch.dashboard.weight import Face
 from diskwatch.dashboard.words import name
 from diskwatch.errors import DiskwatchError
@@ -166,7 +160,10 @@ class Dashboard(App[None]):
 
     def on_dashboard_fresh(self, message: Fresh) -> None:
         """Show what is new."""
+        first = self.desk.snapshot is None
         self.desk.snapshot = message.snapshot
+        if first and self.desk.questions is not None:
+            self._ask()  # what follows the drives: their lines through time
         if isinstance(self.screen, Paper):
             self.screen.fresh()
         self._draw()
@@ -198,30 +195,30 @@ class Dashboard(App[None]):
 
     def action_why(self) -> None:
         """Open the page of the drive."""
-        self._open(DriveScreen)
+        self._open("why")
 
     def action_plan(self) -> None:
         """Open its copy plan."""
-        self._open(PlanScreen)
+        self._open("plan")
 
     def action_ticket(self) -> None:
         """Open its ticket."""
-        self._open(TicketScreen)
+        self._open("ticket")
 
     def action_day_book(self) -> None:
         """Open the day book: of one drive where a page of it is open, else of all."""
-        if not isinstance(self.screen, DayBookScreen):
-            self._push(DayBookScreen(self.desk, self._number if len(self.screen_stack) > 1 else None))
+        if self.desk.questions is not None:
+            number = self._number if len(self.screen_stack) > 1 else None
+            self._push(pages.day_book(self.desk, number))
 
     def action_palette(self) -> None:
         """Open the list of deeds."""
-        if not isinstance(self.screen, Palette):
-            self._push(Palette(self.desk))
+        self._push(pages.palette(self.desk))
 
     def action_help(self) -> None:
         """Open the help page."""
         keys = self.screen.KEYS if isinstance(self.screen, Paper) else ()
-        self._push(Help(self.desk, (*keys, *(PACE if self.desk.stage is not None else ()))))
+        self._push(pages.help_page(self.desk, (*keys, *(PACE if self.desk.stage is not None else ()))))
 
     async def action_take(self, action: str, number: int | None) -> None:
         """Leave the list of deeds and do one of them."""
@@ -290,13 +287,15 @@ class Dashboard(App[None]):
             return number
         return None if self._bands.chosen is None else self._bands.chosen.number
 
-    def _open(self, page: type[DriveScreen | PlanScreen | TicketScreen]) -> None:
+    def _open(self, page: str) -> None:
         number = self._number
-        if number is not None and self.desk.questions is not None and not isinstance(self.screen, page):
-            self._push(page(self.desk, number))
+        if number is not None and self.desk.questions is not None:
+            self._push(pages.of_a_drive(page, self.desk, number))
 
-    def _push(self, page: Screen[None]) -> None:
+    def _push(self, page: Paper) -> None:
         """Open a page; one of its sort that lies below is left, so that none lies there twice."""
+        if type(page) is type(self.screen):
+            return
         while any(isinstance(one, type(page)) for one in self.screen_stack[1:]):
             self.pop_screen()
         self.push_screen(page)

@@ -71,14 +71,15 @@ class Feed:
 
     def _through_time(self, bays: Bays) -> Mapping[int, Strand]:
         """Every drive's line through time, asked for anew only where a pass or a call may have moved it."""
-        if self._strands is None:
+        # The drives and their calls come at once; a year of evidence follows with the next look.
+        if self._strands is None or self._last is None:
             return {}
         seen = tuple((line.number, line.last_pass, line.call, line.forecasts) for line in bays.drives)
-        if self._last is None or seen != self._seen:
-            strands = self._strands(bays)
-            self._seen = seen
-            return strands
-        return self._last.strands
+        if seen == self._seen:
+            return self._last.strands
+        strands = self._strands(bays)
+        self._seen = seen
+        return strands
 
 
 _NOTHING = Snapshot(bays=None, error=None)

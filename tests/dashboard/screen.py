@@ -40,6 +40,18 @@ def shades_of(app: App[None]) -> list[Shade]:
     return shades
 
 
+def contrast(one: tuple[int, ...], other: tuple[int, ...]) -> float:
+    """How much two colours stand out from each other, 1 to 21, by the formula of WCAG 2.2."""
+    light, dark = sorted((_luminance(one), _luminance(other)), reverse=True)
+    return (light + 0.05) / (dark + 0.05)
+
+
+def _luminance(colour: tuple[int, ...]) -> float:
+    parts = [part / 255 for part in colour]
+    bent = [part / 12.92 if part <= 0.04045 else ((part + 0.055) / 1.055) ** 2.4 for part in parts]
+    return 0.2126 * bent[0] + 0.7152 * bent[1] + 0.0722 * bent[2]
+
+
 def redraw(app: App[None]) -> None:
     """Make every line anew and lay it on the screen, as the library does when all of them changed."""
     for widget in app.screen.query("Lines"):

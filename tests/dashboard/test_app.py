@@ -13,9 +13,13 @@ from diskwatch.errors import HistoryError
 from diskwatch.records import Bays
 from tests.dashboard.answers import Answers, dashboard
 from tests.dashboard.drives import ALL, COPY, KEEP, NOW, bays
-from tests.dashboard.screen import redraw, rows_of, settled, shades_of, text_of
+from tests.dashboard.screen import contrast, redraw, rows_of, settled, shades_of, text_of
 
 MANY = tuple(replace(COPY, number=number, label=f"Drive {number:02}") for number in range(1, 21))
+
+
+_DRAWN = "░▒▓█▁▂▃▄▅▆▇─│└· " + "".join(map(chr, range(0x2800, 0x2900)))
+"""What pictures are made of."""
 
 
 class Stage:
@@ -303,16 +307,34 @@ async def test_the_background_turns_light_and_back():
 async def test_every_letter_stands_out_from_its_background(monkeypatch, turned, no_color):
     if no_color:
         monkeypatch.setenv("NO_COLOR", "1")
-    app = Stage(bays(*ALL, watcher=None)).dashboard()
+    app = dashboard(Answers(), bays(*ALL, watcher=None))
     async with app.run_test(size=(80, 24)) as pilot:
         await settled(pilot)
         if turned:
             await pilot.press("l")
             await pilot.pause()
-        shades = [shade for shade in shades_of(app) if shade.text.strip("░▒▓█ ")]
-        assert len(shades) > 20
-        # The brightest parts of the two colours differ by more than half of the scale.
-        assert [shade for shade in shades if abs(max(shade.front) - max(shade.back)) <= 128] == []
+        for key in (
+            "",
+            "enter",
+            "right",
+            "escape",
+            "b",
+            "escape",
+            "t",
+            "escape",
+            "question_mark",
+            "escape",
+            "colon",
+        ):
+            if key:
+                await pilot.press(key)
+                await settled(pilot)
+            shades = shades_of(app)
+            words = [shade for shade in shades if shade.text.strip(_DRAWN)]
+            assert len(words) > 10
+            # WCAG 2.2, success criteria 1.4.3 for text and 1.4.11 for what is drawn.
+            assert [shade for shade in words if contrast(shade.front, shade.back) < 4.5] == []
+            assert [shade for shade in shades if contrast(shade.front, shade.back) < 3] == []
 
 
 async def test_without_colours_the_bar_keeps_the_colour_of_the_letters(monkeypatch):

@@ -3,8 +3,9 @@ from dataclasses import FrozenInstanceError, replace
 import pytest
 
 from diskwatch.dashboard.feed import Feed
+from diskwatch.dashboard.questions import Strand
 from diskwatch.errors import HistoryError
-from diskwatch.records import Bays
+from diskwatch.records import Bays, LastPass, Outcome
 from tests.dashboard.drives import COPY, KEEP, NOW, bays
 
 
@@ -101,3 +102,25 @@ def test_a_snapshot_cannot_be_changed():
     assert snapshot is not None
     with pytest.raises(FrozenInstanceError):
         snapshot.error = "no"  # type: ignore[misc]  # that it cannot be set is the point
+
+
+def test_lines_through_time_follow_the_drives_and_are_asked_anew_only_where_a_pass_or_a_call_came():
+    asked: list[Bays] = []
+    later = replace(COPY, last_pass=LastPass(at=NOW, outcome=Outcome.READ, explanation=None))
+    source = Source(bays(COPY), bays(COPY), bays(COPY), bays(later))
+
+    def strands(told: Bays) -> dict[int, Strand]:
+        asked.append(told)
+        return {COPY.number: Strand(evidence=((1, float(len(asked))),))}
+
+    clock = iter(range(NOW, NOW + 99))
+    made = Feed(source, lambda: next(clock), strands)
+    first, second, third, fourth = (made.look() for _ in range(4))
+    assert first is not None
+    assert first.strands == {}
+    assert second is not None
+    assert second.strands[COPY.number].evidence == ((1, 1.0),)
+    assert third is None
+    assert fourth is not None
+    assert fourth.strands[COPY.number].evidence == ((1, 2.0),)
+    assert len(asked) == 2
