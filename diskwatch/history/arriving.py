@@ -6,30 +6,28 @@ left out and named.
 
 import json
 import sqlite3
-from collections.abc import Callable, Iterable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
+from functools import partial
 from typing import Any
 
 from diskwatch.history import packing, rows
 from diskwatch.history.counting import counted_before, set_counted
 from diskwatch.history.exchange import Line
-from diskwatch.history.fields import count, data, measure, text, whole, words
+from diskwatch.history.fields import count, measure, text, whole, words
+from diskwatch.history.mishaps import why_unfit
 from diskwatch.history.moments import Dated, turn_at
-from diskwatch.history.probes import times, times_packed
 from diskwatch.history.round import sentence_number
 from diskwatch.history.settling import Made, settle_calls, settle_counts, settle_last_pass, settle_signals
+from diskwatch.history.taking import TAKES, Into
 from diskwatch.records import (
     Call,
-    Direction,
     Drive,
-    Entry,
     Identity,
     Kind,
-    LimitSource,
     Outcome,
     Pass,
     Place,
-    ProbeDay,
     SignalKind,
 )
 from diskwatch.units import day_number, plain
@@ -119,8 +117,7 @@ def take_in(connection: sqlite3.Connection, drive: int, lines: Iterable[Line]) -
                 raise ValueError(f"there is no such record: {line.record}")  # noqa: TRY301  # told as all others
             take(line.at, line.fields)
         except (ValueError, KeyError, TypeError, OverflowError, sqlite3.IntegrityError) as error:
-            missing = f"it lacks {error}" if isinstance(error, KeyError) else str(error)
-            wrong.append(f"row {line.number} is left out: {plain(missing)}")
+            wrong.append(f"row {line.number} is left out: {plain(_why(error))}")
     arrival.settle()
     return Arrived(
         wrong=tuple(wrong),
@@ -128,6 +125,12 @@ def take_in(connection: sqlite3.Connection, drive: int, lines: Iterable[Line]) -
         own_from=min((at for at, _ in arrival.before - arrival.arrived), default=None),
         states=tuple(sorted(arrival.states)),
     )
+
+
+def _why(error: Exception) -> str:
+    if isinstance(error, KeyError):
+        return f"it lacks {error}"
+    return why_unfit(error) if isinstance(error, sqlite3.IntegrityError) else str(error)
 
 
 class _Arrival:
@@ -145,45 +148,18 @@ class _Arrival:
         (self._own_turn,) = connection.execute("SELECT turn FROM drive WHERE number = ?", (drive,)).fetchone()
         self.arrived: set[Made] = set()
         self.states: list[Dated] = []
+        self._into = Into(connection, drive)
         self.takes: dict[str, Callable[[int, Mapping[str, Any]], object]] = {
-            "owner": self._owner,
-            "place": self._place,
+            **{name: partial(take, self._into) for name, take in TAKES.items()},
             "passes": self._passes,
             "pass": self._pass,
             "value": self._value,
             "beside": self._beside,
             "evidence": self._evidence,
-            "heard": self._heard,
-            "answer": self._answer,
-            "latency": self._latency,
-            "probe": self._probe,
-            "forecast": self._forecast,
-            "load": self._load,
-            "finding": self._finding,
             "call": self._call,
-            "event": self._event,
             "copy": self._copy,
             "state": self._state,
         }
-
-    def _insert(
-        self, table: str, columns: Sequence[str], cells: Sequence[rows.Cell], *, drive: bool = True
-    ) -> int:
-        names = ("drive", *columns) if drive else tuple(columns)
-        marks = ", ".join("?" * len(names))
-        # The names are those of our own schema; nothing of the file stands in them.
-        sql = f"INSERT OR IGNORE INTO {table} ({', '.join(names)}) VALUES ({marks})"  # noqa: S608
-        return self._db.execute(sql, (self._drive, *cells) if drive else tuple(cells)).rowcount
-
-    def _owner(self, at: int, of: Mapping[str, Any]) -> None:
-        self._db.execute(
-            "INSERT INTO owner_fact (drive, fact, value, at) VALUES (?, ?, ?, ?) ON CONFLICT (drive, fact)"
-            " DO UPDATE SET value = excluded.value, at = excluded.at WHERE excluded.at > at",
-            (self._drive, text(of["fact"]), text(of["value"]), at),
-        )
-
-    def _place(self, at: int, of: Mapping[str, Any]) -> None:
-        self._insert("plugged", ("since", "device", "bay"), (at, text(of["device"]), words(of["bay"])))
 
     def _passes(self, at: int, of: Mapping[str, Any]) -> None:
         outcome, last = Outcome(of["outcome"]).value, whole(of["last"])
@@ -216,7 +192,7 @@ class _Arrival:
             told.took_ms,
             explanation,
         )
-        self._insert("pass", columns, cells)
+        self._into.insert("pass", columns, cells)
         self.arrived.add((at, nth))
         if of.get("counted"):
             self._counted.add((at, nth))
@@ -271,120 +247,23 @@ class _Arrival:
         if there is None:
             columns = ("series", "at", "nth", "turn", "value", "reason")
             cells = (series, at, nth, self._turn(at, of), rows.cell(found), words(of["reason"]))
-            self._insert("value", columns, cells, drive=False)
+            self._into.insert("value", columns, cells, drive=False)
 
     def _beside(self, at: int, of: Mapping[str, Any]) -> None:
         packed = json.dumps(of["reading"], separators=(",", ":")).encode()
         packing.beside(packed)  # refuses what is no reading
-        self._insert(
+        self._into.insert(
             "beside", ("at", "nth", "turn", "packed"), (at, _small(of, "nth"), self._turn(at, of), packed)
         )
 
     def _evidence(self, at: int, of: Mapping[str, Any]) -> None:
         series = self._series(text(of["signal"]), None)
-        self._insert(
+        self._into.insert(
             "evidence",
             ("series", "day", "evidence"),
             (series, day_number(at), float(of["evidence"])),
             drive=False,
         )
-
-    def _heard(self, at: int, of: Mapping[str, Any]) -> None:
-        del at
-        # What was counted there is counted on here: a count that fell would look like another drive's.
-        self._db.execute(
-            "INSERT INTO heard (drive, signal, total) VALUES (?, ?, ?) ON CONFLICT (drive, signal)"
-            " DO UPDATE SET total = max(total, excluded.total)",
-            (self._drive, text(of["signal"]), whole(of["total"])),
-        )
-
-    def _answer(self, at: int, of: Mapping[str, Any]) -> None:
-        self._db.execute(
-            "INSERT INTO answer (drive, at, call, packed) VALUES (?, ?, ?, ?) ON CONFLICT (drive)"
-            " DO UPDATE SET at = excluded.at, call = excluded.call, packed = excluded.packed"
-            " WHERE excluded.at > at",
-            (self._drive, at, words(of["call"]), packing.packed(text(of["text"]))),
-        )
-
-    def _latency(self, at: int, of: Mapping[str, Any]) -> None:
-        learnt = data(json.loads(text(of["state"])))
-        # What is usual on another machine need not be so here: its port's name there is no port's name here.
-        learnt["key"] = f"elsewhere {learnt.get('key', '')}"
-        packed = packing.packed(json.dumps(learnt, separators=(",", ":")))
-        self._insert("latency_state", ("through", "packed"), (day_number(at), packed))
-
-    def _forecast(self, at: int, of: Mapping[str, Any]) -> None:
-        limit, probability = measure(of["at_limit"]), measure(of["probability"])
-        if limit is None or probability is None:
-            raise ValueError("a forecast lacks its limit or its probability")
-        columns = ("at_limit", "limit_from", "low", "high", "probability", "reason", "reached")
-        cells = (
-            limit,
-            LimitSource(of["limit_from"]).value,
-            measure(of["low"]),
-            measure(of["high"]),
-            probability,
-            words(of["reason"]),
-            count(of["reached"]),
-        )
-        self._insert(
-            "forecast", ("signal", "made_on_day", *columns), (text(of["signal"]), day_number(at), *cells)
-        )
-
-    def _probe(self, at: int, of: Mapping[str, Any]) -> None:
-        band, sliced = times(of["times"])
-        day = ProbeDay(
-            at=at,
-            place=whole(of["place"]),
-            band_us=band,
-            slice_us=sliced,
-            disk_ms=whole(of["disk_ms"]),
-        )
-        columns = ("at", "place", "disk_ms", "packed")
-        self._insert("probe", columns, (at, day.place, day.disk_ms, times_packed(day)))
-
-    def _load(self, at: int, of: Mapping[str, Any]) -> None:
-        histogram = {whole(bin_): whole(count) for bin_, count in of["histogram"]}
-        self._insert(
-            "io_day",
-            ("day", "load_class", "direction", "rollups", "operations", "histogram"),
-            (
-                day_number(at),
-                whole(of["load_class"]),
-                int(Direction(of["direction"])),
-                whole(of["rollups"]),
-                whole(of["operations"]),
-                packing.histogram_packed(histogram),
-            ),
-        )
-
-    def _finding(self, at: int, of: Mapping[str, Any]) -> None:
-        signals = [text(one) for one in of["signals"]]
-        row = (
-            text(of["name"]), of["kind"], json.dumps(signals), at, of["calls"], of["cause"],
-            measure(of["evidence"]), text(of["sentence"]), json.dumps(data(of["data"])),
-        )  # fmt: skip  # one row, as its columns stand
-        cells = rows.finding_row(rows.finding(row))
-        closed = count(of["closed"])
-        there = self._db.execute(
-            "SELECT 1 FROM finding WHERE drive = ? AND name = ?"
-            " AND (since = ? OR (closed IS NULL AND ? IS NULL))",
-            (self._drive, cells[0], at, closed),
-        ).fetchone()
-        if there is None:
-            columns = (
-                "name",
-                "kind",
-                "signals",
-                "since",
-                "calls",
-                "cause",
-                "evidence",
-                "sentence",
-                "data",
-                "closed",
-            )
-            self._insert("finding", columns, (*cells, closed))
 
     def _call(self, at: int, of: Mapping[str, Any]) -> None:
         row = (
@@ -393,21 +272,9 @@ class _Arrival:
         )  # fmt: skip  # one row, as its columns stand
         self._calls.append(rows.call(row))
 
-    def _event(self, at: int, of: Mapping[str, Any]) -> None:
-        entry = Entry(
-            at=at, drive=self._drive, kind=text(of["kind"]), text=text(of["text"]), data=data(of["data"])
-        )
-        cells = rows.entry_row(entry)
-        there = self._db.execute(
-            "SELECT 1 FROM day_book WHERE drive = ? AND at = ? AND kind = ? AND text = ?",
-            (self._drive, at, entry.kind, cells[3]),
-        ).fetchone()
-        if there is None:
-            self._insert("day_book", ("at", "drive", "kind", "text", "data"), cells, drive=False)
-
     def _copy(self, at: int, of: Mapping[str, Any]) -> None:
         packed = packing.packed(text(of["state"]))
-        self._insert("kept_state", ("at", "turn", "packed"), (at, self._turn(at, of), packed))
+        self._into.insert("kept_state", ("at", "turn", "packed"), (at, self._turn(at, of), packed))
         self._state(at, of)
 
     def _state(self, at: int, of: Mapping[str, Any]) -> None:

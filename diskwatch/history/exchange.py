@@ -12,8 +12,12 @@ Both hold the same rows. A row has a ``record`` (what it is), a ``drive`` (which
 | passes | outcome, passes, last: of passes thinned, how many of a day ended so; at: the first |
 | value | signal, value, unit, kind, source, reason: on change |
 | beside | reading: failing attributes, self-tests and limits, on change |
+| reading | reading: attribute table, self-test log and limits as last read |
 | answer | text, call: what smartctl last printed of the drive, and the call after it |
 | evidence | signal, evidence: M in days at the end of the day |
+| heard | signal, total: what is counted of it besides its own word, since it is listened to |
+| latency | state: what its usual times were learnt from, through that day |
+| forecast | signal, at_limit, limit_from, low, high, probability, reason, reached: of the day it was made on |
 | finding | as it stands or stood; closed: since when no longer |
 | call | as it was |
 | event | kind, text, data: an entry of the day book |

@@ -52,6 +52,10 @@ def _beside(row: dict[str, Any]) -> dict[str, Any]:
     return {**row, "reading": json.loads(packed)}
 
 
+def _reading(row: dict[str, Any]) -> dict[str, Any]:
+    return {"at": row["at"], "reading": json.loads(packing.unpacked(row["packed"]))}
+
+
 def _answer(row: dict[str, Any]) -> dict[str, Any]:
     return {"at": row["at"], "call": row["call"], "text": rows.text(packing.unpacked(row["packed"]))}
 
@@ -99,6 +103,7 @@ _QUERIES = {
     " JOIN series ON series.number = series WHERE drive = :drive AND latest.evidence IS NOT NULL",
     "heard": "SELECT first_seen AS at, signal, total FROM heard JOIN drive ON drive.number = heard.drive"
     " WHERE heard.drive = :drive",
+    "reading": "SELECT at, packed FROM last_reading WHERE drive = :drive",
     "answer": "SELECT at, call, packed FROM answer WHERE drive = :drive",
     "latency": "SELECT through * 86400 AS at, packed FROM latency_state WHERE drive = :drive",
     "forecast": "SELECT made_on_day * 86400 AS at, signal, at_limit, limit_from, low, high, probability,"
@@ -118,6 +123,7 @@ _FIELDS = {
     "drive": _drive,
     "value": _value,
     "beside": _beside,
+    "reading": _reading,
     "answer": _answer,
     "latency": _learnt,
     "probe": _probe,

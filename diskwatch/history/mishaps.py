@@ -82,10 +82,14 @@ def told(error: sqlite3.Error | OSError, path: Path | None) -> HistoryError:
         kind = HistoryDamaged if code in _DAMAGED else HistoryError
         return kind(f"{name} {what}", hint=hint)
     if code == sqlite3.SQLITE_CONSTRAINT:
-        why = _WHY_UNFIT.get(getattr(error, "sqlite_errorcode", 0), "a value is of the wrong kind")
-        return HistoryUnfit(f"{name} {_UNFIT[0].format(why=why)}", hint=_UNFIT[1])
+        return HistoryUnfit(f"{name} {_UNFIT[0].format(why=why_unfit(error))}", hint=_UNFIT[1])
     detail = error.strerror if isinstance(error, OSError) else str(error)
     return HistoryError(f"{name} cannot be used: {plain(str(detail))}")
+
+
+def why_unfit(error: Exception) -> str:
+    """Why a row does not fit a table, by SQLite's error; a part of a sentence."""
+    return _WHY_UNFIT.get(getattr(error, "sqlite_errorcode", 0), "a value is of the wrong kind")
 
 
 def no_database(path: Path) -> HistoryError:

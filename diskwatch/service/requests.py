@@ -167,7 +167,7 @@ def _answer(request: Path, owners: frozenset[int], deeds: Mapping[str, Deed]) ->
         told = {"done": done.done, "wrong": done.wrong}
     except DiskwatchError as error:
         told = {"failed": str(error)}
-    except (OSError, ValueError, KeyError, TypeError) as error:
+    except (OSError, ValueError, KeyError, TypeError, RecursionError) as error:
         told = {"failed": f"the request cannot be understood: {plain(str(error))}"}
     with suppress(OSError):
         request.unlink()  # first, so that a request that ends the watch is not taken up again by the next one

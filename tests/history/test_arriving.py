@@ -8,6 +8,7 @@ from diskwatch.history.arriving import described, take_in
 from diskwatch.history.exchange import Line
 from diskwatch.history.leaving import lines_of
 from diskwatch.history.moments import Dated
+from diskwatch.history.taking import TAKES
 from diskwatch.history.writer import History
 from tests.history.examples import NOON, a_drive, a_part, a_pass, a_place, a_round, full_round
 
@@ -138,3 +139,13 @@ def test_usual_times_and_forecasts_arrive_and_the_times_under_a_name_that_no_por
     assert (kept.through, json.loads(kept.state)) == (day, {"key": "elsewhere port-1 F1", "scored": 0.1})
     ((one,),) = history.forecasts().values()
     assert (one.low, one.high, one.made_on_day) == (12.5, None, day)
+
+
+def test_what_the_file_does_not_let_in_is_told_in_peoples_words(history, monkeypatch):
+    def refused(_into, _at, _of):
+        history._db.conn.execute("INSERT INTO heard VALUES (1, 'invented', 'no number')")
+
+    history.admit(a_drive(), a_place(), NOON)
+    monkeypatch.setitem(TAKES, "heard", refused)
+    (told,) = take_in(history._db.conn, 1, [Line(record="heard", drive=1, at=NOON, fields={}, number=3)]).wrong
+    assert told == "row 3 is left out: a value is of the wrong kind"

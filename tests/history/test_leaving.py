@@ -1,6 +1,8 @@
+import re
 from collections import Counter
 
-from diskwatch.history import packing
+from diskwatch.history import exchange, leaving, packing
+from diskwatch.history.arriving import _Arrival
 from diskwatch.history.leaving import lines_of
 from diskwatch.records import ClassDay, Direction
 from tests.history.examples import NOON, a_drive, a_place, full_round
@@ -26,7 +28,7 @@ def test_every_kind_of_row_of_a_drive_leaves_and_none_of_another(history):
     found = Counter(line.record for line in lines_of(connection, 1))
     assert found == {
         "drive": 1, "owner": 1, "place": 1, "passes": 1, "pass": 3, "value": 9, "beside": 1, "evidence": 6,
-        "heard": 1, "answer": 1, "latency": 1, "forecast": 1, "probe": 1, "load": 1, "finding": 4,
+        "reading": 1, "heard": 1, "answer": 1, "latency": 1, "forecast": 1, "probe": 1, "load": 1, "finding": 4,
         "call": 3, "event": 3, "copy": 2, "state": 1,
     }  # fmt: skip  # a table reads better in rows
     assert {line.drive for line in lines_of(connection, 1)} == {1}
@@ -41,3 +43,23 @@ def test_numbers_beyond_any_column_leave_as_numbers(history):
         if line.record == "value"
     }
     assert values == {"pending-sectors": 5, "data-written": 2**70 + 5, "self-assessment": "word 5"}
+
+
+def test_every_table_that_belongs_to_a_drive_travels_or_is_known_to_stay(history):
+    connection = history._db.conn
+    owned = {
+        table
+        for (table,) in connection.execute("SELECT name FROM pragma_table_list WHERE strict").fetchall()
+        if {"drive", "series"} & {row[2] for row in connection.execute(f"PRAGMA foreign_key_list({table})")}
+    }
+    named = set(re.findall(r"\w+", " ".join(leaving._QUERIES.values())))
+    # Traffic by the minute stays where it was measured, as the description of the file says.
+    assert owned - named == {"io_minute", "io_five"}
+
+
+def test_every_record_that_leaves_is_taken_in_and_described(history):
+    known = history.admit(a_drive(), a_place(), NOON)
+    records = set(leaving._QUERIES)
+    assert records - {"drive"} == set(_Arrival(history._db.conn, known.number).takes)
+    assert exchange.__doc__ is not None
+    assert set(re.findall(r"^\| (\w+) \|", exchange.__doc__, re.MULTILINE)) - {"record"} == records

@@ -171,6 +171,18 @@ def test_the_watch_of_another_user_reads_what_root_asks_of_it(theirs):
     assert wait(request).done == ("did it",)
 
 
+def test_a_request_that_is_nested_without_end_is_refused_and_keeps_up_no_other(state):
+    folder = state / requests.FOLDER
+    folder.mkdir(mode=0o755)
+    deep = folder / "0-1.json"
+    deep.write_text('{"deed": "do", "words": {"a": ' + "[" * 200_000 + "]" * 200_000 + "}}")
+    deep.chmod(0o600)
+    request = leave(state, "do", {"what": "it"})
+    assert take_up(state, {"do": done}) == 2
+    assert "cannot be understood" in (folder / "0-1.answer.json").read_text()
+    assert wait(request).done == ("did it",)
+
+
 @needs_root
 def test_root_gives_away_and_writes_nothing_behind_a_link_in_the_place_of_the_folder(theirs, tmp_path_factory):
     target = tmp_path_factory.mktemp("roots")
