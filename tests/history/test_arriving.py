@@ -53,7 +53,7 @@ def test_passes_of_one_second_arrive_all_and_none_of_them_twice(history):
         known = source.admit(a_drive(), a_place(), NOON)
         for took in range(3):
             source.record(a_round(a_part(known, replace(a_pass(NOON), took_ms=took))))
-        source._db.execute("DELETE FROM pass WHERE nth = 1")  # as thinning does
+        source._db.conn.execute("DELETE FROM pass WHERE nth = 1")  # as thinning does
         lines = tuple(lines_of(source._db.conn, 1))[1:]
         with source._writing() as connection:
             assert take_in(connection, 1, lines).wrong == ()
@@ -93,7 +93,7 @@ def test_whatever_stands_in_a_row_it_is_taken_in_or_named_and_nothing_else_happe
         with history._writing() as connection:
             wrong = take_in(connection, 1, [spoilt]).wrong
         assert all(one.startswith("row 7 is left out: ") for one in wrong)
-        assert history._db.execute("PRAGMA integrity_check").fetchone() == ("ok",)
+        assert history._db.conn.execute("PRAGMA integrity_check").fetchone() == ("ok",)
         # What was taken in can be told again.
         assert tuple(lines_of(history._db.conn, 1))
 

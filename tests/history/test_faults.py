@@ -40,8 +40,8 @@ def _write_for_ever(folder, pipe):
     """What the child does until it is killed: report each round's number once it is stored."""
     history = History.open(folder)
     known = (history.known() or (history.admit(a_drive(), a_place(), NOON),))[0]
-    number = history._db.execute("SELECT coalesce(sum(passes), 0) FROM pass_day").fetchone()[0]
-    number += history._db.execute(
+    number = history._db.conn.execute("SELECT coalesce(sum(passes), 0) FROM pass_day").fetchone()[0]
+    number += history._db.conn.execute(
         "SELECT count(*) FROM pass WHERE at >= coalesce((SELECT before FROM thinned WHERE what = 'pass'), 0)"
     ).fetchone()[0]
     folding.KEPT_BYTES = 64 << 10  # so that the log is folded in, and begun anew, all the time

@@ -83,7 +83,7 @@ def test_the_log_is_folded_in_while_a_commit_is_under_way_and_neither_waits_for_
         history.fold_log()
         # What is not committed yet is not in it, what was committed is.
         assert entries_of_the_file_alone(folder) >= ROOM + 100
-    assert history._db.execute("SELECT count(*) FROM day_book").fetchone() == (0,)
+    assert history._db.conn.execute("SELECT count(*) FROM day_book").fetchone() == (0,)
 
 
 def test_a_reader_keeps_the_log_long_only_as_long_as_it_looks(grown, folder):
@@ -137,4 +137,4 @@ def test_a_history_in_memory_has_no_log_to_fold_in():
     with History.in_memory() as history:
         write_pages(history, 10)
         history.fold_log()
-        assert history._db.execute("SELECT count(*) FROM day_book").fetchone() == (10,)
+        assert history._db.conn.execute("SELECT count(*) FROM day_book").fetchone() == (10,)

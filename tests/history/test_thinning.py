@@ -264,7 +264,7 @@ def test_however_small_a_bite_is_thinning_ends_with_the_same_rows(monkeypatch, c
             else:
                 raise AssertionError("thinning does not end")
             tables = ("value", "beside", "pass", "pass_day", "thinned")
-            return {name: history._db.execute(f"SELECT * FROM {name}").fetchall() for name in tables}  # noqa: S608  # our own names
+            return {name: history._db.conn.execute(f"SELECT * FROM {name}").fetchall() for name in tables}  # noqa: S608  # our own names
 
     whole = thinned(10**6)
     assert [thinned(bite) == whole for bite in (1, 2, 3, 200)] == [True] * 4

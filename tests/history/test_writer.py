@@ -121,12 +121,12 @@ def test_traffic_adds_up_within_a_minute_however_it_is_handed_over(history):
     history.admit(a_drive(), a_place(), NOON)
     spans = [a_span(at=NOON + ten * 10, reads=ten) for ten in range(1, 13)]
     history.add_traffic(spans)
-    together = history._db.execute("SELECT at, drive, * FROM io_minute").fetchall()
-    history._db.execute("DELETE FROM io_minute")
+    together = history._db.conn.execute("SELECT at, drive, * FROM io_minute").fetchall()
+    history._db.conn.execute("DELETE FROM io_minute")
     for one in spans:
         history.add_traffic([one])
     history.add_traffic([])
-    assert history._db.execute("SELECT at, drive, * FROM io_minute").fetchall() == together
+    assert history._db.conn.execute("SELECT at, drive, * FROM io_minute").fetchall() == together
     assert [(*row[:2], *row[5:7]) for row in together] == [(NOON, 1, 60_000, 21), (NOON + 60, 1, 60_000, 57)]
 
 
@@ -219,7 +219,7 @@ def test_what_a_failure_left_open_does_not_swallow_the_next_round(rigged):
     known = rigged.admit(a_drive(), a_place(), NOON)
     connection = rigged._db.conn
     for number, fails_at in enumerate((2, 6, 12, 20)):
-        before = rigged._db.execute("SELECT count(*) FROM pass").fetchone()
+        before = rigged._db.conn.execute("SELECT count(*) FROM pass").fetchone()
         connection.fails_at, connection.fails_on = fails_at, True
         with pytest.raises(HistoryError, match="rigged"):
             rigged.record(full_round(known, NOON + DAY, 99))
@@ -250,8 +250,8 @@ def test_a_full_disk_is_said_and_what_was_stored_before_is_kept(folder):
     with History.open(folder) as history:
         known = history.admit(a_drive(), a_place(), NOON)
         history.record(full_round(known))
-        pages = history._db.execute("PRAGMA page_count").fetchone()[0]
-        history._db.execute(f"PRAGMA max_page_count = {pages}")
+        pages = history._db.conn.execute("PRAGMA page_count").fetchone()[0]
+        history._db.conn.execute(f"PRAGMA max_page_count = {pages}")
         before = _dump(history)
         noise = random.Random(1)  # noqa: S311  # what cannot be packed must not be a secret, only large
         large = "".join(chr(noise.randrange(0x4E00, 0x9FFF)) for _ in range(50_000))
@@ -260,7 +260,7 @@ def test_a_full_disk_is_said_and_what_was_stored_before_is_kept(folder):
         ):
             history.record(a_round(a_part(known, state=large)))
         assert _dump(history) == before
-        history._db.execute("PRAGMA max_page_count = 100000")
+        history._db.conn.execute("PRAGMA max_page_count = 100000")
         history.record(a_round(a_part(known, state=large)))
         assert history.states() == {known.number: large}
     assert _integrity(folder / HISTORY) == [("ok",)]
@@ -339,7 +339,7 @@ def test_threads_take_turns_and_none_undoes_anothers_work(folder):
         for thread in threads:
             thread.join()
         assert troubles == []
-        found = history._db.execute("SELECT text, count(*) FROM day_book GROUP BY text").fetchall()
+        found = history._db.conn.execute("SELECT text, count(*) FROM day_book GROUP BY text").fetchall()
         assert found == [(name, 20) for name in "abc"]
 
 
