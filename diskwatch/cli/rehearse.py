@@ -149,6 +149,7 @@ def live_through(course: Course, folder: Path, pace: Pace | None) -> str | None:
         past=partial(_probes, keeper),
         on_battery=lambda: False,
         ours=lambda *_: None,
+        note=keeper.note,
     )
     rounds = Rounds(course.machine, keeper, course.clock.now, asking=InTurn, probed=probing.take)
     gathered: list[IoSpan] = []

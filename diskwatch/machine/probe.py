@@ -32,6 +32,9 @@ BITE = 32
 QUIET = 1.0
 """Seconds without any request that count as idle."""
 
+AT_WORK, THE_END = "it was at work.", "the watch ends."
+"""Why a probe was dropped before it read anything, in words that say nothing of the disk."""
+
 LONGEST = 15.0
 """Seconds after which a probe is no longer waited for."""
 
@@ -147,7 +150,7 @@ class DiskProber:
         if unfit is None and size < max(_LEAST_BAND, wanted.requests * REQUEST_BYTES):
             unfit = "it is too small."
         if unfit is None and not self._idle(block):
-            unfit = "it was at work."
+            unfit = AT_WORK
         if unfit is not None:
             return Brought(dropped=unfit)
         try:
@@ -220,7 +223,7 @@ class DiskProber:
             sectors = 0
             for spot, length in reads[begin : begin + BITE]:
                 if self._ending.is_set():
-                    return tuple(kept), "the watch ends."
+                    return tuple(kept), THE_END
                 if disk.busy_us + _MOST_READ > most_us:
                     break
                 bite.append(disk.read(spot, length))

@@ -8,10 +8,10 @@ data should be copied off: there every read belongs to the data.
 from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 
-from diskwatch.machine.probe import Brought, Prober, Wanted
+from diskwatch.machine.probe import AT_WORK, THE_END, Brought, Prober, Wanted
 from diskwatch.machine.protocol import Found
-from diskwatch.records import CallWord, DriveRound, Kind, Outcome, ProbeDay
-from diskwatch.units import DAY, day_number
+from diskwatch.records import CallWord, DriveRound, Entry, Kind, Outcome, ProbeDay
+from diskwatch.units import DAY, day_number, plain
 
 DISK_MS = 2_000
 """How long a disk may be kept busy a day, milliseconds."""
@@ -66,6 +66,7 @@ class Probing:
         past: Callable[[int, int], Iterable[ProbeDay] | None],
         on_battery: Callable[[], bool],
         ours: Callable[[int, bool], None],
+        note: Callable[[Entry], None],
     ) -> None:
         """Begin.
 
@@ -75,11 +76,14 @@ class Probing:
                 be read, and then none is made, since nobody knows what was used up.
             on_battery: whether the machine runs on its battery.
             ours: told the number of a drive, and whether what it does now, or did just now, is our doing.
+            note: takes an entry for the day book: why a disk cannot be probed, once for each reason.
         """
         self._prober = prober
         self._past = past
         self._on_battery = on_battery
         self._ours = ours
+        self._note = note
+        self._told: dict[int, str] = {}
         self._today: dict[int, _Today] = {}
         self._tried: dict[int, int] = {}
         self._ready: dict[int, ProbeDay] = {}
@@ -120,7 +124,14 @@ class Probing:
             if brought.disk_ms > 0:
                 self._keep(number, _probe(brought, now()))
                 break
+            self._tell(number, brought.dropped, at)
         return frozenset(self._ready)
+
+    def _tell(self, number: int, why: str | None, at: int) -> None:
+        if why is None or why in {AT_WORK, THE_END, self._told.get(number)}:
+            return
+        self._told[number] = why
+        self._note(Entry(at=at, drive=number, kind="probe", text=plain(f"It was not probed: {why}")))
 
     def take(self, number: int) -> ProbeDay | None:
         """The probe of a drive that waits to be taken in, once; None where none does."""

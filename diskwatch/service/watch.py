@@ -162,6 +162,7 @@ class Watch:
                 past=self._past_probes,
                 on_battery=self._is_on_battery,
                 ours=lambda number, so: self._traffic.leave_out(number, ours=so),
+                note=self._note_entry,
             )
         )
         self._deaf: str | None = None

@@ -37,7 +37,7 @@ class Day:
 
     def __init__(self):
         self.prober, self.kept, self.battery, self.used = ScriptedProber(), [], False, []
-        self.readable = True
+        self.readable, self.book = True, []
         self.restart()
 
     def restart(self):
@@ -48,6 +48,7 @@ class Day:
             ),
             on_battery=lambda: self.battery,
             ours=lambda number, so: self.used.append((number, so)),
+            note=self.book.append,
         )
 
     def round(self, *parts, at=NOON, testing=()):
@@ -122,6 +123,17 @@ def test_a_disk_at_work_is_tried_again_later_and_keeps_no_other_from_its_turn(da
     assert [device for device, _ in day.prober.asked] == ["/dev/sda", "/dev/sdb", "/dev/sda"]
     assert day.used[:4] == [(1, True), (1, False), (2, True), (2, False)]
     assert day.used[4:] == [(1, True), (1, True)]
+
+
+def test_why_a_disk_cannot_be_probed_is_told_once_and_that_it_was_at_work_never(day):
+    locked = Brought(dropped="it could not be opened for reading: Permission denied.")
+    day.prober.brings = [AT_WORK, locked, locked, WHOLE]
+    for _ in range(3):
+        assert day.round(part()) == []
+    assert [(one.drive, one.kind, one.text) for one in day.book] == [
+        (1, "probe", "It was not probed: it could not be opened for reading: Permission denied.")
+    ]
+    assert day.round(part()) == [1]
 
 
 def test_one_disk_is_probed_in_a_round(day):
