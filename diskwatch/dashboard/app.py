@@ -353,16 +353,13 @@ class Dashboard(App[None]):
         return (Text(), *(Text(f"   {line}") for line in wrap(told, max(width - 6, 10))))
 
     def _keys(self, width: int) -> tuple[Text, ...]:
-        said = self.desk.said(width)
-        if said is not None:
-            return (said,)
         keys: tuple[Key, ...] = (*MOVES, *DEEDS)
         if self.desk.questions is None:
             keys = tuple(key for key in keys if key.action not in _ASKING)
         rows = 2 if self.size.height >= _TWO_ROWS_FROM else 1
         if self.desk.stage is not None:
             keys, rows = (*PACE, *keys), rows + 1
-        return keys_rows(keys, width, self.desk.face, rows=rows)
+        return self.desk.over(keys_rows(keys, width, self.desk.face, rows=rows), width)
 
 
 _ASKING = frozenset({"app.why", "app.plan", "app.ticket", "app.put_off", "app.day_book"})

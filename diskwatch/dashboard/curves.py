@@ -30,7 +30,7 @@ def curve_rows(
         face: what the terminal can show.
     """
     mark = face.mark
-    names = max(12, width * 34 // 100) if width < _WIDE else 40
+    names = _names(width)
     rows = []
     for place, curve in enumerate(curves):
         value = "not known" if curve.now is None else say_value(curve.now, curve.unit)
@@ -50,6 +50,28 @@ def curve_rows(
             row.append(small_line(curve, since, now, room, face), style=face.paint(BLUE))
         rows.append(fit(row, width))
     return tuple(rows)
+
+
+def curve_head(told: str, width: int, face: Face) -> Text:
+    """What stands above the rows: what they show, and what each column is.
+
+    Args:
+        told: what they show, harmless.
+        width: columns that it must keep within.
+        face: what the terminal can show.
+    """
+    row = Text.assemble(
+        (column(f" {told}", _names(width) + 3, face.mark), "bold underline"), "  ", column("now", 16, face.mark)
+    )
+    if width >= _WITH_LINE:
+        row.append("  " + column("moved, or usual", 16 if width < _WIDE else 18, face.mark))
+    if width >= _WIDE:
+        row.append("  " + column("within the norm", 20, face.mark))
+    return fit(row, width)
+
+
+def _names(width: int) -> int:
+    return max(12, width * 34 // 100) if width < _WIDE else 40
 
 
 def _usual(curve: Curve) -> str:

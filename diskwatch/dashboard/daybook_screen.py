@@ -9,7 +9,7 @@ from textual.binding import Binding
 from textual.widget import Widget
 from textual.widgets import Input
 
-from diskwatch.dashboard.cells import fit, wrap
+from diskwatch.dashboard.cells import cut, fit, wrap
 from diskwatch.dashboard.daybook import entry_lines
 from diskwatch.dashboard.desk import Desk
 from diskwatch.dashboard.keys import SIEVE, Key
@@ -142,7 +142,7 @@ class DayBookScreen(Paper):
         return self._made[1]
 
     def _lines(self, width: int) -> Iterable[Text]:
-        yield fit(Text(f" Day book: {self._about()}", style="bold"), width)
+        yield Text(cut(f" Day book: {self._about()}", width, self.desk.face.mark), style="bold")
         yield Text()
         if self._trouble is not None:
             yield from (Text(f"   {part}") for part in wrap(self._trouble, max(width - 6, 10)))

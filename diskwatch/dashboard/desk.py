@@ -91,7 +91,7 @@ class Desk:
         return None if self.snapshot is None else self.snapshot.strands.get(number)
 
     def say(self, text: str) -> None:
-        """A harmless sentence to the reader, in the place of the keys for some seconds."""
+        """A harmless sentence to the reader, in the last line for some seconds."""
         self._said, self._said_until = text, self.steady() + _REPLY_STANDS
 
     def said(self, width: int) -> Text | None:
@@ -99,6 +99,11 @@ class Desk:
         if self._said is None or self.steady() >= self._said_until:
             return None
         return Text(cut(self._said, width, self.face.mark))
+
+    def over(self, keys: tuple[Text, ...], width: int) -> tuple[Text, ...]:
+        """The last lines of a screen: its keys; what was said stands in the place of the last of them."""
+        said = self.said(width)
+        return keys if said is None else (*keys[:-1], said)
 
     def troubles(self) -> tuple[str, ...]:
         """What is wrong with the screen or the watch now."""

@@ -9,7 +9,7 @@ from diskwatch.dashboard.band import band
 from diskwatch.dashboard.cells import fit, wrap
 from diskwatch.dashboard.chapters import chapter_lines
 from diskwatch.dashboard.chart.plot import LEAST_ROWS, Frame, plot
-from diskwatch.dashboard.curves import curve_rows
+from diskwatch.dashboard.curves import curve_head, curve_rows
 from diskwatch.dashboard.desk import Desk
 from diskwatch.dashboard.keys import SIGNALS, SPANS, Key
 from diskwatch.dashboard.paper import Paper, bound
@@ -106,7 +106,7 @@ class DriveScreen(Paper):
         lines.append(Text())
         if self._curves:
             lines += plot(self._curves[self._chosen()], self._frame(width))
-            lines += [Text(), fit(Text(f" Signals, {said(self._span)}", style="bold underline"), width)]
+            lines += [Text(), curve_head(f"Signals, {said(self._span)}", width, face)]
             lines += curve_rows(
                 self._curves, self._chosen(), since=self._since, now=self._at, width=width, face=face
             )

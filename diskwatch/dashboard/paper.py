@@ -87,11 +87,8 @@ class Paper(Screen[None]):
         return (BACK, *SCROLLS, *self.KEYS, *others, HELP, QUIT)
 
     def _keys(self, width: int) -> tuple[Text, ...]:
-        said = self.desk.said(width)
-        if said is not None:
-            return (said,)
         rows = 2 if self.size.height >= _TWO_ROWS_FROM else 1
-        return keys_rows(self.told_keys(), width, self.desk.face, rows=rows)
+        return self.desk.over(keys_rows(self.told_keys(), width, self.desk.face, rows=rows), width)
 
 
 _ALSO = frozenset({"c", "t", "p", "b"})

@@ -3,7 +3,7 @@ from dataclasses import replace
 import pytest
 from hypothesis import given, strategies as st
 
-from diskwatch.dashboard.curves import curve_rows, small_line
+from diskwatch.dashboard.curves import curve_head, curve_rows, small_line
 from diskwatch.dashboard.weight import Face
 from diskwatch.units import DAY
 from tests.dashboard.answers import TOLD, WARM, WORN
@@ -27,6 +27,15 @@ def test_a_row_tells_name_value_and_what_became_of_it():
     assert "usual 35 to 41 °C" in warm
     assert "once in 2 years" in warm
     assert "passed" in told
+
+
+@unhurried
+@given(st.integers(20, 200))
+def test_every_column_has_its_head_above_it_and_none_is_wider_than_the_page(width):
+    head = curve_head("Signals, the last month", width, Face()).plain
+    assert len(head) <= width
+    if width >= 60:
+        assert head.index("now") == rows(width)[0].index("71 %")
 
 
 def test_the_small_line_rises_with_the_values_and_is_open_where_nothing_was_read():

@@ -1,4 +1,5 @@
 import pytest
+from rich.text import Text
 
 from diskwatch.dashboard.desk import Desk
 from diskwatch.dashboard.feed import Snapshot
@@ -32,8 +33,10 @@ def desk():
 def test_what_was_said_stands_for_some_seconds_of_the_readers_own_time(desk):
     desk.say("Put off.")
     assert desk.said(80).plain == "Put off."
+    assert [row.plain for row in desk.over((Text("a keys"), Text("q quit")), 80)] == ["a keys", "Put off."]
     desk.time[0] = 7.0
     assert desk.said(80) is None
+    assert [row.plain for row in desk.over((Text("a keys"), Text("q quit")), 80)] == ["a keys", "q quit"]
 
 
 def test_drives_are_found_by_number_once_they_are_known(desk):
