@@ -18,7 +18,7 @@ _LATEST = f"""
             WHERE other.drive = named.drive AND other.signal > named.signal)
         FROM named WHERE signal IS NOT NULL
     )
-    SELECT drive, {_COLUMNS} FROM forecast JOIN named USING (drive, signal)
+    SELECT drive, {_COLUMNS} FROM named CROSS JOIN forecast USING (drive, signal)
     WHERE made_on_day = (SELECT max(made_on_day) FROM forecast AS other
         WHERE other.drive = named.drive AND other.signal = named.signal)
     ORDER BY drive, signal

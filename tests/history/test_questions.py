@@ -6,6 +6,7 @@ import pytest
 from hypothesis import given, settings, strategies as st
 
 from diskwatch.history import bays, questions
+from diskwatch.history.forecasts import kept_forecasts, latest_forecasts
 from diskwatch.history.leaving import lines_of
 from diskwatch.history.stating import file_past_days
 from diskwatch.history.writer import History
@@ -23,7 +24,20 @@ from tests.history.examples import (
     full_round,
 )
 
-LARGE = ("value", "fresh", "pass", "io_minute", "evidence", "day_book")
+LARGE = (
+    "value",
+    "fresh",
+    "pass",
+    "pass_day",
+    "io_minute",
+    "io_five",
+    "io_day",
+    "evidence",
+    "day_book",
+    "kept_state",
+    "forecast",
+    "probe",
+)
 
 
 @pytest.fixture
@@ -46,6 +60,10 @@ def grown(history, known, connection):
     for number in range(60):
         history.record(full_round(known, NOON + number * DAY // 4, number))
         history.add_traffic([a_span(at=NOON + number * 60)])
+        connection.execute(
+            "INSERT INTO forecast VALUES (1, 'percentage-used', ?, 100, 'drive', 1, 2, 0.8, NULL, NULL)",
+            (number,),
+        )
     file_past_days(connection, NOON // DAY + 12)
     connection.execute("ANALYZE")
     return connection
@@ -65,6 +83,8 @@ def grown(history, known, connection):
         lambda connection: questions.last_reading(connection, 1),
         lambda connection: questions.state(connection, 1),
         bays.drive_lines,
+        latest_forecasts,
+        lambda connection: kept_forecasts(connection, 1),
     ],
 )
 def test_no_question_walks_through_a_whole_large_table_or_sorts_one(grown, ask):

@@ -1,6 +1,7 @@
 """Years of six invented drives, written week by week as the watch leaves them, thinned by the real code."""
 
 import random
+import sqlite3
 import time
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, replace
@@ -9,6 +10,7 @@ from pathlib import Path
 from typing import TypeVar
 
 from diskwatch.history import packing, rows
+from diskwatch.history.probes import times_packed
 from diskwatch.history.writer import History
 from diskwatch.records import (
     Attribute,
@@ -17,10 +19,12 @@ from diskwatch.records import (
     Entry,
     IoSpan,
     KnownDrive,
+    ProbeDay,
     Round,
     SignalKind,
     Value,
 )
+from diskwatch.service.probing import READS, REQUESTS
 from diskwatch.trends.load import class_days
 from tests.history.examples import (
     DAY,
@@ -41,6 +45,8 @@ BEGIN = NOON // WEEK * WEEK
 STILL = tuple(f"still-{number}" for number in range(20))
 MOVING = ("temperature", *(f"moving-{number}" for number in range(7)))
 FOLLOWED = STILL[:12]
+FORECAST = ("percentage-used", "read-latency", "write-latency")
+HEARD = ("kernel-io-errors", "link-resets", "kernel-timeouts")
 _LOADS = ((0.2, 4096), (0.5, 16384), (2.0, 4096), (5.0, 65536), (9.0, 131072), (30.0, 16384), (90.0, 262144))
 """Operations a second and their size: what an invented workstation does by turns."""
 
@@ -147,6 +153,7 @@ def a_week(
             "INSERT OR IGNORE INTO kept_state (drive, at, packed) VALUES (?, ?, ?)",
             [(known.number, begin + WEEK - 1800, packing.packed(a_state(noise))) for known in drives],
         )
+        _what_is_worked_out(connection, drives, begin, noise)
         if traffic:
             connection.executemany(
                 "INSERT OR REPLACE INTO io_five VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)",
@@ -166,6 +173,49 @@ def a_week(
             for known in drives
         )
     )
+
+
+def _what_is_worked_out(
+    connection: sqlite3.Connection, drives: tuple[KnownDrive, ...], begin: int, noise: random.Random
+) -> None:
+    """Forecasts of each week, the probes of its days, and the one row a drive of what is rewritten."""
+    connection.executemany(
+        "INSERT OR REPLACE INTO forecast VALUES (?, ?, ?, 100.0, 'drive', ?, ?, 0.8, NULL, NULL)",
+        (
+            (known.number, signal, begin // DAY, 900 * noise.random(), 900 + 900 * noise.random())
+            for known in drives
+            for signal in FORECAST
+        ),
+    )
+    connection.executemany(
+        "INSERT OR REPLACE INTO probe VALUES (?, ?, ?, 1800, ?)",
+        (
+            (known.number, at, noise.randrange(4), times_packed(_a_probe(at, noise)))
+            for known in drives
+            for at in range(begin, begin + WEEK, DAY)
+        ),
+    )
+    connection.executemany(
+        "INSERT OR REPLACE INTO latency_state VALUES (?, ?, ?)",
+        [(known.number, begin // DAY, packing.packed(a_state(noise) * 40)) for known in drives],
+    )
+    connection.executemany(
+        "INSERT OR REPLACE INTO answer VALUES (?, ?, 'keep', ?)",
+        [(known.number, begin, packing.packed("\n".join(map(str, range(2_000))))) for known in drives],
+    )
+    connection.executemany(
+        "INSERT OR REPLACE INTO heard VALUES (?, ?, ?)",
+        [(known.number, signal, begin % 1_000) for known in drives for signal in HEARD],
+    )
+
+
+def _a_probe(at: int, noise: random.Random) -> ProbeDay:
+    """As many reads as a probe makes, at times as a disk takes them."""
+
+    def times(count: int) -> tuple[int, ...]:
+        return tuple(round(noise.lognormvariate(9.0, 0.3)) for _ in range(count))
+
+    return ProbeDay(at=at, place=0, band_us=times(READS), slice_us=times(REQUESTS), disk_ms=1_800)
 
 
 def _fives(drives: tuple[KnownDrive, ...], begin: int, noise: random.Random) -> Iterator[tuple[int, ...]]:
