@@ -53,7 +53,8 @@ def test_passes_of_one_second_arrive_all_and_none_of_them_twice(history):
         known = source.admit(a_drive(), a_place(), NOON)
         for took in range(3):
             source.record(a_round(a_part(known, replace(a_pass(NOON), took_ms=took))))
-        source._db.conn.execute("DELETE FROM pass WHERE nth = 1")  # as thinning does
+        with source._writing() as connection:
+            connection.execute("DELETE FROM pass WHERE nth = 1")  # as thinning does
         lines = tuple(lines_of(source._db.conn, 1))[1:]
         with source._writing() as connection:
             assert take_in(connection, 1, lines).wrong == ()

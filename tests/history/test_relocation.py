@@ -189,14 +189,14 @@ def test_a_full_disk_at_the_new_place_is_named_as_that(full, tmp_path, monkeypat
         def backup(self, *_: object, **__: object) -> None:
             raise error
 
-    real = care._reading
+    real = care.reading
 
     def reading(path):
         uri = path.resolve().as_uri() + "?mode=ro"
         return closing(sqlite3.connect(uri, uri=True, isolation_level=None, factory=Full))
 
-    monkeypatch.setattr(care, "_reading", reading)
+    monkeypatch.setattr(care, "reading", reading)
     with pytest.raises(HistoryError, match=r"new/\.history\.db\.making cannot be written: .* full"):
         move(full, tmp_path / "new", NOON)
-    monkeypatch.setattr(care, "_reading", real)
+    monkeypatch.setattr(care, "reading", real)
     assert (full / HISTORY).exists()

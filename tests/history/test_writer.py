@@ -122,7 +122,8 @@ def test_traffic_adds_up_within_a_minute_however_it_is_handed_over(history):
     spans = [a_span(at=NOON + ten * 10, reads=ten) for ten in range(1, 13)]
     history.add_traffic(spans)
     together = history._db.conn.execute("SELECT at, drive, * FROM io_minute").fetchall()
-    history._db.conn.execute("DELETE FROM io_minute")
+    with history._writing() as connection:
+        connection.execute("DELETE FROM io_minute")
     for one in spans:
         history.add_traffic([one])
     history.add_traffic([])
