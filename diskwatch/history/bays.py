@@ -7,6 +7,7 @@ from typing import Any, TypeVar
 
 from diskwatch.history import rows
 from diskwatch.history.forecasts import forecast, latest_forecasts
+from diskwatch.language import _
 from diskwatch.records import Call, CallWord, DriveLine, Finding, Kind, SignalNow
 from diskwatch.records.owner import LABEL, owner_facts
 
@@ -38,7 +39,9 @@ def all_that_can_be_read(connection: sqlite3.Connection) -> tuple[tuple[DriveLin
     calls = _calls(connection, odd)
     findings = _findings(connection, odd)
     signals = _signals(connection, odd)
-    forecasts = latest_forecasts(connection, lambda drive, row: odd.decoded(drive, "a forecast", forecast, row))
+    forecasts = latest_forecasts(
+        connection, lambda drive, row: odd.decoded(drive, _("a forecast"), forecast, row)
+    )
     found = connection.execute(
         "SELECT drive.number, wwn, model, serial, path, kind, firmware, capacity_bytes, rotation_rpm,"
         " device, bay, lives_here, first_seen, passed_at, outcome, sentence.text"
@@ -54,7 +57,7 @@ def all_that_can_be_read(connection: sqlite3.Connection) -> tuple[tuple[DriveLin
                 place=known.place,
                 label=said[known.number].get(LABEL, ("", 0))[0] or None,
                 first_seen=known.first_seen,
-                last_pass=odd.decoded(known.number, "how its last pass went", rows.last_pass, row[13:]),
+                last_pass=odd.decoded(known.number, _("how its last pass went"), rows.last_pass, row[13:]),
                 call=calls.get(known.number),
                 findings=tuple(sorted(findings[known.number], key=_leading)),
                 signals=tuple(signals[known.number]),
@@ -82,23 +85,26 @@ class _Odd:
 
     def sentences(self, names: Mapping[int, str]) -> tuple[str, ...]:
         """What was remembered, in the order in which it was met."""
-        return tuple(
-            f"Of {names.get(drive, 'a drive')} {what} cannot be read from the history ({why});"
+        told = _(
+            "Of {drive} {what} cannot be read from the history ({why});"
             " the watch mends that when it starts, and within a week."
+        )
+        return tuple(
+            told.format(drive=names.get(drive, "a drive"), what=what, why=why)
             for drive, what, why in self._found
         )
 
 
 def _mended(row: rows.Row, odd: _Odd) -> rows.Row:
     """A drive's row, with what is most likely or nothing in place of what cannot be right."""
-    number, *_, kind, _firmware, size, rotation, device, _bay, lives_here, _first_seen = row
+    number, *_names, kind, _firmware, size, rotation, device, _bay, lives_here, _first_seen = row
     cells = list(row)
-    if odd.decoded(number, "the sort of device", Kind, kind) is None:
+    if odd.decoded(number, _("the sort of device"), Kind, kind) is None:
         turns = isinstance(rotation, int) and rotation > 0
         cells[5] = (Kind.HDD if turns else Kind.NVME if "nvme" in device else Kind.SSD).value
-    for place, what, kept in ((7, "the size", size), (8, "how fast it turns", rotation)):
+    for place, what, kept in ((7, _("the size"), size), (8, _("how fast it turns"), rotation)):
         cells[place] = kept if odd.decoded(number, what, lambda one: (rows.number(one),), kept) else None
-    if odd.decoded(number, "what lives on it", rows.mounts, lives_here) is None:
+    if odd.decoded(number, _("what lives on it"), rows.mounts, lives_here) is None:
         cells[11] = "[]"
     return tuple(cells)
 
@@ -124,7 +130,8 @@ def _said(connection: sqlite3.Connection) -> defaultdict[int, dict[str, tuple[st
 def _calls(connection: sqlite3.Connection, odd: _Odd) -> dict[int, Call]:
     """The call that stands for each drive; for one that cannot be read no older one stands in."""
     found = (
-        (row[0], odd.decoded(row[0], "its call", rows.call, row[1:])) for row in connection.execute(_STANDING)
+        (row[0], odd.decoded(row[0], _("its call"), rows.call, row[1:]))
+        for row in connection.execute(_STANDING)
     )
     return {drive: call for drive, call in found if call is not None}
 
@@ -135,7 +142,7 @@ def _findings(connection: sqlite3.Connection, odd: _Odd) -> defaultdict[int, lis
         "SELECT drive, name, kind, signals, since, calls, cause, evidence, sentence, data"
         " FROM finding WHERE closed IS NULL ORDER BY number"
     ):
-        finding = odd.decoded(row[0], "a finding", rows.finding, row[1:])
+        finding = odd.decoded(row[0], _("a finding"), rows.finding, row[1:])
         if finding is not None:
             found[row[0]].append(finding)
     return found
@@ -148,7 +155,7 @@ def _signals(connection: sqlite3.Connection, odd: _Odd) -> defaultdict[int, list
         " FROM series JOIN latest ON latest.series = series.number"
         " WHERE current AND since IS NOT NULL ORDER BY drive, signal"
     ):
-        known = odd.decoded(drive, f"the value of {name}", rows.value, value)
+        known = odd.decoded(drive, _("the value of {signal}").format(signal=name), rows.value, value)
         found[drive].append(SignalNow(name=name, value=known, unit=unit, since=since, evidence=evidence))
     return found
 

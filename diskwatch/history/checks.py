@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 from diskwatch.history import packing, rows
 from diskwatch.history.forecasts import forecast
+from diskwatch.language import marked
 from diskwatch.records import Kind, Outcome, SignalKind
 
 Readable = Callable[[str], object]
@@ -64,7 +65,7 @@ def first(readable: Readable) -> tuple[Check, ...]:
             key=("number",),
             cells=("kind",),
             decode=Kind,
-            what="What sort of device it is",
+            what=marked("What sort of device it is"),
             # Its next answer tells; until then it is what most of its words speak for.
             put="kind = CASE WHEN rotation_rpm > 0 THEN 'hdd'"
             " WHEN device LIKE '%nvme%' THEN 'nvme' ELSE 'ssd' END",
@@ -75,7 +76,7 @@ def first(readable: Readable) -> tuple[Check, ...]:
             key=("number",),
             cells=("lives_here",),
             decode=rows.mounts,
-            what="What lives on it",
+            what=marked("What lives on it"),
             put="lives_here = '[]'",
             drive="number",
         ),
@@ -89,14 +90,17 @@ def first(readable: Readable) -> tuple[Check, ...]:
                 put=f"{name} = NULL",
                 drive="number",
             )
-            for name, what in (("capacity_bytes", "Its size"), ("rotation_rpm", "How fast it turns"))
+            for name, what in (
+                ("capacity_bytes", marked("Its size")),
+                ("rotation_rpm", marked("How fast it turns")),
+            )
         ),
         Check(
             table="analyser_state",
             key=("drive",),
             cells=("packed",),
             decode=lambda packed: readable(packing.unpacked(packed)),
-            what="The state of its ledgers",
+            what=marked("The state of its ledgers"),
             judged=True,
         ),
         Check(
@@ -104,14 +108,14 @@ def first(readable: Readable) -> tuple[Check, ...]:
             key=("drive",),
             cells=("packed",),
             decode=packing.unpacked,
-            what="What its usual times were learnt from",
+            what=marked("What its usual times were learnt from"),
         ),
         Check(
             table="call",
             key=("number",),
             cells=_CALL,
             decode=lambda *cells: rows.call(cells),
-            what="A call",
+            what=marked("A call"),
             judged=True,
         ),
         Check(
@@ -119,7 +123,7 @@ def first(readable: Readable) -> tuple[Check, ...]:
             key=("number",),
             cells=_FINDING,
             decode=lambda *cells: rows.finding(cells),
-            what="A finding",
+            what=marked("A finding"),
             judged=True,
         ),
         Check(
@@ -127,7 +131,7 @@ def first(readable: Readable) -> tuple[Check, ...]:
             key=("drive", "signal", "made_on_day"),
             cells=_FORECAST,
             decode=lambda *cells: forecast(cells),
-            what="A forecast",
+            what=marked("A forecast"),
         ),
     )
 
@@ -143,8 +147,8 @@ MORE = (
             suspects=f"outcome NOT IN ({_OUTCOMES})",
         )
         for table, key, what in (
-            ("pass", ("drive", "at", "nth"), "How a pass went"),
-            ("pass_day", ("drive", "day", "outcome"), "How some passes of a day went"),
+            ("pass", ("drive", "at", "nth"), marked("How a pass went")),
+            ("pass_day", ("drive", "day", "outcome"), marked("How some passes of a day went")),
         )
     ),
     Check(
@@ -152,7 +156,7 @@ MORE = (
         key=("number",),
         cells=("outcome",),
         decode=Outcome,
-        what="How its last pass went",
+        what=marked("How its last pass went"),
         put=_ITS_LAST_ONE,
         drive="number",
         suspects=f"passed_at IS NOT NULL AND (outcome IS NULL OR outcome NOT IN ({_OUTCOMES}))",
@@ -162,7 +166,7 @@ MORE = (
         key=("number",),
         cells=("kind",),
         decode=SignalKind,
-        what="Of what kind a signal is",
+        what=marked("Of what kind a signal is"),
         put="kind = NULL",
         suspects=f"kind IS NOT NULL AND kind NOT IN ({_KINDS})",
     ),
@@ -172,7 +176,7 @@ MORE = (
             key=key,
             cells=("value",),
             decode=rows.value,
-            what="A value",
+            what=marked("A value"),
             put=_LOST,
             drive=f"(SELECT drive FROM series WHERE series.number = {table}.series)",  # noqa: S608  # our own tables
             suspects="typeof(value) IN ('blob', 'real')",
@@ -186,11 +190,11 @@ MORE = (
     *(
         Check(table=table, key=key, cells=("packed",), decode=decode, what=what)
         for table, key, decode, what in (
-            ("kept_state", ("drive", "at"), packing.unpacked, "A dated copy of its state"),
-            ("last_reading", ("drive",), packing.reading, "Its last reading"),
-            ("beside", ("drive", "at", "nth"), packing.beside, "What stood beside a reading"),
-            ("answer", ("drive",), packing.unpacked, "What smartctl last printed of it"),
-            ("probe", ("drive", "at"), packing.unpacked, "A probe"),
+            ("kept_state", ("drive", "at"), packing.unpacked, marked("A dated copy of its state")),
+            ("last_reading", ("drive",), packing.reading, marked("Its last reading")),
+            ("beside", ("drive", "at", "nth"), packing.beside, marked("What stood beside a reading")),
+            ("answer", ("drive",), packing.unpacked, marked("What smartctl last printed of it")),
+            ("probe", ("drive", "at"), packing.unpacked, marked("A probe")),
         )
     ),
     Check(
@@ -198,7 +202,7 @@ MORE = (
         key=("drive", "day", "load_class", "direction"),
         cells=("histogram",),
         decode=packing.histogram,
-        what="The times of a day",
+        what=marked("The times of a day"),
         suspects="length(histogram) % 4 <> 0",
     ),
     Check(
@@ -206,7 +210,7 @@ MORE = (
         key=("number",),
         cells=("data",),
         decode=_object,
-        what="What stands behind a line of the day book",
+        what=marked("What stands behind a line of the day book"),
         put="data = '{}'",
         suspects="NOT json_valid(data) OR json_type(data) <> 'object'",
     ),

@@ -17,6 +17,7 @@ from diskwatch.history.checks import MORE, Check, Readable, first
 from diskwatch.history.mishaps import told
 from diskwatch.history.moving import Judge, case_of, keep_judged
 from diskwatch.history.round import known_drives, write_entries
+from diskwatch.language import _
 from diskwatch.records import Entry
 from diskwatch.units import plain
 
@@ -107,7 +108,7 @@ def mend(
             judged = judge(case_of(connection, known, arrived))
             if judged is not None:
                 keep_judged(connection, known.number, judged)
-                text = "What is thought of it was worked out again from what the history holds of it."
+                text = _("What is thought of it was worked out again from what the history holds of it.")
                 entries.append(Entry(at=at, drive=known.number, kind="trouble", text=text))
     write_entries(connection, entries)
     return tuple(entries)
@@ -144,8 +145,11 @@ def _take_out(connection: sqlite3.Connection, one: Garbled) -> None:
 
 def _entry(one: Garbled, at: int) -> Entry:
     check = one.check
-    done = "the row was taken out" if check.put is None else "it counts as not known now"
-    text = f"{check.what} could not be read from the history ({plain(one.why)}); {done}."
+    text = (
+        _("{what} could not be read from the history ({why}); the row was taken out.")
+        if check.put is None
+        else _("{what} could not be read from the history ({why}); it counts as not known now.")
+    ).format(what=_(check.what), why=plain(one.why))
     data = {
         "table": check.table,
         "row": dict(zip(check.key, map(_kept, one.key), strict=True)),

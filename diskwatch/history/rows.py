@@ -8,6 +8,7 @@ import json
 from collections.abc import Mapping
 from typing import Any
 
+from diskwatch.language import _
 from diskwatch.records import (
     Call,
     CallWord,
@@ -239,7 +240,8 @@ def entry(row: Row) -> Entry:
     try:
         told = _object(data)
     except ValueError as error:
-        told, words = {}, f"{words} (What stands behind this line cannot be read: {error}.)"
+        odd = _("{text} (What stands behind this line cannot be read: {why}.)")
+        told, words = {}, odd.format(text=words, why=error)
     return Entry(at=at, drive=drive, kind=kind, text=words, data=told)
 
 

@@ -23,6 +23,7 @@ from diskwatch.errors import (
 )
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
+from diskwatch.language import _, ngettext
 from diskwatch.records import (
     Drive,
     DriveLine,
@@ -102,16 +103,26 @@ class Keeper:
             self._known, self._states = dict(joined.known), dict(joined.states)
             self._begin_epoch(joined.numbers)
             if joined.writes:
-                count = say_count(len(joined.writes))
                 self._say(
-                    f"The history came into reach late; {count} writes that waited were joined to its past."
+                    ngettext(
+                        "The history came into reach late; {count} write that waited was joined to its past.",
+                        "The history came into reach late; {count} writes that waited were joined to its past.",
+                        len(joined.writes),
+                    ),
+                    len(joined.writes),
                 )
         else:
             if not known and self._known and not self._blind:
                 history.take_up(self._standing())
                 self._say(
-                    "The history that was written before is no longer there, and a new one was begun;"
-                    f" what is thought of {say_count(len(self._known))} drives goes on, without their past."
+                    ngettext(
+                        "The history that was written before is no longer there, and a new one was begun;"
+                        " what is thought of {count} drive goes on, without its past.",
+                        "The history that was written before is no longer there, and a new one was begun;"
+                        " what is thought of {count} drives goes on, without their past.",
+                        len(self._known),
+                    ),
+                    len(self._known),
                 )
             self._known = known | self._known
             self._states = history.states() | self._states
@@ -132,10 +143,9 @@ class Keeper:
             number = numbers.get(number, number)
         return number
 
-    def _say(self, text: str) -> None:
-        self._waiting.append(
-            Notes(entries=(Entry(at=self._now(), drive=None, kind="trouble", text=plain(text)),))
-        )
+    def _say(self, text: str, count: int) -> None:
+        said = plain(text.format(count=say_count(count)))
+        self._waiting.append(Notes(entries=(Entry(at=self._now(), drive=None, kind="trouble", text=said),)))
 
     def _standing(self) -> tuple[DriveRound, ...]:
         """What is thought of each drive, for a history that does not know it."""
@@ -315,8 +325,15 @@ class Keeper:
         while self._history is not None and self._waiting:
             self._store_first(self._history)
         if self._waiting.given_up:
-            count, self._waiting.given_up = say_count(self._waiting.given_up), 0
-            self._say(f"The history could not be written for long; the oldest {count} writes were given up.")
+            count, self._waiting.given_up = self._waiting.given_up, 0
+            self._say(
+                ngettext(
+                    "The history could not be written for long; the oldest {count} write was given up.",
+                    "The history could not be written for long; the oldest {count} writes were given up.",
+                    count,
+                ),
+                count,
+            )
             self._store_all()
 
     def _store_first(self, history: History) -> None:
@@ -331,7 +348,8 @@ class Keeper:
         except HistoryUnfit as error:
             # It would fit no better later, and all that follows would wait for it for ever.
             self._waiting.done()
-            self._say(f"Left out, {called(write)}: {error}.")
+            text = plain(_("Left out, {what}: {why}.").format(what=called(write), why=error))
+            self._waiting.append(Notes(entries=(Entry(at=self._now(), drive=None, kind="trouble", text=text),)))
         except DiskwatchError:
             raise
         except Exception:

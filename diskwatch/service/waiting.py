@@ -5,6 +5,7 @@ from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, replace
 
 from diskwatch.history.writer import History
+from diskwatch.language import _, ngettext
 from diskwatch.records import Entry, IoSpan, Listened, Round
 from diskwatch.units import say_count
 
@@ -80,10 +81,11 @@ class Waiting:
         """What was given up, for the sentence about the trouble; empty where nothing was."""
         if not self.given_up:
             return ""
-        return (
-            f"; more than {say_count(self._writes.maxlen or 0)} writes wait for it,"
-            f" and the oldest {say_count(self.given_up)} were given up"
-        )
+        return ngettext(
+            "; more than {most} writes wait for it, and the oldest {count} was given up",
+            "; more than {most} writes wait for it, and the oldest {count} were given up",
+            self.given_up,
+        ).format(most=say_count(self._writes.maxlen or 0), count=say_count(self.given_up))
 
 
 def store(history: History, write: Write) -> None:
@@ -107,13 +109,14 @@ def called(write: Write) -> str:
     """What a write is, for a sentence."""
     match write:
         case Round():
-            return "a round of readings"
+            return _("a round of readings")
         case Listened():
-            return "what was heard in the kernel's log"
+            return _("what was heard in the kernel's log")
         case Traffic():
-            return "a stretch of traffic"
+            return _("a stretch of traffic")
         case Notes():
-            return f"a line of the day book ({'; '.join(entry.text for entry in write.entries)})"
+            lines = "; ".join(entry.text for entry in write.entries)
+            return _("a line of the day book ({lines})").format(lines=lines)
 
 
 def _without_answers(write: Write) -> Write:
