@@ -16,7 +16,6 @@ from collections.abc import Iterator
 from dataclasses import replace
 from pathlib import Path
 
-from diskwatch.cli import bays as bays_command
 from diskwatch.cli.common import now, settings, state_folder, talk
 from diskwatch.cli.endangered import Warner
 from diskwatch.cli.shown import Shown
@@ -45,7 +44,9 @@ def run(args: argparse.Namespace) -> int:
     if not is_full_screen():
         talk("diskwatch: this is no full-screen terminal; 'diskwatch bays' shows the same as text")
         args.json, args.code, args.join = False, False, []
-        return bays_command.run(args)
+        from diskwatch.cli import bays  # noqa: PLC0415 - the screen's first frame does not wait for it
+
+        return bays.run(args)
     threading.Thread(target=end_with_terminal, name="terminal", daemon=True).start()
     # Textual takes a quarter of a second to load: the child reads the drives meanwhile.
     with _watching(folder, args) as (told, starting):

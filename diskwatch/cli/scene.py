@@ -1,9 +1,11 @@
 """A rehearsal in the dashboard: a thread lives through it while the screen reads the history that it writes."""
 
 import contextlib
+import os
 import threading
 import time
 from collections.abc import Callable
+from dataclasses import replace
 from pathlib import Path
 
 from diskwatch.cli.dashboard import Source, end_with_terminal, has_braille, speaks_more_than_ascii
@@ -113,7 +115,8 @@ def show(course: Course, folder: Path, pace: Pace, live: Live) -> str | None:
         with contextlib.ExitStack() as stack:
             source = Source(folder, stack, starting=None)
             Dashboard(
-                source,
+                # Once it is over nobody watches these drives any more, which is nothing to be warned of.
+                lambda at: replace(source(at), watcher=os.getpid()),
                 course.clock.now,
                 watching="a rehearsal, in which every drive is invented",
                 # Many an invented machine is off at night, which is no reason to call its figures old.

@@ -11,7 +11,6 @@ from typing import TYPE_CHECKING
 from diskwatch.dashboard.questions import Chapter, Curve, Strand
 from diskwatch.errors import DiskwatchError, UsageError
 from diskwatch.history.reader import Past
-from diskwatch.judge.stakes import in_time, margin_of
 from diskwatch.records import Bays, DriveLine, Entry
 from diskwatch.units import DAY, rfc3339
 
@@ -42,6 +41,8 @@ class Shown:
         """Each drive's year of evidence, and its margin."""
         if not bays.drives:
             return {}
+        from diskwatch.judge.stakes import margin_of  # noqa: PLC0415 - the first frame does not wait for it
+
         days = self._past().strongest(bays.at - _STRIP)
         return {
             line.number: Strand(evidence=days.get(line.number, ()), margin=margin_of(line, bays.at))
@@ -140,6 +141,8 @@ class Shown:
 
 
 def _to_do(line: DriveLine, at: int) -> Iterator[str]:
+    from diskwatch.judge.stakes import in_time  # noqa: PLC0415 - the first frame does not wait for it
+
     if line.call is None:
         return
     yield line.call.reason

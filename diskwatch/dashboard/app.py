@@ -163,7 +163,8 @@ class Dashboard(App[None]):
         first = self.desk.snapshot is None
         self.desk.snapshot = message.snapshot
         if first and self.desk.questions is not None:
-            self._ask()  # what follows the drives: their lines through time
+            # What follows the drives, their lines through time, waits until these are on the screen.
+            self.call_after_refresh(self._ask)
         if isinstance(self.screen, Paper):
             self.screen.fresh()
         self._draw()

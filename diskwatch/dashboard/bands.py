@@ -52,6 +52,7 @@ class Bands(VerticalScroll, can_focus=False):
         self._place = 0
         self._open: set[int] = set()
         self._strands: Mapping[int, Strand] = {}
+        self._made: dict[int, tuple[object, tuple[Text, ...], object]] = {}
 
     @property
     def chosen(self) -> DriveLine | None:
@@ -151,16 +152,23 @@ class Bands(VerticalScroll, can_focus=False):
 
     def _lines(self, line: DriveLine, width: int, *, chosen: bool) -> tuple[Text, ...]:
         strand = self._strands.get(line.number)
+        key = (id(line), id(strand), self._now, width, chosen, line.number in self._open, self._face)
+        made = self._made.get(line.number)
+        # Widths are tried and rows counted several times for one drawing; records are frozen, so that the same
+        # record gives the same lines. What it knows by place is kept, so that no other takes the place.
+        if made is not None and made[0] == key:
+            return made[1]
         lines = band(line, self._now, width, self._face, chosen=chosen, strand=strand)
         if line.number in self._open:
             lines += unfolded(line, self._now, width, self._face)
+        self._made[line.number] = (key, lines, (line, strand))
         return lines
 
     def _spread(self) -> None:
         width = self.scrollable_content_region.width
         if width <= 0:
             return
-        rows = sum(len(self._lines(line, width, chosen=False)) for line in self._drives)
+        rows = sum(len(self._lines(line, width, chosen=line.number == self._chosen)) for line in self._drives)
         self.set_class(rows + len(self._drives) <= self.size.height, "roomy")
 
     def _reveal(self) -> None:
