@@ -22,7 +22,7 @@ from diskwatch.cli.dashboard import is_full_screen
 from diskwatch.cli.pace import USUAL, Pace
 from diskwatch.cli.scene import show
 from diskwatch.places import state_folder
-from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, ProbeDay, summed
+from diskwatch.records import CallWord, DriveRound, IoSpan, ProbeDay, summed
 from diskwatch.rehearsal import scenarios, state
 from diskwatch.rehearsal.course import Course, Ended
 from diskwatch.rehearsal.happenings import MOST_DAYS
@@ -165,8 +165,7 @@ def live_through(course: Course, folder: Path, pace: Pace | None) -> str | None:
     def count() -> None:
         gathered.extend(traffic.look(dict(rounds.blocks)).spans)
 
-    text = f"A rehearsal began ({course.scenario.title}): every drive in this history is INVENTED."
-    keeper.note(Entry(at=course.clock.now(), drive=None, kind="watch", text=text))
+    keeper.note(state.begun(course.scenario.title, course.clock.now()))
     try:
         # Under the dashboard the terminal is not ours to write a bar to.
         with Bar("rehearsing", quiet=threading.current_thread() is not threading.main_thread()) as bar:

@@ -52,6 +52,8 @@ def test_the_owners_word_ends_it_and_the_next_absence_counts_as_the_first():
     *_, last = lived(*days(30, 10, 28))
     word = Settled(at=last.state.last_at + 60, because="it sits firmly now")
     state = analyser.settle(last.state, word).state
+    assert state.call is not None
     assert state.call.word is CallWord.KEEP
     again = analyser.advance(state, read(word.at + DAY, NVME, media_errors=0, unsafe_power_offs=3))
+    assert again.call is not None
     assert again.call.word is CallWord.KEEP

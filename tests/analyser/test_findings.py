@@ -6,7 +6,8 @@ import pytest
 from diskwatch import analyser
 from diskwatch.judge import odds
 from diskwatch.records import CallWord, Cause, FindingKind, Kind
-from diskwatch.replay.table import Row, Table
+from diskwatch.replay.daily import Row
+from diskwatch.replay.table import Table
 from tests.analyser.lives import lived
 from tests.judge import hazard
 from tests.samples import DAY, HDD, NOON, NVME, SSD, read

@@ -104,6 +104,7 @@ def test_the_owners_word_ends_it_and_only_more_of_it_speaks_again():
     state = lived(heard(read(NOON), unreadable_sectors=2))[-1].state
     word = Settled(at=NOON + 60, because="restored from a backup", signals=("unreadable-sectors",))
     settled = analyser.settle(state, word)
+    assert settled.call is not None
     assert settled.call.word is CallWord.KEEP
     same, more = lived(
         heard(read(NOON + 120), unreadable_sectors=2),

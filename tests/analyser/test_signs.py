@@ -67,8 +67,12 @@ def test_the_cause_stands_while_the_drive_is_not_read():
 
 
 def test_that_no_read_was_given_up_counts_once_where_no_sector_waits_either():
-    quiet = {"pending_sectors": 0, "reported_uncorrectable": 0}
-    drift = lived(*(read(NOON + day * DAY, crc_errors=day // 10, **quiet) for day in range(60)))[-1]
+    drift = lived(
+        *(
+            read(NOON + day * DAY, crc_errors=day // 10, pending_sectors=0, reported_uncorrectable=0)
+            for day in range(60)
+        )
+    )[-1]
     assert drift.state.signs["media counter"] is False
     assert "uncorrectable event" not in drift.state.signs
 

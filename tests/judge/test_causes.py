@@ -69,6 +69,7 @@ def test_defects_of_a_disk_whose_reads_slowed_are_the_head_and_without_slow_read
     quiet = ["CRC counter", "command timeout", "hot", "slow when hot", "writes slower"]
     slowed = causes.explain([*defects, "reads slower"], quiet)
     assert (slowed.cause, slowed.second) == (Cause.HEAD, None)
+    assert slowed.probability is not None
     assert slowed.probability >= causes.NAMED
     at_pace = causes.explain(defects, [*quiet, "reads slower"])
     assert (at_pace.cause, at_pace.second) == (Cause.MEDIA, None)

@@ -54,6 +54,7 @@ def test_rows_without_a_normalised_value_are_kept_though_the_library_loses_them(
 def test_a_row_whose_columns_are_broken_is_left_out_and_not_shifted_as_the_library_does(broken: str):
     told = sheet(row(5, "Reallocated_Sector_Ct", "8"), broken)
     device = device_of(told.lines, Family.ATA)
+    assert device is not None
     assert len([one for one in device.attributes if one is not None]) == 2
     assert [one.number for one in ata.attributes(None, device, told)] == [5]
 

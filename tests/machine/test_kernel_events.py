@@ -7,7 +7,7 @@ import pytest
 
 from diskwatch.machine.kernel_events import QUIET, SAME, Gathered, hear, settle
 from diskwatch.machine.kernel_line import Line, line_of
-from diskwatch.records import EventKind
+from diskwatch.records import Event, EventKind
 
 RECORDED = Path(__file__).parents[2] / "fixtures" / "kernel" / "lab_6_1.kmsg"
 DRIVES = {
@@ -56,17 +56,25 @@ FAILED = (
 READ = "I/O error, dev {}, sector {} op 0x0:(READ) flags 0x0 phys_seg 1 prio class 2"
 
 
+def line_in(record):
+    """The line that a record of ours holds."""
+    line = line_of(record)
+    assert line is not None, record
+    return line
+
+
 def recorded():
     """What was heard in each part of the recording, by the mark before it."""
-    kept, parts, at = Gathered(), {}, ""
+    kept, at = Gathered(), ""
+    parts: dict[str, list[tuple[str, Event]]] = {}
     for record in RECORDED.read_bytes().splitlines():
-        line = line_of(record)
+        line = line_in(record)
         if b";MARK " in record:
             at = record.partition(b";MARK ")[2].decode().partition(" /")[0]
         if b" unplug usb" in record:
             parts.setdefault("once ssd", []).extend(settle(kept, line.seconds + QUIET))
         parts.setdefault(at, []).extend(hear(kept, line, DRIVES))
-    parts["end"] = settle(kept, 1e9)
+    parts["end"] = list(settle(kept, 1e9))
     return parts
 
 
@@ -192,10 +200,10 @@ def test_lines_of_strangers_and_unknown_lines_are_counted(log):
 
 
 def test_a_restart_in_the_middle_of_a_trouble_changes_nothing():
-    lines = [line_of(record) for record in RECORDED.read_bytes().splitlines()]
+    lines = [line_in(record) for record in RECORDED.read_bytes().splitlines()]
     whole, cut = Gathered(), Gathered()
     told = [pair for line in lines for pair in hear(whole, line, DRIVES)]
-    again = []
+    again: list[tuple[str, Event]] = []
     for number, line in enumerate(lines):
         again += hear(cut, line, DRIVES)
         if number % 7 == 0:
@@ -215,7 +223,7 @@ def flood(noise, every):
     kept, found = Gathered(), 0
     begun = time.process_time()
     for record in records:
-        found += len(hear(kept, line_of(record), DRIVES))
+        found += len(hear(kept, line_in(record), DRIVES))
     return time.process_time() - begun, found
 
 

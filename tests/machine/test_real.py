@@ -27,7 +27,7 @@ class Asked:
         self.scanned = Scan(entries=(), trouble=None)
         self.answer = Pass(at=AT, outcome=Outcome.READ, reading=Reading(), took_ms=12)
         self.asked: list[Address] = []
-        self.completed: int | None = None
+        self.completed: list[int | None] = []
         self.stopped = False
         self.made_with: tuple[str, float] | None = None
 
@@ -42,7 +42,7 @@ class Asked:
 
     def ask(self, found: Found, *, completed: Callable[[], int | None]) -> Pass:
         self.asked.append(found.address)
-        self.completed = completed()
+        self.completed.append(completed())
         return self.answer
 
     def stop(self) -> None:
@@ -195,15 +195,14 @@ def test_a_drives_requests_are_counted_for_whoever_asks_it(
     monkeypatch.setattr(watched, "counts", lambda: {"sda": Counted(counts=counts, instance="1")})
     (found,) = watched.survey().found
     watched.ask(found)
-    assert smartctl.completed == 4
     watched.ask(replace(found, blocks=("sda", "gone")))
-    assert smartctl.completed is None
+    assert smartctl.completed == [4, None]
     tree.put(tree.sys / "block/sda/queue/iostats_passthrough", "0")
     watched.ask(found)
-    assert smartctl.completed == 4
+    assert smartctl.completed == [4, None, 4]
     tree.put(tree.sys / "block/sda/queue/iostats_passthrough", "1")
     watched.ask(found)
-    assert smartctl.completed is None
+    assert smartctl.completed == [4, None, 4, None]
 
 
 @pytest.mark.usefixtures("smartctl")

@@ -124,6 +124,7 @@ def test_the_library_is_taken_where_it_understands_more_rows():
     sheet = Sheet.of(ATA.splitlines())
     device = device_of(sheet.lines, Family.ATA)
     assert len(self_tests(Family.ATA, None, device, Sheet.of(()))) == 5
+    assert device is not None
     device.tests[0].status = "8754"  # as the library sets out a row that it cuts at the wrong places
     assert len(self_tests(Family.ATA, None, device, Sheet.of(()))) == 4
 

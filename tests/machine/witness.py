@@ -128,7 +128,8 @@ def of_row(row: Attribute, signal: str, size: set[int]) -> set[int]:  # noqa: C9
         steps = {"32mib": {2**25}, "mib": {2**20}, "gib": {2**30}, "lbas": size}[unit[1] if unit else ""]
         return {(number or 0) * step for step in steps}
     if signal in {"percentage-used", "available-spare"}:
-        return {100 - (row.value or 0), row.value or -1, whole(raw) if whole(raw) is not None else -1}
+        told = whole(raw)
+        return {100 - (row.value or 0), row.value or -1, -1 if told is None else told}
     return {number} if number is not None else set()
 
 
@@ -181,7 +182,8 @@ def _in_health(signal: str, document: Any) -> Iterator[int | None]:
         return
     for key, (whose, step) in KEYS.items():
         for told in (log.get(key), log.get(f"{key}_s")) if whose == signal else ():
-            yield int(told) * step if isinstance(told, int) or str(told).isdigit() else None
+            if isinstance(told, int) or (isinstance(told, str) and told.isdigit()):
+                yield int(told) * step
     sensors = log.get("temperature_sensors")
     if signal.startswith("temperature-sensor-") and isinstance(sensors, list):
         yield from sensors[int(signal[-1]) - 1 : int(signal[-1])]

@@ -1,15 +1,20 @@
 import pytest
 
 from diskwatch.errors import UsageError
-from diskwatch.records import DriveRound, Outcome, Pass, Round
-from diskwatch.rehearsal.state import claim
+from diskwatch.history.reader import Past
+from diskwatch.history.writer import History
+from diskwatch.records import DriveRound, Entry, Outcome, Pass, Round
+from diskwatch.rehearsal.state import begun, claim
 from diskwatch.service.keeper import Keeper
+from diskwatch.service.owner import settle
 from tests.rehearsal.examples import alone, hdd, nvme
 from tests.samples import HDD as REAL, HERE, NOON
 
 
-def keep(folder, *drives):
+def keep(folder, *drives, mark=True):
     keeper = Keeper(folder)
+    if mark:
+        keeper.note(begun("x", NOON))
     rounds = tuple(
         DriveRound(
             known=keeper.admit(drive, HERE, NOON),
@@ -34,6 +39,40 @@ def test_a_folder_that_holds_a_real_drive_is_refused_and_left_alone(tmp_path):
     with pytest.raises(UsageError, match="real drives"):
         claim(tmp_path)
     assert (tmp_path / "history.db").read_bytes() == before
+
+
+def refused_whole(folder, why):
+    """Whether a folder was refused, and not a byte of its history changed."""
+    before = (folder / "history.db").read_bytes()
+    with pytest.raises(UsageError, match=why):
+        claim(folder)
+    return (folder / "history.db").read_bytes() == before
+
+
+def test_a_real_drive_whose_place_an_invented_one_has_taken_is_refused_like_any_other(tmp_path):
+    keep(tmp_path, REAL, alone(hdd()).drive)
+    with History.open(tmp_path) as history:
+        settle(history, {"drive": 1, "because": "replaced", "replaced_by": 2}, NOON + 1)
+    with Past.open(tmp_path) as past:
+        assert [line.drive for line in past.bays(NOON).departed] == [REAL]
+    assert refused_whole(tmp_path, "real drives")
+
+
+def test_a_history_without_the_mark_of_a_rehearsal_is_refused_whatever_drives_it_holds(tmp_path):
+    keep(tmp_path, alone(hdd()).drive, mark=False)
+    assert refused_whole(tmp_path, "no rehearsal began")
+
+
+def test_a_day_book_without_drives_is_refused(tmp_path):
+    keeper = Keeper(tmp_path)
+    keeper.note(Entry(at=NOON, drive=None, kind="watch", text="Watching began."))
+    keeper.close()
+    assert refused_whole(tmp_path, "no rehearsal began")
+
+
+def test_a_rehearsal_that_ended_before_its_first_round_gives_way(tmp_path):
+    keep(tmp_path)
+    assert claim(tmp_path) is True
 
 
 def test_an_earlier_rehearsal_gives_way(tmp_path):

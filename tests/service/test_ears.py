@@ -29,7 +29,7 @@ class Listening:
         if not self.keeper.known:
             parts = tuple(a_part(self.keeper.admit(drive, HERE, NOON), a_pass(NOON)) for drive in (HDD, NVME))
             self.keeper.record(Round(at=NOON, drives=parts))
-        self.soon = []
+        self.soon: list[int] = []
         self.ears = Ears(
             senses,
             self.keeper,
@@ -243,7 +243,7 @@ def test_a_log_that_breaks_off_is_said_and_what_was_heard_is_kept(tmp_path, sens
 
     monkeypatch.setattr(log, "read", breaks)
     here.ears.once()
-    assert "Input/output error" in here.ears.trouble
+    assert "Input/output error" in (here.ears.trouble or "")
     assert here.counts(1)["kernel-io-errors"] == 1
     here.end()
 

@@ -141,6 +141,7 @@ def test_once_takes_in_what_the_kernel_said_and_asks_that_drive_once_more(machin
     senses = ScriptedSenses()
     senses.say(READ)
     *_, last = Watch(machine, QUICK, tmp_path, senses=senses).once()
+    assert last.call is not None
     assert (last.call.word.value, last.call.rule) == ("look", "fact:unreadable-sector")
     assert machine.asked == ["/dev/sda", "/dev/sda"]
     again = Watch(machine, QUICK, tmp_path, senses=senses).once()
@@ -173,7 +174,12 @@ def test_on_battery_one_round_of_four_takes_place(machine, tmp_path, monkeypatch
     senses = ScriptedSenses()
     watch = Watch(machine, QUICK, tmp_path, senses=senses)
     rounds = []
-    monkeypatch.setattr(watch._rounds, "run", lambda **_: rounds.append(senses.battery) or ())
+
+    def counted(**_more):
+        rounds.append(senses.battery)
+        return ()
+
+    monkeypatch.setattr(watch._rounds, "run", counted)
     watch._round()
     senses.battery = True
     for _ in range(8):

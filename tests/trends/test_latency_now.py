@@ -39,6 +39,7 @@ def test_the_usual_time_is_the_geometric_mean_over_the_classes_of_work(slowed):
 def test_what_takes_twice_as_long_is_told_as_twice(slowed):
     now = latency_now(slowed, Direction.READ)
     assert now.shift == pytest.approx(log(2), abs=0.1)
+    assert now.usual_us is not None
     assert now.now_us == pytest.approx(2 * now.usual_us, rel=0.1)
     assert now.evidence is not None
     assert now.evidence > threshold(Direction.READ)

@@ -1,11 +1,12 @@
 from hypothesis import given, strategies as st
 
-from diskwatch.trends.warmth import KEPT, felt, usual_on
+from diskwatch.trends.warmth import KEPT, Warmth, felt, usual_on
 
 
 def lived(*readings):
     """All days after readings of (day, celsius), and every day that ended on the way."""
-    days, ended = (), []
+    days: tuple[Warmth, ...] = ()
+    ended: list[Warmth] = []
     for day, celsius in readings:
         days, one = felt(days, day=day, celsius=celsius)
         ended += [] if one is None else [one]
