@@ -9,7 +9,7 @@ from typing import Self
 
 from diskwatch.history import packing
 from diskwatch.history.arriving import Arrived
-from diskwatch.history.bays import standing_calls
+from diskwatch.history.bays import drive_lines, standing_calls
 from diskwatch.history.beginning import begun, make_file, make_folder, prepared
 from diskwatch.history.checks import Readable
 from diskwatch.history.folding import fold_in, grown
@@ -31,6 +31,7 @@ from diskwatch.records import (
     Call,
     ClassDay,
     Drive,
+    DriveLine,
     DriveRound,
     Entry,
     Forecast,
@@ -116,6 +117,11 @@ class History:
         """All drives that were ever seen, in the order of their numbers."""
         with self._using() as connection:
             return known_drives(connection)
+
+    def lines(self) -> tuple[DriveLine, ...]:
+        """All that is known of every drive now, those that departed as well, without traffic."""
+        with self._using() as connection:
+            return drive_lines(connection)
 
     def admit(self, drive: Drive, place: Place, at: int) -> KnownDrive:
         """Take up a drive that was never seen before; it gets a number that no other drive ever had.

@@ -16,7 +16,7 @@ from diskwatch.history.moving import Case, Judged, Part
 from diskwatch.history.writer import History
 from diskwatch.judge import sentences
 from diskwatch.language import _, marked
-from diskwatch.records import DriveRound, Entry, KnownDrive, Outcome, Pass, Settled
+from diskwatch.records import DriveLine, DriveRound, Entry, KnownDrive, Outcome, Pass, Settled
 from diskwatch.records.owner import (
     ASSET,
     BACKED_UP,
@@ -28,6 +28,7 @@ from diskwatch.records.owner import (
     checked_text,
 )
 from diskwatch.service.requests import Answer
+from diskwatch.units import plain
 
 TELL, SETTLE = "tell", "settle"
 
@@ -123,6 +124,7 @@ def _told(name: str, value: str) -> str:
 def _replaced(history: History, old: KnownDrive, new: KnownDrive, because: str, at: int) -> Answer:
     if old.number == new.number:
         raise UsageError("a drive cannot be replaced by itself", hint="name the new one behind --replaced-by")
+    _refuse_circle(history, old, new)
     text = sentences.settled(Settled(at=at, because=because, replaced_by=_name(new)))
     data = {"because": because, "replaced_by": _name(new)}
     took = _("It took the place of {drive}, by the owner's word: {because}.").format(
@@ -143,7 +145,23 @@ def _replaced(history: History, old: KnownDrive, new: KnownDrive, because: str, 
     return Answer(done=(text, gone))
 
 
-def _name(known: KnownDrive) -> str:
+def _refuse_circle(history: History, old: KnownDrive, new: KnownDrive) -> None:
+    """Drives that took each other's places would all be left out of the bays, with none left in them."""
+    gone = {_name(line): line.owner.replaced_by for line in history.lines() if line.departed}
+    met, after = {_name(old)}, _name(new)
+    while after not in met:
+        met.add(after)
+        following = gone.get(after)
+        if following is None:
+            return
+        after = following
+    raise UsageError(
+        f"{plain(_name(old))} cannot be replaced by {plain(_name(new))}, whose own place it has taken",
+        hint="name the drive that is in use now behind --replaced-by",
+    )
+
+
+def _name(known: KnownDrive | DriveLine) -> str:
     who = known.drive.identity
     return who.telling_serial or who.wwn or known.place.device
 

@@ -130,6 +130,23 @@ def test_a_replaced_drive_departs_with_its_call_and_comes_back_when_it_is_met_ag
             assert not past.bays(back.at).departed
 
 
+def test_drives_cannot_take_each_others_places_in_a_circle_until_one_is_met_again(history):
+    first = doubtful(history)
+    second, third = (
+        history.admit(a_drive(f"INV-{nth}", f"/dev/sd{nth}"), a_place(f"/dev/sd{nth}"), NOON) for nth in "bc"
+    )
+    settle(history, words(first.number, replaced_by=second.number), NOON + 3 * DAY)
+    settle(history, words(second.number, replaced_by=third.number), NOON + 3 * DAY)
+    for old in (second, third):
+        with pytest.raises(UsageError, match="whose own place it has taken"):
+            settle(history, words(old.number, replaced_by=first.number), NOON + 4 * DAY)
+    assert [one.number for one in history.lines() if not one.departed] == [third.number]
+    back = read(NOON + 5 * DAY, pending_sectors=9)
+    history.record(Round(at=back.at, drives=(DriveRound(known=first, pass_=back, state=None),)))
+    settle(history, words(third.number, replaced_by=first.number), NOON + 6 * DAY)
+    assert [one.number for one in history.lines() if not one.departed] == [first.number]
+
+
 @pytest.mark.parametrize(
     ("because", "replaced_by"),
     [("", None), ("   ", None), ("\x1b]0;x\x07", None), ("x" * 501, None), ("so", 1)],
