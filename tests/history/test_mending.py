@@ -2,7 +2,7 @@ import pytest
 
 from diskwatch.errors import HistoryError, HistoryGarbled
 from diskwatch.history.mending import garbled, to_mend
-from diskwatch.history.moving import Judged
+from diskwatch.history.moving import Case, Judged
 from diskwatch.history.writer import History
 from diskwatch.places import HISTORY
 from diskwatch.records import Kind
@@ -58,7 +58,7 @@ def test_what_cannot_be_right_is_taken_out_once_and_stands_in_the_day_book(fille
 def test_a_drive_whose_state_was_lost_is_judged_anew_from_its_dated_copies(filled):
     filled._db.conn.execute("UPDATE analyser_state SET packed = x'00'")
     filled._db.conn.commit()
-    cases = []
+    cases: list[Case] = []
     filled.mend(judging(cases), readable, NOON, thorough=False)
     (case,) = cases
     assert [one.state for one in case.copies] == ["state 0", "state 2"]
@@ -68,7 +68,7 @@ def test_a_drive_whose_state_was_lost_is_judged_anew_from_its_dated_copies(fille
 def test_a_call_that_cannot_be_read_is_worked_out_again_at_once(filled):
     filled._db.conn.execute("UPDATE call SET word = 'loog'")
     filled._db.conn.commit()
-    cases = []
+    cases: list[Case] = []
     said = filled.mend(judging(cases), readable, NOON, thorough=False)
     assert len(cases) == 1
     assert "'loog' is not a valid CallWord" in said[0].text

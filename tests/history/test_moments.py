@@ -10,7 +10,9 @@ def test_a_state_of_a_later_turn_is_the_later_one_whatever_its_time():
 def test_the_turn_grows_when_the_clock_was_set_back_and_not_within_a_second(history, known):
     for step, at in enumerate((NOON, NOON, NOON + 60, NOON + 30, NOON + 30, NOON + 90, NOON)):
         keep(history, known, at, a_value(value=step))
-    found = history._db.conn.execute("SELECT at - ?, nth, turn FROM pass ORDER BY turn, at, nth", (NOON,)).fetchall()
+    found = history._db.conn.execute(
+        "SELECT at - ?, nth, turn FROM pass ORDER BY turn, at, nth", (NOON,)
+    ).fetchall()
     assert found == [
         (0, 0, 0), (0, 1, 0), (60, 0, 0),
         (30, 0, 1), (30, 1, 1), (90, 0, 1),

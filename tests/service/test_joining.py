@@ -89,9 +89,11 @@ def test_a_pass_that_was_judged_as_a_new_drives_is_judged_again_by_its_past(hist
     new = part(here[3], read(LATER, NVME), analyser.start())
     joined = join(history, here, [Round(at=LATER, drives=(blind, new), entries=(first, other))])
     (written,) = joined.writes
+    assert isinstance(written, Round)
     again, untouched = written.drives
     wanted = analyser.advance(analyser.load(history.states()[1]), pass_)
     assert (again.known.number, again.call, again.state) == (1, wanted.call, analyser.dump(wanted.state))
+    assert again.call is not None
     assert again.call.word is CallWord.LOOK
     assert joined.states[1] == again.state
     assert untouched == replace(new, known=untouched.known)
@@ -105,6 +107,8 @@ def test_traffic_and_lines_of_the_day_book_follow_their_drive(history, here):
     line = Entry(at=LATER, drive=1, kind="watch", text="Said.")
     whole = Entry(at=LATER, drive=None, kind="watch", text="Said of all.")
     traffic, notes = join(history, here, [Traffic(spans=(a_span(2),)), Notes(entries=(line, whole))]).writes
+    assert isinstance(traffic, Traffic)
+    assert isinstance(notes, Notes)
     assert [span.drive for span in traffic.spans] == [1]
     assert [entry.drive for entry in notes.entries] == [2, None]
 
@@ -119,6 +123,8 @@ def test_what_was_heard_is_counted_on_from_what_was_heard_before(history, here):
     )
     blind = part(here[2], replace(read(LATER, HDD), heard=(heard(3),)), analyser.start())
     said, round_ = join(history, here, [listened, Round(at=LATER, drives=(blind,))]).writes
+    assert isinstance(said, Listened)
+    assert isinstance(round_, Round)
     assert said.totals == {1: {"kernel-io-errors": 43, LAST_SECTOR: 5}}
     assert [entry.drive for entry in said.entries] == [1]
     assert [one.value for one in round_.drives[0].pass_.heard] == [43]
@@ -134,6 +140,8 @@ def test_what_the_history_has_heard_already_is_not_counted_again(history, here):
     )
     blind = part(here[2], replace(read(LATER, HDD), heard=(heard(40),)), analyser.start())
     said, round_ = join(history, here, [listened, Round(at=LATER, drives=(blind,))]).writes
+    assert isinstance(said, Listened)
+    assert isinstance(round_, Round)
     assert (said.totals, said.entries, said.gathered) == ({}, (), "kept")
     assert [one.value for one in round_.drives[0].pass_.heard] == [40]
 

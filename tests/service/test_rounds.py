@@ -357,9 +357,7 @@ def test_only_the_drives_that_something_was_heard_of_are_asked_and_none_is_taken
     assert machine.asked == []
 
 
-def test_a_history_that_comes_into_reach_within_a_round_gets_each_answer_for_its_drive(
-    tmp_path, monkeypatch
-):
+def test_a_history_that_comes_into_reach_within_a_round_gets_each_answer_for_its_drive(tmp_path, monkeypatch):
     monkeypatch.setattr("diskwatch.service.asking.PATIENCE", 0.05)
     state, away = tmp_path / "state", tmp_path / "away"
     machine = ScriptedMachine(found(NVME), found(HDD))
