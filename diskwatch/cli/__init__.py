@@ -47,6 +47,8 @@ COMMANDS = {
 _STATE = "folder of the history (default: the system's, else your own state folder)"
 """What --state means; a command for which it means something else says so in a `STATE` of its own."""
 
+_SETTINGS = "settings file (TOML)"
+
 _ALONE = "dashboard"
 """The module of the bare command."""
 
@@ -66,7 +68,8 @@ def main(argv: Sequence[str] | None = None) -> int:
     try:
         name, words = _chosen(words)
         module = importlib.import_module(f"diskwatch.cli.{name.replace('-', '_')}")
-        parser = _parser(name, module.__doc__ or "", state=getattr(module, "STATE", _STATE))
+        state, settings = getattr(module, "STATE", _STATE), getattr(module, "SETTINGS", _SETTINGS)
+        parser = _parser(name, module.__doc__ or "", state=state, settings=settings)
         module.options(parser)
         code = int(module.run(parser.parse_args(words)))
         sys.stdout.flush()
@@ -121,7 +124,7 @@ class _Parser(argparse.ArgumentParser):
         raise UsageError(message, hint=f"see '{self.prog} --help'")
 
 
-def _parser(name: str, about: str, *, state: str) -> argparse.ArgumentParser:
+def _parser(name: str, about: str, *, state: str, settings: str) -> argparse.ArgumentParser:
     alone = name == _ALONE
     parser = _Parser(
         prog="diskwatch" if alone else f"diskwatch {name}",
@@ -131,7 +134,7 @@ def _parser(name: str, about: str, *, state: str) -> argparse.ArgumentParser:
         allow_abbrev=False,
     )
     parser.add_argument("--state", metavar="DIR", help=state)
-    parser.add_argument("--settings", metavar="FILE", help="settings file (TOML)")
+    parser.add_argument("--settings", metavar="FILE", help=settings)
     if alone:
         parser.add_argument("--version", action="version", version=f"diskwatch {__version__}")
     return parser

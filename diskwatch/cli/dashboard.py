@@ -12,7 +12,7 @@ import subprocess
 import sys
 import threading
 import time
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import replace
 from pathlib import Path
 
@@ -67,18 +67,25 @@ def run(args: argparse.Namespace) -> int:
     return 0
 
 
-def end_with_terminal() -> None:
+def end_with_terminal(last: Callable[[], object] | None = None) -> None:
     """End at once when the terminal is gone.
 
     Where it is not the controlling terminal (under ``su -c``, say) no signal tells, and the full-screen
     library would go on reading an end of file for ever. The watching child ends with its standard input.
+
+    Args:
+        last: what must still be done, since nothing is unwound; it must come to an end.
     """
     hang_up = select.poll()
     hang_up.register(sys.stdin.fileno(), 0)
     gone = select.POLLHUP | select.POLLERR | select.POLLNVAL
     while not any(event & gone for _, event in hang_up.poll()):
         pass
-    os._exit(0)
+    try:
+        if last is not None:
+            last()
+    finally:
+        os._exit(0)
 
 
 class Source:

@@ -2,9 +2,10 @@
 
 import contextlib
 import os
+import shutil
 import threading
 import time
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import replace
 from pathlib import Path
 
@@ -12,13 +13,17 @@ from diskwatch.cli.dashboard import Source, end_with_terminal, has_braille, spea
 from diskwatch.cli.pace import Pace
 from diskwatch.cli.shown import Shown
 from diskwatch.errors import DiskwatchError
+from diskwatch.records import Bays, IoSpan
 from diskwatch.rehearsal.course import Course
 from diskwatch.units import DAY, plain
 
 _PATIENCE = 10.0
 """Seconds that the thread gets to store what it has."""
 
-Live = Callable[[Course, Path, Pace], str | None]
+Seen = Callable[[Sequence[IoSpan]], object]
+"""Is told the traffic of each step, one span a drive."""
+
+Live = Callable[[Course, Path, Pace, Seen], str | None]
 
 
 class Scene:
@@ -28,6 +33,7 @@ class Scene:
         """Take the course and its pace."""
         self._course = course
         self._pace = pace
+        self._spans: Sequence[IoSpan] = ()
         self.over = False
         self.trouble: str | None = None
 
@@ -66,12 +72,24 @@ class Scene:
     def live(self, live: Live, folder: Path) -> None:
         """Live through all of it; what goes wrong is told in the banner."""
         try:
-            self.trouble = live(self._course, folder, self._pace)
+            self.trouble = live(self._course, folder, self._pace, self._see)
         except DiskwatchError as error:
             self.trouble = str(error)
         except Exception as error:  # noqa: BLE001 - a thread's fault must reach the reader, who sees the screen only
             self.trouble = f"diskwatch has a fault of its own: {type(error).__name__}: {error}"
         self.over = True
+
+    def _see(self, spans: Sequence[IoSpan]) -> None:
+        self._spans = spans
+
+    def shown(self, bays: Bays) -> Bays:
+        """The drives as a watch would show them, with the traffic of the step that was lived last.
+
+        Once it is over nobody watches these drives any more, which is nothing to be warned of.
+        """
+        spans = {span.drive: span for span in self._spans}
+        drives = tuple(replace(line, traffic=spans.get(line.number)) for line in bays.drives)
+        return replace(bays, watcher=os.getpid(), drives=drives)
 
     def _how(self) -> str:
         if self._pace.halted:
@@ -93,7 +111,7 @@ class _Invented(Shown):
         return f"No notice comes of a rehearsal, so there is none about {name} to put off."
 
 
-def show(course: Course, folder: Path, pace: Pace, live: Live) -> str | None:
+def show(course: Course, folder: Path, pace: Pace, live: Live, *, kept: bool) -> str | None:
     """Open the dashboard over a rehearsal, until the reader leaves it.
 
     Args:
@@ -101,6 +119,7 @@ def show(course: Course, folder: Path, pace: Pace, live: Live) -> str | None:
         folder: where its history lies.
         pace: how fast its time passes.
         live: lives through it; tells why the history could not be kept, or None.
+        kept: whether the history stays; else it goes also where the terminal goes.
 
     Returns:
         Why the history could not be kept, or None.
@@ -110,17 +129,27 @@ def show(course: Course, folder: Path, pace: Pace, live: Live) -> str | None:
     scene = Scene(course, pace)
     thread = threading.Thread(target=scene.live, args=(live, folder), name="rehearsal", daemon=True)
     thread.start()
-    threading.Thread(target=end_with_terminal, name="terminal", daemon=True).start()
+
+    def end() -> None:
+        pace.end()
+        thread.join(_PATIENCE)
+
+    def leave_nothing() -> None:
+        end()
+        if not kept:
+            shutil.rmtree(folder, ignore_errors=True)
+
+    threading.Thread(target=end_with_terminal, args=(leave_nothing,), name="terminal", daemon=True).start()
     try:
         with contextlib.ExitStack() as stack:
             source = Source(folder, stack, starting=None)
             Dashboard(
-                # Once it is over nobody watches these drives any more, which is nothing to be warned of.
-                lambda at: replace(source(at), watcher=os.getpid()),
+                lambda at: scene.shown(source(at)),
                 course.clock.now,
                 watching="a rehearsal, in which every drive is invented",
-                # Many an invented machine is off at night, which is no reason to call its figures old.
-                every=max(course.scenario.every_hours * 3_600, DAY),
+                # Invented time may run by weeks between two looks at the screen, and nights and holidays with
+                # the machine off pass in it: no pass is missing. What ends the passes stands in the banner.
+                every=course.days * DAY,
                 ascii_only=not speaks_more_than_ascii(),
                 braille=has_braille(),
                 questions=_Invented(source.past, folder, None),
@@ -128,6 +157,5 @@ def show(course: Course, folder: Path, pace: Pace, live: Live) -> str | None:
                 stage=scene,
             ).run()
     finally:
-        pace.end()
-        thread.join(_PATIENCE)
+        end()
     return scene.trouble

@@ -1,5 +1,8 @@
 """Simulated time: it moves only when it is moved, and only forward."""
 
+START = 1_735_689_600
+"""2025-01-01T00:00:00Z: a fixed beginning, since the same seed must give the same bytes whenever it is run."""
+
 
 class Clock:
     """The clock of an invented machine."""

@@ -8,15 +8,12 @@ from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 
 from diskwatch.records import DriveRound
-from diskwatch.rehearsal.clock import Clock
+from diskwatch.rehearsal.clock import START, Clock
 from diskwatch.rehearsal.machine import InventedMachine
 from diskwatch.rehearsal.scenario import Scenario
 from diskwatch.rehearsal.story import Story
 from diskwatch.rehearsal.verdict import Outcome, outcomes
 from diskwatch.units import DAY
-
-START = 1_735_689_600
-"""2025-01-01T00:00:00Z: a fixed beginning, since the same seed must give the same bytes whenever it is run."""
 
 Ask = Callable[[], Iterable[DriveRound]]
 Count = Callable[[], object]

@@ -13,6 +13,7 @@ from diskwatch.rehearsal.disk import Disk
 from diskwatch.rehearsal.document import document
 from diskwatch.rehearsal.drive import InventedDrive, Span
 from diskwatch.rehearsal.heat import Room
+from diskwatch.rehearsal.hours import begins
 from diskwatch.rehearsal.link import Bay
 from diskwatch.rehearsal.power import Strip
 from diskwatch.rehearsal.printed import lines
@@ -131,16 +132,16 @@ class InventedMachine:
 
     def _use(self, span: Span, *, away: bool) -> None:
         self._lose_power({name: strip.losses(self._mains, span.days) for name, strip in self.strips.items()})
-        begins = (span.at - self.scenario.backup_hour * 3_600) % DAY < span.seconds
+        starts = begins(self.scenario.backup_hour, span.at, span.seconds)
         for drive in self._there():
             spec = drive.spec
-            if begins and spec.backup != "none":
+            if starts and spec.backup != "none":
                 saturday = span.at // DAY % 7 == _SATURDAY
                 drive.workload.plan_backup(whole=saturday, target=spec.backup == "target")
             work = drive.workload.span(span.at, span.seconds, away=away)
             drive.live(span, work)
             every = spec.self_tests_days
-            if every and begins and (span.at - self._start) // DAY % every == every - 1:
+            if every and starts and (span.at - self._start) // DAY % every == every - 1:
                 drive.test(extended=True)
 
     def survey(self) -> Survey:

@@ -115,7 +115,6 @@ class Expectation(Table, frozen=True, kw_only=True):
             this comes true.
         stays: the strongest call that it may ever have.
         never_cause: causes that must never be named.
-        needs: parts of the judgement that are not there yet and without which this cannot be concluded.
         because: one sentence of why.
     """
 
@@ -127,7 +126,6 @@ class Expectation(Table, frozen=True, kw_only=True):
     foretells: Annotated[str, msgspec.Meta(min_length=1, max_length=120)] | None = None
     stays: CallWord | None = None
     never_cause: Annotated[tuple[Cause, ...], msgspec.Meta(max_length=20)] = ()
-    needs: Annotated[tuple[Text, ...], msgspec.Meta(max_length=20)] = ()
     because: Text
 
 

@@ -14,7 +14,8 @@ import msgspec
 
 from diskwatch.errors import UsageError
 from diskwatch.rehearsal import checked
-from diskwatch.rehearsal.happenings import BlocksFail, HeadWeakens, Scratch
+from diskwatch.rehearsal.happenings import BlocksFail, Dies, HeadWeakens, Moved, Scratch, Vanishes
+from diskwatch.rehearsal.hours import begins_ever
 from diskwatch.rehearsal.scenario import MARK, Expectation, Scenario
 from diskwatch.units import plain
 
@@ -99,6 +100,8 @@ def faults(scenario: Scenario) -> Iterator[str]:
     """What is wrong with a scenario beyond the types of its keys, one sentence each."""
     yield from _names(scenario)
     yield from _events(scenario)
+    yield from _moves(scenario)
+    yield from _hours(scenario)
     serials = {drive.serial for drive in scenario.drive}
     for place, wish in enumerate(scenario.expect, 1):
         for fault in _wishes(wish, serials):
@@ -165,3 +168,39 @@ def _events(scenario: Scenario) -> Iterator[str]:
             yield f"an event of day {event.day:g} needs a hard disk, and {plain(event.drive)} is none"
         if isinstance(event, BlocksFail) and event.drive in turning:
             yield f"an event of day {event.day:g} needs a solid-state drive, and {plain(event.drive)} is none"
+
+
+def _moves(scenario: Scenario) -> Iterator[str]:
+    """Drives that are moved to where another one is; one that is gone for ever has left its bay."""
+    holds = {drive.serial: drive.bay for drive in scenario.drive}
+    for event in sorted(scenario.event, key=lambda one: one.day):
+        if isinstance(event, Dies) or (isinstance(event, Vanishes) and event.days == 0):
+            holds.pop(event.drive, None)
+        elif isinstance(event, Moved):
+            there = next((one for one, bay in holds.items() if bay == event.to and one != event.drive), None)
+            if there is not None:
+                yield (
+                    f"an event of day {event.day:g} moves {plain(event.drive)} to {plain(event.to)}, "
+                    f"where {plain(there)} is; expected a bay that is free then"
+                )
+            holds[event.drive] = event.to
+
+
+def _hours(scenario: Scenario) -> Iterator[str]:
+    """An hour of backups and self-tests at which the machine is never on, so that none would ever begin."""
+    wanting = [
+        f"{key} of {plain(drive.serial)}"
+        for drive in scenario.drive
+        for key, wanted in (
+            ("backup", drive.backup != "none"),
+            ("self_tests_days", drive.self_tests_days > 0),
+        )
+        if wanted
+    ]
+    if not wanting or begins_ever(scenario, scenario.backup_hour):
+        return
+    hours = ", ".join(str(hour) for hour in range(24) if begins_ever(scenario, hour)) or "no hour of such days"
+    yield (
+        f"backup_hour: expected one at which a machine of the habit {scenario.habit} is on ({hours}), "
+        f"not {scenario.backup_hour}; {' and '.join(wanting)} would do nothing"
+    )

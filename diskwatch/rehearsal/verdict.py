@@ -13,9 +13,8 @@ from diskwatch.units import DAY, day_number
 class Verdict(StrEnum):
     """What became of an expectation.
 
-    NOT_YET_JUDGED needs parts of the judgement that are not there yet; it is never reached. Where the run ended
-    before it could be settled: OPEN if the day by which it should be had not come, KEPT_SO_FAR if what must
-    never be was not so far, and the scenario goes on.
+    Where the run ended before it could be settled: OPEN if the day by which it should be had not come,
+    KEPT_SO_FAR if what must never be was not so far, and the scenario goes on.
     """
 
     REACHED = "reached"
@@ -25,7 +24,6 @@ class Verdict(StrEnum):
     BROKEN = "broken"
     OPEN = "open"
     KEPT_SO_FAR = "kept so far"
-    NOT_YET_JUDGED = "not yet judged"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -76,8 +74,6 @@ def _judged(
     broken = next((one for one in story.said if _breaks(wish, one)), None)
     if broken is not None:
         return Verdict.BROKEN, broken.at
-    if wish.needs:
-        return Verdict.NOT_YET_JUDGED, None
     if not story.said:
         return Verdict.OPEN if wish.call is None or end < _latest(wish, start) else Verdict.MISSED, None
     kept = wish.stays is not None or bool(wish.never_cause)

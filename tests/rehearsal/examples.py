@@ -2,8 +2,7 @@
 
 from typing import Any
 
-from diskwatch.rehearsal.clock import Clock
-from diskwatch.rehearsal.course import START
+from diskwatch.rehearsal.clock import START, Clock
 from diskwatch.rehearsal.disk import Disk
 from diskwatch.rehearsal.drive import InventedDrive, Span
 from diskwatch.rehearsal.machine import InventedMachine

@@ -73,8 +73,8 @@ def tables(**more: Any) -> dict[str, Any]:
             "[[expect]] 1, call: expected one of keep, look, copy, retire, not 'rest'",
         ),
         (
-            tables(expect=[{**WISH, "needs": "x"}]),
-            "[[expect]] 1, needs: expected a list of 0 to 20 texts, not 'x'",
+            tables(expect=[{**WISH, "never_cause": "x"}]),
+            "[[expect]] 1, never_cause: expected a list of 0 to 20 entries, not 'x'",
         ),
     ],
 )

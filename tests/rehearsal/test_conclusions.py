@@ -24,12 +24,11 @@ def lived(name: str, **more: int) -> Ended:
 
 
 @pytest.mark.parametrize("name", sorted(set(scenarios.names()) - LONG))
-def test_what_a_scenario_expects_comes_true_or_is_told_as_not_yet_judged(name):
+def test_what_a_scenario_expects_comes_true(name):
     ended = lived(name)
     got = {(one.serial, one.wish.because): (one.verdict, one.day) for one in ended.outcomes}
     for one in ended.outcomes:
-        expected = Verdict.NOT_YET_JUDGED if one.wish.needs else Verdict.REACHED
-        assert one.verdict is expected, got
+        assert one.verdict is Verdict.REACHED, got
 
 
 def test_a_death_without_warning_has_no_counter_that_moved():

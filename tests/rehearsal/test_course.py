@@ -1,5 +1,6 @@
 from diskwatch.records import DriveRound, KnownDrive
-from diskwatch.rehearsal.course import START, Course
+from diskwatch.rehearsal.clock import START
+from diskwatch.rehearsal.course import Course
 from diskwatch.rehearsal.happenings import Dies
 from tests.rehearsal.examples import HDD, NVME, scenario
 

@@ -8,8 +8,7 @@ import pytest
 
 from diskwatch.machine.probe import Wanted
 from diskwatch.records import ProbeDay
-from diskwatch.rehearsal.clock import Clock
-from diskwatch.rehearsal.course import START
+from diskwatch.rehearsal.clock import START, Clock
 from diskwatch.rehearsal.disk import Disk
 from diskwatch.rehearsal.heads import SOUND_RETRIES, Head
 from diskwatch.rehearsal.machine import InventedMachine

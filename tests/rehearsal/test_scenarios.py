@@ -34,6 +34,22 @@ capacity_gb = 1000
 """
 
 
+SECOND = (
+    SMALL[SMALL.index("[[drive]]") :]
+    .replace("INVENTED-1", "INVENTED-2")
+    .replace("sda", "sdb")
+    .replace('"one"', '"two"')
+)
+
+MOVED = """
+[[event]]
+what = "moved"
+day = {day}
+drive = "INVENTED-{drive}"
+to = "{to}"
+"""
+
+
 def written(tmp_path, text):
     path = tmp_path / "mine.toml"
     path.write_text(text, encoding="utf-8")
@@ -69,7 +85,7 @@ def test_every_scenario_that_was_asked_for_is_there_and_sound():
 @pytest.mark.parametrize("name", ["busy-month", "firmware-update", "old-defects"])
 def test_where_nothing_is_wrong_every_drive_is_to_stay_keep(name):
     wishes = scenarios.load(name).expect
-    assert any(wish.stays is CallWord.KEEP and not wish.needs for wish in wishes)
+    assert any(wish.stays is CallWord.KEEP for wish in wishes)
 
 
 def test_an_owners_file_is_read_from_anywhere(tmp_path):
@@ -91,6 +107,18 @@ def test_an_owners_file_is_read_from_anywhere(tmp_path):
         (SMALL + '[[expect]]\ncall = "look"\nbecause = "it is so"\n', "by_day"),
         (SMALL + '[[expect]]\ndrive = "INVENTED-9"\nstays = "keep"\nbecause = "x"\n', "INVENTED-9"),
         (SMALL + SMALL[SMALL.index("[[drive]]") :], "two drives have the serial"),
+        (
+            SMALL + SECOND + MOVED.format(day=4, drive=1, to="two"),
+            "an event of day 4 moves INVENTED-1 to two, where INVENTED-2 is; expected a bay that is free then",
+        ),
+        (
+            SMALL.replace("days = 10", 'days = 10\nhabit = "office"\nbackup_hour = 22') + 'backup = "source"\n',
+            "mine.toml: backup_hour: expected one at which a machine of the habit office is on (",
+        ),
+        (
+            SMALL.replace("days = 10", 'days = 10\nhabit = "home"\nbackup_hour = 3') + "self_tests_days = 2\n",
+            "not 3; self_tests_days of INVENTED-1 would do nothing",
+        ),
         ("title = ", "no TOML"),
     ],
 )
@@ -100,6 +128,23 @@ def test_a_wrong_file_is_refused_in_one_line_that_names_it_and_the_fault(tmp_pat
     assert told in str(caught.value)
     assert "mine.toml" in str(caught.value)
     assert "\n" not in str(caught.value)
+
+
+@pytest.mark.parametrize("gone", ['what = "dies"', 'what = "vanishes"'])
+def test_a_bay_is_free_once_its_drive_has_moved_on_or_is_gone_for_ever(tmp_path, gone):
+    third = '[[bay]]\nname = "three"\n'
+    swapped = "".join(
+        MOVED.format(day=day, drive=drive, to=to)
+        for day, drive, to in ((2, 2, "three"), (3, 1, "two"), (3, 2, "one"))
+    )
+    assert scenarios.load(written(tmp_path, SMALL + SECOND + third + swapped)).event
+    left = f'[[event]]\nday = 1\ndrive = "INVENTED-2"\n{gone}\n'
+    assert scenarios.load(
+        written(tmp_path, SMALL + SECOND + MOVED.format(day=4, drive=1, to="two") + left)
+    ).event
+    back = left + "days = 2\n" if "vanishes" in gone else ""
+    with pytest.raises(UsageError, match="where INVENTED-2 is"):
+        scenarios.load(written(tmp_path, SMALL + SECOND + MOVED.format(day=4, drive=1, to="two") + back))
 
 
 def keys(kind: type) -> set[str]:

@@ -57,16 +57,11 @@ def test_a_call_is_reached_in_its_time_and_for_its_cause(told, end, verdict):
     assert judged(LOOK, *told, end=end) is Verdict(verdict)
 
 
-def test_what_needs_a_judgement_that_is_not_there_is_never_reached():
-    assert judged({**LOOK, "needs": ("latency",)}, said(12, "look", "media")) is Verdict.NOT_YET_JUDGED
-
-
-def test_what_must_not_be_is_broken_once_it_was_whatever_is_needed_elsewhere():
+def test_what_must_not_be_is_broken_once_it_was():
     wish = {"stays": CallWord.LOOK, "never_cause": (Cause.LINK,)}
     assert judged(wish, said(5, "look", "media")) is Verdict.REACHED
     assert judged(wish, said(5, "copy", "media"), said(6, "keep")) is Verdict.BROKEN
     assert judged(wish, said(5, "look", "link")) is Verdict.BROKEN
-    assert judged({**wish, "needs": ("latency",)}, said(5, "look", "link")) is Verdict.BROKEN
 
 
 def test_what_must_never_be_is_kept_only_when_the_whole_scenario_is_over():
