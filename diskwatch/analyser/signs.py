@@ -6,7 +6,7 @@ from diskwatch.analyser.around import Around
 from diskwatch.analyser.counters import turns
 from diskwatch.analyser.heat import limit_of
 from diskwatch.analyser.state import DriveState
-from diskwatch.judge import causes
+from diskwatch.judge import causes, rules
 from diskwatch.judge.causes import Explained
 from diskwatch.judge.neighbours import Trouble
 from diskwatch.records import Cause, Finding, FindingKind, Kind, Pass, Reading
@@ -72,6 +72,8 @@ _WARNS = "fact:warns-of-"
 """How facts begin that a drive warns of; most of them name their cause as well."""
 
 _SILENT = "fact:unreadable"
+_LINKED = rules.OF_THE_LINK | {"drift:timeouts"}
+_OF_THE_LINK = ("CRC counter", "link reset")
 _BUILD = frozenset({"no cable", "turning platters", "no platters"})
 """What a drive is built like, which is no trouble."""
 
@@ -91,14 +93,23 @@ def put(state: DriveState, pass_: Pass, lead: Finding | None, around: Around) ->
         around: its bay and the other drives of the machine.
 
     Returns:
-        Nothing where there is nothing to explain, or where the leading fact tells its cause by itself.
+        Nothing where there is nothing to explain, or where the leading fact tells its cause by itself. A link's
+        trouble, and commands that hung beside it, stay with the link: that neither has shown since, as behind
+        a new cable, makes no other cause likelier.
     """
     if lead is None or _tells_itself(lead):
         return {}
     told = {sign: showing for sign, showing in shown(state, pass_, around).items() if showing is not None}
-    if lead.name == _SILENT and not any(showing for sign, showing in told.items() if sign not in _BUILD):
+    if _in_trouble(told):
+        return told
+    if lead.name == _SILENT:
         return {}
-    return told
+    of_the_link = lead.name in _LINKED and any(state.signs.get(sign) for sign in _OF_THE_LINK)
+    return state.signs if of_the_link else told
+
+
+def _in_trouble(told: Mapping[str, bool]) -> bool:
+    return any(showing for sign, showing in told.items() if sign not in _BUILD)
 
 
 def _tells_itself(lead: Finding) -> bool:

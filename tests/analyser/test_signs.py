@@ -77,6 +77,35 @@ def test_that_no_read_was_given_up_counts_once_where_no_sector_waits_either():
     assert "uncorrectable event" not in drift.state.signs
 
 
+def test_commands_that_hung_while_transfers_were_damaged_stay_with_the_link_once_its_cable_was_changed():
+    def counted(day):
+        times = min(day, 60) // 10
+        return read(NOON + day * DAY, crc_errors=25 * times, command_timeouts=times, pending_sectors=0)
+
+    steps = lived(*map(counted, range(160)))
+    last = steps[-1]
+    assert "drift:link" not in last.state.standing, "it was quiet for long enough to be taken for mended"
+    assert last.call.rule == "drift:timeouts"
+    causes = {step.call.cause for step in steps if step.call.word is not CallWord.KEEP}
+    assert causes == {Cause.LINK}
+
+
+def test_a_link_stays_the_cause_while_a_machine_that_is_off_lets_its_signs_lapse():
+    loose = [read(NOON + day * DAY, crc_errors=25 * (day // 10), power_on_hours=24 * day) for day in range(61)]
+    resting = read(NOON + 200 * DAY, crc_errors=150, power_on_hours=24 * 60 + 5)
+    last = lived(*loose, resting)[-1]
+    assert (last.call.rule, last.call.cause) == ("drift:link", Cause.LINK)
+
+
+def test_another_sign_after_the_first_have_lapsed_is_judged_anew():
+    def counted(day):
+        times, bad = min(day, 60) // 10, 8 if day > 120 else 0
+        return read(NOON + day * DAY, crc_errors=25 * times, command_timeouts=times, pending_sectors=bad)
+
+    steps = lived(*map(counted, range(130)))
+    assert (steps[119].call.cause, steps[-1].call.cause) == (Cause.LINK, Cause.MEDIA)
+
+
 @pytest.mark.parametrize(
     ("drive", "built"),
     [(HDD, {"turning platters"}), (SSD, {"no platters"}), (NVME, {"no platters", "no cable"})],
