@@ -103,15 +103,17 @@ def gaps(past: Past, number: int, span: Span) -> tuple[tuple[int, int], ...]:
         days = past.pass_days(number, span.since - DAY)
         reads = [(one.first, one.last) for one in days if one.outcome is Outcome.READ]
         least = DAY + _LEAST_GAP
-    ends = [*(last for _, last in reads)]
+    if not reads:
+        return ((span.since, span.at),)
+    ends = [last for _, last in reads]
     begins = [*(first for first, _ in reads[1:]), span.at]
     found = tuple(
         (end, begin)
         for end, begin in zip(ends, begins, strict=True)
         if begin - end > least and begin > span.since
     )
-    before = reads[0][0] if reads else span.at
-    return ((span.since, before), *found) if before > span.since + least or not reads else found
+    before = reads[0][0]
+    return ((span.since, before), *found) if before > span.since + least else found
 
 
 def usual(points: Points, at: int) -> tuple[float, float] | None:

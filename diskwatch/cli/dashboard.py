@@ -25,6 +25,7 @@ from diskwatch.history.opening import refuse_foreign
 from diskwatch.history.reader import Past
 from diskwatch.places import HISTORY, is_there
 from diskwatch.records import Bays
+from diskwatch.rehearsal.state import holds_rehearsal
 
 _STARTING = 5.0
 """Seconds that the child may take to begin."""
@@ -136,6 +137,9 @@ def _watching(folder: Path, args: argparse.Namespace) -> Iterator[tuple[str, int
         return
     if not _may_write(folder):
         yield f"nobody is watching, and the history in {folder} cannot be written by you", None
+        return
+    if holds_rehearsal(folder):
+        yield "a rehearsal is kept here: its drives are invented, and nobody watches them", None
         return
     command = [sys.executable, "-m", "diskwatch", "watch", "--tied", "--state", str(folder)]
     if args.settings is not None:

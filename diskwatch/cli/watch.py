@@ -9,12 +9,13 @@ from collections.abc import Callable
 from pathlib import Path
 
 from diskwatch.cli.common import settings, state_folder, talk
-from diskwatch.errors import DiskwatchError, NothingToWorkOn, SettingsError
+from diskwatch.errors import DiskwatchError, NothingToWorkOn, SettingsError, UsageError
 from diskwatch.history.reader import Past
 from diskwatch.machine.probe import DiskProber
 from diskwatch.machine.real import RealMachine
 from diskwatch.machine.senses import RealSenses
 from diskwatch.records import DriveRound, Way
+from diskwatch.rehearsal.state import holds_rehearsal
 from diskwatch.service.watch import Told, Watch, now
 from diskwatch.settings import Settings
 from diskwatch.units import plain
@@ -32,6 +33,11 @@ def run(args: argparse.Namespace) -> int:
     """Watch; 0 when all was recorded, 3 without any drive, 4 when the history could not be written."""
     owner = settings(args)
     folder = state_folder(args)
+    if holds_rehearsal(folder):
+        raise UsageError(
+            f"{folder} keeps a rehearsal, whose drives are invented: real ones are not watched into it",
+            hint="name another folder with --state",
+        )
     told = None if args.tied else Voice().say
     if args.once:
         return _once(_watch(owner, folder, told))

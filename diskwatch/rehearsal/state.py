@@ -2,7 +2,7 @@
 
 from pathlib import Path
 
-from diskwatch.errors import NothingToWorkOn, UsageError
+from diskwatch.errors import HistoryError, NothingToWorkOn, UsageError
 from diskwatch.history.reader import Past
 from diskwatch.places import HISTORY
 from diskwatch.records import DriveLine, Entry
@@ -32,8 +32,22 @@ def begun(title: str, at: int) -> Entry:
     return Entry(at=at, drive=None, kind=_KIND, text=text, data={_REHEARSAL: True})
 
 
-def _is_marked(entry: Entry) -> bool:
-    return entry.drive is None and entry.data.get(_REHEARSAL) is True
+def _is_marked(past: Past) -> bool:
+    entries = past.day_book(kinds=(_KIND,))
+    return any(entry.drive is None and entry.data.get(_REHEARSAL) is True for entry in entries)
+
+
+def holds_rehearsal(folder: Path) -> bool:
+    """Whether a folder keeps a rehearsal and nothing else, so that no real drive may be watched into it.
+
+    Args:
+        folder: the folder; one without a history, or with one that cannot be read, keeps none.
+    """
+    try:
+        with Past.open(folder) as past:
+            return _is_marked(past) and all(invented(line) for line in past.bays(0).every)
+    except (HistoryError, NothingToWorkOn):
+        return False
 
 
 def claim(folder: Path) -> bool:
@@ -56,7 +70,7 @@ def claim(folder: Path) -> bool:
     try:
         with Past.open(folder) as past:
             bays = past.bays(0)
-            marked = any(_is_marked(entry) for entry in past.day_book(kinds=(_KIND,)))
+            marked = _is_marked(past)
     except NothingToWorkOn:
         return False
     hint = "name an empty folder, or leave --state out"

@@ -1,7 +1,7 @@
 import pytest
 from hypothesis import given, strategies as st
 
-from diskwatch.cli.curves import Span, ahead_of, fit, thinned, usual
+from diskwatch.cli.curves import Span, ahead_of, fit, gaps, thinned, usual
 from diskwatch.records import Forecast
 from diskwatch.units import DAY
 
@@ -67,3 +67,19 @@ def test_a_forecast_is_counted_from_now():
     found = ahead_of(made, NOW)
     assert found is not None
     assert (found.low, found.high) == (20.0, 50.0)
+
+
+class _Unread:
+    """A history that knows of no reading within any span."""
+
+    def passes(self, *_asked):
+        return ()
+
+    def pass_days(self, *_asked):
+        return ()
+
+
+@pytest.mark.parametrize("days", [1, 400])
+def test_a_span_without_any_reading_is_one_gap(days):
+    span = Span(since=NOW - days * DAY, at=NOW)
+    assert gaps(_Unread(), 1, span) == ((span.since, span.at),)

@@ -353,3 +353,13 @@ def test_a_hangup_reads_the_settings_again_and_wrong_ones_leave_the_old_in_force
     assert child.wait(10) == 0
     assert time.monotonic() - asked < 3
     assert len(err.read_text().splitlines()) == 1
+
+
+def test_no_real_drive_is_watched_into_a_rehearsal(tmp_path):
+    state = tmp_path / "invented"
+    assert run("rehearse", "loose-cable", "--days", "1", "--headless", "--state", str(state)).code == 0
+    before = (state / HISTORY).read_bytes()
+    refused = run("watch", "--once", "--state", str(state))
+    assert refused.code == 2
+    assert "keeps a rehearsal, whose drives are invented" in refused.err
+    assert (state / HISTORY).read_bytes() == before

@@ -4,7 +4,7 @@ from diskwatch.errors import UsageError
 from diskwatch.history.reader import Past
 from diskwatch.history.writer import History
 from diskwatch.records import DriveRound, Entry, Outcome, Pass, Round
-from diskwatch.rehearsal.state import begun, claim
+from diskwatch.rehearsal.state import begun, claim, holds_rehearsal
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.owner import settle
 from tests.rehearsal.examples import alone, hdd, nvme
@@ -79,3 +79,12 @@ def test_an_earlier_rehearsal_gives_way(tmp_path):
     keep(tmp_path, alone(hdd()).drive, alone(nvme()).drive)
     assert claim(tmp_path) is True
     assert not list(tmp_path.glob("history.db*"))
+
+
+def test_a_rehearsal_is_told_from_a_history_into_which_real_drives_may_be_watched(tmp_path):
+    keep(tmp_path / "invented", alone(hdd()).drive)
+    keep(tmp_path / "mixed", alone(hdd()).drive, REAL)
+    keep(tmp_path / "unmarked", alone(hdd()).drive, mark=False)
+    assert holds_rehearsal(tmp_path / "invented")
+    for other in ("mixed", "unmarked", "none"):
+        assert not holds_rehearsal(tmp_path / other)
