@@ -1,7 +1,10 @@
+from typing import cast
+
 import pytest
 from hypothesis import given, strategies as st
 
 from diskwatch.cli.curves import Span, ahead_of, fit, gaps, thinned, usual
+from diskwatch.history.reader import Past
 from diskwatch.records import Forecast
 from diskwatch.units import DAY
 
@@ -82,4 +85,4 @@ class _Unread:
 @pytest.mark.parametrize("days", [1, 400])
 def test_a_span_without_any_reading_is_one_gap(days):
     span = Span(since=NOW - days * DAY, at=NOW)
-    assert gaps(_Unread(), 1, span) == ((span.since, span.at),)
+    assert gaps(cast("Past", _Unread()), 1, span) == ((span.since, span.at),)
