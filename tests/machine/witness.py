@@ -290,7 +290,9 @@ def _check_row(row: Attribute, flat: Sequence[str], told: str) -> None:
     raw = " ".join(row.raw.split())
     for line in flat:
         words = line.split()
-        if words[:2] == [str(row.number), row.name] and line.endswith(raw):
+        # A flipped blank may print a number as 05, which states it as well.
+        numbered = bool(words) and words[0].isascii() and words[0].isdecimal() and int(words[0]) == row.number
+        if numbered and words[1:2] == [row.name] and line.endswith(raw):
             parts = (row.value, row.worst, row.threshold)
             if all(part is None or f"{part:03}" in words for part in parts):
                 return
