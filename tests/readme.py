@@ -181,7 +181,7 @@ def drawn(name: str) -> str:
     """One of the pictures as it is now."""
     if name == "bays":
         return picture()
-    return rehearsed("scratched-media", 72) if name == "drive" else rehearsed("worn-solid-state-drive", 60)
+    return rehearsed("scratched-media", 72) if name == "drive" else rehearsed("worn-solid-state-drive", 45)
 
 
 def ends(name: str) -> tuple[str, str]:
