@@ -270,7 +270,7 @@ def check(found: Understood, lines: Sequence[str], document: Any = None) -> None
     for test in found.reading.self_tests:
         parts = [test.name, test.result, *(str(part) for part in (test.hours,) if part is not None)]
         near = [line for line in flat if all(" ".join(part.split()) in line for part in parts)]
-        assert near or all(part in told for part in parts), test
+        assert near or all(_as_told(part) in told for part in parts), test
         blocks = {int(word, 16) if "x" in word else int(word) for line in near for word in _numbers(line)}
         assert test.lba is None or test.lba in blocks or str(test.lba) in told, test
     if found.drive is not None:
@@ -296,4 +296,9 @@ def _check_row(row: Attribute, flat: Sequence[str], told: str) -> None:
             parts = (row.value, row.worst, row.threshold)
             if all(part is None or f"{part:03}" in words for part in parts):
                 return
-    assert all(piece in told for piece in (row.name, row.raw)), row
+    assert all(_as_told(piece) in told for piece in (row.name, row.raw)), row
+
+
+def _as_told(piece: str) -> str:
+    """A piece of text as it stands in the representation of a document, control characters escaped."""
+    return repr(piece)[1:-1]
