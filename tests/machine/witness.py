@@ -204,7 +204,8 @@ def _in_statistics(signal: str, lines: Sequence[str], size: set[int]) -> Iterato
 def _in_error_rows(signal: str, what: str, lines: Sequence[str]) -> Iterator[int]:
     for line in lines:
         words = line.split()
-        if len(words) != 8 or words[0] != f"{what}:":
+        # A flipped letter beside the label leaves the row its columns.
+        if len(words) != 8 or f"{what}:" not in words[0]:
             continue
         moved = re.fullmatch(r"([0-9]+)[.,]([0-9]{3})", words[6])
         if moved and signal.startswith("data-"):
@@ -269,7 +270,12 @@ def check(found: Understood, lines: Sequence[str], document: Any = None) -> None
             assert value.value is None or value.kind is SignalKind.WORD
     for test in found.reading.self_tests:
         parts = [test.name, test.result, *(str(part) for part in (test.hours,) if part is not None)]
-        near = [line for line in flat if all(" ".join(part.split()) in line for part in parts)]
+        near = [
+            line
+            for line in flat
+            if all(" ".join(part.split()) in line for part in parts[:2])
+            and all(hours in _joined(line) for hours in parts[2:])
+        ]
         assert near or all(_as_told(part) in told for part in parts), test
         blocks = {int(word, 16) if "x" in word else int(word) for line in near for word in _numbers(line)}
         assert test.lba is None or test.lba in blocks or str(test.lba) in told, test
@@ -280,6 +286,11 @@ def check(found: Understood, lines: Sequence[str], document: Any = None) -> None
         ):
             near = [rest for label, rest in labelled(lines) if any(name in label for name in names)]
             assert number is None or number in map(whole, near) or str(number) in told, number
+
+
+def _joined(line: str) -> str:
+    """A line whose numbers stand without separators of thousands."""
+    return re.sub(r"(?<=[0-9])[ .,'](?=[0-9]{3}(?![0-9]))", "", line)
 
 
 def _numbers(line: str) -> list[str]:
