@@ -3,42 +3,35 @@
 import signal
 import threading
 import time
-from collections.abc import Callable, Mapping
-from contextlib import suppress
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager, suppress
 from dataclasses import replace
 from enum import Enum
-from functools import partial
 from pathlib import Path
 from queue import Empty, SimpleQueue
-from typing import Any
 
-from diskwatch.errors import DiskwatchError, HistoryError, SettingsError
-from diskwatch.history.exchange import read
+from diskwatch.errors import DiskwatchError, SettingsError
 from diskwatch.history.live import LiveWriter
 from diskwatch.history.reader import Past
-from diskwatch.history.writer import History
 from diskwatch.machine import choice
 from diskwatch.machine.probe import Prober
 from diskwatch.machine.protocol import Machine
 from diskwatch.machine.senses import Senses
 from diskwatch.records import CallWord, DriveRound, Entry, IoSpan, ProbeDay, Value
 from diskwatch.service import requests
-from diskwatch.service.arrival import take_in
 from diskwatch.service.clocks import ClockGuard, Clocks
 from diskwatch.service.ears import Ears
 from diskwatch.service.keeper import Keeper
 from diskwatch.service.manager import Manager, status
-from diskwatch.service.owner import DEEDS
 from diskwatch.service.probing import Probing
 from diskwatch.service.progress import Progress
-from diskwatch.service.removal import MOVE, move_house
-from diskwatch.service.requests import Answer
 from diskwatch.service.rounds import Rounds
 from diskwatch.service.schedule import Schedule, now_steady
 from diskwatch.service.self_tests import SelfTests, Tester
 from diskwatch.service.traffic import Traffic
 from diskwatch.service.turns import Turns
 from diskwatch.service.upkeep import EVERY, Upkeep
+from diskwatch.service.wishes import Wishes
 from diskwatch.settings import Settings
 from diskwatch.units import plain
 
@@ -180,10 +173,14 @@ class Watch:
         self._progress = Progress()
         self._stuck: tuple[str, ...] = ()
         self._calls: dict[int, CallWord | None] = {}
-        self._asked = threading.Thread()
         self._ended = False
-        self._wanted: Path | None = None
-        self._outcome: SimpleQueue[Answer | DiskwatchError] = SimpleQueue()
+        self._wishes = Wishes(
+            folder,
+            self._keeper,
+            between_rounds=self._between_rounds,
+            end=lambda: self._words.put(_Word.END),
+            now=now,
+        )
         self._upkeep = Upkeep(
             self._keeper,
             folder,
@@ -232,7 +229,7 @@ class Watch:
         schedule.every("round", self._settings.smart.every, self._round, place="rounds")
         schedule.every("traffic", self._settings.io.every, self._count)
         if self._settings.io.every > requests.EVERY:
-            schedule.every("requests", requests.EVERY, self._look_for_requests)
+            schedule.every("requests", requests.EVERY, self._wishes.look)
         schedule.every("upkeep", EVERY, self._upkeep.turn, place="upkeep")
         self._note("watch", "Watching began.")
         self._open_ears()
@@ -249,9 +246,10 @@ class Watch:
                 self._manager.stopping()
             schedule.stop()
             self._end("Watching ended, to go on with other settings." if self._again else "Watching ended.")
-        if self._again and self._wanted is None:
+        if self._again and not self._wishes.moves:
             return None if self._ended else self._folder
-        return self._after_moving()
+        moved = self._wishes.moved()
+        return None if self._ended else moved
 
     def hear_signals(self) -> None:
         """Let the signals to this process speak to this watch from now on, as `run` does anyhow."""
@@ -318,6 +316,11 @@ class Watch:
         elif late != self._stuck:
             self._note("trouble", f"The watch does not get on with {' and '.join(late)}.")
         self._stuck = late
+
+    @contextmanager
+    def _between_rounds(self) -> Iterator[None]:
+        with self._rounding, self._lock:
+            yield
 
     def _asked_round(self) -> None:
         """A round now, since somebody wants one; also on battery."""
@@ -405,7 +408,7 @@ class Watch:
 
     def _count(self) -> None:
         # Here, since every job of its own would wake the machine once more.
-        self._look_for_requests()
+        self._wishes.look()
         self._say_if_deaf()
         epoch = self._keeper.epoch
         look = self._traffic.look(self._rounds.blocks)
@@ -419,57 +422,6 @@ class Watch:
         if time.monotonic() - self._committed >= self._settings.history.commit:
             self._commit_traffic()
         self._progress.done("the counting of traffic", time.monotonic())
-
-    def _look_for_requests(self) -> None:
-        """Take up what the owner asks for, in a thread of its own: counting must not wait for it."""
-        if requests.waiting(self._folder) and not self._asked.is_alive():
-            self._asked = threading.Thread(target=self._take_up, name="takes up requests", daemon=True)
-            self._asked.start()
-
-    def _take_up(self) -> None:
-        deeds = {"import-history": self._import, MOVE: self._move}
-        requests.take_up(
-            self._folder, deeds | {name: partial(self._owner, deed) for name, deed in DEEDS.items()}
-        )
-
-    def _import(self, words: Mapping[str, Any]) -> Answer:
-        lines, _ = read(words["text"])
-        # Between two rounds: none may go on from a state that has become another.
-        with self._rounding, self._lock:
-            told = self._keeper.change(lambda history: take_in(history, lines, now()))
-        return Answer(done=told.done, wrong=told.wrong)
-
-    def _owner(
-        self, deed: Callable[[History, Mapping[str, Any], int], Answer], words: Mapping[str, Any]
-    ) -> Answer:
-        # Between two rounds, for the same reason.
-        with self._rounding, self._lock:
-            return self._keeper.change(lambda history: deed(history, words, now()))
-
-    def _move(self, words: Mapping[str, Any]) -> Answer:
-        """End for the history to be moved: only when all is stored and nobody writes can it be whole."""
-        self._wanted = Path(str(words["to"]))
-        self._words.put(_Word.END)
-        told = self._outcome.get()
-        if isinstance(told, DiskwatchError):
-            raise HistoryError(
-                f"the watch has not moved it and goes on where it was: {told}",
-                hint="or end the watch, run this again with the right to write there, and start the watch anew",
-            )
-        return told
-
-    def _after_moving(self) -> Path | None:
-        if self._wanted is None:
-            return None
-        folder = self._folder
-        try:
-            moved, told = move_house(folder, self._wanted, now())
-            folder = moved.to
-            self._outcome.put(told)
-        except DiskwatchError as error:
-            self._outcome.put(error)
-        self._asked.join(HAND)
-        return None if self._ended else folder
 
     def _troubles(self) -> tuple[str, ...]:
         kept = self._keeper.trouble
